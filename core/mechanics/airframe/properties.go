@@ -1,0 +1,124 @@
+package airframe
+
+// Properties is all of the airframe that meshing does not need.
+type Properties struct {
+	Materials []Material
+	Plates    []PlateProperties    // one per plate, same order
+	Standoffs []StandoffProperties // one per standoff, same order
+	Bolts     []BoltProperties     // one per bolt, same order
+	Joints    []Joint
+	Bodies    []Body
+	Rotors    []Rotor
+	Gyro      Gyro
+	// DeclaredMass is the all-up mass stated by the user, kg, 0 for none.
+	DeclaredMass float64
+	// Floor is the loss factor added to every group (air, cables), default 0.
+	Floor float64
+}
+
+// Material is homogeneous and orthotropic with axis 1 along the fibre
+// direction; isotropic ones satisfy G = E/(2(1+ν)).
+type Material struct {
+	Name          string
+	E1, E2        float64 // Pa
+	Nu12          float64 // strain along 2 per strain along 1, loaded along 1, negated
+	G12, G13, G23 float64 // Pa
+	Density       float64 // kg/m³
+	LossFactor    float64
+	Isotropic     bool
+	Typical       bool    // from the built-in table, not measured
+	Scatter       float64 // relative standard uncertainty of E1 and E2, 0 unknown
+	Origin        string  // where the values come from
+}
+
+// PlateProperties is what a plate is made of.
+type PlateProperties struct {
+	Plate    string
+	Material string  // of the homogeneous plate; "" when Plies are given
+	Fibre    float64 // direction 1, rad counterclockwise from the plate's x axis
+	// Plies from the lower to the upper face, for a stack.
+	Plies []Ply
+	Mass  float64 // kg, area × thickness × density
+}
+
+// Ply is one layer of a stack.
+type Ply struct {
+	Material  string
+	Thickness float64
+	Angle     float64 // rad from the plate's fibre direction
+}
+
+// StandoffProperties is what a standoff is made of.
+type StandoffProperties struct {
+	Standoff string
+	Material string
+	Mass     float64 // kg
+}
+
+// BoltProperties carries the mass of screw, washer and nut, and the joint.
+type BoltProperties struct {
+	Bolt  string
+	Mass  float64 // kg, at the bolt's point
+	Joint string  // name of a Joint; "" is rigid
+}
+
+// Joint is a six-component elastic connection, in the frame of the bolt
+// (z along its axis, x along the lower plate's x). Components x, y, z in N/m
+// and rx, ry, rz in N·m/rad. A component of +Inf is rigid.
+type Joint struct {
+	Name       string
+	Stiffness  [6]float64
+	LossFactor float64
+	Low, High  float64 // range of a common factor on Stiffness, 0 unknown
+}
+
+// Body is a rigid body: motor with propeller, battery, camera, gyro stack.
+type Body struct {
+	Name    string
+	Kind    string // "rotor", "lump" or "gyro"
+	Mass    float64
+	Centre  Vec        // centre of gravity
+	Inertia [6]float64 // about Centre, airframe axes: tensor elements xx, yy, zz, xy, xz, yz, kg·m²
+	// Patches it is tied to rigidly; empty when it sits on a mount.
+	Patches []string
+	// Mount is nil when the body is tied rigidly.
+	Mount *Mount
+}
+
+// Mount is a set of springs between a body and patches.
+type Mount struct {
+	Name       string
+	Kind       string // "grommet", "strap", "foam", ...
+	Points     []MountPoint
+	LossFactor float64
+}
+
+// MountPoint is one spring, acting at a point, along airframe axes.
+type MountPoint struct {
+	Point     Vec
+	Patch     string
+	Stiffness [6]float64 // N/m and N·m/rad; 0 is free
+}
+
+// Rotor is a motor with its propeller.
+type Rotor struct {
+	Name   string
+	Body   string
+	Hub    Vec // where its forces and moments act
+	Axis   Vec // unit vector of the shaft, towards thrust
+	Blades int
+	// Spin is +1 counterclockwise seen from above (about +Axis), −1 clockwise.
+	Spin         int
+	HoverSpeed   float64 // rad/s
+	MaxSpeed     float64 // rad/s
+	SpinningMass float64 // kg, bell and propeller
+	PolarInertia float64 // kg·m², of the spinning part about Axis
+	// Grade is the balance quality e·Ω (m/s) at MaxSpeed, ISO 21940-11.
+	Grade float64
+}
+
+// Gyro names the body that carries the gyro; its rotation is the output.
+type Gyro struct {
+	Body string
+	At   Vec
+}

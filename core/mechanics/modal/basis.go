@@ -1,0 +1,51 @@
+package modal
+
+import (
+	"hushframe/core/mechanics/airframe"
+)
+
+// VectorKind sorts the vectors of a Basis.
+type VectorKind string
+
+const (
+	RigidBody VectorKind = "rigid"
+	Elastic   VectorKind = "elastic"
+	// Residual vectors carry the static answer of all modes left out; their
+	// frequency is a number of the basis, not of the frame.
+	Residual VectorKind = "residual"
+)
+
+// Basis is a set of M-orthonormal, K-orthogonal vectors: six rigid-body ones,
+// the elastic modes by ascending frequency, then residual vectors. Modal mass
+// is 1 (kg for shapes in m), modal stiffness (2π Frequency)².
+type Basis struct {
+	Kinds     []VectorKind
+	Frequency []float64 // Hz, 0 for rigid-body vectors
+	// Sites are the points where forces act or motion is read.
+	Sites []Site
+	// Groups split the stiffness by what dissipates: each holds φᵀ K_g φ over
+	// the whole basis, n×n row-major, symmetric. They add up to the modal
+	// stiffness; the loss factor of each group makes the damping.
+	Groups []LossGroup
+	// Shapes[v] is the shape of vector v at the mesh nodes: six components
+	// per node (ux, uy, uz in m, rx, ry, rz in rad, airframe axes) per unit
+	// modal coordinate.
+	Shapes [][]float64
+}
+
+// Site is a named point fixed to a body or patch.
+type Site struct {
+	Name  string
+	Kind  string // "rotor", "gyro", "body"
+	Point airframe.Vec
+	// Motion[v] is the motion of the point in vector v: ux, uy, uz, rx, ry, rz.
+	Motion [][6]float64
+}
+
+// LossGroup is the stiffness of one part, joint group or mount in the basis.
+type LossGroup struct {
+	Name       string
+	Kind       string // "part", "joint" or "mount"
+	LossFactor float64
+	Stiffness  []float64
+}
