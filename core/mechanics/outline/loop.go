@@ -100,9 +100,9 @@ func (l Loop) Gap() float64 {
 	return gap
 }
 
-// CircleOf recognises a round hole. A loop of arcs is round when all centres agree within 1e-4 of the radius (and no
-// worse than 1e-6 m needs), all radii likewise, and the sweeps add up to a full turn; then the answer is that of the
-// longest arc. Any other loop (splines, many short lines) is round when it goes once round the mean of its
+// CircleOf recognises a round hole. A loop of arcs is round when all centres and all radii agree within 1e-4 of the
+// radius or 1e-6 m, whichever is more (never above 2 % of the radius), and the sweeps add up to a full turn; the answer
+// is then that of the longest arc. Any other loop (splines, many short lines) is round when it goes once round the mean of its
 // evenly spread places and none of them is farther from the mean radius than 2 % of it (a polygon of 16 sides or more
 // passes, an octagon does not); then the radius is that of the circle of equal area.
 func CircleOf(l Loop) (centre Point, radius float64, ok bool) {
@@ -115,7 +115,7 @@ func CircleOf(l Loop) (centre Point, radius float64, ok bool) {
 	length := l.Length()
 	var points []Point
 	for _, c := range l {
-		n := max(2, int(math.Ceil(64*c.Length()/length)))
+		n := max(2, int(math.Ceil(64*c.Length()/length-1e-6)))
 		for i := range n {
 			points = append(points, c.At(float64(i)/float64(n)))
 		}

@@ -199,25 +199,73 @@ func circleCircle(a, b Curve, tol float64) []Point {
 	return []Point{foot.Sub(left.Scale(y)), foot.Add(left.Scale(y))}
 }
 
-// meetNumerically compares short chords of both curves and improves each candidate by Newton's method on P(s) = Q(t).
+// span is a piece of a curve that is monotone along both axes, so that its ends span its bounds.
+type span struct {
+	a, b float64
+	p, q Point
+}
+
+func spans(c Curve) []span {
+	ts := c.monotone()
+	all := make([]span, len(ts)-1)
+	for i := range all {
+		all[i] = span{ts[i], ts[i+1], c.At(ts[i]), c.At(ts[i+1])}
+	}
+	return all
+}
+
+func (s span) bounds() Box { return EmptyBox().With(s.p).With(s.q) }
+
+// bend returns how far the piece strays from its chord, judged at three places.
+func (s span) bend(c Curve) float64 {
+	worst := 0.0
+	for _, u := range [3]float64{0.25, 0.5, 0.75} {
+		_, d := Line(s.p, s.q).Nearest(c.At(s.a + u*(s.b-s.a)))
+		worst = math.Max(worst, d)
+	}
+	return worst
+}
+
+func (s span) halves(c Curve) [2]span {
+	m := 0.5 * (s.a + s.b)
+	p := c.At(m)
+	return [2]span{{s.a, m, s.p, p}, {m, s.b, p, s.q}}
+}
+
+// meetNumerically halves pieces of both curves as long as their bounds meet, down to nearly straight ones, whose
+// crossings Newton's method then improves.
 func meetNumerically(a, b Curve, tol float64) []Meeting {
-	fine := math.Max(tol/4, 1e-7*math.Max(a.Bounds().Diagonal(), b.Bounds().Diagonal()))
-	p, q := a.Flatten(fine), b.Flatten(fine)
-	reach := 2*fine + tol
 	var m []Meeting
-	for i := 1; i < len(p); i++ {
-		pi := EmptyBox().With(p[i-1]).With(p[i]).Grow(reach)
-		for j := 1; j < len(q); j++ {
-			if !pi.Meets(EmptyBox().With(q[j-1]).With(q[j])) {
-				continue
+	var visit func(s, t span)
+	visit = func(s, t span) {
+		if !s.bounds().Grow(tol).Meets(t.bounds()) {
+			return
+		}
+		const flat = 1e-3
+		bs, bt := s.bend(a), t.bend(b)
+		ls, lt := s.p.Distance(s.q), t.p.Distance(t.q)
+		splitS, splitT := bs > math.Max(flat*ls, tol/8), bt > math.Max(flat*lt, tol/8)
+		switch {
+		case splitS && (!splitT || ls >= lt):
+			for _, h := range s.halves(a) {
+				visit(h, t)
 			}
-			for _, c := range Meet(Line(p[i-1], p[i]), Line(q[j-1], q[j]), reach) {
-				s := (float64(i-1) + c.S) / float64(len(p)-1)
-				t := (float64(j-1) + c.T) / float64(len(q)-1)
-				if s, t, ok := polish(a, b, s, t, tol); ok {
-					m = append(m, Meeting{s, t, a.At(s)})
+		case splitT:
+			for _, h := range t.halves(b) {
+				visit(s, h)
+			}
+		default:
+			for _, c := range Meet(Line(s.p, s.q), Line(t.p, t.q), tol+2*(bs+bt)) {
+				x, y, ok := polish(a, b, s.a+c.S*(s.b-s.a), t.a+c.T*(t.b-t.a), tol)
+				if ok {
+					m = append(m, Meeting{x, y, a.At(x)})
 				}
 			}
+		}
+	}
+	for _, s := range spans(a) {
+		for _, t := range spans(b) {
+			visit(s, t)
 		}
 	}
 	return m
