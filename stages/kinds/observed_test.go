@@ -1,0 +1,77 @@
+package kinds
+
+import (
+	"reflect"
+	"strings"
+	"testing"
+)
+
+func sampleSpectra() *Spectra {
+	return &Spectra{
+		Rate: 2000, Step: 500, Resolution: 750, Window: "hann", Segment: 4, Overlap: 2, Segments: 9, Freedom: 17,
+		Level: 0.95, Lower: 0.6, Upper: 2, From: 8, To: 60, Samples: 100, Gaps: 1, Missing: 2, Jitter: 0.01,
+		Axes: []SpectraAxis{{Axis: "roll", Quantity: "angular rate", Unit: "rad/s", Column: "gx", Mean: 1, Deviation: 2,
+			Largest: 3, Saturated: 4, Repeated: 0.5, Density: []float64{1, 2, 3}}},
+		Peaks: []SpectraPeak{{Frequency: 500, FrequencyError: 1, Density: 2, Prominence: 3, OverFloor: 4, Lower: 490,
+			Upper: 510, Damping: 0.02, DampingError: 0.01, Narrow: true}},
+		Rotors: []SpectraRotor{{Rotor: "fr", Column: "rpm", Blades: 3, Median: 1600, Low: 1500, High: 1700}},
+		Orders: []OrderBand{{Rotor: "fr", Order: 3, BladePassing: true, Low: 700, High: 800, Share: 0.98, Folded: true}},
+	}
+}
+
+func TestSpectraRoundTrip(t *testing.T) {
+	want := sampleSpectra()
+	a := EncodeSpectra(want)
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	got, err := DecodeSpectra(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !reflect.DeepEqual(got, want) {
+		t.Errorf("got %+v, want %+v", got, want)
+	}
+	if label := got.Orders[0].Label(); label != "blade passing (folded) of rotor fr" {
+		t.Error(label)
+	}
+}
+
+func TestSpectraRefusesWhatDoesNotFit(t *testing.T) {
+	s := sampleSpectra()
+	s.Peaks[0].Axis = 1
+	if _, err := DecodeSpectra(EncodeSpectra(s)); err == nil || !strings.Contains(err.Error(), "axis 1 of 1") {
+		t.Error(err)
+	}
+	s = sampleSpectra()
+	s.Axes[0].Density = nil
+	if _, err := DecodeSpectra(EncodeSpectra(s)); err == nil || !strings.Contains(err.Error(), "0 bins") {
+		t.Error(err)
+	}
+}
+
+func TestComparisonRoundTrip(t *testing.T) {
+	want := &Comparison{
+		From: 80, To: 800, Tolerance: 0.05, Reach: 0.2,
+		Axes: []ComparisonAxis{{Axis: "pitch", Scale: 2, Residual: 3, Bins: 4, Frequency: []float64{1, 2},
+			Predicted: []float64{3, 4}, Observed: []float64{5, 6}}},
+		Pairs: []ComparisonPair{{Axis: "pitch", Predicted: 100, Observed: 99, ObservedError: 0.1, Error: 0.0101,
+			Confidence: 0.9, PredictedDensity: 1, ObservedDensity: 2, PredictedDamping: 0.01, ObservedDamping: 0.02,
+			ObservedDampingError: 0.003, Modes: []int{2, 1}}},
+		Unpaired: []ComparisonPeak{{Side: Observed, Axis: "pitch", Frequency: 130, Density: 1, Damping: 0.02, Modes: []int{}, Reason: "none near"}},
+		Masked:   []ComparisonPeak{{Side: Predicted, Axis: "pitch", Frequency: 267, Density: 1, Damping: 0.02, Modes: []int{3}, Reason: "order 1"}},
+		Orders:   []OrderBand{{Rotor: "fr", Order: 1, Low: 250, High: 280, Share: 0.98}},
+		Notes:    []string{"a note"},
+	}
+	a := EncodeComparison(want)
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	got, err := DecodeComparison(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !reflect.DeepEqual(got, want) {
+		t.Errorf("got %+v, want %+v", got, want)
+	}
+}
