@@ -52,6 +52,9 @@ type Error struct {
 	Remedy string `json:"remedy,omitempty"`
 	// Cause is the fault below this one.
 	Cause *Error `json:"cause,omitempty"`
+	// Lines are the last lines a process printed, or a stack trace; they are
+	// not part of the text.
+	Lines []string `json:"lines,omitempty"`
 }
 
 // Error gives the fault on one line: operation, item, place, text, remedy.
@@ -113,6 +116,9 @@ func (e *Error) Do(format string, args ...any) *Error {
 	c.Remedy = fmt.Sprintf(format, args...)
 	return &c
 }
+
+// With returns the fault with the lines a process printed last.
+func (e *Error) With(lines []string) *Error { c := *e; c.Lines = lines; return &c }
 
 // From turns any error into a fault: a fault is kept whole, cancellation and
 // missing files get their kinds, and anything else is Internal.

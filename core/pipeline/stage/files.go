@@ -28,6 +28,16 @@ func NewFiles(folder string) *Files {
 	return &Files{folder: folder, used: map[string]string{}}
 }
 
+// Folder is the folder of the job file.
+func (f *Files) Folder() string { return f.folder }
+
+// Add notes files that were read elsewhere: in the process of the stage.
+func (f *Files) Add(uses ...FileUse) {
+	for _, u := range uses {
+		f.note(u.Path, u.Hash)
+	}
+}
+
 // FileUse is one file a step read or looked for.
 type FileUse struct {
 	// Path as named, slash-separated, relative to the job folder if it was.
