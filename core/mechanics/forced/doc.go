@@ -1,0 +1,38 @@
+// Package forced answers what the gyro feels when forces and moments act on a
+// frame that vibrates in a small set of modal coordinates.
+//
+// # Terms and symbols
+//
+//	φ_v      vector v of the basis, M-orthonormal and K-orthogonal (package modal)
+//	ω_v      2π times its frequency, rad/s; 0 for the six rigid-body vectors
+//	q        modal coordinates, complex, kg^½·m
+//	η_g      loss factor of loss group g
+//	K_g      stiffness of group g in the basis, Φᵀ K_g Φ, full and symmetric
+//	C        coefficient of velocity in the basis (dampers, spinning rotors), real, often absent
+//	f, ω     frequency of excitation in Hz and rad/s; time dependence e^{+iωt}
+//
+// Motion follows from
+//
+//	[ diag(ω_v²) + i Σ η_g K_g + iω C − ω² I ] q = Φᵀ F
+//
+// The damping matrix is not assumed diagonal: a soft lossy mount couples the
+// modes, and only the full matrix has that right. Rigid-body vectors are in
+// the sum, so that the response of a free frame is finite above 0 Hz and grows
+// without bound towards it.
+//
+// The rotation rate of the gyro is iω times its rotation; axis 0 is roll, 1
+// pitch, 2 yaw. A transfer function is that rate in rad/s per newton or per
+// newton metre of one component (0 to 2 forces along x, y, z; 3 to 5 moments)
+// at one rotor hub. Forces and moments are never added at unit level.
+//
+// Spectra are one-sided power spectral densities, (rad/s)²/Hz. Sources that do
+// not know of each other are added as power.
+//
+// # Method
+//
+// Without C the matrix is a constant one shifted by ω². It is brought to upper
+// Hessenberg form once, by unitary reflections, after which each frequency
+// costs O(n²) (A. J. Laub, Efficient multivariable frequency response
+// computations, IEEE Trans. Automatic Control 26, 1981). With C each frequency
+// is a full factorisation with partial pivoting.
+package forced

@@ -1,0 +1,203 @@
+package forced
+
+import (
+	"math"
+	"math/cmplx"
+)
+
+// hessenberg is a matrix A = Q H Qᴴ with Q unitary and H zero below its first
+// subdiagonal; both row-major.
+type hessenberg struct {
+	n int
+	h []complex128
+	q []complex128
+}
+
+// reduce overwrites a and returns its Hessenberg form (Householder's method;
+// G. H. Golub and C. F. Van Loan, Matrix Computations, section on the
+// Hessenberg decomposition).
+func reduce(a []complex128, n int) *hessenberg {
+	q := make([]complex128, n*n)
+	for i := range n {
+		q[i*n+i] = 1
+	}
+	v := make([]complex128, n)
+	for k := 0; k+2 < n; k++ {
+		norm := 0.0
+		for i := k + 1; i < n; i++ {
+			norm = math.Hypot(norm, cmplx.Abs(a[i*n+k]))
+		}
+		below := 0.0
+		for i := k + 2; i < n; i++ {
+			below = math.Hypot(below, cmplx.Abs(a[i*n+k]))
+		}
+		if below == 0 {
+			continue
+		}
+		head := a[(k+1)*n+k]
+		phase := complex(1, 0)
+		if head != 0 {
+			phase = head / complex(cmplx.Abs(head), 0)
+		}
+		// v = x + phase·‖x‖·e₁; the sum has no cancellation.
+		length := 0.0
+		for i := k + 1; i < n; i++ {
+			v[i] = a[i*n+k]
+			if i == k+1 {
+				v[i] += phase * complex(norm, 0)
+			}
+			length += sq(real(v[i])) + sq(imag(v[i]))
+		}
+		beta := complex(2/length, 0)
+		for j := k; j < n; j++ { // A ← P A
+			var dot complex128
+			for i := k + 1; i < n; i++ {
+				dot += cmplx.Conj(v[i]) * a[i*n+j]
+			}
+			dot *= beta
+			for i := k + 1; i < n; i++ {
+				a[i*n+j] -= v[i] * dot
+			}
+		}
+		for _, m := range [][]complex128{a, q} { // A ← A P, Q ← Q P
+			for i := range n {
+				row := m[i*n : i*n+n]
+				var dot complex128
+				for j := k + 1; j < n; j++ {
+					dot += row[j] * v[j]
+				}
+				dot *= beta
+				for j := k + 1; j < n; j++ {
+					row[j] -= dot * cmplx.Conj(v[j])
+				}
+			}
+		}
+		for i := k + 2; i < n; i++ {
+			a[i*n+k] = 0
+		}
+	}
+	return &hessenberg{n, a, q}
+}
+
+// turn gives Qᴴ x.
+func (r *hessenberg) turn(x []complex128) []complex128 {
+	out := make([]complex128, r.n)
+	for i, xi := range x {
+		row := r.q[i*r.n : i*r.n+r.n]
+		for j, qij := range row {
+			out[j] += cmplx.Conj(qij) * xi
+		}
+	}
+	return out
+}
+
+// turnBack gives Q x.
+func (r *hessenberg) turnBack(x []complex128) []complex128 {
+	out := make([]complex128, r.n)
+	for i := range r.n {
+		row := r.q[i*r.n : i*r.n+r.n]
+		var sum complex128
+		for j, qij := range row {
+			sum += qij * x[j]
+		}
+		out[i] = sum
+	}
+	return out
+}
+
+// solve overwrites each right-hand side x with (H − shift·I)⁻¹ x, by
+// elimination with partial pivoting in the scratch matrix work (n² long). It
+// reports false when the matrix is singular.
+func (r *hessenberg) solve(shift float64, work []complex128, sides ...[]complex128) bool {
+	n := r.n
+	copy(work, r.h)
+	for i := range n {
+		work[i*n+i] -= complex(shift, 0)
+	}
+	for k := range n {
+		row := work[k*n : k*n+n]
+		if k+1 < n {
+			next := work[(k+1)*n : (k+1)*n+n]
+			if size(next[k]) > size(row[k]) {
+				for j := k; j < n; j++ {
+					row[j], next[j] = next[j], row[j]
+				}
+				for _, x := range sides {
+					x[k], x[k+1] = x[k+1], x[k]
+				}
+			}
+			if next[k] != 0 {
+				f := next[k] / row[k]
+				for j := k + 1; j < n; j++ {
+					next[j] -= f * row[j]
+				}
+				for _, x := range sides {
+					x[k+1] -= f * x[k]
+				}
+			}
+		}
+		if row[k] == 0 {
+			return false
+		}
+	}
+	backward(work, n, sides)
+	return true
+}
+
+// factorSolve overwrites a with its factors and each x with a⁻¹ x, by
+// elimination with partial pivoting.
+func factorSolve(a []complex128, n int, sides ...[]complex128) bool {
+	for k := range n {
+		p := k
+		for i := k + 1; i < n; i++ {
+			if size(a[i*n+k]) > size(a[p*n+k]) {
+				p = i
+			}
+		}
+		row := a[k*n : k*n+n]
+		if p != k {
+			other := a[p*n : p*n+n]
+			for j := k; j < n; j++ {
+				row[j], other[j] = other[j], row[j]
+			}
+			for _, x := range sides {
+				x[k], x[p] = x[p], x[k]
+			}
+		}
+		if row[k] == 0 {
+			return false
+		}
+		inverse := 1 / row[k]
+		for i := k + 1; i < n; i++ {
+			below := a[i*n : i*n+n]
+			if below[k] == 0 {
+				continue
+			}
+			f := below[k] * inverse
+			for j := k + 1; j < n; j++ {
+				below[j] -= f * row[j]
+			}
+			for _, x := range sides {
+				x[i] -= f * x[k]
+			}
+		}
+	}
+	backward(a, n, sides)
+	return true
+}
+
+func backward(upper []complex128, n int, sides [][]complex128) {
+	for _, x := range sides {
+		for i := n - 1; i >= 0; i-- {
+			row := upper[i*n : i*n+n]
+			sum := x[i]
+			for j := i + 1; j < n; j++ {
+				sum -= row[j] * x[j]
+			}
+			x[i] = sum / row[i]
+		}
+	}
+}
+
+// size is a cheap norm to choose pivots by.
+func size(z complex128) float64 { return math.Abs(real(z)) + math.Abs(imag(z)) }

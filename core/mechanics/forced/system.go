@@ -1,0 +1,182 @@
+package forced
+
+import (
+	"fmt"
+	"math"
+
+	"hushframe/core/mechanics/modal"
+)
+
+// Options of New. The zero value is the whole basis without C.
+type Options struct {
+	// DropResidual leaves the residual vectors out, to show what they do.
+	DropResidual bool
+	// Rate is C over the whole basis, n×n row-major, N·s/m in the basis: its
+	// symmetric part dissipates, its skew part is gyroscopic. nil is none.
+	Rate []float64
+}
+
+// Input is one force or moment component at a rotor.
+type Input struct {
+	Rotor     string
+	Component int // 0 to 2 force along x, y, z in N; 3 to 5 moment about them in N·m
+}
+
+// Moment tells a moment from a force.
+func (in Input) Moment() bool { return in.Component >= 3 }
+
+// System is a frame in its modal coordinates, ready to be driven. It is
+// immutable and safe for concurrent use.
+type System struct {
+	basis   *modal.Basis
+	vectors []int     // vectors of the basis in use, ascending
+	square  []float64 // ω_v²
+	loss    []float64 // Σ η_g K_g, n×n
+	rate    []float64 // C, n×n, or nil
+	inputs  []Input
+	load    [][]float64  // load[input][v]: modal force of a unit of the input
+	gyro    [3][]float64 // gyro[axis][v]: rotation of the gyro in vector v, rad
+	reduced *hessenberg  // when rate is nil
+}
+
+// New builds the system of a basis. Inputs are all six components at each site
+// of kind "rotor", in the order of the sites; the output is the site of kind
+// "gyro". It panics on slices of the wrong length, and fails when there is no
+// gyro or rotor site, a number is not finite or a loss factor is negative.
+func New(basis *modal.Basis, opt Options) (*System, error) {
+	all := len(basis.Frequency)
+	if len(basis.Kinds) != all {
+		panic(fmt.Sprintf("forced: %d kinds for %d vectors", len(basis.Kinds), all))
+	}
+	s := &System{basis: basis}
+	for v, kind := range basis.Kinds {
+		if kind != modal.Residual || !opt.DropResidual {
+			s.vectors = append(s.vectors, v)
+		}
+	}
+	n := len(s.vectors)
+	s.square = make([]float64, n)
+	for i, v := range s.vectors {
+		s.square[i] = sq(2 * math.Pi * basis.Frequency[v])
+	}
+	s.loss = make([]float64, n*n)
+	for _, g := range basis.Groups {
+		if !(g.LossFactor >= 0) || math.IsInf(g.LossFactor, 0) {
+			return nil, fmt.Errorf("loss factor of %s %s is %g", g.Kind, g.Name, g.LossFactor)
+		}
+		s.add(s.loss, g.Stiffness, g.LossFactor)
+	}
+	if opt.Rate != nil {
+		s.rate = make([]float64, n*n)
+		s.add(s.rate, opt.Rate, 1)
+	}
+	if err := s.sites(); err != nil {
+		return nil, err
+	}
+	for _, part := range [][]float64{s.square, s.loss, s.rate} {
+		for _, x := range part {
+			if math.IsNaN(x) || math.IsInf(x, 0) {
+				return nil, fmt.Errorf("the modal basis holds a number that is not finite")
+			}
+		}
+	}
+	if s.rate == nil {
+		s.reduced = reduce(s.matrix(0), n)
+	}
+	return s, nil
+}
+
+// add adds a multiple of the rows and columns in use of a matrix over the
+// whole basis.
+func (s *System) add(to, from []float64, factor float64) {
+	all, n := len(s.basis.Frequency), len(s.vectors)
+	if len(from) != all*all {
+		panic(fmt.Sprintf("forced: matrix of %d numbers over %d vectors", len(from), all))
+	}
+	for i, v := range s.vectors {
+		for j, w := range s.vectors {
+			to[i*n+j] += factor * from[v*all+w]
+		}
+	}
+}
+
+func (s *System) sites() error {
+	found := false
+	for k := range s.basis.Sites {
+		site := &s.basis.Sites[k]
+		if len(site.Motion) != len(s.basis.Frequency) {
+			panic(fmt.Sprintf("forced: site %s has %d motions for %d vectors", site.Name, len(site.Motion), len(s.basis.Frequency)))
+		}
+		switch site.Kind {
+		case "rotor":
+			for c := range 6 {
+				s.inputs = append(s.inputs, Input{site.Name, c})
+				s.load = append(s.load, s.component(site, c))
+			}
+		case "gyro":
+			if found {
+				return fmt.Errorf("the modal basis has two gyro sites")
+			}
+			found = true
+			for axis := range 3 {
+				s.gyro[axis] = s.component(site, 3+axis)
+			}
+		}
+	}
+	if !found {
+		return fmt.Errorf("the modal basis has no gyro site")
+	}
+	if len(s.inputs) == 0 {
+		return fmt.Errorf("the modal basis has no rotor site")
+	}
+	return nil
+}
+
+// component gives the motion of a site along one component in each vector in
+// use, which is also the modal force of a unit force along it.
+func (s *System) component(site *modal.Site, c int) []float64 {
+	row := make([]float64, len(s.vectors))
+	for i, v := range s.vectors {
+		row[i] = site.Motion[v][c]
+	}
+	return row
+}
+
+// Inputs lists the inputs; the index into it is used throughout.
+func (s *System) Inputs() []Input { return s.inputs }
+
+// Vectors lists the vectors of the basis in use, ascending. Modal coordinates
+// are in this order.
+func (s *System) Vectors() []int { return s.vectors }
+
+// matrix builds the dynamic stiffness at ω, row-major.
+func (s *System) matrix(omega float64) []complex128 {
+	n := len(s.vectors)
+	a := make([]complex128, n*n)
+	for i, x := range s.loss {
+		a[i] = complex(0, x)
+	}
+	for i, x := range s.rate {
+		a[i] += complex(0, omega*x)
+	}
+	for i, x := range s.square {
+		a[i*n+i] += complex(x-omega*omega, 0)
+	}
+	return a
+}
+
+// Damping gives the loss factor of each vector in use on its own, η_v =
+// Σ η_g (K_g)_vv / ω_v², 0 for rigid-body vectors. Half of it is the damping
+// ratio. Coupling by damping between modes is not in it.
+func (s *System) Damping() []float64 {
+	n := len(s.vectors)
+	eta := make([]float64, n)
+	for i, k := range s.square {
+		if k > 0 {
+			eta[i] = s.loss[i*n+i] / k
+		}
+	}
+	return eta
+}
+
+func sq(x float64) float64 { return x * x }

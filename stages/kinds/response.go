@@ -1,0 +1,357 @@
+package kinds
+
+import (
+	"fmt"
+
+	"hushframe/core/pipeline/artifact"
+)
+
+// ResponseKind is what `sweep` makes of a modal basis and assumed sources.
+// Elastic modes are numbered from 1 in ascending frequency.
+var ResponseKind = artifact.Kind{
+	Name: "response", Version: 1,
+	About: "gyro rate that forces and moments at the rotors make: transfer functions, spectra, peaks and the modes that make them, lines at hover, operating shapes",
+	Scalars: []artifact.Column{
+		col("from", artifact.Float, "Hz", "lower end of the sweep"),
+		col("to", artifact.Float, "Hz", "upper end of the sweep"),
+		col("modes_to", artifact.Float, "Hz", "frequency up to which the basis holds every mode, as far as it shows"),
+		col("force_density", artifact.Float, "N^2/Hz", "assumed one-sided density of each force component at each rotor"),
+		col("moment_density", artifact.Float, "(N*m)^2/Hz", "assumed one-sided density of each moment component at each rotor"),
+		col("residual", artifact.Truth, "", "the basis holds residual vectors and they are in use"),
+		col("thrust", artifact.Float, "N", "thrust of one rotor at hover, weight over the number of rotors; NaN if the mass is not known"),
+		col("blade_share", artifact.Float, "1", "assumed amplitude of the thrust at blade passing, as a share of the thrust"),
+	},
+	Tables: []artifact.TableSpec{
+		{Name: "spectrum", About: "gyro rate under the broadband source, all rotors added as power", Columns: columns(
+			col("frequency", artifact.Float, "Hz", "ascending, not evenly spaced"),
+			axisCols("", "(rad/s)^2/Hz", "one-sided power spectral density"),
+			axisCols("uncorrected_", "(rad/s)^2/Hz", "the same without residual vectors; NaN if the basis has none or they are off"),
+		)},
+		{Name: "sources", About: "the part of each rotor in the spectrum", Columns: columns(
+			col("rotor", artifact.Text, "", "name"),
+			col("axis", artifact.Text, "", "roll, pitch or yaw"),
+			col("density", artifact.FloatList, "(rad/s)^2/Hz", "at the frequencies of the spectrum"),
+		)},
+		{Name: "transfer", About: "gyro rate per force or moment component, time dependence e^(+iωt)", Columns: columns(
+			col("rotor", artifact.Text, "", "name"),
+			col("component", artifact.Int, "", "0 to 2 force along x, y, z; 3 to 5 moment about them"),
+			col("axis", artifact.Text, "", "roll, pitch or yaw"),
+			col("real", artifact.FloatList, "rad/s per N or N*m", "at the frequencies of the spectrum"),
+			col("imaginary", artifact.FloatList, "rad/s per N or N*m", "at the frequencies of the spectrum"),
+		)},
+		{Name: "axes", About: "one row per axis: roll, pitch, yaw", Columns: columns(
+			col("axis", artifact.Text, "", "name"),
+			col("rms", artifact.Float, "rad/s", "root mean square within the sweep"),
+			col("correction", artifact.Float, "dB", "largest change that residual vectors make to the density, signed; NaN if not computed"),
+			col("correction_at", artifact.Float, "Hz", "where that is"),
+		)},
+		{Name: "peaks", About: "peaks of the spectrum, by axis and frequency", Columns: columns(
+			col("axis", artifact.Text, "", "roll, pitch or yaw"),
+			col("frequency", artifact.Float, "Hz", "refined between the frequencies of the spectrum"),
+			col("density", artifact.Float, "(rad/s)^2/Hz", "at the peak"),
+			col("prominence", artifact.Float, "1", "density over the higher of the two valleys beside it"),
+			col("damping", artifact.Float, "1", "damping ratio (half the loss factor) of the leading mode; NaN if none leads"),
+			col("modes", artifact.IntList, "", "elastic modes that make the peak, the strongest first"),
+			col("shares", artifact.FloatList, "1", "what each adds, projected on the total; negative works against it"),
+			col("rigid", artifact.Float, "1", "what the rigid-body motion adds"),
+			col("residual", artifact.Float, "1", "what the residual vectors add"),
+			col("uncorrected", artifact.Float, "1", "density without residual vectors over density; NaN if not computed"),
+			col("rotor", artifact.Text, "", "rotor of the strongest component"),
+			col("component", artifact.Int, "", "strongest component, 0 to 5"),
+			col("component_share", artifact.Float, "1", "its part of the density"),
+			col("losses", artifact.TextList, "", "loss groups that take the power put in by it, the greatest first"),
+			col("loss_shares", artifact.FloatList, "1", "the part each takes"),
+		)},
+		{Name: "modes", About: "elastic modes of the basis", Columns: columns(
+			col("number", artifact.Int, "", "from 1"),
+			col("frequency", artifact.Float, "Hz", "natural frequency without damping"),
+			col("damping", artifact.Float, "1", "damping ratio, half the loss factor of the mode alone"),
+		)},
+		{Name: "rotors", About: "rotors and the speeds of their orders", Columns: columns(
+			col("rotor", artifact.Text, "", "name"),
+			col("blades", artifact.Int, "", "number of blades"),
+			col("hover", artifact.Float, "rad/s", "speed at hover"),
+			col("highest", artifact.Float, "rad/s", "highest service speed"),
+		)},
+		{Name: "lines", About: "gyro rate at single frequencies at hover speed", Columns: columns(
+			col("source", artifact.Text, "", "unbalance or blade passing"),
+			col("rotor", artifact.Text, "", "name; \"all\" is the root sum of squares over rotors of equal frequency"),
+			col("order", artifact.Float, "1", "multiple of the rotor's speed"),
+			col("frequency", artifact.Float, "Hz", ""),
+			col("force", artifact.Float, "N", "amplitude at one rotor"),
+			axisCols("", "rad/s", "peak amplitude"),
+		)},
+		{Name: "shapes", About: "operating shapes: motion of the mesh nodes under one unit of one component", Columns: columns(
+			col("frequency", artifact.Float, "Hz", ""),
+			col("axis", artifact.Text, "", "axis whose peak this is; \"\" when the frequency was asked for"),
+			col("rotor", artifact.Text, "", "driven rotor"),
+			col("component", artifact.Int, "", "driven component, 0 to 5"),
+			col("real", artifact.FloatList, "m", "ux, uy, uz of each node in turn"),
+			col("imaginary", artifact.FloatList, "m", "the same"),
+		)},
+	},
+}
+
+// AxisNames are the axes of the gyro in order of their index.
+var AxisNames = [3]string{"roll", "pitch", "yaw"}
+
+// ComponentNames are the force and moment components in order of their index.
+var ComponentNames = [6]string{"force x", "force y", "force z", "moment x", "moment y", "moment z"}
+
+// Response is the content of a response artifact; the descriptions of ResponseKind hold.
+type Response struct {
+	From, To, ModesTo  float64
+	Force, Moment      float64
+	Residual           bool
+	Thrust, BladeShare float64
+
+	Frequency   []float64
+	Density     [3][]float64
+	Uncorrected [3][]float64 // NaN when not computed
+	Sources     []ResponseSource
+	Transfer    []ResponseTransfer
+	Axes        []ResponseAxis
+	Peaks       []ResponsePeak
+	Modes       []ResponseMode
+	Rotors      []ResponseRotor
+	Lines       []ResponseLine
+	Shapes      []ResponseShape
+}
+
+// ResponseSource is the part of one rotor in the spectrum of one axis.
+type ResponseSource struct {
+	Rotor, Axis string
+	Density     []float64
+}
+
+// ResponseTransfer is one transfer function over the frequencies of the spectrum.
+type ResponseTransfer struct {
+	Rotor           string
+	Component       int
+	Axis            string
+	Real, Imaginary []float64
+}
+
+// ResponseAxis sums up one axis.
+type ResponseAxis struct {
+	Axis                          string
+	RMS, Correction, CorrectionAt float64
+}
+
+// ResponsePeak is one peak of one axis.
+type ResponsePeak struct {
+	Axis                           string
+	Frequency, Density, Prominence float64
+	Damping                        float64
+	Modes                          []int
+	Shares                         []float64
+	Rigid, Residual, Uncorrected   float64
+	Rotor                          string
+	Component                      int
+	ComponentShare                 float64
+	Losses                         []string
+	LossShares                     []float64
+}
+
+// ResponseMode is one elastic mode of the basis.
+type ResponseMode struct {
+	Number             int
+	Frequency, Damping float64
+}
+
+// ResponseRotor is one rotor.
+type ResponseRotor struct {
+	Rotor          string
+	Blades         int
+	Hover, Highest float64
+}
+
+// ResponseLine is the answer to one rotor order at hover.
+type ResponseLine struct {
+	Source, Rotor           string
+	Order, Frequency, Force float64
+	Rate                    [3]float64
+}
+
+// ResponseShape is the motion of all nodes at one frequency.
+type ResponseShape struct {
+	Frequency       float64
+	Axis, Rotor     string
+	Component       int
+	Real, Imaginary []float64
+}
+
+// axisCols are three columns named after the axes.
+func axisCols(prefix, unit, about string) []artifact.Column {
+	var out []artifact.Column
+	for _, name := range AxisNames {
+		out = append(out, col(prefix+name, artifact.Float, unit, about))
+	}
+	return out
+}
+
+// EncodeResponse makes the artifact.
+func EncodeResponse(r *Response) *artifact.Artifact {
+	a := artifact.New(ResponseKind)
+	a.Scalars = map[string]any{
+		"from": r.From, "to": r.To, "modes_to": r.ModesTo, "force_density": r.Force, "moment_density": r.Moment,
+		"residual": r.Residual, "thrust": r.Thrust, "blade_share": r.BladeShare,
+	}
+	t := a.Table("spectrum").Set("frequency", r.Frequency)
+	for axis, name := range AxisNames {
+		t.Set(name, r.Density[axis]).Set("uncorrected_"+name, r.Uncorrected[axis])
+	}
+	a.Table("sources").
+		Set("rotor", list(r.Sources, func(x ResponseSource) string { return x.Rotor })).
+		Set("axis", list(r.Sources, func(x ResponseSource) string { return x.Axis })).
+		Set("density", list(r.Sources, func(x ResponseSource) []float64 { return x.Density }))
+	a.Table("transfer").
+		Set("rotor", list(r.Transfer, func(x ResponseTransfer) string { return x.Rotor })).
+		Set("component", list(r.Transfer, func(x ResponseTransfer) int64 { return int64(x.Component) })).
+		Set("axis", list(r.Transfer, func(x ResponseTransfer) string { return x.Axis })).
+		Set("real", list(r.Transfer, func(x ResponseTransfer) []float64 { return x.Real })).
+		Set("imaginary", list(r.Transfer, func(x ResponseTransfer) []float64 { return x.Imaginary }))
+	a.Table("axes").
+		Set("axis", list(r.Axes, func(x ResponseAxis) string { return x.Axis })).
+		Set("rms", list(r.Axes, func(x ResponseAxis) float64 { return x.RMS })).
+		Set("correction", list(r.Axes, func(x ResponseAxis) float64 { return x.Correction })).
+		Set("correction_at", list(r.Axes, func(x ResponseAxis) float64 { return x.CorrectionAt }))
+	setResponsePeaks(a.Table("peaks"), r.Peaks)
+	a.Table("modes").
+		Set("number", list(r.Modes, func(x ResponseMode) int64 { return int64(x.Number) })).
+		Set("frequency", list(r.Modes, func(x ResponseMode) float64 { return x.Frequency })).
+		Set("damping", list(r.Modes, func(x ResponseMode) float64 { return x.Damping }))
+	a.Table("rotors").
+		Set("rotor", list(r.Rotors, func(x ResponseRotor) string { return x.Rotor })).
+		Set("blades", list(r.Rotors, func(x ResponseRotor) int64 { return int64(x.Blades) })).
+		Set("hover", list(r.Rotors, func(x ResponseRotor) float64 { return x.Hover })).
+		Set("highest", list(r.Rotors, func(x ResponseRotor) float64 { return x.Highest }))
+	t = a.Table("lines").
+		Set("source", list(r.Lines, func(x ResponseLine) string { return x.Source })).
+		Set("rotor", list(r.Lines, func(x ResponseLine) string { return x.Rotor })).
+		Set("order", list(r.Lines, func(x ResponseLine) float64 { return x.Order })).
+		Set("frequency", list(r.Lines, func(x ResponseLine) float64 { return x.Frequency })).
+		Set("force", list(r.Lines, func(x ResponseLine) float64 { return x.Force }))
+	for axis, name := range AxisNames {
+		t.Set(name, list(r.Lines, func(x ResponseLine) float64 { return x.Rate[axis] }))
+	}
+	a.Table("shapes").
+		Set("frequency", list(r.Shapes, func(x ResponseShape) float64 { return x.Frequency })).
+		Set("axis", list(r.Shapes, func(x ResponseShape) string { return x.Axis })).
+		Set("rotor", list(r.Shapes, func(x ResponseShape) string { return x.Rotor })).
+		Set("component", list(r.Shapes, func(x ResponseShape) int64 { return int64(x.Component) })).
+		Set("real", list(r.Shapes, func(x ResponseShape) []float64 { return x.Real })).
+		Set("imaginary", list(r.Shapes, func(x ResponseShape) []float64 { return x.Imaginary }))
+	return a
+}
+
+func setResponsePeaks(t *artifact.Table, peaks []ResponsePeak) {
+	t.Set("axis", list(peaks, func(x ResponsePeak) string { return x.Axis })).
+		Set("frequency", list(peaks, func(x ResponsePeak) float64 { return x.Frequency })).
+		Set("density", list(peaks, func(x ResponsePeak) float64 { return x.Density })).
+		Set("prominence", list(peaks, func(x ResponsePeak) float64 { return x.Prominence })).
+		Set("damping", list(peaks, func(x ResponsePeak) float64 { return x.Damping })).
+		Set("modes", list(peaks, func(x ResponsePeak) []int64 { return ints(x.Modes) })).
+		Set("shares", list(peaks, func(x ResponsePeak) []float64 { return x.Shares })).
+		Set("rigid", list(peaks, func(x ResponsePeak) float64 { return x.Rigid })).
+		Set("residual", list(peaks, func(x ResponsePeak) float64 { return x.Residual })).
+		Set("uncorrected", list(peaks, func(x ResponsePeak) float64 { return x.Uncorrected })).
+		Set("rotor", list(peaks, func(x ResponsePeak) string { return x.Rotor })).
+		Set("component", list(peaks, func(x ResponsePeak) int64 { return int64(x.Component) })).
+		Set("component_share", list(peaks, func(x ResponsePeak) float64 { return x.ComponentShare })).
+		Set("losses", list(peaks, func(x ResponsePeak) []string { return x.Losses })).
+		Set("loss_shares", list(peaks, func(x ResponsePeak) []float64 { return x.LossShares }))
+}
+
+// DecodeResponse reads the artifact; the fault names what contradicts.
+func DecodeResponse(a *artifact.Artifact) (*Response, error) {
+	if a.Kind.Name != ResponseKind.Name {
+		return nil, fmt.Errorf("this is a %s artifact, not %s", a.Kind.Name, ResponseKind.Name)
+	}
+	r := &Response{
+		From: a.Float("from"), To: a.Float("to"), ModesTo: a.Float("modes_to"), Force: a.Float("force_density"),
+		Moment: a.Float("moment_density"), Residual: a.Truth("residual"), Thrust: a.Float("thrust"), BladeShare: a.Float("blade_share"),
+	}
+	t := a.Table("spectrum")
+	r.Frequency = t.Floats("frequency")
+	for axis, name := range AxisNames {
+		r.Density[axis], r.Uncorrected[axis] = t.Floats(name), t.Floats("uncorrected_"+name)
+	}
+	for k := 1; k < len(r.Frequency); k++ {
+		if !(r.Frequency[k] > r.Frequency[k-1]) {
+			return nil, malformed("response", "the frequencies of the spectrum do not ascend at row %d", k)
+		}
+	}
+	n := len(r.Frequency)
+	t = a.Table("sources")
+	for i := range t.Rows() {
+		x := ResponseSource{t.Texts("rotor")[i], t.Texts("axis")[i], t.FloatLists("density")[i]}
+		if len(x.Density) != n {
+			return nil, malformed("response", "the source of rotor %s has %d values over %d frequencies", x.Rotor, len(x.Density), n)
+		}
+		r.Sources = append(r.Sources, x)
+	}
+	t = a.Table("transfer")
+	for i := range t.Rows() {
+		x := ResponseTransfer{t.Texts("rotor")[i], int(t.Ints("component")[i]), t.Texts("axis")[i], t.FloatLists("real")[i], t.FloatLists("imaginary")[i]}
+		if len(x.Real) != n || len(x.Imaginary) != n {
+			return nil, malformed("response", "a transfer function of rotor %s has %d and %d values over %d frequencies", x.Rotor, len(x.Real), len(x.Imaginary), n)
+		}
+		if x.Component < 0 || x.Component > 5 {
+			return nil, malformed("response", "a transfer function of rotor %s is of component %d", x.Rotor, x.Component)
+		}
+		r.Transfer = append(r.Transfer, x)
+	}
+	t = a.Table("axes")
+	for i := range t.Rows() {
+		r.Axes = append(r.Axes, ResponseAxis{t.Texts("axis")[i], t.Floats("rms")[i], t.Floats("correction")[i], t.Floats("correction_at")[i]})
+	}
+	var err error
+	if r.Peaks, err = responsePeaks(a.Table("peaks")); err != nil {
+		return nil, err
+	}
+	t = a.Table("modes")
+	for i := range t.Rows() {
+		r.Modes = append(r.Modes, ResponseMode{int(t.Ints("number")[i]), t.Floats("frequency")[i], t.Floats("damping")[i]})
+	}
+	t = a.Table("rotors")
+	for i := range t.Rows() {
+		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i]})
+	}
+	t = a.Table("lines")
+	for i := range t.Rows() {
+		x := ResponseLine{Source: t.Texts("source")[i], Rotor: t.Texts("rotor")[i], Order: t.Floats("order")[i],
+			Frequency: t.Floats("frequency")[i], Force: t.Floats("force")[i]}
+		for axis, name := range AxisNames {
+			x.Rate[axis] = t.Floats(name)[i]
+		}
+		r.Lines = append(r.Lines, x)
+	}
+	t = a.Table("shapes")
+	for i := range t.Rows() {
+		x := ResponseShape{t.Floats("frequency")[i], t.Texts("axis")[i], t.Texts("rotor")[i], int(t.Ints("component")[i]), t.FloatLists("real")[i], t.FloatLists("imaginary")[i]}
+		if len(x.Real) != len(x.Imaginary) || len(x.Real)%3 != 0 {
+			return nil, malformed("response", "the shape at %g Hz has %d real and %d imaginary values", x.Frequency, len(x.Real), len(x.Imaginary))
+		}
+		r.Shapes = append(r.Shapes, x)
+	}
+	return r, nil
+}
+
+func responsePeaks(t *artifact.Table) ([]ResponsePeak, error) {
+	var out []ResponsePeak
+	for i := range t.Rows() {
+		x := ResponsePeak{
+			Axis: t.Texts("axis")[i], Frequency: t.Floats("frequency")[i], Density: t.Floats("density")[i], Prominence: t.Floats("prominence")[i],
+			Damping: t.Floats("damping")[i], Modes: narrow(t.IntLists("modes")[i]), Shares: t.FloatLists("shares")[i],
+			Rigid: t.Floats("rigid")[i], Residual: t.Floats("residual")[i], Uncorrected: t.Floats("uncorrected")[i],
+			Rotor: t.Texts("rotor")[i], Component: int(t.Ints("component")[i]), ComponentShare: t.Floats("component_share")[i],
+			Losses: t.TextLists("losses")[i], LossShares: t.FloatLists("loss_shares")[i],
+		}
+		if len(x.Modes) != len(x.Shares) || len(x.Losses) != len(x.LossShares) || x.Component < 0 || x.Component > 5 {
+			return nil, malformed("response", "the peak at %g Hz contradicts itself", x.Frequency)
+		}
+		out = append(out, x)
+	}
+	return out, nil
+}
