@@ -62,7 +62,7 @@ plate "arm_fl" {
   thickness = input.arm_thickness
   material  = "plate-carbon"
   at        = ["0 mm", "0 mm", input.plate_thickness]
-  turn      = "47.070180 deg" # towards the motor at 80, 86 mm
+  turn      = "47.070031 deg" # towards the motor at 80, 86 mm
 }
 
 copy "arm_fr" {

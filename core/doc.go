@@ -1,0 +1,25 @@
+// Package core is the house of Hushframe, in two wings that never import each
+// other.
+//
+// The pipeline wing (core/pipeline) knows jobs, plans, runs and artifacts, and
+// nothing of vibration:
+//
+//	quantity  text with units to SI and back
+//	fault     the error type, which crosses processes whole
+//	stage     the contract between the pipeline and one step
+//	artifact  typed, content-addressed tables, and the store
+//	job       HCL to a checked job
+//	plan      the order of steps
+//	run       driving a plan through an interface that plugins/host implements
+//
+// The kernel wing knows numbers and frames, and nothing of HCL, gRPC or files:
+//
+//	numeric    sparse storage, ordering, factors, block Lanczos
+//	mechanics  outline, airframe, laminate, mesh, element, assembly, modal, forced, rotor
+//	signal     windows, spectra, orders, recordings
+//	match      pairing of predicted and observed
+//	known      problems with known answers, for tests
+//
+// Stages stand between: artifacts in, kernels called, artifacts out. One job,
+// followed from file to report, is told in DEVELOPERS.md.
+package core

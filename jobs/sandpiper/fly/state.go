@@ -1,0 +1,251 @@
+package main
+
+import (
+	"math"
+	"math/cmplx"
+	"sort"
+
+	"gonum.org/v1/gonum/mat"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/modal"
+)
+
+// plant is the truth in modal coordinates: q″ + (C + G) q′ + Λ q = Bᵀ f, with
+// viscous damping C, gyroscopic coupling G of the rotors at hover speed and
+// stiffness Λ = diag ω². Outputs are the three rates of the gyro.
+type plant struct {
+	n      int // modal coordinates
+	rigid  int // the first ones are rigid-body motions
+	a      *mat.Dense
+	b      *mat.Dense   // 2n × inputs: six components at each rotor
+	gyro   *mat.Dense   // 3 × n, rad/s per unit modal velocity
+	omega  []float64    // rad/s
+	sites  []modal.Site // rotors
+	radius []float64
+}
+
+// rateLoop is the bandwidth to which the control loop damps rigid rotation,
+// and hold the one of rigid translation (drag and pilot), Hz.
+const (
+	rateLoop = 18.0
+	hold     = 0.3
+)
+
+// newPlant builds the equations. Hysteretic losses Σ η_g K_g become the
+// equivalent viscous ones C_ij = Σ η_g (K_g)_ij / √(ω_i ω_j), which take the
+// same energy per cycle at the resonance of each mode: a time simulation
+// cannot be hysteretic and causal at once.
+func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) *plant {
+	var keep []int
+	rigid := 0
+	for v, k := range b.Kinds {
+		switch {
+		case k == modal.RigidBody:
+			keep = append(keep, v)
+			rigid++
+		case k == modal.Elastic && b.Frequency[v] <= upTo:
+			keep = append(keep, v)
+		}
+	}
+	n := len(keep)
+	pl := &plant{n: n, rigid: rigid, omega: make([]float64, n)}
+	for i, v := range keep {
+		pl.omega[i] = 2 * math.Pi * b.Frequency[v]
+	}
+	for i := range rigid {
+		pl.omega[i] = 0
+	}
+
+	var gyro modal.Site
+	for _, s := range b.Sites {
+		switch s.Kind {
+		case "gyro":
+			gyro = s
+		case "rotor":
+			pl.sites = append(pl.sites, s)
+		}
+	}
+	pl.gyro = mat.NewDense(3, n, nil)
+	for i, v := range keep {
+		for d := range 3 {
+			pl.gyro.Set(d, i, gyro.Motion[v][3+d])
+		}
+	}
+
+	damp := mat.NewDense(n, n, nil)
+	total := len(b.Kinds)
+	for _, g := range b.Groups {
+		eta := g.LossFactor + p.Floor
+		for i := rigid; i < n; i++ {
+			for j := rigid; j < n; j++ {
+				damp.Set(i, j, damp.At(i, j)+eta*g.Stiffness[keep[i]*total+keep[j]]/math.Sqrt(pl.omega[i]*pl.omega[j]))
+			}
+		}
+	}
+	pl.holdRigid(damp, gyro, keep)
+	pl.spin(damp, p, keep)
+
+	pl.a = mat.NewDense(2*n, 2*n, nil)
+	for i := range n {
+		pl.a.Set(i, n+i, 1)
+		pl.a.Set(n+i, i, -pl.omega[i]*pl.omega[i])
+		for j := range n {
+			pl.a.Set(n+i, n+j, -damp.At(i, j))
+		}
+	}
+	pl.b = mat.NewDense(2*n, 6*len(pl.sites), nil)
+	for r, s := range pl.sites {
+		for c := range 6 {
+			for i, v := range keep {
+				pl.b.Set(n+i, 6*r+c, s.Motion[v][c])
+			}
+		}
+	}
+	return pl
+}
+
+// holdRigid damps the rigid-body motions: rotation to the bandwidth of the
+// rate loop, translation to that of drag and pilot. The rotation of a
+// mass-normalised rigid vector at the gyro tells which it is.
+func (pl *plant) holdRigid(damp *mat.Dense, gyro modal.Site, keep []int) {
+	var most float64
+	turn := make([]float64, pl.rigid)
+	for i := range pl.rigid {
+		m := gyro.Motion[keep[i]]
+		turn[i] = math.Hypot(math.Hypot(m[3], m[4]), m[5])
+		most = math.Max(most, turn[i])
+	}
+	for i := range pl.rigid {
+		f := hold
+		if turn[i] > 1e-3*most {
+			f = rateLoop
+		}
+		damp.Set(i, i, 2*math.Pi*f)
+	}
+}
+
+// spin adds the gyroscopic matrix of each rotor with angular momentum
+// H = Jp Ω along its axis: the structure feels the moment −θ′ × H.
+func (pl *plant) spin(damp *mat.Dense, p *airframe.Properties, keep []int) {
+	for _, s := range pl.sites {
+		for _, r := range p.Rotors {
+			if r.Name != s.Name {
+				continue
+			}
+			h := r.PolarInertia * r.HoverSpeed * float64(r.Spin)
+			hv := airframe.Vec{h * r.Axis[0], h * r.Axis[1], h * r.Axis[2]}
+			for j, w := range keep {
+				t := s.Motion[w]
+				moment := airframe.Vec{t[4]*hv[2] - t[5]*hv[1], t[5]*hv[0] - t[3]*hv[2], t[3]*hv[1] - t[4]*hv[0]}
+				for i, v := range keep {
+					m := s.Motion[v]
+					damp.Set(i, j, damp.At(i, j)+m[3]*moment[0]+m[4]*moment[1]+m[5]*moment[2])
+				}
+			}
+		}
+	}
+}
+
+// trueMode is one mode of the truth at hover speed.
+type trueMode struct {
+	Frequency float64    `json:"frequency_hz"`
+	Damping   float64    `json:"damping_ratio"`
+	Direction [3]float64 `json:"gyro_direction_roll_pitch_yaw"`
+	// Strength is the peak gyro rate of this mode alone per newton, root sum
+	// of squares over unit forces in three directions at all rotor hubs.
+	Strength float64 `json:"gyro_strength_deg_s_per_n"`
+}
+
+// modes gives the elastic modes of the plant from the eigenvalues of its state
+// matrix, by ascending frequency. The gyro direction is the unit vector along
+// which the complex rotation of the gyro is largest.
+func (pl *plant) modes() []trueMode {
+	var eig mat.Eigen
+	if !eig.Factorize(pl.a, mat.EigenBoth) {
+		panic("fly: the state matrix has no eigenvalues")
+	}
+	values := eig.Values(nil)
+	var right, left mat.CDense
+	eig.VectorsTo(&right)
+	eig.LeftVectorsTo(&left)
+	var out []trueMode
+	for k, s := range values {
+		f := cmplx.Abs(s) / (2 * math.Pi)
+		if imag(s) <= 0 || f < 40 {
+			continue
+		}
+		var rate [3]complex128
+		for d := range 3 {
+			for i := range pl.n {
+				rate[d] += complex(pl.gyro.At(d, i), 0) * right.At(pl.n+i, k)
+			}
+		}
+		m := trueMode{Frequency: f, Damping: -real(s) / cmplx.Abs(s), Direction: direction(rate)}
+		// Residue: rate · (leftᴴ b) / (leftᴴ right), divided by the decay rate.
+		var norm complex128
+		for i := range 2 * pl.n {
+			norm += cmplx.Conj(left.At(i, k)) * right.At(i, k)
+		}
+		var sum float64
+		for r := range pl.sites {
+			for c := range 3 {
+				var in complex128
+				for i := range pl.n {
+					in += cmplx.Conj(left.At(pl.n+i, k)) * complex(pl.b.At(pl.n+i, 6*r+c), 0)
+				}
+				for d := range 3 {
+					h := cmplx.Abs(rate[d] * in / norm / complex(real(s), 0))
+					sum += h * h
+				}
+			}
+		}
+		m.Strength = math.Sqrt(sum) * 180 / math.Pi
+		out = append(out, m)
+	}
+	sort.Slice(out, func(i, j int) bool { return out[i].Frequency < out[j].Frequency })
+	return out
+}
+
+// direction turns a complex vector to the phase at which its real part is
+// longest and gives that as a unit vector, largest component positive.
+func direction(v [3]complex128) [3]float64 {
+	var sq complex128
+	for _, c := range v {
+		sq += c * c
+	}
+	turn := cmplx.Exp(complex(0, -cmplx.Phase(sq)/2))
+	var out [3]float64
+	var norm, most float64
+	for d, c := range v {
+		out[d] = real(c * turn)
+		norm = math.Hypot(norm, out[d])
+		if math.Abs(out[d]) > math.Abs(most) {
+			most = out[d]
+		}
+	}
+	if norm == 0 {
+		return out
+	}
+	for d := range out {
+		out[d] /= math.Copysign(norm, most)
+	}
+	return out
+}
+
+// discretise gives the exact step matrices for inputs held over dt.
+func (pl *plant) discretise(dt float64) (ad, bd *mat.Dense) {
+	s, m := 2*pl.n, pl.b.RawMatrix().Cols
+	block := mat.NewDense(s+m, s+m, nil)
+	for i := range s {
+		for j := range s {
+			block.Set(i, j, pl.a.At(i, j)*dt)
+		}
+		for j := range m {
+			block.Set(i, s+j, pl.b.At(i, j)*dt)
+		}
+	}
+	var e mat.Dense
+	e.Exp(block)
+	return mat.DenseCopyOf(e.Slice(0, s, 0, s)), mat.DenseCopyOf(e.Slice(0, s, s, s+m))
+}
