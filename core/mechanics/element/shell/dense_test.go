@@ -158,6 +158,17 @@ func eachType(t *testing.T, run func(t *testing.T, kind element.Type)) {
 	}
 }
 
+func byName(t *testing.T, name string) element.Type {
+	t.Helper()
+	for _, kind := range shell.Types() {
+		if kind.Describe().Name == name {
+			return kind
+		}
+	}
+	t.Fatalf("no element type %s", name)
+	return nil
+}
+
 func isotropic(t *testing.T, e, nu, thickness float64) laminate.Section {
 	t.Helper()
 	s, err := laminate.Homogeneous(laminate.Isotropic(e, nu, 1000), thickness, 0)

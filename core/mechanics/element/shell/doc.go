@@ -34,7 +34,8 @@
 //
 // # Drilling
 //
-// θ_z is held to the in-plane rotation by ½ ∫ drilling·A_66 (θ_z - ½(v,x - u,y))² dA, which is zero in
+// θ_z is held to the in-plane rotation by ½ ∫ c (θ_z - ½(v,x - u,y))² dA, c a small share of the
+// in-plane shear stiffness, which is zero in
 // every rigid motion (T. J. R. Hughes and F. Brezzi, On drilling degrees of freedom, Comput. Methods
 // Appl. Mech. Eng. 72, 1989). It has no mass.
 //

@@ -26,6 +26,7 @@ func (k *kernel) energies(s *laminate.Section, motion, out []float64) {
 	}
 	clear(out)
 	defl, fibre := k.deflStart(), k.fibreStart()
+	drill := drillingStiffness(s)
 	for p := range k.f.points {
 		var eps, kap [3]float64
 		spin := 0.0
@@ -62,7 +63,7 @@ func (k *kernel) energies(s *laminate.Section, motion, out []float64) {
 				out[element.Twist] += w * moment * kap[i]
 			}
 		}
-		out[element.InPlane] += w * drilling * s.A[2][2] * spin * spin
+		out[element.InPlane] += w * drill * spin * spin
 		for i := range 2 {
 			out[element.Shear] += w * gam[i] * (s.Shear[i][0]*gam[0] + s.Shear[i][1]*gam[1])
 		}

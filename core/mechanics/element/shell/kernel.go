@@ -7,9 +7,14 @@ import (
 	"hushframe/core/mechanics/laminate"
 )
 
-// drilling is the stiffness of the drilling penalty as a share of A_66. It decides nothing but how
-// loosely θ_z follows the in-plane rotation; a hundredfold change moves no frequency by 0.01 %.
+// drilling is the stiffness of the drilling penalty as a share of the mean in-plane shear stiffness.
+// It decides nothing but how loosely θ_z follows the in-plane rotation.
 const drilling = 1e-4
+
+// drillingStiffness is drilling times the mean of A_66 over all directions of the axes.
+func drillingStiffness(s *laminate.Section) float64 {
+	return drilling * (s.A[0][0] + s.A[1][1] - 2*s.A[0][1] + 4*s.A[2][2]) / 8
+}
 
 // flat is how far nodes may lie off the common plane, as a share of the longest side.
 const flat = 1e-6
@@ -134,6 +139,7 @@ func (k *kernel) stiffness(s *laminate.Section) {
 	}
 	k.drill, k.drillPlane = [maxNodes][maxNodes]float64{}, [maxNodes][2 * maxNodes]float64{}
 	fibre, defl, coupled := k.fibreStart(), k.deflStart(), !s.Uncoupled()
+	drill := drillingStiffness(s)
 	for p := range k.f.points {
 		w := k.area[p]
 		gx, gy := &k.gx[p], &k.gy[p]
@@ -162,7 +168,7 @@ func (k *kernel) stiffness(s *laminate.Section) {
 				k.k[defl+i][defl+j] += sx[i]*qx + sy[i]*qy
 			}
 		}
-		k.addDrilling(p, w*drilling*s.A[2][2])
+		k.addDrilling(p, w*drill)
 	}
 	k.condense()
 }
