@@ -8,7 +8,8 @@ import (
 
 // TestWings holds the direction of imports: cmd and jobs over stages and
 // plugins over core, the wings of core apart, and HCL, gRPC and file formats
-// where they belong.
+// where they belong. core/known reads the reference rows for tests, and so is
+// the one kernel package that opens files.
 func TestWings(t *testing.T) {
 	out, err := exec.Command("go", "list", "-f", `{{.ImportPath}}{{range .Imports}} {{.}}{{end}}`, "hushframe/...").Output()
 	if err != nil {
@@ -50,7 +51,7 @@ func TestWings(t *testing.T) {
 				forbidden = "gRPC belongs to the boundary"
 			case under(to, "github.com/apache/arrow-go") && !under(from, pipeline+"artifact", "hushframe/plugins"):
 				forbidden = "Arrow belongs to artifact"
-			case kernel(from) && (to == "os" || to == "net" || to == "net/http"):
+			case kernel(from) && from != "hushframe/core/known" && (to == "os" || to == "net" || to == "net/http"):
 				forbidden = "kernels touch no files"
 			case under(from, pipeline+"stage") && !strings.HasPrefix(to, pipeline+"fault") && strings.Contains(strings.SplitN(to, "/", 2)[0], "."):
 				forbidden = "the stage contract imports only the standard library and fault"
