@@ -33,6 +33,10 @@ func TestWidening(t *testing.T) {
 			if math.Abs(got.place-centre-off) > 0.01 {
 				t.Errorf("half-width %g, off by %g: place off by %.4f bins", gamma, off, got.place-centre-off)
 			}
+			found := Find(p, 1, Settings{Freedom: 1e4, Resolution: 1.5, BinCorrelation: 35.0 / 18})
+			if len(found) != 1 || math.Abs(found[0].Damping*found[0].Frequency-gamma) > 0.03*gamma {
+				t.Errorf("half-width %g, off by %g: %+v", gamma, off, found)
+			}
 		}
 	}
 }

@@ -63,6 +63,39 @@ func TestFlatTopReadsAmplitude(t *testing.T) {
 	}
 }
 
+// The flat-top window as published: noise bandwidth 3.7702 bins, scalloping 0.01 dB (values from memory).
+func TestFlatTopFigures(t *testing.T) {
+	if got := FlatTop.NoiseBandwidth(512); math.Abs(got-3.7702) > 1e-4 {
+		t.Errorf("noise bandwidth %g", got)
+	}
+	if got := FlatTop.ScallopingLoss(512); math.Abs(got) > 0.011 {
+		t.Errorf("scalloping %g dB", got)
+	}
+}
+
+// The cross spectrum of a signal with itself is its power at every bin, the ends among them.
+func TestCrossOfItself(t *testing.T) {
+	for _, n := range []int{64, 65} {
+		x, s := [][]float64{gauss(2, 1000)}, Settings{Rate: 100, Segment: n, Overlap: 32, Detrend: DetrendNone}
+		p, err := Welch(x, s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		c, err := CrossSpectrum(x, x, s)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for k, v := range p.Values {
+			if math.Abs(c.XX[k]-v)+math.Abs(c.YY[k]-v)+math.Abs(real(c.XY[k])-v)+math.Abs(imag(c.XY[k])) > 1e-12*v {
+				t.Errorf("bin %d: %g, %g, %g, want %g", k, c.XX[k], c.YY[k], c.XY[k], v)
+			}
+			if math.Abs(c.Coherence()[k]-1) > 1e-12 {
+				t.Errorf("bin %d: coherence %g", k, c.Coherence()[k])
+			}
+		}
+	}
+}
+
 // The interval must hold the true density as often as it says. White noise of unit variance has the density 2/fs.
 func TestBoundsHoldTheTruth(t *testing.T) {
 	s := Settings{Rate: 2, Segment: 64, Overlap: 32}
