@@ -10,6 +10,8 @@ import (
 	"fmt"
 	"os"
 	"path/filepath"
+
+	"hushframe/jobs/drawing"
 )
 
 func main() {
@@ -17,22 +19,8 @@ func main() {
 	if len(os.Args) > 1 {
 		folder = os.Args[1]
 	}
-	if err := write(folder); err != nil {
+	if err := drawing.WriteAll(folder, drawings()...); err != nil {
 		fmt.Fprintln(os.Stderr, "draw:", err)
 		os.Exit(1)
 	}
-}
-
-// write puts every drawing of the frame into the folder.
-func write(folder string) error {
-	if err := os.MkdirAll(folder, 0o755); err != nil {
-		return err
-	}
-	for _, d := range drawings() {
-		if err := os.WriteFile(filepath.Join(folder, d.name+".dxf"), d.bytes(), 0o644); err != nil {
-			return err
-		}
-		fmt.Printf("%s.dxf: %d entities\n", d.name, d.count)
-	}
-	return nil
 }
