@@ -138,7 +138,7 @@ func top() *drawing.Drawing {
 		}
 	}
 	// Strap slots beside the battery, and one lightening hole at each end.
-	for _, x := range []float64at(-30, 12) {
+	for _, x := range []float64{-30, 12} {
 		d.Slot("cut", at(x, 15.5), 16, 3, false)
 		d.Slot("cut", at(x, -15.5), 16, 3, false)
 	}
