@@ -105,7 +105,7 @@ func EncodeLog(level stage.Level, text string, fields []any) *Log {
 	return l
 }
 
-// Fields gives the fields of a log line as names and values by turns.
+// Pairs gives the fields of a log line as names and values by turns.
 func (l *Log) Pairs() []any {
 	var out []any
 	for _, f := range l.GetFields() {
@@ -138,4 +138,13 @@ func DecodeEach[T any](list [][]byte) ([]T, error) {
 		out = append(out, v)
 	}
 	return out, nil
+}
+
+// DecodeRequest reads the request of a relayed call.
+func DecodeRequest(data []byte) (stage.ExtensionRequest, error) {
+	var r stage.ExtensionRequest
+	if err := json.Unmarshal(data, &r); err != nil {
+		return r, fault.New(fault.Protocol, "the request cannot be read: %v", err)
+	}
+	return r, nil
 }

@@ -192,3 +192,16 @@ func finite(z []complex128) bool {
 	}
 	return true
 }
+
+// Respond gives the complex gyro rate per axis, rad/s, at Frequency[k] under
+// coherent loads: load gives the complex amplitude of each input, N or N·m.
+func (t *Transfer) Respond(k int, load func(Input) complex128) [3]complex128 {
+	var out [3]complex128
+	for j, in := range t.Inputs {
+		f := load(in)
+		for axis := range out {
+			out[axis] += t.Rate[axis][j][k] * f
+		}
+	}
+	return out
+}

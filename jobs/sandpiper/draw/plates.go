@@ -37,7 +37,7 @@ var (
 	stackHoles = []drawing.Point{at(42, 10), at(42, -10), at(62, 10), at(62, -10)}
 )
 
-func mirrored(p drawing.Point) []drawing.Point { return []drawing.Point{p, {p.X, -p.Y}} }
+func mirrored(p drawing.Point) []drawing.Point { return []drawing.Point{p, at(p.X, -p.Y)} }
 
 // sandwichBolts lists the places of the eight bolts that hold the arms.
 func sandwichBolts() []drawing.Point {
