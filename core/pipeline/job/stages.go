@@ -280,7 +280,7 @@ func (s *Stage) Evaluate(figures Figures) (stage.Arguments, map[string][]Artifac
 		x := d.decode(v, atExpr(spec.Name, a.expr), spec, spec.Type)
 		diags = append(diags, d.diags...)
 		if d.pending || d.diags.HasErrors() {
-			if len(needed) == len(s.Figures) && d.pending && !d.diags.HasErrors() {
+			if len(needed) == len(s.Figures) && d.pending && !d.diags.HasErrors() && s.sound() {
 				diags = append(diags, &hcl.Diagnostic{
 					Severity: hcl.DiagError, Summary: "No value",
 					Detail:  sentence(spec.Name + " has no value although every figure it uses is known"),
@@ -296,6 +296,16 @@ func (s *Stage) Evaluate(figures Figures) (stage.Arguments, map[string][]Artifac
 		arguments[spec.Name] = x
 	}
 	return arguments, inputs, diags
+}
+
+// sound reports whether every stage it refers to could be described.
+func (s *Stage) sound() bool {
+	for _, u := range s.uses {
+		if st, ok := s.scope.stages[u.label]; !ok || !st.described {
+			return false
+		}
+	}
+	return true
 }
 
 func takesArtifacts(t stage.Type) bool {
