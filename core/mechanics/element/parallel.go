@@ -6,13 +6,10 @@ import (
 	"sync/atomic"
 )
 
-// chunk is the number of elements that a goroutine takes at once.
-const chunk = 64
-
 // Each calls work(scratch, e) for e from 0 to count-1 on up to threads goroutines, each with its own
-// scratch from start. Calls must write only what belongs to e, so that the result does not depend on
+// scratch from start and taking chunk calls at a time. Calls must write only what belongs to e, so that the result does not depend on
 // threads. The error of the lowest failing e is returned; the context is looked at between chunks.
-func Each[S any](ctx context.Context, count, threads int, start func() S, work func(scratch S, e int) error) error {
+func Each[S any](ctx context.Context, count, chunk, threads int, start func() S, work func(scratch S, e int) error) error {
 	chunks := (count + chunk - 1) / chunk
 	threads = max(1, min(threads, chunks))
 	var next atomic.Int64

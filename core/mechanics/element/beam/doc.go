@@ -10,6 +10,7 @@
 //	Φ                  12 EI/(GA L²), the shear parameter of one element
 //
 // The interpolation solves the static equations of the unloaded beam exactly, so that one element
-// is exact under end loads; it and the consistent mass with rotary inertia follow Z. Friedman and
-// J. B. Kosmatka, An improved two-node Timoshenko beam finite element, Comput. Struct. 47, 1993.
+// is exact under end loads; it and the consistent mass of bending with rotary inertia follow
+// Z. Friedman and J. B. Kosmatka, An improved two-node Timoshenko beam finite element, Comput. Struct.
+// 47, 1993. Stretching and torsion take the mean of consistent and lumped mass.
 package beam

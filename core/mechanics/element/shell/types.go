@@ -35,6 +35,9 @@ func LinearTriangle() element.Type {
 	}
 }
 
+// chunk is the number of elements a goroutine takes at once.
+const chunk = 64
+
 type triangle struct {
 	f           *formulation
 	description element.Description
@@ -47,7 +50,7 @@ func (t *triangle) Describe() element.Description { return t.description }
 func (t *triangle) Matrices(ctx context.Context, in *element.Batch, out *element.Matrices) error {
 	element.CheckShape(t.description, in, len(out.Stiffness), len(out.Mass))
 	xyz, packed := 3*t.description.Nodes, element.Packed(t.description.Unknowns())
-	return element.Each(ctx, in.Count(), in.Threads, t.kernel, func(k *kernel, e int) error {
+	return element.Each(ctx, in.Count(), chunk, in.Threads, t.kernel, func(k *kernel, e int) error {
 		nodes, section := in.Nodes[xyz*e:xyz*(e+1)], &in.Sections[in.Section[e]]
 		if reason := k.locate(nodes); reason != "" {
 			return &element.ShapeError{Element: e, Reason: reason}
@@ -69,7 +72,7 @@ func (t *triangle) Energies(ctx context.Context, in *element.Batch, motions, out
 	if len(motions) != count*unknowns*in.Count() || len(out) != count*element.Kinds*in.Count() {
 		panic("element: " + t.description.Name + ": motions and energies do not fit the batch")
 	}
-	return element.Each(ctx, in.Count(), in.Threads, t.kernel, func(k *kernel, e int) error {
+	return element.Each(ctx, in.Count(), chunk, in.Threads, t.kernel, func(k *kernel, e int) error {
 		section := &in.Sections[in.Section[e]]
 		if reason := k.locate(in.Nodes[xyz*e : xyz*(e+1)]); reason != "" {
 			return &element.ShapeError{Element: e, Reason: reason}

@@ -1,0 +1,106 @@
+package assembly
+
+// Expand writes the motion of every node under the unknowns y: six components per node, node by
+// node, in airframe axes. Unused nodes get zeros. It panics when lengths do not fit.
+func (s *System) Expand(dst, y []float64) {
+	l := s.layout
+	if len(y) != s.N || len(dst) != 6*len(l.nodes) {
+		panic("assembly: Expand: bad length")
+	}
+	bodies := s.bodyMotions(y)
+	for v := range l.nodes {
+		nd := &l.nodes[v]
+		var m [6]float64
+		if nd.body >= 0 {
+			m = nd.axes.in6(carried(bodies[nd.body], sub(l.problem.Nodes[v], l.bodies[nd.body].reference)))
+		}
+		for k := range 6 {
+			switch {
+			case nd.own[k] >= 0:
+				m[k] = y[nd.own[k]]
+			case !nd.slaved[k]:
+				m[k] = 0
+			}
+		}
+		m = nd.axes.out6(m)
+		copy(dst[6*v:], m[:])
+	}
+}
+
+func (s *System) bodyMotions(y []float64) [][6]float64 {
+	m := make([][6]float64, len(s.layout.bodies))
+	for b := range m {
+		m[b] = s.layout.bodyMotion(b, y)
+	}
+	return m
+}
+
+func (l *layout) bodyMotion(b int, y []float64) (m [6]float64) {
+	for _, c := range l.columns[b] {
+		for k := range 6 {
+			m[k] += c.motion[k] * y[c.unknown]
+		}
+	}
+	return m
+}
+
+// Motion returns the motion of the point at, fixed to body b of the problem, under the unknowns y.
+func (s *System) Motion(b int, at Vec, y []float64) [6]float64 {
+	mb := s.layout.bodyOf[b]
+	return carried(s.layout.bodyMotion(mb, y), sub(at, s.layout.bodies[mb].reference))
+}
+
+// Load adds to dst, over the unknowns, the force (N) and moment (N·m) about the point at that act on
+// body b of the problem: dst + Tᵀ f, so that the work of f is dst·y.
+func (s *System) Load(dst []float64, b int, at Vec, force [6]float64) {
+	mb := s.layout.bodyOf[b]
+	r := sub(at, s.layout.bodies[mb].reference)
+	for _, c := range s.layout.columns[mb] {
+		m := carried(c.motion, r)
+		for k := range 6 {
+			dst[c.unknown] += m[k] * force[k]
+		}
+	}
+}
+
+// LoadNodes adds to dst the forces and moments on nodes, six components per node in airframe axes.
+func (s *System) LoadNodes(dst, forces []float64) {
+	l := s.layout
+	if len(dst) != s.N || len(forces) != 6*len(l.nodes) {
+		panic("assembly: LoadNodes: bad length")
+	}
+	var columns []column
+	for v := range l.nodes {
+		f := l.nodes[v].axes.in6([6]float64(forces[6*v : 6*v+6]))
+		columns = l.nodeColumns(columns[:0], int32(v))
+		for _, c := range columns {
+			for k := range 6 {
+				dst[c.unknown] += c.motion[k] * f[k]
+			}
+		}
+	}
+}
+
+// Rigid returns the unknowns in six rigid motions about the centre of gravity: unit displacements (m)
+// along and unit rotations (rad) about the airframe axes. They are exact, without any solution.
+func (s *System) Rigid() [6][]float64 {
+	var all [6][]float64
+	for k := range 6 {
+		var unit [6]float64
+		unit[k] = 1
+		y := make([]float64, s.N)
+		for i, src := range s.layout.source {
+			m := carried(unit, sub(s.layout.where[i], s.Centre))
+			if src.node >= 0 {
+				m = s.layout.nodes[src.node].axes.in6(m)
+			}
+			y[i] = m[src.component]
+		}
+		all[k] = y
+	}
+	return all
+}
+
+// NodeUnknowns lists the unknowns of the six components of a node in its own axes, -1 for components
+// that are held or follow a body.
+func (s *System) NodeUnknowns(v int32) [6]int32 { return s.layout.nodes[v].own }
