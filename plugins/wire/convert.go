@@ -148,3 +148,12 @@ func DecodeRequest(data []byte) (stage.ExtensionRequest, error) {
 	}
 	return r, nil
 }
+
+// EncodeRequest gives the JSON form of a relayed call.
+func EncodeRequest(r stage.ExtensionRequest) ([]byte, error) {
+	data, err := json.Marshal(r)
+	if err != nil {
+		return nil, fault.New(fault.Internal, "the request cannot be sent: %v", err)
+	}
+	return data, nil
+}

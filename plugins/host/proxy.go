@@ -1,0 +1,127 @@
+package host
+
+import (
+	"context"
+	"encoding/json"
+	"errors"
+	"io"
+	"time"
+
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
+	"hushframe/plugins/wire"
+)
+
+// proxy is a stage in another process.
+type proxy struct {
+	host        *Host
+	description stage.Description
+	executable  Executable
+}
+
+var _ stage.Stage = (*proxy)(nil)
+
+// Describe gives what the stage said when it was found.
+func (x *proxy) Describe() stage.Description { return x.description }
+
+// Run runs one step in the process of the stage. When ctx ends, the step is
+// asked to end; if it does not within the grace, its process is killed.
+func (x *proxy) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) {
+	p, err := x.host.process(ctx, "stage "+x.description.Name, x.executable, x.description.Name)
+	if err != nil {
+		return nil, err
+	}
+	s := p.service.begin(ctx, call)
+	defer p.service.end(s)
+	request, err := wire.EncodeCall(s.id, x.description.Name, call)
+	if err != nil {
+		return nil, err
+	}
+	// The stream outlives ctx by the grace, so that the step can say how it ended.
+	stream, hangUp := context.WithCancel(context.WithoutCancel(ctx))
+	defer hangUp()
+	type result struct {
+		outcome *stage.Outcome
+		err     error
+	}
+	done := make(chan result, 1)
+	go func() {
+		o, err := p.run(stream, request, call)
+		done <- result{o, err}
+	}()
+	pulse := time.NewTicker(x.host.options.Silence / 2)
+	defer pulse.Stop()
+	for {
+		select {
+		case r := <-done:
+			return r.outcome, r.err
+		case <-pulse.C:
+			go func() {
+				if !p.answers(x.host.options.Silence) {
+					p.kill(fault.New(fault.Crash, "the process did not answer for %v and was killed", x.host.options.Silence).
+						In("run", p.label).With(p.printed.Last()))
+				}
+			}()
+		case <-ctx.Done():
+			return nil, x.cancel(ctx, p, s.id, func(grace time.Duration) bool {
+				select {
+				case <-done:
+					return true
+				case <-time.After(grace):
+					return false
+				}
+			})
+		}
+	}
+}
+
+// cancel asks a step to end and kills its process when it does not.
+func (x *proxy) cancel(ctx context.Context, p *process, id string, ends func(time.Duration) bool) error {
+	f := fault.From(ctx.Err()).In("run", p.label)
+	grace := x.host.options.Grace
+	ask, stop := context.WithTimeout(context.Background(), grace)
+	defer stop()
+	go func() { _, _ = p.rpc.Cancel(ask, &wire.CancelRequest{Call: id}) }()
+	if ends(grace) {
+		return f
+	}
+	p.kill(fault.New(fault.Cancelled, "the process was killed because another step in it did not end when asked to").In("run", p.label))
+	f.Text += "; the stage did not end within " + grace.String() + " and its process was killed"
+	return f
+}
+
+// run reads the events of one step to the last.
+func (p *process) run(ctx context.Context, request *wire.RunRequest, call *stage.Call) (*stage.Outcome, error) {
+	stream, err := p.rpc.Run(ctx, request)
+	if err != nil {
+		return nil, p.callFault(err)
+	}
+	for {
+		event, err := stream.Recv()
+		if errors.Is(err, io.EOF) {
+			return nil, fault.New(fault.Protocol, "the process ended the call without a result").In("run", p.label).With(p.printed.Last())
+		}
+		if err != nil {
+			return nil, p.callFault(err)
+		}
+		switch e := event.GetEvent().(type) {
+		case *wire.RunEvent_Progress:
+			call.Report.Progress(e.Progress.GetPhase(), e.Progress.GetFraction())
+		case *wire.RunEvent_Log:
+			call.Report.Log(stage.Level(e.Log.GetLevel()), e.Log.GetText(), e.Log.Pairs()...)
+		case *wire.RunEvent_Failed:
+			call.Files.Add(wire.DecodeFiles(e.Failed.GetFiles())...)
+			if err := wire.DecodeFault(e.Failed.GetFaultJson()); err != nil {
+				return nil, err
+			}
+			return nil, fault.New(fault.Protocol, "the process reported a failure without saying which").In("run", p.label)
+		case *wire.RunEvent_Finished:
+			call.Files.Add(wire.DecodeFiles(e.Finished.GetFiles())...)
+			o := &stage.Outcome{}
+			if err := json.Unmarshal(e.Finished.GetOutcomeJson(), o); err != nil {
+				return nil, fault.New(fault.Protocol, "the outcome cannot be read: %v", err).In("run", p.label)
+			}
+			return o, nil
+		}
+	}
+}

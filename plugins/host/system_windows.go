@@ -1,0 +1,15 @@
+package host
+
+import (
+	"os"
+	"syscall"
+)
+
+// processAttributes makes the process lead a group of its own, which a Ctrl-C
+// at the terminal does not reach.
+func processAttributes() *syscall.SysProcAttr {
+	return &syscall.SysProcAttr{CreationFlags: syscall.CREATE_NEW_PROCESS_GROUP}
+}
+
+// killGroup ends the process; what it started ends with its standard input.
+func killGroup(p *os.Process) { _ = p.Kill() }

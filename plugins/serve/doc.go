@@ -1,0 +1,98 @@
+// Package serve is what the main function of an extension calls:
+//
+//	func main() {
+//		serve.Stages(mystage.Stage{})
+//	}
+//
+// The executable then answers the host over the protocol of plugins/wire.
+// Started by hand it says what it is and ends with status 2.
+//
+// What serve takes care of, so that no author has to: the handshake and the
+// certificates; message sizes; progress at a bearable rate; standard output
+// and standard error, which go to the host's log; panics, which become faults;
+// cancellation, as the context of Run; and the end of the process when the
+// host goes away. Code that ignores its context is killed after a grace.
+package serve
+
+import (
+	"context"
+	"fmt"
+	"io"
+	"os"
+	"path/filepath"
+
+	hclog "github.com/hashicorp/go-hclog"
+	plugin "github.com/hashicorp/go-plugin"
+	"google.golang.org/grpc"
+
+	"hushframe/core/pipeline/stage"
+	"hushframe/plugins/wire"
+)
+
+// Tool is an element type or a recording reader from outside.
+type Tool interface {
+	// Describe names kind ("element" or "reader"), name and arguments.
+	Describe() stage.Extension
+	// Call runs one method on a batch: in and out are Arrow files.
+	Call(ctx context.Context, request stage.ExtensionRequest) error
+}
+
+// Offer is all that one executable offers.
+type Offer struct {
+	Stages []stage.Stage
+	Tools  []Tool
+}
+
+// Stages serves stages and ends the process.
+func Stages(stages ...stage.Stage) { Main(Offer{Stages: stages}) }
+
+// Tools serves element types and readers and ends the process.
+func Tools(tools ...Tool) { Main(Offer{Tools: tools}) }
+
+// Started reports whether a host started this process as an extension.
+func Started() bool {
+	h := wire.Handshake()
+	return os.Getenv(h.MagicCookieKey) == h.MagicCookieValue
+}
+
+// Main serves an offer and ends the process.
+func Main(offer Offer) {
+	if !Started() {
+		explain(os.Stderr, offer)
+		os.Exit(2)
+	}
+	if os.Getenv(wire.StdinEnv) == "1" {
+		go watch(os.Stdin, func() { os.Exit(3) })
+	}
+	plugin.Serve(&plugin.ServeConfig{
+		HandshakeConfig: wire.Handshake(),
+		Plugins:         plugin.PluginSet{wire.PluginName: &adapter{offer: offer}},
+		GRPCServer:      newServer,
+		Logger:          hclog.New(&hclog.LoggerOptions{Level: hclog.Error, Output: os.Stderr}),
+	})
+	os.Exit(0)
+}
+
+// explain is what a person sees who starts an extension by hand.
+func explain(w io.Writer, offer Offer) {
+	fmt.Fprintf(w, "%s is an extension for hushframe and does nothing on its own.\nIt offers", filepath.Base(os.Args[0]))
+	for _, s := range offer.Stages {
+		d := s.Describe()
+		fmt.Fprintf(w, "\n  the stage %q: %s", d.Name, d.About)
+	}
+	for _, t := range offer.Tools {
+		d := t.Describe()
+		fmt.Fprintf(w, "\n  the %s %q: %s", d.Kind, d.Name, d.About)
+	}
+	fmt.Fprint(w, "\nName it in a job, or put it in the folder of extensions.\n")
+}
+
+// watch calls gone when the pipe from the host ends.
+func watch(r io.Reader, gone func()) {
+	io.Copy(io.Discard, r)
+	gone()
+}
+
+func newServer(opts []grpc.ServerOption) *grpc.Server {
+	return grpc.NewServer(append(opts, grpc.MaxRecvMsgSize(wire.MessageLimit), grpc.MaxSendMsgSize(wire.MessageLimit))...)
+}
