@@ -86,6 +86,8 @@ type Batch struct {
 	Origin float64
 	// Values holds, per requested column, one value per row; NaN means that the row has no sample of that column.
 	Values [][]float64
+	// Notes are facts met on the way, such as an incomplete last row that was left out; as a rule in the last batch.
+	Notes []string
 }
 
 // Rows returns the number of rows of the batch.

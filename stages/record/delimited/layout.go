@@ -1,0 +1,376 @@
+package delimited
+
+import (
+	"bytes"
+	"fmt"
+	"strings"
+
+	"hushframe/core/pipeline/quantity"
+	"hushframe/core/signal/recording"
+)
+
+// layout is how the fields of a recording are found.
+type layout struct {
+	separator byte // blank means any number of blanks and tabs
+	point     byte // decimal mark
+	fields    int  // usual number of fields of a row
+	first     int  // line of the first row, from 0
+	names     []string
+	units     []string
+	text      []bool // fields that hold something else than numbers
+	named     bool   // the names are those of the recording
+}
+
+const blank = ' '
+
+var separatorNames = []struct {
+	name string
+	mark byte
+}{{"comma", ','}, {"semicolon", ';'}, {"tab", '\t'}, {"bar", '|'}, {"blank", blank}}
+
+// candidate is one way to cut the sample, with what it finds.
+type candidate struct {
+	separator, point byte
+	cells            [][][]byte // by line; nil for empty lines and comments
+	fields           int
+	numeric          []bool
+	valid            bool // some line is a row
+	score            int  // two for each number of a row, less one for each text
+}
+
+// guess finds the layout of a sample: the lines at the beginning of a recording, without their ends. separator is one of
+// separatorNames or 0 to try all. ok is false if no line holds a number.
+func guess(lines [][]byte, separator byte) (layout, bool) {
+	var best *candidate
+	for _, s := range separatorNames {
+		if separator != 0 && s.mark != separator {
+			continue
+		}
+		for _, point := range []byte{'.', ','} {
+			if point == s.mark {
+				continue
+			}
+			c := try(lines, s.mark, point)
+			if c.valid && (best == nil || c.score > best.score) {
+				best = &c
+			}
+		}
+	}
+	if best == nil {
+		return layout{}, false
+	}
+	return best.layout(lines)
+}
+
+func try(lines [][]byte, separator, point byte) candidate {
+	c := candidate{separator: separator, point: point, cells: make([][][]byte, len(lines))}
+	count := map[int]int{}
+	for i, line := range lines {
+		if skipped(line) {
+			continue
+		}
+		c.cells[i] = split(line, separator)
+		count[len(c.cells[i])]++
+	}
+	for n, lines := range count {
+		if lines > count[c.fields] || lines == count[c.fields] && n > c.fields {
+			c.fields = n
+		}
+	}
+	numbers, others := make([]int, c.fields), make([]int, c.fields)
+	for _, row := range c.cells {
+		if len(row) != c.fields {
+			continue
+		}
+		for j, cell := range row {
+			if class := classify(cell, point); class == number {
+				numbers[j]++
+			} else if class == other {
+				others[j]++
+			}
+		}
+	}
+	c.numeric = make([]bool, c.fields)
+	for j := range c.numeric {
+		c.numeric[j] = numbers[j] > others[j] || numbers[j] > 0 && numbers[j] == others[j]
+	}
+	for _, row := range c.cells {
+		found := c.numbers(row)
+		if found == 0 {
+			continue
+		}
+		c.valid = true
+		c.score += 2 * found
+		for j, cell := range row {
+			if !c.numeric[j] && classify(cell, point) == other {
+				c.score--
+			}
+		}
+	}
+	return c
+}
+
+// numbers counts the numbers in usual places of a row; 0 if the line is no row.
+func (c candidate) numbers(row [][]byte) int {
+	if len(row) != c.fields {
+		return 0
+	}
+	found, wrong := 0, 0
+	for j, cell := range row {
+		if !c.numeric[j] {
+			continue
+		}
+		switch classify(cell, c.point) {
+		case number:
+			found++
+		case other:
+			wrong++
+		}
+	}
+	if found <= wrong {
+		return 0
+	}
+	return found
+}
+
+func (c candidate) layout(lines [][]byte) (layout, bool) {
+	l := layout{separator: c.separator, point: c.point, fields: c.fields, first: -1}
+	for i, row := range c.cells {
+		if c.numbers(row) > 0 {
+			l.first = i
+			break
+		}
+	}
+	if l.first < 0 {
+		return layout{}, false
+	}
+	l.text = make([]bool, c.fields)
+	for j := range l.text {
+		l.text[j] = !c.numeric[j] && c.holdsText(l.first, j)
+	}
+	l.units = make([]string, c.fields)
+	above := l.above(lines, l.first)
+	if above >= 0 {
+		if units := l.cut(lines[above]); allUnits(units) {
+			if names := l.above(lines, above); names >= 0 {
+				l.units, above = units, names
+			}
+		}
+	}
+	if above >= 0 {
+		l.names, l.named = l.cut(lines[above]), true
+		for j, name := range l.names {
+			l.names[j] = name
+			if _, unit := bracketed(name); unit != "" {
+				l.units[j] = unit
+			}
+		}
+		return l, true
+	}
+	for j := range c.fields {
+		l.names = append(l.names, fmt.Sprintf("column %d", j+1))
+	}
+	return l, true
+}
+
+func (c candidate) holdsText(first, column int) bool {
+	for _, row := range c.cells[first:] {
+		if len(row) == c.fields && classify(row[column], c.point) == other {
+			return true
+		}
+	}
+	return false
+}
+
+// above returns the line with the names (or units) of the rows below that line, -1 for none: the last one with as many
+// fields. Free text ends the search; a comment is taken only if no plain line is.
+func (l layout) above(lines [][]byte, before int) int {
+	comment := -1
+	for i := before - 1; i >= 0; i-- {
+		fits := len(l.cut(lines[i])) == l.fields
+		switch {
+		case len(bytes.TrimSpace(lines[i])) == 0:
+		case !skipped(lines[i]):
+			if fits {
+				return i
+			}
+			return comment
+		case fits && comment < 0:
+			comment = i
+		}
+	}
+	return comment
+}
+
+// cut splits a line above the rows, without a comment mark.
+func (l layout) cut(line []byte) []string {
+	var out []string
+	for _, cell := range split(uncomment(line), l.separator) {
+		out = append(out, string(cell))
+	}
+	return out
+}
+
+func uncomment(line []byte) []byte {
+	line = bytes.TrimLeft(line, " \t")
+	for _, mark := range commentMarks {
+		if rest, ok := bytes.CutPrefix(line, []byte(mark)); ok {
+			return bytes.TrimLeft(rest, "#% \t")
+		}
+	}
+	return line
+}
+
+var commentMarks = []string{"#", "%", "//"}
+
+// skipped tells whether a line holds no row at all.
+func skipped(line []byte) bool {
+	line = bytes.TrimSpace(line)
+	return len(line) == 0 || line[0] == '#' || line[0] == '%' || line[0] == '/' && len(line) > 1 && line[1] == '/'
+}
+
+type class uint8
+
+const (
+	empty class = iota
+	number
+	other
+)
+
+func classify(cell []byte, point byte) class {
+	if missing(cell) {
+		return empty
+	}
+	if _, ok := parseDecimal(cell, point); ok {
+		return number
+	}
+	return other
+}
+
+// missing tells whether a field says that there is no sample.
+func missing(cell []byte) bool {
+	switch len(cell) {
+	case 0:
+		return true
+	case 2, 3, 4:
+		return cell[0]|0x20 == 'n' && (strings.EqualFold(string(cell), "nan") || strings.EqualFold(string(cell), "null") ||
+			strings.EqualFold(string(cell), "na"))
+	}
+	return false
+}
+
+// split cuts a line into fields without surrounding blanks and quotes. A separator within quotes does not count.
+func split(line []byte, separator byte) [][]byte {
+	var out [][]byte
+	rest := trimEnd(line)
+	for {
+		field, tail, more := next(rest, separator)
+		out = append(out, field)
+		if !more {
+			return out
+		}
+		rest = tail
+	}
+}
+
+// next takes one field off a line; more tells whether a separator followed.
+func next(line []byte, separator byte) (field, rest []byte, more bool) {
+	i := 0
+	for i < len(line) && (line[i] == ' ' || line[i] == '\t' && separator != '\t') {
+		i++
+	}
+	if i < len(line) && line[i] == '"' {
+		if end := bytes.IndexByte(line[i+1:], '"'); end >= 0 {
+			field = trim(line[i+1 : i+1+end])
+			i += end + 2
+			for i < len(line) && line[i] == ' ' {
+				i++
+			}
+			if i < len(line) && (line[i] == separator || separator == blank && line[i] == '\t') {
+				return field, line[i+1:], true
+			}
+			if separator == blank && i < len(line) {
+				return field, line[i:], true
+			}
+			return field, nil, false
+		}
+	}
+	start := i
+	if separator == blank {
+		for i < len(line) && line[i] != ' ' && line[i] != '\t' {
+			i++
+		}
+	} else if end := bytes.IndexByte(line[i:], separator); end >= 0 {
+		i += end
+	} else {
+		i = len(line)
+	}
+	if i == len(line) {
+		return trim(line[start:]), nil, false
+	}
+	return trim(line[start:i]), line[i+1:], true
+}
+
+func trim(cell []byte) []byte {
+	for len(cell) > 0 && (cell[0] == ' ' || cell[0] == '\t') {
+		cell = cell[1:]
+	}
+	return trimEnd(cell)
+}
+
+// trimEnd takes off blanks and line ends, but not tabs, which may separate empty fields.
+func trimEnd(line []byte) []byte {
+	for len(line) > 0 && (line[len(line)-1] == ' ' || line[len(line)-1] == '\r') {
+		line = line[:len(line)-1]
+	}
+	return line
+}
+
+// bracketed splits "gyro x [deg/s]" or "gyro x (deg/s)" into name and unit.
+func bracketed(name string) (plain, unit string) {
+	for _, pair := range []string{"[]", "()"} {
+		open := strings.LastIndexByte(name, pair[0])
+		if open > 0 && strings.HasSuffix(name, pair[1:]) {
+			return strings.TrimSpace(name[:open]), strings.TrimSpace(name[open+1 : len(name)-1])
+		}
+	}
+	return name, ""
+}
+
+// allUnits tells whether the fields of a line are units, or empty but not all of them.
+func allUnits(cells []string) bool {
+	some := false
+	for _, cell := range cells {
+		cell = strings.Trim(cell, "[]()")
+		if cell == "" {
+			continue
+		}
+		if _, err := quantity.ParseUnit(cell); err != nil {
+			return false
+		}
+		some = true
+	}
+	return some
+}
+
+func (l layout) header() recording.Header {
+	var h recording.Header
+	for j, name := range l.names {
+		if name == "" {
+			name = fmt.Sprintf("column %d", j+1)
+		}
+		h.Columns = append(h.Columns, recording.Column{Name: name, Unit: strings.Trim(l.units[j], "[]()"), Text: l.text[j]})
+	}
+	for _, s := range separatorNames {
+		if s.mark == l.separator && l.fields > 1 {
+			h.Notes = append(h.Notes, "fields are separated by "+s.name)
+		}
+	}
+	if l.point == ',' {
+		h.Notes = append(h.Notes, "numbers have a decimal comma")
+	}
+	if !l.named {
+		h.Notes = append(h.Notes, "there is no line of names; columns are called column 1, column 2 and so on")
+	}
+	return h
+}

@@ -1,0 +1,200 @@
+package delimited
+
+import (
+	"bufio"
+	"bytes"
+	"compress/gzip"
+	"context"
+	"errors"
+	"fmt"
+	"io"
+	"strings"
+
+	"hushframe/core/pipeline/nearest"
+	"hushframe/core/signal/recording"
+)
+
+// Reader reads delimited text. The zero value is ready.
+type Reader struct{}
+
+var _ recording.Reader = Reader{}
+
+const (
+	sampleSize = 64 << 10  // bytes from which the layout is guessed
+	blockSize  = 256 << 10 // bytes parsed at a time; no line may be longer
+	batchRows  = 4096
+)
+
+// Describe implements recording.Reader.
+func (Reader) Describe() recording.Description {
+	choices := []string{"auto"}
+	for _, s := range separatorNames {
+		choices = append(choices, s.name)
+	}
+	return recording.Description{
+		Name:  "delimited",
+		About: "text with one row per line, plain or gzip",
+		Options: []recording.Option{{
+			Name: "separator", About: "what stands between two fields; auto finds it", Choices: choices,
+		}},
+	}
+}
+
+// Inspect implements recording.Reader.
+func (Reader) Inspect(_ context.Context, source io.Reader, options map[string]string) (recording.Header, error) {
+	_, l, err := open(source, options)
+	if err != nil {
+		return recording.Header{}, err
+	}
+	return l.header(), nil
+}
+
+// open unpacks the source and guesses its layout; the returned reader is at the beginning of the text.
+func open(source io.Reader, options map[string]string) (*bufio.Reader, layout, error) {
+	separator, err := separatorOf(options)
+	if err != nil {
+		return nil, layout{}, err
+	}
+	text, err := unpack(source)
+	if err != nil {
+		return nil, layout{}, err
+	}
+	sample, err := text.Peek(sampleSize)
+	if err != nil && !errors.Is(err, io.EOF) {
+		return nil, layout{}, readError(err, int64(len(sample)))
+	}
+	if len(bytes.TrimSpace(sample)) == 0 {
+		return nil, layout{}, &recording.Error{Text: "the file is empty", Remedy: "give a recording with at least two rows of samples"}
+	}
+	if i := bytes.IndexByte(sample, 0); i >= 0 {
+		return nil, layout{}, &recording.Error{Byte: int64(i), Text: "this is not text: it holds a zero byte",
+			Remedy: "export the recording as comma-separated text in UTF-8, or name a reader for its format"}
+	}
+	if len(sample) == sampleSize {
+		if end := bytes.LastIndexByte(sample, '\n'); end >= 0 {
+			sample = sample[:end]
+		}
+	}
+	lines := bytes.Split(sample, []byte("\n"))
+	l, ok := guess(lines, separator)
+	if !ok {
+		return nil, layout{}, &recording.Error{Text: "no line holds numbers in columns",
+			Remedy: "give a recording with one row of numbers per line, and its separator if that is unusual"}
+	}
+	return text, l, nil
+}
+
+func separatorOf(options map[string]string) (byte, error) {
+	for name := range options {
+		if name != "separator" {
+			return 0, &recording.Error{Text: fmt.Sprintf("the reader has no option %q", name), Remedy: `its only option is "separator"`}
+		}
+	}
+	given := options["separator"]
+	if given == "" || given == "auto" {
+		return 0, nil
+	}
+	for _, s := range separatorNames {
+		if s.name == given {
+			return s.mark, nil
+		}
+	}
+	return 0, &recording.Error{Text: fmt.Sprintf("there is no separator %q", given), Remedy: "one of auto, comma, semicolon, tab, bar, blank"}
+}
+
+// unpack takes off gzip and a byte-order mark.
+func unpack(source io.Reader) (*bufio.Reader, error) {
+	raw := bufio.NewReaderSize(source, blockSize)
+	mark, err := raw.Peek(3)
+	if err != nil && !errors.Is(err, io.EOF) {
+		return nil, readError(err, 0)
+	}
+	switch {
+	case bytes.HasPrefix(mark, []byte{0x1f, 0x8b}):
+		unzipped, err := gzip.NewReader(raw)
+		if err != nil {
+			return nil, readError(err, 0)
+		}
+		raw = bufio.NewReaderSize(unzipped, blockSize)
+		mark, _ = raw.Peek(3)
+	case bytes.HasPrefix(mark, []byte{0xff, 0xfe}), bytes.HasPrefix(mark, []byte{0xfe, 0xff}):
+		return nil, &recording.Error{Text: "the text is in UTF-16", Remedy: "save it in UTF-8"}
+	}
+	if bytes.HasPrefix(mark, []byte{0xef, 0xbb, 0xbf}) {
+		raw.Discard(3)
+	}
+	return raw, nil
+}
+
+// readError explains why bytes end, after that many of them.
+func readError(err error, at int64) error {
+	switch {
+	case errors.Is(err, io.ErrUnexpectedEOF):
+		return &recording.Error{Byte: at, Text: "the compressed file ends in its middle",
+			Remedy: "copy it again from the recorder, or unpack what is there and give the text"}
+	case errors.Is(err, gzip.ErrChecksum), errors.Is(err, gzip.ErrHeader):
+		return &recording.Error{Byte: at, Text: "the compressed file is damaged", Remedy: "copy it again from the recorder"}
+	}
+	var corrupt interface{ Error() string }
+	if errors.As(err, &corrupt) && strings.HasPrefix(corrupt.Error(), "flate:") {
+		return &recording.Error{Byte: at, Text: "the compressed file is damaged", Remedy: "copy it again from the recorder"}
+	}
+	return &recording.Error{Byte: at, Text: err.Error(), Remedy: "check that the file can be read"}
+}
+
+// Read implements recording.Reader.
+func (Reader) Read(ctx context.Context, source io.Reader, request recording.Request, sink func(recording.Batch) error) error {
+	text, l, err := open(source, request.Options)
+	if err != nil {
+		return err
+	}
+	p, err := newParser(l, request)
+	if err != nil {
+		return err
+	}
+	if err := p.run(ctx, text, sink); err != nil {
+		return err
+	}
+	return p.finish(sink)
+}
+
+// Find returns the index of a column by its name, which may lack the unit in brackets and differ in case. -1 with an
+// error that names near columns.
+func Find(names []string, wanted string) (int, error) {
+	at, count := -1, 0
+	for pass := range 3 {
+		for i, name := range names {
+			plain, _ := bracketed(name)
+			if pass == 0 && name == wanted || pass == 1 && plain == wanted ||
+				pass == 2 && (strings.EqualFold(name, wanted) || strings.EqualFold(plain, wanted)) {
+				at = i
+				count++
+			}
+		}
+		if count == 1 {
+			return at, nil
+		}
+		if count > 1 {
+			return -1, &recording.Error{Column: wanted, Text: fmt.Sprintf("%d columns have this name", count),
+				Remedy: "give the columns of the file different names"}
+		}
+	}
+	remedy := "the columns are " + quoted(names)
+	if near := nearest.Name(wanted, names); near != "" {
+		remedy = fmt.Sprintf("did you mean %q? %s", near, remedy)
+	}
+	return -1, &recording.Error{Column: wanted, Text: "the recording has no such column", Remedy: remedy}
+}
+
+// quoted lists names, the first twenty of them.
+func quoted(names []string) string {
+	const most = 20
+	var out []string
+	for _, n := range names[:min(len(names), most)] {
+		out = append(out, fmt.Sprintf("%q", n))
+	}
+	if more := len(names) - most; more > 0 {
+		out = append(out, fmt.Sprintf("and %d more", more))
+	}
+	return strings.Join(out, ", ")
+}
