@@ -5,8 +5,8 @@ import (
 	"math"
 	"runtime"
 	"slices"
-	"sync"
-	"sync/atomic"
+
+	"hushframe/core/numeric/dense"
 )
 
 // Assembler adds element matrices into a sparse matrix. The pattern and the place of each element entry are found once,
@@ -165,7 +165,7 @@ func (a *Assembler) AddAll(threads int, compute func(e int, packed []float64)) {
 		base := a.elements[first]
 		scratch = slices.Grow(scratch[:0], a.elements[last]-base)[:a.elements[last]-base]
 		clear(scratch)
-		parallel(min(threads, last-first), last-first, func(k int) {
+		dense.Parallel(min(threads, last-first), last-first, func(k int) {
 			e := first + k
 			compute(e, scratch[a.elements[e]-base:a.elements[e+1]-base])
 		})
@@ -180,28 +180,4 @@ func (a *Assembler) Matrix() *Symmetric {
 	s := &Symmetric{N: a.pattern.N, Ptr: a.pattern.Ptr, Row: a.pattern.Row, Val: a.val}
 	a.val = make([]float64, len(a.val))
 	return s
-}
-
-// parallel calls work for 0 ≤ k < count from the given number of goroutines, each taking the next k when free.
-func parallel(threads, count int, work func(k int)) {
-	if threads <= 1 || count <= 1 {
-		for k := range count {
-			work(k)
-		}
-		return
-	}
-	var next atomic.Int64
-	var done sync.WaitGroup
-	for range min(threads, count) {
-		done.Go(func() {
-			for {
-				k := int(next.Add(1)) - 1
-				if k >= count {
-					return
-				}
-				work(k)
-			}
-		})
-	}
-	done.Wait()
 }

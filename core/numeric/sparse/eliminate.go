@@ -35,7 +35,7 @@ func (f *Factor) eliminate(a *Symmetric, threads int) error {
 	workers := max(1, min(threads, len(tasks.subtrees)))
 	failures := make([]failure, len(tasks.subtrees))
 	var next atomic.Int64
-	parallel(workers, workers, func(int) {
+	dense.Parallel(workers, workers, func(int) {
 		w := newWorker(len(f.d), 1)
 		for {
 			k := int(next.Add(1)) - 1
@@ -173,7 +173,7 @@ func (el *elimination) extendAdd(child *supernode, from update, l []float64, wid
 		strips = 1
 	}
 	size := (n + strips - 1) / max(strips, 1)
-	parallel(w.threads, strips, func(t int) {
+	dense.Parallel(w.threads, strips, func(t int) {
 		for i := t * size; i < min(n, (t+1)*size); i++ {
 			row := from[i*n:][:i+1]
 			target := l[int(to[i])*width:][:width]

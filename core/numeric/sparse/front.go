@@ -45,7 +45,7 @@ func (f *Factor) eliminateColumns(s int32, l []float64, w *worker) *PivotError {
 		weighed = w.weigh(f, first, k, l[k*width:], width, done)
 		start := k + done
 		strips := (m - start + stripRows - 1) / stripRows
-		parallel(w.threadsFor((m-start)*done*(k+done)), strips, func(t int) {
+		dense.Parallel(w.threadsFor((m-start)*done*(k+done)), strips, func(t int) {
 			i := start + t*stripRows
 			rows := min(stripRows, m-i)
 			block := l[i*width:]
@@ -139,7 +139,7 @@ func (f *Factor) reduceBelow(s int32, l []float64, up update, w *worker) {
 	weighed := w.weigh(f, int(node.first), width, rows, width, below)
 	strips := (below + stripRows - 1) / stripRows
 	// Later strips are longer; taking them first evens out the ends.
-	parallel(w.threadsFor(below*below*width), strips, func(t int) {
+	dense.Parallel(w.threadsFor(below*below*width), strips, func(t int) {
 		i := (strips - 1 - t) * stripRows
 		n := min(stripRows, below-i)
 		dense.SubMulT(n, i, width, rows[i*width:], width, weighed, width, up[i*below:], below)

@@ -18,7 +18,7 @@ func (f *Factor) SolveThreads(x []float64, nrhs, threads int) {
 		panic("sparse: Solve: bad length")
 	}
 	groups := (nrhs + lanes - 1) / lanes
-	parallel(threads, groups, func(g int) {
+	dense.Parallel(threads, groups, func(g int) {
 		count := min(lanes, nrhs-g*lanes)
 		f.solveGroup(x[g*lanes*n:][:count*n], count)
 	})

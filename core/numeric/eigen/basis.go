@@ -1,0 +1,174 @@
+package eigen
+
+import (
+	"math"
+	"time"
+
+	"hushframe/core/numeric/dense"
+)
+
+// basis is a set of M-orthonormal vectors, stored one after another.
+type basis struct {
+	p *pencil
+	n int
+	v []float64
+	// count vectors of v are in use.
+	count int
+	// negative is an unknown in a vector whose square in the norm of M came out negative, or -1.
+	negative int
+}
+
+func newBasis(p *pencil, room int) *basis {
+	return &basis{p: p, n: p.order(), v: make([]float64, room*p.order()), negative: -1}
+}
+
+func (b *basis) vectors() []float64 { return b.v[:b.count*b.n] }
+
+// negligible is the part of a vector that survives a projection only as rounding error.
+const negligible = 1e-13
+
+// append makes count vectors w orthogonal to the basis and to one another and appends what is left of them. It returns
+// the number kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
+// w = V·c + Q·r up to what is negligible. w is used as scratch.
+//
+// Projections are done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem), and once
+// more when the vectors of the block turn out to be nearly dependent.
+func (b *basis) append(w []float64, count int) (kept int, c, r []float64) {
+	began := time.Now()
+	defer func() { b.p.stats.OrthogonalSeconds += time.Since(began).Seconds() }()
+	n, old := b.n, b.count
+	c = make([]float64, old*count)
+	z := make([]float64, count*n)
+	b.p.mass(z, w, count)
+	before := make([]float64, count)
+	for i := range count {
+		before[i] = norm(w[i*n:][:n], z[i*n:][:n])
+		if b.negative < 0 {
+			b.negative = negativeAt(w[i*n:][:n], z[i*n:][:n])
+		}
+	}
+	b.project(w, z, count, c)
+	b.project(w, z, count, c)
+	keep, r, shrunk := gramSchmidt(w, z, count, n, before)
+	for pass := 0; shrunk && pass < 3; pass++ {
+		b.project(w, z, len(keep), make([]float64, old*len(keep)))
+		ones := make([]float64, len(keep))
+		for i := range ones {
+			ones[i] = 1
+		}
+		var again []int
+		var r2 []float64
+		again, r2, shrunk = gramSchmidt(w, z, len(keep), n, ones)
+		r = product(r2, r, len(again), len(keep), count)
+		keep = again
+	}
+	kept = len(keep)
+	copy(b.v[old*n:], w[:kept*n])
+	b.count += kept
+	return kept, c, r
+}
+
+// project subtracts from w its part in the basis, adds the coefficients to c and renews z = M·w.
+func (b *basis) project(w, z []float64, count int, c []float64) {
+	if b.count > 0 && count > 0 {
+		g := make([]float64, b.count*count)
+		dense.Gram(b.count, count, b.n, b.v, z, g, b.p.threads)
+		t := make([]float64, len(g))
+		for i := range b.count {
+			for j := range count {
+				c[i*count+j] += g[i*count+j]
+				t[j*b.count+i] = g[i*count+j]
+			}
+		}
+		dense.AddCombined(count, b.count, b.n, -1, t, b.v, w, b.p.threads)
+	}
+	b.p.mass(z, w, count)
+}
+
+// gramSchmidt makes vectors w (with z = M·w) M-orthonormal in place, moving those kept to the front. before are sizes
+// that the vectors once had, against which what is left of them is judged. It returns which were kept, the coefficients
+// r (kept by count), and whether some kept vector lost so much that its rounding errors matter.
+func gramSchmidt(w, z []float64, count, n int, before []float64) (keep []int, r []float64, shrunk bool) {
+	full := make([]float64, count*count)
+	for i := range count {
+		wi, zi := w[i*n:][:n], z[i*n:][:n]
+		start := norm(wi, zi)
+		for range 2 {
+			for k := range keep {
+				wk, zk := w[k*n:][:n], z[k*n:][:n]
+				s := inner(wk, zi)
+				full[k*count+i] += s
+				for p := range wi {
+					wi[p] -= s * wk[p]
+					zi[p] -= s * zk[p]
+				}
+			}
+		}
+		size := norm(wi, zi)
+		if !(size > negligible*before[i]) {
+			continue
+		}
+		if size < 1e-2*start || size < 1e-6*before[i] {
+			shrunk = true
+		}
+		k := len(keep)
+		full[k*count+i] = size
+		wk, zk := w[k*n:][:n], z[k*n:][:n]
+		for p := range wi {
+			wk[p], zk[p] = wi[p]/size, zi[p]/size
+		}
+		keep = append(keep, i)
+	}
+	return keep, full[:len(keep)*count], shrunk
+}
+
+// inner is the inner product, in four interleaved sums.
+func inner(x, y []float64) float64 {
+	var s0, s1, s2, s3 float64
+	y = y[:len(x)]
+	i := 0
+	for ; i+4 <= len(x); i += 4 {
+		s0 += x[i] * y[i]
+		s1 += x[i+1] * y[i+1]
+		s2 += x[i+2] * y[i+2]
+		s3 += x[i+3] * y[i+3]
+	}
+	for ; i < len(x); i++ {
+		s0 += x[i] * y[i]
+	}
+	return (s0 + s1) + (s2 + s3)
+}
+
+// norm is the length of x in the norm of M, given z = M·x.
+func norm(x, z []float64) float64 { return math.Sqrt(max(0, inner(x, z))) }
+
+// negativeAt returns -1 or, when the square of x in the norm of M (z = M·x) is negative by more than rounding, the
+// unknown with the most negative share.
+func negativeAt(x, z []float64) int {
+	sum, size, least, at := 0.0, 0.0, 0.0, -1
+	for i := range x {
+		v := x[i] * z[i]
+		sum += v
+		size += math.Abs(v)
+		if v < least {
+			least, at = v, i
+		}
+	}
+	if sum < -1e-8*size {
+		return at
+	}
+	return -1
+}
+
+// product returns a·b for a of m by k and b of k by n.
+func product(a, b []float64, m, k, n int) []float64 {
+	out := make([]float64, m*n)
+	for i := range m {
+		for p := range k {
+			for j := range n {
+				out[i*n+j] += a[i*k+p] * b[p*n+j]
+			}
+		}
+	}
+	return out
+}

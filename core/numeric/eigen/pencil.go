@@ -1,0 +1,191 @@
+package eigen
+
+import (
+	"context"
+	"errors"
+	"math"
+	"slices"
+	"time"
+
+	"hushframe/core/numeric/dense"
+	"hushframe/core/numeric/sparse"
+)
+
+// pencil holds the two matrices and the factorisation that make the operator A⁻¹M.
+type pencil struct {
+	k, m     *sparse.Symmetric
+	analysis *sparse.Analysis
+	factor   *sparse.Factor
+	shift    float64
+	threads  int
+	stats    *Stats
+}
+
+func (p *pencil) order() int { return p.k.N }
+
+// factorise returns the factorisation of K-sM.
+func (p *pencil) factorise(s float64) (*sparse.Factor, error) {
+	began := time.Now()
+	f, err := p.analysis.Factorise(sparse.Combine(1, p.k, -s, p.m), p.threads)
+	p.stats.Factorisations++
+	p.stats.FactorSeconds += time.Since(began).Seconds()
+	return f, err
+}
+
+// setShift makes the operator for σ < 0. It returns how many eigenvalues of A are not positive.
+func (p *pencil) setShift(sigma float64) (int, error) {
+	p.factor = nil // let the old one go before the new one is made
+	f, err := p.factorise(sigma)
+	if err != nil {
+		var pivot *sparse.PivotError
+		if errors.As(err, &pivot) {
+			return 0, &SingularError{Unknown: pivot.Unknown, Cause: err}
+		}
+		return 0, err
+	}
+	p.factor, p.shift = f, sigma
+	p.stats.Factor = f.Stats
+	neg, _, _ := f.Inertia()
+	return neg, nil
+}
+
+// mass computes y = M·x for count vectors.
+func (p *pencil) mass(y, x []float64, count int) { p.multiply(p.m, y, x, count) }
+
+func (p *pencil) multiply(a *sparse.Symmetric, y, x []float64, count int) {
+	const group = 4
+	n := p.order()
+	dense.Parallel(p.threads, (count+group-1)/group, func(g int) {
+		from, to := g*group*n, min((g+1)*group, count)*n
+		a.MulBlock(y[from:to], x[from:to], (to-from)/n)
+	})
+}
+
+// solve overwrites count vectors with A⁻¹ times them.
+func (p *pencil) solve(x []float64, count int) {
+	began := time.Now()
+	p.factor.SolveThreads(x[:count*p.order()], count, p.threads)
+	p.stats.Solves += count
+	p.stats.SolveSeconds += time.Since(began).Seconds()
+}
+
+// check looks for what makes a pencil senseless before any work is done.
+func (p *pencil) check() error {
+	for _, a := range []*sparse.Symmetric{p.k, p.m} {
+		if err := a.Check(); err != nil {
+			return err
+		}
+	}
+	for j, d := range p.m.Diagonal() {
+		if d < 0 {
+			return &IndefiniteError{Matrix: "M", Unknown: j, Detail: "its diagonal entry is negative"}
+		}
+	}
+	for j, d := range p.k.Diagonal() {
+		if d < 0 {
+			return &IndefiniteError{Matrix: "K", Unknown: j, Detail: "its diagonal entry is negative"}
+		}
+	}
+	return nil
+}
+
+// scale is the sum of the diagonal of K over that of M: a typical large λ, since the stiffest and heaviest unknowns
+// (displacements, not rotations) dominate both.
+func (p *pencil) scale() float64 {
+	k, m := 0.0, 0.0
+	for _, d := range p.k.Diagonal() {
+		k += d
+	}
+	for _, d := range p.m.Diagonal() {
+		m += d
+	}
+	if k == 0 || m == 0 {
+		return 0
+	}
+	return k / m
+}
+
+// count returns the number of eigenvalues below s, and whether the factorisation it comes from is good enough to be
+// believed: no pivot of doubtful sign, and a solve that gives back a known vector, so that the eigenvalues near s are
+// moved by much less than their distance from s.
+func (p *pencil) count(s float64) (int, bool, error) {
+	f, err := p.factorise(s)
+	if err != nil {
+		var pivot *sparse.PivotError
+		if errors.As(err, &pivot) {
+			return 0, false, nil
+		}
+		return 0, false, err
+	}
+	neg, zero, _ := f.Inertia()
+	n := p.order()
+	x, y := make([]float64, n), make([]float64, n)
+	fillRandom(x, 0x5eed)
+	p.k.MulVec(y, x)
+	z := make([]float64, n)
+	p.m.MulVec(z, x)
+	for i := range y {
+		y[i] -= s * z[i]
+	}
+	f.Solve(y, 1)
+	wrong, size := 0.0, 0.0
+	for i := range x {
+		wrong += (x[i] - y[i]) * (x[i] - y[i])
+		size += x[i] * x[i]
+	}
+	return neg, zero == 0 && wrong <= 1e-6*size, nil
+}
+
+// fillRandom fills with uniform numbers in (-1, 1) from a fixed generator (splitmix64; G. Steele, D. Lea, C. Flood, Fast
+// splittable pseudorandom number generators, OOPSLA 2014).
+func fillRandom(x []float64, seed uint64) {
+	for i := range x {
+		seed += 0x9e3779b97f4a7c15
+		z := seed
+		z = (z ^ z>>30) * 0xbf58476d1ce4e5b9
+		z = (z ^ z>>27) * 0x94d049bb133111eb
+		z ^= z >> 31
+		x[i] = float64(z>>11)/(1<<52) - 1
+	}
+}
+
+// normalise fixes the sign of a vector.
+func fixSign(x []float64) {
+	at := 0
+	for i, v := range x {
+		if math.Abs(v) > math.Abs(x[at]) {
+			at = i
+		}
+	}
+	if len(x) > 0 && x[at] < 0 {
+		for i := range x {
+			x[i] = -x[i]
+		}
+	}
+}
+
+// cancelled wraps the cause of a cancelled context.
+func cancelled(ctx context.Context) error {
+	if ctx.Err() == nil {
+		return nil
+	}
+	return context.Cause(ctx)
+}
+
+// byRisingValue returns the indices that sort values upwards, ties by index.
+func byRisingValue(values []float64) []int {
+	order := make([]int, len(values))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(a, b int) int {
+		switch {
+		case values[a] < values[b]:
+			return -1
+		case values[a] > values[b]:
+			return 1
+		}
+		return 0
+	})
+	return order
+}

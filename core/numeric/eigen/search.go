@@ -1,0 +1,244 @@
+package eigen
+
+import (
+	"context"
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+
+	"hushframe/core/numeric/dense"
+)
+
+// pair is a candidate eigenpair of the operator: θ and its vector's place in a basis.
+type pair struct {
+	theta    float64
+	residual float64 // estimate of ‖A⁻¹Mx-θx‖ in the norm of M
+	at       int     // column of the rotation, or number of the locked vector
+	locked   bool
+}
+
+// search is a block Lanczos process in the complement of locked vectors, which come first in the basis.
+type search struct {
+	p      *pencil
+	b      *basis
+	locked []float64 // θ of the locked vectors
+	tol    float64
+	block  int
+	room   int // most vectors beyond the locked ones
+	seed   uint64
+	status *Status
+
+	h          []float64 // operator on the vectors beyond the locked ones, upper triangle, room by room
+	start, end int       // last block, counted without the locked ones
+	pairs      []pair    // of all vectors but the last block just appended, by falling θ
+	rotation   *mat.Dense
+	negative   *IndefiniteError
+}
+
+// newSearch prepares a search with locked vectors (M-orthonormal, stored one after another) kept out.
+func newSearch(p *pencil, locked []float64, theta []float64, block, room int, seed uint64, opt *Options, st *Status) *search {
+	s := &search{p: p, locked: theta, tol: opt.Tol, block: block, room: room, seed: seed, status: st}
+	s.b = newBasis(p, len(theta)+room)
+	copy(s.b.v, locked)
+	s.b.count = len(theta)
+	s.h = make([]float64, room*room)
+	return s
+}
+
+// begin puts a block of random vectors, multiplied by the operator, at the end of the basis. It returns false when
+// nothing is left outside the basis.
+func (s *search) begin() bool {
+	n := s.p.order()
+	count := min(s.block, s.room-s.end)
+	x, w := make([]float64, count*n), make([]float64, count*n)
+	s.seed++
+	fillRandom(x, s.seed<<32)
+	s.p.mass(w, x, count)
+	s.p.solve(w, count)
+	kept, _, _ := s.b.append(w, count)
+	s.start, s.end = s.end, s.end+kept
+	return kept > 0
+}
+
+// run iterates until enough says so of the leading pairs, or nothing is left. It returns whether enough was reached.
+func (s *search) run(ctx context.Context, enough func(s *search) bool, maxSteps int) (bool, error) {
+	if s.end == 0 && !s.begin() {
+		s.status.Exhausted = true
+		s.ritz(nil, 0)
+		return enough(s), nil
+	}
+	for range maxSteps {
+		if err := cancelled(ctx); err != nil {
+			return false, err
+		}
+		exhausted := s.step()
+		if s.b.negative >= 0 {
+			return false, &IndefiniteError{Matrix: "M", Unknown: s.b.negative, Detail: "a vector has a negative square in its norm"}
+		}
+		if enough(s) {
+			return true, nil
+		}
+		if exhausted {
+			s.status.Exhausted = true
+			return false, nil
+		}
+	}
+	return false, nil
+}
+
+// step multiplies the last block by the operator, appends what is new and finds the Ritz pairs. It returns true when
+// nothing new is left to be found.
+func (s *search) step() (exhausted bool) {
+	n, l := s.p.order(), len(s.locked)
+	count := s.end - s.start
+	w := make([]float64, count*n)
+	s.p.mass(w, s.b.v[(l+s.start)*n:], count)
+	s.p.solve(w, count)
+	kept, c, r := s.b.append(w, count)
+	s.status.Steps++
+	for i := range s.end {
+		for j := range count {
+			s.h[i*s.room+s.start+j] = c[(l+i)*count+j]
+		}
+	}
+	s.ritz(r, kept)
+	last := s.start
+	s.start, s.end = s.end, s.end+kept
+	if s.end+max(kept, s.block) > s.room {
+		s.restart(last, r, kept)
+	}
+	if kept == 0 {
+		return !s.begin()
+	}
+	return false
+}
+
+// ritz finds the Ritz pairs of the first end vectors, the last block being start..end with coefficients r (kept by
+// end-start) along the vectors after it.
+func (s *search) ritz(r []float64, kept int) {
+	m, count := s.end, s.end-s.start
+	s.pairs = s.pairs[:0]
+	for k, theta := range s.locked {
+		s.pairs = append(s.pairs, pair{theta: theta, at: k, locked: true})
+	}
+	s.rotation = nil
+	if m > 0 {
+		sym := mat.NewSymDense(m, nil)
+		for i := range m {
+			for j := i; j < m; j++ {
+				v := s.h[i*s.room+j]
+				if i >= s.start {
+					v = (v + s.h[j*s.room+i]) / 2
+				}
+				sym.SetSym(i, j, v)
+			}
+		}
+		var e mat.EigenSym
+		if !e.Factorize(sym, true) {
+			panic("eigen: projected matrix is not finite")
+		}
+		values := e.Values(nil)
+		s.rotation = &mat.Dense{}
+		e.VectorsTo(s.rotation)
+		for k, theta := range values {
+			sum := 0.0
+			for i := range kept {
+				t := 0.0
+				for j := range count {
+					t += r[i*count+j] * s.rotation.At(s.start+j, k)
+				}
+				sum += t * t
+			}
+			s.pairs = append(s.pairs, pair{theta: theta, residual: math.Sqrt(sum), at: k})
+		}
+	}
+	sortPairs(s.pairs)
+}
+
+// leading is the number of pairs from the largest θ on that have converged without a gap.
+func (s *search) leading() int {
+	for k, q := range s.pairs {
+		if !s.converged(q) {
+			return k
+		}
+	}
+	return len(s.pairs)
+}
+
+// converged judges a pair by its residual. Nothing below the rounding errors of the largest θ can be asked for.
+func (s *search) converged(q pair) bool {
+	return q.locked || q.theta > 0 && q.residual <= max(s.tol*q.theta, 1e-15*s.pairs[0].theta)
+}
+
+// restart replaces the vectors before the last block by the best Ritz vectors, about half of the room.
+func (s *search) restart(last int, r []float64, kept int) {
+	n, l := s.p.order(), len(s.locked)
+	old := s.start // vectors before the appended block
+	keep := min((s.room-s.block)*3/5, old)
+	rows := make([]float64, 0, keep*old)
+	var theta []float64
+	for _, q := range s.pairs {
+		if q.locked || len(theta) == keep {
+			continue
+		}
+		for i := range old {
+			rows = append(rows, s.rotation.At(i, q.at))
+		}
+		theta = append(theta, q.theta)
+	}
+	dense.Rotate(keep, old, n, rows, s.b.v[l*n:], s.p.threads)
+	copy(s.b.v[(l+keep)*n:(l+keep+kept)*n], s.b.v[(l+old)*n:(l+old+kept)*n])
+	clear(s.h)
+	for k, t := range theta {
+		s.h[k*s.room+k] = t
+	}
+	s.start, s.end = keep, keep+kept
+	s.b.count = l + s.end
+	s.status.Restarts++
+	// The pairs now are the kept vectors themselves.
+	s.rotation = identity(keep)
+	kth := 0
+	out := s.pairs[:0]
+	for _, q := range s.pairs {
+		if !q.locked {
+			if kth == keep {
+				continue
+			}
+			q.at = kth
+			kth++
+		}
+		out = append(out, q)
+	}
+	s.pairs = out
+}
+
+func identity(n int) *mat.Dense {
+	d := mat.NewDense(n, n, nil)
+	for i := range n {
+		d.Set(i, i, 1)
+	}
+	return d
+}
+
+// take returns the vectors of the first count pairs, stored one after another, and their θ.
+func (s *search) take(count int) (x, theta []float64) {
+	n, l := s.p.order(), len(s.locked)
+	x = make([]float64, count*n)
+	cols := 0
+	if s.rotation != nil {
+		cols, _ = s.rotation.Dims()
+	}
+	c := make([]float64, count*(l+cols))
+	for k, q := range s.pairs[:count] {
+		theta = append(theta, q.theta)
+		if q.locked {
+			c[k*(l+cols)+q.at] = 1
+			continue
+		}
+		for i := range cols {
+			c[k*(l+cols)+l+i] = s.rotation.At(i, q.at)
+		}
+	}
+	dense.AddCombined(count, l+cols, n, 1, c, s.b.v, x, s.p.threads)
+	return x, theta
+}
