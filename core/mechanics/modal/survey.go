@@ -1,0 +1,68 @@
+package modal
+
+// Survey says what each elastic mode is and where modes crowd.
+type Survey struct {
+	// From and To bound the band in which gaps count, Hz.
+	From, To float64
+	// Groups name the shares of strain energy (Basis.Groups, same order); Kinds its kinds; Carriers
+	// the shares of kinetic energy: parts, then bodies; Rotors the rotors.
+	Groups, Kinds, Carriers, Rotors []string
+	Modes                           []Mode
+	// Gaps holds, per axis, neighbouring modes that the gyro feels on it.
+	Gaps [3][]Gap
+}
+
+// Mode is one elastic mode.
+type Mode struct {
+	Number    int     // from 1, by ascending frequency
+	Vector    int     // index into the basis
+	Frequency float64 // Hz
+	Loss      float64 // loss factor; the damping ratio is half of it
+	// Shares of the energies; each adds up to one.
+	ByGroup, ByKind, ByCarrier []float64
+	// Part and Motion name the group and kind with the greatest strain energy, but for joints and
+	// mounts, whose motion is themselves.
+	Part, Motion string
+	// Rotation is the rotation of the gyro per unit modal coordinate, rad.
+	Rotation [3]float64
+	// Strength per axis under unit forces, (rad/s)/N, and unit moments, (rad/s)/(N·m).
+	Strength, MomentStrength [3]float64
+	// RotorShare[r] is the part of rotor r in the square of Strength, the same for all axes.
+	// MomentShare likewise.
+	RotorShare, MomentShare []float64
+	// Below and Above are the distances to the neighbouring elastic modes, Hz; +Inf for none.
+	Below, Above float64
+	Meetings     []Meeting
+}
+
+// Meeting is a rotor speed at which an order meets a mode.
+type Meeting struct {
+	Order  int     // multiple of the rotor speed; the number of blades for blade passing
+	Blade  bool    // blade passing
+	Speed  float64 // rad/s
+	Rotors []int   // for which this holds, indices into Survey.Rotors
+	// Hover: within HoverBand of the hover speed of one of them. Service: not above the highest
+	// speed of one of them.
+	Hover, Service bool
+}
+
+// HoverBand is how far the speed of a rotor strays from hover in gentle flight, as a share of it
+// (common practice, no source).
+const HoverBand = 0.15
+
+// Gap is the distance between two modes that are neighbours among those with at least a tenth of the
+// strongest strength on an axis.
+type Gap struct {
+	Lower, Upper int     // mode numbers
+	Width        float64 // Hz
+}
+
+// SmallestGap returns the narrowest gap of an axis; ok is false when fewer than two modes count.
+func (s *Survey) SmallestGap(axis int) (gap Gap, ok bool) {
+	for _, g := range s.Gaps[axis] {
+		if !ok || g.Width < gap.Width {
+			gap, ok = g, true
+		}
+	}
+	return gap, ok
+}
