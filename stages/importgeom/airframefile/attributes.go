@@ -160,7 +160,7 @@ func (b *block) word(name string, choices ...string) string {
 		return s
 	}
 	b.fail(b.hcl.Body.Attributes[name].Expr.Range(), "%s is %q and must be one of %s%s", name, s,
-		strings.Join(choices, ", "), nearest.Quoted(s, choices))
+		strings.Join(choices, ", "), didYouMean(s, choices))
 	return ""
 }
 

@@ -84,7 +84,7 @@ func (s *scope) check(expr hcl.Expression) hcl.Diagnostics {
 		default:
 			diags = append(diags, mistake(t.SourceRange(), "Unknown reference",
 				fmt.Sprintf("%q is nothing that can be referred to%s; there are plate.NAME, joint.NAME and input.NAME",
-					root, nearest.Quoted(root, []string{"plate", "joint", "input"}))))
+					root, didYouMean(root, []string{"plate", "joint", "input"}))))
 			continue
 		}
 		if !ok {
@@ -107,9 +107,17 @@ func contains(names []string, name string) bool {
 	return false
 }
 
+// didYouMean is a clause that names the nearest candidate, or "".
+func didYouMean(name string, known []string) string {
+	if n := nearest.Name(name, known); n != "" {
+		return fmt.Sprintf("; did you mean %q?", n)
+	}
+	return ""
+}
+
 // suggest names the nearest candidate, or all of them when they are few.
 func suggest(name string, known []string) string {
-	if near := nearest.Quoted(name, known); near != "" {
+	if near := didYouMean(name, known); near != "" {
 		return near
 	}
 	switch {

@@ -106,7 +106,12 @@ func (b *builder) bolts() *fault.Error {
 	return nil
 }
 
-func near(name string, names []string) string { return nearest.Quoted(name, names) }
+func near(name string, names []string) string {
+	if n := nearest.Name(name, names); n != "" {
+		return fmt.Sprintf("; did you mean %q?", n)
+	}
+	return ""
+}
 
 func listNames(names []string) string {
 	if len(names) == 0 {

@@ -1,0 +1,76 @@
+package assemble
+
+import (
+	"strings"
+
+	"hushframe/core/mechanics/airframe"
+)
+
+// Mass is one line of the mass table.
+type Mass struct {
+	Name, Material string
+	Number         int
+	Mass           float64 // kg, of all of them
+	Structure      bool    // plate, standoff or bolt
+}
+
+// Masses lists plates, then bolts by group, standoffs by name and material with their screws, and bodies.
+func (a *Assembly) Masses() []Mass {
+	g, p := &a.Geometry, &a.Properties
+	var out []Mass
+	add := func(m Mass) {
+		for i := range out {
+			if out[i].Name == m.Name && out[i].Material == m.Material {
+				out[i].Mass += m.Mass
+				out[i].Number += m.Number
+				return
+			}
+		}
+		out = append(out, m)
+	}
+	for _, pl := range p.Plates {
+		material := pl.Material
+		if material == "" {
+			material = "ply stack"
+		}
+		add(Mass{"plate " + pl.Plate, material, 1, pl.Mass, true})
+	}
+	for i, b := range g.Bolts {
+		add(Mass{"bolts " + b.Group, "", 1, p.Bolts[i].Mass, true})
+	}
+	for i, s := range g.Standoffs {
+		add(Mass{"standoff " + base(s.Name), p.Standoffs[i].Material, 1, p.Standoffs[i].Mass, true})
+	}
+	for _, b := range p.Bodies {
+		if IsScrew(b.Name, g) {
+			name := strings.TrimSuffix(strings.TrimSuffix(b.Name, screwSuffix[0]), screwSuffix[1])
+			add(Mass{"screws of standoff " + base(name), "", 1, b.Mass, true})
+			continue
+		}
+		add(Mass{b.Kind + " " + b.Name, "", 1, b.Mass, false})
+	}
+	return out
+}
+
+// base takes the number off a name that stands for one of several.
+func base(name string) string {
+	i := strings.LastIndexByte(name, '-')
+	if i < 1 || i == len(name)-1 || strings.Trim(name[i+1:], "0123456789") != "" {
+		return name
+	}
+	return name[:i]
+}
+
+// IsScrew reports whether a body stands for the screw of a standoff.
+func IsScrew(body string, g *airframe.Geometry) bool {
+	for _, suffix := range screwSuffix {
+		if name, ok := strings.CutSuffix(body, suffix); ok {
+			for _, s := range g.Standoffs {
+				if s.Name == name {
+					return true
+				}
+			}
+		}
+	}
+	return false
+}
