@@ -1,0 +1,174 @@
+package sweep
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"hushframe/core/mechanics/modal"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+)
+
+const degree = math.Pi / 180
+
+// outcome sums up a response in figures, warnings and tables.
+func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome {
+	o := &stage.Outcome{Figures: map[string]any{}, Warnings: warnings(r, set)}
+	for axis, name := range kinds.AxisNames {
+		frequency, level := math.NaN(), math.NaN()
+		if p, ok := strongest(r, name); ok {
+			frequency, level = p.Frequency, p.Density
+		}
+		o.Figures["peak_"+name] = hertz(frequency)
+		o.Figures["peak_level_"+name] = stage.Quantity{SI: level, Dimension: "angular rate density"}
+		o.Figures["rms_"+name] = stage.Quantity{SI: r.Axes[axis].RMS, Dimension: "angular rate"}
+	}
+	list := []any{}
+	for _, p := range r.Peaks {
+		modes := []any{}
+		for _, m := range p.Modes {
+			modes = append(modes, float64(m))
+		}
+		list = append(list, map[string]any{
+			"axis": p.Axis, "frequency": hertz(p.Frequency), "damping": p.Damping, "modes": modes,
+			"level": stage.Quantity{SI: p.Density, Dimension: "angular rate density"},
+		})
+	}
+	o.Figures["peaks"] = list
+	o.Notes = append(o.Notes,
+		fmt.Sprintf("the source is assumed, not measured: %.3g N²/Hz and %.3g (N·m)²/Hz along each component at each rotor", set.source.Force, set.source.Moment))
+	if !math.IsNaN(r.Thrust) && set.bladeShare > 0 {
+		o.Notes = append(o.Notes, fmt.Sprintf("the thrust of %.3g N per rotor is assumed to vary by %.3g %% at blade passing", r.Thrust, 100*set.bladeShare))
+	}
+	o.Summary = []stage.Section{peakTable(r), axisTable(r)}
+	if len(r.Lines) > 0 {
+		o.Summary = append(o.Summary, lineTable(r))
+	}
+	return o
+}
+
+func warnings(r *kinds.Response, set settings) []stage.Warning {
+	var out []stage.Warning
+	if r.To > r.ModesTo/1.5*(1+1e-9) {
+		out = append(out, stage.Warning{
+			ID:     "sweep.beyond-modes",
+			Text:   fmt.Sprintf("the sweep goes to %.4g Hz with modes to %.4g Hz; by common practice modes should reach 1.5 times as high as the sweep", r.To, r.ModesTo),
+			Where:  "to",
+			Remedy: fmt.Sprintf("raise up_to of solve to %.4g Hz, or end the sweep at %.4g Hz", math.Ceil(1.5*r.To), math.Floor(r.ModesTo/1.5)),
+		})
+	}
+	if set.residual && !r.Residual {
+		out = append(out, stage.Warning{
+			ID: "sweep.no-residual", Text: "the modal basis holds no residual vectors, so nothing stands in for the modes left out",
+			Where: "residual", Remedy: "let solve compute them, or raise its up_to",
+		})
+	}
+	for _, m := range r.Modes {
+		if m.Damping < 1e-4 && m.Frequency > r.From && m.Frequency < r.To {
+			out = append(out, stage.Warning{
+				ID: "sweep.undamped", Text: fmt.Sprintf("mode %d at %.4g Hz has a damping ratio of only %.2g, so its peak means little", m.Number, m.Frequency, m.Damping),
+				Where: fmt.Sprintf("mode %d", m.Number), Remedy: "give its material, joint or mount a loss factor",
+			})
+		}
+	}
+	for axis, name := range kinds.AxisNames {
+		p, ok := strongest(r, name)
+		y := r.Density[axis]
+		for _, end := range []int{0, len(y) - 1} {
+			if ok && y[end] > p.Density {
+				out = append(out, stage.Warning{
+					ID: "sweep.edge", Text: fmt.Sprintf("%s is loudest at %.4g Hz, an end of the sweep, and so no peak there is listed", name, r.Frequency[end]),
+					Where: name, Remedy: "widen the sweep",
+				})
+			}
+		}
+	}
+	return out
+}
+
+func peakTable(r *kinds.Response) stage.Section {
+	s := stage.Section{
+		Title: "Predicted peaks of the gyro rate",
+		Text:  "under the assumed broadband source; a share is what a mode adds to the peak, negative if it works against it",
+		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "(deg/s)²/Hz", Right: true}, {Name: "stands out, dB", Right: true},
+			{Name: "damping, %", Right: true}, {Name: "made by"}, {Name: "driven most by"}, {Name: "power taken by"}},
+	}
+	for _, p := range r.Peaks {
+		s.Rows = append(s.Rows, []string{
+			p.Axis, fmt.Sprintf("%.1f", p.Frequency), fmt.Sprintf("%.3g", p.Density/degree/degree), fmt.Sprintf("%.1f", 10*math.Log10(p.Prominence)),
+			percent(p.Damping, "%.2f"), Makers(p), fmt.Sprintf("%s %s, %.0f %%", p.Rotor, kinds.ComponentNames[p.Component], 100*p.ComponentShare), losers(p),
+		})
+	}
+	return s
+}
+
+func percent(x float64, format string) string {
+	if math.IsNaN(x) {
+		return "–"
+	}
+	return fmt.Sprintf(format, 100*x)
+}
+
+// Makers puts the makers of a peak in words: "mode 3 91 %, mode 4 −6 %".
+func Makers(p kinds.ResponsePeak) string {
+	var parts []string
+	add := func(name string, share float64) {
+		parts = append(parts, fmt.Sprintf("%s %s %%", name, strings.Replace(fmt.Sprintf("%.0f", 100*share), "-", "−", 1)))
+	}
+	for i, m := range p.Modes {
+		add(fmt.Sprintf("mode %d", m), p.Shares[i])
+	}
+	if math.Abs(p.Rigid) >= leastShare {
+		add("rigid body", p.Rigid)
+	}
+	if math.Abs(p.Residual) >= leastShare {
+		add("modes left out", p.Residual)
+	}
+	return strings.Join(parts, ", ")
+}
+
+func losers(p kinds.ResponsePeak) string {
+	var parts []string
+	for i, name := range p.Losses {
+		if i == 3 {
+			break
+		}
+		parts = append(parts, fmt.Sprintf("%s %.0f %%", name, 100*p.LossShares[i]))
+	}
+	return strings.Join(parts, ", ")
+}
+
+func axisTable(r *kinds.Response) stage.Section {
+	s := stage.Section{
+		Title:   fmt.Sprintf("Gyro rate from %.4g to %.4g Hz", r.From, r.To),
+		Columns: []stage.Column{{Name: "axis"}, {Name: "rms, deg/s", Right: true}, {Name: "strongest peak, Hz", Right: true}, {Name: "static correction, dB", Right: true}},
+	}
+	for _, x := range r.Axes {
+		top, correction := "–", "–"
+		if p, ok := strongest(r, x.Axis); ok {
+			top = fmt.Sprintf("%.1f", p.Frequency)
+		}
+		if !math.IsNaN(x.Correction) {
+			correction = fmt.Sprintf("%+.2f at %.1f Hz", x.Correction, x.CorrectionAt)
+		}
+		s.Rows = append(s.Rows, []string{x.Axis, fmt.Sprintf("%.3g", x.RMS/degree), top, correction})
+	}
+	return s
+}
+
+func lineTable(r *kinds.Response) stage.Section {
+	s := stage.Section{
+		Title: "Rotor lines at hover speed, peak amplitude",
+		Columns: []stage.Column{{Name: "source"}, {Name: "rotor"}, {Name: "Hz", Right: true}, {Name: "force, N", Right: true},
+			{Name: "roll, deg/s", Right: true}, {Name: "pitch, deg/s", Right: true}, {Name: "yaw, deg/s", Right: true}},
+	}
+	for _, x := range r.Lines {
+		row := []string{x.Source, x.Rotor, fmt.Sprintf("%.1f", x.Frequency), fmt.Sprintf("%.3g", x.Force)}
+		for _, rate := range x.Rate {
+			row = append(row, fmt.Sprintf("%.3g", rate/degree))
+		}
+		s.Rows = append(s.Rows, row)
+	}
+	return s
+}

@@ -1,0 +1,333 @@
+package sweep
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"sort"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/forced"
+	"hushframe/core/mechanics/modal"
+	"hushframe/core/mechanics/rotor"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+)
+
+// leastShare is the share of a mode or loss group below which it is not named.
+const leastShare = 0.05
+
+// respond computes the whole response.
+func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, set settings, threads int, report stage.Reporter) (*kinds.Response, error) {
+	residual := false
+	for _, kind := range basis.Kinds {
+		residual = residual || kind == modal.Residual
+	}
+	residual = residual && set.residual
+	sys, err := forced.New(basis, forced.Options{DropResidual: !residual})
+	if err != nil {
+		return nil, err
+	}
+	report.Progress("sweep", 0)
+	grid := forced.Grid(set.from, set.to, set.step, sys.Resonances())
+	tr, err := sys.Transfer(ctx, grid, threads)
+	if err != nil {
+		return nil, err
+	}
+	sp := tr.Broadband(set.source)
+	r := &kinds.Response{
+		From: set.from, To: set.to, Force: set.source.Force, Moment: set.source.Moment, Residual: residual,
+		BladeShare: set.bladeShare, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
+	}
+	for axis, name := range kinds.AxisNames {
+		for k, rotor := range sp.Rotors {
+			r.Sources = append(r.Sources, kinds.ResponseSource{Rotor: rotor, Axis: name, Density: sp.ByRotor[axis][k]})
+		}
+		for j, in := range tr.Inputs {
+			x := kinds.ResponseTransfer{Rotor: in.Rotor, Component: in.Component, Axis: name}
+			for _, h := range tr.Rate[axis][j] {
+				x.Real, x.Imaginary = append(x.Real, real(h)), append(x.Imaginary, imag(h))
+			}
+			r.Transfer = append(r.Transfer, x)
+		}
+	}
+	report.Progress("sweep", 0.6)
+	plain, err := uncorrected(ctx, basis, residual, grid, set, threads, r)
+	if err != nil {
+		return nil, err
+	}
+	for axis, name := range kinds.AxisNames {
+		x := kinds.ResponseAxis{Axis: name, RMS: math.Sqrt(forced.MeanSquare(grid, sp.Density[axis]))}
+		x.Correction, x.CorrectionAt = change(grid, sp.Density[axis], r.Uncorrected[axis])
+		r.Axes = append(r.Axes, x)
+	}
+	report.Progress("peaks", 0.8)
+	if err := findPeaks(r, basis, sys, plain, sp, set); err != nil {
+		return nil, err
+	}
+	for i, eta := range sys.Damping() {
+		if v := sys.Vectors()[i]; basis.Kinds[v] == modal.Elastic {
+			r.Modes = append(r.Modes, kinds.ResponseMode{Number: len(r.Modes) + 1, Frequency: basis.Frequency[v], Damping: eta / 2})
+		}
+	}
+	for _, x := range p.Rotors {
+		r.Rotors = append(r.Rotors, kinds.ResponseRotor{Rotor: x.Name, Blades: x.Blades, Hover: x.HoverSpeed, Highest: x.MaxSpeed})
+	}
+	if r.Lines, err = lines(ctx, sys, p, set, r.Thrust); err != nil {
+		return nil, err
+	}
+	report.Progress("shapes", 0.9)
+	return r, shapes(r, sys, set)
+}
+
+// uncorrected fills in the spectrum without residual vectors and returns its
+// system, nil when there is nothing to leave out.
+func uncorrected(ctx context.Context, basis *modal.Basis, residual bool, grid []float64, set settings, threads int, r *kinds.Response) (*forced.System, error) {
+	if !residual {
+		for axis := range r.Uncorrected {
+			for range grid {
+				r.Uncorrected[axis] = append(r.Uncorrected[axis], math.NaN())
+			}
+		}
+		return nil, nil
+	}
+	sys, err := forced.New(basis, forced.Options{DropResidual: true})
+	if err != nil {
+		return nil, err
+	}
+	tr, err := sys.Transfer(ctx, grid, threads)
+	if err != nil {
+		return nil, err
+	}
+	r.Uncorrected = tr.Broadband(set.source).Density
+	return sys, nil
+}
+
+// change gives the largest ratio of two curves in dB, with its sign, and where.
+func change(frequency, with, without []float64) (db, at float64) {
+	db, at = math.NaN(), math.NaN()
+	for k := range frequency {
+		x := 10 * math.Log10(with[k]/without[k])
+		if !math.IsNaN(x) && !(math.Abs(x) <= math.Abs(db)) {
+			db, at = x, frequency[k]
+		}
+	}
+	return db, at
+}
+
+func findPeaks(r *kinds.Response, basis *modal.Basis, sys, plain *forced.System, sp *forced.Spectrum, set settings) error {
+	peaks, err := sys.Peaks(sp, set.source, set.prominence)
+	if err != nil {
+		return err
+	}
+	number := make([]int, len(sys.Vectors())) // 0 for vectors that are no elastic mode
+	count := 0
+	for i, v := range sys.Vectors() {
+		if basis.Kinds[v] == modal.Elastic {
+			count++
+			number[i] = count
+		}
+	}
+	damping := sys.Damping()
+	for _, p := range peaks {
+		x := kinds.ResponsePeak{Axis: kinds.AxisNames[p.Axis], Frequency: p.Frequency, Density: p.Density, Prominence: p.Prominence,
+			Damping: math.NaN(), Uncorrected: math.NaN(), ComponentShare: p.InputShare}
+		in := sys.Inputs()[p.Input]
+		x.Rotor, x.Component = in.Rotor, in.Component
+		for _, i := range p.Makers(leastShare) {
+			if number[i] > 0 {
+				if len(x.Modes) == 0 {
+					x.Damping = damping[i] / 2
+				}
+				x.Modes, x.Shares = append(x.Modes, number[i]), append(x.Shares, p.Shares[i])
+			}
+		}
+		for i, v := range sys.Vectors() {
+			switch basis.Kinds[v] {
+			case modal.RigidBody:
+				x.Rigid += p.Shares[i]
+			case modal.Residual:
+				x.Residual += p.Shares[i]
+			}
+		}
+		if plain != nil {
+			tr, err := plain.Transfer(context.Background(), []float64{p.Frequency}, 1)
+			if err != nil {
+				return err
+			}
+			x.Uncorrected = tr.Broadband(set.source).Density[p.Axis][0] / p.Density
+		}
+		q, err := sys.Drive(p.Frequency, p.Input)
+		if err != nil {
+			return err
+		}
+		x.Losses, x.LossShares = losses(basis, sys, p.Frequency, q)
+		r.Peaks = append(r.Peaks, x)
+	}
+	return nil
+}
+
+// losses names the groups that take the power, the greatest first.
+func losses(basis *modal.Basis, sys *forced.System, frequency float64, q []complex128) (names []string, shares []float64) {
+	power, _ := sys.Dissipation(frequency, q)
+	total := 0.0
+	order := make([]int, len(power))
+	for g, w := range power {
+		total += w
+		order[g] = g
+	}
+	sort.SliceStable(order, func(a, b int) bool { return power[order[a]] > power[order[b]] })
+	for _, g := range order {
+		if share := power[g] / total; share >= leastShare {
+			names = append(names, fmt.Sprintf("%s %s", basis.Groups[g].Kind, basis.Groups[g].Name))
+			shares = append(shares, share)
+		}
+	}
+	return names, shares
+}
+
+// thrust is the weight that one rotor carries at hover, N.
+func thrust(p *airframe.Properties) float64 {
+	mass := p.DeclaredMass
+	if mass == 0 {
+		for _, x := range p.Plates {
+			mass += x.Mass
+		}
+		for _, x := range p.Standoffs {
+			mass += x.Mass
+		}
+		for _, x := range p.Bolts {
+			mass += x.Mass
+		}
+		for _, x := range p.Bodies {
+			mass += x.Mass
+		}
+	}
+	const gravity = 9.80665 // m/s², standard
+	if !(mass > 0) || len(p.Rotors) == 0 {
+		return math.NaN()
+	}
+	return mass * gravity / float64(len(p.Rotors))
+}
+
+// lines drives each rotor at hover by its permitted unbalance and by a thrust
+// that varies at blade passing. Rotors of equal frequency are added as power,
+// since they are not locked to each other.
+func lines(ctx context.Context, sys *forced.System, p *airframe.Properties, set settings, thrust float64) ([]kinds.ResponseLine, error) {
+	var out []kinds.ResponseLine
+	for _, source := range []string{"unbalance", "blade passing"} {
+		first := len(out)
+		for _, x := range p.Rotors {
+			line := kinds.ResponseLine{Source: source, Rotor: x.Name, Order: 1}
+			var load [3]complex128
+			if source == "unbalance" {
+				line.Force = rotor.Force(rotor.Unbalance(x.SpinningMass, x.Grade, x.MaxSpeed), x.HoverSpeed)
+				load = rotor.Whirl(x.Axis, x.Spin)
+			} else {
+				line.Order, line.Force = float64(x.Blades), set.bladeShare*thrust
+				for c := range load {
+					load[c] = complex(x.Axis[c], 0)
+				}
+			}
+			line.Frequency = rotor.Frequency(line.Order, x.HoverSpeed)
+			if !(line.Force > 0 && line.Frequency > 0) {
+				continue
+			}
+			tr, err := sys.Transfer(ctx, []float64{line.Frequency}, 1)
+			if err != nil {
+				return nil, err
+			}
+			rate := tr.Respond(0, func(in forced.Input) complex128 {
+				if in.Rotor != x.Name || in.Moment() {
+					return 0
+				}
+				return load[in.Component] * complex(line.Force, 0)
+			})
+			for axis := range rate {
+				line.Rate[axis] = math.Hypot(real(rate[axis]), imag(rate[axis]))
+			}
+			out = append(out, line)
+		}
+		if all, ok := together(out[first:]); ok {
+			out = append(out, all)
+		}
+	}
+	return out, nil
+}
+
+// together adds lines as power when all have one frequency and there are two
+// or more.
+func together(rows []kinds.ResponseLine) (kinds.ResponseLine, bool) {
+	if len(rows) < 2 {
+		return kinds.ResponseLine{}, false
+	}
+	sum := rows[0]
+	sum.Rotor = "all"
+	var square [3]float64
+	for _, x := range rows {
+		if math.Abs(x.Frequency-sum.Frequency) > 1e-9*sum.Frequency {
+			return kinds.ResponseLine{}, false
+		}
+		for axis := range square {
+			square[axis] += x.Rate[axis] * x.Rate[axis]
+		}
+	}
+	for axis := range square {
+		sum.Rate[axis] = math.Sqrt(square[axis])
+	}
+	return sum, true
+}
+
+// shapes keeps operating shapes: at the frequencies asked for under the
+// component that is strongest at the nearest peak, or at the strongest peak of
+// each axis.
+func shapes(r *kinds.Response, sys *forced.System, set settings) error {
+	var wanted []kinds.ResponseShape
+	for _, f := range set.shapesAt {
+		x := kinds.ResponseShape{Frequency: f, Rotor: sys.Inputs()[0].Rotor, Component: 2}
+		near := math.Inf(1)
+		for _, p := range r.Peaks {
+			if d := math.Abs(p.Frequency - f); d < near {
+				near, x.Rotor, x.Component = d, p.Rotor, p.Component
+			}
+		}
+		wanted = append(wanted, x)
+	}
+	if len(set.shapesAt) == 0 {
+		for _, axis := range kinds.AxisNames {
+			if p, ok := strongest(r, axis); ok {
+				wanted = append(wanted, kinds.ResponseShape{Frequency: p.Frequency, Axis: axis, Rotor: p.Rotor, Component: p.Component})
+			}
+		}
+	}
+	for _, x := range wanted {
+		for j, in := range sys.Inputs() {
+			if in.Rotor != x.Rotor || in.Component != x.Component {
+				continue
+			}
+			q, err := sys.Drive(x.Frequency, j)
+			if err != nil {
+				return err
+			}
+			for k, u := range sys.Nodes(q) {
+				if k%6 < 3 {
+					x.Real, x.Imaginary = append(x.Real, real(u)), append(x.Imaginary, imag(u))
+				}
+			}
+		}
+		r.Shapes = append(r.Shapes, x)
+	}
+	return nil
+}
+
+// strongest gives the highest peak of an axis.
+func strongest(r *kinds.Response, axis string) (kinds.ResponsePeak, bool) {
+	var best kinds.ResponsePeak
+	found := false
+	for _, p := range r.Peaks {
+		if p.Axis == axis && (!found || p.Density > best.Density) {
+			best, found = p, true
+		}
+	}
+	return best, found
+}

@@ -1,0 +1,183 @@
+// Package sweep is the stage that drives the modes of a frame at its rotors and
+// finds what the gyro feels.
+package sweep
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/forced"
+	"hushframe/core/mechanics/modal"
+	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+)
+
+// Stage is the stage "sweep".
+type Stage struct{}
+
+var _ stage.Stage = Stage{}
+
+// Describe implements stage.Stage.
+func (Stage) Describe() stage.Description {
+	frequency := stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
+	zero := 0.0
+	one := 1.0
+	d := stage.Description{
+		Name:  "sweep",
+		About: "predict the gyro rate that the rotors cause, over frequency",
+		Doc: `Drives the modes with every force and moment component at every rotor hub and
+reads the rotation rate of the gyro. Damping is hysteretic, by part, joint and
+mount, and couples the modes; the rigid-body motion is in the sum.
+
+A broadband source of constant density acts at every rotor, the same along each
+component, and is added over rotors as power. Its densities are assumptions: the
+shape of the spectrum and where its peaks lie say more than its level, unless
+the densities were measured.
+
+Lines at hover come from the unbalance that each rotor's balance grade permits
+and from a thrust that varies at blade passing by an assumed share.`,
+		Arguments: []stage.Argument{
+			{Name: "modes", About: "modal basis from solve", Type: artifactOf("modes"), Required: true},
+			{Name: "properties", About: "properties from import", Type: artifactOf("properties"), Required: true},
+			{Name: "from", About: "lower end of the sweep", Type: frequency, Default: hertz(100), Example: "100 Hz", Above: &zero},
+			{Name: "to", About: "upper end of the sweep", Type: frequency, Default: hertz(500), Example: "500 Hz", Above: &zero},
+			{Name: "resolution", About: "largest step; near modes it is finer by itself", Type: frequency, Default: hertz(0.5), Example: "0.5 Hz", Above: &zero},
+			{Name: "force_density", About: "assumed one-sided density of each force component at each rotor",
+				Type:    stage.Type{Kind: stage.Amount, Dimension: "force density", Unit: "N2/Hz"},
+				Default: stage.Quantity{SI: 1e-6, Dimension: "force density"}, Example: "1e-6 N2/Hz", Min: &zero},
+			{Name: "moment_density", About: "assumed one-sided density of each moment component at each rotor",
+				Type:    stage.Type{Kind: stage.Amount, Dimension: "moment density", Unit: "(N*m)2/Hz"},
+				Default: stage.Quantity{SI: 1e-9, Dimension: "moment density"}, Example: "1e-9 (N*m)2/Hz", Min: &zero},
+			{Name: "blade_share", About: "assumed amplitude of the thrust at blade passing, as a share of the thrust at hover",
+				Type: stage.Type{Kind: stage.Number}, Default: 0.01, Example: "0.01", Min: &zero, Max: &one},
+			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
+			{Name: "prominence", About: "how far a peak stands above the valleys beside it, in dB, to be listed",
+				Type: stage.Type{Kind: stage.Number}, Default: 1.0, Example: "1", Above: &zero},
+			{Name: "shapes_at", About: "frequencies whose operating shapes are kept; left out, the strongest peak of each axis",
+				Type: stage.Type{Kind: stage.List, Element: &frequency}, Example: `["212 Hz", "340 Hz"]`},
+		},
+		Outputs: []stage.Output{{Name: "response", Kind: "response", About: "transfer functions, spectra, peaks, lines and operating shapes"}},
+	}
+	for _, axis := range kinds.AxisNames {
+		d.Figures = append(d.Figures,
+			stage.Figure{Name: "peak_" + axis, About: "frequency of the strongest peak on " + axis + ", not a number if there is none", Type: frequency},
+			stage.Figure{Name: "peak_level_" + axis, About: "density of that peak", Type: stage.Type{Kind: stage.Amount, Dimension: "angular rate density", Unit: "(deg/s)2/Hz"}},
+			stage.Figure{Name: "rms_" + axis, About: "root mean square gyro rate within the sweep on " + axis, Type: stage.Type{Kind: stage.Amount, Dimension: "angular rate", Unit: "deg/s"}},
+		)
+	}
+	d.Figures = append(d.Figures,
+		stage.Figure{Name: "peaks", About: "peaks as objects with axis, frequency, level, damping and modes", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}})
+	return d
+}
+
+func artifactOf(kind string) stage.Type {
+	return stage.Type{Kind: stage.Artifact, Kinds: []string{kind}}
+}
+
+func hertz(f float64) stage.Quantity { return stage.Quantity{SI: f, Dimension: "frequency"} }
+
+// settings are the arguments in SI units.
+type settings struct {
+	from, to, step float64
+	source         forced.Broadband
+	bladeShare     float64
+	residual       bool
+	prominence     float64 // power ratio
+	shapesAt       []float64
+}
+
+// mostFrequencies bounds the size of a response.
+const mostFrequencies = 50_000
+
+func read(a stage.Arguments) (settings, error) {
+	s := settings{
+		from: a.SI("from"), to: a.SI("to"), step: a.SI("resolution"),
+		source:     forced.Broadband{Force: a.SI("force_density"), Moment: a.SI("moment_density")},
+		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
+		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"),
+	}
+	switch {
+	case !(s.to > s.from):
+		return s, fault.New(fault.Input, "the sweep ends at %g Hz, where it has not begun", s.to).In("sweep", "").Of("to").
+			Do("make it higher than from, which is %g Hz", s.from)
+	case (s.to-s.from)/s.step > mostFrequencies:
+		return s, fault.New(fault.Input, "%g Hz in steps of %g Hz are more than %d frequencies", s.to-s.from, s.step, mostFrequencies).
+			In("sweep", "").Of("resolution").Do("choose a larger step; near modes it is finer by itself")
+	case s.source.Force == 0 && s.source.Moment == 0:
+		return s, fault.New(fault.Input, "both densities are zero, so nothing drives the frame").In("sweep", "").Of("force_density").
+			Do("give at least one of force_density and moment_density")
+	}
+	for _, f := range s.shapesAt {
+		if !(f > 0) {
+			return s, fault.New(fault.Input, "a free frame has no operating shape at %g Hz", f).In("sweep", "").Of("shapes_at").
+				Do("name frequencies above 0 Hz")
+		}
+	}
+	return s, nil
+}
+
+// Run implements stage.Stage.
+func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) {
+	set, err := read(call.Arguments)
+	if err != nil {
+		return nil, err
+	}
+	call.Report.Progress("read", -1)
+	basis, reach, err := readBasis(call)
+	if err != nil {
+		return nil, err
+	}
+	props, err := readProperties(call)
+	if err != nil {
+		return nil, err
+	}
+	r, err := respond(ctx, basis, props, set, call.Threads, call.Report)
+	if err != nil {
+		return nil, explain(err)
+	}
+	r.ModesTo = reach
+	call.Report.Progress("write", -1)
+	if _, err := artifact.Write(call.Outputs["response"], kinds.EncodeResponse(r)); err != nil {
+		return nil, err
+	}
+	return outcome(r, basis, set), nil
+}
+
+func readProperties(call *stage.Call) (*airframe.Properties, error) {
+	a, err := artifact.Open(call.Inputs["properties"][0].Folder, kinds.Registry())
+	if err != nil {
+		return nil, err
+	}
+	return kinds.DecodeProperties(a)
+}
+
+// explain turns what the kernel says into a fault.
+func explain(err error) error {
+	var unbounded *forced.Unbounded
+	if errors.As(err, &unbounded) {
+		return fault.New(fault.Numeric, "%v", err).In("sweep", fmt.Sprintf("%g Hz", unbounded.Frequency)).
+			Do("give the materials, joints and mounts a loss factor, or the airframe a floor")
+	}
+	if errors.Is(err, context.Canceled) || errors.Is(err, context.DeadlineExceeded) {
+		return fault.From(err)
+	}
+	return fault.New(fault.Input, "%v", err).In("sweep", "modes").Of("modes")
+}
+
+// readBasis gives the modal basis and the frequency below which it is complete.
+func readBasis(call *stage.Call) (*modal.Basis, float64, error) {
+	a, err := artifact.Open(call.Inputs["modes"][0].Folder, kinds.Registry())
+	if err != nil {
+		return nil, 0, err
+	}
+	m, err := kinds.DecodeModes(a)
+	if err != nil {
+		return nil, 0, err
+	}
+	return m.Basis, m.UpTo, nil
+}
