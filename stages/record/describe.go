@@ -1,0 +1,234 @@
+package record
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"slices"
+
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/signal/order"
+	"hushframe/core/signal/peaks"
+	"hushframe/core/signal/recording"
+	"hushframe/core/signal/spectrum"
+	"hushframe/stages/kinds"
+)
+
+// found is the description of a recording.
+type found struct {
+	spectra *kinds.Spectra
+	timing  recording.Timing
+	time    []float64 // of the samples used
+	unused  int       // samples per axis in no segment
+}
+
+const (
+	leastAverages = 32   // segments wanted where the width of a bin is free
+	finestBin     = 0.5  // Hz, where it is free
+	leastSegment  = 1024 // samples, where the recording has them
+	shortest      = 16   // samples of the shortest segment worth a spectrum
+)
+
+// describe computes everything the artifact holds.
+func describe(d *data, p plan, set settings) (*found, error) {
+	axes, timing, err := window(d, p, set)
+	if err != nil {
+		return nil, err
+	}
+	f := &found{timing: timing, time: axes.time}
+	ws, err := segments(timing, set)
+	if err != nil {
+		return nil, err
+	}
+	s := &kinds.Spectra{
+		Rate: timing.Rate, Step: ws.Step(), Window: ws.Window.String(), Segment: ws.Segment, Overlap: ws.Overlap,
+		Resolution: ws.Window.NoiseBandwidth(ws.Segment) * ws.Step(), Level: set.level,
+		From: timing.Start, To: timing.End, Samples: timing.Samples, Gaps: len(timing.Gaps), Jitter: timing.Jitter,
+	}
+	f.spectra = s
+	for _, g := range timing.Gaps {
+		s.Missing += g.Missing
+	}
+	from, to := set.from, set.to
+	if from == 0 {
+		from = 10 * s.Step
+	}
+	if to == 0 {
+		to = 0.4 * s.Rate
+	}
+	for i, c := range p.axes {
+		values := axes.values[i]
+		power, err := spectrum.Welch(cutRuns(values, timing.Runs), ws)
+		if err != nil {
+			return nil, refuse(err, timing, set)
+		}
+		s.Segments, s.Freedom, f.unused = power.Segments, power.Freedom, power.Unused
+		s.Lower, s.Upper = power.Bounds(set.level)
+		s.Axes = append(s.Axes, axisOf(c, values, power.Values))
+		for _, peak := range peaks.Find(power.Values, power.Step, peaks.Settings{
+			From: from, To: to, Prominence: set.prominence, Freedom: power.Freedom,
+			Resolution: s.Resolution, BinCorrelation: ws.Window.BinCorrelation(ws.Segment),
+		}) {
+			s.Peaks = append(s.Peaks, kinds.SpectraPeak{
+				Axis: i, Frequency: peak.Frequency, FrequencyError: peak.FrequencyError, Density: peak.Value,
+				Prominence: peak.Prominence, OverFloor: peak.OverFloor, Lower: peak.Lower, Upper: peak.Upper,
+				Damping: peak.Damping, DampingError: peak.DampingError, Narrow: peak.Narrow,
+			})
+		}
+	}
+	rotors(s, d, p, set)
+	return f, nil
+}
+
+// window cuts the axes to the times asked for and checks them.
+func window(d *data, p plan, set settings) (series, recording.Timing, error) {
+	if len(set.window) == 0 {
+		timing, err := analyse(d.axes, d.rate, p)
+		return d.axes, timing, err
+	}
+	first, last := d.axes.time[0], d.axes.time[len(d.axes.time)-1]
+	if first == last && len(d.axes.time) > 1 {
+		_, err := recording.Analyse(d.axes.time) // the time never changes, and no window could tell
+		return series{}, recording.Timing{}, placed(err, d.axes, p)
+	}
+	axes := d.axes.cut(set.window[0], set.window[1])
+	if len(axes.time) < 2 {
+		return series{}, recording.Timing{}, fault.New(fault.Input, "the window of %g s to %g s holds %d samples; the recording runs from %.6g s to %.6g s",
+			set.window[0], set.window[1], len(axes.time), first, last).In("", "").Of("window").Do("choose a window within the recording")
+	}
+	timing, err := analyse(axes, d.rate, p)
+	return axes, timing, err
+}
+
+func analyse(s series, rate float64, p plan) (recording.Timing, error) {
+	if n := len(s.row); rate > 0 && s.row[n-1]-s.row[0] == int64(n-1) {
+		t := recording.Steady(len(s.time), rate)
+		t.Start, t.End = s.time[0], s.time[len(s.time)-1]
+		return t, nil
+	}
+	t, err := recording.Analyse(s.time)
+	return t, placed(err, s, p)
+}
+
+// placed gives an error of a series the row and column of the recording.
+func placed(err error, s series, p plan) error {
+	var e *recording.Error
+	if !errors.As(err, &e) {
+		return err
+	}
+	out := *e
+	if out.Row > 0 {
+		out.Row = s.row[out.Row-1]
+	}
+	out.Column = p.time
+	return &out
+}
+
+// segments chooses the length of a segment: as the job says, or the power of two that makes bins just below half a
+// hertz, halved until there are enough averages; where there never are, the one with most of them.
+func segments(t recording.Timing, set settings) (spectrum.Settings, error) {
+	s := spectrum.Settings{Rate: t.Rate, Window: set.taper, Detrend: set.detrend}
+	count := func(n int) int {
+		s.Segment, s.Overlap = n, int(math.Round(set.overlap*float64(n)))
+		s.Overlap = min(s.Overlap, n-1)
+		total := 0
+		for _, r := range t.Runs {
+			total += s.Segments(r.Len())
+		}
+		return total
+	}
+	if set.resolution > 0 {
+		n := int(math.Round(t.Rate / set.resolution))
+		if n < shortest {
+			return s, fault.New(fault.Input, "bins of %g Hz are too wide for a rate of %.5g Hz", set.resolution, t.Rate).In("", "").Of("resolution").
+				Do("choose at most %.3g Hz", t.Rate/shortest)
+		}
+		count(n)
+		return s, nil
+	}
+	n := shortest
+	for limit := max(t.Rate/finestBin, leastSegment); float64(n) < limit; {
+		n *= 2
+	}
+	best, most := n, 0
+	for ; n >= shortest; n /= 2 {
+		k := count(n)
+		if k >= leastAverages {
+			return s, nil
+		}
+		if k > most {
+			best, most = n, k
+		}
+		if k > 0 && n <= 256 {
+			break
+		}
+	}
+	count(best)
+	return s, nil
+}
+
+func cutRuns(values []float64, runs []recording.Run) [][]float64 {
+	var out [][]float64
+	for _, r := range runs {
+		out = append(out, values[r.First:r.End])
+	}
+	return out
+}
+
+func refuse(err error, t recording.Timing, set settings) error {
+	var short *spectrum.ShortError
+	if !errors.As(err, &short) {
+		return &recording.Error{Text: err.Error(), Remedy: "remove such samples"}
+	}
+	text := fmt.Sprintf("the longest stretch without a gap has %d samples (%.3g s), a segment needs %d", short.Longest,
+		float64(short.Longest)/t.Rate, short.Segment)
+	if set.resolution > 0 {
+		return fault.New(fault.Input, "%s", text).In("", "").Of("resolution").Do("choose at least %.3g Hz, or a longer window", t.Rate/float64(short.Longest))
+	}
+	return &recording.Error{Text: text, Remedy: "give a longer recording or window, or one with fewer gaps"}
+}
+
+func axisOf(c channel, values, density []float64) kinds.SpectraAxis {
+	q := recording.Inspect(values)
+	mean := 0.0
+	for _, v := range values {
+		mean += v
+	}
+	mean /= float64(len(values))
+	squares := 0.0
+	for _, v := range values {
+		squares += (v - mean) * (v - mean)
+	}
+	return kinds.SpectraAxis{
+		Axis: c.name, Quantity: c.of, Unit: unitOfSI[c.of], Column: c.shown(), Mean: mean, Deviation: math.Sqrt(squares / float64(len(values))),
+		Largest: max(math.Abs(q.Min), math.Abs(q.Max)), Saturated: q.Saturated, Repeated: q.Repeated, Density: density,
+	}
+}
+
+// rotors adds the speeds of the rotors and the bands of their orders, within the times of the spectra.
+func rotors(s *kinds.Spectra, d *data, p plan, set settings) {
+	var turning []order.Rotor
+	for i, c := range p.rotors {
+		speeds := d.rotors[i].cut(s.From, s.To).values[0]
+		sorted := slices.Clone(speeds)
+		slices.Sort(sorted)
+		r := kinds.SpectraRotor{Rotor: c.name, Column: c.column, Blades: set.blades, Median: math.NaN(), Low: math.NaN(), High: math.NaN()}
+		if n := len(sorted); n > 0 {
+			r.Median, r.Low, r.High = sorted[n/2], sorted[n/100], sorted[n-1-n/100]
+		}
+		s.Rotors = append(s.Rotors, r)
+		for k := range speeds {
+			speeds[k] = math.Abs(speeds[k]) / (2 * math.Pi)
+		}
+		turning = append(turning, order.Rotor{Name: c.name, Speed: speeds, Blades: set.blades})
+	}
+	orders := slices.Clone(set.orders)
+	if orders == nil {
+		orders = []float64{}
+	}
+	for _, b := range order.Bands(turning, order.Settings{Orders: orders, Rate: s.Rate, Step: s.Step, Margin: s.Resolution}) {
+		s.Orders = append(s.Orders, kinds.OrderBand{
+			Rotor: b.Rotor, Order: b.Order, BladePassing: b.BladePassing, Low: b.Low, High: b.High, Share: b.Share, Folded: b.Folded,
+		})
+	}
+}

@@ -1,0 +1,190 @@
+package record
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+
+	"hushframe/core/pipeline/stage"
+	"hushframe/core/signal/recording"
+	"hushframe/stages/kinds"
+)
+
+const degree = math.Pi / 180
+
+// Thresholds of warnings; common practice.
+const (
+	muchJitter   = 0.05
+	muchRepeated = 0.5
+	fewAverages  = 16
+)
+
+// outcome tells what was found, guessed and left out.
+func outcome(f *found, h recording.Header, p plan, d *data, set settings) *stage.Outcome {
+	s := f.spectra
+	saturated := 0.0
+	for _, a := range s.Axes {
+		saturated = max(saturated, float64(a.Saturated)/float64(s.Samples))
+	}
+	listed := []any{}
+	for _, x := range s.Peaks {
+		axis := s.Axes[x.Axis]
+		listed = append(listed, map[string]any{
+			"axis": axis.Axis, "frequency": hertz(x.Frequency), "frequency_error": hertz(x.FrequencyError),
+			"level": stage.Quantity{SI: x.Density, Dimension: axis.Quantity + " density"}, "damping": x.Damping,
+		})
+	}
+	o := &stage.Outcome{
+		Figures: map[string]any{
+			"rate": hertz(s.Rate), "samples": float64(s.Samples), "gaps": float64(s.Gaps), "averages": float64(s.Segments),
+			"saturated": saturated, "peaks": listed,
+		},
+		Notes:    append(append([]string{}, h.Notes...), p.notes...),
+		Warnings: warnings(f, p, d, set),
+	}
+	o.Notes = append(o.Notes, d.notes...)
+	if d.partial > 0 {
+		o.Notes = append(o.Notes, fmt.Sprintf("%d rows hold some axes but not all and were left out", d.partial))
+	}
+	if left := d.rows - int64(len(d.axes.row)) - int64(d.partial); left > 0 {
+		o.Notes = append(o.Notes, fmt.Sprintf("%d of %d rows hold no sample of the axes", left, d.rows))
+	}
+	if d.epoch {
+		o.Notes = append(o.Notes, "the time column counts from an epoch; times are told from its first row")
+	}
+	if f.unused > 0 {
+		o.Notes = append(o.Notes, fmt.Sprintf("%d of %d samples are in no whole segment", f.unused, s.Samples))
+	}
+	o.Summary = []stage.Section{axisTable(s, set.file), peakTable(s)}
+	if len(s.Rotors) > 0 {
+		o.Summary = append(o.Summary, rotorTable(s))
+	}
+	return o
+}
+
+func hertz(f float64) stage.Quantity { return stage.Quantity{SI: f, Dimension: "frequency"} }
+
+func warnings(f *found, p plan, d *data, set settings) []stage.Warning {
+	var out []stage.Warning
+	s := f.spectra
+	add := func(id, where, remedy, format string, args ...any) {
+		out = append(out, stage.Warning{ID: "record." + id, Where: where, Remedy: remedy, Text: fmt.Sprintf(format, args...)})
+	}
+	for _, text := range append(slices.Clone(p.assumed), d.assumed...) {
+		add("unit-assumed", set.file, "state it in units", "%s", text)
+	}
+	if s.Gaps > 0 {
+		first := f.timing.Gaps[0]
+		add("gaps", set.file, "", "%d gaps with %d samples missing, the first at %.6g s; no segment straddles one", s.Gaps, s.Missing, f.time[first.After])
+	}
+	if s.Jitter > muchJitter {
+		add("jitter", set.file, "log at equal steps", "steps between samples differ by %.1f %% (root mean square); lines are blurred and levels lowered towards high frequencies", 100*s.Jitter)
+	}
+	for _, a := range s.Axes {
+		if a.Saturated > 0 {
+			add("saturated", a.Column, "choose a wider range of the sensor", "%d samples of %s stay at an extreme of %.4g %s for three or more in turn, as if the sensor were at its limit",
+				a.Saturated, a.Axis, shownRate(a, a.Largest), shownUnit(a))
+		}
+		if a.Repeated > muchRepeated {
+			add("repeated", a.Column, "log at the rate of the sensor", "%.0f %% of the samples of %s equal the one before; it seems to be logged faster than it is measured", 100*a.Repeated, a.Axis)
+		}
+	}
+	if s.Segments < fewAverages {
+		add("few-averages", set.file, "choose a wider bin or a longer window", "only %d segments are averaged, so a density is known to within a factor of %.2g to %.2g", s.Segments, s.Lower, s.Upper)
+	}
+	if len(p.rotors) == 0 {
+		add("no-rotor-speed", set.file, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")
+	}
+	for i, c := range p.rotors {
+		if len(d.rotors[i].cut(s.From, s.To).time) == 0 {
+			add("no-rotor-speed", c.column, "", "rotor %s has no speed within the times used", c.name)
+		}
+	}
+	return out
+}
+
+// shownRate turns a value into the unit it is shown in.
+func shownRate(a kinds.SpectraAxis, v float64) float64 {
+	if a.Quantity == angularRate {
+		return v / degree
+	}
+	return v
+}
+
+func shownUnit(a kinds.SpectraAxis) string {
+	if a.Quantity == angularRate {
+		return "deg/s"
+	}
+	return "m/s²"
+}
+
+func axisTable(s *kinds.Spectra, file string) stage.Section {
+	t := stage.Section{
+		Title: "Recording " + file,
+		Text: fmt.Sprintf("%.5g Hz, %.5g s to %.5g s, %d gaps; %d averages of %.3g s in bins of %.3g Hz, %g %% bounds at %.2f and %.2f times the density",
+			s.Rate, s.From, s.To, s.Gaps, s.Segments, float64(s.Segment)/s.Rate, s.Step, 100*s.Level, s.Lower, s.Upper),
+		Columns: []stage.Column{{Name: "axis"}, {Name: "column"}, {Name: "unit"}, {Name: "mean", Right: true}, {Name: "rms about it", Right: true},
+			{Name: "largest", Right: true}, {Name: "peaks", Right: true}},
+	}
+	for i, a := range s.Axes {
+		count := 0
+		for _, p := range s.Peaks {
+			if p.Axis == i {
+				count++
+			}
+		}
+		t.Rows = append(t.Rows, []string{a.Axis, a.Column, shownUnit(a), fmt.Sprintf("%.3g", shownRate(a, a.Mean)),
+			fmt.Sprintf("%.3g", shownRate(a, a.Deviation)), fmt.Sprintf("%.4g", shownRate(a, a.Largest)), fmt.Sprint(count)})
+	}
+	return t
+}
+
+func peakTable(s *kinds.Spectra) stage.Section {
+	t := stage.Section{
+		Title: "Observed peaks",
+		Text:  "± is one standard error; a narrow peak is a line, or a mode with less damping than can be seen",
+		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "±", Right: true}, {Name: "unit²/Hz", Right: true},
+			{Name: "stands out, dB", Right: true}, {Name: "damping, %", Right: true}, {Name: "±", Right: true}, {Name: "where rotors are"}},
+	}
+	for _, p := range s.Peaks {
+		a := s.Axes[p.Axis]
+		damping, by := "–", "–"
+		switch {
+		case p.Narrow:
+			damping = fmt.Sprintf("< %.2f", 100*p.Damping)
+		case !math.IsNaN(p.Damping):
+			damping, by = fmt.Sprintf("%.2f", 100*p.Damping), fmt.Sprintf("%.2f", 100*p.DampingError)
+		}
+		t.Rows = append(t.Rows, []string{a.Axis, fmt.Sprintf("%.1f", p.Frequency), fmt.Sprintf("%.2f", p.FrequencyError),
+			fmt.Sprintf("%.3g", shownRate(a, shownRate(a, p.Density))), fmt.Sprintf("%.1f", 10*math.Log10(p.Prominence)), damping, by, holding(s, p.Frequency)})
+	}
+	return t
+}
+
+// holding names the orders in whose bands a frequency lies.
+func holding(s *kinds.Spectra, f float64) string {
+	var out []string
+	seen := map[string]bool{}
+	for _, b := range s.Orders {
+		name := fmt.Sprintf("order %g", b.Order)
+		if b.Low <= f && f <= b.High && !seen[name] {
+			seen[name] = true
+			out = append(out, name)
+		}
+	}
+	return strings.Join(out, ", ")
+}
+
+func rotorTable(s *kinds.Spectra) stage.Section {
+	t := stage.Section{
+		Title:   "Rotor speeds within the window",
+		Columns: []stage.Column{{Name: "rotor"}, {Name: "column"}, {Name: "median, rpm", Right: true}, {Name: "98 % of the time, rpm"}, {Name: "order 1, Hz"}},
+	}
+	const rpm = 2 * math.Pi / 60
+	for _, r := range s.Rotors {
+		t.Rows = append(t.Rows, []string{r.Rotor, r.Column, fmt.Sprintf("%.0f", r.Median/rpm),
+			fmt.Sprintf("%.0f to %.0f", r.Low/rpm, r.High/rpm), fmt.Sprintf("%.1f to %.1f", r.Low/(2*math.Pi), r.High/(2*math.Pi))})
+	}
+	return t
+}

@@ -1,0 +1,92 @@
+package record
+
+import (
+	"fmt"
+	"math"
+	"slices"
+
+	"hushframe/core/pipeline/quantity"
+	"hushframe/core/signal/recording"
+)
+
+// The dimensions of columns.
+const (
+	angularRate  = "angular rate"
+	acceleration = "acceleration"
+	rotorSpeed   = "rotational speed"
+)
+
+var unitOfSI = map[string]string{angularRate: "rad/s", acceleration: "m/s2"}
+
+// spellings are units as recordings write them, where these differ from those of jobs.
+var spellings = map[string]map[string]string{
+	angularRate:  {"dps": "deg/s", "rps": "rad/s"},
+	acceleration: {"g": "g0", "G": "g0"},
+	rotorSpeed:   {"rps": "turn/s", "Hz": "turn/s", "hz": "turn/s", "1/s": "turn/s", "RPM": "rpm", "1/min": "rpm"},
+}
+
+// factor returns what a number in that unit is multiplied by to be in SI.
+func factor(unit, dimension, column string) (float64, error) {
+	spelled := unit
+	if s, ok := spellings[dimension][unit]; ok {
+		spelled = s
+	}
+	if dimension == acceleration && spelled == "mg" {
+		g, _ := quantity.ParseUnit("g0")
+		return g.Factor / 1000, nil
+	}
+	u, err := quantity.ParseUnit(spelled)
+	if err != nil || !u.Is(dimension) {
+		return 0, &recording.Error{Column: column, Text: fmt.Sprintf("%q is no unit of %s", unit, dimension),
+			Remedy: fmt.Sprintf(`state its unit in units, such as { %q = %q }`, column, quantity.Natural(dimension))}
+	}
+	return u.Factor, nil
+}
+
+// nameUnits are units at the end of a column name, as its last words.
+var nameUnits = map[string][]struct {
+	words []string
+	unit  string
+}{
+	angularRate: {
+		{[]string{"deg", "s"}, "deg/s"}, {[]string{"deg", "per", "s"}, "deg/s"}, {[]string{"degs"}, "deg/s"}, {[]string{"dps"}, "deg/s"},
+		{[]string{"rad", "s"}, "rad/s"}, {[]string{"rad", "per", "s"}, "rad/s"}, {[]string{"rads"}, "rad/s"},
+	},
+	acceleration: {
+		{[]string{"g"}, "g"}, {[]string{"mg"}, "mg"}, {[]string{"m", "s", "2"}, "m/s2"}, {[]string{"ms", "2"}, "m/s2"}, {[]string{"m", "per", "s", "2"}, "m/s2"},
+	},
+	rotorSpeed: {
+		{[]string{"rad", "s"}, "rad/s"}, {[]string{"hz"}, "turn/s"}, {[]string{"rps"}, "turn/s"}, {[]string{"rev", "s"}, "turn/s"},
+	},
+	"time": {
+		{[]string{"s"}, "s"}, {[]string{"sec"}, "s"}, {[]string{"seconds"}, "s"}, {[]string{"ms"}, "ms"}, {[]string{"msec"}, "ms"},
+		{[]string{"us"}, "us"}, {[]string{"usec"}, "us"}, {[]string{"ns"}, "ns"}, {[]string{"nsec"}, "ns"},
+	},
+}
+
+// unitInName returns the unit that a column name ends in, "" for none. A speed with "rpm" anywhere is in rpm.
+func unitInName(w []string, dimension string) string {
+	if dimension == rotorSpeed && has(w, "rpm") {
+		return "rpm"
+	}
+	for _, n := range nameUnits[dimension] {
+		if k := len(w) - len(n.words); k > 0 && slices.Equal(w[k:], n.words) {
+			return n.unit
+		}
+	}
+	return ""
+}
+
+// guessTimeUnit takes the unit in which a median step makes a rate between 20 Hz and 20 kHz; ok is false if none does.
+// Units are a thousand apart and so is the range, so there is never more than one.
+func guessTimeUnit(step float64) (unit string, seconds float64, ok bool) {
+	for _, u := range []struct {
+		name    string
+		seconds float64
+	}{{"s", 1}, {"ms", 1e-3}, {"us", 1e-6}, {"ns", 1e-9}} {
+		if rate := 1 / (step * u.seconds); rate >= 20 && rate < 20000 && !math.IsInf(rate, 0) {
+			return u.name, u.seconds, true
+		}
+	}
+	return "", 0, false
+}
