@@ -40,7 +40,7 @@ func atExpr(name string, expr hcl.Expression) at { return at{name, expr, expr.Ra
 func (p at) element(i, of int) at {
 	q := at{fmt.Sprintf("%s[%d]", p.name, i), nil, p.rng}
 	if p.expr != nil {
-		if items, diags := hcl.ExprList(p.expr); !diags.HasErrors() && len(items) == of {
+		if items, diags := hcl.ExprList(p.expr); !diags.HasErrors() && i >= 0 && i < of && len(items) == of {
 			q.expr, q.rng = items[i], items[i].Range()
 		}
 	}
@@ -66,7 +66,7 @@ func (d *decoder) wrong(rng hcl.Range, summary, format string, args ...any) {
 	d.diags = append(d.diags, &hcl.Diagnostic{
 		Severity: hcl.DiagError,
 		Summary:  summary,
-		Detail:   sentence(fmt.Sprintf(format, args...)),
+		Detail:   fmt.Sprintf(format, args...),
 		Subject:  rng.Ptr(),
 	})
 }
@@ -149,7 +149,7 @@ func (d *decoder) text(v cty.Value, p at, a stage.Argument, t stage.Type) any {
 		if v.Type() == cty.Number || v.Type() == cty.Bool {
 			hint = "put it in quotes"
 		} else if _, ok := dimensionOf(v.Type()); ok {
-			hint = `write "${…}" to make a text of it`
+			hint = "write tostring(…) to make a text of it"
 		}
 		return d.wrongType(p, v, a, t, hint)
 	}
@@ -222,7 +222,7 @@ func (d *decoder) amount(v cty.Value, p at, a stage.Argument, t stage.Type) any 
 			if x, known := Quantity(v); known {
 				text = quantity.Exact(x)
 			}
-			return d.wrongDimension(p, text, dimension, t.Dimension)
+			return d.wrongDimension(p, text, dimension, a, t)
 		}
 		if !d.known(v) {
 			return nil
@@ -234,7 +234,7 @@ func (d *decoder) amount(v cty.Value, p at, a stage.Argument, t stage.Type) any 
 		}
 		var err error
 		if q, err = quantity.ParseAs(v.AsString(), t.Dimension); err != nil {
-			d.wrong(p.rng, "Wrong quantity", "%s: %s", p.name, detail(fault.From(err)))
+			d.wrong(p.rng, "Wrong quantity", "%s: %s", p.name, ownExample(detail(fault.From(err)), a, t))
 			return nil
 		}
 	case v.Type() == cty.Number && quantity.Same(t.Dimension, "number"):
@@ -274,17 +274,23 @@ func (d *decoder) amount(v cty.Value, p at, a stage.Argument, t stage.Type) any 
 
 // wrongDimension reports a quantity of another dimension; text may be empty
 // when it is not known yet.
-func (d *decoder) wrongDimension(p at, text, got, due string) any {
+func (d *decoder) wrongDimension(p at, text, got string, a stage.Argument, t stage.Type) any {
 	if text != "" {
-		f := quantity.Mismatch(text, stage.Quantity{Dimension: got}, due)
+		f := quantity.Mismatch(text, stage.Quantity{Dimension: got}, t.Dimension)
 		if q, err := quantity.Parse(text); err == nil {
-			f = quantity.Mismatch(text, q, due)
+			f = quantity.Mismatch(text, q, t.Dimension)
 		}
-		d.wrong(p.rng, "Wrong quantity", "%s: %s", p.name, detail(f))
+		d.wrong(p.rng, "Wrong quantity", "%s: %s", p.name, ownExample(detail(f), a, t))
 		return nil
 	}
-	d.wrong(p.rng, "Wrong quantity", "%s takes %s, but this is %s", p.name, quantity.Article(due), quantity.Article(got))
+	d.wrong(p.rng, "Wrong quantity", "%s takes %s, but this is %s", p.name, quantity.Article(t.Dimension), quantity.Article(got))
 	return nil
+}
+
+// ownExample puts the example of the argument in the place of the general one of
+// its dimension.
+func ownExample(text string, a stage.Argument, t stage.Type) string {
+	return strings.Replace(text, "such as "+strconv.Quote(quantity.Example(t.Dimension)), "such as "+strconv.Quote(exampleOf(t, a)), 1)
 }
 
 // unitOf is the unit to suggest for an argument.

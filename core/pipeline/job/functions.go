@@ -49,7 +49,6 @@ func Functions() map[string]function.Function {
 		"reverse":  stdlib.ReverseListFunc,
 		"distinct": stdlib.DistinctFunc,
 		"contains": stdlib.ContainsFunc,
-		"index":    stdlib.IndexFunc,
 		"element":  stdlib.ElementFunc,
 		"slice":    stdlib.SliceFunc,
 		"keys":     stdlib.KeysFunc,
@@ -58,6 +57,8 @@ func Functions() map[string]function.Function {
 		"merge":    stdlib.MergeFunc,
 		"zipmap":   stdlib.ZipmapFunc,
 		"coalesce": stdlib.CoalesceFunc,
+		"all":      truths("true if every element of a list is, and for an empty list", true),
+		"any":      truths("true if an element of a list is", false),
 		// texts
 		"format":        stdlib.FormatFunc,
 		"join":          stdlib.JoinFunc,
@@ -212,6 +213,33 @@ var sum = function.New(&function.Spec{
 		return total, nil
 	},
 })
+
+// truths folds a list of truth values: all of them, or any of them.
+func truths(about string, all bool) function.Function {
+	return function.New(&function.Spec{
+		Description: about,
+		Params:      []function.Parameter{{Name: "list", Type: cty.List(cty.Bool)}},
+		Type:        function.StaticReturnType(cty.Bool),
+		Impl: func(args []cty.Value, _ cty.Type) (cty.Value, error) {
+			result, unknown := all, false
+			for it := args[0].ElementIterator(); it.Next(); {
+				_, e := it.Element()
+				switch {
+				case !e.IsKnown():
+					unknown = true
+				case e.IsNull():
+					return cty.NilVal, function.NewArgErrorf(0, "an element has no value")
+				case e.True() != all:
+					result = !all
+				}
+			}
+			if unknown && result == all {
+				return cty.UnknownVal(cty.Bool), nil
+			}
+			return cty.BoolVal(result), nil
+		},
+	})
+}
 
 var sortList = function.New(&function.Spec{
 	Description: "a list of numbers, or of texts, in rising order",

@@ -138,7 +138,7 @@ func (j *Job) Diagnose(s *Stage, err *fault.Error) hcl.Diagnostics {
 		Subject:  s.Range.Ptr(),
 	}
 	e := *err
-	d.Detail = sentence(detail(&e))
+	d.Detail = detail(&e)
 	for f := err; f != nil; f = f.Cause {
 		if f.Argument != "" {
 			d.Subject = s.ArgumentRange(f.Argument).Ptr()

@@ -45,7 +45,7 @@ func (l *loader) wrong(rng hcl.Range, summary, format string, args ...any) {
 	l.diags = append(l.diags, &hcl.Diagnostic{
 		Severity: hcl.DiagError,
 		Summary:  summary,
-		Detail:   sentence(fmt.Sprintf(format, args...)),
+		Detail:   fmt.Sprintf(format, args...),
 		Subject:  rng.Ptr(),
 	})
 }
@@ -87,7 +87,7 @@ func (l *loader) blocks(files []*hclsyntax.Body) {
 	for _, body := range files {
 		for _, a := range attributes(body) {
 			if near := nearest.Name(a.Name, blockNames()); near != "" {
-				l.wrong(a.NameRange, "Block written as an argument", "%s is a block: write %s", near, header(near))
+				l.wrong(a.NameRange, "Block written as an argument", "%q is a block: write %s", near, header(near))
 			} else {
 				l.wrong(a.NameRange, "Argument outside a block", "a job file holds only the blocks %s", enumerate(blockNames()))
 			}
@@ -179,7 +179,7 @@ func (l *loader) only(b *hclsyntax.Block, names []string) {
 			found = found || n == inner.Type
 		}
 		if found {
-			l.wrong(inner.TypeRange, "Argument written as a block", "%s is an argument: write %s = …", inner.Type, inner.Type)
+			l.wrong(inner.TypeRange, "Argument written as a block", "%q is an argument: write %s = …", inner.Type, inner.Type)
 		} else {
 			l.wrong(inner.TypeRange, "Unknown block", "a %s block has no blocks within it; its arguments are %s", b.Type, enumerate(names))
 		}

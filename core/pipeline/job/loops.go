@@ -25,7 +25,7 @@ func (j *Job) Loops() hcl.Diagnostics {
 		diags = append(diags, &hcl.Diagnostic{
 			Severity: hcl.DiagError,
 			Summary:  "Stages need each other in a circle",
-			Detail:   sentence(b.String() + "; remove one of these references"),
+			Detail:   b.String() + "; remove one of these references",
 			Subject:  loop[0].rng.Ptr(),
 		})
 	}
@@ -38,7 +38,7 @@ func (j *Job) Loops() hcl.Diagnostics {
 				diags = append(diags, &hcl.Diagnostic{
 					Severity: hcl.DiagError,
 					Summary:  "Stage comes too late",
-					Detail:   sentence(fmt.Sprintf("stage %s (%s) runs after every requirement has been judged, so only stages of that kind can need it", u.label, st.Kind)),
+					Detail:   fmt.Sprintf("stage %s (%s) runs after every requirement has been judged, so only stages of that kind can need it", u.label, st.Kind),
 					Subject:  u.rng.Ptr(),
 				})
 			}

@@ -136,16 +136,13 @@ func textQuantity(v cty.Value) string {
 
 func compareQuantities(a, b cty.Value, dimension string, equality bool, compare func(a, b float64) bool) (cty.Value, error) {
 	var si [2]float64
-	unknown := false
+	unknown, null := false, false
 	for i, v := range []cty.Value{a, b} {
 		switch {
-		case v.IsNull() && equality:
-			// Null equals null alone.
-			return cty.BoolVal((a.IsNull() && b.IsNull()) == compare(0, 0)), nil
-		case v.IsNull():
-			return cty.NilVal, errors.New("one side has no value in this run")
 		case !v.IsKnown():
 			unknown = true
+		case v.IsNull():
+			null = true
 		case v.Type() == cty.String:
 			q, err := quantity.ParseAs(v.AsString(), dimension)
 			if err != nil {
@@ -157,8 +154,14 @@ func compareQuantities(a, b cty.Value, dimension string, equality bool, compare 
 			si[i] = q.SI
 		}
 	}
-	if unknown {
+	switch {
+	case null && !equality:
+		return cty.NilVal, errors.New("one side has no value in this run")
+	case unknown:
 		return cty.UnknownVal(cty.Bool), nil
+	case null:
+		// Null equals null alone.
+		return cty.BoolVal((a.IsNull() && b.IsNull()) == compare(0, 0)), nil
 	}
 	return cty.BoolVal(compare(si[0], si[1])), nil
 }

@@ -178,7 +178,7 @@ func (r *Requirement) judgeCondition(v *Verdict, value cty.Value, ctx *hcl.EvalC
 		return
 	case value.IsNull() || value.Type() != cty.Bool:
 		*diags = append(*diags, &hcl.Diagnostic{Severity: hcl.DiagError, Summary: "Wrong type", Subject: c.bound.Range().Ptr(),
-			Detail: sentence(fmt.Sprintf("that takes a condition, true or false, not %s", describeValue(value)))})
+			Detail: fmt.Sprintf("that takes a condition, true or false, not %s", describeValue(value))})
 		return
 	case !value.IsKnown():
 		return
@@ -232,7 +232,7 @@ func (r *Requirement) judgeFigure(v *Verdict, figure, bound cty.Value, diags *hc
 			return
 		}
 		*diags = append(*diags, &hcl.Diagnostic{Severity: hcl.DiagError, Summary: "Wrong type", Subject: c.figure.Range().Ptr(),
-			Detail: sentence(fmt.Sprintf("figure takes one number, quantity, text or truth value, not %s", describeValue(figure)))})
+			Detail: fmt.Sprintf("figure takes one number, quantity, text or truth value, not %s", describeValue(figure))})
 		return
 	}
 	if figure.IsKnown() && !figure.IsNull() && textQuantity(figure) != "" {
@@ -247,7 +247,7 @@ func (r *Requirement) judgeFigure(v *Verdict, figure, bound cty.Value, diags *hc
 	case c.kind != "equals":
 		if !ordered {
 			*diags = append(*diags, &hcl.Diagnostic{Severity: hcl.DiagError, Summary: "Wrong type", Subject: c.figure.Range().Ptr(),
-				Detail: sentence(fmt.Sprintf("%s takes a number or a quantity as figure, not %s", c.kind, describeValue(figure)))})
+				Detail: fmt.Sprintf("%s takes a number or a quantity as figure, not %s", c.kind, describeValue(figure))})
 			return
 		}
 	}

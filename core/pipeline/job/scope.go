@@ -71,7 +71,7 @@ func (s *scope) context(figures Figures) (*hcl.EvalContext, hcl.Diagnostics) {
 				diags = append(diags, &hcl.Diagnostic{
 					Severity: hcl.DiagError,
 					Summary:  "Figure of the wrong type",
-					Detail:   sentence(fmt.Sprintf("stage %s reported its figure %s wrongly: %s; this is a mistake of the stage %q, not of the job", label, f.Name, err, st.Kind)),
+					Detail:   fmt.Sprintf("stage %s reported its figure %s wrongly: %s; this is a mistake of the stage %q, not of the job", label, f.Name, err, st.Kind),
 					Subject:  st.Range.Ptr(),
 				})
 				v = cty.UnknownVal(figureType(f.Type))
@@ -110,7 +110,7 @@ func (s *scope) reference(t hcl.Traversal, stages bool, why string) (*use, *hcl.
 		return &hcl.Diagnostic{
 			Severity: hcl.DiagError,
 			Summary:  summary,
-			Detail:   sentence(fmt.Sprintf(format, args...)),
+			Detail:   fmt.Sprintf(format, args...),
 			Subject:  rng.Ptr(),
 			Context:  t.SourceRange().Ptr(),
 		}

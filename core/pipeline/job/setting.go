@@ -37,7 +37,7 @@ func (l *loader) readSettings() {
 			l.diags = append(l.diags, &hcl.Diagnostic{
 				Severity: hcl.DiagError,
 				Summary:  "Unknown setting on the command line",
-				Detail:   sentence(fmt.Sprintf("--set %s=%s: this job has no setting %q%s", name, l.opt.Set[name], name, suggest(name, l.scope.order, "its settings are"))),
+				Detail:   fmt.Sprintf("--set %s=%s: this job has no setting %q%s", name, l.opt.Set[name], name, suggest(name, l.scope.order, "its settings are")),
 			})
 		}
 	}

@@ -3,6 +3,7 @@ package job
 import (
 	"bytes"
 	"errors"
+	"fmt"
 	"io/fs"
 	"os"
 	"path/filepath"
@@ -19,8 +20,9 @@ import (
 // Bounds that no sensible job meets; they keep the recursive parser within its
 // stack.
 const (
-	longestSource = 1 << 20
-	deepestSource = 200
+	longestSource     = 1 << 20
+	deepest           = 200
+	longestExpression = 2000
 )
 
 // read finds and parses the files of a job.
@@ -154,7 +156,7 @@ func (l *loader) file(path string) *hclsyntax.Body {
 func parse(src []byte, name string) (*hclsyntax.Body, *hcl.Diagnostic) {
 	start := hcl.Range{Filename: name, Start: hcl.InitialPos, End: hcl.InitialPos}
 	not := func(summary, detail string) (*hclsyntax.Body, *hcl.Diagnostic) {
-		return nil, &hcl.Diagnostic{Severity: hcl.DiagError, Summary: summary, Detail: sentence(detail), Subject: &start}
+		return nil, &hcl.Diagnostic{Severity: hcl.DiagError, Summary: summary, Detail: detail, Subject: &start}
 	}
 	if len(bytes.TrimSpace(src)) == 0 {
 		return not("Empty file", `the file is empty; a job starts with job "name" { about = "…" }`)
@@ -168,7 +170,7 @@ func parse(src []byte, name string) (*hclsyntax.Body, *hcl.Diagnostic) {
 	file, diags := hclsyntax.ParseConfig(src, name, hcl.InitialPos)
 	for _, d := range diags {
 		if d.Severity == hcl.DiagError {
-			return nil, d
+			return nil, syntax(d, src, name)
 		}
 	}
 	body := file.Body.(*hclsyntax.Body)
@@ -176,8 +178,28 @@ func parse(src []byte, name string) (*hclsyntax.Body, *hcl.Diagnostic) {
 	return body, nil
 }
 
-// nesting refuses text nested so deeply that parsing it could exhaust the
-// stack. Operators in a row nest as well.
+// syntax says of a mistake in the first words of a file that the whole file is
+// something else.
+func syntax(d *hcl.Diagnostic, src []byte, name string) *hcl.Diagnostic {
+	tokens, _ := hclsyntax.LexConfig(src, name, hcl.InitialPos)
+	for _, t := range tokens {
+		switch t.Type {
+		case hclsyntax.TokenComment, hclsyntax.TokenNewline:
+			continue
+		}
+		if d.Subject == nil || d.Subject.Start.Line > t.Range.Start.Line {
+			break
+		}
+		e := *d
+		e.Summary = "Not a job file"
+		e.Detail = `the file does not begin like a job, which is made of blocks such as job "name" { … }`
+		return &e
+	}
+	return d
+}
+
+// nesting refuses text nested so deeply that parsing or evaluating it could
+// exhaust the stack. Operators and steps of one expression nest as well.
 func nesting(src []byte, name string) *hcl.Diagnostic {
 	tokens, _ := hclsyntax.LexConfig(src, name, hcl.InitialPos)
 	depth, row := 0, 0
@@ -189,14 +211,19 @@ func nesting(src []byte, name string) *hcl.Diagnostic {
 		case hclsyntax.TokenCBrace, hclsyntax.TokenCParen, hclsyntax.TokenCBrack, hclsyntax.TokenTemplateSeqEnd,
 			hclsyntax.TokenCQuote, hclsyntax.TokenCHeredoc:
 			depth--
-		case hclsyntax.TokenBang, hclsyntax.TokenMinus, hclsyntax.TokenQuestion:
-			row++
-		case hclsyntax.TokenNewline:
-			row = 0
 		}
-		if depth > deepestSource || row > deepestSource {
+		switch t.Type {
+		case hclsyntax.TokenEqual, hclsyntax.TokenComma, hclsyntax.TokenOBrace:
+			row = 0
+		case hclsyntax.TokenIdent, hclsyntax.TokenNumberLit, hclsyntax.TokenNewline, hclsyntax.TokenComment,
+			hclsyntax.TokenStringLit, hclsyntax.TokenQuotedLit:
+		default:
+			row++
+		}
+		if depth > deepest || row > longestExpression {
 			return &hcl.Diagnostic{Severity: hcl.DiagError, Summary: "Nested too deeply",
-				Detail: "Expressions and blocks may be nested 200 deep.", Subject: t.Range.Ptr()}
+				Detail:  fmt.Sprintf("expressions and blocks may be nested %d deep, and an expression may have %d operators", deepest, longestExpression),
+				Subject: t.Range.Ptr()}
 		}
 	}
 	return nil

@@ -5,6 +5,8 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"strconv"
+	"strings"
 	"time"
 
 	"github.com/hashicorp/hcl/v2"
@@ -84,7 +86,7 @@ func (l *loader) stageBody(st *Stage, body *hclsyntax.Body) {
 	for _, b := range body.Blocks {
 		switch {
 		case reserved(b.Type) || st.described && hasArgument(st.Description.Arguments, b.Type):
-			l.wrong(b.TypeRange, "Argument written as a block", "%s is an argument: write %s = …", b.Type, b.Type)
+			l.wrong(b.TypeRange, "Argument written as a block", "%q is an argument: write %s = …", b.Type, b.Type)
 		case st.described:
 			l.wrong(b.TypeRange, "Unknown block", "a stage has no blocks; stage %q takes the arguments %s", st.Kind,
 				enumerate(append(argumentNames(st.Description.Arguments), Reserved()...)))
@@ -110,6 +112,10 @@ func (l *loader) stageBody(st *Stage, body *hclsyntax.Body) {
 		uses, diags := l.scope.references(attr.Expr, true, "")
 		l.diags = append(l.diags, diags...)
 		a.bad = diags.HasErrors()
+		if a.bad {
+			ctx, _ := l.scope.context(nil)
+			l.sound(attr.Expr, ctx)
+		}
 		st.uses = append(st.uses, uses...)
 		for _, u := range uses {
 			if u.figures {
@@ -142,6 +148,26 @@ func (l *loader) stageBody(st *Stage, body *hclsyntax.Body) {
 		}
 	}
 	st.Needs, st.Figures = sortedSet(needs), sortedSet(figures)
+}
+
+// sound evaluates those parts of a list or object whose references are right, so
+// that one wrong reference does not hide other mistakes beside it.
+func (l *loader) sound(expr hclsyntax.Expression, ctx *hcl.EvalContext) {
+	if _, diags := l.scope.references(expr, true, ""); !diags.HasErrors() {
+		_, diags = evaluate(expr, ctx)
+		l.diags = append(l.diags, diags...)
+		return
+	}
+	switch x := expr.(type) {
+	case *hclsyntax.ObjectConsExpr:
+		for _, item := range x.Items {
+			l.sound(item.ValueExpr, ctx)
+		}
+	case *hclsyntax.TupleConsExpr:
+		for _, e := range x.Exprs {
+			l.sound(e, ctx)
+		}
+	}
 }
 
 func blockOf(body *hclsyntax.Body, name string) bool {
@@ -283,7 +309,7 @@ func (s *Stage) Evaluate(figures Figures) (stage.Arguments, map[string][]Artifac
 			if len(needed) == len(s.Figures) && d.pending && !d.diags.HasErrors() && s.sound() {
 				diags = append(diags, &hcl.Diagnostic{
 					Severity: hcl.DiagError, Summary: "No value",
-					Detail:  sentence(spec.Name + " has no value although every figure it uses is known"),
+					Detail:  spec.Name + " has no value although every figure it uses is known",
 					Subject: a.expr.Range().Ptr(),
 				})
 			}
@@ -313,18 +339,27 @@ func takesArtifacts(t stage.Type) bool {
 }
 
 // ArgumentRange is the place of an argument's value in the job, or the header of
-// the stage when the job leaves it out. The name may go on into the value
-// ("channels.pitch"), which then is the place of the whole argument.
+// the stage when the job leaves it out. The name may go on into the value, as in
+// "channels.pitch" or "window[1]"; the place is as deep as the job spells it out.
 func (s *Stage) ArgumentRange(name string) hcl.Range {
-	for end := len(name); end > 0; end-- {
-		if end < len(name) && name[end] != '.' && name[end] != '[' {
-			continue
-		}
-		if a, ok := s.arguments[name[:end]]; ok {
-			return a.expr.Range()
-		}
+	steps := strings.FieldsFunc(name, func(r rune) bool { return r == '.' || r == '[' || r == ']' })
+	if len(steps) == 0 || s.arguments[steps[0]] == nil {
+		return s.Range
 	}
-	return s.Range
+	p := atExpr(steps[0], s.arguments[steps[0]].expr)
+	for _, step := range steps[1:] {
+		if p.expr == nil {
+			break
+		}
+		if i, err := strconv.Atoi(step); err == nil {
+			if items, diags := hcl.ExprList(p.expr); !diags.HasErrors() {
+				p = p.element(i, len(items))
+				continue
+			}
+		}
+		p, _ = p.member(step)
+	}
+	return p.rng
 }
 
 // Use tells where a stage refers to another: the text and its place.
@@ -397,6 +432,11 @@ func checkDescription(d stage.Description, kinds func(string) bool) error {
 		seen[a.Name] = true
 		if err := check("argument "+a.Name, a.Type, true); err != nil {
 			return err
+		}
+		if a.Default != nil && !takesArtifacts(a.Type) {
+			if _, err := figureValue(plain(a.Default), a.Type); err != nil {
+				return bad("argument %s: the default does not fit, %v", a.Name, err)
+			}
 		}
 	}
 	outputs := map[string]bool{figuresName: true}

@@ -4,8 +4,6 @@ import (
 	"fmt"
 	"strconv"
 	"strings"
-	"unicode"
-	"unicode/utf8"
 
 	"github.com/zclconf/go-cty/cty"
 
@@ -21,7 +19,7 @@ func suggest(name string, candidates []string, are string) string {
 		return fmt.Sprintf("; did you mean %q?", near)
 	}
 	if len(candidates) == 0 {
-		return "; " + are + " none"
+		return "; there are none"
 	}
 	return "; " + are + " " + enumerate(quoted(candidates))
 }
@@ -41,7 +39,7 @@ func enumerate(names []string) string { return joined(names, " and ") }
 func oneOf(names []string) string { return joined(names, " or ") }
 
 func joined(names []string, last string) string {
-	const most = 30
+	const most = 60
 	if len(names) > most {
 		return strings.Join(names[:most], ", ") + fmt.Sprintf(" and %d more", len(names)-most)
 	}
@@ -50,23 +48,6 @@ func joined(names []string, last string) string {
 	}
 	n := len(names) - 1
 	return strings.Join(names[:n], ", ") + last + names[n]
-}
-
-// sentence makes a sentence of a clause: capital and full stop.
-func sentence(s string) string {
-	s = strings.TrimSpace(s)
-	if s == "" {
-		return ""
-	}
-	r, n := utf8.DecodeRuneInString(s)
-	// A name of the job keeps its letters.
-	if word, _, _ := strings.Cut(s, " "); !strings.ContainsAny(word, "._") {
-		s = string(unicode.ToUpper(r)) + s[n:]
-	}
-	if !strings.HasSuffix(s, ".") && !strings.HasSuffix(s, "?") && !strings.HasSuffix(s, "!") {
-		s += "."
-	}
-	return s
 }
 
 // detail gives what a fault says, with its remedy as a sentence of its own.
@@ -156,7 +137,15 @@ func describeValue(v cty.Value) string {
 		}
 		return quantity.Article(d)
 	}
-	what := map[cty.Type]string{cty.String: "text", cty.Number: "number", cty.Bool: "truth value"}[t]
+	what := ""
+	switch t {
+	case cty.String:
+		what = "text"
+	case cty.Number:
+		what = "number"
+	case cty.Bool:
+		what = "truth value"
+	}
 	switch {
 	case what != "" && v.IsKnown():
 		return "the " + what + " " + short(renderValue(v))

@@ -31,14 +31,6 @@ func Name(written string, candidates []string) string {
 	return best
 }
 
-// Quoted gives `; did you mean "x"?`, or "" when nothing is near.
-func Quoted(written string, candidates []string) string {
-	if n := Name(written, candidates); n != "" {
-		return `; did you mean "` + n + `"?`
-	}
-	return ""
-}
-
 // longest bounds the work on absurd input; nobody mistypes a name this long.
 const longest = 100
 

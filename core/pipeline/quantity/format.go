@@ -105,6 +105,9 @@ func article(dimension string) string {
 	if _, ok := named(dimension); !ok {
 		return "a quantity in " + siUnit(dimension)
 	}
+	if dimension == "memory" {
+		return "an amount of memory"
+	}
 	if strings.ContainsRune("aeiou", rune(dimension[0])) {
 		return "an " + dimension
 	}

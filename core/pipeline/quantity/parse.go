@@ -120,7 +120,7 @@ func shorten(text string) string {
 // sharpen adds to a fault of Parse what the due dimension tells.
 func sharpen(err error, text, dimension string) error {
 	f := fault.From(err)
-	if strings.HasPrefix(f.Remedy, "did you mean") || strings.Contains(f.Remedy, "decimal point") {
+	if !strings.HasPrefix(f.Remedy, "write a ") && !strings.HasPrefix(f.Remedy, "write K") {
 		return f
 	}
 	return f.Do("%s is due, such as %q", article(dimension), Example(dimension))
@@ -151,5 +151,5 @@ func Mismatch(text string, q stage.Quantity, dimension string) *fault.Error {
 	case got == dimensionByName["mass"] && due == dimensionByName["acceleration"]:
 		return e.Do(`g is the gram; write "g0" for standard gravity, or m/s2`)
 	}
-	return e.Do("write it in %s, such as %q", Natural(dimension), Example(dimension))
+	return e.Do("write one such as %q", Example(dimension))
 }

@@ -207,7 +207,7 @@ func (p *unitParser) exponent() (n int, given bool, err error) {
 func (p *unitParser) add(v, w vector, times int) (vector, error) {
 	for i := range v {
 		n := int(v[i]) + times*int(w[i])
-		if n < -99 || n > 99 {
+		if n < -9 || n > 9 {
 			return v, p.fail("its powers are too high")
 		}
 		v[i] = int8(n)

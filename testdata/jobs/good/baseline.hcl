@@ -32,7 +32,7 @@ stage "sweep" "flight" {
 }
 
 stage "record" "hover" {
-  file   = "flights/hover-03.csv.gz"
+  file   = "flights/hover-03.csv"
   window = ["8 s", "60 s"]
 }
 

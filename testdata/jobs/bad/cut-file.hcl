@@ -1,0 +1,10 @@
+  0
+SECTION
+  2
+ENTITIES
+  0
+LINE
+  8
+cut
+ 10
+0.0

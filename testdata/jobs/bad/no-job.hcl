@@ -1,0 +1,1 @@
+setting "a" { value = 1 }

@@ -1,0 +1,6 @@
+job "bad" {}
+
+setting "a" {
+  value = "5 mm
+}
+stage "mesh" "b" {

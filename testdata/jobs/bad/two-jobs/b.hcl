@@ -1,0 +1,2 @@
+job "b" {}
+setting "x" { value = setting.y }

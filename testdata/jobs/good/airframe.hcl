@@ -1,0 +1,3 @@
+plate "arm_fr" {
+  thickness = "5 mm"
+}

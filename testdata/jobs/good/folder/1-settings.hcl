@@ -1,0 +1,3 @@
+job "in-pieces" {}
+
+setting "size" { value = "3 mm" }

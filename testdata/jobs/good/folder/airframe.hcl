@@ -1,0 +1,1 @@
+plate "arm_fr" { thickness = "5 mm" }
