@@ -81,9 +81,21 @@ func Even(lo, hi float64, n int) []float64 {
 
 // Lattice is Rectangle with the given ascending grid lines.
 func Lattice(xs, ys []float64, distort float64) *Grid {
+	g := Cells(xs, ys, distort, func(x, y float64) bool { return true })
+	const tiny = 1e-9
+	x0, x1, y0, y1 := xs[0], xs[len(xs)-1], ys[0], ys[len(ys)-1]
+	g.Collect("x=0", func(x, _ float64) bool { return math.Abs(x-x0) < tiny*(x1-x0) })
+	g.Collect("x=a", func(x, _ float64) bool { return math.Abs(x-x1) < tiny*(x1-x0) })
+	g.Collect("y=0", func(_, y float64) bool { return math.Abs(y-y0) < tiny*(y1-y0) })
+	g.Collect("y=b", func(_, y float64) bool { return math.Abs(y-y1) < tiny*(y1-y0) })
+	return g
+}
+
+// Cells meshes those cells of a lattice whose centre keep accepts.
+func Cells(xs, ys []float64, distort float64, keep func(x, y float64) bool) *Grid {
 	rng := rand.New(rand.NewPCG(11, 29))
 	nx, ny := len(xs)-1, len(ys)-1
-	var points [][2]float64
+	var lattice [][2]float64
 	for j, y := range ys {
 		for i, x := range xs {
 			dx, dy := 2*rng.Float64()-1, 2*rng.Float64()-1
@@ -91,29 +103,69 @@ func Lattice(xs, ys []float64, distort float64) *Grid {
 				x += distort * dx * math.Min(xs[i+1]-xs[i], xs[i]-xs[i-1])
 				y += distort * dy * math.Min(ys[j+1]-ys[j], ys[j]-ys[j-1])
 			}
-			points = append(points, [2]float64{x, y})
+			lattice = append(lattice, [2]float64{x, y})
 		}
 	}
+	var points [][2]float64
+	number := make([]int32, len(lattice))
+	for i := range number {
+		number[i] = -1
+	}
 	var triangles [][3]int32
+	add := func(corners ...int) {
+		var t [3]int32
+		for k, c := range corners {
+			if number[c] < 0 {
+				number[c] = int32(len(points))
+				points = append(points, lattice[c])
+			}
+			t[k] = number[c]
+		}
+		triangles = append(triangles, t)
+	}
 	for j := range ny {
 		for i := range nx {
-			p := int32(j*(nx+1) + i)
-			q, r, s := p+1, p+int32(nx)+2, p+int32(nx)+1
+			if !keep((xs[i]+xs[i+1])/2, (ys[j]+ys[j+1])/2) {
+				continue
+			}
+			p := j*(nx+1) + i
+			q, r, s := p+1, p+nx+2, p+nx+1
 			if (i+j)%2 == 0 {
-				triangles = append(triangles, [3]int32{p, q, r}, [3]int32{p, r, s})
+				add(p, q, r)
+				add(p, r, s)
 			} else {
-				triangles = append(triangles, [3]int32{p, q, s}, [3]int32{q, r, s})
+				add(p, q, s)
+				add(q, r, s)
 			}
 		}
 	}
-	g := FromCorners(points, triangles)
-	const tiny = 1e-9
-	x0, x1, y0, y1 := xs[0], xs[nx], ys[0], ys[ny]
-	g.Collect("x=0", func(x, _ float64) bool { return math.Abs(x-x0) < tiny*(x1-x0) })
-	g.Collect("x=a", func(x, _ float64) bool { return math.Abs(x-x1) < tiny*(x1-x0) })
-	g.Collect("y=0", func(_, y float64) bool { return math.Abs(y-y0) < tiny*(y1-y0) })
-	g.Collect("y=b", func(_, y float64) bool { return math.Abs(y-y1) < tiny*(y1-y0) })
-	return g
+	return FromCorners(points, triangles)
+}
+
+// Plus meshes a square hub of side s at the origin with four arms of width w and length l along ±x
+// and ±y, with cells about size, and a grid line at each of the given distances from the centre.
+func Plus(s, w, l, size float64, lines ...float64) *Grid {
+	stops := append([]float64{0, w / 2, s / 2, s/2 + l}, lines...)
+	sort.Float64s(stops)
+	var half []float64
+	for i := 1; i < len(stops); i++ {
+		if span := stops[i] - stops[i-1]; span > 1e-9*l {
+			n := int(math.Ceil(span/size - 1e-9))
+			for k := range n {
+				half = append(half, stops[i-1]+span*float64(k)/float64(n))
+			}
+		}
+	}
+	half = append(half, s/2+l)
+	var axis []float64
+	for i := len(half) - 1; i > 0; i-- {
+		axis = append(axis, -half[i])
+	}
+	axis = append(axis, half...)
+	return Cells(axis, axis, 0, func(x, y float64) bool {
+		x, y = math.Abs(x), math.Abs(y)
+		return x < s/2 && y < s/2 || x < w/2 || y < w/2
+	})
 }
 
 // Ring meshes inner ≤ radius ≤ outer with rows of cells and around of them about the axis; sides on

@@ -1,7 +1,10 @@
 package assembly
 
+import "hushframe/core/numeric/sparse"
+
 // Expand writes the motion of every node under the unknowns y: six components per node, node by
-// node, in airframe axes. Unused nodes get zeros. It panics when lengths do not fit.
+// node, in airframe axes. Mid-side nodes of three-node elements get the mean of their corners, other
+// unused nodes zeros. It panics when lengths do not fit.
 func (s *System) Expand(dst, y []float64) {
 	l := s.layout
 	if len(y) != s.N || len(dst) != 6*len(l.nodes) {
@@ -24,6 +27,22 @@ func (s *System) Expand(dst, y []float64) {
 		}
 		m = nd.axes.out6(m)
 		copy(dst[6*v:], m[:])
+	}
+	for i := range l.problem.Plates {
+		part := &l.problem.Plates[i]
+		if part.Type.Describe().Nodes != 3 {
+			continue
+		}
+		for _, e := range part.Elements {
+			for side := range 3 {
+				if mid := e[3+side]; !l.used[mid] {
+					a, b := dst[6*e[side]:], dst[6*e[(side+1)%3]:]
+					for k := range 6 {
+						dst[6*int(mid)+k] = (a[k] + b[k]) / 2
+					}
+				}
+			}
+		}
 	}
 }
 
@@ -104,3 +123,22 @@ func (s *System) Rigid() [6][]float64 {
 // NodeUnknowns lists the unknowns of the six components of a node in its own axes, -1 for components
 // that are held or follow a body.
 func (s *System) NodeUnknowns(v int32) [6]int32 { return s.layout.nodes[v].own }
+
+// Ordering returns the elimination order for K and M, from their graph and the places of unknowns.
+func (s *System) Ordering() sparse.Ordering {
+	l := s.layout
+	place := make([]int32, s.N)
+	var coords [][3]float64
+	at := map[[2]int32]int32{}
+	for u, src := range l.source {
+		key := [2]int32{src.node, src.body}
+		i, ok := at[key]
+		if !ok {
+			i = int32(len(coords))
+			at[key] = i
+			coords = append(coords, l.where[u])
+		}
+		place[u] = i
+	}
+	return sparse.NestedDissection(s.K.Pattern(), place, coords)
+}

@@ -16,13 +16,14 @@ type System struct {
 	// N is the number of unknowns; K (N/m, N, N·m) and M (kg, kg·m, kg·m²) share their pattern.
 	N    int
 	K, M *sparse.Symmetric
-	// Where is the place of each unknown, for orderings by geometry.
-	Where []Vec
 	// Merges lists the bodies that became one.
 	Merges []Merge
-	// Mass is the total mass in kg and Centre its centre of gravity, summed without the matrices.
-	Mass   float64
-	Centre Vec
+	// Mass is the total mass in kg and Centre its centre of gravity; GroupMass and GroupCentre those of
+	// each group. They are summed without K and M.
+	Mass        float64
+	Centre      Vec
+	GroupMass   []float64
+	GroupCentre []Vec
 
 	layout  *layout
 	plates  []assembledPlates
@@ -66,7 +67,7 @@ func Assemble(ctx context.Context, p *Problem, threads int) (*System, error) {
 	if err := checkConnected(p, l); err != nil {
 		return nil, err
 	}
-	s := &System{N: l.count, Where: l.where, Merges: l.merges, layout: l}
+	s := &System{N: l.count, Merges: l.merges, layout: l}
 	for i := range p.Plates {
 		if err := s.computePlates(ctx, &p.Plates[i], threads); err != nil {
 			return nil, err
@@ -96,6 +97,9 @@ func Assemble(ctx context.Context, p *Problem, threads int) (*System, error) {
 		s.springs = append(s.springs, as)
 	}
 	s.weigh()
+	if !(s.Mass > 0) {
+		return nil, errors.New("the structure has no mass")
+	}
 	s.add(threads)
 	return s, nil
 }
@@ -168,12 +172,13 @@ func (s *System) computeBeams(part *BeamPart) error {
 
 // weigh sums mass and centre of gravity over parts and bodies.
 func (s *System) weigh() {
-	var moment Vec
-	point := func(m float64, at Vec) {
-		s.Mass += m
-		moment = add(moment, scale(m, at))
-	}
 	p := s.layout.problem
+	s.GroupMass, s.GroupCentre = make([]float64, len(p.Groups)), make([]Vec, len(p.Groups))
+	moments := make([]Vec, len(p.Groups))
+	point := func(g int, m float64, at Vec) {
+		s.GroupMass[g] += m
+		moments[g] = add(moments[g], scale(m, at))
+	}
 	for i := range s.plates {
 		a := &s.plates[i]
 		size := element.Packed(6 * a.nodes)
@@ -187,23 +192,35 @@ func (s *System) weigh() {
 				for j := range a.nodes {
 					m += packed[element.Packed(6*max(i, j))+6*min(i, j)]
 				}
-				point(m, add(p.Nodes[nodes[i]], off))
+				point(a.part.Group, m, add(p.Nodes[nodes[i]], off))
 			}
 		}
 	}
 	for i := range s.beams {
 		for e, nodes := range s.beams[i].part.Elements {
 			m := s.beams[i].part.Section.M * s.beams[i].lengths[e] / 2
-			point(m, p.Nodes[nodes[0]])
-			point(m, p.Nodes[nodes[1]])
+			point(s.beams[i].part.Group, m, p.Nodes[nodes[0]])
+			point(s.beams[i].part.Group, m, p.Nodes[nodes[1]])
+		}
+	}
+	var moment Vec
+	for g, m := range s.GroupMass {
+		s.Mass += m
+		moment = add(moment, moments[g])
+		if m > 0 {
+			s.GroupCentre[g] = scale(1/m, moments[g])
 		}
 	}
 	for _, b := range p.Bodies {
 		for _, in := range b.Inertia {
-			point(in.Mass, in.Centre)
+			s.Mass += in.Mass
+			moment = add(moment, scale(in.Mass, in.Centre))
 		}
 	}
 	if s.Mass > 0 {
 		s.Centre = scale(1/s.Mass, moment)
 	}
 }
+
+// Problem returns what was assembled.
+func (s *System) Problem() *Problem { return s.layout.problem }

@@ -1,0 +1,239 @@
+package modal
+
+import (
+	"context"
+	"fmt"
+	"math"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/assembly"
+	"hushframe/core/numeric/eigen"
+)
+
+// Place is a site to be: a point fixed to a body of the problem.
+type Place struct {
+	Name  string
+	Kind  string // "rotor", "gyro" or "body"
+	Body  int
+	Point airframe.Vec
+}
+
+// Options says what to compute.
+type Options struct {
+	// UpTo asks for every mode below it, Hz.
+	UpTo    float64
+	Threads int
+	// Progress, when not nil, is told the phase and the fraction of it that is done.
+	Progress func(phase string, fraction float64)
+}
+
+// Structure is all that does not depend on loss factors or rotor speeds.
+type Structure struct {
+	Basis *Basis // loss factors zero
+	// Strain[m][g][k] and Kinetic[m][c] are the shares of the energies of elastic mode m, by group of the
+	// problem and kind (assembly.EnergyKinds), and by group then body of the problem.
+	Strain  [][][6]float64
+	Kinetic [][]float64
+	// Proved says that a count of eigenvalues agrees that no mode below UpTo is missing.
+	Proved bool
+	// RigidRatio is the highest computed rigid-body frequency over the first elastic one.
+	RigidRatio float64
+	// Notes are sentences about what the eigensolver did beyond the ordinary.
+	Notes []string
+}
+
+// RigidBodies is the number of rigid-body motions of a free structure.
+const RigidBodies = 6
+
+// rigidBelow is the share of the first elastic frequency below which rigid-body ones must lie.
+const rigidBelow = 1e-3
+
+// RigidError says that the structure does not have six rigid-body motions.
+type RigidError struct {
+	// Frequencies are the lowest ones computed, Hz.
+	Frequencies []float64
+}
+
+func (e *RigidError) Error() string {
+	return fmt.Sprintf("the structure does not have six free motions: its lowest frequencies are %.3g Hz; a part may hang by a hinge, or a stiffness may be out of all proportion", e.Frequencies)
+}
+
+// Build computes the modes of a free structure up to opt.UpTo (and two elastic ones at least), its
+// residual vectors, and the energies.
+//
+// Errors: *RigidError; those of package eigen; an eigensolver that did not converge.
+func Build(ctx context.Context, s *assembly.System, places []Place, opt Options) (*Structure, error) {
+	progress := opt.Progress
+	if progress == nil {
+		progress = func(string, float64) {}
+	}
+	order := s.Ordering()
+	limit := 2 * math.Pi * opt.UpTo
+	res, err := eigen.Lowest(ctx, s.K, s.M, order, eigen.Options{
+		Limit: limit * limit, Modes: RigidBodies + 2, Threads: opt.Threads,
+		Progress: func(f float64) { progress("modes", f) },
+	})
+	if err != nil {
+		return nil, err
+	}
+	if !res.Status.Converged {
+		return nil, fmt.Errorf("the eigensolver did not converge after %d steps and %d restarts", res.Status.Steps, res.Status.Restarts)
+	}
+	st := &Structure{Basis: &Basis{}, Proved: res.Status.Proved, Notes: res.Status.Notes}
+	if st.RigidRatio, err = rigidRatio(res.Values); err != nil {
+		return nil, err
+	}
+	b := &builder{system: s, threads: opt.Threads}
+	rigid := s.Rigid()
+	for _, y := range rigid {
+		b.append(RigidBody, 0, y)
+	}
+	for i := RigidBodies; i < len(res.Values); i++ {
+		b.append(Elastic, math.Sqrt(res.Values[i])/(2*math.Pi), res.Vectors[i])
+	}
+	elastic := len(b.vectors)
+
+	progress("static answers", 0)
+	if err := b.residuals(ctx, places, res); err != nil {
+		return nil, err
+	}
+	progress("energies", 0)
+	e, err := s.Energies(ctx, b.vectors[RigidBodies:elastic])
+	if err != nil {
+		return nil, err
+	}
+	st.shares(s, e)
+	progress("damping groups", 0)
+	if err := b.finish(ctx, st.Basis, places); err != nil {
+		return nil, err
+	}
+	return st, nil
+}
+
+func rigidRatio(values []float64) (float64, error) {
+	var f []float64
+	for _, v := range values[:min(len(values), RigidBodies+2)] {
+		f = append(f, math.Sqrt(math.Abs(v))/(2*math.Pi))
+	}
+	if len(f) <= RigidBodies {
+		return 0, &RigidError{f}
+	}
+	highest := 0.0
+	for _, v := range f[:RigidBodies] {
+		highest = max(highest, v)
+	}
+	ratio := highest / f[RigidBodies]
+	if !(ratio < rigidBelow) {
+		return 0, &RigidError{f}
+	}
+	return ratio, nil
+}
+
+// builder gathers M-orthonormal vectors.
+type builder struct {
+	system    *assembly.System
+	threads   int
+	kinds     []VectorKind
+	frequency []float64
+	vectors   [][]float64
+	masses    [][]float64 // M times each vector
+}
+
+// append makes y orthogonal to the vectors so far, in M and twice over, normalises and keeps it.
+func (b *builder) append(kind VectorKind, frequency float64, y []float64) {
+	my := make([]float64, len(y))
+	for range 2 {
+		b.project(y)
+		b.system.M.MulVec(my, y)
+		c := 1 / math.Sqrt(inner(y, my))
+		for i := range y {
+			y[i] *= c
+			my[i] *= c
+		}
+	}
+	b.kinds, b.frequency = append(b.kinds, kind), append(b.frequency, frequency)
+	b.vectors, b.masses = append(b.vectors, y), append(b.masses, my)
+}
+
+// project takes from y its part along the vectors so far.
+func (b *builder) project(y []float64) {
+	for v := range b.vectors {
+		axpy(y, -inner(b.masses[v], y), b.vectors[v])
+	}
+}
+
+func inner(a, b []float64) float64 {
+	sum := 0.0
+	for i, v := range a {
+		sum += v * b[i]
+	}
+	return sum
+}
+
+func axpy(y []float64, c float64, x []float64) {
+	for i, v := range x {
+		y[i] += c * v
+	}
+}
+
+// finish fills the basis.
+func (b *builder) finish(ctx context.Context, out *Basis, places []Place) error {
+	s := b.system
+	out.Kinds, out.Frequency = b.kinds, b.frequency
+	for _, y := range b.vectors {
+		shape := make([]float64, 6*len(s.Problem().Nodes))
+		s.Expand(shape, y)
+		out.Shapes = append(out.Shapes, shape)
+	}
+	for _, p := range places {
+		site := Site{Name: p.Name, Kind: p.Kind, Point: p.Point}
+		for _, y := range b.vectors {
+			site.Motion = append(site.Motion, s.Motion(p.Body, p.Point, y))
+		}
+		out.Sites = append(out.Sites, site)
+	}
+	stiffness, err := s.GroupStiffness(ctx, b.vectors, b.threads)
+	if err != nil {
+		return err
+	}
+	n := len(b.vectors)
+	for g, group := range s.Problem().Groups {
+		k := stiffness[g]
+		for i := range n {
+			for j := range n {
+				if i < RigidBodies || j < RigidBodies { // rounding: rigid motions strain nothing
+					k[i*n+j] = 0
+				}
+			}
+		}
+		out.Groups = append(out.Groups, LossGroup{Name: group.Name, Kind: group.Kind, Stiffness: k})
+	}
+	return nil
+}
+
+// shares normalises the energies of each mode.
+func (st *Structure) shares(s *assembly.System, e *assembly.Energies) {
+	for m := range e.Strain {
+		total := 0.0
+		for _, g := range e.Strain[m] {
+			for _, v := range g {
+				total += v
+			}
+		}
+		for g := range e.Strain[m] {
+			for k := range e.Strain[m][g] {
+				e.Strain[m][g][k] /= total
+			}
+		}
+		kinetic := append(append([]float64(nil), e.Kinetic[m]...), e.Body[m]...)
+		total = 0
+		for _, v := range kinetic {
+			total += v
+		}
+		for i := range kinetic {
+			kinetic[i] /= total
+		}
+		st.Kinetic = append(st.Kinetic, kinetic)
+	}
+	st.Strain = e.Strain
+}
