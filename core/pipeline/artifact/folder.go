@@ -55,11 +55,7 @@ func Write(folder string, a *Artifact) (string, error) {
 	if err := a.Check(); err != nil {
 		return "", fault.New(fault.Internal, "%v", err).In("write artifact", a.Kind.Name)
 	}
-	m := Manifest{Kind: a.Kind.Name, Version: a.Kind.Version, Hash: a.Hash(),
-		Scalars: map[string]ManifestScalar{}, Tables: map[string]Entry{}, Files: map[string]Entry{}}
-	for _, s := range a.Kind.Scalars {
-		m.Scalars[s.Name] = ManifestScalar{Value: encodeScalar(a.Scalars[s.Name]), Unit: s.Unit}
-	}
+	m := a.manifest()
 	for _, spec := range a.Kind.Tables {
 		t := a.Tables[spec.Name]
 		data, err := EncodeTable(t)
@@ -87,10 +83,79 @@ func Write(folder string, a *Artifact) (string, error) {
 		}
 		m.Files[path] = entryOf(a.Files[path])
 	}
-	if err := os.WriteFile(filepath.Join(folder, ManifestName), m.encode(), 0o644); err != nil {
-		return "", writeFault(a.Kind, err)
+	return m.Hash, m.write(folder)
+}
+
+// Seal completes the manifest of an artifact that Open read from a folder, with
+// the content hash and the size and checksum of every file, where its writer
+// left them out. It fails when the folder holds files that are no part of it.
+func Seal(folder string, a *Artifact) (string, error) {
+	m, err := ReadManifest(folder)
+	if err != nil {
+		return "", err
 	}
-	return m.Hash, nil
+	whole := m.Hash != ""
+	err = filepath.WalkDir(folder, func(path string, d fs.DirEntry, err error) error {
+		if err != nil || d.IsDir() {
+			return err
+		}
+		rel, err := filepath.Rel(folder, path)
+		if err != nil {
+			return err
+		}
+		rel = filepath.ToSlash(rel)
+		entries, name := m.Tables, strings.TrimSuffix(rel, ".arrow")
+		if loose, ok := strings.CutPrefix(rel, looseFolder+"/"); ok {
+			entries, name = m.Files, loose
+		} else if rel == ManifestName {
+			return nil
+		} else if name == rel {
+			return fmt.Errorf("the file %s is no part of the artifact", rel)
+		}
+		e, ok := entries[name]
+		if !ok {
+			return fmt.Errorf("the file %s is no part of the artifact", rel)
+		}
+		if e.SHA256 != "" && (e.Size != 0 || len(a.Files[name]) == 0) {
+			return nil // Open has compared it
+		}
+		data, err := os.ReadFile(path)
+		if err != nil {
+			return err
+		}
+		whole = false
+		e = entryOf(data)
+		if t := a.Tables[name]; t != nil && name != rel {
+			e.Rows = t.Rows()
+		}
+		entries[name] = e
+		return nil
+	})
+	if err != nil {
+		return "", fault.New(fault.Protocol, "%v", err).In("seal artifact", a.Kind.Name)
+	}
+	if whole {
+		return m.Hash, nil
+	}
+	m.Hash = a.Hash()
+	return m.Hash, m.write(folder)
+}
+
+// manifest gives the manifest without the entries of files.
+func (a *Artifact) manifest() *Manifest {
+	m := &Manifest{Kind: a.Kind.Name, Version: a.Kind.Version, Hash: a.Hash(),
+		Scalars: map[string]ManifestScalar{}, Tables: map[string]Entry{}, Files: map[string]Entry{}}
+	for _, s := range a.Kind.Scalars {
+		m.Scalars[s.Name] = ManifestScalar{Value: encodeScalar(a.Scalars[s.Name]), Unit: s.Unit}
+	}
+	return m
+}
+
+func (m *Manifest) write(folder string) error {
+	if err := os.WriteFile(filepath.Join(folder, ManifestName), m.encode(), 0o644); err != nil {
+		return fault.New(fault.Limit, "%v", err).In("write artifact", m.Kind)
+	}
+	return nil
 }
 
 func writeFault(k Kind, err error) error {
