@@ -32,7 +32,7 @@ func TestSpectraRoundTrip(t *testing.T) {
 	if !reflect.DeepEqual(got, want) {
 		t.Errorf("got %+v, want %+v", got, want)
 	}
-	if label := got.Orders[0].Label(); label != "blade passing (folded) of rotor fr" {
+	if label := got.Orders[0].Name(); label != "blade passing (folded)" {
 		t.Error(label)
 	}
 }

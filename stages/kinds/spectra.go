@@ -131,8 +131,8 @@ type OrderBand struct {
 	Folded       bool
 }
 
-// Label names the order of a band, as in "order 2 of rotor fr".
-func (b OrderBand) Label() string {
+// Name names the order of a band: "order 2", "blade passing" or, of a folded one, "order 6 (folded)".
+func (b OrderBand) Name() string {
 	name := fmt.Sprintf("order %g", b.Order)
 	if b.BladePassing {
 		name = "blade passing"
@@ -140,7 +140,7 @@ func (b OrderBand) Label() string {
 	if b.Folded {
 		name += " (folded)"
 	}
-	return name + " of rotor " + b.Rotor
+	return name
 }
 
 // Frequency gives the frequency of a bin in Hz.
@@ -209,7 +209,7 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 			Saturated: int(t.Ints("saturated")[i]), Repeated: t.Floats("repeated")[i], Density: t.FloatLists("density")[i],
 		})
 		if len(s.Axes[i].Density) != s.Segment/2+1 {
-			return nil, fmt.Errorf("spectra: axis %s has %d bins, %d samples a segment make %d",
+			return nil, malformed("spectra", "axis %s has %d bins, %d samples a segment make %d",
 				s.Axes[i].Axis, len(s.Axes[i].Density), s.Segment, s.Segment/2+1)
 		}
 	}
@@ -222,7 +222,7 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 			Damping: t.Floats("damping")[i], DampingError: t.Floats("damping_error")[i], Narrow: t.Truths("narrow")[i],
 		}
 		if p.Axis < 0 || p.Axis >= len(s.Axes) {
-			return nil, fmt.Errorf("spectra: peak %d names axis %d of %d", i, p.Axis, len(s.Axes))
+			return nil, malformed("spectra", "peak %d names axis %d of %d", i, p.Axis, len(s.Axes))
 		}
 		s.Peaks = append(s.Peaks, p)
 	}
