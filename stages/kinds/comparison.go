@@ -137,7 +137,7 @@ func EncodeComparison(c *Comparison) *artifact.Artifact {
 		Set("predicted_damping", list(c.Pairs, func(x ComparisonPair) float64 { return x.PredictedDamping })).
 		Set("observed_damping", list(c.Pairs, func(x ComparisonPair) float64 { return x.ObservedDamping })).
 		Set("observed_damping_error", list(c.Pairs, func(x ComparisonPair) float64 { return x.ObservedDampingError })).
-		Set("modes", list(c.Pairs, func(x ComparisonPair) []int64 { return wide(x.Modes) }))
+		Set("modes", list(c.Pairs, func(x ComparisonPair) []int64 { return ints(x.Modes) }))
 	setPeaks(a.Table("unpaired"), c.Unpaired)
 	setPeaks(a.Table("masked"), c.Masked)
 	setOrders(a.Table("orders"), c.Orders)
@@ -158,7 +158,7 @@ func DecodeComparison(a *artifact.Artifact) (*Comparison, error) {
 			Frequency: t.FloatLists("frequency")[i], Predicted: t.FloatLists("predicted")[i], Observed: t.FloatLists("observed")[i],
 		}
 		if len(x.Predicted) != len(x.Frequency) || len(x.Observed) != len(x.Frequency) {
-			return nil, fmt.Errorf("comparison: the curves of axis %s differ in length", x.Axis)
+			return nil, malformed("comparison", "the curves of axis %s differ in length", x.Axis)
 		}
 		c.Axes = append(c.Axes, x)
 	}
@@ -185,7 +185,7 @@ func setPeaks(t *artifact.Table, rows []ComparisonPeak) {
 		Set("frequency", list(rows, func(x ComparisonPeak) float64 { return x.Frequency })).
 		Set("density", list(rows, func(x ComparisonPeak) float64 { return x.Density })).
 		Set("damping", list(rows, func(x ComparisonPeak) float64 { return x.Damping })).
-		Set("modes", list(rows, func(x ComparisonPeak) []int64 { return wide(x.Modes) })).
+		Set("modes", list(rows, func(x ComparisonPeak) []int64 { return ints(x.Modes) })).
 		Set("reason", list(rows, func(x ComparisonPeak) string { return x.Reason }))
 }
 
@@ -200,7 +200,5 @@ func peaks(t *artifact.Table) []ComparisonPeak {
 	}
 	return out
 }
-
-func wide(in []int) []int64 { return list(in, func(v int) int64 { return int64(v) }) }
 
 func narrow(in []int64) []int { return list(in, func(v int64) int { return int(v) }) }
