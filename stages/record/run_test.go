@@ -278,6 +278,71 @@ func TestStatedColumns(t *testing.T) {
 	}
 }
 
+// lines writes a recording from its lines.
+func lines(t *testing.T, text []string) string {
+	t.Helper()
+	folder := t.TempDir()
+	if err := os.WriteFile(filepath.Join(folder, "r.csv"), []byte(strings.Join(text, "\n")+"\n"), 0o600); err != nil {
+		t.Fatal(err)
+	}
+	return folder
+}
+
+// What a recording lacks is told, each by its own warning.
+func TestWarnings(t *testing.T) {
+	text := []string{"t_us,gx_dps,gy_dps,gz_dps"}
+	for i := range 3000 {
+		at := float64(i) * 500
+		if i%2 == 1 {
+			at += 60 // steps of 560 and 440 µs: 12 % either way
+		}
+		held := math.Floor(float64(i)/3) * 3 // measured a third as often as logged
+		text = append(text, fmt.Sprintf("%.0f,%.3f,%.3f,%.3f", at, max(-8, min(8, 10*math.Sin(float64(i)/9))), math.Sin(held), math.Sin(float64(i))))
+	}
+	_, o, err := run(t, lines(t, text), stage.Arguments{"file": "r.csv", "resolution": hertz(2)})
+	if err != nil {
+		t.Fatal(err)
+	}
+	got := map[string]string{}
+	for _, w := range o.Warnings {
+		got[w.ID] += w.Text
+	}
+	for id, want := range map[string]string{
+		"record.saturated":      "samples of roll stay at an extreme of 8 deg/s",
+		"record.jitter":         "differ by 12.0 %",
+		"record.repeated":       "67 % of the samples of pitch equal the one before",
+		"record.few-averages":   "only 5 segments",
+		"record.no-rotor-speed": "no rotor speed is recorded",
+	} {
+		if !strings.Contains(got[id], want) {
+			t.Errorf("%s: %q lacks %q", id, got[id], want)
+		}
+		delete(got, id)
+	}
+	if len(got) > 0 {
+		t.Errorf("and %v", got)
+	}
+	if share := o.Figures["saturated"].(float64); share < 0.3 || share > 0.5 { // |sin| > 0.8 for 41 % of the time
+		t.Errorf("saturated share %g", share)
+	}
+}
+
+// A fault of the times names the row of the file, also where rows without samples lie between.
+func TestRowOfAFault(t *testing.T) {
+	text := []string{"t_ms,gx_dps,other"}
+	for i := range 40 {
+		at := i
+		if i == 31 {
+			at = 7
+		}
+		text = append(text, fmt.Sprintf("%d,%d,", at, i), fmt.Sprintf("%d,,5", at))
+	}
+	_, _, err := run(t, lines(t, text), stage.Arguments{"file": "r.csv"})
+	if err == nil || !strings.Contains(err.Error(), `row 63, column "t_ms": time goes back by 0.023 s`) {
+		t.Error(err)
+	}
+}
+
 func TestSameBytes(t *testing.T) {
 	folder := t.TempDir()
 	write(t, filepath.Join(folder, "hover.csv"), 8000, 2000)
