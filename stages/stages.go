@@ -1,0 +1,24 @@
+// Package stages lists the stages that come with Hushframe.
+package stages
+
+import (
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/compare"
+	"hushframe/stages/importgeom"
+	"hushframe/stages/meshgen"
+	"hushframe/stages/record"
+	"hushframe/stages/report"
+	"hushframe/stages/sweep"
+)
+
+// Builtin lists the built-in stages in the order of a job.
+func Builtin() []stage.Stage {
+	return []stage.Stage{
+		importgeom.Stage{},
+		meshgen.Stage{},
+		sweep.Stage{},
+		record.Stage{},
+		compare.Stage{},
+		report.Stage{},
+	}
+}
