@@ -4,7 +4,7 @@ import (
 	"math"
 	"testing"
 
-	"hushframe/core/signal/internal/reference"
+	"hushframe/core/signal/internal/noise"
 )
 
 func TestFold(t *testing.T) {
@@ -26,10 +26,10 @@ func TestFold(t *testing.T) {
 // Uniform wander of ±10 Hz about 260 Hz: the bands of order n hold n·250 to n·270, the third (780) and the fourth (1040,
 // half of it folded).
 func TestBandsOfWander(t *testing.T) {
-	noise := reference.Noise(9)
+	source := noise.Source(9)
 	speed := make([]float64, 20000)
 	for i := range speed {
-		speed[i] = 260 + 20*noise.Uniform()
+		speed[i] = 260 + 20*source.Uniform()
 	}
 	got := Bands([]Rotor{{Name: "fr", Speed: speed, Blades: 3}}, Settings{Rate: 2000, Step: 1, Margin: 1, Coverage: 1})
 	want := []Band{

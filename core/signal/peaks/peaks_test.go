@@ -1,11 +1,11 @@
 package peaks
 
 import (
-	"fmt"
 	"math"
 	"testing"
 
-	"hushframe/core/signal/internal/reference"
+	"hushframe/core/known"
+	"hushframe/core/signal/internal/noise"
 	"hushframe/core/signal/spectrum"
 )
 
@@ -23,7 +23,8 @@ func TestHalfPowerRows(t *testing.T) {
 			Zeta float64 `json:"zeta"`
 			Grid float64 `json:"grid_Hz"`
 		}
-		row := reference.Get(t, id, &setup)
+		row := known.One(t, "F_signals.json", id)
+		row.Decode(t, &setup)
 		// A grid so fine that linear interpolation is exact to the digits of the row, started below the lower edge.
 		damping := func(step, start float64) (lower, upper, zeta float64) {
 			p := make([]float64, int((2*setup.F0-start)/step))
@@ -39,24 +40,21 @@ func TestHalfPowerRows(t *testing.T) {
 		}
 		f1, f2, exact := damping(1e-3, setup.F0*0.8)
 		_, _, coarse := damping(setup.Grid, 0)
-		row.CheckAll(t, f1, f2, exact, coarse)
+		row.Check(t, 1, f1, f2, exact, coarse)
 	}
 }
 
-// Row F-LOGDEC-180. Its values have nine digits, fewer than its tolerance; the README of the rows asks for the digits given.
+// Row F-LOGDEC-180.
 func TestDecrementRow(t *testing.T) {
 	var setup struct {
 		F0     float64 `json:"f0_Hz"`
 		Zeta   float64 `json:"zeta"`
 		Cycles float64 `json:"cycles"`
 	}
-	row := reference.Get(t, "F-LOGDEC-180", &setup)
+	row := known.One(t, "F_signals.json", "F-LOGDEC-180")
+	row.Decode(t, &setup)
 	delta := Decrement(setup.Zeta)
-	for i, v := range []float64{delta, math.Exp(delta * setup.Cycles), DampedFrequency(setup.F0, setup.Zeta)} {
-		if got, want := fmt.Sprintf("%.9g", v), fmt.Sprintf("%.9g", row.Values[i]); got != want {
-			t.Errorf("%s: got %s, want %s", row.Labels[i], got, want)
-		}
-	}
+	row.Check(t, 1, delta, math.Exp(delta*setup.Cycles), DampedFrequency(setup.F0, setup.Zeta))
 	if got := DecayDamping(row.Values[1], setup.Cycles); math.Abs(got-setup.Zeta) > 1e-9 {
 		t.Errorf("damping from the decay %g, want %g", got, setup.Zeta)
 	}
@@ -153,13 +151,13 @@ func TestErrorsAreHonest(t *testing.T) {
 
 // ring is the discrete response (impulse invariant) of a single degree of freedom to white noise.
 func ring(seed uint32, n int, rate, f0, zeta float64) []float64 {
-	noise := reference.Noise(seed * 7919)
+	source := noise.Source(seed * 7919)
 	w := 2 * math.Pi * f0 / rate
 	a1, a2 := 2*math.Exp(-zeta*w)*math.Cos(w*math.Sqrt(1-zeta*zeta)), -math.Exp(-2*zeta*w)
 	var y1, y2 float64
 	out := make([]float64, n)
 	for i := range out {
-		y := a1*y1 + a2*y2 + noise.Gauss()
+		y := a1*y1 + a2*y2 + source.Gauss()
 		y1, y2 = y, y1
 		out[i] = y
 	}
@@ -170,10 +168,10 @@ func ring(seed uint32, n int, rate, f0, zeta float64) []float64 {
 func TestNoiseHasNoPeaks(t *testing.T) {
 	found := 0
 	for seed := uint32(1); seed <= 30; seed++ {
-		noise := reference.Noise(seed * 104729)
+		source := noise.Source(seed * 104729)
 		x := make([]float64, 60000)
 		for i := range x {
-			x[i] = noise.Gauss()
+			x[i] = source.Gauss()
 		}
 		p, err := spectrum.Welch([][]float64{x}, spectrum.Settings{Rate: 2000, Segment: 2048, Overlap: 1024})
 		if err != nil {
@@ -189,10 +187,10 @@ func TestNoiseHasNoPeaks(t *testing.T) {
 // A steady line is as narrow as the window, and its place is found within a hundredth of a bin.
 func TestLine(t *testing.T) {
 	const rate, f = 1000.0, 123.37
-	noise := reference.Noise(5)
+	source := noise.Source(5)
 	x := make([]float64, 40000)
 	for i := range x {
-		x[i] = math.Sin(2*math.Pi*f*float64(i)/rate) + 0.1*noise.Uniform()
+		x[i] = math.Sin(2*math.Pi*f*float64(i)/rate) + 0.1*source.Uniform()
 	}
 	p, err := spectrum.Welch([][]float64{x}, spectrum.Settings{Rate: rate, Segment: 1024, Overlap: 512})
 	if err != nil {

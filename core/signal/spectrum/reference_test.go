@@ -9,7 +9,8 @@ import (
 	"strings"
 	"testing"
 
-	"hushframe/core/signal/internal/reference"
+	"hushframe/core/known"
+	"hushframe/core/signal/internal/noise"
 )
 
 // welchSetup is the setup of the rows F-WELCH-* and F-PARSEVAL of testdata/known/F_signals.json.
@@ -31,11 +32,11 @@ type welchSetup struct {
 }
 
 func (s welchSetup) signal() []float64 {
-	noise := reference.Noise(s.Seed)
+	source := noise.Source(s.Seed)
 	x := make([]float64, s.Samples)
 	for i := range x {
 		t := float64(i) / s.Rate
-		x[i] = noise.Uniform() + 0.3 + 0.02*t
+		x[i] = source.Uniform() + 0.3 + 0.02*t
 		for _, tone := range s.Tones {
 			x[i] += tone.A * math.Sin(2*math.Pi*tone.F*t+tone.Phase)
 		}
@@ -65,6 +66,13 @@ func (s welchSetup) settings(t *testing.T) Settings {
 	return out
 }
 
+// rowOf returns a row of F_signals.json and decodes its setup.
+func rowOf(t *testing.T, id string, setup any) known.Row {
+	row := known.One(t, "F_signals.json", id)
+	row.Decode(t, setup)
+	return row
+}
+
 // binOf reads the number in "bin 42 (…)" or "bin 42 …".
 func binOf(t *testing.T, label string) int {
 	var k int
@@ -81,7 +89,7 @@ func TestWelchRows(t *testing.T) {
 	} {
 		t.Run(id, func(t *testing.T) {
 			var setup welchSetup
-			row := reference.Get(t, id, &setup)
+			row := rowOf(t, id, &setup)
 			p, err := Welch([][]float64{setup.signal()}, setup.settings(t))
 			if err != nil {
 				t.Fatal(err)
@@ -89,9 +97,11 @@ func TestWelchRows(t *testing.T) {
 			if p.Segments != setup.Segments {
 				t.Errorf("%d segments, want %d", p.Segments, setup.Segments)
 			}
-			for i, label := range row.Labels {
-				row.Check(t, i, p.Values[binOf(t, label)])
+			var got []float64
+			for _, label := range row.Labels {
+				got = append(got, p.Values[binOf(t, label)])
 			}
+			row.Check(t, 1, got...)
 		})
 	}
 }
@@ -99,7 +109,7 @@ func TestWelchRows(t *testing.T) {
 // The whole spectrum and the first samples of row F-WELCH-HANN256-128-C lie beside the rows.
 func TestWelchWholeSpectrum(t *testing.T) {
 	var setup welchSetup
-	row := reference.Get(t, "F-WELCH-HANN256-128-C", &setup)
+	row := rowOf(t, "F-WELCH-HANN256-128-C", &setup)
 	x := setup.signal()
 	for i, want := range column(t, "F-WELCH-HANN256-128-C.signal64.csv") {
 		if math.Abs(x[i]-want) > 1e-11 {
@@ -122,7 +132,7 @@ func TestWelchWholeSpectrum(t *testing.T) {
 }
 
 func column(t *testing.T, name string) []float64 {
-	f, err := os.Open(reference.Path(name))
+	f, err := os.Open("../../../testdata/known/" + name)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -144,7 +154,7 @@ func column(t *testing.T, name string) []float64 {
 
 func TestParsevalRow(t *testing.T) {
 	var setup welchSetup
-	row := reference.Get(t, "F-PARSEVAL", &setup)
+	row := rowOf(t, "F-PARSEVAL", &setup)
 	x := setup.signal()
 	var got []float64
 	for _, w := range []Window{Boxcar, Hann} {
@@ -165,13 +175,14 @@ func TestParsevalRow(t *testing.T) {
 		}
 		got = append(got, mean, sum)
 	}
-	row.CheckAll(t, got...)
+	row.Check(t, 1, got...)
 }
 
 func TestWindowRow(t *testing.T) {
 	var setup struct{ N int }
-	row := reference.Get(t, "F-WINDOWS", &setup)
-	for i, label := range row.Labels {
+	row := rowOf(t, "F-WINDOWS", &setup)
+	var got []float64
+	for _, label := range row.Labels {
 		name, what, _ := strings.Cut(label, " ")
 		w, ok := ParseWindow(name)
 		if !ok {
@@ -179,17 +190,18 @@ func TestWindowRow(t *testing.T) {
 		}
 		switch what {
 		case "coherent gain":
-			row.Check(t, i, w.CoherentGain(setup.N))
+			got = append(got, w.CoherentGain(setup.N))
 		case "equivalent noise bandwidth (bins)":
-			row.Check(t, i, w.NoiseBandwidth(setup.N))
+			got = append(got, w.NoiseBandwidth(setup.N))
 		case "scalloping loss (dB)":
-			row.Check(t, i, w.ScallopingLoss(setup.N))
+			got = append(got, w.ScallopingLoss(setup.N))
 		case "overlap correlation at 50 %":
-			row.Check(t, i, w.OverlapCorrelation(setup.N, setup.N/2))
+			got = append(got, w.OverlapCorrelation(setup.N, setup.N/2))
 		default:
 			t.Fatalf("label %q", label)
 		}
 	}
+	row.Check(t, 1, got...)
 }
 
 func TestConfidenceRows(t *testing.T) {
@@ -198,12 +210,12 @@ func TestConfidenceRows(t *testing.T) {
 			Samples, Segment int
 			Overlap, Level   float64
 		}
-		row := reference.Get(t, id, &setup)
+		row := rowOf(t, id, &setup)
 		s := Settings{Rate: 1, Segment: setup.Segment, Overlap: int(setup.Overlap * float64(setup.Segment))}
 		k := s.Segments(setup.Samples)
 		nu := Freedom([]int{k}, s)
 		lower, upper := Bounds(nu, setup.Level)
-		row.CheckAll(t, float64(k), nu, lower, upper, math.Sqrt(2/nu))
+		row.Check(t, 1, float64(k), nu, lower, upper, math.Sqrt(2/nu))
 	}
 }
 
@@ -217,7 +229,7 @@ func TestChirpRow(t *testing.T) {
 		Segment  int     `json:"segment"`
 		Overlap  int     `json:"overlap"`
 	}
-	row := reference.Get(t, "F-CHIRP", &setup)
+	row := rowOf(t, "F-CHIRP", &setup)
 	x := make([]float64, int(setup.Rate*setup.Duration))
 	for i := range x {
 		at := float64(i) / setup.Rate
@@ -237,7 +249,7 @@ func TestChirpRow(t *testing.T) {
 	for k := 49; k <= 166; k++ {
 		mean += p.Values[k] / (166 - 49 + 1)
 	}
-	row.CheckAll(t, append(got, mean, setup.A*setup.A/(2*(setup.F1-setup.F0)))...)
+	row.Check(t, 1, append(got, mean, setup.A*setup.A/(2*(setup.F1-setup.F0)))...)
 }
 
 func TestCoherenceRow(t *testing.T) {
@@ -247,8 +259,8 @@ func TestCoherenceRow(t *testing.T) {
 		Segment int     `json:"segment"`
 		Overlap int     `json:"overlap"`
 	}
-	row := reference.Get(t, "F-COHERENCE", &setup)
-	u, v := reference.Noise(111), reference.Noise(222)
+	row := rowOf(t, "F-COHERENCE", &setup)
+	u, v := noise.Source(111), noise.Source(222)
 	x, z := make([]float64, setup.Samples), make([]float64, setup.Samples)
 	y := 0.0
 	for i := range x {
@@ -266,26 +278,28 @@ func TestCoherenceRow(t *testing.T) {
 		t.Fatal(err)
 	}
 	coherence, h1, h2 := c.Coherence(), c.H1(), c.H2()
-	for i, label := range row.Labels {
+	var got []float64
+	for _, label := range row.Labels {
 		k := binOf(t, label)
 		_, what, _ := strings.Cut(strings.TrimPrefix(label, "bin "), " ")
 		switch what {
 		case "Pxy re":
-			row.Check(t, i, real(c.XY[k]))
+			got = append(got, real(c.XY[k]))
 		case "Pxy im":
-			row.Check(t, i, imag(c.XY[k]))
+			got = append(got, imag(c.XY[k]))
 		case "coherence":
-			row.Check(t, i, coherence[k])
+			got = append(got, coherence[k])
 		case "H1 re":
-			row.Check(t, i, real(h1[k]))
+			got = append(got, real(h1[k]))
 		case "H1 im":
-			row.Check(t, i, imag(h1[k]))
+			got = append(got, imag(h1[k]))
 		case "H2 re":
-			row.Check(t, i, real(h2[k]))
+			got = append(got, real(h2[k]))
 		case "H2 im":
-			row.Check(t, i, imag(h2[k]))
+			got = append(got, imag(h2[k]))
 		default:
 			t.Fatalf("label %q", label)
 		}
 	}
+	row.Check(t, 1, got...)
 }

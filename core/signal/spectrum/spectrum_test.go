@@ -5,14 +5,14 @@ import (
 	"math"
 	"testing"
 
-	"hushframe/core/signal/internal/reference"
+	"hushframe/core/signal/internal/noise"
 )
 
 func gauss(seed uint32, n int) []float64 {
-	noise := reference.Noise(seed)
+	source := noise.Source(seed)
 	x := make([]float64, n)
 	for i := range x {
-		x[i] = noise.Gauss()
+		x[i] = source.Gauss()
 	}
 	return x
 }
