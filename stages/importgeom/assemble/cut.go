@@ -18,6 +18,12 @@ import (
 // DefaultTolerance is the distance (m) within which ends of curves are joined unless the plate says otherwise.
 const DefaultTolerance = 0.02e-3
 
+// Extents of drawings (m) beyond which the unit must be wrong.
+const (
+	smallest = 1e-3
+	largest  = 100
+)
+
 // cut is one cut file as read for some layers, unit and tolerance.
 type cut struct {
 	drawing *dxf.Drawing
@@ -33,10 +39,16 @@ func Outlines(name string, data []byte, options dxf.Options, tolerance float64) 
 		return nil, loops.Result{}, err
 	}
 	var pieces []loops.Piece
+	box := outline.EmptyBox()
 	for _, e := range d.Entities {
 		for _, c := range e.Curves {
+			box = box.Union(c.Bounds())
 			pieces = append(pieces, loops.Piece{Curve: c, Source: e.String()})
 		}
+	}
+	if size := math.Max(box.Width(), box.Height()); len(pieces) > 0 && (size > largest || size < smallest) {
+		return nil, loops.Result{}, fault.New(fault.Input, "the drawing spans %.3g m in units of %q, which is no size for a plate", size, d.Unit).
+			In("read cut file", name).Do(`say units = "mm", or what it is drawn in, where the file is named`)
 	}
 	return d, loops.Find(pieces, tolerance), nil
 }

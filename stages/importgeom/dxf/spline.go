@@ -236,7 +236,8 @@ func (b bezier) cubics(tol float64) []outline.Curve {
 			return []outline.Curve{outline.Cubic(p[0], p[1], p[2], p[3])}
 		}
 	}
-	return b.fitted(tol, 20)
+	// Halving 12 times cuts the error of such cubics by 16 each time; below 1e-9 of the size, rounding rules.
+	return b.fitted(math.Max(tol, 1e-9*length), 12)
 }
 
 func (b bezier) fitted(tol float64, depth int) []outline.Curve {
