@@ -74,11 +74,10 @@ var ModesKind = artifact.Kind{
 		{Name: "meetings", About: "rotor speeds at which orders meet modes", Columns: columns(
 			col("mode", artifact.Int, "", "number of the mode"),
 			col("order", artifact.Int, "", "multiple of the rotor speed"),
-			col("blade", artifact.Truth, "", "blade passing"),
+			col("what", artifact.Text, "", "order or blade passing"),
 			col("speed", artifact.Float, "rad/s", "rotor speed"),
 			col("rotors", artifact.IntList, "", "rows of rotors this is for"),
-			col("hover", artifact.Truth, "", "near the hover speed of one of them"),
-			col("service", artifact.Truth, "", "not above the highest speed of one of them"),
+			col("range", artifact.Text, "", "hover: near the hover speed; service: not above the highest speed; beyond: above it"),
 		)},
 		{Name: "gaps", About: "neighbours among modes with at least a tenth of the strongest strength on an axis", Columns: columns(
 			col("axis", artifact.Text, "", "roll, pitch or yaw"),
@@ -157,11 +156,23 @@ func EncodeModes(m *Modes) *artifact.Artifact {
 	a.Table("meetings").
 		Set("mode", ints(numbers)).
 		Set("order", list(meetings, func(x modal.Meeting) int64 { return int64(x.Order) })).
-		Set("blade", list(meetings, func(x modal.Meeting) bool { return x.Blade })).
+		Set("what", list(meetings, func(x modal.Meeting) string {
+			if x.Blade {
+				return bladePassing
+			}
+			return "order"
+		})).
 		Set("speed", list(meetings, func(x modal.Meeting) float64 { return x.Speed })).
 		Set("rotors", list(meetings, func(x modal.Meeting) []int64 { return ints(x.Rotors) })).
-		Set("hover", list(meetings, func(x modal.Meeting) bool { return x.Hover })).
-		Set("service", list(meetings, func(x modal.Meeting) bool { return x.Service }))
+		Set("range", list(meetings, func(x modal.Meeting) string {
+			switch {
+			case x.Hover:
+				return "hover"
+			case x.Service:
+				return "service"
+			}
+			return "beyond"
+		}))
 	var axes []string
 	var gaps []modal.Gap
 	for axis, name := range AxisNames {
@@ -176,6 +187,8 @@ func EncodeModes(m *Modes) *artifact.Artifact {
 		Set("width", list(gaps, func(x modal.Gap) float64 { return x.Width }))
 	return a
 }
+
+const bladePassing = "blade passing"
 
 func setModes(t *artifact.Table, modes []modal.Mode) {
 	t.Set("number", list(modes, func(x modal.Mode) int64 { return int64(x.Number) })).
@@ -286,8 +299,8 @@ func decodeSurvey(a *artifact.Artifact, m *Modes) error {
 	}
 	t = a.Table("meetings")
 	for i := range t.Rows() {
-		x := modal.Meeting{Order: int(t.Ints("order")[i]), Blade: t.Truths("blade")[i], Speed: t.Floats("speed")[i],
-			Rotors: narrow(t.IntLists("rotors")[i]), Hover: t.Truths("hover")[i], Service: t.Truths("service")[i]}
+		x := modal.Meeting{Order: int(t.Ints("order")[i]), Blade: t.Texts("what")[i] == bladePassing, Speed: t.Floats("speed")[i],
+			Rotors: narrow(t.IntLists("rotors")[i]), Hover: t.Texts("range")[i] == "hover", Service: t.Texts("range")[i] != "beyond"}
 		mode := t.Ints("mode")[i]
 		if mode < 1 || mode > int64(len(s.Modes)) {
 			return malformed("modes", "a meeting is of mode %d", mode)

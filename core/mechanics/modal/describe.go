@@ -18,39 +18,29 @@ func (b *Basis) Dampen(loss []float64, floor float64) {
 	}
 }
 
-// Describe says what each elastic mode of a dampened basis is. strain and kinetic are those of
-// Structure; carriers names the latter. Gaps count modes between from and to, Hz.
-//
-// A mode without any loss has infinite strength where it moves the gyro at all.
-func Describe(b *Basis, strain [][][6]float64, kinetic [][]float64, carriers []string, rotors []airframe.Rotor, from, to float64) *Survey {
-	s := &Survey{From: from, To: to, Carriers: carriers, Kinds: assembly.EnergyKinds[:]}
+// Describe says of each elastic mode what needs no loss factor and no rotor speed: energies, rotation of
+// the gyro, shares of the rotors, distances. strain and kinetic are those of Structure; carriers names the
+// latter.
+func Describe(b *Basis, strain [][][6]float64, kinetic [][]float64, carriers []string) *Survey {
+	s := &Survey{Carriers: carriers, Kinds: assembly.EnergyKinds[:]}
 	for _, g := range b.Groups {
 		s.Groups = append(s.Groups, g.Name)
 	}
-	var hubs []*Site
-	var gyro *Site
-	for i := range b.Sites {
-		switch b.Sites[i].Kind {
-		case "rotor":
-			hubs = append(hubs, &b.Sites[i])
-			s.Rotors = append(s.Rotors, b.Sites[i].Name)
-		case "gyro":
-			gyro = &b.Sites[i]
-		}
+	hubs, gyro := b.stations()
+	for _, hub := range hubs {
+		s.Rotors = append(s.Rotors, hub.Name)
 	}
-	n := len(b.Kinds)
 	for v, kind := range b.Kinds {
 		if kind != Elastic {
 			continue
 		}
 		m := Mode{Number: len(s.Modes) + 1, Vector: v, Frequency: b.Frequency[v], Below: math.Inf(1), Above: math.Inf(1)}
-		omega := 2 * math.Pi * m.Frequency
-		for _, g := range b.Groups {
-			m.Loss += g.LossFactor * g.Stiffness[v*n+v] / (omega * omega)
-		}
 		m.energies(strain[m.Number-1], kinetic[m.Number-1], s)
-		m.strengths(v, omega, hubs, gyro)
-		m.Meetings = meetings(omega, rotors)
+		force, moment := squares(v, hubs)
+		m.RotorShare, m.MomentShare = shares(force), shares(moment)
+		if gyro != nil {
+			m.Rotation = [3]float64(gyro.Motion[v][3:])
+		}
 		if k := len(s.Modes); k > 0 {
 			last := &s.Modes[k-1]
 			m.Below = m.Frequency - last.Frequency
@@ -58,10 +48,76 @@ func Describe(b *Basis, strain [][][6]float64, kinetic [][]float64, carriers []s
 		}
 		s.Modes = append(s.Modes, m)
 	}
+	return s
+}
+
+// Complete adds what depends on the loss factors of the basis, on rotor speeds, and on the band from
+// to to (Hz) in which gaps count. A mode without any loss has infinite strength where it moves the gyro.
+func (s *Survey) Complete(b *Basis, rotors []airframe.Rotor, from, to float64) {
+	s.From, s.To = from, to
+	hubs, _ := b.stations()
+	n := len(b.Kinds)
+	for i := range s.Modes {
+		m := &s.Modes[i]
+		omega := 2 * math.Pi * m.Frequency
+		m.Loss = 0
+		for _, g := range b.Groups {
+			m.Loss += g.LossFactor * g.Stiffness[m.Vector*n+m.Vector] / (omega * omega)
+		}
+		force, moment := squares(m.Vector, hubs)
+		for axis, turn := range m.Rotation {
+			m.Strength[axis] = ratio(math.Abs(turn)*math.Sqrt(total(force)), omega*m.Loss)
+			m.MomentStrength[axis] = ratio(math.Abs(turn)*math.Sqrt(total(moment)), omega*m.Loss)
+		}
+		m.Meetings = meetings(omega, rotors)
+	}
 	for axis := range s.Gaps {
 		s.Gaps[axis] = s.gaps(axis)
 	}
-	return s
+}
+
+// stations returns the hubs in order, and the gyro or nil.
+func (b *Basis) stations() (hubs []*Site, gyro *Site) {
+	for i := range b.Sites {
+		switch b.Sites[i].Kind {
+		case "rotor":
+			hubs = append(hubs, &b.Sites[i])
+		case "gyro":
+			gyro = &b.Sites[i]
+		}
+	}
+	return hubs, gyro
+}
+
+// squares returns, per hub, the sum of squares of the displacement and of the rotation in vector v.
+func squares(v int, hubs []*Site) (force, moment []float64) {
+	force, moment = make([]float64, len(hubs)), make([]float64, len(hubs))
+	for r, hub := range hubs {
+		for c, x := range hub.Motion[v] {
+			if c < 3 {
+				force[r] += x * x
+			} else {
+				moment[r] += x * x
+			}
+		}
+	}
+	return force, moment
+}
+
+func total(a []float64) float64 {
+	sum := 0.0
+	for _, v := range a {
+		sum += v
+	}
+	return sum
+}
+
+func shares(a []float64) []float64 {
+	out := make([]float64, len(a))
+	for i, v := range a {
+		out[i] = ratio(v, total(a))
+	}
+	return out
 }
 
 func (m *Mode) energies(strain [][6]float64, kinetic []float64, s *Survey) {
@@ -88,35 +144,6 @@ func (m *Mode) energies(strain [][6]float64, kinetic []float64, s *Survey) {
 	m.Motion = s.Kinds[kind]
 }
 
-func (m *Mode) strengths(v int, omega float64, hubs []*Site, gyro *Site) {
-	m.RotorShare, m.MomentShare = make([]float64, len(hubs)), make([]float64, len(hubs))
-	force, moment := 0.0, 0.0
-	for r, hub := range hubs {
-		for c, x := range hub.Motion[v] {
-			if c < 3 {
-				m.RotorShare[r] += x * x
-			} else {
-				m.MomentShare[r] += x * x
-			}
-		}
-		force += m.RotorShare[r]
-		moment += m.MomentShare[r]
-	}
-	for r := range hubs {
-		m.RotorShare[r] = ratio(m.RotorShare[r], force)
-		m.MomentShare[r] = ratio(m.MomentShare[r], moment)
-	}
-	if gyro == nil {
-		return
-	}
-	for axis := range 3 {
-		m.Rotation[axis] = gyro.Motion[v][3+axis]
-		turn := math.Abs(m.Rotation[axis])
-		m.Strength[axis] = ratio(turn*math.Sqrt(force), omega*m.Loss)
-		m.MomentStrength[axis] = ratio(turn*math.Sqrt(moment), omega*m.Loss)
-	}
-}
-
 // ratio is a/b, and 0 for 0/0.
 func ratio(a, b float64) float64 {
 	if a == 0 {
@@ -135,8 +162,8 @@ func meetings(omega float64, rotors []airframe.Rotor) []Meeting {
 				continue
 			}
 			m.Speed = omega / float64(m.Order)
-			m.Hover = math.Abs(m.Speed-rotor.HoverSpeed) <= HoverBand*rotor.HoverSpeed
 			m.Service = m.Speed <= rotor.MaxSpeed
+			m.Hover = m.Service && math.Abs(m.Speed-rotor.HoverSpeed) <= HoverBand*rotor.HoverSpeed
 			i := slices.IndexFunc(out, func(x Meeting) bool {
 				return x.Order == m.Order && x.Blade == m.Blade && x.Hover == m.Hover && x.Service == m.Service
 			})

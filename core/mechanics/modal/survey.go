@@ -41,8 +41,7 @@ type Meeting struct {
 	Blade  bool    // blade passing
 	Speed  float64 // rad/s
 	Rotors []int   // for which this holds, indices into Survey.Rotors
-	// Hover: within HoverBand of the hover speed of one of them. Service: not above the highest
-	// speed of one of them.
+	// Service: not above their highest speed. Hover: that, and within HoverBand of their hover speed.
 	Hover, Service bool
 }
 

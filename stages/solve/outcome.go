@@ -1,0 +1,203 @@
+package solve
+
+import (
+	"fmt"
+	"math"
+	"strings"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/modal"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+)
+
+const (
+	degree = math.Pi / 180
+	rpm    = 2 * math.Pi / 60
+)
+
+// outcome sums up the modes in figures, warnings and tables.
+func outcome(m *kinds.Modes, p *airframe.Properties, set settings, notes []string) *stage.Outcome {
+	s := m.Survey
+	o := &stage.Outcome{Notes: notes, Warnings: warnings(m, p, set)}
+	below, wanted := 0, 0
+	list := []any{}
+	for i := range s.Modes {
+		mode := &s.Modes[i]
+		if mode.Frequency <= set.upTo {
+			below++
+		}
+		if mode.Frequency <= rule*set.sweptTo {
+			wanted++
+		}
+		object := map[string]any{
+			"number": float64(mode.Number), "frequency": hertz(mode.Frequency), "damping": mode.Loss / 2, "part": mode.Part, "motion": mode.Motion,
+		}
+		for axis, name := range kinds.AxisNames {
+			object["strength_"+name] = stage.Quantity{SI: mode.Strength[axis], Dimension: "angular rate per force"}
+		}
+		list = append(list, object)
+	}
+	o.Figures = map[string]any{
+		"modes": list, "lowest": hertz(s.Modes[0].Frequency), "modes_below": float64(below), "modes_wanted": float64(wanted),
+		"mass": stage.Quantity{SI: m.Mass, Dimension: "mass"}, "rigid_ratio": m.RigidRatio,
+	}
+	for axis, name := range kinds.AxisNames {
+		width := math.Inf(1)
+		if g, ok := s.SmallestGap(axis); ok {
+			width = g.Width
+		}
+		top := &s.Modes[0]
+		for i := range s.Modes {
+			if s.Modes[i].Strength[axis] > top.Strength[axis] {
+				top = &s.Modes[i]
+			}
+		}
+		o.Figures["smallest_gap_"+name] = hertz(width)
+		o.Figures["strongest_"+name] = hertz(top.Frequency)
+		o.Figures["strength_"+name] = stage.Quantity{SI: top.Strength[axis], Dimension: "angular rate per force"}
+	}
+	what := "modes to %.4g Hz are wanted for a sweep to %.4g Hz: "
+	if set.upTo >= rule*set.sweptTo*(1-1e-9) {
+		what += fmt.Sprintf("%d elastic modes, all found", wanted)
+	} else {
+		what += fmt.Sprintf("found are the %d below %.4g Hz", below, set.upTo)
+	}
+	o.Notes = append(o.Notes, fmt.Sprintf(what, rule*set.sweptTo, set.sweptTo),
+		fmt.Sprintf("%d unknowns; six rigid-body motions below %.1g of the lowest elastic frequency", m.Unknowns, m.RigidRatio))
+	o.Summary = []stage.Section{modeTable(m), meetingTable(m)}
+	if g := gapTable(m); len(g.Rows) > 0 {
+		o.Summary = append(o.Summary, g)
+	}
+	return o
+}
+
+// nearMeshLimit and weak thresholds of warnings.
+const undamped = 2e-4 // loss factor
+
+func warnings(m *kinds.Modes, p *airframe.Properties, set settings) []stage.Warning {
+	var out []stage.Warning
+	if set.upTo < rule*set.sweptTo*(1-1e-9) {
+		out = append(out, stage.Warning{
+			ID:     "solve.short-of-sweep",
+			Text:   fmt.Sprintf("modes go to %.4g Hz for a sweep to %.4g Hz; by common practice they should go 1.5 times as high", set.upTo, set.sweptTo),
+			Where:  "up_to",
+			Remedy: fmt.Sprintf("raise up_to to %.4g Hz", math.Ceil(rule*set.sweptTo)),
+		})
+	}
+	if !m.Proved {
+		out = append(out, stage.Warning{
+			ID: "solve.unproved", Text: "the count of eigenvalues does not confirm that every mode was found",
+			Where: "up_to", Remedy: "move up_to a little, away from a cluster of modes",
+		})
+	}
+	for i := range m.Survey.Modes {
+		if mode := &m.Survey.Modes[i]; mode.Loss < undamped {
+			out = append(out, stage.Warning{
+				ID: "solve.undamped", Text: fmt.Sprintf("mode %d at %.4g Hz has a loss factor of %.2g, so its gyro strength means little", mode.Number, mode.Frequency, mode.Loss),
+				Where: mode.Part, Remedy: "give its material, joint or mount a loss factor, or the airframe a floor",
+			})
+		}
+	}
+	if p.DeclaredMass > 0 && math.Abs(m.Mass/p.DeclaredMass-1) > 0.05 {
+		out = append(out, stage.Warning{
+			ID: "solve.mass", Text: fmt.Sprintf("the model weighs %.1f g, the airframe declares %.1f g", 1e3*m.Mass, 1e3*p.DeclaredMass),
+			Where: "mass", Remedy: "see whether lumps are missing or counted twice",
+		})
+	}
+	return out
+}
+
+// strength shows a gyro strength in deg/s per newton with three digits.
+func strength(x float64) string { return fmt.Sprintf("%.3g", x/degree) }
+
+// gap shows the distance to the nearer neighbour.
+func gap(m *modal.Mode) string {
+	d := min(m.Below, m.Above)
+	if math.IsInf(d, 1) {
+		return "-"
+	}
+	return fmt.Sprintf("%.1f", d)
+}
+
+func modeTable(m *kinds.Modes) stage.Section {
+	s := stage.Section{
+		Title: "Modes",
+		Text:  "strength: peak gyro rate of the mode alone, root sum of squares over 1 N along each axis at every hub",
+		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "frequency, Hz", Right: true}, {Name: "damping, %", Right: true}, {Name: "motion"},
+			{Name: "roll, deg/s/N", Right: true}, {Name: "pitch, deg/s/N", Right: true}, {Name: "yaw, deg/s/N", Right: true}, {Name: "gap, Hz", Right: true}},
+	}
+	for i := range m.Survey.Modes {
+		mode := &m.Survey.Modes[i]
+		s.Rows = append(s.Rows, []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), Motion(mode),
+			strength(mode.Strength[0]), strength(mode.Strength[1]), strength(mode.Strength[2]), gap(mode)})
+	}
+	return s
+}
+
+// Motion says in words what a mode is: "bending of arm_fr (41 %)", with the share of the strain energy in
+// the part.
+func Motion(m *modal.Mode) string {
+	share := 0.0
+	for _, v := range m.ByGroup {
+		share = max(share, v)
+	}
+	return fmt.Sprintf("%s of %s (%.0f %%)", m.Motion, m.Part, 100*share)
+}
+
+// meetingTable lists, per mode, the speeds of orders 1, 2 and blade passing within the service range.
+func meetingTable(m *kinds.Modes) stage.Section {
+	s := stage.Section{
+		Title:   "Rotor speeds at which orders meet modes",
+		Text:    fmt.Sprintf("only speeds that the rotors reach; a star marks those within %.0f %% of hover", 100*modal.HoverBand),
+		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "frequency, Hz", Right: true}, {Name: "order 1, rpm", Right: true}, {Name: "order 2, rpm", Right: true}, {Name: "blade passing, rpm", Right: true}},
+	}
+	for i := range m.Survey.Modes {
+		mode := &m.Survey.Modes[i]
+		row := []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), "-", "-", "-"}
+		seen := [3]string{}
+		for _, x := range mode.Meetings {
+			if !x.Service {
+				continue
+			}
+			column := x.Order - 1
+			if x.Blade {
+				column = 2
+			}
+			text := fmt.Sprintf("%.0f", math.Round(x.Speed/rpm))
+			if x.Hover {
+				text += "*"
+			}
+			if seen[column] == "" {
+				seen[column] = text
+			} else if !strings.Contains(seen[column], text) {
+				seen[column] += ", " + text
+			}
+		}
+		for c, text := range seen {
+			if text != "" {
+				row[2+c] = text
+			}
+		}
+		s.Rows = append(s.Rows, row)
+	}
+	return s
+}
+
+// gapTable lists the narrowest gap of each axis.
+func gapTable(m *kinds.Modes) stage.Section {
+	s := stage.Section{
+		Title:   "Narrowest gaps",
+		Text:    fmt.Sprintf("between neighbours from %.4g to %.4g Hz with at least a tenth of the strongest gyro strength on the axis", m.Survey.From, m.Survey.To),
+		Columns: []stage.Column{{Name: "axis"}, {Name: "gap, Hz", Right: true}, {Name: "between modes"}, {Name: "at, Hz"}},
+	}
+	for axis, name := range kinds.AxisNames {
+		g, ok := m.Survey.SmallestGap(axis)
+		if !ok {
+			continue
+		}
+		lower, upper := m.Survey.Modes[g.Lower-1].Frequency, m.Survey.Modes[g.Upper-1].Frequency
+		s.Rows = append(s.Rows, []string{name, fmt.Sprintf("%.1f", g.Width), fmt.Sprintf("%d and %d", g.Lower, g.Upper), fmt.Sprintf("%.1f and %.1f", lower, upper)})
+	}
+	return s
+}
