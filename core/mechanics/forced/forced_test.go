@@ -120,6 +120,30 @@ func TestSolutionMeetsTheEquation(t *testing.T) {
 	}
 }
 
+// A matrix with nothing on its diagonal can be solved only by changing rows.
+func TestEliminationChangesRows(t *testing.T) {
+	a := []complex128{0, 2, 0, 1i, 0, 3, 0, 4, 0.5}
+	want := []complex128{1, 2i, -1}
+	side := make([]complex128, 3)
+	for i := range side {
+		for j := range want {
+			side[i] += a[3*i+j] * want[j]
+		}
+	}
+	direct := append([]complex128(nil), side...)
+	r := reduce(append([]complex128(nil), a...), 3)
+	x := r.turn(side)
+	if !r.solve(0, make([]complex128, 9), x) || !factorSolve(a, 3, direct) {
+		t.Fatal("called singular")
+	}
+	x = r.turnBack(x)
+	for i := range want {
+		if cmplx.Abs(x[i]-want[i]) > 1e-14 || cmplx.Abs(direct[i]-want[i]) > 1e-14 {
+			t.Errorf("x[%d] = %v and %v, want %v", i, x[i], direct[i], want[i])
+		}
+	}
+}
+
 // The transfer functions come from a transposed solve; driving each input must
 // give the same.
 func TestTransferAgreesWithDriving(t *testing.T) {
@@ -376,7 +400,7 @@ func TestNodesMoveAsTheShapesSay(t *testing.T) {
 }
 
 func TestGrid(t *testing.T) {
-	g := Grid(100, 500, 1, []Resonance{{250.3, 0.004}, {90, 0.02}, {400, 0}})
+	g := Grid(100, 500, 1, []Resonance{{250.3, 0.004}, {90, 0.02}, {400, 0}, {501, 0.02}})
 	if g[0] != 100 || g[len(g)-1] != 500 {
 		t.Errorf("grid goes from %g to %g", g[0], g[len(g)-1])
 	}

@@ -1,0 +1,92 @@
+package report
+
+import (
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/mesh"
+	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+	"hushframe/stages/report/draw"
+)
+
+// content is what the artifacts hold; whatever was not included is nil.
+type content struct {
+	geometry   *airframe.Geometry
+	properties *airframe.Properties
+	mesh       *mesh.Mesh
+	modes      *kinds.Modes
+	response   *kinds.Response
+	spectra    *kinds.Spectra
+	comparison *kinds.Comparison
+	run        *facts
+	sources    []kinds.DocumentSource
+
+	surface *draw.Surface
+	view    *draw.View
+}
+
+// restName names the outline at rest, which all pictures of shapes share.
+const restName = "outline-at-rest"
+
+// coarse is the length of edges that a picture can show, m.
+const coarse = 4e-3
+
+// drawing gives the mesh as it is drawn, made on first use.
+func (c *content) drawing() (*draw.Surface, *draw.View) {
+	if c.view == nil {
+		var more []airframe.Vec
+		if c.modes != nil {
+			for _, site := range c.modes.Basis.Sites {
+				more = append(more, site.Point)
+			}
+		}
+		c.surface = draw.NewSurface(c.mesh, coarse)
+		c.view = draw.NewView(c.surface, more)
+	}
+	return c.surface, c.view
+}
+
+// add reads one artifact.
+func (c *content) add(in stage.Input) error {
+	a, err := artifact.Open(in.Folder, registry())
+	if err != nil {
+		return err
+	}
+	c.sources = append(c.sources, kinds.DocumentSource{Kind: a.Kind.Name, From: in.From, Hash: in.Hash})
+	switch a.Kind.Name {
+	case "geometry":
+		err = once(in, &c.geometry, a, kinds.DecodeGeometry)
+	case "properties":
+		err = once(in, &c.properties, a, kinds.DecodeProperties)
+	case "mesh":
+		err = once(in, &c.mesh, a, kinds.DecodeMesh)
+	case "modes":
+		err = once(in, &c.modes, a, kinds.DecodeModes)
+	case "response":
+		err = once(in, &c.response, a, kinds.DecodeResponse)
+	case "spectra":
+		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
+	case "comparison":
+		err = once(in, &c.comparison, a, kinds.DecodeComparison)
+	case "run":
+		c.run = readFacts(a)
+	default:
+		err = fault.New(fault.Input, "a report cannot show an artifact of kind %s", a.Kind.Name).In("report", in.From).Of("include")
+	}
+	return err
+}
+
+// once decodes an artifact into its place, which must be free.
+func once[T any](in stage.Input, place **T, a *artifact.Artifact, decode func(*artifact.Artifact) (*T, error)) error {
+	if *place != nil {
+		return fault.New(fault.Input, "two artifacts of kind %s are included", a.Kind.Name).In("report", in.From).Of("include").
+			Do("include one of each kind, and write a second report for the other")
+	}
+	x, err := decode(a)
+	if err != nil {
+		return err
+	}
+	*place = x
+	return nil
+}

@@ -1,0 +1,125 @@
+package report
+
+import (
+	"math"
+	"sort"
+
+	"hushframe/core/mechanics/airframe"
+)
+
+// massTable lists what the frame is made of, by mass.
+func massTable(p *airframe.Properties) *table {
+	t := &table{Name: "masses", Title: "Masses",
+		Columns: []column{{"part", "", false}, {"what", "", false}, {"material", "", false}, {"mass", "g", true}}}
+	total := 0.0
+	add := func(name, what, material string, mass float64) {
+		total += mass
+		t.Rows = append(t.Rows, []cell{words(name), words(what), words(material), number(1000*mass, 2)})
+	}
+	for _, x := range p.Plates {
+		material := x.Material
+		if material == "" {
+			material = "ply stack"
+		}
+		add(x.Plate, "plate", material, x.Mass)
+	}
+	for _, x := range p.Standoffs {
+		add(x.Standoff, "standoff", x.Material, x.Mass)
+	}
+	for _, x := range p.Bodies {
+		what := map[string]string{"rotor": "rotor", "gyro": "gyro", "lump": "body"}[x.Kind]
+		if x.Mount != nil {
+			what += " on " + x.Mount.Name
+		}
+		add(x.Name, what, "", x.Mass)
+	}
+	if len(p.Bolts) > 0 {
+		sum := 0.0
+		for _, x := range p.Bolts {
+			sum += x.Mass
+		}
+		add(joinCount(len(p.Bolts), "bolt", "bolts"), "screws, washers, nuts", "", sum)
+	}
+	row := []cell{words("total"), words(""), words(""), number(1000*total, 2)}
+	if p.DeclaredMass > 0 {
+		t.Rows = append(t.Rows, row)
+		row = []cell{words("declared in the airframe"), words(""), words(""), number(1000*p.DeclaredMass, 2)}
+	}
+	for i := range row {
+		row[i].Strong = true
+	}
+	t.Rows = append(t.Rows, row)
+	return t
+}
+
+// materialTable states the constants used and where they come from.
+func materialTable(p *airframe.Properties) *table {
+	t := &table{Name: "materials", Title: "Materials",
+		Columns: []column{{"material", "", false}, {"E1", "GPa", true}, {"E2", "GPa", true}, {"G12", "GPa", true}, {"ν12", "", true}, {"density", "kg/m³", true},
+			{"loss factor", "", true}, {"scatter of E", "%", true}, {"origin", "", false}}}
+	rows := append([]airframe.Material{}, p.Materials...)
+	sort.SliceStable(rows, func(i, j int) bool { return rows[i].Name < rows[j].Name })
+	for _, m := range rows {
+		scatter := percent(m.Scatter, 0)
+		if m.Scatter == 0 {
+			scatter = missing()
+		}
+		origin := m.Origin
+		if m.Typical {
+			origin = "typical value, not measured; " + origin
+		}
+		t.Rows = append(t.Rows, []cell{words(m.Name), digits(m.E1/1e9, 3), digits(m.E2/1e9, 3), digits(m.G12/1e9, 3), digits(m.Nu12, 2), digits(m.Density, 4),
+			digits(m.LossFactor, 2), scatter, words(origin)})
+	}
+	return t
+}
+
+// jointTable lists joints and mounts, the softest and least certain parts.
+func jointTable(p *airframe.Properties) *table {
+	t := &table{Name: "joints", Title: "Joints and mounts", About: "Forces in N/mm, moments in N·m/rad, in the frame of the bolt or, for mounts, along the airframe's axes per point.",
+		Columns: []column{{"name", "", false}, {"what", "", false}, {"points", "", true}, {"x", "N/mm", true}, {"y", "N/mm", true}, {"z", "N/mm", true},
+			{"about x", "N·m/rad", true}, {"about y", "N·m/rad", true}, {"about z", "N·m/rad", true}, {"loss factor", "", true}}}
+	add := func(name, what string, points int, k [6]float64, loss float64) {
+		row := []cell{words(name), words(what), count(points)}
+		for i, x := range k {
+			switch {
+			case math.IsInf(x, 1):
+				row = append(row, words("rigid"))
+			case x == 0:
+				row = append(row, words("free"))
+			case i < 3:
+				row = append(row, digits(x/1000, 3))
+			default:
+				row = append(row, digits(x, 3))
+			}
+		}
+		t.Rows = append(t.Rows, append(row, digits(loss, 2)))
+	}
+	bolts := map[string]int{}
+	for _, b := range p.Bolts {
+		bolts[b.Joint]++
+	}
+	for _, j := range p.Joints {
+		add(j.Name, "joint", bolts[j.Name], j.Stiffness, j.LossFactor)
+	}
+	for _, b := range p.Bodies {
+		if b.Mount != nil && len(b.Mount.Points) > 0 {
+			add(b.Mount.Name, b.Mount.Kind+" under "+b.Name, len(b.Mount.Points), b.Mount.Points[0].Stiffness, b.Mount.LossFactor)
+		}
+	}
+	return t
+}
+
+func rotorTable(p *airframe.Properties) *table {
+	t := &table{Name: "rotors", Title: "Rotors", Columns: []column{{"rotor", "", false}, {"blades", "", true}, {"spin", "", false}, {"hover", "rpm", true}, {"highest", "rpm", true},
+		{"spinning mass", "g", true}, {"balance grade", "mm/s", true}}}
+	for _, r := range p.Rotors {
+		spin := "counterclockwise"
+		if r.Spin < 0 {
+			spin = "clockwise"
+		}
+		t.Rows = append(t.Rows, []cell{words(r.Name), count(r.Blades), words(spin), number(r.HoverSpeed/rpm, 0), number(r.MaxSpeed/rpm, 0),
+			number(1000*r.SpinningMass, 2), digits(1000*r.Grade, 2)})
+	}
+	return t
+}

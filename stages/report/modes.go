@@ -1,0 +1,283 @@
+package report
+
+import (
+	"fmt"
+	"math"
+	"sort"
+	"strings"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/modal"
+	"hushframe/stages/kinds"
+	"hushframe/stages/report/draw"
+)
+
+// modesSection shows what the elastic modes are, and how they look.
+func modesSection(c *content) *section {
+	m := c.modes
+	if m == nil {
+		return nil
+	}
+	s := &section{ID: "modes", Title: "Modes"}
+	proof := "a count of eigenvalues proves that none below that is missing"
+	if !m.Proved {
+		proof = "no count of eigenvalues was made, so one might be missing"
+	}
+	s.text(fmt.Sprintf("%s up to %.4g Hz, of the frame free in space with %d unknowns; %s.",
+		joinCount(below(m, m.UpTo), "elastic mode", "elastic modes"), m.UpTo, m.Unknowns, proof))
+	s.table(modeTable(m))
+	shapesOfModes(s, c)
+	s.table(gapTable(m))
+	s.table(meetingTable(m))
+	s.table(strainTable(m))
+	s.table(shareTable(m))
+	return s
+}
+
+// shapesOfModes draws the modes if it can, and says why if it cannot.
+func shapesOfModes(s *section, c *content) {
+	m := c.modes
+	if c.mesh == nil {
+		s.aside("Pictures of the shapes need the mesh among the included artifacts.")
+		return
+	}
+	if len(m.Basis.Shapes) > 0 && len(m.Basis.Shapes[0]) != 6*len(c.mesh.Nodes) {
+		s.aside("The mesh included is not the one that the modes were computed on, so their shapes are not drawn.")
+		return
+	}
+	gallery(s, c)
+}
+
+// below counts elastic modes up to a frequency.
+func below(m *kinds.Modes, limit float64) int {
+	n := 0
+	for _, x := range m.Survey.Modes {
+		if x.Frequency <= limit {
+			n++
+		}
+	}
+	return n
+}
+
+func modeTable(m *kinds.Modes) *table {
+	t := &table{Name: "modes", Title: "Elastic modes",
+		About: "Gyro strength: peak rate of that mode alone at its own damping, root sum of squares over unit forces at all rotor hubs. In bold the strongest of each axis.",
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"damping ratio", "%", true}, {"most strain in", "", false}, {"as", "", false},
+			{"roll", "(deg/s)/N", true}, {"pitch", "(deg/s)/N", true}, {"yaw", "(deg/s)/N", true}, {"to the mode below", "Hz", true}, {"above", "Hz", true}}}
+	var best [3]float64
+	for _, x := range m.Survey.Modes {
+		for axis := range best {
+			best[axis] = math.Max(best[axis], x.Strength[axis])
+		}
+	}
+	for _, x := range m.Survey.Modes {
+		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(x.Part), words(x.Motion)}
+		for axis := range best {
+			strength := digits(x.Strength[axis]/degree, 3)
+			strength.Strong = x.Strength[axis] > 0 && x.Strength[axis] == best[axis]
+			row = append(row, strength)
+		}
+		t.Rows = append(t.Rows, append(row, distance(x.Below), distance(x.Above)))
+	}
+	return t
+}
+
+func distance(d float64) cell {
+	if math.IsInf(d, 0) {
+		return missing()
+	}
+	return number(d, 1)
+}
+
+func gapTable(m *kinds.Modes) *table {
+	s := m.Survey
+	t := &table{Name: "gaps", Title: "Neighbours that the gyro feels together",
+		About:   fmt.Sprintf("Between modes from %.4g to %.4g Hz with at least a tenth of the strongest strength on that axis.", s.From, s.To),
+		Columns: []column{{"axis", "", false}, {"lower mode", "", true}, {"upper mode", "", true}, {"apart", "Hz", true}}}
+	for axis, name := range kinds.AxisNames {
+		least := math.Inf(1)
+		for _, g := range s.Gaps[axis] {
+			least = math.Min(least, g.Width)
+		}
+		for _, g := range s.Gaps[axis] {
+			width := number(g.Width, 1)
+			width.Strong = g.Width == least
+			t.Rows = append(t.Rows, []cell{words(name), count(g.Lower), count(g.Upper), width})
+		}
+	}
+	return t
+}
+
+func meetingTable(m *kinds.Modes) *table {
+	t := &table{Name: "orders-met", Title: "Rotor speeds at which orders meet modes",
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"order", "", false}, {"rotor speed", "rpm", true}, {"range", "", false}, {"rotors", "", false}}}
+	for _, mode := range m.Survey.Modes {
+		for _, x := range mode.Meetings {
+			if !x.Service {
+				continue
+			}
+			order := fmt.Sprint(x.Order)
+			if x.Blade {
+				order = fmt.Sprintf("%d, blade passing", x.Order)
+			}
+			where := words("in service range")
+			if x.Hover {
+				where = cell{Text: "near hover", Raw: "near hover", Strong: true}
+			}
+			names := "all"
+			if len(x.Rotors) < len(m.Survey.Rotors) {
+				var list []string
+				for _, r := range x.Rotors {
+					list = append(list, m.Survey.Rotors[r])
+				}
+				names = strings.Join(list, ", ")
+			}
+			t.Rows = append(t.Rows, []cell{count(mode.Number), number(mode.Frequency, 1), words(order), number(x.Speed/rpm, 0), where, words(names)})
+		}
+	}
+	return t
+}
+
+// strainTable says where each mode stores its energy.
+func strainTable(m *kinds.Modes) *table {
+	t := &table{Name: "strain-energy", Title: "Where the energy is",
+		About:   "The four groups with most strain energy, the kinds of strain, and what moves most by kinetic energy.",
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"strain energy in", "", false}, {"as", "", false}, {"kinetic energy in", "", false}}}
+	for _, x := range m.Survey.Modes {
+		t.Rows = append(t.Rows, []cell{count(x.Number), number(x.Frequency, 1), words(largest(m.Survey.Groups, x.ByGroup, 4)),
+			words(largest(m.Survey.Kinds, x.ByKind, 3)), words(largest(m.Survey.Carriers, x.ByCarrier, 3))})
+	}
+	return t
+}
+
+// largest names the n greatest shares of at least two per cent.
+func largest(names []string, shares []float64, n int) string {
+	order := make([]int, len(names))
+	for i := range order {
+		order[i] = i
+	}
+	sort.SliceStable(order, func(a, b int) bool { return shares[order[a]] > shares[order[b]] })
+	var out []string
+	for _, i := range order {
+		if len(out) == n || shares[i] < 0.02 {
+			break
+		}
+		out = append(out, share(names[i], shares[i]))
+	}
+	return strings.Join(out, ", ")
+}
+
+// shareTable says which rotor drives which mode.
+func shareTable(m *kinds.Modes) *table {
+	t := &table{Name: "rotor-shares", Title: "Which rotors drive which mode",
+		About:   "Part of each rotor in the square of the gyro strength for unit forces, and strengths for unit moments.",
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}}}
+	for _, r := range m.Survey.Rotors {
+		t.Columns = append(t.Columns, column{r, "%", true})
+	}
+	for _, axis := range kinds.AxisNames {
+		t.Columns = append(t.Columns, column{axis + " by moments", "(deg/s)/(N·m)", true})
+	}
+	for _, x := range m.Survey.Modes {
+		row := []cell{count(x.Number), number(x.Frequency, 1)}
+		for _, share := range x.RotorShare {
+			row = append(row, percent(share, 0))
+		}
+		for _, strength := range x.MomentStrength {
+			row = append(row, digits(strength/degree, 3))
+		}
+		t.Rows = append(t.Rows, row)
+	}
+	return t
+}
+
+// mostPictures bounds the gallery, and with it the page.
+const mostPictures = 24
+
+// gallery draws the elastic modes in the band.
+func gallery(s *section, c *content) {
+	m := c.modes
+	surface, view := c.drawing()
+	limit := m.UpTo
+	var pictures []figure
+	for _, x := range m.Survey.Modes {
+		if x.Frequency > limit || len(pictures) == mostPictures {
+			break
+		}
+		pictures = append(pictures, figure{
+			Title:   fmt.Sprintf("Mode %d at %.1f\u00a0Hz", x.Number, x.Frequency),
+			Picture: trusted(view.Shape(surface, restName, modeMotion(m, x))),
+			Caption: modeCaption(m, x),
+		})
+	}
+	if len(pictures) == 0 {
+		return
+	}
+	s.heading("Shapes")
+	s.text("Each picture shows the frame deformed over its outline at rest, seen from behind and above, enlarged to the same largest displacement. " +
+		"Colour is the displacement as a share of the largest. The arrow is the axis about which the gyro turns; the curved arrow runs the way round that the right hand gives.")
+	steps := make([]int, draw.Levels)
+	for k := range steps {
+		steps[k] = k
+	}
+	s.Blocks = append(s.Blocks, block{Scale: &scaleBar{steps}}, block{Gallery: pictures})
+	if n := below(m, limit); n > len(pictures) {
+		s.aside(fmt.Sprintf("The first %d of %d modes are drawn.", len(pictures), n))
+	}
+}
+
+// modeMotion is the motion of a mode, with the sign that moves the gyro, or
+// else the frame, mostly the positive way.
+func modeMotion(m *kinds.Modes, x modal.Mode) draw.Motion {
+	shape := m.Basis.Shapes[x.Vector]
+	sign := 1.0
+	if main, _ := mainAxis(x); x.Rotation[main] < 0 {
+		sign = -1
+	}
+	motion := draw.Motion{
+		About: fmt.Sprintf("Shape of mode %d at %.1f Hz. %s", x.Number, x.Frequency, modeCaption(m, x)),
+		Node: func(n int32) airframe.Vec {
+			u := shape[6*n : 6*n+3]
+			return airframe.Vec{sign * u[0], sign * u[1], sign * u[2]}
+		},
+	}
+	for _, site := range m.Basis.Sites {
+		q := site.Motion[x.Vector]
+		h := draw.Hub{At: site.Point, Move: airframe.Vec{sign * q[0], sign * q[1], sign * q[2]}, Turn: airframe.Vec{sign * q[3], sign * q[4], sign * q[5]}}
+		switch site.Kind {
+		case "rotor":
+			motion.Hubs = append(motion.Hubs, h)
+		case "gyro":
+			motion.Gyro = &h
+		}
+	}
+	return motion
+}
+
+// mainAxis is the axis about which the gyro turns most, with the share of it
+// in the square of the rotation.
+func mainAxis(x modal.Mode) (axis int, share float64) {
+	sum := 0.0
+	for k, r := range x.Rotation {
+		sum += r * r
+		if math.Abs(r) > math.Abs(x.Rotation[axis]) {
+			axis = k
+		}
+	}
+	if sum == 0 {
+		return 0, 0
+	}
+	return axis, x.Rotation[axis] * x.Rotation[axis] / sum
+}
+
+func modeCaption(m *kinds.Modes, x modal.Mode) string {
+	axis, share := mainAxis(x)
+	gyro := "the gyro hardly turns"
+	switch {
+	case share > 0.9:
+		gyro = "the gyro turns in " + kinds.AxisNames[axis]
+	case share > 0:
+		gyro = fmt.Sprintf("the gyro turns mostly in %s (%.0f\u00a0%%)", kinds.AxisNames[axis], 100*share)
+	}
+	return fmt.Sprintf("Mostly %s, most of all in %s; %s.", x.Motion, x.Part, gyro)
+}

@@ -1,0 +1,137 @@
+package report
+
+import (
+	"bytes"
+	_ "embed"
+	"fmt"
+	"html/template"
+	"path"
+	"strings"
+
+	"hushframe/core/pipeline/fault"
+	"hushframe/stages/kinds"
+	"hushframe/stages/report/draw"
+)
+
+//go:embed page.html
+var pageText string
+
+//go:embed style.css
+var styleText string
+
+var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"class": cellClass}).Parse(pageText))
+
+func cellClass(col column, c cell) string {
+	var parts []string
+	if col.Right {
+		parts = append(parts, "num")
+	}
+	if c.Strong {
+		parts = append(parts, "strong")
+	}
+	if c.Quiet {
+		parts = append(parts, "faint")
+	}
+	return strings.Join(parts, " ")
+}
+
+// page is what the template shows.
+type page struct {
+	Title, About, Foot string
+	Style              template.CSS
+	Verdict            *banner
+	Requirements       []verdict
+	Warnings           []warning
+	Sections           []*section
+	Rest               template.HTML // definitions shared by pictures
+}
+
+// banner is the verdict on the whole run.
+type banner struct{ Class, Sign, Words, More string }
+
+// compose makes the document; name is the file name of the page.
+func compose(c *content, title, name string) (*kinds.Document, error) {
+	if name == "" || name == "." || name == "/" {
+		return nil, fault.New(fault.Input, "the target names no file").In("report", name).Of("to").Do(`give it a name such as "report/baseline.html"`)
+	}
+	p := &page{Title: title, Style: template.CSS(styleText + draw.Style()),
+		Foot: "Small linear vibration about hover. This page says nothing about crash strength, flight-control stability or airworthiness."}
+	if c.run != nil {
+		p.About, p.Requirements, p.Warnings = c.run.About, c.run.Verdicts, c.run.Warnings
+		p.Verdict = judge(c.run.Verdicts)
+		if p.Title == "" {
+			p.Title = c.run.Job
+		}
+		p.Foot = c.run.Program + ". " + p.Foot
+	}
+	if p.Title == "" {
+		p.Title = "Vibration report"
+	}
+	add := func(s *section) {
+		if s != nil && len(s.Blocks) > 0 {
+			p.Sections = append(p.Sections, s)
+		}
+	}
+	glance := &section{ID: "glance", Title: "At a glance"}
+	glance.table(glanceTable(c))
+	add(glance)
+	add(frameSection(c))
+	add(modesSection(c))
+	add(responseSection(c))
+	if c.comparison != nil {
+		add(comparisonSection(c.comparison))
+	}
+	if c.spectra != nil {
+		add(recordingSection(c.spectra))
+	}
+	add(modelSection(c))
+	add(cautionSection())
+	add(runSection(c))
+	add(glossarySection())
+	if c.view != nil {
+		p.Rest = trusted(c.view.Rest(c.surface, restName))
+	}
+
+	d := &kinds.Document{Title: p.Title, Page: name, Sources: c.sources, Files: map[string][]byte{}}
+	folder := strings.TrimSuffix(name, path.Ext(name)) + "-tables"
+	for _, s := range p.Sections {
+		for _, b := range s.Blocks {
+			if t := b.Table; t != nil {
+				t.File = folder + "/" + t.Name + ".csv"
+				if _, taken := d.Files[t.File]; taken {
+					return nil, fault.New(fault.Internal, "two tables are called %s", t.Name).In("report", name)
+				}
+				d.Files[t.File] = t.csv()
+				d.Tables = append(d.Tables, kinds.DocumentTable{File: t.File, Title: t.Title, Rows: len(t.Rows)})
+			}
+		}
+	}
+	var b bytes.Buffer
+	if err := pageTemplate.Execute(&b, p); err != nil {
+		return nil, fault.New(fault.Internal, "%v", err).In("report", name)
+	}
+	d.Files[name] = b.Bytes()
+	return d, nil
+}
+
+// judge sums up the verdicts; nil when the job requires nothing.
+func judge(verdicts []verdict) *banner {
+	broken := 0
+	for _, v := range verdicts {
+		if !v.Holds {
+			broken++
+		}
+	}
+	switch n := len(verdicts); {
+	case n == 0:
+		return &banner{"open", "○", "Nothing was required", "The job states no requirements, so there is no verdict."}
+	case broken == 0 && n == 1:
+		return &banner{"holds", "✓", "The requirement holds", ""}
+	case broken == 0:
+		return &banner{"holds", "✓", fmt.Sprintf("All %d requirements hold", n), ""}
+	case n == 1:
+		return &banner{"broken", "✕", "The requirement is broken", ""}
+	default:
+		return &banner{"broken", "✕", fmt.Sprintf("%d of %d requirements %s broken", broken, n, map[bool]string{true: "is", false: "are"}[broken == 1]), ""}
+	}
+}

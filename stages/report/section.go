@@ -1,0 +1,57 @@
+package report
+
+import (
+	"html/template"
+)
+
+// section is one part of the page.
+type section struct {
+	ID, Title string
+	Blocks    []block
+}
+
+// block is one thing within a section; exactly one field group is set.
+type block struct {
+	Heading string // a smaller title
+	Text    string // a paragraph
+	Quiet   bool   // of Text: an aside
+	List    []string
+	Table   *table
+	Picture template.HTML
+	Caption string // of Picture
+	Gallery []figure
+	Views   []figure // large pictures beside each other
+	Scale   *scaleBar
+	Code    string // text of a file, shown as it is
+	Name    string // of Code
+	Terms   []term
+}
+
+type figure struct {
+	Picture        template.HTML
+	Title, Caption string
+}
+
+// scaleBar explains the colours of displacements.
+type scaleBar struct{ Steps []int }
+
+type term struct{ Word, Meaning string }
+
+func (s *section) text(words string)    { s.Blocks = append(s.Blocks, block{Text: words}) }
+func (s *section) aside(words string)   { s.Blocks = append(s.Blocks, block{Text: words, Quiet: true}) }
+func (s *section) heading(words string) { s.Blocks = append(s.Blocks, block{Heading: words}) }
+func (s *section) list(items []string)  { s.Blocks = append(s.Blocks, block{List: items}) }
+func (s *section) draw(svg, caption string) {
+	s.Blocks = append(s.Blocks, block{Picture: trusted(svg), Caption: caption})
+}
+
+// trusted marks a picture as ready for the page. Only packages draw and picture
+// make them, and both escape every text they are given.
+func trusted(svg string) template.HTML { return template.HTML(svg) }
+
+// table adds a table that has rows.
+func (s *section) table(t *table) {
+	if t != nil && len(t.Rows) > 0 {
+		s.Blocks = append(s.Blocks, block{Table: t})
+	}
+}
