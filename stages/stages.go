@@ -8,6 +8,7 @@ import (
 	"hushframe/stages/meshgen"
 	"hushframe/stages/record"
 	"hushframe/stages/report"
+	"hushframe/stages/solve"
 	"hushframe/stages/sweep"
 )
 
@@ -16,6 +17,7 @@ func Builtin() []stage.Stage {
 	return []stage.Stage{
 		importgeom.Stage{},
 		meshgen.Stage{},
+		solve.Stage{},
 		sweep.Stage{},
 		record.Stage{},
 		compare.Stage{},

@@ -57,7 +57,7 @@ func (b *builder) loads(places []Place) [][]float64 {
 
 const (
 	// settled is the error of a static answer, relative, at which refinement ends.
-	settled = 1e-10
+	settled = 1e-6
 	// dependent is the flexibility, of loads scaled to unit own flexibility, below which a combination
 	// of static answers adds nothing.
 	dependent = 1e-10
