@@ -1,23 +1,22 @@
+// Hushframe predicts, checks and corrects the structural vibration of small
+// multirotor airframes. Run it without arguments for its verbs.
+//
+// The same executable runs each built-in stage, in a process of its own, when
+// a host starts it for that.
 package main
 
 import (
-	_ "github.com/apache/arrow-go/v18/arrow"
-	_ "github.com/apache/arrow-go/v18/arrow/ipc"
-	_ "github.com/gofrs/flock"
-	_ "github.com/hashicorp/go-plugin"
-	_ "github.com/hashicorp/hcl/v2"
-	_ "github.com/hashicorp/hcl/v2/hclsyntax"
-	_ "github.com/jedib0t/go-pretty/v6/table"
-	_ "github.com/mattn/go-isatty"
-	_ "github.com/rs/zerolog"
-	_ "github.com/spf13/cobra"
-	_ "github.com/vbauerster/mpb/v8"
-	_ "github.com/zclconf/go-cty/cty"
-	_ "gonum.org/v1/gonum/mat"
-	_ "gonum.org/v1/plot"
-	_ "google.golang.org/grpc"
-	_ "google.golang.org/protobuf/proto"
-	_ "golang.org/x/sync/errgroup"
+	"context"
+	"os"
+
+	"hushframe/plugins/serve"
+	"hushframe/stages"
 )
 
-func main() {}
+func main() {
+	if serve.Started() {
+		serve.Stages(stages.Builtin()...)
+	}
+	a := newApp(stages.Builtin(), os.Stdout, os.Stderr)
+	os.Exit(a.main(context.Background(), os.Args[1:]))
+}

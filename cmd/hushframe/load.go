@@ -1,0 +1,161 @@
+package main
+
+import (
+	"context"
+	"fmt"
+	"os"
+	"path/filepath"
+	"strings"
+
+	"github.com/hashicorp/hcl/v2"
+	"github.com/spf13/cobra"
+
+	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/job"
+	"hushframe/core/pipeline/nearest"
+	"hushframe/core/pipeline/plan"
+	"hushframe/core/pipeline/run/account"
+	"hushframe/core/pipeline/stage"
+	"hushframe/plugins/host"
+	"hushframe/stages/kinds"
+)
+
+// jobFlags are the flags of every verb that reads a job.
+type jobFlags struct {
+	set []string
+}
+
+func (f *jobFlags) add(c *cobra.Command) {
+	c.Flags().StringArrayVar(&f.set, "set", nil, "give a setting another value: NAME=VALUE (may be repeated)")
+}
+
+func (f *jobFlags) settings() (map[string]string, error) {
+	set := map[string]string{}
+	for _, s := range f.set {
+		name, value, ok := strings.Cut(s, "=")
+		if !ok || name == "" {
+			return nil, fault.New(fault.Input, "--set %s: write NAME=VALUE, such as --set arm_thickness=6mm", s)
+		}
+		if _, dup := set[name]; dup {
+			return nil, fault.New(fault.Input, "--set gives %s twice", name)
+		}
+		set[name] = value
+	}
+	return set, nil
+}
+
+// registry holds every artifact kind: those of the stages and that of the host.
+func registry() artifact.Registry {
+	r := kinds.Registry()
+	if _, taken := r[account.KindName]; !taken {
+		r[account.KindName] = account.Kind
+	}
+	return r
+}
+
+// openHost makes the host; no process starts before a step runs.
+func (a *app) openHost(ctx context.Context) (*host.Host, error) {
+	self, err := host.Self()
+	if err != nil {
+		return nil, err
+	}
+	return host.Open(ctx, host.Options{
+		Self: self, Builtin: a.builtin,
+		Output: func(process, line string) { a.log.Debug().Str("step", process).Msg(line) },
+	})
+}
+
+// load reads and checks a job and plans it. What is wrong has been written
+// when it returns an exit error.
+func (a *app) load(ctx context.Context, h *host.Host, path string, f *jobFlags) (*plan.Plan, error) {
+	set, err := f.settings()
+	if err != nil {
+		return nil, err
+	}
+	all := registry()
+	j, diags := job.Load(ctx, path, job.Options{
+		Set: set,
+		Describe: func(_ context.Context, name string) (stage.Description, error) {
+			s, ok := h.Stage(name)
+			if !ok {
+				return stage.Description{}, fault.New(fault.Missing, "there is no stage %q", name)
+			}
+			return s.Describe(), nil
+		},
+		StageNames: func() []string { return a.stageNames(h) },
+		Kinds:      func(kind string) bool { _, ok := all[kind]; return ok },
+	})
+	var p *plan.Plan
+	if !diags.HasErrors() {
+		var more hcl.Diagnostics
+		p, more = plan.Make(j)
+		diags = append(diags, more...)
+	}
+	a.diagnose(j, diags)
+	if diags.HasErrors() {
+		return nil, exitError(exitUsage)
+	}
+	return p, nil
+}
+
+func (a *app) stageNames(h *host.Host) []string {
+	var names []string
+	for _, d := range h.Descriptions() {
+		names = append(names, d.Name)
+	}
+	return names
+}
+
+// diagnose writes diagnostics with the lines of the job they are about.
+func (a *app) diagnose(j *job.Job, diags hcl.Diagnostics) {
+	if len(diags) == 0 {
+		return
+	}
+	_ = job.WriteDiagnostics(a.err, diags, j.Sources, 100, a.color)
+}
+
+// jobFolder is the folder of a job file or the job folder itself, where the
+// store lies.
+func jobFolder(path string) (string, error) {
+	info, err := os.Stat(path)
+	if err != nil {
+		return "", fault.New(fault.Missing, "there is no job %s", path).Do("name a job file or a folder of them")
+	}
+	if info.IsDir() {
+		return path, nil
+	}
+	return filepath.Dir(path), nil
+}
+
+// jobName is the name under which the last run of a job is noted.
+func jobName(path string) string {
+	if abs, err := filepath.Abs(path); err == nil {
+		path = abs
+	}
+	return filepath.Base(path)
+}
+
+// oneJob wants a single job as argument.
+func oneJob(_ *cobra.Command, args []string) error {
+	if len(args) != 1 {
+		return fmt.Errorf("one job is wanted: a job file or a folder of them")
+	}
+	return nil
+}
+
+// completeJob completes job files and folders.
+func completeJob(_ *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
+	if len(args) > 0 {
+		return nil, cobra.ShellCompDirectiveNoFileComp
+	}
+	return []string{"hcl"}, cobra.ShellCompDirectiveFilterFileExt
+}
+
+// suggest gives the end of a message about an unknown name.
+func suggest(name string, names []string) string {
+	if n := nearest.Name(name, names); n != "" {
+		return fmt.Sprintf("; did you mean %q?", n)
+	}
+	return "; there are: " + strings.Join(names, ", ")
+}

@@ -1,0 +1,96 @@
+package main
+
+import (
+	"runtime"
+	"time"
+
+	"github.com/spf13/cobra"
+
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/quantity"
+	"hushframe/core/pipeline/run"
+	"hushframe/core/pipeline/store"
+)
+
+func (a *app) runCommand() *cobra.Command {
+	var (
+		job           jobFlags
+		threads       int
+		memory        string
+		force, verify bool
+	)
+	c := &cobra.Command{
+		Use:   "run JOB",
+		Short: "Run a job: compute what has changed, judge the requirements, write the reports",
+		Long: `Runs a job file, or a folder of them. Steps whose inputs are as before are not
+run again; independent steps run side by side. Results go to standard output;
+progress, log lines and mistakes to standard error.
+
+` + exitHelp,
+		Example:           "  hushframe run baseline.hcl --set arm_thickness=6mm",
+		Args:              oneJob,
+		ValidArgsFunction: completeJob,
+	}
+	job.add(c)
+	c.Flags().IntVar(&threads, "threads", 0, "threads for all steps together (default: as many as the machine has)")
+	c.Flags().StringVar(&memory, "memory", "", `memory for all steps together, such as "8 GiB" (default: no limit)`)
+	c.Flags().BoolVar(&force, "force", false, "run every step, also those whose inputs are as before")
+	c.Flags().BoolVar(&verify, "verify", false, "read and check stored results in full before they are reused")
+	c.RunE = func(c *cobra.Command, args []string) error {
+		began, ctx := time.Now(), c.Context()
+		if threads < 0 {
+			return fault.New(fault.Input, "--threads is %d; it cannot be negative", threads)
+		}
+		if threads == 0 {
+			threads = runtime.GOMAXPROCS(0)
+		}
+		bytes := 0.0
+		if memory != "" {
+			q, err := quantity.ParseAs(memory, "memory")
+			if err != nil {
+				return fault.From(err).In("read --memory", memory)
+			}
+			bytes = q.SI
+		}
+		h, err := a.openHost(ctx)
+		if err != nil {
+			return err
+		}
+		defer h.Close()
+		p, err := a.load(ctx, h, args[0], &job)
+		if err != nil {
+			return err
+		}
+		st, err := store.Open(ctx, p.Job.Folder, registry())
+		if err != nil {
+			return err
+		}
+		defer st.Close()
+		w := a.watch(p)
+		result, err := run.Run(ctx, run.Options{
+			Plan: p, Source: h, Store: st, Observer: w, Name: jobName(args[0]), Program: program(),
+			Threads: threads, Memory: int64(bytes), Force: force, Verify: verify,
+		})
+		w.close()
+		if err != nil {
+			return err
+		}
+		a.diagnose(p.Job, result.Diagnostics)
+		for _, s := range result.Steps {
+			if s.State == run.Failed && s.Fault != nil {
+				a.lines(s.Label, s.Fault)
+			}
+		}
+		a.summary(p, result, time.Since(began))
+		switch {
+		case result.Stopped:
+			return exitError(exitStopped)
+		case result.Failed():
+			return exitError(exitFailed)
+		case len(result.Broken()) > 0:
+			return exitError(exitBroken)
+		}
+		return nil
+	}
+	return c
+}

@@ -1,0 +1,148 @@
+package main
+
+import (
+	"fmt"
+	"io"
+	"strings"
+	"time"
+
+	"github.com/jedib0t/go-pretty/v6/table"
+	"github.com/jedib0t/go-pretty/v6/text"
+
+	"hushframe/core/pipeline/plan"
+	"hushframe/core/pipeline/run"
+	"hushframe/core/pipeline/stage"
+)
+
+// summary writes the results of a run: what each step has to say, findings,
+// requirements, reports, and a closing line.
+func (a *app) summary(p *plan.Plan, r *run.Result, took time.Duration) {
+	for _, s := range r.Steps {
+		for _, section := range s.Outcome.Summary {
+			writeSection(a.out, section)
+		}
+	}
+	findings := stage.Section{Title: "Warnings", Columns: []stage.Column{{Name: "step"}, {Name: "warning"}, {Name: "finding"}}}
+	for _, s := range r.Steps {
+		for _, w := range s.Outcome.Warnings {
+			words := w.Text
+			if w.Where != "" {
+				words = w.Where + ": " + words
+			}
+			if w.Remedy != "" {
+				words += "; " + w.Remedy
+			}
+			findings.Rows = append(findings.Rows, []string{s.Label, w.ID, words})
+		}
+	}
+	if len(findings.Rows) > 0 {
+		writeSection(a.out, findings)
+	}
+	if len(r.Verdicts) > 0 {
+		section := stage.Section{Title: "Requirements", Columns: []stage.Column{{Name: "requirement"}, {Name: ""}, {Name: "condition"}, {Name: "margin", Right: true}}}
+		for _, v := range r.Verdicts {
+			section.Rows = append(section.Rows, []string{v.Name, standing(v), v.Shown, v.Margin})
+		}
+		writeSection(a.out, section)
+	}
+	a.published(p, r)
+	fmt.Fprintf(a.out, "\n%s\n", closing(r, took))
+}
+
+// published says where reports are: the main file of each, and how many lie
+// beside it.
+func (a *app) published(_ *plan.Plan, r *run.Result) {
+	for _, s := range r.Steps {
+		if len(s.Published) == 0 {
+			continue
+		}
+		more := ""
+		if n := len(s.Published) - 1; n > 0 {
+			more = fmt.Sprintf(" (and %s beside it)", count(n, "file", "files"))
+		}
+		fmt.Fprintf(a.out, "\n%s wrote %s%s\n", s.Label, s.Published[0], more)
+	}
+}
+
+// closing counts how the steps ended.
+func closing(r *run.Result, took time.Duration) string {
+	n := map[run.State]int{}
+	for _, s := range r.Steps {
+		n[s.State]++
+	}
+	var parts []string
+	for _, x := range []struct {
+		state run.State
+		words string
+	}{{run.Ran, "ran"}, {run.Reused, "as before"}, {run.Failed, "failed"}, {run.Skipped, "skipped"}, {run.Stopped, "stopped"}} {
+		if n[x.state] > 0 {
+			parts = append(parts, fmt.Sprintf("%d %s", n[x.state], x.words))
+		}
+	}
+	line := fmt.Sprintf("%s: %s; %s", count(len(r.Steps), "step", "steps"), strings.Join(parts, ", "), duration(took))
+	broken, unjudged := 0, 0
+	for _, v := range r.Broken() {
+		if v.Judged {
+			broken++
+		} else {
+			unjudged++
+		}
+	}
+	switch {
+	case broken > 0:
+		line += fmt.Sprintf("; %s broken", count(broken, "requirement is", "requirements are"))
+	case unjudged > 0:
+		line += fmt.Sprintf("; %s not judged", count(unjudged, "requirement was", "requirements were"))
+	case len(r.Verdicts) > 0:
+		line += "; every requirement holds"
+	}
+	return line
+}
+
+// writeSection writes a titled table: a heading line under the title, no boxes.
+func writeSection(out io.Writer, s stage.Section) {
+	fmt.Fprintf(out, "\n%s\n", s.Title)
+	if s.Text != "" {
+		fmt.Fprintf(out, "%s\n", s.Text)
+	}
+	if len(s.Columns) == 0 {
+		return
+	}
+	t := table.NewWriter()
+	t.SetStyle(sectionStyle)
+	header := table.Row{}
+	var columns []table.ColumnConfig
+	for i, c := range s.Columns {
+		header = append(header, c.Name)
+		align := text.AlignLeft
+		if c.Right {
+			align = text.AlignRight
+		}
+		columns = append(columns, table.ColumnConfig{Number: i + 1, Align: align, AlignHeader: align, WidthMax: 72, WidthMaxEnforcer: text.WrapSoft})
+	}
+	t.AppendHeader(header)
+	t.SetColumnConfigs(columns)
+	for _, cells := range s.Rows {
+		row := table.Row{}
+		for i := range s.Columns {
+			if i < len(cells) {
+				row = append(row, cells[i])
+			} else {
+				row = append(row, "")
+			}
+		}
+		t.AppendRow(row)
+	}
+	for line := range strings.Lines(t.Render() + "\n") {
+		io.WriteString(out, strings.TrimRight(line, " \n")+"\n")
+	}
+}
+
+// sectionStyle: two spaces between columns, a thin line under the header.
+var sectionStyle = table.Style{
+	Box: table.BoxStyle{
+		MiddleHorizontal: "─", MiddleSeparator: "─", PaddingRight: "  ", UnfinishedRow: "…",
+	},
+	Format:  table.FormatOptions{Header: text.FormatDefault},
+	Options: table.Options{SeparateHeader: true},
+}
