@@ -145,7 +145,7 @@ func peakTable(s *kinds.Spectra) stage.Section {
 		Title: "Observed peaks",
 		Text:  "± is one standard error; a narrow peak is a line, or a mode with less damping than can be seen",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "±", Right: true}, {Name: "unit²/Hz", Right: true},
-			{Name: "stands out, dB", Right: true}, {Name: "damping, %", Right: true}, {Name: "±", Right: true}, {Name: "where rotors are"}},
+			{Name: "stands out, dB", Right: true}, {Name: "damping, %", Right: true}, {Name: "±", Right: true}, {Name: "rotor order there"}},
 	}
 	for _, p := range s.Peaks {
 		a := s.Axes[p.Axis]
@@ -162,12 +162,16 @@ func peakTable(s *kinds.Spectra) stage.Section {
 	return t
 }
 
-// holding names the orders in whose bands a frequency lies.
+// holding names the orders in whose bands a frequency lies: 1, 2 and blade passing, the strong ones. Higher orders, whose
+// bands are wide, are kept for those who know the number of blades.
 func holding(s *kinds.Spectra, f float64) string {
 	var out []string
 	seen := map[string]bool{}
 	for _, b := range s.Orders {
-		name := fmt.Sprintf("order %g", b.Order)
+		if !b.BladePassing && b.Order > 2 {
+			continue
+		}
+		name := b.Name()
 		if b.Low <= f && f <= b.High && !seen[name] {
 			seen[name] = true
 			out = append(out, name)

@@ -36,6 +36,10 @@ func refine(peak *Peak, p []float64, step float64, left, right int, half float64
 		return
 	}
 	half = math.Sqrt(square - added)
+	if 2*half <= narrowWidths*s.Resolution {
+		peak.Narrow, peak.DampingError = true, peak.Damping
+		return
+	}
 	stand := first.half - second.half
 	bias := (first.half - half) / 2
 	peak.Fitted = true
