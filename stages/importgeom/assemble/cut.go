@@ -185,14 +185,15 @@ func list(all []loops.Outline) string {
 }
 
 // gap finds an open run that was meant to be closed: one whose ends are near each other compared with its length, or
-// one that reaches beyond every closed outline. Other runs, such as engravings and centre lines, do no harm.
+// one that reaches beyond every closed outline. Other runs, such as engravings, centre lines and what hangs on a closed
+// outline, do no harm.
 func gap(r loops.Result, pl *airframefile.Plate) *fault.Error {
 	box := outline.EmptyBox()
 	for _, o := range r.Outlines {
 		box = box.Union(o.Region.Bounds())
 	}
 	for _, c := range r.Open {
-		if c.Length <= 2*pl.Tolerance.Or(DefaultTolerance) {
+		if c.Length <= 2*pl.Tolerance.Or(DefaultTolerance) || c.Attached {
 			continue
 		}
 		apart, other := c.From.Distance(c.To), c.To
@@ -239,6 +240,9 @@ func (b *builder) noteCut(name string, c *cut, o *loops.Outline) {
 	if r.Dropped > 0 {
 		fact("%s on top of others dropped (%s)", plural(r.Dropped, "curve"), strings.Join(r.DroppedSources, ", "))
 	}
+	if r.Trimmed > 0 {
+		fact("%s beyond a crossing trimmed", plural(r.Trimmed, "end"))
+	}
 	if n := len(r.Countersinks); n > 0 {
 		fact("%s taken as its inner circle", plural(n, "countersink"))
 	}
@@ -249,7 +253,7 @@ func (b *builder) noteCut(name string, c *cut, o *loops.Outline) {
 		}
 	}
 	if stray > 0 {
-		fact("%s inside the outline ignored, the first at %s", plural(stray, "open run"), place(r.Open[0].From))
+		fact("%s ignored, the first at %s", plural(stray, "open run"), place(r.Open[0].From))
 	}
 	if n := len(r.Outlines) - 1; n > 0 {
 		fact("%s besides the one used", plural(n, "outline"))

@@ -12,6 +12,7 @@
 //  2. Pieces are cut where they cross or touch and where a loose end lies on another piece.
 //  3. Ends within a hundredth of the tolerance are one place. A loose end is joined to the nearest other one within
 //     the tolerance; its piece is bent to meet it.
+//     What sticks out by less than the tolerance beyond a crossing is trimmed.
 //  4. Runs that still end loosely are set aside as chains.
 //  5. What remains is closed. A loop inside no other, or inside an even number of others, is an outline; inside an odd
 //     number, a hole. A circle concentric with a round hole and inside it is a countersink drawn as two circles: the

@@ -23,6 +23,7 @@ func Find(pieces []Piece, tol float64) Result {
 	for _, p := range pieces {
 		g.add(p)
 	}
+	g.trim()
 	g.joinLoose()
 	g.prune()
 	g.sort()
@@ -99,7 +100,8 @@ func (g *graph) tie(pieces []Piece) []Piece {
 	return out
 }
 
-// moved puts one end of a curve elsewhere nearby: an arc keeps its sweep, a cubic the direction at that end.
+// moved puts one end of a curve elsewhere nearby: an arc keeps its middle (its sweep if it is short), a cubic the
+// direction at that end.
 func moved(c outline.Curve, end int, to outline.Point) outline.Curve {
 	p, q := c.P0, c.P1
 	by := to.Sub(c.At(float64(end)))
@@ -119,9 +121,31 @@ func moved(c outline.Curve, end int, to outline.Point) outline.Curve {
 	case c.Kind == outline.KindArc && p == q:
 		return outline.ArcOf(c.Centre, c.Radius, c.Start, math.Copysign(2*math.Pi, c.Sweep))
 	case c.Kind == outline.KindArc && math.Abs(c.Sweep) < 2*math.Pi:
+		if math.Abs(c.Sweep) > 1 {
+			// The sweep of the arc through the new ends and the old middle: each half of it has the half
+			// sweep that its chords make with each other.
+			m := c.At(0.5)
+			a, b := m.Sub(p), q.Sub(m)
+			if sweep := 2 * math.Atan2(a.Cross(b), a.Dot(b)); sweep*c.Sweep > 0 && math.Abs(sweep) < 2*math.Pi {
+				return outline.ArcBetween(p, q, sweep)
+			}
+		}
 		return outline.ArcBetween(p, q, c.Sweep)
 	}
 	return outline.Line(p, q)
+}
+
+// trim takes off what sticks out by less than the tolerance where two pieces cross.
+func (g *graph) trim() {
+	degree := g.degrees()
+	for i := range g.edges {
+		e := &g.edges[i]
+		a, b := degree[e.ends[0]], degree[e.ends[1]]
+		if (a == 1 && b > 2 || b == 1 && a > 2) && e.Curve.Length() <= g.tol {
+			e.gone = true
+			g.result.Trimmed++
+		}
+	}
 }
 
 // joinLoose makes pairs of loose ends within the tolerance one vertex, nearest first.
@@ -131,7 +155,7 @@ func (g *graph) joinLoose() {
 	var ends []end
 	for i, e := range g.edges {
 		for w, v := range e.ends {
-			if degree[v] == 1 {
+			if degree[v] == 1 && !e.gone {
 				ends = append(ends, end{i, w, v})
 			}
 		}
@@ -177,8 +201,9 @@ func (g *graph) joinLoose() {
 		used[p.a], used[p.b] = true, true
 		keep, move := ends[p.a], ends[p.b]
 		e := &g.edges[move.edge]
-		g.result.Joined = append(g.result.Joined, Gap{g.at[keep.vertex], p.d, e.Source})
 		e.ends[move.which] = keep.vertex
+		g.at[keep.vertex] = g.at[keep.vertex].Lerp(g.at[move.vertex], 0.5)
+		g.result.Joined = append(g.result.Joined, Gap{g.at[keep.vertex], p.d, e.Source})
 	}
 	for i := range g.edges {
 		e := &g.edges[i]
@@ -194,6 +219,7 @@ func (g *graph) joinLoose() {
 func (g *graph) prune() {
 	degree := g.degrees()
 	at := g.incidence()
+	touched := append([]int(nil), degree...)
 	var queue []int
 	for v, n := range degree {
 		if n == 1 {
@@ -219,13 +245,16 @@ func (g *graph) prune() {
 			}
 		}
 	}
-	g.chains(inChain, at, loose)
+	g.chains(inChain, at, loose, touched)
 }
 
 // incidence lists the edges at each vertex; one that begins and ends there comes twice.
 func (g *graph) incidence() [][]int {
 	at := make([][]int, len(g.at))
 	for i, e := range g.edges {
+		if e.gone {
+			continue
+		}
 		at[e.ends[0]] = append(at[e.ends[0]], i)
 		at[e.ends[1]] = append(at[e.ends[1]], i)
 	}
@@ -233,7 +262,7 @@ func (g *graph) incidence() [][]int {
 }
 
 // chains walks the pruned pieces from each loose end as far as the way is clear.
-func (g *graph) chains(inChain []bool, at [][]int, loose []int) {
+func (g *graph) chains(inChain []bool, at [][]int, loose, degree []int) {
 	seen := make([]bool, len(g.edges))
 	walk := func(from int) {
 		c := Chain{From: g.at[from], Nearest: math.Inf(1)}
@@ -249,7 +278,7 @@ func (g *graph) chains(inChain []bool, at [][]int, loose []int) {
 					}
 				}
 			}
-			if next < 0 || v != from && (count > 2 || len(at[v]) > 2) {
+			if next < 0 || v != from && (count > 2 || degree[v] > 2) {
 				break
 			}
 			e := g.edges[next]
@@ -268,7 +297,7 @@ func (g *graph) chains(inChain []bool, at [][]int, loose []int) {
 		if c.Pieces == 0 {
 			return
 		}
-		c.To = g.at[v]
+		c.To, c.Attached = g.at[v], degree[v] > 1
 		for _, u := range loose {
 			if u == from {
 				continue

@@ -19,6 +19,8 @@ type Result struct {
 	// Dropped counts pieces, or parts of pieces, that lay on others; DroppedSources names some of them.
 	Dropped        int
 	DroppedSources []string
+	// Trimmed counts ends that stuck out by less than the tolerance where two pieces cross.
+	Trimmed int
 	// Open are runs with loose ends.
 	Open []Chain
 	// Tangles are groups in which outlines cross or touch.
@@ -43,9 +45,10 @@ type Gap struct {
 	Source string
 }
 
-// Chain is a run of pieces with two loose ends.
+// Chain is a run of pieces with a loose end at From. At To it is loose as well, or attached to other pieces.
 type Chain struct {
 	From, To         outline.Point
+	Attached         bool
 	FromPiece, ToEnd string // sources of its first and last piece
 	Pieces           int
 	Length           float64
