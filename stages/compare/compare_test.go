@@ -226,7 +226,7 @@ func TestPredictedPeakUnderAnOrder(t *testing.T) {
 func TestReasons(t *testing.T) {
 	o := observed()
 	o.Peaks = []kinds.SpectraPeak{{Axis: 0, Frequency: 170, Density: 1}, {Axis: 0, Frequency: 290, Density: 1}, {Axis: 0, Frequency: 330, Density: 1, Narrow: true}}
-	c, out, err := run(t, predicted(), o, stage.Arguments{"band": []any{hertz(100), hertz(450)}, "tolerance": 0.03})
+	c, _, err := run(t, predicted(), o, stage.Arguments{"band": []any{hertz(100), hertz(450)}, "tolerance": 0.03})
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -245,7 +245,7 @@ func TestReasons(t *testing.T) {
 		t.Errorf("%s", strings.Join(reasons, "\n"))
 	}
 	o.Peaks, o.Rotors, o.Orders = nil, nil, nil
-	c, out, err = run(t, predicted(), o, stage.Arguments{})
+	c, out, err := run(t, predicted(), o, stage.Arguments{})
 	if err != nil {
 		t.Fatal(err)
 	}
