@@ -44,6 +44,8 @@ func TestFunctions(t *testing.T) {
 		`zipmap(["a", "b"], [1, 2]).b`:                               2.0,
 		`coalesce(null, "x")`:                                        "x",
 		`all([true, 1 < 2]) && !any([false]) && all([]) && !any([])`: true,
+		`all([true, false]) || any([])`:                              false,
+		`any([false, true]) && all([true])`:                          true,
 		`format("%03d-%.1f", 7, 2.25)`:                               "007-2.2",
 		`join("", split(",", "a,b"))`:                                "ab",
 		`"${lower("A")}${upper("b")}${title("cd")}"`:                 "aBCd",

@@ -104,6 +104,18 @@ stage "mesh" "finer" {
 	}
 }
 
+func TestBoundsAreInclusive(t *testing.T) {
+	for arguments, fits := range map[string]bool{
+		`growth = 1`: true, `growth = 4`: true, `growth = 0.999`: false, `growth = 4.001`: false,
+		`size = "100 mm"`: true, `size = "100.1 mm"`: false, `size = "0 mm"`: false, `size = "0.001 mm"`: true,
+	} {
+		_, text := load(t, head+"stage \"mesh\" \"x\" {\n geometry = stage.frame.geometry\n "+arguments+"\n}\n", nil)
+		if (text == "") != fits {
+			t.Errorf("%s: %q", arguments, text)
+		}
+	}
+}
+
 func TestFiguresLater(t *testing.T) {
 	j, text := load(t, head+`
 stage "sweep" "flight" {
@@ -146,5 +158,55 @@ stage "sweep" "flight" {
 	figures["modes"]["lowest"] = hz(-1)
 	if _, _, diags = s.Evaluate(figures); !diags.HasErrors() {
 		t.Error("a negative frequency from a figure passes")
+	}
+}
+
+// TestDeepText holds that text made to exhaust the stack is refused or read, in
+// each way in which expressions nest.
+func TestDeepText(t *testing.T) {
+	const n = 10_000
+	for name, value := range map[string]string{
+		"not":          strings.Repeat("!", n) + "true",
+		"minus":        strings.Repeat("- ", n) + "1",
+		"sum":          strings.Repeat("1 + ", n) + "1",
+		"brackets":     strings.Repeat("[", n) + strings.Repeat("]", n),
+		"parentheses":  strings.Repeat("(\n", n) + "1" + strings.Repeat(")", n),
+		"objects":      strings.Repeat("{a=", n) + "1" + strings.Repeat("}", n),
+		"templates":    strings.Repeat(`"${`, n) + "1" + strings.Repeat(`}"`, n),
+		"conditionals": strings.Repeat("true ? 1 : \n", n) + "1",
+		"indices":      "[[1]]" + strings.Repeat("[abs(0)]", n),
+		"calls":        strings.Repeat("abs(", n) + "1" + strings.Repeat(")", n),
+		"splats":       "[1]" + strings.Repeat("[*]", n),
+		"for":          strings.Repeat("[for a in [1] : ", n) + "1" + strings.Repeat("]", n),
+		"directives":   `"` + strings.Repeat("%{ if true }", n) + `"`,
+		"heredoc":      "<<A\n" + strings.Repeat("${<<A\n", n) + "A\n",
+	} {
+		_, text := load(t, "job \"x\" {}\nsetting \"a\" {\n value = "+value+"\n}\n", nil)
+		if text == "" {
+			t.Errorf("%s: %d levels pass without a word", name, n)
+		}
+	}
+	j, text := load(t, "job \"x\" {}\nsetting \"a\" {\n value = "+strings.Repeat("(", 150)+"1"+strings.Repeat(" + 1", 900)+strings.Repeat(")", 150)+"\n}\n", nil)
+	if text != "" || j.Settings[0].Text != "901" {
+		t.Errorf("what a person might write is refused: %s", text)
+	}
+}
+
+func TestColourAndWidth(t *testing.T) {
+	j, _ := load(t, "job \"x\" {}\n\tsetting \"a\" {\n\tvalue = 1 + \"2 mm\"\n\t}\n", nil)
+	_, diags := job.Load(context.Background(), j.Sources[0].Name, options())
+	var b strings.Builder
+	if err := job.WriteDiagnostics(&b, diags, j.Sources, 60, true); err != nil {
+		t.Fatal(err)
+	}
+	want := "\x1b[31mError\x1b[0m: \x1b[1mCalculation with a quantity\x1b[0m\n" +
+		"  job.hcl, line 3, in setting \"a\"\n" +
+		"    3 | \tvalue = 1 + \x1b[31m\"2 mm\"\x1b[0m\n" +
+		"      | \t            \x1b[31m^^^^^^\x1b[0m\n" +
+		"  \"2 mm\" is a quantity, and a calculation needs numbers:\n" +
+		"  take number_in(…, \"mm\"), and quantity(…, \"mm\") to make the\n" +
+		"  result a quantity again\n"
+	if got := strings.ReplaceAll(b.String(), j.Sources[0].Name, "job.hcl"); got != want {
+		t.Errorf("got\n%s\nwant\n%s", got, want)
 	}
 }

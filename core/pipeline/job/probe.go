@@ -72,7 +72,8 @@ func (p *prober) open(x *hclsyntax.ForExpr) loop {
 	if diags.HasErrors() || v.IsNull() || t == cty.DynamicPseudoType {
 		return loop{}
 	}
-	key, element := cty.UnknownVal(cty.String), cty.NilVal
+	key := cty.UnknownVal(cty.String)
+	var element cty.Value
 	if t.IsListType() || t.IsTupleType() {
 		key = cty.UnknownVal(cty.Number)
 	}

@@ -63,6 +63,11 @@ func TestVerdicts(t *testing.T) {
 		{"that over a list", `that = all([for m in stage.modes.figures.modes : m.frequency > "100 Hz" && m.frequency == "0.15 kHz"])`,
 			job.Verdict{Holds: true, Shown: `all([for m in stage.modes.figures.modes : m.frequency > "100 Hz" && m.frequency == "0.15 kHz"]), ` +
 				`with stage.modes.figures.modes = [{frequency = "150 Hz", gyro_pitch = 2, part = "arm"}]`}},
+		{"all of what is not known yet", `that = all([stage.modes.figures.count == 9, true])`,
+			job.Verdict{Holds: true, Shown: `all([stage.modes.figures.count == 9, true]), with stage.modes.figures.count = 9`}},
+		{"caught", `that = length(try([for m in stage.modes.figures.modes : m.nonsense], [])) == 0`,
+			job.Verdict{Holds: true, Shown: `length(try([for m in stage.modes.figures.modes : m.nonsense], [])) == 0, ` +
+				`with stage.modes.figures.modes = [{frequency = "150 Hz", gyro_pitch = 2, part = "arm"}]`}},
 		{"null compares", `that = stage.modes.figures.lowest == null && stage.modes.figures.smallest_gap_pitch != null`,
 			job.Verdict{Holds: true, Shown: `stage.modes.figures.lowest == null && stage.modes.figures.smallest_gap_pitch != null, ` +
 				`with stage.modes.figures.lowest = no value, stage.modes.figures.smallest_gap_pitch = 23.4 Hz`}},

@@ -79,6 +79,31 @@ func TestDependents(t *testing.T) {
 	}
 }
 
+// Among the stages that could be next, the first in the file is.
+func TestOrder(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "job.hcl")
+	text := `job "x" {}
+stage "report" "last" {
+  include = []
+  to      = "a.html"
+}
+stage "mesh" "second" { geometry = stage.first.geometry }
+stage "import" "first" { airframe = "job.hcl" }
+stage "import" "third" { airframe = "job.hcl" }
+`
+	if err := os.WriteFile(path, []byte(text), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	p, _ := plan.Make(load(t, path))
+	var got []string
+	for _, s := range p.Steps {
+		got = append(got, s.Stage.Label)
+	}
+	if strings.Join(got, " ") != "first second third last" {
+		t.Errorf("order %v", got)
+	}
+}
+
 func TestCircle(t *testing.T) {
 	path := filepath.Join(t.TempDir(), "job.hcl")
 	text := `job "x" {}

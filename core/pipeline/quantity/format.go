@@ -33,16 +33,12 @@ func FormatChange(si float64, dimension, unit string) string {
 // Exact writes a quantity so that Parse gives back the same SI value to the
 // last bit: in its natural unit if that is possible, otherwise in SI units.
 func Exact(q stage.Quantity) string {
-	for _, unit := range []string{naturalFor(q.SI, q.Dimension), siUnit(q.Dimension)} {
-		u, err := ParseUnit(unit)
-		if err != nil {
-			continue
-		}
-		x := u.Number(q.SI)
-		for _, digits := range []int{15, 16, 17} {
-			text := strconv.FormatFloat(x, 'g', digits, 64)
-			if y, err := strconv.ParseFloat(text, 64); err == nil && u.SI(y) == q.SI {
-				return join(number(x, digits), unit)
+	unit := naturalFor(q.SI, q.Dimension)
+	if u, err := ParseUnit(unit); err == nil {
+		for digits := 15; digits <= 17; digits++ {
+			text := number(u.Number(q.SI), digits)
+			if x, err := strconv.ParseFloat(text, 64); err == nil && u.SI(x) == q.SI {
+				return join(text, unit)
 			}
 		}
 	}
@@ -158,8 +154,7 @@ func nameOf(v vector) string {
 
 func siUnit(dimension string) string {
 	v, _ := lookup(dimension)
-	switch dimensionByName["frequency"] {
-	case v:
+	if v == dimensionByName["frequency"] {
 		return "Hz"
 	}
 	return baseUnits(v)

@@ -185,7 +185,7 @@ func TestExactReadsBack(t *testing.T) {
 			}
 		}
 	}
-	for _, text := range []string{"5 mm", "0.1 mm", "-40 deg", "16000 rpm", "70 GPa"} {
+	for _, text := range []string{"5 mm", "0.1 mm", "-40 deg", "16000 rpm", "70 GPa", "3.141592653589793 mm", "0.30000000000000004"} {
 		q, err := Parse(text)
 		if err != nil {
 			t.Fatal(err)
