@@ -5,6 +5,7 @@ import (
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
@@ -19,7 +20,7 @@ type content struct {
 	response   *kinds.Response
 	spectra    *kinds.Spectra
 	comparison *kinds.Comparison
-	run        *facts
+	run        *account.Account
 	sources    []kinds.DocumentSource
 
 	surface *draw.Surface
@@ -69,8 +70,8 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
 	case "comparison":
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
-	case "run":
-		c.run = readFacts(a)
+	case account.KindName:
+		c.run = account.Decode(a)
 	default:
 		err = fault.New(fault.Input, "a report cannot show an artifact of kind %s", a.Kind.Name).In("report", in.From).Of("include")
 	}

@@ -3,12 +3,12 @@ package report
 import (
 	"bytes"
 	_ "embed"
-	"fmt"
 	"html/template"
 	"path"
 	"strings"
 
 	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/run/account"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
 )
@@ -32,6 +32,9 @@ func cellClass(col column, c cell) string {
 	if c.Quiet {
 		parts = append(parts, "faint")
 	}
+	if c.Mono {
+		parts = append(parts, "hash")
+	}
 	return strings.Join(parts, " ")
 }
 
@@ -40,14 +43,11 @@ type page struct {
 	Title, About, Foot string
 	Style              template.CSS
 	Verdict            *banner
-	Requirements       []verdict
-	Warnings           []warning
+	Requirements       []requirement
+	Warnings           []account.Warning
 	Sections           []*section
 	Rest               template.HTML // definitions shared by pictures
 }
-
-// banner is the verdict on the whole run.
-type banner struct{ Class, Sign, Words, More string }
 
 // compose makes the document; name is the file name of the page.
 func compose(c *content, title, name string) (*kinds.Document, error) {
@@ -57,7 +57,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	p := &page{Title: title, Style: template.CSS(styleText + draw.Style()),
 		Foot: "Small linear vibration about hover. This page says nothing about crash strength, flight-control stability or airworthiness."}
 	if c.run != nil {
-		p.About, p.Requirements, p.Warnings = c.run.About, c.run.Verdicts, c.run.Warnings
+		p.About, p.Requirements, p.Warnings = c.run.About, requirements(c.run.Verdicts), c.run.Warnings
 		p.Verdict = judge(c.run.Verdicts)
 		if p.Title == "" {
 			p.Title = c.run.Job
@@ -112,26 +112,4 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	}
 	d.Files[name] = b.Bytes()
 	return d, nil
-}
-
-// judge sums up the verdicts; nil when the job requires nothing.
-func judge(verdicts []verdict) *banner {
-	broken := 0
-	for _, v := range verdicts {
-		if !v.Holds {
-			broken++
-		}
-	}
-	switch n := len(verdicts); {
-	case n == 0:
-		return &banner{"open", "○", "Nothing was required", "The job states no requirements, so there is no verdict."}
-	case broken == 0 && n == 1:
-		return &banner{"holds", "✓", "The requirement holds", ""}
-	case broken == 0:
-		return &banner{"holds", "✓", fmt.Sprintf("All %d requirements hold", n), ""}
-	case n == 1:
-		return &banner{"broken", "✕", "The requirement is broken", ""}
-	default:
-		return &banner{"broken", "✕", fmt.Sprintf("%d of %d requirements %s broken", broken, n, map[bool]string{true: "is", false: "are"}[broken == 1]), ""}
-	}
 }

@@ -13,6 +13,7 @@ import (
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -66,10 +67,11 @@ func TestPageShowsWhatIsIncluded(t *testing.T) {
 }
 
 func TestVerdictInWords(t *testing.T) {
-	hold, broken := verdict{Holds: true}, verdict{}
-	for want, list := range map[string][]verdict{
+	hold, broken, open := account.Verdict{Holds: true, Judged: true}, account.Verdict{Judged: true}, account.Verdict{}
+	for want, list := range map[string][]account.Verdict{
 		"Nothing was required": nil, "The requirement holds": {hold}, "The requirement is broken": {broken},
 		"All 2 requirements hold": {hold, hold}, "1 of 2 requirements is broken": {hold, broken}, "2 of 2 requirements are broken": {broken, broken},
+		"1 of 2 requirements could not be judged": {hold, open}, "1 of 3 requirements is broken": {hold, broken, open},
 	} {
 		if got := judge(list); got.Words != want {
 			t.Errorf("got %q, want %q", got.Words, want)
@@ -129,12 +131,14 @@ func TestHostileTextsAreEscaped(t *testing.T) {
 	const bad = `"><script>alert(1)</script><b onmouseover=x>&`
 	c := sampleContent(t)
 	c.run.Job, c.run.About, c.run.Program = bad, bad, bad
-	c.run.Files[0] = sourceFile{bad, bad}
-	c.run.Settings[0] = setting{bad, bad, bad, bad}
-	c.run.Verdicts[0] = verdict{bad, bad, bad, bad, false}
-	c.run.Executables[0] = executable{bad, bad, bad}
-	c.run.Inputs[0] = inputFile{bad, bad}
-	c.run.Warnings[0] = warning{bad, bad, bad, bad}
+	c.run.Sources[0] = account.Source{Name: bad, Text: bad}
+	c.run.Settings[0] = account.Setting{Name: bad, Value: bad, About: bad}
+	c.run.Verdicts[0] = account.Verdict{Name: bad, Because: bad, Shown: bad, Value: bad, Bound: bad, Margin: bad}
+	c.run.Executables[0] = account.Executable{Name: bad, Version: bad, SHA256: bad}
+	c.run.Files[0] = account.File{Step: bad, Path: bad, SHA256: bad}
+	c.run.Warnings[0] = account.Warning{Step: bad, ID: bad, Text: bad, Where: bad, Remedy: bad}
+	c.run.Steps[0] = account.Step{Label: bad, Stage: bad, About: bad, State: bad}
+	c.run.Notes[0] = account.Note{Step: bad, Text: bad}
 	c.sources = []kinds.DocumentSource{{Kind: "modes", From: bad, Hash: bad}}
 	c.geometry.Plates[0].Name = bad
 	c.properties.Bodies[0].Name, c.properties.Materials[0].Origin, c.properties.Plates[0].Plate = bad, bad, bad
@@ -230,7 +234,7 @@ func TestStage(t *testing.T) {
 			put(t, kinds.EncodeMesh(c.mesh), "stage.shells.mesh"), put(t, kinds.EncodeModes(c.modes), "stage.modes.modes"),
 			put(t, kinds.EncodeResponse(c.response), "stage.flight.response"), put(t, kinds.EncodeSpectra(c.spectra), "stage.hover.spectra"),
 			put(t, kinds.EncodeComparison(c.comparison), "stage.check.comparison"),
-		}},
+		}, "run": {put(t, c.run.Encode(), "run")}},
 		Outputs: map[string]string{"document": t.TempDir()}, Report: silent{},
 	}
 	out, err := Stage{}.Run(context.Background(), call)
@@ -248,7 +252,7 @@ func TestStage(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	if d.Title != "Hover & more" || d.Page != "hover.html" || len(d.Sources) != 7 || d.Sources[3].From != "stage.modes.modes" {
+	if d.Title != "Hover & more" || d.Page != "hover.html" || len(d.Sources) != 8 || d.Sources[3].From != "stage.modes.modes" {
 		t.Errorf("document %q on %q from %+v", d.Title, d.Page, d.Sources)
 	}
 	if page := string(d.Files["hover.html"]); !strings.Contains(page, "<h1>Hover &amp; more</h1>") || !strings.Contains(page, "stage.check.comparison") {

@@ -13,6 +13,7 @@ import (
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/mechanics/outline"
 	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 	"hushframe/stages/sweep"
@@ -338,14 +339,19 @@ func put(t testing.TB, a *artifact.Artifact, from string) stage.Input {
 	return stage.Input{Folder: folder, Kind: a.Kind.Name, Hash: hash, From: from}
 }
 
-func sampleFacts() *facts {
-	return &facts{Job: "sandpiper-sample", About: "An invented frame to look at a page with", Program: "hushframe 0.1.0",
-		Files:       []sourceFile{{"baseline.hcl", "job \"sandpiper-sample\" {\n  about = \"An invented frame\"\n}\n\nsetting \"arm_thickness\" {\n  value = \"5 mm\"\n}\n"}},
-		Settings:    []setting{{"arm_thickness", "6 mm", "5 mm", "carbon plate the arms are cut from"}, {"mesh_size", "3 mm", "3 mm", "largest element"}},
-		Verdicts:    []verdict{{"pitch-modes-apart", "two modes strong on one axis and closer than this add up at the gyro", "smallest_gap_pitch is 7.3 Hz, at least 20 Hz was required", "−12.7 Hz", false}, {"light", "the battery allows no more", "mass is 612 g, at most 650 g was required", "38 g", true}},
-		Executables: []executable{{"hushframe", "0.1.0", "6fd1c0de0000000000000000000000000000000000000000000000000000abcd"}},
-		Inputs:      []inputFile{{"cut/arm.dxf", "ab54d286ffffffffffffffffffffffffffffffffffffffffffffffffffff0001"}},
-		Warnings:    []warning{{"stage.flight", "sweep.beyond-modes", "the sweep goes to 500 Hz with modes to 700 Hz", "raise up_to of solve to 750 Hz"}},
+func sampleAccount() *account.Account {
+	const sum = "6fd1c0de0000000000000000000000000000000000000000000000000000abcd"
+	return &account.Account{Job: "sandpiper-sample", About: "An invented frame to look at a page with", Program: "hushframe 0.1.0",
+		Sources:  []account.Source{{Name: "baseline.hcl", Text: "job \"sandpiper-sample\" {\n  about = \"An invented frame\"\n}\n\nsetting \"arm_thickness\" {\n  value = \"5 mm\"\n}\n", SHA256: sum}},
+		Settings: []account.Setting{{Name: "arm_thickness", Value: "6 mm", About: "carbon plate the arms are cut from", Overridden: true}, {Name: "mesh_size", Value: "3 mm", About: "largest element"}},
+		Verdicts: []account.Verdict{
+			{Name: "pitch-modes-apart", Because: "two modes strong on one axis and closer than this add up at the gyro", Shown: "7.3 Hz at least 20 Hz", Value: "7.3 Hz", Bound: "at least 20 Hz", Margin: "-12.7 Hz", Judged: true},
+			{Name: "light", Because: "the battery allows no more", Shown: "612 g at most 650 g", Value: "612 g", Bound: "at most 650 g", Margin: "38 g", Holds: true, Judged: true}},
+		Steps:       []account.Step{{Label: "frame", Stage: "import", State: "finished", Executable: sum}, {Label: "modes", Stage: "solve", State: "finished", Executable: sum}},
+		Executables: []account.Executable{{Name: "hushframe", Version: "0.1.0", SHA256: sum}},
+		Files:       []account.File{{Step: "frame", Path: "cut/arm.dxf", SHA256: "ab54d286ffffffffffffffffffffffffffffffffffffffffffffffffffff0001"}, {Step: "frame", Path: "cut/none.dxf"}},
+		Warnings:    []account.Warning{{Step: "flight", ID: "sweep.beyond-modes", Text: "the sweep goes to 500 Hz with modes to 700 Hz", Remedy: "raise up_to of solve to 750 Hz"}},
+		Notes:       []account.Note{{Step: "frame", Text: "12 bolts were found from coaxial holes"}},
 	}
 }
 
@@ -356,7 +362,7 @@ func sampleContent(t testing.TB) *content {
 	p := sampleProperties()
 	r, _ := sampleResponse(t, modes, p)
 	sp, c := sampleRecording(r)
-	return &content{geometry: sampleGeometry(), properties: p, mesh: m, modes: modes, response: r, spectra: sp, comparison: c, run: sampleFacts()}
+	return &content{geometry: sampleGeometry(), properties: p, mesh: m, modes: modes, response: r, spectra: sp, comparison: c, run: sampleAccount()}
 }
 
 // With HUSHFRAME_SAMPLE_PAGE set to a folder, the sample page is written there to look at.

@@ -29,6 +29,7 @@ type column struct {
 type cell struct {
 	Text, Raw     string
 	Strong, Quiet bool
+	Mono          bool // in letters of equal width
 }
 
 // Heading is the name with its unit, as it stands in the file.
