@@ -265,7 +265,7 @@ func decodeColumn(t *Table, c Column, a arrow.Array) error {
 		}
 		extend(t, c.Name, s)
 	case *array.Boolean:
-		if x.Len() > 8*x.Data().Buffers()[1].Len() {
+		if x.Len() > 0 && x.Len() > 8*x.Data().Buffers()[1].Len() {
 			return fmt.Errorf("there are fewer values than rows")
 		}
 		s := make([]bool, x.Len())
