@@ -4,7 +4,7 @@
 
 airframe "sandpiper" {
   about       = "five-inch survey frame, revision A: four separate arms in a sandwich, battery on top, camera in the nose"
-  all_up_mass = "506 g"
+  all_up_mass = "544 g"
   loss_floor  = 0.002
 }
 
