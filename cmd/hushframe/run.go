@@ -1,6 +1,7 @@
 package main
 
 import (
+	"fmt"
 	"runtime"
 	"time"
 
@@ -75,13 +76,14 @@ progress, log lines and mistakes to standard error.
 		if err != nil {
 			return err
 		}
+		a.summary(result)
 		a.diagnose(p.Job, result.Diagnostics)
 		for _, s := range result.Steps {
 			if s.State == run.Failed && s.Fault != nil {
 				a.lines(s.Label, s.Fault)
 			}
 		}
-		a.summary(p, result, time.Since(began))
+		fmt.Fprintf(a.out, "\n%s\n", closing(result, time.Since(began)))
 		switch {
 		case result.Stopped:
 			return exitError(exitStopped)

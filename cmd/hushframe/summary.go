@@ -9,14 +9,13 @@ import (
 	"github.com/jedib0t/go-pretty/v6/table"
 	"github.com/jedib0t/go-pretty/v6/text"
 
-	"hushframe/core/pipeline/plan"
 	"hushframe/core/pipeline/run"
 	"hushframe/core/pipeline/stage"
 )
 
 // summary writes the results of a run: what each step has to say, findings,
-// requirements, reports, and a closing line.
-func (a *app) summary(p *plan.Plan, r *run.Result, took time.Duration) {
+// requirements, and where reports are.
+func (a *app) summary(r *run.Result) {
 	for _, s := range r.Steps {
 		for _, section := range s.Outcome.Summary {
 			writeSection(a.out, section)
@@ -45,13 +44,12 @@ func (a *app) summary(p *plan.Plan, r *run.Result, took time.Duration) {
 		}
 		writeSection(a.out, section)
 	}
-	a.published(p, r)
-	fmt.Fprintf(a.out, "\n%s\n", closing(r, took))
+	a.published(r)
 }
 
 // published says where reports are: the main file of each, and how many lie
 // beside it.
-func (a *app) published(_ *plan.Plan, r *run.Result) {
+func (a *app) published(r *run.Result) {
 	for _, s := range r.Steps {
 		if len(s.Published) == 0 {
 			continue

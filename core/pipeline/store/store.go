@@ -122,6 +122,9 @@ func (s *Store) Close() error {
 // Scratch makes an empty folder in the scratch of this run.
 func (s *Store) Scratch(name string) (string, error) {
 	dir, err := os.MkdirTemp(s.scratch, name+"-")
+	if err == nil {
+		err = os.Chmod(dir, 0o755) // it may become an artifact that others read
+	}
 	if err != nil {
 		return "", storeFault(err)
 	}
