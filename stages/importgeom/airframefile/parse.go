@@ -113,8 +113,13 @@ func (p *parser) sorted(body *hclsyntax.Body) map[string][]*block {
 			key = h.Type
 		}
 		if other, dup := first[key]; dup {
-			p.fail(h.DefRange(), "a second %s; the first is %s in line %d, and a plate and a copy, or two bodies, must not share a name either",
-				describe(h), describe(other), other.DefRange().Start.Line)
+			line := other.DefRange().Start.Line
+			if h.Type == other.Type {
+				p.fail(h.DefRange(), "a second %s; the first is in line %d", describe(h), line)
+			} else {
+				p.fail(h.DefRange(), "%s has the name of %s in line %d; plates and copies share their names, and so do rotors, lumps and the gyro",
+					describe(h), describe(other), line)
+			}
 			continue
 		}
 		first[key] = h

@@ -121,9 +121,7 @@ func suggest(name string, known []string) string {
 		return near
 	}
 	switch {
-	case len(known) == 0:
-		return "; there is none"
-	case len(known) <= 12:
+	case len(known) > 0 && len(known) <= 12:
 		return "; there are " + strings.Join(known, ", ")
 	}
 	return ""

@@ -120,7 +120,7 @@ func choose(c *cut, pl *airframefile.Plate) (*loops.Outline, *fault.Error) {
 			more = fmt.Sprintf(", and in %d more places", n)
 		}
 		return nil, fault.New(fault.Input, "an outline crosses or touches itself or another one at %s: %s%s", place(t.At), strings.Join(t.Sources, ", "), more).
-			At("%s", place(t.At)).Do("mend the drawing there, or name the layer with the outline alone")
+			Do("mend the drawing there, or name the layer with the outline alone")
 	}
 	if f := gap(r, pl); f != nil {
 		return nil, f
@@ -207,7 +207,7 @@ func gap(r loops.Result, pl *airframefile.Plate) *fault.Error {
 		if math.IsInf(apart, 0) || apart == 0 {
 			f = fault.New(fault.Input, "an outline is open: %s ends at %s", c.FromPiece, place(c.From))
 		}
-		return f.At("%s", place(c.From)).Do(`close it in the drawing, or, if that is meant to be one point, give tolerance = "%.2g mm"`, math.Ceil(apart*1.05e5)/100)
+		return f.Do(`close it in the drawing, or, if that is meant to be one point, give tolerance = "%.2g mm"`, math.Ceil(apart*1.05e5)/100)
 	}
 	return nil
 }

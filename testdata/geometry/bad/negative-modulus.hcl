@@ -1,0 +1,18 @@
+material "odd" {
+  like = "carbon-0-90"
+  E2   = "-5 GPa"
+}
+
+plate "base" {
+  outline   = "../frame/cut/base.dxf"
+  layer     = "cut"
+  thickness = "2 mm"
+  material  = "odd"
+}
+
+gyro "stack" {
+  on   = plate.base
+  at   = ["0 mm", "0 mm"]
+  mass = "12 g"
+  size = ["20 mm", "20 mm", "6 mm"]
+}

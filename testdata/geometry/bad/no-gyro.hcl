@@ -1,0 +1,6 @@
+plate "base" {
+  outline   = "../frame/cut/base.dxf"
+  layer     = "cut"
+  thickness = "2 mm"
+  material  = "carbon-0-90"
+}

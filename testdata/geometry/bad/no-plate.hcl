@@ -1,0 +1,7 @@
+
+gyro "stack" {
+  on   = plate.base
+  at   = ["0 mm", "0 mm"]
+  mass = "12 g"
+  size = ["20 mm", "20 mm", "6 mm"]
+}

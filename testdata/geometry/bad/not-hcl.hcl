@@ -1,0 +1,2 @@
+plate "base" {
+  outline = "base.dxf

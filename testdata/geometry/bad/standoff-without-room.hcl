@@ -1,0 +1,27 @@
+plate "base" {
+  outline   = "../frame/cut/base.dxf"
+  layer     = "cut"
+  thickness = "2 mm"
+  material  = "carbon-0-90"
+}
+
+plate "top" {
+  outline   = "../frame/cut/top.dxf"
+  thickness = "1 mm"
+  material  = "glass"
+  at        = ["0 mm", "0 mm", "2 mm"]
+}
+
+standoff "post" {
+  between  = [plate.base, plate.top]
+  places   = [["35 mm", "15 mm"], ["-35 mm", "-15 mm"]]
+  outer    = "5 mm"
+  material = "aluminium"
+}
+
+gyro "stack" {
+  on   = plate.base
+  at   = ["0 mm", "0 mm"]
+  mass = "12 g"
+  size = ["20 mm", "20 mm", "6 mm"]
+}
