@@ -1,6 +1,8 @@
 package report
 
 import (
+	"math"
+
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/pipeline/artifact"
@@ -40,6 +42,8 @@ func (c *content) drawing() (*draw.Surface, *draw.View) {
 		if c.modes != nil {
 			for _, site := range c.modes.Basis.Sites {
 				more = append(more, site.Point)
+				corners := draw.Box{Hub: draw.Hub{At: site.Point}, Half: c.half(site.Name)}.Corners()
+				more = append(more, corners[:]...)
 			}
 		}
 		c.surface = draw.NewSurface(c.mesh, coarse)
@@ -76,6 +80,25 @@ func (c *content) add(in stage.Input) error {
 		err = fault.New(fault.Input, "a report cannot show an artifact of kind %s", a.Kind.Name).In("report", in.From).Of("include")
 	}
 	return err
+}
+
+// half gives half the sides of the homogeneous box that has the mass and the
+// moments of inertia of a body; zero when it is a rotor or not known.
+func (c *content) half(name string) airframe.Vec {
+	var h airframe.Vec
+	if c.properties == nil {
+		return h
+	}
+	for _, b := range c.properties.Bodies {
+		if b.Name != name || b.Kind == "rotor" || !(b.Mass > 0) {
+			continue
+		}
+		for d := range h {
+			square := 6 / b.Mass * (b.Inertia[(d+1)%3] + b.Inertia[(d+2)%3] - b.Inertia[d])
+			h[d] = math.Sqrt(math.Max(0, square)) / 2
+		}
+	}
+	return h
 }
 
 // once decodes an artifact into its place, which must be free.

@@ -32,4 +32,4 @@ func modelSection(c *content) *section {
 	return s
 }
 
-func millimetres(x float64) string { return sign(fmt.Sprintf("%.1f", 1000*x+0)) }
+func millimetres(x float64) string { return number(1000*x, 1).Text }

@@ -62,7 +62,7 @@ func below(m *kinds.Modes, limit float64) int {
 func modeTable(m *kinds.Modes) *table {
 	t := &table{Name: "modes", Title: "Elastic modes",
 		About: "Gyro strength: peak rate of that mode alone at its own damping, root sum of squares over unit forces at all rotor hubs. In bold the strongest of each axis.",
-		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"damping ratio", "%", true}, {"most strain in", "", false}, {"as", "", false},
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"damping ratio", "%", true}, {"most strain", "", false},
 			{"roll", "(deg/s)/N", true}, {"pitch", "(deg/s)/N", true}, {"yaw", "(deg/s)/N", true}, {"to the mode below", "Hz", true}, {"above", "Hz", true}}}
 	var best [3]float64
 	for _, x := range m.Survey.Modes {
@@ -71,9 +71,9 @@ func modeTable(m *kinds.Modes) *table {
 		}
 	}
 	for _, x := range m.Survey.Modes {
-		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(x.Part), words(x.Motion)}
+		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(x.Motion + " of " + x.Part)}
 		for axis := range best {
-			strength := digits(x.Strength[axis]/degree, 3)
+			strength := atLeast(x.Strength[axis]/degree, 0.005)
 			strength.Strong = x.Strength[axis] > 0 && x.Strength[axis] == best[axis]
 			row = append(row, strength)
 		}
@@ -184,7 +184,7 @@ func shareTable(m *kinds.Modes) *table {
 			row = append(row, percent(share, 0))
 		}
 		for _, strength := range x.MomentStrength {
-			row = append(row, digits(strength/degree, 3))
+			row = append(row, atLeast(strength/degree, 0.005))
 		}
 		t.Rows = append(t.Rows, row)
 	}
@@ -206,7 +206,7 @@ func gallery(s *section, c *content) {
 		}
 		pictures = append(pictures, figure{
 			Title:   fmt.Sprintf("Mode %d at %.1f\u00a0Hz", x.Number, x.Frequency),
-			Picture: trusted(view.Shape(surface, restName, modeMotion(m, x))),
+			Picture: trusted(view.Shape(surface, restName, c.modeMotion(x))),
 			Caption: modeCaption(m, x),
 		})
 	}
@@ -215,7 +215,7 @@ func gallery(s *section, c *content) {
 	}
 	s.heading("Shapes")
 	s.text("Each picture shows the frame deformed over its outline at rest, seen from behind and above, enlarged to the same largest displacement. " +
-		"Colour is the displacement as a share of the largest. The arrow is the axis about which the gyro turns; the curved arrow runs the way round that the right hand gives.")
+		"Colour is the displacement as a share of the largest; bodies are boxes, rotors rings on a stem. The arrow is the axis about which the gyro turns; the curved arrow runs the way round that the right hand gives.")
 	steps := make([]int, draw.Levels)
 	for k := range steps {
 		steps[k] = k
@@ -228,7 +228,8 @@ func gallery(s *section, c *content) {
 
 // modeMotion is the motion of a mode, with the sign that moves the gyro, or
 // else the frame, mostly the positive way.
-func modeMotion(m *kinds.Modes, x modal.Mode) draw.Motion {
+func (c *content) modeMotion(x modal.Mode) draw.Motion {
+	m := c.modes
 	shape := m.Basis.Shapes[x.Vector]
 	sign := 1.0
 	if main, _ := mainAxis(x); x.Rotation[main] < 0 {
@@ -249,6 +250,9 @@ func modeMotion(m *kinds.Modes, x modal.Mode) draw.Motion {
 			motion.Hubs = append(motion.Hubs, h)
 		case "gyro":
 			motion.Gyro = &h
+		}
+		if half := c.half(site.Name); half != (airframe.Vec{}) {
+			motion.Boxes = append(motion.Boxes, draw.Box{Hub: h, Half: half})
 		}
 	}
 	return motion
@@ -279,5 +283,5 @@ func modeCaption(m *kinds.Modes, x modal.Mode) string {
 	case share > 0:
 		gyro = fmt.Sprintf("the gyro turns mostly in %s (%.0f\u00a0%%)", kinds.AxisNames[axis], 100*share)
 	}
-	return fmt.Sprintf("Mostly %s, most of all in %s; %s.", x.Motion, x.Part, gyro)
+	return fmt.Sprintf("Most strain: %s of %s; %s.", x.Motion, x.Part, gyro)
 }

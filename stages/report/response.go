@@ -20,6 +20,10 @@ const (
 // responseSection shows the predicted gyro rate, with the recording over it.
 func responseSection(c *content) *section {
 	s := &section{ID: "response", Title: "Response at the gyro"}
+	if c.response == nil && c.comparison == nil {
+		return nil
+	}
+	s.text(chartLegend(c))
 	for axis, name := range kinds.AxisNames {
 		ch := axisChart(c, axis)
 		svg := ch.Draw()
@@ -27,18 +31,15 @@ func responseSection(c *content) *section {
 			continue
 		}
 		s.heading(strings.ToUpper(name[:1]) + name[1:])
-		s.draw(svg, chartCaption(c, name))
+		s.draw(svg, "")
 	}
 	if r := c.response; r != nil {
 		s.aside(fmt.Sprintf("The source is assumed, not measured: %s N²/Hz of force and %s (N·m)²/Hz of moment along each component at each rotor, added over rotors as power. Where the peaks lie and how they compare says more than their level.",
-			significant(r.Force, 2), significant(r.Moment, 2)))
+			plainPower(r.Force), plainPower(r.Moment)))
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))
 		shapeGallery(s, c)
-	}
-	if len(s.Blocks) == 0 {
-		return nil
 	}
 	return s
 }
@@ -201,7 +202,8 @@ func orderBands(c *content) []draw.Band {
 	return out
 }
 
-func chartCaption(c *content, axis string) string {
+// chartLegend says once how to read the charts.
+func chartLegend(c *content) string {
 	var parts []string
 	if c.response != nil {
 		parts = append(parts, "Rings mark predicted peaks; numbered lines at the top are the modes.")
@@ -250,7 +252,7 @@ func levelTable(r *kinds.Response) *table {
 
 func lineTable(r *kinds.Response) *table {
 	t := &table{Name: "rotor-lines", Title: "Rotor lines at hover speed",
-		About: "Peak amplitude of the gyro rate. Unbalance is what each rotor's balance grade permits; the thrust at blade passing is assumed to vary by " + significant(100*r.BladeShare, 2) + " %.",
+		About: "Peak amplitude of the gyro rate. Unbalance is what each rotor's balance grade permits; the thrust at blade passing is assumed to vary by " + plain(100*r.BladeShare, 2).Text + " %.",
 		Columns: []column{{"source", "", false}, {"rotor", "", false}, {"frequency", "Hz", true}, {"force", "N", true},
 			{"roll", "deg/s", true}, {"pitch", "deg/s", true}, {"yaw", "deg/s", true}}}
 	for _, x := range r.Lines {
@@ -365,4 +367,16 @@ func shapeGallery(s *section, c *content) {
 		s.text("How the frame moves at these frequencies, all modes together, at the instant of the greatest motion.")
 		s.Blocks = append(s.Blocks, block{Gallery: pictures})
 	}
+}
+
+// plainPower writes a number with a power of ten and no trailing zeros.
+func plainPower(x float64) string {
+	s := significant(x, 2)
+	if before, after, ok := strings.Cut(s, ".0·"); ok {
+		if before == "1" {
+			return after
+		}
+		return before + "·" + after
+	}
+	return s
 }

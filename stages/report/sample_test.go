@@ -136,7 +136,7 @@ func sampleModes(m *mesh.Mesh) *kinds.Modes {
 		})
 	}
 	survey := &modal.Survey{From: 80, To: 500, Groups: []string{"arm_fl", "arm_fr", "top", "clamp", "grommets"},
-		Kinds: []string{"in-plane", "bending", "twist", "shear", "joint", "mount"}, Carriers: []string{"bottom", "top", "fl", "fr", "battery"}, Rotors: rotorNames}
+		Kinds: []string{"in-plane", "bending", "twist", "shear", "joint", "mount"}, Carriers: []string{"bottom", "top", "fl", "fr", "battery"}, Rotors: append([]string{}, rotorNames...)}
 	for i, x := range fields {
 		add(modal.Elastic, x.f, 3, x.u)
 		up := math.Inf(1)

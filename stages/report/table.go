@@ -48,7 +48,11 @@ func number(x float64, decimals int) cell {
 	if math.IsNaN(x) {
 		return missing()
 	}
-	return cell{Text: sign(strconv.FormatFloat(x, 'f', decimals, 64)), Raw: strconv.FormatFloat(x, 'g', 9, 64)}
+	text := sign(strconv.FormatFloat(x, 'f', decimals, 64))
+	if strings.Trim(text, "−0.") == "" {
+		text = strings.TrimPrefix(text, "−")
+	}
+	return cell{Text: text, Raw: strconv.FormatFloat(x, 'g', 9, 64)}
 }
 
 // digits shows a value with a number of significant digits.
@@ -57,6 +61,15 @@ func digits(x float64, n int) cell {
 		return missing()
 	}
 	return cell{Text: significant(x, n), Raw: strconv.FormatFloat(x, 'g', 9, 64)}
+}
+
+// atLeast shows three digits, and zero for what is below a limit.
+func atLeast(x, limit float64) cell {
+	c := digits(x, 3)
+	if math.Abs(x) < limit {
+		c.Text, c.Quiet = "0", true
+	}
+	return c
 }
 
 func missing() cell { return cell{Text: "–", Quiet: true} }
@@ -92,11 +105,7 @@ func sign(s string) string { return strings.Replace(s, "-", "−", 1) }
 // signed shows a difference with its sign; what rounds to zero has none.
 func signed(x float64, decimals int) cell {
 	c := number(x, decimals)
-	switch {
-	case c.Raw == "":
-	case strings.Trim(c.Text, "−0.") == "":
-		c.Text = strings.TrimPrefix(c.Text, "−")
-	case x > 0:
+	if x > 0 && strings.Trim(c.Text, "0.") != "" {
 		c.Text = "+" + c.Text
 	}
 	return c

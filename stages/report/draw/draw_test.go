@@ -221,13 +221,14 @@ func TestShape(t *testing.T) {
 		s := NewSurface(m, 4e-3)
 		v := NewView(s, []airframe.Vec{{0, 0, 0.05}})
 		motion := Motion{About: `mode "1" <script>`, Node: func(k int32) airframe.Vec { return airframe.Vec{0, 0, swing * m.Nodes[k][0]} },
-			Hubs: []Hub{{At: airframe.Vec{0.02, 0, 0.045}, Turn: airframe.Vec{0, swing, 0}}}, Gyro: &Hub{At: airframe.Vec{0, 0, 0.02}, Turn: airframe.Vec{0, -swing, swing}}}
+			Hubs: []Hub{{At: airframe.Vec{0.02, 0, 0.045}, Turn: airframe.Vec{0, swing, 0}}}, Boxes: []Box{{Hub{At: airframe.Vec{0, 0, 0.03}, Move: airframe.Vec{0, 0, swing / 90}, Turn: airframe.Vec{swing, 0, 0}}, airframe.Vec{0.01, 0.005, 0.002}}},
+			Gyro: &Hub{At: airframe.Vec{0, 0, 0.02}, Turn: airframe.Vec{0, -swing, swing}}}
 		return v.Rest(s, "rest"), v.Shape(s, "rest", motion)
 	}
 	rest, svg := draw(3)
 	wellFormed(t, rest)
 	wellFormed(t, svg)
-	for _, want := range []string{`href="#rest"`, `class="k0"`, `class="k15"`, `class="rim"`, `class="pillar"`, `class="hub"`, `class="turn"`, "forward"} {
+	for _, want := range []string{`href="#rest"`, `class="k0"`, `class="k15"`, `class="rim"`, `class="pillar"`, `class="hub"`, `class="body"`, `class="turn"`, "forward"} {
 		if !strings.Contains(svg, want) {
 			t.Errorf("%s is missing", want)
 		}

@@ -98,6 +98,7 @@ type Motion struct {
 	About string
 	Node  func(n int32) airframe.Vec
 	Hubs  []Hub
+	Boxes []Box
 	// Gyro is nil when its motion is not known.
 	Gyro *Hub
 }
@@ -107,8 +108,34 @@ type Hub struct {
 	At, Move, Turn airframe.Vec
 }
 
-// Shape draws the frame as it moves, over its outline at rest. Displacements
-// are coloured in Levels steps of their own largest.
+// Box is a body drawn as the edges of a box along the airframe's axes, that
+// moves as one.
+type Box struct {
+	Hub               // at its centre
+	Half airframe.Vec // half its sides, m
+}
+
+// Corners gives the eight corners at rest; bit d of the index is set for the
+// far side along axis d.
+func (b Box) Corners() [8]airframe.Vec {
+	var out [8]airframe.Vec
+	for n := range out {
+		out[n] = b.At
+		for d := range 3 {
+			if n>>d&1 == 1 {
+				out[n][d] += b.Half[d]
+			} else {
+				out[n][d] -= b.Half[d]
+			}
+		}
+	}
+	return out
+}
+
+// Shape draws the frame as it moves, over its outline at rest. Displacements of
+// the mesh are coloured in Levels steps of their own largest; all motion is
+// drawn enlarged so that the largest, of the mesh, a hub or a box, swings by a
+// fixed share of the span.
 func (v *View) Shape(s *Surface, rest string, m Motion) string {
 	largest := 0.0
 	see := func(u airframe.Vec) { largest = math.Max(largest, math.Sqrt(dot(u, u))) }
@@ -123,8 +150,12 @@ func (v *View) Shape(s *Surface, rest string, m Motion) string {
 			see(m.Node(l[1]))
 		}
 	}
+	coloured := largest
 	for _, h := range m.Hubs {
 		see(h.Move)
+	}
+	for _, b := range m.Boxes {
+		see(b.Move)
 	}
 	gain := 0.0
 	if largest > 0 {
@@ -137,10 +168,10 @@ func (v *View) Shape(s *Surface, rest string, m Motion) string {
 			u := m.Node(n)
 			sum += math.Sqrt(dot(u, u))
 		}
-		if largest == 0 {
+		if coloured == 0 {
 			return 0
 		}
-		return sum / float64(len(nodes)) / largest
+		return sum / float64(len(nodes)) / coloured
 	}
 	c := &canvas{}
 	c.open("shape", m.About, v.width, v.height)
@@ -171,6 +202,9 @@ func (v *View) Shape(s *Surface, rest string, m Motion) string {
 		if pillar.b.Len() > 0 {
 			c.b.WriteString(`<path class="pillar" d="` + pillar.b.String() + `"/>`)
 		}
+	}
+	for _, b := range m.Boxes {
+		v.box(c, b, gain)
 	}
 	for _, h := range m.Hubs {
 		v.ring(c, s, m.Node, h, gain)
@@ -207,6 +241,23 @@ func (v *View) ring(c *canvas, s *Surface, node func(int32) airframe.Vec, h Hub,
 		p.stroke(plus(s.Nodes[n], node(n), gain), plus(h.At, h.Move, gain))
 	}
 	c.b.WriteString(`<path class="hub" d="` + p.b.String() + `"/>`)
+}
+
+// box draws the edges of a body as it moves and turns.
+func (v *View) box(c *canvas, b Box, gain float64) {
+	var at [8]airframe.Vec
+	for n, corner := range b.Corners() {
+		at[n] = plus(plus(corner, b.Move, gain), cross(b.Turn, plus(corner, b.At, -1)), gain)
+	}
+	p := &pen{v: v}
+	for n := range at {
+		for d := range 3 {
+			if n>>d&1 == 0 {
+				p.stroke(at[n], at[n|1<<d])
+			}
+		}
+	}
+	c.b.WriteString(`<path class="body" d="` + p.b.String() + `"/>`)
 }
 
 // arrow draws the rotation of the gyro as an arrow along its axis of rotation,
