@@ -5,6 +5,7 @@ import (
 	"testing"
 
 	"hushframe/core/mechanics/assembly"
+	"hushframe/core/mechanics/element/beam"
 	"hushframe/core/numeric/sparse"
 )
 
@@ -28,3 +29,6 @@ func solveStatic(t *testing.T, s *assembly.System, f []float64) []float64 {
 	factor.Solve(u, 1)
 	return u
 }
+
+// tube is a solid round bar.
+func tube(diameter, e, nu, rho float64) beam.Section { return beam.Tube(diameter, 0, e, nu, rho) }

@@ -26,7 +26,7 @@ func (k *kernel) energies(s *laminate.Section, motion, out []float64) {
 	}
 	clear(out)
 	defl, fibre := k.deflStart(), k.fibreStart()
-	drill := drillingStiffness(s)
+	drill := k.drillingStiffness(s)
 	for p := range k.f.points {
 		var eps, kap [3]float64
 		spin := 0.0

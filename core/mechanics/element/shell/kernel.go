@@ -11,9 +11,9 @@ import (
 // It decides nothing but how loosely θ_z follows the in-plane rotation.
 const drilling = 1e-4
 
-// drillingStiffness is drilling times the mean of A_66 over all directions of the axes.
-func drillingStiffness(s *laminate.Section) float64 {
-	return drilling * (s.A[0][0] + s.A[1][1] - 2*s.A[0][1] + 4*s.A[2][2]) / 8
+// drillingStiffness is the kernel's share of the mean of A_66 over all directions of the axes.
+func (k *kernel) drillingStiffness(s *laminate.Section) float64 {
+	return k.drilling * (s.A[0][0] + s.A[1][1] - 2*s.A[0][1] + 4*s.A[2][2]) / 8
 }
 
 // flat is how far nodes may lie off the common plane, as a share of the longest side.
@@ -31,8 +31,9 @@ const (
 //
 // that is 2n + n + 2n + 2; drilling rotations are kept apart.
 type kernel struct {
-	f     *formulation
-	inner int // 5n + 2
+	f        *formulation
+	inner    int     // 5n + 2
+	drilling float64 // see drilling
 	// Geometry at the integration points.
 	area   [maxPoints]float64 // weight times Jacobian
 	gx, gy [maxPoints][maxNodes + 1]float64
@@ -44,7 +45,9 @@ type kernel struct {
 	bubble     [2][maxInner - 2]float64 // bubble amplitude = -bubble · inner
 }
 
-func newKernel(f *formulation) *kernel { return &kernel{f: f, inner: 5*f.nodes + 2} }
+func newKernel(f *formulation, drilling float64) *kernel {
+	return &kernel{f: f, inner: 5*f.nodes + 2, drilling: drilling}
+}
 
 func (k *kernel) deflStart() int  { return 2 * k.f.nodes }
 func (k *kernel) fibreStart() int { return 3 * k.f.nodes }
@@ -139,7 +142,7 @@ func (k *kernel) stiffness(s *laminate.Section) {
 	}
 	k.drill, k.drillPlane = [maxNodes][maxNodes]float64{}, [maxNodes][2 * maxNodes]float64{}
 	fibre, defl, coupled := k.fibreStart(), k.deflStart(), !s.Uncoupled()
-	drill := drillingStiffness(s)
+	drill := k.drillingStiffness(s)
 	for p := range k.f.points {
 		w := k.area[p]
 		gx, gy := &k.gx[p], &k.gy[p]

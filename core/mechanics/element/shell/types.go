@@ -14,7 +14,7 @@ func Types() []element.Type {
 // QuadraticTriangle returns the six-node element, the default of the product.
 func QuadraticTriangle() element.Type {
 	return &triangle{
-		f: quadratic(),
+		f: quadratic(), drilling: drilling,
 		description: element.Description{
 			Name:  "quadratic-triangle",
 			About: "six-node shear-deformable triangle, straight or curved sides, second order in deflection and rotation",
@@ -26,7 +26,7 @@ func QuadraticTriangle() element.Type {
 // LinearTriangle returns the three-node element.
 func LinearTriangle() element.Type {
 	return &triangle{
-		f: linear(),
+		f: linear(), drilling: drilling,
 		description: element.Description{
 			Name:  "linear-triangle",
 			About: "three-node shear-deformable triangle, constant strain in its plane",
@@ -40,6 +40,7 @@ const chunk = 64
 
 type triangle struct {
 	f           *formulation
+	drilling    float64
 	description element.Description
 }
 
@@ -86,4 +87,4 @@ func (t *triangle) Energies(ctx context.Context, in *element.Batch, motions, out
 	})
 }
 
-func (t *triangle) kernel() *kernel { return newKernel(t.f) }
+func (t *triangle) kernel() *kernel { return newKernel(t.f, t.drilling) }
