@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"regexp"
 	"strconv"
 	"strings"
 	"testing"
@@ -238,6 +239,19 @@ func TestShape(t *testing.T) {
 	}
 	if _, larger := draw(300); larger != svg {
 		t.Error("the scale of a mode shows in its picture")
+	}
+	// A body that turns fast about its own centre stays on the page too.
+	s := NewSurface(m, 4e-3)
+	box := Box{Hub{Turn: airframe.Vec{0, 0, 1}}, airframe.Vec{0.02, 0.01, 0.002}}
+	corners := box.Corners()
+	v := NewView(s, corners[:])
+	spin := v.Shape(s, "rest", Motion{Node: func(int32) airframe.Vec { return airframe.Vec{0, 0, 1e-4} }, Boxes: []Box{box}})
+	for _, d := range regexp.MustCompile(`class="body" d="M(-?\d+) ?(-?\d+)l`).FindAllStringSubmatch(spin, -1) {
+		x, _ := strconv.Atoi(d[1])
+		y, _ := strconv.Atoi(d[2])
+		if x < 0 || y < 0 || float64(x) > v.width || float64(y) > v.height {
+			t.Errorf("a corner lies at %d %d, outside %g by %g", x, y, v.width, v.height)
+		}
 	}
 	_, still := draw(0)
 	wellFormed(t, still)

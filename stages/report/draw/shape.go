@@ -108,6 +108,9 @@ type Hub struct {
 	At, Move, Turn airframe.Vec
 }
 
+// moves gives the displacement of a point fixed to the hub at an arm from it.
+func (h Hub) moves(arm airframe.Vec) airframe.Vec { return plus(cross(h.Turn, arm), h.Move, 1) }
+
 // Box is a body drawn as the edges of a box along the airframe's axes, that
 // moves as one.
 type Box struct {
@@ -152,10 +155,14 @@ func (v *View) Shape(s *Surface, rest string, m Motion) string {
 	}
 	coloured := largest
 	for _, h := range m.Hubs {
-		see(h.Move)
+		for k := range ringSides {
+			see(h.moves(v.ringArm(k)))
+		}
 	}
 	for _, b := range m.Boxes {
-		see(b.Move)
+		for _, corner := range b.Corners() {
+			see(b.moves(plus(corner, b.At, -1)))
+		}
 	}
 	gain := 0.0
 	if largest > 0 {
@@ -228,13 +235,11 @@ func cross(a, b airframe.Vec) airframe.Vec {
 // stem from the nearest node.
 func (v *View) ring(c *canvas, s *Surface, node func(int32) airframe.Vec, h Hub, gain float64) {
 	p := &pen{v: v}
-	r := 0.045 * v.span
 	point := func(k int) airframe.Vec {
-		a := 2 * math.Pi * float64(k) / 24
-		arm := airframe.Vec{r * math.Cos(a), r * math.Sin(a), 0}
-		return plus(plus(plus(h.At, arm, 1), h.Move, gain), cross(h.Turn, arm), gain)
+		arm := v.ringArm(k)
+		return plus(plus(h.At, arm, 1), h.moves(arm), gain)
 	}
-	for k := range 24 {
+	for k := range ringSides {
 		p.stroke(point(k), point(k+1))
 	}
 	if n, ok := s.nearest(h.At); ok {
@@ -243,11 +248,19 @@ func (v *View) ring(c *canvas, s *Surface, node func(int32) airframe.Vec, h Hub,
 	c.b.WriteString(`<path class="hub" d="` + p.b.String() + `"/>`)
 }
 
+const ringSides = 24
+
+// ringArm goes from a hub to corner k of its ring.
+func (v *View) ringArm(k int) airframe.Vec {
+	s, c := math.Sincos(2 * math.Pi * float64(k) / ringSides)
+	return airframe.Vec{0.045 * v.span * c, 0.045 * v.span * s, 0}
+}
+
 // box draws the edges of a body as it moves and turns.
 func (v *View) box(c *canvas, b Box, gain float64) {
 	var at [8]airframe.Vec
 	for n, corner := range b.Corners() {
-		at[n] = plus(plus(corner, b.Move, gain), cross(b.Turn, plus(corner, b.At, -1)), gain)
+		at[n] = plus(corner, b.moves(plus(corner, b.At, -1)), gain)
 	}
 	p := &pen{v: v}
 	for n := range at {
