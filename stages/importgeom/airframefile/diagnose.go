@@ -72,7 +72,9 @@ func withQuote(text, quote string) string {
 // clause turns a sentence into a part of one.
 func clause(s string) string {
 	s = strings.TrimSpace(s)
-	s = strings.TrimSuffix(s, ".")
+	if !strings.HasSuffix(s, "...") {
+		s = strings.TrimSuffix(s, ".")
+	}
 	r, n := utf8.DecodeRuneInString(s)
 	if second, _ := utf8.DecodeRuneInString(s[n:]); unicode.IsUpper(second) {
 		return s
