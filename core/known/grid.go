@@ -98,12 +98,13 @@ func Cells(xs, ys []float64, distort float64, keep func(x, y float64) bool) *Gri
 	var lattice [][2]float64
 	for j, y := range ys {
 		for i, x := range xs {
-			dx, dy := 2*rng.Float64()-1, 2*rng.Float64()-1
+			dx, dy := distort*(2*rng.Float64()-1), distort*(2*rng.Float64()-1)
+			at := [2]float64{x, y}
 			if i > 0 && i < nx && j > 0 && j < ny {
-				x += distort * dx * math.Min(xs[i+1]-xs[i], xs[i]-xs[i-1])
-				y += distort * dy * math.Min(ys[j+1]-ys[j], ys[j]-ys[j-1])
+				at[0] += dx * math.Min(xs[i+1]-xs[i], xs[i]-xs[i-1])
+				at[1] += dy * math.Min(ys[j+1]-ys[j], ys[j]-ys[j-1])
 			}
-			lattice = append(lattice, [2]float64{x, y})
+			lattice = append(lattice, at)
 		}
 	}
 	var points [][2]float64
