@@ -107,9 +107,13 @@ func recordingSection(sp *kinds.Spectra) *section {
 	}
 	s.table(rotors)
 
-	orders := &table{Name: "recorded-orders", Title: "Where rotor orders lie in the recording",
+	orders := &table{Name: "recorded-orders", Title: "Where rotor orders lie in the recording", About: "Bands in which an order spends less than 2 % of the time are left out here, but are masked in the comparison.",
 		Columns: []column{{"rotor", "", false}, {"order", "", true}, {"", "", false}, {"from", "Hz", true}, {"to", "Hz", true}, {"share of the time", "%", true}}}
+	const seldom = 0.02
 	for _, x := range sp.Orders {
+		if x.Share < seldom {
+			continue
+		}
 		var remarks []string
 		if x.BladePassing {
 			remarks = append(remarks, "blade passing")

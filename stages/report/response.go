@@ -68,6 +68,9 @@ func axisChart(c *content, axis int) *draw.Chart {
 			ch.Notes = append(ch.Notes, "no factor could be fitted; the prediction is as it is")
 		}
 		curve := draw.Curve{Name: "recorded", Class: "observed", X: pair.Frequency, Y: scaled(pair.Observed, 1/square)}
+		if x, y := recorded(c.spectra, name); x != nil { // reaches beyond the sweep
+			curve.X, curve.Y = x, scaled(y, 1/square)
+		}
 		if sp := c.spectra; sp != nil && sp.Lower > 0 && sp.Upper > 0 {
 			curve.Lower, curve.Upper = scaled(curve.Y, sp.Lower), scaled(curve.Y, sp.Upper)
 			ch.Notes = append(ch.Notes, fmt.Sprintf("shaded: %.0f %% confidence of the recording", 100*sp.Level))
@@ -97,6 +100,22 @@ func axisChart(c *content, axis int) *draw.Chart {
 	}
 	ch.About += ". Peaks are in the tables below."
 	return ch
+}
+
+// recorded gives the whole spectrum of an axis, nil when there is none.
+func recorded(sp *kinds.Spectra, axis string) (frequency, density []float64) {
+	if sp == nil {
+		return nil, nil
+	}
+	for _, x := range sp.Axes {
+		if x.Axis == axis && x.Unit == "rad/s" {
+			for bin := range x.Density {
+				frequency = append(frequency, sp.Frequency(bin))
+			}
+			return frequency, x.Density
+		}
+	}
+	return nil, nil
 }
 
 func scaled(y []float64, factor float64) []float64 {
@@ -146,6 +165,10 @@ func observedPeaks(c *content, axis string) []draw.Peak {
 	return out
 }
 
+// joinBands is the relative gap below which two bands of an order are drawn as
+// one.
+const joinBands = 0.02
+
 // orderBands are the recorded ones, or the orders at hover when nothing was
 // recorded; bands of one order are joined over rotors.
 func orderBands(c *content) []draw.Band {
@@ -192,7 +215,7 @@ func orderBands(c *content) []draw.Band {
 	})
 	var out []draw.Band
 	for i, b := range all {
-		if i > 0 && all[i-1].label == b.label && b.from <= out[len(out)-1].To {
+		if i > 0 && all[i-1].label == b.label && b.from <= out[len(out)-1].To*(1+joinBands) {
 			out[len(out)-1].To = math.Max(out[len(out)-1].To, b.to)
 			continue
 		}

@@ -88,8 +88,7 @@ func (ch *Chart) Draw() string {
 	for _, curve := range ch.Curves {
 		c.tag("path", "class", "curve "+curve.Class, "d", f.path(curve.X, curve.Y))
 	}
-	ch.peaks(c, f)
-	ch.names(c, f)
+	ch.peaks(c, f, ch.names(c, f))
 	for i, note := range ch.Notes {
 		c.text(chartWidth-right-8, top+18+16*float64(i), "note", "end", note)
 	}
@@ -168,8 +167,8 @@ func (ch *Chart) bands(c *canvas, f frame) {
 	}
 	id := "hatch-" + ch.Name
 	c.b.WriteString(`<defs><pattern id="` + id + `" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)"><path class="hatch" d="M0 0V6"/></pattern></defs>`)
-	room := -math.MaxFloat64
-	row := 0
+	type label struct{ x0, x1, row float64 }
+	var taken []label
 	for _, b := range ch.Bands {
 		x0, x1 := f.x(math.Max(b.From, f.from)), f.x(math.Min(b.To, f.to))
 		if x1 <= left || x0 >= chartWidth-right || x1 < x0 {
@@ -177,17 +176,17 @@ func (ch *Chart) bands(c *canvas, f frame) {
 		}
 		c.tag("rect", "class", "band", "fill", "url(#"+id+")", "x", x0, "y", top, "width", math.Max(1.5, x1-x0), "height", f.plotHeight)
 		at := math.Min(math.Max((x0+x1)/2, left+30), chartWidth-right-30)
-		row = (row + 1) * b2i(at < room)
-		c.text(at, chartHeight-bottom-6-13*float64(row%3), "band-label", "middle", b.Label)
-		room = at + 7*float64(len([]rune(b.Label)))
+		half := 3.4 * float64(len([]rune(b.Label)))
+		at = math.Min(at, chartWidth-right-half)
+		free := label{x0: at - half - 4, x1: at + half + 4}
+		for i := 0; i < len(taken); i++ {
+			if t := taken[i]; t.row == free.row && t.x0 < free.x1 && t.x1 > free.x0 {
+				free.row, i = free.row+1, -1
+			}
+		}
+		taken = append(taken, free)
+		c.text(at, chartHeight-bottom-6-13*free.row, "band-label", "middle", b.Label)
 	}
-}
-
-func b2i(b bool) int {
-	if b {
-		return 1
-	}
-	return 0
 }
 
 // marks draws the ticks at the top, their labels in two rows where they crowd.
@@ -210,11 +209,12 @@ func (ch *Chart) marks(c *canvas, f frame) {
 	}
 }
 
+// spot is the middle of a short label.
+type spot struct{ x, y float64 }
+
 // peaks marks points, and labels them where there is room: above, then to one
 // side, then the other.
-func (ch *Chart) peaks(c *canvas, f frame) {
-	type spot struct{ x, y float64 }
-	var taken []spot
+func (ch *Chart) peaks(c *canvas, f frame, taken []spot) {
 	room := func(p spot) bool {
 		if p.y < top+8 || p.x < left+14 || p.x > chartWidth-right-14 {
 			return false
@@ -258,30 +258,35 @@ func (ch *Chart) peaks(c *canvas, f frame) {
 	}
 }
 
-// names writes each curve's name at its right end.
-func (ch *Chart) names(c *canvas, f frame) {
+// names writes each curve's name at its right end and says what room that
+// takes.
+func (ch *Chart) names(c *canvas, f frame) (taken []spot) {
 	type tag struct {
-		y     float64
+		x, y  float64
 		curve Curve
 	}
 	var tags []tag
 	for _, curve := range ch.Curves {
 		for k := len(curve.X) - 1; k >= 0; k-- {
 			if curve.X[k] <= f.to && curve.Y[k] > 0 {
-				tags = append(tags, tag{f.y(curve.Y[k]), curve})
+				tags = append(tags, tag{f.x(curve.X[k]) + 8, f.y(curve.Y[k]), curve})
 				break
 			}
 		}
 	}
 	sort.SliceStable(tags, func(i, j int) bool { return tags[i].y < tags[j].y })
 	for i := range tags {
-		if i > 0 {
+		if i > 0 && math.Abs(tags[i].x-tags[i-1].x) < 80 {
 			tags[i].y = math.Max(tags[i].y, tags[i-1].y+16)
 		}
 	}
 	for _, t := range tags {
-		c.text(chartWidth-right+8, t.y+4, "curve-label "+t.curve.Class, "start", t.curve.Name)
+		c.text(t.x, t.y+4, "curve-label "+t.curve.Class, "start", t.curve.Name)
+		for k := 0; k < len(t.curve.Name); k += 3 {
+			taken = append(taken, spot{t.x + 8 + 7.5*float64(k), t.y + 4})
+		}
 	}
+	return taken
 }
 
 // path joins the points in range, leaving out those that would not be seen. A
