@@ -1,6 +1,6 @@
 # The Sandpiper as it was "really" built: the hidden truth behind the flight
 # recording. The nominal description (../airframe.hcl) does not know that the
-# carbon is softer and not the same along and across, that the arms are 0.1 mm
+# carbon is softer and not the same along and across, that the arms are 0.05 mm
 # thin and cut 2 degrees off the weave, that the sandwich bolts give, that
 # grommets and strap are softer, that a cable runs along each arm, or that the
 # rotors' gyroscopic moments couple roll and pitch of the arm tips (the last is
@@ -12,7 +12,7 @@ airframe "sandpiper" {
 }
 
 input "arm_thickness" {
-  value = "4.9 mm"
+  value = "4.95 mm"
   about = "carbon plate the arms are cut from"
 }
 
@@ -22,7 +22,7 @@ input "plate_thickness" {
 }
 
 input "carbon_modulus" {
-  value = "50 GPa"
+  value = "53 GPa"
   about = "in-plane modulus of the carbon plate along and across"
 }
 
@@ -32,7 +32,7 @@ input "carbon_density" {
 }
 
 input "carbon_loss_factor" {
-  value = 0.015
+  value = 0.014
   about = "hysteretic loss factor of the carbon plate"
 }
 
@@ -44,8 +44,8 @@ input "battery_mass" {
 material "plate-carbon" {
   like        = "carbon-0-90"
   E1          = input.carbon_modulus
-  E2          = "47 GPa"
-  G12         = "3.7 GPa"
+  E2          = "50 GPa"
+  G12         = "4.0 GPa"
   G13         = "2.8 GPa"
   G23         = "2.8 GPa"
   density     = input.carbon_density
@@ -104,12 +104,12 @@ plate "top" {
 }
 
 joint "sandwich" {
-  x           = "18 kN/mm"
-  y           = "18 kN/mm"
-  z           = "28 kN/mm"
-  rx          = "70 N*m/rad"
-  ry          = "70 N*m/rad"
-  rz          = "40 N*m/rad"
+  x           = "55 kN/mm"
+  y           = "55 kN/mm"
+  z           = "90 kN/mm"
+  rx          = "260 N*m/rad"
+  ry          = "260 N*m/rad"
+  rz          = "150 N*m/rad"
   loss_factor = 0.06
 }
 
@@ -233,7 +233,7 @@ lump "battery" {
   mount {
     kind        = "strap over foam"
     places      = [["20 mm", "11 mm"], ["20 mm", "-11 mm"], ["-36 mm", "11 mm"], ["-36 mm", "-11 mm"]]
-    stiffness   = ["9 N/mm", "9 N/mm", "19 N/mm"]
+    stiffness   = ["10.5 N/mm", "10.5 N/mm", "22 N/mm"]
     loss_factor = 0.30
     pad         = "8 mm"
   }
@@ -259,7 +259,7 @@ lump "receiver" {
 lump "cable_fl" {
   on   = plate.arm_fl
   at   = ["42 mm", "45.1 mm"]
-  mass = "2.2 g"
+  mass = "1.6 g"
   size = ["8 mm", "8 mm", "3 mm"]
   pad  = ["7 mm", "7 mm"]
 }
@@ -267,7 +267,7 @@ lump "cable_fl" {
 lump "cable_fr" {
   on   = plate.arm_fr
   at   = ["42 mm", "-45.1 mm"]
-  mass = "2.2 g"
+  mass = "1.6 g"
   size = ["8 mm", "8 mm", "3 mm"]
   pad  = ["7 mm", "7 mm"]
 }
@@ -275,7 +275,7 @@ lump "cable_fr" {
 lump "cable_rl" {
   on   = plate.arm_rl
   at   = ["-42 mm", "45.1 mm"]
-  mass = "2.2 g"
+  mass = "1.6 g"
   size = ["8 mm", "8 mm", "3 mm"]
   pad  = ["7 mm", "7 mm"]
 }
@@ -283,7 +283,7 @@ lump "cable_rl" {
 lump "cable_rr" {
   on   = plate.arm_rr
   at   = ["-42 mm", "-45.1 mm"]
-  mass = "2.2 g"
+  mass = "1.6 g"
   size = ["8 mm", "8 mm", "3 mm"]
   pad  = ["7 mm", "7 mm"]
 }
@@ -297,7 +297,7 @@ gyro "stack" {
   grommets {
     places      = [["62 mm", "10 mm"], ["62 mm", "-10 mm"], ["42 mm", "10 mm"], ["42 mm", "-10 mm"]]
     height      = "6 mm"
-    stiffness   = ["27 N/mm", "27 N/mm", "40 N/mm"]
+    stiffness   = ["31 N/mm", "31 N/mm", "45 N/mm"]
     loss_factor = 0.20
     pad         = "6.5 mm"
   }

@@ -17,6 +17,11 @@ const (
 	noise      = 0.006  // deg/s/√Hz, one-sided
 	leastBit   = 1.0 / 32.8
 	speedEvery = 20 // samples between new rotor speeds
+
+	// The current ripple behind the torque ripple also reaches the sensor
+	// through its supply: deg/s about z before the low-pass, from one rotor.
+	pickup      = 4.0
+	pickupRotor = 1
 )
 
 // butterworth is a second-order low-pass by the bilinear transform.
@@ -85,7 +90,13 @@ func record(w io.Writer, pl *plant, src *sources) error {
 			for i, g := range gains[d] {
 				sum += g * x[pl.n+i]
 			}
-			rate[d] = filters[d].step(sum * 180 / math.Pi)
+			rate[d] = sum * 180 / math.Pi
+		}
+		r := src.rotors[pickupRotor]
+		ratio := r.speed / r.hover
+		rate[2] += pickup * ratio * ratio * math.Sin(rippleOrder*r.angle)
+		for d := range rate {
+			rate[d] = filters[d].step(rate[d])
 		}
 		if k%every != 0 {
 			continue

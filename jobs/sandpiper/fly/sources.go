@@ -18,8 +18,8 @@ const (
 // Source strengths at hover; broadband and periodic forces scale with the
 // square of speed.
 const (
-	forceDensity  = 4e-4 // N²/Hz one-sided, each direction, each rotor, white to the simulation's Nyquist frequency
-	momentDensity = 4e-9 // (N·m)²/Hz
+	forceDensity  = 3e-6 // N²/Hz one-sided, each direction, each rotor, white to the simulation's Nyquist frequency
+	momentDensity = 2e-9 // (N·m)²/Hz
 	bladeThrust   = 0.05 // N peak at blade passing
 	bladeSide     = 0.02 // N peak
 	torqueRipple  = 4e-3 // N·m peak at order rippleOrder
