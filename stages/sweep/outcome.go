@@ -97,7 +97,7 @@ func peakTable(r *kinds.Response) stage.Section {
 	for _, p := range r.Peaks {
 		s.Rows = append(s.Rows, []string{
 			p.Axis, fmt.Sprintf("%.1f", p.Frequency), fmt.Sprintf("%.3g", p.Density/degree/degree), fmt.Sprintf("%.1f", 10*math.Log10(p.Prominence)),
-			percent(p.Damping, "%.2f"), Makers(p), fmt.Sprintf("%s %s, %.0f %%", p.Rotor, kinds.ComponentNames[p.Component], 100*p.ComponentShare), losers(p),
+			percent(p.Damping, "%.2f"), makers(p), fmt.Sprintf("%s %s, %.0f %%", p.Rotor, kinds.ComponentNames[p.Component], 100*p.ComponentShare), losers(p),
 		})
 	}
 	return s
@@ -110,8 +110,8 @@ func percent(x float64, format string) string {
 	return fmt.Sprintf(format, 100*x)
 }
 
-// Makers puts the makers of a peak in words: "mode 3 91 %, mode 4 −6 %".
-func Makers(p kinds.ResponsePeak) string {
+// makers puts the makers of a peak in words: "mode 3 91 %, mode 4 −6 %".
+func makers(p kinds.ResponsePeak) string {
 	var parts []string
 	add := func(name string, share float64) {
 		parts = append(parts, fmt.Sprintf("%s %s %%", name, strings.Replace(fmt.Sprintf("%.0f", 100*share), "-", "−", 1)))

@@ -72,8 +72,6 @@ func allElastic(n int) []modal.VectorKind {
 	return kinds
 }
 
-var ratios = []float64{0.2, 0.5, 0.9, 1, 1.1, 2, 5}
-
 func oscillator(m, k, zeta, eta float64) (chain, float64) {
 	omega := math.Sqrt(k / m)
 	c := chain{kinds: allElastic(1), frequency: []float64{omega / (2 * math.Pi)}, shape: [][]float64{{1 / math.Sqrt(m)}}}

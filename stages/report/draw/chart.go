@@ -123,8 +123,8 @@ func (ch *Chart) grid(c *canvas, f frame) {
 		c.line(left, y, chartWidth-right, y, "grid")
 		c.text(left-8, y+4, "tick", "end", power(d))
 	}
-	step := Step(f.to-f.from, 9)
-	for x := math.Ceil(f.from/step-1e-9) * step; x <= f.to+1e-9*step; x += step {
+	width := step(f.to-f.from, 9)
+	for x := math.Ceil(f.from/width-1e-9) * width; x <= f.to+1e-9*width; x += width {
 		c.line(f.x(x), end, f.x(x), end+5, "axis")
 		c.text(f.x(x), end+19, "tick", "middle", fmt.Sprintf("%g", math.Round(x*1e6)/1e6))
 	}
@@ -149,8 +149,8 @@ func power(d int) string {
 	return "10" + raised.Replace(fmt.Sprint(d))
 }
 
-// Step gives a round step that divides a span into at most n parts.
-func Step(span float64, n int) float64 {
+// step gives a round step that divides a span into at most n parts.
+func step(span float64, n int) float64 {
 	least := span / float64(n)
 	unit := math.Pow(10, math.Floor(math.Log10(least)))
 	for _, m := range []float64{1, 2, 5} {

@@ -106,8 +106,8 @@ func TestStep(t *testing.T) {
 		n    int
 		want float64
 	}{{400, 9, 50}, {720, 9, 100}, {100, 10, 10}, {90, 9, 10}, {0.7, 9, 0.1}} {
-		if got := Step(c.span, c.n); math.Abs(got-c.want) > 1e-12 {
-			t.Errorf("Step(%g, %d) = %g, want %g", c.span, c.n, got, c.want)
+		if got := step(c.span, c.n); math.Abs(got-c.want) > 1e-12 {
+			t.Errorf("step(%g, %d) = %g, want %g", c.span, c.n, got, c.want)
 		}
 	}
 }
