@@ -3,7 +3,6 @@ package importgeom
 
 import (
 	"context"
-	"errors"
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -87,8 +86,8 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return call.Files.Read(path)
 	})
 	if err != nil {
-		if errors.Is(err, context.Canceled) || errors.Is(err, context.DeadlineExceeded) {
-			return nil, fault.From(ctx.Err())
+		if stopped := ctx.Err(); stopped != nil {
+			return nil, fault.From(stopped)
 		}
 		return nil, err
 	}

@@ -122,7 +122,7 @@ func choose(c *cut, pl *airframefile.Plate) (*loops.Outline, *fault.Error) {
 		return nil, fault.New(fault.Input, "an outline crosses or touches itself or another one at %s: %s%s", place(t.At), strings.Join(t.Sources, ", "), more).
 			Do("mend the drawing there, or name the layer with the outline alone")
 	}
-	if f := gap(r, pl); f != nil {
+	if f := OpenOutline(r, pl.Tolerance.Or(DefaultTolerance)); f != nil {
 		return nil, f
 	}
 	if pl.Pick != nil {
@@ -151,23 +151,24 @@ func choose(c *cut, pl *airframefile.Plate) (*loops.Outline, *fault.Error) {
 		return &top[0], nil
 	}
 	return nil, fault.New(fault.Input, "there are %d separate outlines: %s", len(top), list(top)).
-		Do(`choose one by a point inside it, as in pick = ["%.4g mm", "%.4g mm"], or by its layer`, inner(top[0]).X*1e3, inner(top[0]).Y*1e3)
+		Do(`choose one by a point inside it, as in pick = ["%.4g mm", "%.4g mm"], or by its layer`, Inside(top[0].Region).X*1e3, Inside(top[0].Region).Y*1e3)
 }
 
-// inner gives a place inside an outline, for a hint.
-func inner(o loops.Outline) outline.Point {
-	box := o.Region.Bounds()
+// Inside gives a place well inside a region: the centre of its box if that is material, else the first hit of ever finer
+// grids over the box.
+func Inside(region outline.Region) outline.Point {
+	box := region.Bounds()
 	for n := 1; n < 40; n++ {
 		for i := range n {
 			for j := range n {
 				p := outline.Point{X: box.Min.X + box.Width()*(float64(i)+0.5)/float64(n), Y: box.Min.Y + box.Height()*(float64(j)+0.5)/float64(n)}
-				if o.Region.Contains(p) {
+				if region.Contains(p) {
 					return p
 				}
 			}
 		}
 	}
-	return o.Region.Outer[0].P0
+	return region.Outer[0].P0
 }
 
 // list describes outlines by size and place.
@@ -184,16 +185,16 @@ func list(all []loops.Outline) string {
 	return strings.Join(parts, "; ")
 }
 
-// gap finds an open run that was meant to be closed: one whose ends are near each other compared with its length, or
+// OpenOutline finds an open run that was meant to be closed: one whose ends are near each other for its length, or
 // one that reaches beyond every closed outline. Other runs, such as engravings, centre lines and what hangs on a closed
 // outline, do no harm.
-func gap(r loops.Result, pl *airframefile.Plate) *fault.Error {
+func OpenOutline(r loops.Result, tolerance float64) *fault.Error {
 	box := outline.EmptyBox()
 	for _, o := range r.Outlines {
 		box = box.Union(o.Region.Bounds())
 	}
 	for _, c := range r.Open {
-		if c.Length <= 2*pl.Tolerance.Or(DefaultTolerance) || c.Attached {
+		if c.Length <= 2*tolerance || c.Attached {
 			continue
 		}
 		apart, other := c.From.Distance(c.To), c.To
@@ -207,7 +208,10 @@ func gap(r loops.Result, pl *airframefile.Plate) *fault.Error {
 		if math.IsInf(apart, 0) || apart == 0 {
 			f = fault.New(fault.Input, "an outline is open: %s ends at %s", c.FromPiece, place(c.From))
 		}
-		return f.Do(`close it in the drawing, or, if that is meant to be one point, give tolerance = "%.2g mm"`, math.Ceil(apart*1.05e5)/100)
+		if apart > 0 && apart < 1e-3 {
+			return f.Do(`close it in the drawing, or, if that is meant to be one point, give tolerance = "%.2g mm"`, math.Ceil(apart*1.05e5)/100)
+		}
+		return f.Do("close it in the drawing, or name the layer with the outline alone")
 	}
 	return nil
 }

@@ -187,8 +187,7 @@ func (b *builder) seat(r *airframefile.Rotor, plate int) (outline.Point, pattern
 	return outline.Point{}, pattern{}, r.Fault("on", "plate %q has %d hole patterns where a motor might stand", r.On, len(all)).Do("give at; the patterns are centred at %s", list)
 }
 
-// patterns finds sets of four equal holes, two pairs with one midpoint on lines that cross at 45 to 135 degrees, among
-// the holes that no bolt or standoff uses.
+// patterns finds motor hole patterns among the holes of a plate that no bolt or standoff uses.
 func (b *builder) patterns(plate int) []pattern {
 	var free []hole
 	for _, h := range b.holes {
@@ -196,6 +195,33 @@ func (b *builder) patterns(plate int) []pattern {
 			free = append(free, h)
 		}
 	}
+	return findPatterns(free, b.plates[plate].region)
+}
+
+// MotorPlaces gives the centres of the motor hole patterns of a plate by itself, those with a hole for the shaft if
+// there are any.
+func MotorPlaces(region outline.Region) []outline.Point {
+	var holes []hole
+	for _, l := range region.Holes {
+		if c, r, ok := outline.CircleOf(l); ok && r >= 1e-3 && r <= 2.75e-3 {
+			holes = append(holes, hole{centre: c, radius: r})
+		}
+	}
+	var all, shafts []outline.Point
+	for _, p := range findPatterns(holes, region) {
+		all = append(all, p.centre)
+		if p.shaft {
+			shafts = append(shafts, p.centre)
+		}
+	}
+	if len(shafts) > 0 {
+		return shafts
+	}
+	return all
+}
+
+// findPatterns finds sets of four equal holes: two pairs with one midpoint on lines that cross at 45 to 135 degrees.
+func findPatterns(free []hole, region outline.Region) []pattern {
 	type pair struct {
 		mid, span outline.Point
 		radius    float64
@@ -227,7 +253,7 @@ func (b *builder) patterns(plate int) []pattern {
 				}
 			}
 			if !known {
-				for _, l := range b.plates[plate].region.Holes {
+				for _, l := range region.Holes {
 					if m, _, ok := outline.CircleOf(l); ok && m.Distance(c.centre) <= 2*patternMidpoint {
 						c.shaft = true
 					}
