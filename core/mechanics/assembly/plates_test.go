@@ -168,7 +168,7 @@ func TestRectangles(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		const along = 16
+		const along = 12
 		across := int(math.Round(along * c.B / c.A))
 		if c.B > c.A {
 			across = along
@@ -177,7 +177,7 @@ func TestRectangles(t *testing.T) {
 		p.everywhere("xyZ")
 		p.edges(t, c.Edges)
 		unit := c.A * c.A * math.Sqrt(section.Mass/section.D[0][0])
-		slack := 0.35
+		slack := 0.6
 		if dimensional {
 			unit = 1 / (2 * math.Pi)
 			if c.Theory == "Kirchhoff" {
@@ -350,14 +350,14 @@ func TestLaminates(t *testing.T) {
 			}
 			section.Rotary = 0
 		}
-		across := max(6, int(math.Round(18*c.B/c.A)))
+		across := max(6, int(math.Round(14*c.B/c.A)))
 		ys := known.Even(0, c.B, across)
 		if c.B < 4*section.Thickness { // an arm: graded to its free edges
 			for j, y := range ys {
 				ys[j] = c.B / 2 * (1 + math.Sin(math.Pi*(y/c.B-0.5)))
 			}
 		}
-		p := newPlate(known.Lattice(known.Even(0, c.A, 18), ys, 0), kind, section)
+		p := newPlate(known.Lattice(known.Even(0, c.A, 14), ys, 0), kind, section)
 		rigid := 0
 		if ortho {
 			p.everywhere("xyZ")
@@ -365,7 +365,7 @@ func TestLaminates(t *testing.T) {
 			rigid = 2 * free(c.Edges)
 		}
 		p.edges(t, c.Edges)
-		row.Check(t, 0.7, scaled(elastic(t, &p.Problem, len(row.Values), rigid), 1/(2*math.Pi))...)
+		row.Check(t, 0.85, scaled(elastic(t, &p.Problem, len(row.Values), rigid), 1/(2*math.Pi))...)
 	}
 }
 

@@ -51,7 +51,7 @@ func TestConvergence(t *testing.T) {
 		falls     []float64 // least ratio of successive errors
 	}{
 		{quadratic, "B-THICK-CCCC-h0.1-b1", `"CCCC"`, 0.1, []int{4, 8, 16}, []float64{11, 11}},
-		{quadratic, "B-THICK-FFFF-h0.1-b1", `"FFFF"`, 0.1, []int{8, 16, 32}, []float64{6, 11}},
+		{quadratic, "B-THICK-FFFF-h0.1-b1", `"FFFF"`, 0.1, []int{6, 12, 24}, []float64{4, 9}},
 		{linear, "B-THIN-CCCC-1x1", `"CCCC"`, 0.001, []int{10, 20, 40}, []float64{3.8, 3.8}},
 		{linear, "B-THICK-FFFF-h0.1-b1", `"FFFF"`, 0.1, []int{20, 40}, []float64{3}},
 	} {
