@@ -49,8 +49,8 @@ type Result struct {
 
 // Status tells how the search ended.
 type Status struct {
-	// Converged says that every returned pair met the tolerance and that there are as many as were asked for (or that
-	// there are no more).
+	// Converged says that every returned pair met the tolerance, that there are as many as were asked for (or no more
+	// exist), and that no count tells of missing ones.
 	Converged bool
 	// Proved says that the inertia count at CountShift was made, is trustworthy, and equals Found.
 	Proved bool
@@ -109,10 +109,11 @@ func (e *SingularError) Unwrap() error { return e.Cause }
 // RigidError says that a vector given as a null vector of K is none.
 type RigidError struct {
 	Vector, Unknown int
-	// Ratio is |K·r| at the unknown over the sum of the magnitudes of its terms.
+	// Ratio is |K·r| at the unknown over the largest sum of the magnitudes of the terms of any row, both divided by the
+	// root of the diagonal of their row.
 	Ratio float64
 }
 
 func (e *RigidError) Error() string {
-	return fmt.Sprintf("eigen: Rigid[%d] is not a null vector of K: at unknown %d, %.2g of the terms is left", e.Vector, e.Unknown, e.Ratio)
+	return fmt.Sprintf("eigen: Rigid[%d] is not a null vector of K: at unknown %d, %.2g of the largest terms is left", e.Vector, e.Unknown, e.Ratio)
 }

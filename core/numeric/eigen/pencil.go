@@ -4,7 +4,6 @@ import (
 	"context"
 	"errors"
 	"math"
-	"slices"
 	"time"
 
 	"hushframe/core/numeric/dense"
@@ -13,6 +12,7 @@ import (
 
 // pencil holds the two matrices and the factorisation that make the operator A⁻¹M.
 type pencil struct {
+	ctx      context.Context
 	k, m     *sparse.Symmetric
 	analysis *sparse.Analysis
 	factor   *sparse.Factor
@@ -26,7 +26,7 @@ func (p *pencil) order() int { return p.k.N }
 // factorise returns the factorisation of K-sM.
 func (p *pencil) factorise(s float64) (*sparse.Factor, error) {
 	began := time.Now()
-	f, err := p.analysis.Factorise(sparse.Combine(1, p.k, -s, p.m), p.threads)
+	f, err := p.analysis.Factorise(p.ctx, sparse.Combine(1, p.k, -s, p.m), p.threads)
 	p.stats.Factorisations++
 	p.stats.FactorSeconds += time.Since(began).Seconds()
 	return f, err
@@ -106,8 +106,7 @@ func (p *pencil) scale() float64 {
 }
 
 // count returns the number of eigenvalues below s, and whether the factorisation it comes from is good enough to be
-// believed: no pivot of doubtful sign, and a solve that gives back a known vector, so that the eigenvalues near s are
-// moved by much less than their distance from s.
+// believed: no pivot of doubtful sign, and a solve that gives back a known vector.
 func (p *pencil) count(s float64) (int, bool, error) {
 	f, err := p.factorise(s)
 	if err != nil {
@@ -118,11 +117,24 @@ func (p *pencil) count(s float64) (int, bool, error) {
 		return 0, false, err
 	}
 	neg, zero, _ := f.Inertia()
+	return neg, zero == 0 && p.solveError(f, s) <= 1e-3, nil
+}
+
+// solveError is the relative error with which a factorisation of K-sM gives back a random vector, each component
+// weighed by the root of the diagonal so that its unit does not matter. The part of the error along an eigenvector near
+// s is the shift of its eigenvalue by rounding over its distance from s.
+func (p *pencil) solveError(f *sparse.Factor, s float64) float64 {
 	n := p.order()
-	x, y := make([]float64, n), make([]float64, n)
+	x, y, z := make([]float64, n), make([]float64, n), make([]float64, n)
 	fillRandom(x, 0x5eed)
+	weight := p.k.Diagonal()
+	for i, m := range p.m.Diagonal() {
+		if weight[i] += math.Abs(s) * m; weight[i] == 0 {
+			weight[i] = 1
+		}
+		x[i] /= math.Sqrt(weight[i])
+	}
 	p.k.MulVec(y, x)
-	z := make([]float64, n)
 	p.m.MulVec(z, x)
 	for i := range y {
 		y[i] -= s * z[i]
@@ -130,10 +142,10 @@ func (p *pencil) count(s float64) (int, bool, error) {
 	f.Solve(y, 1)
 	wrong, size := 0.0, 0.0
 	for i := range x {
-		wrong += (x[i] - y[i]) * (x[i] - y[i])
-		size += x[i] * x[i]
+		wrong += (x[i] - y[i]) * (x[i] - y[i]) * weight[i]
+		size += x[i] * x[i] * weight[i]
 	}
-	return neg, zero == 0 && wrong <= 1e-6*size, nil
+	return math.Sqrt(wrong / size)
 }
 
 // fillRandom fills with uniform numbers in (-1, 1) from a fixed generator (splitmix64; G. Steele, D. Lea, C. Flood, Fast
@@ -149,7 +161,7 @@ func fillRandom(x []float64, seed uint64) {
 	}
 }
 
-// normalise fixes the sign of a vector.
+// fixSign makes the component of largest magnitude, the first of equals, positive.
 func fixSign(x []float64) {
 	at := 0
 	for i, v := range x {
@@ -162,30 +174,4 @@ func fixSign(x []float64) {
 			x[i] = -x[i]
 		}
 	}
-}
-
-// cancelled wraps the cause of a cancelled context.
-func cancelled(ctx context.Context) error {
-	if ctx.Err() == nil {
-		return nil
-	}
-	return context.Cause(ctx)
-}
-
-// byRisingValue returns the indices that sort values upwards, ties by index.
-func byRisingValue(values []float64) []int {
-	order := make([]int, len(values))
-	for i := range order {
-		order[i] = i
-	}
-	slices.SortStableFunc(order, func(a, b int) int {
-		switch {
-		case values[a] < values[b]:
-			return -1
-		case values[a] > values[b]:
-			return 1
-		}
-		return 0
-	})
-	return order
 }

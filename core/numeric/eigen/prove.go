@@ -1,148 +1,228 @@
 package eigen
 
 import (
+	"fmt"
 	"math"
+	"slices"
 )
-
-// found are eigenpairs by rising λ.
-type found struct {
-	values, residuals []float64
-	x                 []float64
-	rigid             []bool
-}
 
 // searchAll searches, compares with the count, and searches again in the complement while some are missing.
 func (s *solver) searchAll() error {
-	p, opt, st := s.p, s.opt, &s.res.Status
-	n := p.order()
+	opt, st := s.opt, &s.res.Status
 	block := opt.Block
-	var f *found
-	for attempt := range maxAttempts {
-		st.Attempts = attempt + 1
-		room := min(n, max(2*s.need+2*block, 4*block, 40)) + block
-		s.current = newSearch(p, s.locked, s.theta, block, room, uint64(attempt+1), opt, st)
-		reached, err := s.current.run(s.ctx, s.enough, maxSteps)
+	adaptable := opt.Shift == 0 && opt.Limit == 0
+	for {
+		st.Attempts++
+		q := s.newSearch(block)
+		if adaptable {
+			for range 3 {
+				if _, err := q.run(s.ctx, s.enough, 3); err != nil {
+					return err
+				}
+				moved, err := s.adapt(q)
+				if err != nil {
+					return err
+				}
+				if !moved {
+					break
+				}
+				q = s.newSearch(block)
+			}
+			adaptable = false
+		}
+		reached, err := q.run(s.ctx, s.enough, maxSteps)
 		if err != nil {
 			return err
 		}
-		leading := s.current.leading()
-		if !reached && !st.Exhausted {
-			st.note("after %d steps only %d of %d pairs have converged", st.Steps, leading, s.need)
+		st.Exhausted = q.exhausted
+		if !reached && !q.exhausted {
+			st.note("after %d steps only %d of %d pairs have converged", st.Steps, q.leading(), s.need)
 		}
-		x, theta := s.current.take(leading)
-		s.current = nil
-		f = s.finish(x, theta)
+		s.known = s.finish(q)
+		if err := s.checkSigns(); err != nil {
+			return err
+		}
 		s.progress(0.9)
-		again, err := s.prove(f, reached)
+		again, err := s.prove(reached || q.exhausted)
 		if err != nil {
 			return err
 		}
 		if !again {
 			break
 		}
-		block *= 2
-		s.locked, s.theta = f.x, make([]float64, len(f.values))
-		for k, v := range f.values {
-			s.theta[k] = 1 / (v - p.shift)
-		}
-		st.Exhausted = false
+		// A block as wide as what is missing can hold every copy of a repeated value.
+		block = max(2*block, min(st.Counted-st.Found, 64))
 	}
-	s.deliver(f)
+	s.deliver()
 	s.progress(1)
 	return nil
 }
 
+func (s *solver) newSearch(block int) *search {
+	room := min(s.p.order(), max(3*s.need+2*block, 4*block, 40)) + block
+	return newSearch(s.p, s.known, block, room, uint64(s.res.Status.Attempts), s.opt.Tol, &s.res.Status)
+}
+
 // enough says whether a search may stop.
 func (s *solver) enough(q *search) bool {
-	leading := q.leading()
-	if s.need > 0 {
-		s.progress(0.4 + 0.5*math.Min(1, float64(leading)/float64(s.need)))
+	if s.res.Status.Attempts > 1 {
+		return s.mended(q)
 	}
+	leading := q.leading()
+	s.progress(0.4 + 0.5*math.Min(1, float64(leading)/float64(max(1, s.need))))
 	if leading < s.need {
 		return false
 	}
 	if s.opt.Limit > 0 && s.below < 0 {
 		// Without a count beforehand, one pair above the limit tells that all below it have come.
-		return leading > 0 && s.p.shift+1/q.pairs[leading-1].theta > s.opt.Limit
+		return leading > 0 && q.value(leading-1) > s.opt.Limit
 	}
 	return true
 }
 
-// finish multiplies candidates by the operator once more, which tells their residuals and frees them from null vectors
-// of M, and makes them orthonormal again from the lowest λ up.
-func (s *solver) finish(x, theta []float64) *found {
-	p := s.p
-	n, count := p.order(), len(theta)
-	f := &found{values: make([]float64, count), residuals: make([]float64, count), x: x}
-	mx, y, my := make([]float64, count*n), make([]float64, count*n), make([]float64, count*n)
-	p.mass(mx, x, count)
-	copy(y, mx)
-	p.solve(y, count)
-	p.mass(my, y, count)
-	before := make([]float64, count)
-	for k := range count {
-		xk, mk, yk, zk := x[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n]
-		// The Rayleigh quotient of the operator is right to the square of the error of the vector.
-		t := inner(yk, mk) / inner(xk, mk)
-		sum := 0.0
-		for i := range yk {
-			sum += (yk[i] - t*xk[i]) * (zk[i] - t*mk[i])
+// mended says whether a search in the complement of what is known has brought all it can below the shift of the count: it
+// has a pair above, and all before that have converged.
+func (s *solver) mended(q *search) bool {
+	for k, pair := range q.pairs {
+		switch {
+		case pair.locked:
+		case !q.converged(pair):
+			return false
+		case q.value(k) > s.res.Status.CountShift:
+			return true
 		}
-		f.values[k], f.residuals[k] = p.shift+1/t, math.Sqrt(max(0, sum))/t
-		for i := range yk {
-			yk[i] /= t
-			zk[i] /= t
-		}
-		before[k] = norm(yk, zk)
 	}
-	keep, _, _ := gramSchmidt(y, my, count, n, before)
-	if len(keep) < count {
-		panic("eigen: converged vectors are dependent")
-	}
-	f.x = y
-	order := byRisingValue(f.values)
-	sorted := &found{x: make([]float64, count*n)}
-	for at, k := range order {
-		sorted.values = append(sorted.values, f.values[k])
-		sorted.residuals = append(sorted.residuals, f.residuals[k])
-		copy(sorted.x[at*n:][:n], f.x[k*n:][:n])
-	}
-	return sorted
+	return false
 }
 
-// prove counts at a shift in a gap and says whether a further search is due.
-func (s *solver) prove(f *found, reached bool) (again bool, err error) {
-	p, st := s.p, &s.res.Status
+// finish multiplies the converged pairs by the operator once more, which tells their residuals and frees them from null
+// vectors of M, and makes them orthonormal again from the lowest λ up.
+func (s *solver) finish(q *search) *pairs {
+	const chunk = 16
+	p := s.p
+	n, count := p.order(), q.leading()
+	rigid := make([]bool, count)
+	for k := range count {
+		rigid[k] = q.pairs[k].locked && s.known.rigid[q.pairs[k].at]
+	}
+	x := q.take(count)
+	q.b = nil // its memory is needed
+	out := &pairs{}
+	b := newBasis(p, count)
+	mx, y, my := make([]float64, chunk*n), make([]float64, chunk*n), make([]float64, chunk*n)
+	for from := 0; from < count; from += chunk {
+		size := min(chunk, count-from)
+		part := x[from*n:][:size*n]
+		p.mass(mx, part, size)
+		copy(y, mx[:size*n])
+		p.solve(y, size)
+		p.mass(my, y, size)
+		for k := range size {
+			xk, mk, yk, zk := part[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n]
+			// The Rayleigh quotient of the operator is right to the square of the error of the vector.
+			theta := inner(yk, mk) / inner(xk, mk)
+			sum := 0.0
+			for i := range yk {
+				sum += (yk[i] - theta*xk[i]) * (zk[i] - theta*mk[i])
+				yk[i] /= theta
+			}
+			if c, _, _ := b.append(yk, 1); c == 0 {
+				s.res.Status.note("a vector for %.6g depended on others and was dropped", p.shift+1/theta)
+				continue
+			}
+			value := p.shift + 1/theta
+			if rigid[from+k] {
+				value = 0
+			}
+			out.values = append(out.values, value)
+			out.residuals = append(out.residuals, math.Sqrt(max(0, sum))/theta)
+			out.rigid = append(out.rigid, rigid[from+k])
+		}
+	}
+	out.x = b.vectors()
+	return out.sorted(n)
+}
+
+// sorted returns the pairs by rising λ.
+func (f *pairs) sorted(n int) *pairs {
+	order := make([]int, len(f.values))
+	for i := range order {
+		order[i] = i
+	}
+	slices.SortStableFunc(order, func(a, b int) int {
+		switch {
+		case f.values[a] < f.values[b]:
+			return -1
+		case f.values[a] > f.values[b]:
+			return 1
+		}
+		return 0
+	})
+	if slices.IsSorted(order) {
+		return f
+	}
+	out := &pairs{x: make([]float64, len(f.x))}
+	for at, k := range order {
+		out.values = append(out.values, f.values[k])
+		out.residuals = append(out.residuals, f.residuals[k])
+		out.rigid = append(out.rigid, f.rigid[k])
+		copy(out.x[at*n:][:n], f.x[k*n:][:n])
+	}
+	return out
+}
+
+// checkSigns refuses a K with a negative eigenvalue that rounding cannot explain.
+func (s *solver) checkSigns() error {
+	n := s.p.order()
+	for k, v := range s.known.values {
+		if v >= -1e-12*s.p.scale() {
+			break
+		}
+		at := 0
+		x := s.known.x[k*n:][:n]
+		for i := range x {
+			if math.Abs(x[i]) > math.Abs(x[at]) {
+				at = i
+			}
+		}
+		return &IndefiniteError{Matrix: "K", Unknown: at, Detail: fmt.Sprintf("the pencil has the eigenvalue %.6g", v)}
+	}
+	return nil
+}
+
+// prove counts eigenvalues below a shift in a gap and says whether a further search is due.
+func (s *solver) prove(complete bool) (again bool, err error) {
+	p, st, values := s.p, &s.res.Status, s.known.values
 	st.Proved = false
-	shift, below, ok := s.gap(f)
+	shift, ok := s.gap()
 	if !ok {
-		st.note("no gap above the wanted values in which to count")
+		st.note("nothing was found to count below")
 		return false, nil
 	}
 	for try := range 3 {
-		count, sure := s.below, s.below >= 0 && shift == s.opt.Limit*(1+1e-9)
+		count, sure := s.below, s.below >= 0 && shift == s.countAt()
 		if !sure {
 			count, sure, err = p.count(shift)
 			if err != nil {
 				return false, err
 			}
 		}
-		st.CountShift, st.Counted, st.Found = shift, count, below
+		found := countBelow(values, shift)
+		st.CountShift, st.Counted, st.Found = shift, count, found
 		if sure {
-			st.Proved = count == below
-			if count > below {
+			st.Proved = count == found
+			if count > found && complete && st.Attempts < maxAttempts {
 				s.need = max(s.need, count+1)
-				st.note("%d of %d values below %.6g were missing: searched again", count-below, count, shift)
-				return reached || st.Exhausted, nil
+				st.note("%d of %d eigenvalues below %.6g were missing: searched again", count-found, count, shift)
+				return true, nil
 			}
-			if count < below {
-				st.note("%d values found below %.6g but %d counted", below, shift, count)
+			if count != found {
+				st.note("%d eigenvalues found below %.6g but %d counted", found, shift, count)
 			}
 			return false, nil
 		}
-		st.note("the count at %.6g cannot be trusted", shift)
-		shift = shift * (1 + 1e-4*float64(try+1))
-		below = countBelow(f.values, shift)
+		st.note("the count at %.6g cannot be trusted: moved", shift)
+		shift *= 1 + 1e-4*float64(try+1)
 	}
 	return false, nil
 }
@@ -157,41 +237,35 @@ func countBelow(values []float64, s float64) int {
 	return c
 }
 
-// gap returns a shift for the count, above all wanted values and away from every value found, and how many found are
-// below it.
-func (s *solver) gap(f *found) (shift float64, below int, ok bool) {
-	const least = 1e-5
-	n := len(f.values)
-	if s.below >= 0 && s.opt.Modes <= s.below {
-		shift = s.opt.Limit * (1 + 1e-9)
-		clear := true
-		for _, v := range f.values {
-			clear = clear && math.Abs(v-shift) > least*shift
-		}
-		if clear {
-			return shift, countBelow(f.values, shift), true
-		}
-	}
-	wanted := s.wanted(f)
-	for k := max(wanted, 1); k < n; k++ {
-		lo, hi := f.values[k-1], f.values[k]
-		if hi-lo > least*math.Abs(hi) && hi > 0 {
-			return (lo + hi) / 2, k, true
+// gap returns a shift for the count: above all wanted values and away from every value found.
+func (s *solver) gap() (shift float64, ok bool) {
+	const least = 1e-5 // relative width of a gap worth counting in
+	values := s.known.values
+	n := len(values)
+	if s.below >= s.opt.Modes {
+		at := s.countAt()
+		if !slices.ContainsFunc(values, func(v float64) bool { return math.Abs(v-at) <= least*at }) {
+			return at, true
 		}
 	}
 	if n == 0 {
-		return 0, 0, false
+		return 0, false
 	}
-	// Nothing found above: all there are, or as far as the search got.
-	last := f.values[n-1]
-	return last + max(1e-3*math.Abs(last), -1e-3*s.p.shift), n, true
+	for k := max(s.wanted(), 1); k < n; k++ {
+		if lo, hi := values[k-1], values[k]; hi > 0 && hi-lo > least*hi {
+			return (lo + hi) / 2, true
+		}
+	}
+	// Nothing was found above: all that exist, or as far as the search got.
+	return values[n-1] + 1e-3*math.Abs(values[n-1]-s.p.shift), true
 }
 
-// wanted is how many of the values found were asked for.
-func (s *solver) wanted(f *found) int {
-	w := min(s.opt.Modes, len(f.values))
+// wanted is how many of the known pairs were asked for.
+func (s *solver) wanted() int {
+	values := s.known.values
+	w := min(s.opt.Modes, len(values))
 	if s.opt.Limit > 0 {
-		for w < len(f.values) && f.values[w] <= s.opt.Limit {
+		for w < len(values) && values[w] <= s.opt.Limit {
 			w++
 		}
 	}
@@ -199,23 +273,28 @@ func (s *solver) wanted(f *found) int {
 }
 
 // deliver fills in the result.
-func (s *solver) deliver(f *found) {
-	p, st, res := s.p, &s.res.Status, s.res
-	n := p.order()
-	w := s.wanted(f)
+func (s *solver) deliver() {
+	p, st, res, f := s.p, &s.res.Status, s.res, s.known
+	n, w := p.order(), s.wanted()
 	res.Shift, res.Factor = p.shift, p.factor
-	res.Values, res.Residuals = f.values[:w], f.residuals[:w]
+	res.Values, res.Residuals = f.values[:w:w], f.residuals[:w:w]
 	for k := range w {
 		x := f.x[k*n:][:n:n]
 		fixSign(x)
 		res.Vectors = append(res.Vectors, x)
 	}
-	for k := range s.rigid {
-		res.Values[k] = 0
+	missing := st.Counted > st.Found
+	st.Exhausted = st.Exhausted && !missing
+	st.Converged = !missing && (st.Exhausted || len(f.values) >= s.opt.Modes &&
+		(s.opt.Limit == 0 || st.Proved || len(f.values) > 0 && f.values[len(f.values)-1] > s.opt.Limit))
+	if st.Exhausted && w < s.opt.Modes {
+		st.note("the pencil has only %d finite eigenvalues", len(f.values))
 	}
-	enough := len(f.values) >= s.opt.Modes || st.Exhausted
-	if s.opt.Limit > 0 && !st.Exhausted {
-		enough = enough && (st.Proved || len(f.values) > 0 && f.values[len(f.values)-1] > s.opt.Limit)
+	worst := 0.0
+	for _, r := range res.Residuals {
+		worst = max(worst, r)
 	}
-	st.Converged = enough
+	if worst > 100*s.opt.Tol {
+		st.note("rounding leaves a residual of %.2g", worst)
+	}
 }

@@ -1,8 +1,10 @@
 package eigen
 
 import (
+	"cmp"
 	"context"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -17,11 +19,11 @@ type pair struct {
 	locked   bool
 }
 
-// search is a block Lanczos process in the complement of locked vectors, which come first in the basis.
+// search is a block Lanczos process in the complement of known pairs, whose vectors come first in the basis.
 type search struct {
 	p      *pencil
 	b      *basis
-	locked []float64 // θ of the locked vectors
+	locked []float64 // θ of the known pairs
 	tol    float64
 	block  int
 	room   int // most vectors beyond the locked ones
@@ -30,20 +32,25 @@ type search struct {
 
 	h          []float64 // operator on the vectors beyond the locked ones, upper triangle, room by room
 	start, end int       // last block, counted without the locked ones
-	pairs      []pair    // of all vectors but the last block just appended, by falling θ
+	pairs      []pair    // of all vectors but the block just appended, by falling θ
 	rotation   *mat.Dense
-	negative   *IndefiniteError
+	exhausted  bool // nothing is left outside the basis
 }
 
-// newSearch prepares a search with locked vectors (M-orthonormal, stored one after another) kept out.
-func newSearch(p *pencil, locked []float64, theta []float64, block, room int, seed uint64, opt *Options, st *Status) *search {
-	s := &search{p: p, locked: theta, tol: opt.Tol, block: block, room: room, seed: seed, status: st}
-	s.b = newBasis(p, len(theta)+room)
-	copy(s.b.v, locked)
-	s.b.count = len(theta)
+func newSearch(p *pencil, known *pairs, block, room int, seed uint64, tol float64, st *Status) *search {
+	s := &search{p: p, tol: tol, block: block, room: room, seed: seed << 32, status: st}
+	for _, v := range known.values {
+		s.locked = append(s.locked, 1/(v-p.shift))
+	}
+	s.b = newBasis(p, len(s.locked)+room)
+	copy(s.b.v, known.x)
+	s.b.count = len(s.locked)
 	s.h = make([]float64, room*room)
 	return s
 }
+
+// value is the λ of the k-th pair.
+func (s *search) value(k int) float64 { return s.p.shift + 1/s.pairs[k].theta }
 
 // begin puts a block of random vectors, multiplied by the operator, at the end of the basis. It returns false when
 // nothing is left outside the basis.
@@ -52,7 +59,7 @@ func (s *search) begin() bool {
 	count := min(s.block, s.room-s.end)
 	x, w := make([]float64, count*n), make([]float64, count*n)
 	s.seed++
-	fillRandom(x, s.seed<<32)
+	fillRandom(x, s.seed)
 	s.p.mass(w, x, count)
 	s.p.solve(w, count)
 	kept, _, _ := s.b.append(w, count)
@@ -60,35 +67,33 @@ func (s *search) begin() bool {
 	return kept > 0
 }
 
-// run iterates until enough says so of the leading pairs, or nothing is left. It returns whether enough was reached.
-func (s *search) run(ctx context.Context, enough func(s *search) bool, maxSteps int) (bool, error) {
-	if s.end == 0 && !s.begin() {
-		s.status.Exhausted = true
+// run iterates until enough says so of the leading pairs, nothing is left, or steps have been made. It returns whether
+// enough was reached.
+func (s *search) run(ctx context.Context, enough func(s *search) bool, steps int) (bool, error) {
+	if s.end == 0 && !s.exhausted {
+		s.exhausted = !s.begin()
 		s.ritz(nil, 0)
-		return enough(s), nil
 	}
-	for range maxSteps {
-		if err := cancelled(ctx); err != nil {
-			return false, err
-		}
-		exhausted := s.step()
-		if s.b.negative >= 0 {
-			return false, &IndefiniteError{Matrix: "M", Unknown: s.b.negative, Detail: "a vector has a negative square in its norm"}
-		}
+	for range steps {
 		if enough(s) {
 			return true, nil
 		}
-		if exhausted {
-			s.status.Exhausted = true
+		if s.exhausted {
 			return false, nil
 		}
+		if ctx.Err() != nil {
+			return false, context.Cause(ctx)
+		}
+		s.step()
+		if at := s.b.negative; at >= 0 {
+			return false, &IndefiniteError{Matrix: "M", Unknown: at, Detail: "a vector has a negative square in its norm"}
+		}
 	}
-	return false, nil
+	return enough(s), nil
 }
 
-// step multiplies the last block by the operator, appends what is new and finds the Ritz pairs. It returns true when
-// nothing new is left to be found.
-func (s *search) step() (exhausted bool) {
+// step multiplies the last block by the operator, appends what is new and finds the Ritz pairs.
+func (s *search) step() {
 	n, l := s.p.order(), len(s.locked)
 	count := s.end - s.start
 	w := make([]float64, count*n)
@@ -102,15 +107,13 @@ func (s *search) step() (exhausted bool) {
 		}
 	}
 	s.ritz(r, kept)
-	last := s.start
 	s.start, s.end = s.end, s.end+kept
 	if s.end+max(kept, s.block) > s.room {
-		s.restart(last, r, kept)
+		s.restart(kept)
 	}
 	if kept == 0 {
-		return !s.begin()
+		s.exhausted = !s.begin()
 	}
-	return false
 }
 
 // ritz finds the Ritz pairs of the first end vectors, the last block being start..end with coefficients r (kept by
@@ -152,7 +155,7 @@ func (s *search) ritz(r []float64, kept int) {
 			s.pairs = append(s.pairs, pair{theta: theta, residual: math.Sqrt(sum), at: k})
 		}
 	}
-	sortPairs(s.pairs)
+	slices.SortStableFunc(s.pairs, func(a, b pair) int { return cmp.Compare(b.theta, a.theta) })
 }
 
 // leading is the number of pairs from the largest θ on that have converged without a gap.
@@ -170,8 +173,9 @@ func (s *search) converged(q pair) bool {
 	return q.locked || q.theta > 0 && q.residual <= max(s.tol*q.theta, 1e-15*s.pairs[0].theta)
 }
 
-// restart replaces the vectors before the last block by the best Ritz vectors, about half of the room.
-func (s *search) restart(last int, r []float64, kept int) {
+// restart replaces the vectors before the block just appended, of kept vectors, by the best Ritz vectors, about half of
+// the room. How they are coupled with that block comes out when it is multiplied.
+func (s *search) restart(kept int) {
 	n, l := s.p.order(), len(s.locked)
 	old := s.start // vectors before the appended block
 	keep := min((s.room-s.block)*3/5, old)
@@ -220,17 +224,16 @@ func identity(n int) *mat.Dense {
 	return d
 }
 
-// take returns the vectors of the first count pairs, stored one after another, and their θ.
-func (s *search) take(count int) (x, theta []float64) {
+// take returns the vectors of the first count pairs, stored one after another.
+func (s *search) take(count int) []float64 {
 	n, l := s.p.order(), len(s.locked)
-	x = make([]float64, count*n)
+	x := make([]float64, count*n)
 	cols := 0
 	if s.rotation != nil {
 		cols, _ = s.rotation.Dims()
 	}
 	c := make([]float64, count*(l+cols))
 	for k, q := range s.pairs[:count] {
-		theta = append(theta, q.theta)
 		if q.locked {
 			c[k*(l+cols)+q.at] = 1
 			continue
@@ -240,5 +243,5 @@ func (s *search) take(count int) (x, theta []float64) {
 		}
 	}
 	dense.AddCombined(count, l+cols, n, 1, c, s.b.v, x, s.p.threads)
-	return x, theta
+	return x
 }

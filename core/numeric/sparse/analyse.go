@@ -1,6 +1,7 @@
 package sparse
 
 import (
+	"cmp"
 	"fmt"
 	"slices"
 	"time"
@@ -27,6 +28,7 @@ type Analysis struct {
 // supernode is a run of columns first..first+width-1 with common rows.
 type supernode struct {
 	first, width int32
+	steps        []int32 // of the symbolic elimination, until layOut has used them
 	rows         []int32 // positions, rising; the first width are the columns
 	parent       int32   // -1 at a root
 	children     []int32 // in the order in which their updates are added
@@ -56,89 +58,93 @@ func Analyse(p *Pattern, order Ordering) (*Analysis, error) {
 		}
 		place[u] = int32(k)
 	}
-	a := &Analysis{pattern: p, order: slices.Clone([]int32(order))}
-	lower := lowerNeighbours(p, place)
-	parent := eliminationTree(lower)
-	a.renumber(place, postorder(parent))
-	lower = lowerNeighbours(p, place)
-	parent = eliminationTree(lower)
-	counts := columnCounts(lower, parent)
-	a.nodes = mergeSupernodes(fundamentalSupernodes(parent, counts))
-	a.layOut(place)
-	a.findSources(place)
-	a.findRows()
+	a := &Analysis{pattern: p}
+	c := compress(p)
+	q := newSymbolic(&c.graph, c.inOrderOf(place))
+	a.nodes = mergeSupernodes(fundamentalSupernodes(q))
+	a.layOut(c, q)
+	a.findSources()
 	a.measure()
 	a.tasks = a.split()
 	a.Seconds = time.Since(began).Seconds()
 	return a, nil
 }
 
-// renumber applies a permutation of positions: the one at old position next[k] moves to k.
-func (a *Analysis) renumber(place, next []int32) {
-	old := slices.Clone(a.order)
+// inOrderOf returns the vertices by the place of their first unknown to be eliminated. Unknowns with the same
+// neighbourhood can be eliminated one straight after the other without any further non-zeros.
+func (c *compressed) inOrderOf(place []int32) []int32 {
+	earliest := make([]int32, c.order())
+	vertices := make([]int32, c.order())
+	for v := range vertices {
+		vertices[v] = int32(v)
+		earliest[v] = place[c.member[c.first[v]]]
+		for _, u := range c.member[c.first[v]:c.first[v+1]] {
+			earliest[v] = min(earliest[v], place[u])
+		}
+	}
+	slices.SortFunc(vertices, func(x, y int32) int { return cmp.Compare(earliest[x], earliest[y]) })
+	return vertices
+}
+
+// symbolic is what elimination in an order makes of a graph. Steps are postordered: the children of a step and all below
+// them come right before it.
+type symbolic struct {
+	g      *graph
+	vertex []int32 // vertex eliminated at each step
+	step   []int32 // step at which each vertex is eliminated
+	parent []int32 // of each step in the elimination tree, -1 at roots
+	count  []int32 // rows of the factor in the first column of each step, its own included
+}
+
+// newSymbolic finds tree and counts for an order of the vertices, which it replaces by an equivalent postorder.
+func newSymbolic(g *graph, order []int32) *symbolic {
+	q := &symbolic{g: g, vertex: order, step: make([]int32, len(order))}
+	for k, v := range order {
+		q.step[v] = int32(k)
+	}
+	q.parent = q.eliminationTree()
+	next := postorder(q.parent)
+	old := slices.Clone(order)
 	for k, from := range next {
-		a.order[k] = old[from]
-		place[old[from]] = int32(k)
+		q.vertex[k] = old[from]
+		q.step[old[from]] = int32(k)
 	}
-}
-
-// rowLists holds, for each position, a list of other positions.
-type rowLists struct {
-	ptr []int
-	idx []int32
-}
-
-func (r *rowLists) of(k int) []int32 { return r.idx[r.ptr[k]:r.ptr[k+1]] }
-
-// lowerNeighbours lists for each position its neighbours at lower positions, rising.
-func lowerNeighbours(p *Pattern, place []int32) *rowLists {
-	upper := invert(p.N, func(visit func(at, other int32)) {
-		for j := range p.N {
-			a := place[j]
-			for _, i := range p.Row[p.Ptr[j]+1 : p.Ptr[j+1]] {
-				b := place[i]
-				visit(min(a, b), max(a, b))
-			}
+	parent := make([]int32, len(order))
+	for k, from := range next {
+		parent[k] = -1
+		if up := q.parent[from]; up >= 0 {
+			parent[k] = q.step[old[up]]
 		}
-	})
-	return invert(p.N, func(visit func(at, other int32)) {
-		for k := range p.N {
-			for _, i := range upper.of(k) {
-				visit(i, int32(k))
-			}
-		}
-	})
-}
-
-// invert gathers pairs by their first member, keeping their order.
-func invert(n int, each func(visit func(at, other int32))) *rowLists {
-	r := &rowLists{ptr: make([]int, n+1)}
-	each(func(at, _ int32) { r.ptr[at+1]++ })
-	for k := range n {
-		r.ptr[k+1] += r.ptr[k]
 	}
-	r.idx = make([]int32, r.ptr[n])
-	next := slices.Clone(r.ptr[:n])
-	each(func(at, other int32) {
-		r.idx[next[at]] = other
-		next[at]++
-	})
-	return r
+	q.parent = parent
+	q.countColumns()
+	return q
 }
 
-// eliminationTree returns the parent of each position, -1 at roots, by Liu's algorithm with compressed paths.
-func eliminationTree(lower *rowLists) []int32 {
-	n := len(lower.ptr) - 1
+// flops returns the additions and multiplications of the elimination.
+func (q *symbolic) flops() float64 {
+	sum := 0.0
+	for k, v := range q.vertex {
+		for r := q.count[k] - 1; r >= q.count[k]-q.g.weight[v]; r-- {
+			sum += float64(r) * float64(r+2)
+		}
+	}
+	return sum
+}
+
+// eliminationTree returns the parent of each step, -1 at roots, by Liu's algorithm with compressed paths.
+func (q *symbolic) eliminationTree() []int32 {
+	n := len(q.vertex)
 	parent := make([]int32, n)
 	ancestor := make([]int32, n)
-	for k := range n {
+	for k := range int32(n) {
 		parent[k], ancestor[k] = -1, -1
-		for _, i := range lower.of(k) {
-			for i != -1 && int(i) < k {
+		for _, w := range q.g.near(q.vertex[k]) {
+			for i := q.step[w]; i != -1 && i < k; {
 				up := ancestor[i]
-				ancestor[i] = int32(k)
+				ancestor[i] = k
 				if up == -1 {
-					parent[i] = int32(k)
+					parent[i] = k
 				}
 				i = up
 			}
@@ -184,28 +190,27 @@ func postorder(parent []int32) []int32 {
 	return out
 }
 
-// columnCounts returns the number of entries of each column of the factor, diagonal included, for a postordered tree.
+// countColumns finds the number of rows of each step.
 //
-// The row subtree of i (the columns in which row i of the factor is non-zero) has the lower neighbours of i as its
-// leaves or inner vertices. A column's count is the number of row subtrees it is in; counting +1 at each leaf, -1 at
-// the least common ancestor of consecutive leaves and summing up the tree gives it (Gilbert, Ng and Peyton).
-func columnCounts(lower *rowLists, parent []int32) []int32 {
-	n := len(parent)
-	weight := make([]int32, n)
-	first := make([]int32, n) // lowest descendant
-	hasChild := make([]bool, n)
-	for k := range n {
-		first[k] = int32(k)
-	}
-	for k := range n {
-		if p := parent[k]; p >= 0 {
-			first[p] = min(first[p], first[k])
-			hasChild[p] = true
-		}
-	}
+// The row subtree of i (the steps in whose columns row i of the factor is non-zero) has its leaves among the neighbours
+// of i eliminated earlier. The count of a step is the weight of the row subtrees it is in; adding the weight of i at each
+// leaf, subtracting it at the least common ancestor of consecutive leaves and summing up the tree gives it (Gilbert, Ng
+// and Peyton).
+func (q *symbolic) countColumns() {
+	n := int32(len(q.vertex))
+	sum := make([]int32, n)
+	lowest := make([]int32, n) // lowest descendant
+	inner := make([]bool, n)
 	set := make([]int32, n) // disjoint sets of finished subtrees, for least common ancestors
+	lastLow, lastLeaf := make([]int32, n), make([]int32, n)
 	for k := range n {
-		set[k] = int32(k)
+		lowest[k], set[k], lastLow[k], lastLeaf[k] = k, k, -1, -1
+	}
+	for k, up := range q.parent {
+		if up >= 0 {
+			lowest[up] = min(lowest[up], lowest[k])
+			inner[up] = true
+		}
 	}
 	find := func(v int32) int32 {
 		root := v
@@ -217,44 +222,31 @@ func columnCounts(lower *rowLists, parent []int32) []int32 {
 		}
 		return root
 	}
-	// Columns are visited in postorder; those above them in the matrix are needed by column, so invert.
-	upper := invert(n, func(visit func(at, other int32)) {
-		for i := range n {
-			for _, k := range lower.of(i) {
-				visit(k, int32(i))
-			}
-		}
-	})
-	lastFirst := make([]int32, n) // lowest descendant of the last leaf of each row subtree
-	lastLeaf := make([]int32, n)
-	for i := range n {
-		lastFirst[i], lastLeaf[i] = -1, -1
-	}
 	for k := range n {
-		if !hasChild[k] {
-			weight[k] = 1
+		v, up := q.vertex[k], q.parent[k]
+		if !inner[k] {
+			sum[k] += q.g.weight[v] // k is the only leaf of its own row subtree
 		}
-		if p := parent[k]; p >= 0 {
-			weight[p]--
-		}
-		for _, i := range upper.of(k) {
-			if first[k] <= lastFirst[i] {
+		for _, w := range q.g.near(v) {
+			i := q.step[w]
+			if i <= k || lowest[k] <= lastLow[i] {
 				continue // not a leaf of the row subtree of i
 			}
-			weight[k]++
+			sum[k] += q.g.weight[w]
 			if l := lastLeaf[i]; l >= 0 {
-				weight[find(l)]--
+				sum[find(l)] -= q.g.weight[w]
 			}
-			lastFirst[i], lastLeaf[i] = int32(k), int32(k)
+			lastLow[i], lastLeaf[i] = k, k
 		}
-		if p := parent[k]; p >= 0 {
-			set[k] = p
-		}
-	}
-	for k := range n {
-		if p := parent[k]; p >= 0 {
-			weight[p] += weight[k]
+		if up >= 0 {
+			set[k] = up
+			sum[up] -= q.g.weight[v] // the row subtree of k ends at k
 		}
 	}
-	return weight
+	for k, up := range q.parent {
+		if up >= 0 {
+			sum[up] += sum[k]
+		}
+	}
+	q.count = sum
 }

@@ -16,16 +16,15 @@ type bisection struct {
 	weight [3]float64 // of the sides and the separator
 }
 
-// cost is what a bisection is judged by: the weight of the separator, raised when the parts are unequal. A separator of
-// weight s costs about s³ operations in a problem of which unequal parts leave more to do further down.
+// cost is what a bisection is judged by: the weight s of the separator over the product of the weights of the parts, so
+// that a corner cut off must have a much shorter separator than one half from the other.
 func (b *bisection) cost() float64 { return cutCost(b.weight[0], b.weight[1], b.weight[between]) }
 
 func cutCost(a, b, s float64) float64 {
-	if a == 0 || b == 0 {
+	if a <= 0 || b <= 0 {
 		return math.Inf(1)
 	}
-	unequal := math.Abs(a-b) / (a + b)
-	return s * (1 + 1.5*unequal*unequal)
+	return s / a / b
 }
 
 // bisect looks for a cheap separator: the best few of all sweeps, improved by local moves.

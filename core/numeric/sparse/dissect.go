@@ -15,10 +15,14 @@ const leafUnknowns = 240
 //
 // It panics when nodeOf does not name a node in coords for each unknown.
 func NestedDissection(p *Pattern, nodeOf []int32, coords [][3]float64) Ordering {
-	if len(nodeOf) != p.N {
+	c := compress(p)
+	return c.expand(dissect(c, nodeOf, coords))
+}
+
+func dissect(c *compressed, nodeOf []int32, coords [][3]float64) []int32 {
+	if len(nodeOf) != len(c.member) {
 		panic("sparse: NestedDissection: a node is needed for each unknown")
 	}
-	c := compress(p)
 	n := c.order()
 	d := &dissector{g: &c.graph, place: make([][3]float64, n), local: make([]int32, n), set: make([]int32, n)}
 	all := make([]int32, n)
@@ -26,8 +30,24 @@ func NestedDissection(p *Pattern, nodeOf []int32, coords [][3]float64) Ordering 
 		all[v] = int32(v)
 		d.place[v] = coords[nodeOf[c.member[c.first[v]]]]
 	}
-	return c.expand(d.dissect(all, nil))
+	return d.dissect(all, nil)
 }
+
+// Order returns the cheaper of NestedDissection and MinimumDegree, by the exact number of operations of the elimination.
+// Dissection wins on wide sheets, minimum degree on frames of slender arms. Without coordinates (both nil) it is
+// MinimumDegree.
+func Order(p *Pattern, nodeOf []int32, coords [][3]float64) Ordering {
+	c := compress(p)
+	best := minimumDegree(&c.graph, nil)
+	if coords != nil {
+		if other := dissect(c, nodeOf, coords); operations(&c.graph, other) < operations(&c.graph, best) {
+			best = other
+		}
+	}
+	return c.expand(best)
+}
+
+func operations(g *graph, order []int32) float64 { return newSymbolic(g, slices.Clone(order)).flops() }
 
 // dissector carries the graph through the recursion.
 type dissector struct {
@@ -178,7 +198,7 @@ func lines(g *graph, places [][3]float64) [][]int32 {
 			at[v] = x[0]*dir[0] + x[1]*dir[1] + x[2]*dir[2]
 			line[v] = int32(v)
 		}
-		slices.SortStableFunc(line, func(a, b int32) int { return cmp.Compare(at[a], at[b]) })
+		slices.SortFunc(line, func(a, b int32) int { return cmp.Or(cmp.Compare(at[a], at[b]), cmp.Compare(a, b)) })
 		out = append(out, line)
 	}
 	far := g.breadthFirst(0)

@@ -2,6 +2,7 @@ package sparse
 
 import (
 	"cmp"
+	"context"
 	"slices"
 	"sync/atomic"
 
@@ -29,7 +30,7 @@ type failure struct {
 	cause *PivotError
 }
 
-func (f *Factor) eliminate(a *Symmetric, threads int) error {
+func (f *Factor) eliminate(ctx context.Context, a *Symmetric, threads int) error {
 	el := &elimination{f: f, a: a, updates: make([]update, len(f.analysis.nodes))}
 	tasks := &f.analysis.tasks
 	workers := max(1, min(threads, len(tasks.subtrees)))
@@ -43,7 +44,7 @@ func (f *Factor) eliminate(a *Symmetric, threads int) error {
 				return
 			}
 			t := tasks.subtrees[k]
-			for s := t.first; s <= t.last; s++ {
+			for s := t.first; s <= t.last && ctx.Err() == nil; s++ {
 				if err := el.front(s, w); err != nil {
 					failures[k] = failure{s, err}
 					break
@@ -51,6 +52,9 @@ func (f *Factor) eliminate(a *Symmetric, threads int) error {
 			}
 		}
 	})
+	if ctx.Err() != nil {
+		return context.Cause(ctx)
+	}
 	// Of several failures the first in the order of elimination is told, whoever met it first.
 	failures = slices.DeleteFunc(failures, func(f failure) bool { return f.cause == nil })
 	if len(failures) > 0 {
@@ -58,9 +62,15 @@ func (f *Factor) eliminate(a *Symmetric, threads int) error {
 	}
 	w := newWorker(len(f.d), threads)
 	for _, s := range tasks.top {
+		if ctx.Err() != nil {
+			break
+		}
 		if err := el.front(s, w); err != nil {
 			return err
 		}
+	}
+	if ctx.Err() != nil {
+		return context.Cause(ctx)
 	}
 	return nil
 }

@@ -1,6 +1,7 @@
 package sparse
 
 import (
+	"context"
 	"errors"
 	"fmt"
 	"math"
@@ -67,11 +68,12 @@ func Factorise(a *Symmetric, order Ordering, threads int) (*Factor, error) {
 	if err != nil {
 		return nil, err
 	}
-	return an.Factorise(a, threads)
+	return an.Factorise(context.Background(), a, threads)
 }
 
-// Factorise factorises a matrix that has the analysed pattern.
-func (an *Analysis) Factorise(a *Symmetric, threads int) (*Factor, error) {
+// Factorise factorises a matrix that has the analysed pattern. When ctx is done it stops between two fronts and returns
+// the cause.
+func (an *Analysis) Factorise(ctx context.Context, a *Symmetric, threads int) (*Factor, error) {
 	if a.N != an.pattern.N || len(a.Val) != len(an.pattern.Row) {
 		panic("sparse: Factorise: matrix does not have the analysed pattern")
 	}
@@ -91,7 +93,7 @@ func (an *Analysis) Factorise(a *Symmetric, threads int) (*Factor, error) {
 		analysis: an, scale: scale, l: make([]float64, last.offset+len(last.rows)*int(last.width)),
 		pivots: make([][]int32, len(an.nodes)), d: make([]float64, a.N), e: make([]float64, a.N),
 	}
-	if err := f.eliminate(a, threads); err != nil {
+	if err := f.eliminate(ctx, a, threads); err != nil {
 		return nil, err
 	}
 	f.Stats = FactorStats{

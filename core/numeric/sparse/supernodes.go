@@ -5,33 +5,37 @@ import (
 	"slices"
 )
 
-// tree is a supernode partition under construction: node s has columns (old positions) and count[s] rows in its first
-// column.
+// tree is a supernode partition under construction: node s eliminates steps[s], has width[s] columns, and count[s] rows
+// in the first of them.
 type tree struct {
-	columns [][]int32
-	count   []int32
-	parent  []int32
+	steps  [][]int32
+	width  []int32
+	count  []int32
+	parent []int32
 }
 
-// fundamentalSupernodes joins columns k and k+1 when k+1 is the parent of k and their rows below agree.
-func fundamentalSupernodes(parent, counts []int32) *tree {
+// fundamentalSupernodes joins steps k and k+1 when k+1 is the parent of k and their rows below agree.
+func fundamentalSupernodes(q *symbolic) *tree {
 	t := &tree{}
-	n := int32(len(parent))
+	n := int32(len(q.parent))
 	all := make([]int32, n)
 	node := make([]int32, n)
 	for k := range n {
 		all[k] = k
-		if s := len(t.columns) - 1; k > 0 && parent[k-1] == k && counts[k-1] == counts[k]+1 {
-			t.columns[s] = all[k-int32(len(t.columns[s])) : k+1]
+		weight := q.g.weight[q.vertex[k]]
+		if s := len(t.steps) - 1; k > 0 && q.parent[k-1] == k && q.count[k-1]-q.g.weight[q.vertex[k-1]] == q.count[k] {
+			t.steps[s] = all[k-int32(len(t.steps[s])) : k+1]
+			t.width[s] += weight
 		} else {
-			t.columns = append(t.columns, all[k:k+1])
-			t.count = append(t.count, counts[k])
+			t.steps = append(t.steps, all[k:k+1])
+			t.width = append(t.width, weight)
+			t.count = append(t.count, q.count[k])
 		}
-		node[k] = int32(len(t.columns) - 1)
+		node[k] = int32(len(t.steps) - 1)
 	}
-	t.parent = make([]int32, len(t.columns))
-	for s, cols := range t.columns {
-		if p := parent[cols[len(cols)-1]]; p >= 0 {
+	t.parent = make([]int32, len(t.steps))
+	for s, steps := range t.steps {
+		if p := q.parent[steps[len(steps)-1]]; p >= 0 {
 			t.parent[s] = node[p]
 		} else {
 			t.parent[s] = -1
@@ -44,27 +48,27 @@ func fundamentalSupernodes(parent, counts []int32) *tree {
 // in handling than in arithmetic.
 func worthMerging(width int32, zeros float64) bool {
 	switch {
-	case width <= 8:
-		return true
-	case width <= 32:
-		return zeros < 0.3
-	case width <= 64:
-		return zeros < 0.12
+	case width <= 4:
+		return zeros < 0.8
+	case width <= 16:
+		return zeros < 0.4
+	case width <= 48:
+		return zeros < 0.15
 	}
 	return zeros < 0.05
 }
 
-// mergeSupernodes merges children into parents where few zeros result, and returns the tree in postorder with first
-// columns set. Children come in the order that needs the least memory for waiting updates.
+// mergeSupernodes merges children into parents where few zeros result, and returns the tree in postorder. Children come
+// in the order that needs the least memory for waiting updates.
 func mergeSupernodes(t *tree) []supernode {
-	n := len(t.columns)
+	n := len(t.steps)
 	into := make([]int32, n) // node that s has been merged into, or s
-	width := make([]int32, n)
+	width := t.width
 	zeros := make([]float64, n)
 	parts := make([][]int32, n) // merged children, in order
 	kids := make([][]int32, n)
 	for s := range n {
-		into[s], width[s] = int32(s), int32(len(t.columns[s]))
+		into[s] = int32(s)
 		if p := t.parent[s]; p >= 0 {
 			kids[p] = append(kids[p], int32(s))
 		}
@@ -95,13 +99,13 @@ func mergeSupernodes(t *tree) []supernode {
 	}
 
 	var out []supernode
-	memoryOrder(t, into, width, kids)
-	var columns func(s int32, to []int32) []int32
-	columns = func(s int32, to []int32) []int32 {
+	memoryOrder(t, into, kids)
+	var steps func(s int32, to []int32) []int32
+	steps = func(s int32, to []int32) []int32 {
 		for _, c := range parts[s] {
-			to = columns(c, to)
+			to = steps(c, to)
 		}
-		return append(to, t.columns[s]...)
+		return append(to, t.steps[s]...)
 	}
 	type visit struct{ node, next int32 }
 	first := int32(0)
@@ -120,7 +124,7 @@ func mergeSupernodes(t *tree) []supernode {
 			}
 			s := top.node
 			stack = stack[:len(stack)-1]
-			node := supernode{first: first, width: width[s], parent: -1, rows: columns(s, nil)}
+			node := supernode{first: first, width: width[s], parent: -1, steps: steps(s, nil)}
 			number[s] = int32(len(out))
 			for _, c := range kids[s] {
 				node.children = append(node.children, number[c])
@@ -136,7 +140,7 @@ func mergeSupernodes(t *tree) []supernode {
 // memoryOrder sorts the children of every node so that the most memory ever held by fronts and waiting updates is least
 // (J. Liu, On the storage requirement in the out-of-core multifrontal method, ACM Trans. Math. Softw. 12, 1986):
 // falling peak of the subtree minus size of its update.
-func memoryOrder(t *tree, into, width []int32, kids [][]int32) {
+func memoryOrder(t *tree, into []int32, kids [][]int32) {
 	n := len(into)
 	peak := make([]float64, n)
 	update := make([]float64, n)
@@ -145,7 +149,7 @@ func memoryOrder(t *tree, into, width []int32, kids [][]int32) {
 			continue
 		}
 		slices.SortStableFunc(kids[s], func(a, b int32) int { return cmp.Compare(peak[b]-update[b], peak[a]-update[a]) })
-		below := float64(t.count[s] - width[s])
+		below := float64(t.count[s] - t.width[s])
 		update[s] = below * below
 		held := 0.0
 		for _, c := range kids[s] {
@@ -156,19 +160,72 @@ func memoryOrder(t *tree, into, width []int32, kids [][]int32) {
 	}
 }
 
-// layOut gives positions their final numbers: those of the supernodes in order. Until now each supernode's rows held
-// its columns by old position.
-func (a *Analysis) layOut(place []int32) {
-	next := make([]int32, 0, len(a.order))
+// layOut numbers the positions, those of the supernodes in order, and finds the rows of each supernode: its own, and those
+// that the matrix or its children have below them.
+func (a *Analysis) layOut(c *compressed, q *symbolic) {
+	start := make([]int32, c.order())         // position of the first unknown of each vertex
+	a.order = make([]int32, 0, len(c.member)) // unknown at each position
+	size := make([]int32, len(c.member))      // unknowns of the vertex that starts at a position
 	for s := range a.nodes {
-		next = append(next, a.nodes[s].rows...)
+		for _, k := range a.nodes[s].steps {
+			v := q.vertex[k]
+			start[v] = int32(len(a.order))
+			size[start[v]] = c.weight[v]
+			a.order = append(a.order, c.member[c.first[v]:c.first[v+1]]...)
+		}
 	}
-	a.renumber(place, next)
+	seen := make([]int32, len(c.member))
+	for i := range seen {
+		seen[i] = -1
+	}
+	below := make([][]int32, len(a.nodes)) // starts of the vertices below each supernode, rising
+	for s := range a.nodes {
+		node := &a.nodes[s]
+		end := node.first + node.width
+		var heads []int32
+		add := func(i int32) {
+			if i >= end && seen[i] != int32(s) {
+				seen[i] = int32(s)
+				heads = append(heads, i)
+			}
+		}
+		for _, child := range node.children {
+			for _, i := range below[child] {
+				add(i)
+			}
+			below[child] = nil
+		}
+		for _, k := range node.steps {
+			for _, w := range c.near(q.vertex[k]) {
+				add(start[w])
+			}
+		}
+		node.steps = nil
+		slices.Sort(heads)
+		below[s] = heads
+		count := node.width
+		for _, i := range heads {
+			count += size[i]
+		}
+		node.rows = make([]int32, 0, count)
+		for i := node.first; i < end; i++ {
+			node.rows = append(node.rows, i)
+		}
+		for _, i := range heads {
+			for d := range size[i] {
+				node.rows = append(node.rows, i+d)
+			}
+		}
+	}
 }
 
 // findSources sorts the entries of the pattern by the lower of their two positions.
-func (a *Analysis) findSources(place []int32) {
+func (a *Analysis) findSources() {
 	p := a.pattern
+	place := make([]int32, p.N)
+	for k, u := range a.order {
+		place[u] = int32(k)
+	}
 	a.columns = make([]int, p.N+1)
 	for j := range p.N {
 		for _, i := range p.Row[p.Ptr[j]:p.Ptr[j+1]] {
@@ -187,39 +244,6 @@ func (a *Analysis) findSources(place []int32) {
 			a.source[next[lo]] = sourceEntry{hi, int32(q)}
 			next[lo]++
 		}
-	}
-}
-
-// findRows finds the rows of each supernode: those of the matrix in its columns and those of its children.
-func (a *Analysis) findRows() {
-	seen := make([]int32, len(a.order))
-	for i := range seen {
-		seen[i] = -1
-	}
-	for s := range a.nodes {
-		node := &a.nodes[s]
-		end := node.first + node.width
-		rows := make([]int32, 0, node.width)
-		for k := node.first; k < end; k++ {
-			rows = append(rows, k)
-		}
-		add := func(i int32) {
-			if i >= end && seen[i] != int32(s) {
-				seen[i] = int32(s)
-				rows = append(rows, i)
-			}
-		}
-		for _, c := range node.children {
-			child := &a.nodes[c]
-			for _, i := range child.rows[child.width:] {
-				add(i)
-			}
-		}
-		for _, e := range a.source[a.columns[node.first]:a.columns[end]] {
-			add(e.row)
-		}
-		slices.Sort(rows)
-		node.rows = slices.Clip(rows)
 	}
 }
 

@@ -154,6 +154,29 @@ func (s *Symmetric) Diagonal() []float64 {
 	return d
 }
 
+// DropZeros returns the matrix without its zero entries off the diagonal, or the matrix itself when few are zero.
+func (s *Symmetric) DropZeros() *Symmetric {
+	zeros := 0
+	for _, v := range s.Val {
+		if v == 0 {
+			zeros++
+		}
+	}
+	if zeros < len(s.Val)/4 {
+		return s
+	}
+	out := &Symmetric{N: s.N, Ptr: make([]int, s.N+1)}
+	for j := range s.N {
+		for p := s.Ptr[j]; p < s.Ptr[j+1]; p++ {
+			if s.Val[p] != 0 || p == s.Ptr[j] {
+				out.Row, out.Val = append(out.Row, s.Row[p]), append(out.Val, s.Val[p])
+			}
+		}
+		out.Ptr[j+1] = len(out.Row)
+	}
+	return out
+}
+
 // Combine returns alpha·a + beta·b on the union of the patterns. When both share one pattern, so does the result.
 func Combine(alpha float64, a *Symmetric, beta float64, b *Symmetric) *Symmetric {
 	if a.N != b.N {

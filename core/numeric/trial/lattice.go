@@ -6,10 +6,30 @@ import (
 	"hushframe/core/numeric/sparse"
 )
 
-// Lattice is a thin sheet of nx by ny cells made of slender beams with six unknowns at each node (three displacements,
-// three rotations), free in space: the pattern, the conditioning and the null space of a plate of quadratic shell
-// elements, with little code. Each cell has the nine nodes of a quadratic patch and two triangles of six nodes, and
-// each triangle joins all its nodes pairwise.
+// Sheet describes a Lattice: nx by ny square cells of the given size and beams of the given thickness (m).
+type Sheet struct {
+	Nx, Ny      int
+	Cell, Thick float64
+	// Massless leaves the rotation about z ("drilling") without inertia.
+	Massless bool
+	// Keep, when not nil, says which cells there are.
+	Keep func(i, j int) bool
+}
+
+// Cross keeps the cells near the diagonals of an n by n sheet: four arms of the given width (in cells) with a body in the
+// middle.
+func Cross(n, width int) func(i, j int) bool {
+	return func(i, j int) bool {
+		x, y := 2*i+1-n, 2*j+1-n
+		abs := func(v int) int { return max(v, -v) }
+		return abs(x-y) <= 2*width || abs(x+y) <= 2*width || abs(x) < n/3 && abs(y) < n/3
+	}
+}
+
+// Lattice is a thin sheet of slender beams with six unknowns at each node (three displacements, three rotations), free in
+// space: the pattern, the conditioning and the null space of a plate of quadratic shell elements, with little code. Each
+// cell has the nine nodes of a quadratic patch and two triangles of six nodes, and each triangle joins all its nodes
+// pairwise.
 type Lattice struct {
 	K, M     *sparse.Symmetric
 	NodeOf   []int32 // node of each unknown
@@ -17,27 +37,49 @@ type Lattice struct {
 	Elements [][]int32
 }
 
-// NewLattice makes a lattice of the given cell size and beam thickness (m) of a stiff light material. With massless
-// set, the rotation about z ("drilling") has no inertia.
-func NewLattice(nx, ny int, cell, thick float64, massless bool) *Lattice {
+// Rigid returns the six rigid motions: three translations along and three rotations about the axes.
+func (l *Lattice) Rigid() [][]float64 {
+	out := make([][]float64, 6)
+	for c := range out {
+		out[c] = make([]float64, l.K.N)
+		for v, x := range l.Coords {
+			if c < 3 {
+				out[c][6*v+c] = 1
+				continue
+			}
+			axis := [3]float64{}
+			axis[c-3] = 1
+			u := cross(axis, x)
+			copy(out[c][6*v:], u[:])
+			out[c][6*v+c] = 1
+		}
+	}
+	return out
+}
+
+// Lattice assembles the matrices of the sheet.
+func (sh Sheet) Lattice() *Lattice {
 	l := &Lattice{}
-	rows, cols := 2*ny+1, 2*nx+1
-	at := func(i, j int) int { return j*cols + i }
-	for j := range rows {
-		for i := range cols {
+	nx, ny, cell, thick := sh.Nx, sh.Ny, sh.Cell, sh.Thick
+	number := map[[2]int]int{} // node at each half-cell place
+	at := func(i, j int) int {
+		key := [2]int{i, j}
+		v, ok := number[key]
+		if !ok {
+			v = len(l.Coords)
+			number[key] = v
 			// A slight warp keeps the sheet from having exact symmetries that real ones lack.
 			x, y := float64(i)*cell/2, float64(j)*cell/2
 			l.Coords = append(l.Coords, [3]float64{x, y + 0.02*x, 0.05 * cell * math.Sin(3*x/(cell*float64(nx)))})
 		}
-	}
-	n := 6 * rows * cols
-	l.NodeOf = make([]int32, n)
-	for u := range l.NodeOf {
-		l.NodeOf[u] = int32(u / 6)
+		return v
 	}
 	var nodes [][]int
 	for j := range ny {
 		for i := range nx {
+			if sh.Keep != nil && !sh.Keep(i, j) {
+				continue
+			}
 			a, b, c, d := at(2*i, 2*j), at(2*i+2, 2*j), at(2*i+2, 2*j+2), at(2*i, 2*j+2)
 			s, e, t, w, m := at(2*i+1, 2*j), at(2*i+2, 2*j+1), at(2*i+1, 2*j+2), at(2*i, 2*j+1), at(2*i+1, 2*j+1)
 			nodes = append(nodes, []int{a, b, c, s, e, m}, []int{a, c, d, m, t, w})
@@ -52,6 +94,11 @@ func NewLattice(nx, ny int, cell, thick float64, massless bool) *Lattice {
 		}
 		l.Elements = append(l.Elements, unknowns)
 	}
+	n := 6 * len(l.Coords)
+	l.NodeOf = make([]int32, n)
+	for u := range l.NodeOf {
+		l.NodeOf[u] = int32(u / 6)
+	}
 	stiff := sparse.NewAssembler(n, l.Elements)
 	mass := stiff.Fork()
 	for e, ns := range nodes {
@@ -60,7 +107,7 @@ func NewLattice(nx, ny int, cell, thick float64, massless bool) *Lattice {
 			for b := range a {
 				addBeam(k, a, b, l.Coords[ns[a]], l.Coords[ns[b]], thick)
 			}
-			addLump(m, a, cell, thick, massless)
+			addLump(m, a, cell, thick, sh.Massless)
 		}
 		stiff.Add(e, k)
 		mass.Add(e, m)
