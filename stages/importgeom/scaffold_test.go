@@ -78,6 +78,9 @@ func TestScaffoldOfOnePlateRuns(t *testing.T) {
 	if out, _ = imported(t, folder, nil); out.Figures["rotors"] != 4.0 {
 		t.Errorf("with the rotors filled in: %v", out.Figures)
 	}
+	for _, w := range out.Warnings { // all stand on the plate
+		t.Errorf("%+v", w)
+	}
 	j, diags := job.Load(context.Background(), filepath.Join(folder, "job.hcl"), job.Options{
 		Describe: func(_ context.Context, name string) (stage.Description, error) {
 			if name == "import" {

@@ -109,17 +109,28 @@ func motorPlaces(plates []guessed) (on [4]string, at [4]outline.Point) {
 			}
 			continue
 		}
-		// As far towards the corner as there is material.
+		// As far towards the corner as there is material under a motor.
 		at[i] = p.inside
 		for k := range 60 {
-			q := corner.Lerp(p.inside, float64(k)/60)
-			if p.region.Contains(q) {
+			if q := corner.Lerp(p.inside, float64(k)/60); seats(p.region, q) {
 				at[i] = q
 				break
 			}
 		}
 	}
 	return on, at
+}
+
+// seats reports whether a motor's footprint about a place lies on the region.
+func seats(region outline.Region, at outline.Point) bool {
+	const reach, around = 7e-3, 12
+	for i := range around {
+		s, c := math.Sincos(2 * math.Pi * float64(i) / around)
+		if !region.Contains(at.Add(outline.Point{X: c, Y: s}.Scale(reach))) {
+			return false
+		}
+	}
+	return true
 }
 
 func jobText(title string) string {

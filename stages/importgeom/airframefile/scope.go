@@ -25,8 +25,7 @@ var referenceType = cty.Capsule("reference to a part", reflect.TypeFor[reference
 type scope struct {
 	inputs map[string]cty.Value
 	// names of plates (copies among them) and joints
-	names  map[string][]string
-	copies map[string]bool
+	names map[string][]string
 }
 
 func (s *scope) context() *hcl.EvalContext {

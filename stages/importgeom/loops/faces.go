@@ -13,8 +13,7 @@ func (g *graph) sort() {
 	for i := range group {
 		group[i] = i
 	}
-	var root func(int) int
-	root = func(v int) int {
+	root := func(v int) int {
 		for group[v] != v {
 			group[v] = group[group[v]]
 			v = group[v]
