@@ -27,6 +27,7 @@ type piece struct {
 	loop     int32         // region loop, 0 the outer one, none for a mesh line
 	index    int32         // of the source curve in that loop
 	straight bool
+	row      bool // the chain of a row, the row on its right
 }
 
 func (p *piece) at(t float64) outline.Point {

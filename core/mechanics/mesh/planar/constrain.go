@@ -269,4 +269,12 @@ func (g *mesher) flood() {
 		}
 		fill(t.n[d.i], inside)
 	}
+	g.refined = append([]bool(nil), g.inside...)
+	for i := range g.segments {
+		if s := &g.segments[i]; g.plan.pieces[s.piece].row {
+			if t, _, ok := g.side(s.b, s.a); ok {
+				g.refined[g.t[t].zone] = false
+			}
+		}
+	}
 }

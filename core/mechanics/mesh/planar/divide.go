@@ -15,8 +15,9 @@ const sharpAngle = 61 * math.Pi / 180
 // share of a full turn, and whose curves keep clear of all other vertices.
 func (g *mesher) divide() error {
 	g.findSharp()
+	g.findCovered()
 	var across *widths
-	if g.options.EdgeSize != nil {
+	if g.options.EdgeSize != nil || g.options.Row != nil {
 		across = newWidths(g.region)
 	}
 	for i := range g.plan.pieces {
@@ -24,7 +25,30 @@ func (g *mesher) divide() error {
 			return err
 		}
 	}
-	return g.clearCrescents()
+	if err := g.clearCrescents(); err != nil {
+		return err
+	}
+	g.numberVertices()
+	return g.layRows(across)
+}
+
+// coveredTurn is the share of PerTurn that holes within a mesh line need: the triangles about them are short anyway, and
+// an annulus divides best when its inner sides are not much shorter than its outer ones.
+const coveredTurn = 2.0 / 3
+
+// findCovered marks the holes that lie within a mesh line, as the hole under a washer does.
+func (g *mesher) findCovered() {
+	loops := g.region.Loops()
+	g.covered = make([]bool, len(loops))
+	for i, hole := range loops[1:] {
+		for _, line := range g.options.Lines {
+			all := true
+			for _, c := range hole {
+				all = all && line.Contains(c.P0) && line.Contains(c.At(0.5))
+			}
+			g.covered[i+1] = g.covered[i+1] || all
+		}
+	}
 }
 
 // findSharp marks plan vertices at which two pieces enclose less than sharpAngle of the region.
@@ -133,19 +157,43 @@ func (g *mesher) bound(p *piece, t float64, across *widths) (float64, error) {
 		return 0, err
 	}
 	if k := math.Abs(p.curve.Curvature(t)); k > 0 {
-		h = math.Min(h, 2*math.Pi/(k*float64(g.options.PerTurn)))
+		perTurn := float64(g.options.PerTurn)
+		if p.loop != none && g.covered[p.loop] {
+			perTurn = math.Max(coveredTurn*perTurn, 4)
+		}
+		h = math.Min(h, 2*math.Pi/(k*perTurn))
 	}
-	if across != nil && p.loop != none {
-		u := p.curve.Tangent(t)
-		w := across.across(at, outline.Point{X: -u.Y, Y: u.X}, 1e-3*g.diagonal*1e-1)
-		e := g.options.EdgeSize(at, w)
-		if !(e > 0) {
-			return 0, fmt.Errorf("the bound on the size at the boundary at %s is %g m; it must be positive", place(at), e)
+	if p.loop != none && g.options.Row != nil {
+		w := g.width(p, t, across)
+		if depth, length := g.options.Row(at, w); depth > 0 {
+			return math.Max(math.Min(h, length), 1e-5*g.diagonal), nil
+		}
+	}
+	if p.loop != none && g.options.EdgeSize != nil {
+		e, err := g.edgeSize(p, t, across)
+		if err != nil {
+			return 0, err
 		}
 		h = math.Min(h, e)
 	}
 	// A cusp of a cubic has no length to be divided; its curvature must not ask for endless segments.
 	return math.Max(h, 1e-5*g.diagonal), nil
+}
+
+// width returns the local width of the region at parameter t of a boundary piece.
+func (g *mesher) width(p *piece, t float64, across *widths) float64 {
+	u := p.curve.Tangent(t)
+	return across.across(p.curve.At(t), outline.Point{X: -u.Y, Y: u.X})
+}
+
+// edgeSize returns what EdgeSize says at parameter t of a boundary piece.
+func (g *mesher) edgeSize(p *piece, t float64, across *widths) (float64, error) {
+	at := p.curve.At(t)
+	e := g.options.EdgeSize(at, g.width(p, t, across))
+	if !(e > 0) {
+		return 0, fmt.Errorf("the bound on the size at the boundary at %s is %g m; it must be positive", place(at), e)
+	}
+	return e, nil
 }
 
 // firstCircle returns the radius of the outermost circle of division round a sharp vertex: a power of two below a
@@ -211,7 +259,6 @@ func (g *mesher) clearCrescents() error {
 			}
 		}
 		if len(split) == 0 {
-			g.numberVertices()
 			return nil
 		}
 		var all []segment
@@ -244,6 +291,7 @@ func (g *mesher) numberVertices() {
 		}
 		if s.t1 < 1 {
 			s.b = g.plan.add(p.at(s.t1))
+			g.sharp = append(g.sharp, false)
 		}
 	}
 }

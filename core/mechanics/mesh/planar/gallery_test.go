@@ -12,7 +12,8 @@ type example struct {
 	region outline.Region
 	lines  []outline.Loop
 	size   float64
-	sharp  bool // has corners or contacts below 60 degrees
+	// cramped regions have parts nearer to each other than a thousandth of the size.
+	cramped bool
 }
 
 func pt(x, y float64) outline.Point { return outline.Point{X: x, Y: y} }
@@ -178,12 +179,12 @@ func gallery() []example {
 		{name: "many holes", region: outline.NewRegion(rounded(22.5e-3, 22.5e-3, 55e-3, 55e-3, 4e-3), many...), size: 3e-3},
 		{name: "wave", region: outline.NewRegion(wave), lines: []outline.Loop{disc(30e-3, 5e-3, 8e-3)}, size: 3e-3},
 		{name: "spiral", region: outline.NewRegion(spiral()), size: 3e-3},
-		{name: "star", region: outline.NewRegion(star(9, 20e-3, 5e-3)), size: 3e-3, sharp: true},
-		{name: "needle", region: outline.NewRegion(outline.Polygon(pt(0, 0), pt(60e-3, 0), pt(60e-3, 3e-3))), size: 3e-3, sharp: true},
-		{name: "comb", region: outline.NewRegion(outline.Polygon(comb...)), size: 3e-3, sharp: true},
+		{name: "star", region: outline.NewRegion(star(9, 20e-3, 5e-3)), size: 3e-3},
+		{name: "needle", region: outline.NewRegion(outline.Polygon(pt(0, 0), pt(60e-3, 0), pt(60e-3, 3e-3))), size: 3e-3},
+		{name: "comb", region: outline.NewRegion(outline.Polygon(comb...)), size: 3e-3},
 		{name: "tiny step", region: outline.NewRegion(outline.Polygon(pt(0, 0), pt(30e-3, 0), pt(30e-3, 20e-3), pt(15e-3, 20e-3), pt(15e-3, 20.01e-3), pt(0, 20.01e-3))), size: 3e-3},
-		{name: "near holes", region: outline.NewRegion(rounded(0, 0, 40e-3, 20e-3, 2e-3), disc(-5.001e-3, 0, 5e-3), disc(5.001e-3, 0, 5e-3)), size: 3e-3},
-		{name: "touching lines", region: outline.NewRegion(rounded(0, 0, 40e-3, 20e-3, 2e-3)), size: 3e-3, sharp: true,
+		{name: "near holes", cramped: true, region: outline.NewRegion(rounded(0, 0, 40e-3, 20e-3, 2e-3), disc(-5.001e-3, 0, 5e-3), disc(5.001e-3, 0, 5e-3)), size: 3e-3},
+		{name: "touching lines", region: outline.NewRegion(rounded(0, 0, 40e-3, 20e-3, 2e-3)), size: 3e-3,
 			lines: []outline.Loop{disc(-5e-3, 0, 5e-3), disc(5e-3, 0, 5e-3), disc(0, 6e-3, 4e-3), disc(2e-3, 0, 8e-3)}},
 	}
 }

@@ -14,10 +14,15 @@ type Options struct {
 	// EdgeSize, when set, gives an upper bound (m) on the length of boundary segments at a place on the boundary,
 	// from the local width: the distance (m) straight across the region to the boundary opposite.
 	EdgeSize func(p outline.Point, width float64) float64
+	// Row, when set, asks for a row of stretched triangles along the boundary: its depth (m), 0 for none, and the
+	// longest side along it, from the local width. Rows end at corners that turn inwards and where something is too
+	// near; there EdgeSize counts instead.
+	Row func(p outline.Point, width float64) (depth, length float64)
 	// Lines are closed loops that triangle sides must follow where they run inside the region. They may leave the
 	// region, cross holes and each other.
 	Lines []outline.Loop
-	// PerTurn is the least number of segments for a full turn of a curve; 0 means 12.
+	// PerTurn is the least number of segments for a full turn of a curve; 0 means 12. Holes within a mesh line get two
+	// thirds of it.
 	PerTurn int
 	// MinAngle (rad) is the least angle wanted in triangles away from sharp corners; 0 means 26 degrees. Above 28
 	// degrees the refinement may stop at MaxVertices.
@@ -60,33 +65,43 @@ func Triangulate(region outline.Region, o Options) (*Mesh, error) {
 	if o.Size == nil {
 		panic("planar: Options.Size is not set")
 	}
-	diagonal := region.Bounds().Diagonal()
-	if o.PerTurn <= 0 {
-		o.PerTurn = 12
-	}
-	o.PerTurn = max(o.PerTurn, 4)
-	if o.MinAngle <= 0 {
-		o.MinAngle = 26 * math.Pi / 180
-	}
-	if o.Snap <= 0 {
-		o.Snap = 2e-4 * diagonal
-	}
-	if o.MaxVertices <= 0 {
-		o.MaxVertices = 2_000_000
-	}
 	if err := check(region); err != nil {
 		return nil, err
 	}
-	pl := arrange(region, o.Lines, o.Snap)
-	g := &mesher{options: o, region: region, plan: pl, diagonal: diagonal, complete: true}
-	steps := []func() error{g.divide, g.constrain, g.refine}
-	for _, step := range steps {
+	g := newMesher(region, o)
+	if err := g.run(); err != nil {
+		return nil, err
+	}
+	return g.quadratic(), nil
+}
+
+func newMesher(region outline.Region, o Options) *mesher {
+	g := &mesher{options: o, region: region, diagonal: region.Bounds().Diagonal(), complete: true}
+	if o.PerTurn <= 0 {
+		g.options.PerTurn = 12
+	}
+	g.options.PerTurn = max(g.options.PerTurn, 4)
+	if o.MinAngle <= 0 {
+		g.options.MinAngle = 26 * math.Pi / 180
+	}
+	if o.Snap <= 0 {
+		g.options.Snap = 2e-4 * g.diagonal
+	}
+	if o.MaxVertices <= 0 {
+		g.options.MaxVertices = 2_000_000
+	}
+	return g
+}
+
+func (g *mesher) run() error {
+	g.plan = arrange(g.region, g.options.Lines, g.options.Snap)
+	for _, step := range []func() error{g.divide, g.constrain, g.refine} {
 		if err := step(); err != nil {
-			return nil, err
+			return err
 		}
 	}
 	g.smooth()
-	return g.quadratic(), nil
+	return nil
 }
 
 // mesher carries one call of Triangulate from step to step.
@@ -102,7 +117,9 @@ type mesher struct {
 	kind     []vertexKind // parallel to the vertices of the triangulation
 	on       []int32      // piece of a vertex on a segment, none otherwise
 	sharp    []bool       // vertices of the plan where pieces meet at a small angle
+	covered  []bool       // by loop of the region, for holes within a mesh line
 	inside   []bool       // by zone
+	refined  []bool       // by zone: inside, and no row
 
 	worn    []int32 // segments to be divided
 	queued  []bool  // parallel to segments

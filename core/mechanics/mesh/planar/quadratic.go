@@ -103,10 +103,13 @@ func (g *mesher) middle(t int32, i int) outline.Point {
 	return p.at(0.5 * (lo + hi))
 }
 
-// straighten moves mid-side nodes towards their chords where a triangle would not be sound otherwise.
+// straighten moves mid-side nodes towards their chords where a triangle would not be sound otherwise: those on mesh
+// lines first, those on the boundary only if that is not enough.
 func (g *mesher) straighten(m *Mesh, curved, place []int32) {
 	moved := map[int32]bool{}
-	for pass := 0; pass < 8; pass++ {
+	const passes = 16
+	for pass := range passes {
+		last := pass%8 == 7
 		done := true
 		for _, t := range curved {
 			n := m.Triangles[place[t]]
@@ -121,11 +124,13 @@ func (g *mesher) straighten(m *Mesh, curved, place []int32) {
 			for i := range 3 {
 				mid := n[3+i]
 				chord := c[i].Lerp(c[next(i)], 0.5)
-				if c[3+i] == chord {
+				// Node 3+i is on the side opposite corner i+2.
+				s := g.t[t].seg[prev(i)]
+				if c[3+i] == chord || pass < passes/2 && g.plan.pieces[g.segments[s].piece].loop != none {
 					continue
 				}
 				m.Nodes[mid] = c[3+i].Lerp(chord, 0.5)
-				if pass == 7 {
+				if last {
 					m.Nodes[mid] = chord
 				}
 				moved[mid] = true

@@ -100,7 +100,9 @@ func (g *mesher) divideBent() error {
 		}
 		worst, deepest := none, 0.0
 		var c [6]outline.Point
+		cusp := false // a corner between two segments that may touch there stays as it is however often they are divided
 		for i, s := range x.seg {
+			cusp = cusp || g.sharp[x.v[i]] && x.seg[next(i)] != none && x.seg[prev(i)] != none
 			// Side i lies opposite corner i; node 3 is between corners 0 and 1, which is side 2.
 			c[i] = g.p[x.v[i]]
 			mid := g.middle(int32(t), i)
@@ -111,7 +113,7 @@ func (g *mesher) divideBent() error {
 				}
 			}
 		}
-		if worst != none && leastJacobian(c) < soundness {
+		if worst != none && !cusp && leastJacobian(c) < soundness {
 			bent = append(bent, worst)
 		}
 	}
@@ -136,7 +138,7 @@ func (g *mesher) judgeSegment(s int32) {
 		panic("planar: a segment is not a side")
 	}
 	u, j := g.facing(t, i)
-	if g.inside[g.t[t].zone] && g.inLens(s, g.corner(t, i)) || g.inside[g.t[u].zone] && g.inLens(s, g.corner(u, j)) {
+	if g.refined[g.t[t].zone] && g.inLens(s, g.corner(t, i)) || g.refined[g.t[u].zone] && g.inLens(s, g.corner(u, j)) {
 		g.queue(s)
 	}
 }
@@ -221,7 +223,7 @@ func (g *mesher) split(s int32, least float64, depth int) error {
 func (g *mesher) settle(v int32) error {
 	var err error
 	g.star(v, func(t int32, k int) bool {
-		if s := g.t[t].seg[k]; s != none && g.inside[g.t[t].zone] && g.inLens(s, g.p[v]) {
+		if s := g.t[t].seg[k]; s != none && g.refined[g.t[t].zone] && g.inLens(s, g.p[v]) {
 			g.queue(s)
 		}
 		if s := g.t[t].seg[next(k)]; s != none {
@@ -235,7 +237,7 @@ func (g *mesher) settle(v int32) error {
 
 // judge queues a triangle of the region that is too large or has too small an angle.
 func (g *mesher) judge(t int32) error {
-	if !g.inside[g.t[t].zone] {
+	if !g.refined[g.t[t].zone] {
 		return nil
 	}
 	a, b, c := g.corners(t)
