@@ -45,7 +45,8 @@ type runner struct {
 	figures     job.Figures
 	verdicts    map[string]Verdict
 	queue       []*progress // prepared, waiting for a share
-	running     int
+	preparing   int         // goroutines that prepare a step
+	running     int         // all goroutines
 	freeThreads int
 	freeMemory  int64
 	account     *input // of the run, once made
@@ -148,6 +149,7 @@ func (r *runner) prepare(p *progress) {
 	}
 	inputs, figures := r.inputs(p.step), r.figuresOf(p.step.Stage)
 	r.running++
+	r.preparing++
 	go func() {
 		pr, result := r.prepareStep(p.step, inputs, figures)
 		r.ended <- end{p, pr, result}
@@ -155,9 +157,10 @@ func (r *runner) prepare(p *progress) {
 }
 
 // share gives queued steps a share of the budget: the free threads in equal
-// parts, at least one each, in the order of the plan.
+// parts, at least one each, in the order of the plan. It waits while others
+// are being prepared, which is quick, so that the first does not take all.
 func (r *runner) share() {
-	for len(r.queue) > 0 && r.freeThreads > 0 {
+	for r.preparing == 0 && len(r.queue) > 0 && r.freeThreads > 0 {
 		p := r.queue[0]
 		if r.ctx.Err() != nil {
 			r.queue = r.queue[1:]
@@ -203,6 +206,8 @@ func (r *runner) take(e end) {
 			r.freeMemory += e.p.memory
 		}
 		e.p.threads = 0
+	} else {
+		r.preparing--
 	}
 	if e.result == nil {
 		e.p.prepped = e.prepared
