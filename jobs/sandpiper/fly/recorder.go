@@ -20,7 +20,7 @@ const (
 
 	// The current ripple behind the torque ripple also reaches the sensor
 	// through its supply: deg/s about z before the low-pass, from one rotor.
-	pickup      = 4.0
+	pickup      = 10.0
 	pickupRotor = 1
 )
 

@@ -122,7 +122,7 @@ func (s *sources) step() (force []float64, command float64) {
 		own := s.wander[1+i].step(s.rng.NormFloat64())
 		r.speed = r.hover * command
 		if airborne {
-			r.speed *= 1 + 0.030*common + 0.008*own
+			r.speed *= 1 + 0.015*common + 0.005*own
 		}
 		r.angle += r.spin * r.speed * s.dt
 		ratio := r.speed / r.hover
