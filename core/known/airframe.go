@@ -48,7 +48,7 @@ func Airframe(size float64) (*mesh.Mesh, *airframe.Properties) {
 			{Name: "glass", E1: 22e9, E2: 20e9, Nu12: 0.13, G12: 4e9, G13: 3e9, G23: 3e9, Density: 1850, LossFactor: 0.015},
 			{Name: "aluminium", E1: 70e9, E2: 70e9, Nu12: 0.33, G12: 70e9 / 2.66, G13: 70e9 / 2.66, G23: 70e9 / 2.66, Density: 2700, LossFactor: 0.002, Isotropic: true},
 		},
-		Plates: []airframe.PlateProperties{{Plate: "deck", Material: "carbon", Fibre: 0.1}, {Plate: "tail", Material: "carbon"},
+		Plates: []airframe.PlateProperties{{Plate: "deck", Material: "carbon"}, {Plate: "tail", Material: "carbon"},
 			{Plate: "roof", Plies: []airframe.Ply{{Material: "glass", Thickness: 0.00075}, {Material: "glass", Thickness: 0.00075, Angle: math.Pi / 4}}}},
 		Joints: []airframe.Joint{{Name: "tail joint", Stiffness: [6]float64{2e7, 2e7, 3e7, math.Inf(1), 800, 300}, LossFactor: 0.03}},
 		Floor:  0.001,
