@@ -1,0 +1,317 @@
+package solve_test
+
+import (
+	"context"
+	"errors"
+	"math"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"hushframe/core/known"
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/mesh"
+	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+	"hushframe/stages/solve"
+)
+
+// quiet takes progress and log lines.
+type quiet struct{ t *testing.T }
+
+func (quiet) Progress(string, float64) {}
+func (q quiet) Log(_ stage.Level, text string, fields ...any) {
+	q.t.Log(append([]any{text}, fields...)...)
+}
+
+// keeper keeps folders by key and counts how often it had to make one.
+type keeper struct {
+	folder string
+	kept   map[string]string
+	made   int
+}
+
+func (k *keeper) Keep(_ context.Context, key string, make func(string) error) (string, bool, error) {
+	if f, ok := k.kept[key]; ok {
+		return f, true, nil
+	}
+	f, err := os.MkdirTemp(k.folder, "kept")
+	if err != nil {
+		return "", false, err
+	}
+	k.made++
+	if err := make(f); err != nil {
+		return "", false, err
+	}
+	k.kept[key] = f
+	return f, false, nil
+}
+func (*keeper) Element(context.Context, string, stage.ExtensionRequest) error { return nil }
+func (*keeper) Reader(context.Context, string, stage.ExtensionRequest) error  { return nil }
+func (*keeper) Extensions(context.Context) ([]stage.Extension, error)         { return nil, nil }
+
+// bench runs the stage on artifacts of its own.
+type bench struct {
+	t      *testing.T
+	folder string
+	keep   *keeper
+	runs   int
+}
+
+func newBench(t *testing.T) *bench {
+	folder := t.TempDir()
+	return &bench{t: t, folder: folder, keep: &keeper{folder: folder, kept: map[string]string{}}}
+}
+
+func (b *bench) write(a *artifact.Artifact) stage.Input {
+	b.t.Helper()
+	folder, err := os.MkdirTemp(b.folder, "in")
+	if err != nil {
+		b.t.Fatal(err)
+	}
+	if _, err := artifact.Write(folder, a); err != nil {
+		b.t.Fatal(err)
+	}
+	return stage.Input{Folder: folder, Kind: a.Kind.Name, Hash: a.Hash()}
+}
+
+// run returns the outcome and the folder of the modes.
+func (b *bench) run(m *mesh.Mesh, p *airframe.Properties, threads int, set map[string]float64) (*stage.Outcome, string, error) {
+	b.t.Helper()
+	out, err := os.MkdirTemp(b.folder, "out")
+	if err != nil {
+		b.t.Fatal(err)
+	}
+	arguments := stage.Arguments{}
+	for _, a := range (solve.Stage{}).Describe().Arguments {
+		if a.Default != nil {
+			arguments[a.Name] = a.Default
+		}
+	}
+	for name, v := range set {
+		arguments[name] = stage.Quantity{SI: v, Dimension: "frequency"}
+	}
+	outcome, err := (solve.Stage{}).Run(context.Background(), &stage.Call{
+		Arguments: arguments,
+		Inputs:    map[string][]stage.Input{"mesh": {b.write(kinds.EncodeMesh(m))}, "properties": {b.write(kinds.EncodeProperties(p))}},
+		Outputs:   map[string]string{"modes": out}, Threads: threads, Report: quiet{b.t}, Services: b.keep,
+	})
+	return outcome, out, err
+}
+
+func modesIn(t *testing.T, folder string) *kinds.Modes {
+	t.Helper()
+	a, err := artifact.Open(folder, kinds.Registry())
+	if err != nil {
+		t.Fatal(err)
+	}
+	m, err := kinds.DecodeModes(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return m
+}
+
+func figure(t *testing.T, o *stage.Outcome, name string) float64 {
+	t.Helper()
+	switch v := o.Figures[name].(type) {
+	case stage.Quantity:
+		return v.SI
+	case float64:
+		return v
+	}
+	t.Fatalf("figure %s is %v", name, o.Figures[name])
+	return 0
+}
+
+// sameFiles compares two folders byte for byte.
+func sameFiles(t *testing.T, a, b string) bool {
+	t.Helper()
+	entries, err := os.ReadDir(a)
+	if err != nil || len(entries) == 0 {
+		t.Fatalf("%s: %v, %d files", a, err, len(entries))
+	}
+	for _, e := range entries {
+		x, errX := os.ReadFile(filepath.Join(a, e.Name()))
+		y, errY := os.ReadFile(filepath.Join(b, e.Name()))
+		if errX != nil || errY != nil {
+			t.Fatal(errX, errY)
+		}
+		if string(x) != string(y) {
+			return false
+		}
+	}
+	return true
+}
+
+// The whole stage on a small quadrotor: what it reports hangs together, equal input gives equal bytes
+// whatever the threads, and only what stiffness and mass depend on solves again.
+func TestSolve(t *testing.T) {
+	b := newBench(t)
+	m, p := known.Airframe(0.015)
+	set := map[string]float64{"up_to": 600, "swept_to": 400}
+	o, folder, err := b.run(m, p, 2, set)
+	if err != nil {
+		t.Fatal(err)
+	}
+	modes := modesIn(t, folder)
+
+	// Every declared figure is reported, and nothing else.
+	described := map[string]bool{}
+	for _, f := range (solve.Stage{}).Describe().Figures {
+		described[f.Name] = true
+		if _, ok := o.Figures[f.Name]; !ok {
+			t.Errorf("figure %s is declared and not reported", f.Name)
+		}
+	}
+	for name := range o.Figures {
+		if !described[name] {
+			t.Errorf("figure %s is not declared", name)
+		}
+	}
+	sum := 0.0
+	for _, row := range modes.Masses {
+		sum += row.Mass
+	}
+	if math.Abs(sum-modes.Mass) > 1e-9 || figure(t, o, "mass") != modes.Mass {
+		t.Errorf("masses add up to %g of %g kg", sum, modes.Mass)
+	}
+	if !(modes.RigidRatio < 1e-3) || !modes.Proved {
+		t.Errorf("rigid ratio %g, proved %v", modes.RigidRatio, modes.Proved)
+	}
+	if n := figure(t, o, "modes_wanted"); n != figure(t, o, "modes_below") || n < 8 {
+		t.Errorf("%g modes wanted to 600 Hz, %g found", n, figure(t, o, "modes_below"))
+	}
+	for axis, name := range kinds.AxisNames {
+		top := 0.0
+		for _, x := range modes.Survey.Modes {
+			top = max(top, x.Strength[axis])
+		}
+		if figure(t, o, "strength_"+name) != top || !(top > 0) {
+			t.Errorf("strength on %s is %g, the strongest mode has %g", name, figure(t, o, "strength_"+name), top)
+		}
+		if g, ok := modes.Survey.SmallestGap(axis); ok != !math.IsInf(figure(t, o, "smallest_gap_"+name), 1) || ok && g.Width != figure(t, o, "smallest_gap_"+name) {
+			t.Errorf("smallest gap on %s is %g, not %v", name, figure(t, o, "smallest_gap_"+name), g)
+		}
+	}
+	if len(o.Summary) < 2 || len(o.Summary[0].Rows) != len(modes.Survey.Modes) {
+		t.Errorf("the summary has %d tables", len(o.Summary))
+	}
+	if len(o.Warnings) != 0 {
+		t.Errorf("warnings: %+v", o.Warnings)
+	}
+
+	// Again, from what was kept: the same bytes. From nothing with other threads: the same bytes.
+	_, again, err := b.run(m, p, 2, set)
+	if err != nil || b.keep.made != 1 {
+		t.Fatalf("%v; solved %d times", err, b.keep.made)
+	}
+	fresh := newBench(t)
+	_, other, err := fresh.run(m, p, 1, set)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !sameFiles(t, folder, again) || !sameFiles(t, folder, other) {
+		t.Error("equal input gives other bytes")
+	}
+
+	// Loss factors, unbalance, speeds, blades, the swept range: all answered without solving.
+	q := *p
+	q.Materials = append([]airframe.Material(nil), p.Materials...)
+	q.Materials[0].LossFactor *= 2
+	q.Rotors = append([]airframe.Rotor(nil), p.Rotors...)
+	for i := range q.Rotors {
+		q.Rotors[i].HoverSpeed, q.Rotors[i].Grade, q.Rotors[i].Blades = 1400, 0.002, 2
+	}
+	q.Floor = 0.002
+	_, folder2, err := b.run(m, &q, 2, map[string]float64{"up_to": 600, "swept_to": 380})
+	if err != nil || b.keep.made != 1 {
+		t.Fatalf("%v; solved %d times", err, b.keep.made)
+	}
+	damped := modesIn(t, folder2)
+	lossier, weaker := false, false
+	for i, x := range modes.Survey.Modes {
+		y := damped.Survey.Modes[i]
+		if y.Frequency != x.Frequency || y.Loss < x.Loss {
+			t.Errorf("mode %d: %g Hz with loss %g, was %g Hz with %g", i+1, y.Frequency, y.Loss, x.Frequency, x.Loss)
+		}
+		lossier = lossier || y.Loss > 1.5*x.Loss
+		weaker = weaker || y.Strength[1] < 0.7*x.Strength[1]
+	}
+	if !lossier || !weaker || damped.Survey.Modes[0].Meetings[2].Order != 2 {
+		t.Error("a changed loss factor or blade number has no effect")
+	}
+	// Stiffness solves again.
+	q.Materials[0].E1 *= 1.1
+	if _, _, err := b.run(m, &q, 2, set); err != nil || b.keep.made != 2 {
+		t.Errorf("%v; solved %d times", err, b.keep.made)
+	}
+}
+
+func TestWarnings(t *testing.T) {
+	b := newBench(t)
+	m, p := known.Airframe(0.03)
+	p.DeclaredMass = 0.5
+	p.Floor = 0
+	for i := range p.Materials {
+		p.Materials[i].LossFactor = 0
+	}
+	o, _, err := b.run(m, p, 2, map[string]float64{"up_to": 400, "swept_to": 400})
+	if err != nil {
+		t.Fatal(err)
+	}
+	seen := map[string]bool{}
+	for _, w := range o.Warnings {
+		seen[w.ID] = true
+		if w.Remedy == "" || w.Text == "" {
+			t.Errorf("warning %s without text or remedy", w.ID)
+		}
+	}
+	for _, id := range []string{"solve.short-of-sweep", "solve.mass"} {
+		if !seen[id] {
+			t.Errorf("no warning %s among %v", id, seen)
+		}
+	}
+}
+
+func TestFaults(t *testing.T) {
+	for want, spoil := range map[string]func(*mesh.Mesh, *airframe.Properties, map[string]float64){
+		`material "glass"`:          func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Materials[1].G12 = 0 },
+		"not connected to the rest": func(m *mesh.Mesh, _ *airframe.Properties, _ map[string]float64) { m.Links = m.Links[:4] },
+		"stack": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
+			p.Bodies[5].Mount.Points = p.Bodies[5].Mount.Points[:1]
+		},
+		"where the sweep has ended": func(_ *mesh.Mesh, _ *airframe.Properties, set map[string]float64) { set["gaps_from"] = 500 },
+		"does not have six free": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
+			p.Bodies[4].Mount.Points = weak(p.Bodies[4].Mount.Points)
+		},
+		"there is no element type": func(m *mesh.Mesh, _ *airframe.Properties, _ map[string]float64) { m.Parts[1].Element = "square" },
+	} {
+		b := newBench(t)
+		m, p := known.Airframe(0.03)
+		set := map[string]float64{"up_to": 300, "swept_to": 200}
+		spoil(m, p, set)
+		_, out, err := b.run(m, p, 2, set)
+		var f *fault.Error
+		if !errors.As(err, &f) || !strings.Contains(f.Error(), want) || f.Kind == fault.Internal {
+			t.Errorf("got %v, want a fault about %s", err, want)
+		}
+		if entries, _ := os.ReadDir(out); len(entries) != 0 {
+			t.Errorf("%s: a result was written all the same", want)
+		}
+	}
+}
+
+// weak leaves a mount that resists, but by next to nothing.
+func weak(points []airframe.MountPoint) []airframe.MountPoint {
+	out := append([]airframe.MountPoint(nil), points...)
+	for i := range out {
+		for c := range out[i].Stiffness {
+			out[i].Stiffness[c] *= 1e-9
+		}
+	}
+	return out
+}
