@@ -80,6 +80,9 @@ func TestHover(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
+	if unit := o.Summary[1].Columns[3].Name; unit != "(deg/s)²/Hz" {
+		t.Errorf("the densities of the peaks are headed %q", unit)
+	}
 	for _, row := range o.Summary[1].Rows {
 		t.Log(row)
 	}

@@ -119,6 +119,16 @@ func shownUnit(a kinds.SpectraAxis) string {
 	return "m/s²"
 }
 
+// densityUnit heads a column of densities: in the unit of the axes, or in words where they differ.
+func densityUnit(s *kinds.Spectra) string {
+	for _, a := range s.Axes[1:] {
+		if a.Quantity != s.Axes[0].Quantity {
+			return "unit²/Hz"
+		}
+	}
+	return "(" + shownUnit(s.Axes[0]) + ")²/Hz"
+}
+
 func axisTable(s *kinds.Spectra, file string) stage.Section {
 	t := stage.Section{
 		Title: "Recording " + file,
@@ -144,7 +154,7 @@ func peakTable(s *kinds.Spectra) stage.Section {
 	t := stage.Section{
 		Title: "Observed peaks",
 		Text:  "± is one standard error; a narrow peak is a line, or a mode with less damping than can be seen",
-		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "±", Right: true}, {Name: "unit²/Hz", Right: true},
+		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "±", Right: true}, {Name: densityUnit(s), Right: true},
 			{Name: "stands out, dB", Right: true}, {Name: "damping, %", Right: true}, {Name: "±", Right: true}, {Name: "rotor order there"}},
 	}
 	for _, p := range s.Peaks {
