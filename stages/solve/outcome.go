@@ -3,6 +3,7 @@ package solve
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"hushframe/core/mechanics/airframe"
@@ -21,7 +22,7 @@ func outcome(m *kinds.Modes, p *airframe.Properties, set settings, notes []strin
 	s := m.Survey
 	o := &stage.Outcome{Notes: notes, Warnings: warnings(m, p, set)}
 	below, wanted := 0, 0
-	list := []any{}
+	objects := []any{}
 	for i := range s.Modes {
 		mode := &s.Modes[i]
 		if mode.Frequency <= set.upTo {
@@ -36,10 +37,10 @@ func outcome(m *kinds.Modes, p *airframe.Properties, set settings, notes []strin
 		for axis, name := range kinds.AxisNames {
 			object["strength_"+name] = stage.Quantity{SI: mode.Strength[axis], Dimension: "angular rate per force"}
 		}
-		list = append(list, object)
+		objects = append(objects, object)
 	}
 	o.Figures = map[string]any{
-		"modes": list, "lowest": hertz(s.Modes[0].Frequency), "modes_below": float64(below), "modes_wanted": float64(wanted),
+		"modes": objects, "lowest": hertz(s.Modes[0].Frequency), "modes_below": float64(below), "modes_wanted": float64(wanted),
 		"mass": stage.Quantity{SI: m.Mass, Dimension: "mass"}, "rigid_ratio": m.RigidRatio,
 	}
 	for axis, name := range kinds.AxisNames {
@@ -72,8 +73,8 @@ func outcome(m *kinds.Modes, p *airframe.Properties, set settings, notes []strin
 	return o
 }
 
-// nearMeshLimit and weak thresholds of warnings.
-const undamped = 2e-4 // loss factor
+// undamped is the loss factor below which a mode is as good as undamped.
+const undamped = 2e-4
 
 func warnings(m *kinds.Modes, p *airframe.Properties, set settings) []stage.Warning {
 	var out []stage.Warning
@@ -129,20 +130,21 @@ func modeTable(m *kinds.Modes) stage.Section {
 	}
 	for i := range m.Survey.Modes {
 		mode := &m.Survey.Modes[i]
-		s.Rows = append(s.Rows, []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), Motion(mode),
+		s.Rows = append(s.Rows, []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), motion(mode, m.Survey.Groups),
 			strength(mode.Strength[0]), strength(mode.Strength[1]), strength(mode.Strength[2]), gap(mode)})
 	}
 	return s
 }
 
-// Motion says in words what a mode is: "bending of arm_fr (41 %)", with the share of the strain energy in
-// the part.
-func Motion(m *modal.Mode) string {
-	share := 0.0
-	for _, v := range m.ByGroup {
-		share = max(share, v)
+// motion says in words what a mode is: "bending of arm_fl, arm_fr (41 % each)", with the share of the
+// strain energy in the part.
+func motion(m *modal.Mode, groups []string) string {
+	leading := m.Leading(groups)
+	each := ""
+	if len(leading) > 1 {
+		each = " each"
 	}
-	return fmt.Sprintf("%s of %s (%.0f %%)", m.Motion, m.Part, 100*share)
+	return fmt.Sprintf("%s of %s (%.0f %%%s)", m.Motion, list(leading), 100*slices.Max(m.ByGroup), each)
 }
 
 // meetingTable lists, per mode, the speeds of orders 1, 2 and blade passing within the service range.

@@ -120,28 +120,41 @@ func shares(a []float64) []float64 {
 	return out
 }
 
+// alike is the share of the greatest strain energy from which a part counts as equal to the first:
+// arms that are alike differ by rounding and by their meshes.
+const alike = 0.95
+
 func (m *Mode) energies(strain [][6]float64, kinetic []float64, s *Survey) {
 	m.ByKind = make([]float64, len(s.Kinds))
 	m.ByGroup = make([]float64, len(s.Groups))
 	m.ByCarrier = kinetic
-	top := 0
 	for g := range strain {
 		for k, v := range strain[g] {
 			m.ByGroup[g] += v
 			m.ByKind[k] += v
 		}
-		if m.ByGroup[g] > m.ByGroup[top] {
-			top = g
-		}
 	}
-	m.Part = s.Groups[top]
+	most := slices.Max(m.ByGroup)
+	top := slices.IndexFunc(m.ByGroup, func(v float64) bool { return v >= alike*most })
 	kind := 0
 	for k, v := range strain[top] {
 		if v > strain[top][kind] {
 			kind = k
 		}
 	}
-	m.Motion = s.Kinds[kind]
+	m.Part, m.Motion = s.Groups[top], s.Kinds[kind]
+}
+
+// Leading lists the groups whose share of the strain energy is the greatest or nearly so, in order.
+func (m *Mode) Leading(groups []string) []string {
+	most := slices.Max(m.ByGroup)
+	var names []string
+	for g, v := range m.ByGroup {
+		if v >= alike*most {
+			names = append(names, groups[g])
+		}
+	}
+	return names
 }
 
 // ratio is a/b, and 0 for 0/0.

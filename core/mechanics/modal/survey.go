@@ -20,8 +20,7 @@ type Mode struct {
 	Loss      float64 // loss factor; the damping ratio is half of it
 	// Shares of the energies; each adds up to one.
 	ByGroup, ByKind, ByCarrier []float64
-	// Part and Motion name the group and kind with the greatest strain energy, but for joints and
-	// mounts, whose motion is themselves.
+	// Part names the group with the greatest strain energy, the first of equals; Motion its greatest kind.
 	Part, Motion string
 	// Rotation is the rotation of the gyro per unit modal coordinate, rad.
 	Rotation [3]float64
