@@ -27,7 +27,7 @@ func SubMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 // SubMulTLower is SubMulT for a square C of n by n whose lower triangle alone is wanted. Some entries above the
 // diagonal, in tiles that touch it, are overwritten with numbers of no meaning.
 func SubMulTLower(n, k int, a []float64, lda int, b []float64, ldb int, c []float64, ldc int) {
-	const tile = 8
+	const tile = 6
 	if n < 0 || k < 0 || lda < k || ldb < k || ldc < n {
 		panic("dense: SubMulTLower: bad shape")
 	}
@@ -37,23 +37,21 @@ func SubMulTLower(n, k int, a []float64, lda int, b []float64, ldb int, c []floa
 	}
 }
 
-// subMulT is SubMulT for operands that fit the cache: tiles of 4 by 2 with the edges done one row or column at a time.
+// subMulT is SubMulT for operands that fit the cache: tiles of 3 by 2, what is left row by row.
 func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float64, ldc int) {
 	i := 0
-	for ; i+4 <= m; i += 4 {
+	for ; i+3 <= m; i += 3 {
 		a0 := a[i*lda:][:k]
 		a1 := a[(i+1)*lda:][:len(a0)]
 		a2 := a[(i+2)*lda:][:len(a0)]
-		a3 := a[(i+3)*lda:][:len(a0)]
 		r0 := c[i*ldc:][:n]
 		r1 := c[(i+1)*ldc:][:n]
 		r2 := c[(i+2)*ldc:][:n]
-		r3 := c[(i+3)*ldc:][:n]
 		j := 0
 		for ; j+2 <= n; j += 2 {
 			b0 := b[j*ldb:][:len(a0)]
 			b1 := b[(j+1)*ldb:][:len(a0)]
-			var s00, s10, s20, s30, s01, s11, s21, s31 float64
+			var s00, s10, s20, s01, s11, s21 float64
 			for p := range a0 {
 				x, y := b0[p], b1[p]
 				v := a0[p]
@@ -65,9 +63,6 @@ func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 				v = a2[p]
 				s20 += v * x
 				s21 += v * y
-				v = a3[p]
-				s30 += v * x
-				s31 += v * y
 			}
 			r0[j] -= s00
 			r0[j+1] -= s01
@@ -75,48 +70,52 @@ func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 			r1[j+1] -= s11
 			r2[j] -= s20
 			r2[j+1] -= s21
-			r3[j] -= s30
-			r3[j+1] -= s31
 		}
 		if j < n {
 			b0 := b[j*ldb:][:len(a0)]
-			var s0, s1, s2, s3 float64
-			for p := range a0 {
-				x := b0[p]
+			var s0, s1, s2 float64
+			for p, x := range b0 {
 				s0 += a0[p] * x
 				s1 += a1[p] * x
 				s2 += a2[p] * x
-				s3 += a3[p] * x
 			}
 			r0[j] -= s0
 			r1[j] -= s1
 			r2[j] -= s2
-			r3[j] -= s3
 		}
 	}
 	for ; i < m; i++ {
-		a0 := a[i*lda:][:k]
-		row := c[i*ldc:][:n]
-		j := 0
-		for ; j+2 <= n; j += 2 {
-			b0 := b[j*ldb:][:len(a0)]
-			b1 := b[(j+1)*ldb:][:len(a0)]
-			var s0, s1 float64
-			for p, v := range a0 {
-				s0 += v * b0[p]
-				s1 += v * b1[p]
-			}
-			row[j] -= s0
-			row[j+1] -= s1
+		subRow(n, a[i*lda:][:k], b, ldb, c[i*ldc:][:n])
+	}
+}
+
+// subRow is subMulT for one row.
+func subRow(n int, a, b []float64, ldb int, c []float64) {
+	j := 0
+	for ; j+4 <= n; j += 4 {
+		b0 := b[j*ldb:][:len(a)]
+		b1 := b[(j+1)*ldb:][:len(a)]
+		b2 := b[(j+2)*ldb:][:len(a)]
+		b3 := b[(j+3)*ldb:][:len(a)]
+		var s0, s1, s2, s3 float64
+		for p, v := range a {
+			s0 += v * b0[p]
+			s1 += v * b1[p]
+			s2 += v * b2[p]
+			s3 += v * b3[p]
 		}
-		if j < n {
-			b0 := b[j*ldb:][:len(a0)]
-			var s float64
-			for p, v := range a0 {
-				s += v * b0[p]
-			}
-			row[j] -= s
+		c[j] -= s0
+		c[j+1] -= s1
+		c[j+2] -= s2
+		c[j+3] -= s3
+	}
+	for ; j < n; j++ {
+		b0 := b[j*ldb:][:len(a)]
+		s := 0.0
+		for p, v := range a {
+			s += v * b0[p]
 		}
+		c[j] -= s
 	}
 }
 

@@ -11,7 +11,7 @@ import (
 
 const (
 	panelWidth = 48 // columns eliminated together
-	stripRows  = 64 // rows that one goroutine updates at a time; fixed, so that sums do not depend on threads
+	stripRows  = 66 // rows that one goroutine updates at a time; fixed, so that sums do not depend on threads
 )
 
 // update is what a supernode leaves for its parent: a square matrix on its rows below, lower triangle.

@@ -4,14 +4,16 @@ import (
 	"hushframe/core/numeric/dense"
 )
 
-// lanes is the number of right-hand sides solved for in one pass over the factor.
+// lanes is the number of right-hand sides solved for in one pass over the factor. Those of a position lie side by side.
 const lanes = 4
+
+type lane = [lanes]float64
 
 // Solve overwrites nrhs right-hand sides, stored one after another, each of length N, with the solutions of A·x = b.
 // Each gets the same bits whatever is solved along with it. It uses one goroutine; SolveThreads uses several.
 func (f *Factor) Solve(x []float64, nrhs int) { f.SolveThreads(x, nrhs, 1) }
 
-// SolveThreads is Solve with groups of right-hand sides spread over goroutines.
+// SolveThreads is Solve with groups of four right-hand sides spread over goroutines.
 func (f *Factor) SolveThreads(x []float64, nrhs, threads int) {
 	n := len(f.d)
 	if nrhs < 0 || len(x) != n*nrhs {
@@ -24,22 +26,22 @@ func (f *Factor) SolveThreads(x []float64, nrhs, threads int) {
 	})
 }
 
-// solveGroup solves for up to four right-hand sides, held side by side: the four numbers of a position are adjacent.
+// solveGroup solves for up to four right-hand sides.
 func (f *Factor) solveGroup(x []float64, count int) {
 	n := len(f.d)
-	y := make([]float64, n*lanes)
+	y := make([]lane, n)
 	order := f.analysis.order
 	for r := range count {
 		b := x[r*n:][:n]
 		for k, u := range order {
-			y[k*lanes+r] = b[u] * f.scale[u]
+			y[k][r] = b[u] * f.scale[u]
 		}
 	}
-	most := 0
+	widest := 0
 	for s := range f.pivots {
-		most = max(most, len(f.pivots[s]))
+		widest = max(widest, len(f.pivots[s]))
 	}
-	z := make([]float64, most*lanes)
+	z := make([]lane, widest)
 	for s := range f.pivots {
 		f.forward(s, y, z)
 	}
@@ -49,159 +51,122 @@ func (f *Factor) solveGroup(x []float64, count int) {
 	for r := range count {
 		b := x[r*n:][:n]
 		for k, u := range order {
-			b[u] = y[k*lanes+r] * f.scale[u]
+			b[u] = y[k][r] * f.scale[u]
 		}
 	}
 }
 
-// forward eliminates the columns of supernode s from the right-hand sides and divides them by D.
-func (f *Factor) forward(s int, y, z []float64) {
+// forward eliminates the columns of supernode s from the right-hand sides y and divides them by D. z is room for them.
+func (f *Factor) forward(s int, y, z []lane) {
 	node := &f.analysis.nodes[s]
 	width := int(node.width)
 	l := f.l[node.offset:]
+	z = z[:width]
 	for k, position := range f.pivots[s] {
-		copy(z[k*lanes:][:lanes], y[int(position)*lanes:])
+		z[k] = y[position]
 	}
 	for k := 1; k < width; k++ {
-		s0, s1, s2, s3 := dotLanes(l[k*width:][:k], z)
-		v := z[k*lanes:][:lanes]
-		v[0] -= s0
-		v[1] -= s1
-		v[2] -= s2
-		v[3] -= s3
+		subtract(&z[k], dot(l[k*width:][:k], z))
 	}
+	below := l[width*width:]
 	rows := node.rows[width:]
-	i := 0
-	for ; i+2 <= len(rows); i += 2 {
-		l0 := l[(width+i)*width:][:width]
-		l1 := l[(width+i+1)*width:][:width]
-		var a0, a1, a2, a3, b0, b1, b2, b3 float64
-		zz := z
-		for k, u := range l0 {
-			if len(zz) < lanes {
-				break
-			}
-			v := l1[k]
-			a0 += u * zz[0]
-			b0 += v * zz[0]
-			a1 += u * zz[1]
-			b1 += v * zz[1]
-			a2 += u * zz[2]
-			b2 += v * zz[2]
-			a3 += u * zz[3]
-			b3 += v * zz[3]
-			zz = zz[lanes:]
-		}
-		t := y[int(rows[i])*lanes:][:lanes]
-		t[0] -= a0
-		t[1] -= a1
-		t[2] -= a2
-		t[3] -= a3
-		t = y[int(rows[i+1])*lanes:][:lanes]
-		t[0] -= b0
-		t[1] -= b1
-		t[2] -= b2
-		t[3] -= b3
+	for _, position := range rows {
+		subtract(&y[position], dot(below[:width], z))
+		below = below[width:]
 	}
-	if i < len(rows) {
-		s0, s1, s2, s3 := dotLanes(l[(width+i)*width:][:width], z)
-		t := y[int(rows[i])*lanes:][:lanes]
-		t[0] -= s0
-		t[1] -= s1
-		t[2] -= s2
-		t[3] -= s3
-	}
-	f.divideLanes(int(node.first), width, z)
+	f.divideLanes(int(node.first), z)
 	for k, position := range f.pivots[s] {
-		copy(y[int(position)*lanes:][:lanes], z[k*lanes:])
-	}
-}
-
-// dotLanes returns the sums over k of l[k] times the four numbers at k.
-func dotLanes(l, z []float64) (s0, s1, s2, s3 float64) {
-	for _, u := range l {
-		if len(z) < lanes {
-			break
-		}
-		s0 += u * z[0]
-		s1 += u * z[1]
-		s2 += u * z[2]
-		s3 += u * z[3]
-		z = z[lanes:]
-	}
-	return s0, s1, s2, s3
-}
-
-func (f *Factor) divideLanes(first, width int, z []float64) {
-	for k := 0; k < width; k++ {
-		d, e := f.d[first+k], f.e[first+k]
-		v := z[k*lanes:][:lanes]
-		if e == 0 {
-			for r := range v {
-				v[r] /= d
-			}
-			continue
-		}
-		u := z[(k+1)*lanes:][:lanes]
-		for r := range v {
-			v[r], u[r] = dense.SolveTwo(d, f.d[first+k+1], e, v[r], u[r])
-		}
-		k++
+		y[position] = z[k]
 	}
 }
 
 // backward substitutes the rows below into the columns of supernode s.
-func (f *Factor) backward(s int, y, z []float64) {
+func (f *Factor) backward(s int, y, z []lane) {
 	node := &f.analysis.nodes[s]
 	width := int(node.width)
 	l := f.l[node.offset:]
+	z = z[:width]
 	for k, position := range f.pivots[s] {
-		copy(z[k*lanes:][:lanes], y[int(position)*lanes:])
+		z[k] = y[position]
 	}
+	below := l[width*width:]
 	rows := node.rows[width:]
-	i := 0
-	for ; i+2 <= len(rows); i += 2 {
-		t := y[int(rows[i])*lanes:][:lanes]
-		a0, a1, a2, a3 := t[0], t[1], t[2], t[3]
-		t = y[int(rows[i+1])*lanes:][:lanes]
-		b0, b1, b2, b3 := t[0], t[1], t[2], t[3]
-		l0 := l[(width+i)*width:][:width]
-		l1 := l[(width+i+1)*width:][:width]
-		zz := z
-		for k, u := range l0 {
-			if len(zz) < lanes {
-				break
-			}
-			v := l1[k]
-			zz[0] -= u*a0 + v*b0
-			zz[1] -= u*a1 + v*b1
-			zz[2] -= u*a2 + v*b2
-			zz[3] -= u*a3 + v*b3
-			zz = zz[lanes:]
-		}
+	for len(rows) >= 2 {
+		subtractTwo(z, below[:width], below[width:2*width], &y[rows[0]], &y[rows[1]])
+		rows, below = rows[2:], below[2*width:]
 	}
-	if i < len(rows) {
-		subtractRow(l[(width+i)*width:][:width], y[int(rows[i])*lanes:], z)
+	if len(rows) > 0 {
+		subtractRow(z, below[:width], &y[rows[0]])
 	}
 	for k := width - 1; k > 0; k-- {
-		subtractRow(l[k*width:][:k], z[k*lanes:], z)
+		subtractRow(z[:k], l[k*width:][:k], &z[k])
 	}
 	for k, position := range f.pivots[s] {
-		copy(y[int(position)*lanes:][:lanes], z[k*lanes:])
+		y[position] = z[k]
 	}
 }
 
-// subtractRow takes from the four numbers at each k l[k] times the four numbers at t.
-func subtractRow(l, t, z []float64) {
+func subtract(t *lane, s lane) {
+	t[0] -= s[0]
+	t[1] -= s[1]
+	t[2] -= s[2]
+	t[3] -= s[3]
+}
+
+// dot returns the sum over k of l[k]·z[k].
+func dot(l []float64, z []lane) lane {
+	var s0, s1, s2, s3 float64
+	z = z[:len(l)]
+	for k, u := range l {
+		t := &z[k]
+		s0 += u * t[0]
+		s1 += u * t[1]
+		s2 += u * t[2]
+		s3 += u * t[3]
+	}
+	return lane{s0, s1, s2, s3}
+}
+
+// subtractRow computes z[k] -= l[k]·t for all k.
+func subtractRow(z []lane, l []float64, t *lane) {
 	a0, a1, a2, a3 := t[0], t[1], t[2], t[3]
-	for _, u := range l {
-		if len(z) < lanes {
-			break
+	z = z[:len(l)]
+	for k, u := range l {
+		w := &z[k]
+		w[0] -= u * a0
+		w[1] -= u * a1
+		w[2] -= u * a2
+		w[3] -= u * a3
+	}
+}
+
+// subtractTwo computes z[k] -= l[k]·s + m[k]·t for all k.
+func subtractTwo(z []lane, l, m []float64, s, t *lane) {
+	a0, a1, a2, a3 := s[0], s[1], s[2], s[3]
+	b0, b1, b2, b3 := t[0], t[1], t[2], t[3]
+	z, m = z[:len(l)], m[:len(l)]
+	for k, u := range l {
+		w, v := &z[k], m[k]
+		w[0] -= u*a0 + v*b0
+		w[1] -= u*a1 + v*b1
+		w[2] -= u*a2 + v*b2
+		w[3] -= u*a3 + v*b3
+	}
+}
+
+// divideLanes divides by the blocks of D of the columns from first on.
+func (f *Factor) divideLanes(first int, z []lane) {
+	for k := 0; k < len(z); k++ {
+		d, e := f.d[first+k], f.e[first+k]
+		if e == 0 {
+			for r := range z[k] {
+				z[k][r] /= d
+			}
+			continue
 		}
-		z[0] -= u * a0
-		z[1] -= u * a1
-		z[2] -= u * a2
-		z[3] -= u * a3
-		z = z[lanes:]
+		for r := range z[k] {
+			z[k][r], z[k+1][r] = dense.SolveTwo(d, f.d[first+k+1], e, z[k][r], z[k+1][r])
+		}
+		k++
 	}
 }
