@@ -104,6 +104,8 @@ func explain(err error, arguments stage.Arguments) error {
 		return f.Of("sizes").Do("use the name of a plate in the airframe file")
 	case p.Unknown && typed:
 		return f.Of("elements").Do("use the name of a plate in the airframe file")
+	case p.Size && sized:
+		return f.Of("sizes").Do("choose a larger size")
 	case p.Size:
 		return f.Of("size").Do("choose a larger size")
 	}

@@ -46,6 +46,9 @@ const (
 	linearRatio = 0.15
 )
 
+// mostCorners bounds the corner nodes of a plate: no solver of this program could use more.
+const mostCorners = 300_000
+
 // linear is the element type that gets no rows.
 const linear = "linear-triangle"
 
@@ -120,7 +123,7 @@ func plateMeshes(ctx context.Context, g *airframe.Geometry, o Options) ([]*plana
 			if err := ctx.Err(); err != nil {
 				return err
 			}
-			meshes[i], problems[i] = plateMesh(g, i, o)
+			meshes[i], problems[i] = plateMesh(ctx, g, i, o)
 			lock.Lock()
 			defer lock.Unlock()
 			if done++; o.Progress != nil {
@@ -148,11 +151,15 @@ func (o *Options) element(plate string) string {
 	return o.Element
 }
 
-func plateMesh(g *airframe.Geometry, i int, o Options) (*planar.Mesh, error) {
+func plateMesh(ctx context.Context, g *airframe.Geometry, i int, o Options) (*planar.Mesh, error) {
 	p := &g.Plates[i]
 	size := o.Size
 	if s, ok := o.Sizes[p.Name]; ok {
 		size = s
+	}
+	// Equilateral triangles of the wanted size have this many corners.
+	if corners := p.Region.Area() / (math.Sqrt(3) / 2 * size * size); corners > mostCorners {
+		return nil, &Problem{Part: p.Name, Size: true, Text: fmt.Sprintf("sides of %g m would need about %.0f nodes, more than %d", size, corners, mostCorners)}
 	}
 	var lines []outline.Loop
 	for k := range g.Patches {
@@ -166,6 +173,9 @@ func plateMesh(g *airframe.Geometry, i int, o Options) (*planar.Mesh, error) {
 		Lines:   lines,
 		PerTurn: o.PerTurn,
 		Snap:    size / 100,
+
+		MaxVertices: mostCorners,
+		Stop:        ctx.Err,
 	}
 	ratio := linearRatio
 	if o.element(p.Name) != linear {
@@ -185,11 +195,13 @@ func plateMesh(g *airframe.Geometry, i int, o Options) (*planar.Mesh, error) {
 		return size
 	}
 	m, err := planar.Triangulate(p.Region, options)
-	if err != nil {
+	switch {
+	case ctx.Err() != nil:
+		return nil, ctx.Err()
+	case err != nil:
 		return nil, &Problem{Part: p.Name, Text: err.Error()}
-	}
-	if !m.Complete {
-		return nil, &Problem{Part: p.Name, Size: true, Text: fmt.Sprintf("more than %d nodes would be needed for sides of %g m", m.Corners, size)}
+	case !m.Complete:
+		return nil, &Problem{Part: p.Name, Size: true, Text: fmt.Sprintf("sides of %g m would need more than %d nodes", size, mostCorners)}
 	}
 	return m, nil
 }

@@ -99,6 +99,13 @@ func TestNearLinesJoin(t *testing.T) {
 		if len(m.Triangles) > 600 {
 			t.Errorf("%s: %d triangles", name, len(m.Triangles))
 		}
+		for _, n := range m.Triangles {
+			for i := range 3 {
+				if l := m.Nodes[n[i]].Distance(m.Nodes[n[next(i)]]); l < 2*snap {
+					t.Errorf("%s: a side of %g m near %v", name, l, m.Nodes[n[i]])
+				}
+			}
+		}
 	}
 }
 

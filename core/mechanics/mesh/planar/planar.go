@@ -32,6 +32,8 @@ type Options struct {
 	Snap float64
 	// MaxVertices bounds the corner vertices; 0 means 2,000,000.
 	MaxVertices int
+	// Stop, when set, is asked now and then; an error ends the work and is returned.
+	Stop func() error
 }
 
 // Mesh is a region in triangles.

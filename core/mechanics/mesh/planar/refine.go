@@ -74,7 +74,12 @@ func (g *mesher) refine() error {
 
 // removeBad works off the queue of bad triangles.
 func (g *mesher) removeBad() error {
-	for g.bad.Len() > 0 {
+	for round := 0; g.bad.Len() > 0; round++ {
+		if g.options.Stop != nil && round%1000 == 0 {
+			if err := g.options.Stop(); err != nil {
+				return err
+			}
+		}
 		if len(g.p) >= g.options.MaxVertices {
 			g.complete = false
 			return nil
