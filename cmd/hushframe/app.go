@@ -157,6 +157,10 @@ func (a *app) humanLog(w io.Writer) zerolog.ConsoleWriter {
 			}
 			return ""
 		},
+		FormatMessage: func(v any) string {
+			s, _ := v.(string)
+			return s
+		},
 		FormatLevel: func(v any) string {
 			if v == "warn" || v == "error" {
 				return v.(string) + ":"

@@ -12,6 +12,7 @@ import (
 	"github.com/vbauerster/mpb/v8"
 	"github.com/vbauerster/mpb/v8/decor"
 
+	"hushframe/core/pipeline/plan"
 	"hushframe/core/pipeline/run"
 	"hushframe/core/pipeline/stage"
 )
@@ -21,12 +22,14 @@ import (
 type barWatch struct {
 	progress *mpb.Progress
 	log      zerolog.Logger
-	width    int
+	width    int // of the label
+	kinds    int // width of the kind of stage
 	color    bool
 	whole    *mpb.Bar
 
 	mu    sync.Mutex
 	bars  map[string]*stepBar
+	begun int
 	ended int
 }
 
@@ -38,17 +41,20 @@ type stepBar struct {
 	fraction float64
 }
 
-func newBarWatch(a *app, width, steps int) *barWatch {
+func newBarWatch(a *app, p *plan.Plan, width int) *barWatch {
 	w := &barWatch{
 		progress: mpb.New(mpb.WithOutput(a.err), mpb.WithRefreshRate(100*time.Millisecond)),
 		width:    width, color: a.color, bars: map[string]*stepBar{},
+	}
+	for _, s := range p.Steps {
+		w.kinds = max(w.kinds, len(s.Stage.Kind))
 	}
 	w.log = a.log.Output(a.humanLog(w.progress))
 	began := time.Now()
 	w.whole = w.add(1<<30, func(columns int) string {
 		w.mu.Lock()
 		defer w.mu.Unlock()
-		return fmt.Sprintf("%d of %s, %s", w.ended, count(steps, "step", "steps"), duration(time.Since(began)))
+		return fmt.Sprintf("%d of %s, %s", w.ended, count(len(p.Steps), "step", "steps"), duration(time.Since(began)))
 	})
 	return w
 }
@@ -67,32 +73,39 @@ func (w *barWatch) add(priority int, draw func(columns int) string) *mpb.Bar {
 }
 
 func (w *barWatch) Begin(label, kind string, threads int) {
-	b := &stepBar{phase: kind, fraction: -1}
+	b := &stepBar{phase: "starts", fraction: -1}
 	began := time.Now()
-	b.bar = w.add(0, func(columns int) string {
+	head := fmt.Sprintf("%-*s  %-*s", w.width, label, w.kinds, kind)
+	w.mu.Lock()
+	w.begun++
+	order := w.begun
+	w.bars[label] = b
+	w.mu.Unlock()
+	b.bar = w.add(order, func(columns int) string {
 		b.mu.Lock()
 		defer b.mu.Unlock()
-		return barLine(label, w.width, b.phase, b.fraction, time.Since(began), columns)
+		return barLine(head, b.phase, b.fraction, time.Since(began), columns)
 	})
-	w.mu.Lock()
-	defer w.mu.Unlock()
-	w.bars[label] = b
 }
 
-// barLine is the line of one step: label, phase, bar, per cent, time.
-func barLine(label string, width int, phase string, fraction float64, elapsed time.Duration, columns int) string {
-	const phaseWidth, fixed = 20, 20
-	line := fmt.Sprintf("%-*s  %s", width, label, pad(phase, phaseWidth))
-	room := min(columns-width-phaseWidth-fixed, 30)
-	if fraction < 0 {
-		return fmt.Sprintf("%s  %s  %6s  %s", line, pad("", max(room, 0)), "", duration(elapsed))
+// barLine is the line of one step in a number of columns: label and kind of
+// stage, phase, bar, per cent, time. What does not fit is left out: first the
+// bar, then the end of the line.
+func barLine(head, phase string, fraction float64, elapsed time.Duration, columns int) string {
+	const phaseWidth, rest = 18, 22
+	line := head + "  " + pad(phase, phaseWidth)
+	room := min(columns-utf8.RuneCountInString(line)-rest, 30)
+	bar, share := "", ""
+	if fraction >= 0 {
+		fraction = min(fraction, 1)
+		full := int(fraction * float64(max(room, 0)))
+		bar = strings.Repeat("━", full) + strings.Repeat("╌", max(room, 0)-full)
+		share = fmt.Sprintf("%.0f %%", 100*fraction)
 	}
-	fraction = min(fraction, 1)
 	if room >= 5 {
-		full := int(fraction * float64(room))
-		line += "  " + strings.Repeat("━", full) + strings.Repeat("╌", room-full)
+		line += "  " + pad(bar, room)
 	}
-	return fmt.Sprintf("%s  %4.0f %%  %s", line, 100*fraction, duration(elapsed))
+	return cutTo(fmt.Sprintf("%s  %5s  %s", line, share, duration(elapsed)), columns)
 }
 
 func (w *barWatch) Progress(label, phase string, fraction float64) {

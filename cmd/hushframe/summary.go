@@ -16,8 +16,17 @@ import (
 // summary writes the results of a run: what each step has to say, findings,
 // requirements, and where reports are.
 func (a *app) summary(r *run.Result) {
+	titles := map[string]int{}
 	for _, s := range r.Steps {
 		for _, section := range s.Outcome.Summary {
+			titles[section.Title]++
+		}
+	}
+	for _, s := range r.Steps {
+		for _, section := range s.Outcome.Summary {
+			if titles[section.Title] > 1 {
+				section.Title += " of " + s.Label
+			}
 			writeSection(a.out, section)
 		}
 	}

@@ -30,7 +30,7 @@ func (a *app) watch(p *plan.Plan) watcher {
 	case a.logFormat == "json":
 		return &jsonWatch{log: a.log}
 	case a.live:
-		return newBarWatch(a, width, len(p.Steps))
+		return newBarWatch(a, p, width)
 	}
 	return &lineWatch{out: a.err, log: a.log, width: width, phases: map[string]string{}}
 }

@@ -1,0 +1,264 @@
+package main
+
+import (
+	"encoding/json"
+	"os"
+	"path/filepath"
+	"regexp"
+	"slices"
+	"strings"
+	"testing"
+	"time"
+
+	"hushframe/core/pipeline/store"
+)
+
+func TestHelp(t *testing.T) {
+	w := newTower(t)
+	w.raw = true
+	var all strings.Builder
+	for _, verb := range [][]string{{"help"}, {"run", "--help"}, {"check", "--help"}, {"chain", "--help"}, {"stages", "--help"}, {"inspect", "--help"}, {"start", "--help"}, {"prune", "--help"}, {"version", "--help"}} {
+		code, out, err := w.call(verb...)
+		if code != exitHeld || err != "" {
+			t.Errorf("%v: exit %d, %s", verb, code, err)
+		}
+		all.WriteString("=== " + strings.Join(verb, " ") + "\n" + out)
+	}
+	approve(t, "help", all.String())
+}
+
+func TestRunShowsResults(t *testing.T) {
+	w := newTower(t)
+	code, out, err := w.call("run", w.job, "--threads", "1")
+	if code != exitHeld {
+		t.Fatalf("exit %d: %s", code, err)
+	}
+	approve(t, "run-results", out)
+	approve(t, "run-progress", err)
+	page, _ := os.ReadFile(filepath.Join(w.dir, "out", "page.txt"))
+	if string(page) != "bells by hushframe (development)\nlow holds=true\n" {
+		t.Errorf("page %q", page)
+	}
+	_, again, err := w.call("run", w.job, "--threads", "1")
+	if strings.ReplaceAll(again, "3 as before", "3 ran") != out {
+		t.Errorf("a second run shows other results:\n%s", again)
+	}
+	lines := slices.Sorted(strings.Lines(err)) // look-ups run at once
+	approve(t, "run-again", strings.Join(lines, ""))
+}
+
+func TestExitCodes(t *testing.T) {
+	w := newTower(t)
+	change := func(old, new string) { w.write("bells.hcl", strings.Replace(bellJob, old, new, 1)) }
+	check := func(name string, code int, words ...string) {
+		t.Helper()
+		got, out, err := w.call("run", w.job)
+		if got != code {
+			t.Errorf("%s: exit %d, want %d: %s", name, got, code, err)
+		}
+		for _, word := range words {
+			if !strings.Contains(out+err, word) {
+				t.Errorf("%s: %q is missing in\n%s\n%s", name, word, out, err)
+			}
+		}
+	}
+	check("all well", exitHeld, "every requirement holds")
+	change(`"700 Hz"`, `"600 Hz"`)
+	check("broken", exitBroken, "low          broken  stage.small.figures.tone = 670 Hz, at most 600 Hz  -70 Hz", "1 requirement is broken", "page wrote out/page.txt (and 1 file beside it)")
+	change(`"small.txt"`, `"small.txt"`+"\n  mood = \"fail\"")
+	check("failed", exitFailed, "Stage small failed", `bells.hcl, line 14, in stage "ring" "small"`, "the bell is cracked", "1 requirement was not judged")
+	change(`"small.txt"`, `"small.txt"`+"\n  mood = \"crash\"")
+	check("crashed", exitFailed, "run: stage ring: the process ended without answering (exit status 3)", "Last lines of small:\n  | the clapper flies off\n")
+	w.write("small.txt", "high")
+	change("", "")
+	check("bad file", exitFailed, "bells.hcl, line 15, in stage", `  bell  = "small.txt"`, `"high" is no tone; write a number in Hz`)
+	change(`"ring" "small"`, `"wring" "small"`)
+	check("bad job", exitUsage, `"wring"`, `"ring"`)
+	if err := os.Remove(w.job); err != nil {
+		t.Fatal(err)
+	}
+	check("no job", exitUsage)
+
+	w = newTower(t)
+	for _, c := range []struct {
+		args string
+		want string
+	}{
+		{"run", "one job is wanted"},
+		{"walk bells.hcl", `unknown command "walk"`},
+		{"run bells.hcl --sett a=b", "unknown flag: --sett"},
+		{"run bells.hcl --set raise", "write NAME=VALUE"},
+		{"run bells.hcl --set raise=1Hz --set raise=2Hz", "gives raise twice"},
+		{"run bells.hcl --set raise=2mm", "length"},
+		{"run bells.hcl --set rise=2Hz", "raise"},
+		{"run bells.hcl --memory 3kg", "memory"},
+		{"run bells.hcl --threads -1", "cannot be negative"},
+		{"run bells.hcl --log xml", "it can be human or json"},
+		{"check none.hcl", "none.hcl"},
+		{"inspect bells.hcl small", "bells.hcl has not been run here; run it first"},
+		{"stages rung", `there is no stage "rung"; did you mean "ring"?`},
+		{"prune none.hcl", "there is no job"},
+		{"prune bells.hcl --unused-for 3kg", "time"},
+	} {
+		args := strings.Fields(strings.NewReplacer("bells.hcl", w.job, "none.hcl", filepath.Join(w.dir, "none.hcl")).Replace(c.args))
+		if code, out, err := w.call(args...); code != exitUsage || !strings.Contains(err, c.want) || out != "" {
+			t.Errorf("%s: exit %d, %q, %q", c.args, code, out, err)
+		}
+	}
+	if _, err := os.Stat(filepath.Join(w.dir, store.FolderName)); err == nil {
+		t.Error("mistakes made a store")
+	}
+}
+
+func TestSettings(t *testing.T) {
+	w := newTower(t)
+	if code, out, err := w.call("run", w.job, "--set", "raise=50Hz"); code != exitBroken || !strings.Contains(out, "tone = 710 Hz") {
+		t.Errorf("exit %d: %s%s", code, out, err)
+	}
+}
+
+func TestCheck(t *testing.T) {
+	w := newTower(t)
+	code, out, err := w.call("check", w.job)
+	if code != exitHeld || err != "" {
+		t.Fatalf("exit %d: %s", code, err)
+	}
+	approve(t, "check", out)
+	if _, err := os.Stat(filepath.Join(w.dir, store.FolderName)); err == nil {
+		t.Error("checking made a store")
+	}
+}
+
+func TestChain(t *testing.T) {
+	w := newTower(t)
+	_, before, _ := w.call("chain", w.job)
+	w.call("run", w.job)
+	_, after, _ := w.call("chain", w.job)
+	w.write("small.txt", "650")
+	_, changed, _ := w.call("chain", w.job)
+	// Columns are as wide as the times in them.
+	approve(t, "chain", regexp.MustCompile(`  +`).ReplaceAllString(before+after+changed, "  "))
+}
+
+func TestInspect(t *testing.T) {
+	w := newTower(t)
+	w.call("run", w.job)
+	code, out, err := w.call("inspect", w.job, "page")
+	if code != exitHeld {
+		t.Fatalf("exit %d: %s", code, err)
+	}
+	_, rows, _ := w.call("inspect", w.job, "page.page", "--table", "tables")
+	last, lerr := store.View(w.dir, nil).LastRun("bells.hcl")
+	if lerr != nil {
+		t.Fatal(lerr)
+	}
+	_, folder, _ := w.call("inspect", store.View(w.dir, nil).Folder(last.Steps[2].Outputs["page"].Hash))
+	if folder != out {
+		t.Errorf("by its folder it shows\n%s", folder)
+	}
+	approve(t, "inspect", out+rows)
+	for args, want := range map[string]string{
+		"inspect JOB pages":              `has no step "pages"; did you mean "page"?`,
+		"inspect JOB page.pag":           `has no output "pag"; did you mean "page"?`,
+		"inspect JOB page --table table": `has no table "table"; did you mean "tables"?`,
+		"inspect JOB":                    "is no artifact folder",
+	} {
+		if code, _, err := w.call(strings.Fields(strings.Replace(args, "JOB", w.job, 1))...); code != exitUsage || !strings.Contains(err, want) {
+			t.Errorf("%s: exit %d, %s", args, code, err)
+		}
+	}
+}
+
+func TestStages(t *testing.T) {
+	w := newTower(t)
+	_, list, _ := w.call("stages")
+	_, one, _ := w.call("stages", "ring")
+	approve(t, "stages", list+one)
+	_, text, _ := w.call("stages", "ring", "--json")
+	var d []map[string]any
+	if err := json.Unmarshal([]byte(text), &d); err != nil || len(d) != 1 || d[0]["name"] != "ring" {
+		t.Errorf("%v: %s", err, text)
+	}
+}
+
+func TestPruneVerb(t *testing.T) {
+	w := newTower(t)
+	w.call("run", w.job)
+	code, out, err := w.call("prune", w.job, "--size", "0 B", "--pretend")
+	if code != exitHeld || !strings.HasPrefix(out, "would remove 3 results, 4 artifacts and 0 intermediate results: ") {
+		t.Errorf("exit %d: %s%s", code, out, err)
+	}
+	if _, out, _ = w.call("prune", w.job, "--size", "0 B"); !strings.HasPrefix(out, "removed 3 results, 4 artifacts") || !strings.HasSuffix(out, "; 0 B left\n") {
+		t.Errorf("%s", out)
+	}
+	if _, out, _ = w.call("run", w.job); !strings.Contains(out, "3 ran") {
+		t.Errorf("after pruning: %s", out)
+	}
+}
+
+func TestVersion(t *testing.T) {
+	w := newTower(t)
+	if code, out, _ := w.call("version"); code != exitHeld || !strings.HasPrefix(out, "hushframe (development)\nprotocol of extensions 1\n") || !strings.Contains(out, "SHA-256 HASH\n") {
+		t.Errorf("exit %d: %s", code, out)
+	}
+}
+
+func TestCompletion(t *testing.T) {
+	w := newTower(t)
+	for _, shell := range []string{"bash", "zsh", "fish", "powershell"} {
+		if code, out, _ := w.call("completion", shell); code != exitHeld || len(out) < 1000 {
+			t.Errorf("%s: exit %d, %d bytes", shell, code, len(out))
+		}
+	}
+	if _, out, _ := w.call("__complete", "stages", ""); !strings.HasPrefix(out, "ring\nwrite\n") {
+		t.Errorf("stages: %s", out)
+	}
+}
+
+// Every line of the log for machines is JSON.
+func TestJSONLog(t *testing.T) {
+	w := newTower(t)
+	code, _, err := w.call("run", w.job, "--log", "json", "--threads", "1")
+	if code != exitHeld {
+		t.Fatalf("exit %d: %s", code, err)
+	}
+	seen := map[string]int{}
+	for line := range strings.Lines(err) {
+		var event map[string]any
+		if err := json.Unmarshal([]byte(line), &event); err != nil {
+			t.Fatalf("%v: %s", err, line)
+		}
+		name, _ := event["event"].(string)
+		if name == "" {
+			name, _ = event["message"].(string)
+		}
+		seen[name]++
+	}
+	for name, n := range map[string]int{"begin": 3, "end": 3, "progress": 2, "judged": 1, "rang": 2, "rather softly": 0} {
+		if seen[name] != n {
+			t.Errorf("%d of %q, want %d", seen[name], name, n)
+		}
+	}
+	if _, _, err = w.call("run", w.job, "--force", "--verbose"); !strings.Contains(err, "great: rather softly") {
+		t.Errorf("verbose: %s", err)
+	}
+}
+
+func TestBarLine(t *testing.T) {
+	for _, c := range []struct {
+		phase    string
+		fraction float64
+		elapsed  time.Duration
+		columns  int
+		want     string
+	}{
+		{"factor", 0.5, 3200 * time.Millisecond, 80, "modes  solve  factor              ━━━━━━━━━━━━━╌╌╌╌╌╌╌╌╌╌╌╌╌   50 %  3.2 s"},
+		{"factor", -1, 75 * time.Second, 80, "modes  solve  factor                                                 75 s"},
+		{"a phase with a very long name", 1, 20 * time.Millisecond, 60, "modes  solve  a phase with a ve…  ━━━━━━  100 %  20 ms"},
+		{"factor", 2, 3 * time.Hour, 30, "modes  solve  factor         …"},
+	} {
+		if got := barLine("modes  solve", c.phase, c.fraction, c.elapsed, c.columns); got != c.want {
+			t.Errorf("got  %q\nwant %q", got, c.want)
+		}
+	}
+}
