@@ -58,7 +58,6 @@ type bench struct {
 	t      *testing.T
 	folder string
 	keep   *keeper
-	runs   int
 }
 
 func newBench(t *testing.T) *bench {
@@ -288,6 +287,8 @@ func TestFaults(t *testing.T) {
 		"does not have six free": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
 			p.Bodies[4].Mount.Points = weak(p.Bodies[4].Mount.Points)
 		},
+		"rotor rl: its body \"x\"": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Rotors[1].Body = "x" },
+		"gyro: its body \"x\"":     func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Gyro.Body = "x" },
 		"there is no element type": func(m *mesh.Mesh, _ *airframe.Properties, _ map[string]float64) { m.Parts[1].Element = "square" },
 	} {
 		b := newBench(t)

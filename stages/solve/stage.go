@@ -141,13 +141,17 @@ func builtin(name string) element.Type {
 
 // compute assembles and solves; nothing in the result depends on what Neutral leaves out.
 func compute(ctx context.Context, call *stage.Call, f *assembly.Frame, p *airframe.Properties, set settings) (*kinds.Modes, []string, error) {
+	sites, err := places(f, p)
+	if err != nil {
+		return nil, nil, err
+	}
 	call.Report.Progress("assemble", -1)
 	s, err := assembly.Assemble(ctx, &f.Problem, call.Threads)
 	if err != nil {
 		return nil, nil, err
 	}
 	call.Report.Log(stage.Info, "assembled", "unknowns", s.N, "entries", len(s.K.Val), "mass_g", 1e3*s.Mass)
-	st, err := modal.Build(ctx, s, places(f, p), modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress})
+	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress})
 	if err != nil {
 		return nil, nil, err
 	}
@@ -166,24 +170,32 @@ func compute(ctx context.Context, call *stage.Call, f *assembly.Frame, p *airfra
 }
 
 // places are the hubs, the gyro and the other bodies.
-func places(f *assembly.Frame, p *airframe.Properties) []modal.Place {
+func places(f *assembly.Frame, p *airframe.Properties) ([]modal.Place, error) {
 	body := map[string]int{}
 	for i, b := range p.Bodies {
 		body[b.Name] = f.BodyOf[i]
 	}
 	var out []modal.Place
 	for _, r := range p.Rotors {
-		out = append(out, modal.Place{Name: r.Name, Kind: "rotor", Body: body[r.Body], Point: r.Hub})
+		at, ok := body[r.Body]
+		if !ok {
+			return nil, fault.New(fault.Input, "its body %q does not exist", r.Body).In("solve", "rotor "+r.Name)
+		}
+		out = append(out, modal.Place{Name: r.Name, Kind: "rotor", Body: at, Point: r.Hub})
 	}
 	if p.Gyro.Body != "" {
-		out = append(out, modal.Place{Name: p.Gyro.Body, Kind: "gyro", Body: body[p.Gyro.Body], Point: p.Gyro.At})
+		at, ok := body[p.Gyro.Body]
+		if !ok {
+			return nil, fault.New(fault.Input, "its body %q does not exist", p.Gyro.Body).In("solve", "gyro")
+		}
+		out = append(out, modal.Place{Name: p.Gyro.Body, Kind: "gyro", Body: at, Point: p.Gyro.At})
 	}
 	for i, b := range p.Bodies {
 		if b.Kind == "lump" {
 			out = append(out, modal.Place{Name: b.Name, Kind: "body", Body: f.BodyOf[i], Point: b.Centre})
 		}
 	}
-	return out
+	return out, nil
 }
 
 // explain turns what the kernels say into a fault with a remedy.

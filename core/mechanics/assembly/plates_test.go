@@ -459,3 +459,39 @@ func TestSinusoidalPressure(t *testing.T) {
 		}
 	}
 }
+
+// Rows B-POINTMASS-*: a thin supported square with a mass on one node, the only place where one node
+// will do: the plate is so thin that its shear dimple is beyond the digits.
+func TestPointMasses(t *testing.T) {
+	kind := byName(t, "quadratic-triangle")
+	for _, row := range known.Rows(t, plates, "B-POINTMASS-") {
+		var c struct {
+			A, B  float64
+			Ratio string  `json:"mass_ratio"`
+			X     float64 `json:"x0_over_a"`
+			Y     float64 `json:"y0_over_b"`
+		}
+		row.Decode(t, &c)
+		_, text, _ := strings.Cut(c.Ratio, ")=")
+		section, err := laminate.Homogeneous(laminate.Isotropic(1e9, 0.3, 1000), 0.001, 0)
+		if err != nil {
+			t.Fatal(err)
+		}
+		p := newPlate(known.Rectangle(c.A, c.B, 16, 16, 0), kind, section)
+		p.edges(t, json.RawMessage(`"SSSS"`))
+		for v, x := range p.grid.Points {
+			if math.Abs(x[0]-c.X*c.A)+math.Abs(x[1]-c.Y*c.B) < 1e-9 {
+				p.Bodies = []assembly.Body{{Name: "mass", Nodes: []int32{int32(v)}, Inertia: []assembly.Inertia{{
+					Mass: number(t, text) * section.Mass * c.A * c.B, Centre: p.Nodes[v],
+					Tensor: [6]float64{1e-9, 1e-9, 1e-9}, // the turn of a single node about z is free: one rigid motion
+				}}}}
+			}
+		}
+		for _, side := range []string{"x=0", "y=0", "x=a", "y=b"} { // motion in the plane is far above
+			for _, v := range p.grid.Sets[side] {
+				p.Supports = append(p.Supports, assembly.Support{Node: v, Fixed: components("xyZ")})
+			}
+		}
+		row.Check(t, 0.4, scaled(elastic(t, &p.Problem, len(row.Values), 1), math.Sqrt(section.Mass/section.D[0][0]))...)
+	}
+}
