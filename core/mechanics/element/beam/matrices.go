@@ -56,6 +56,15 @@ func Matrices(s Section, length float64, stiffness, mass []float64) {
 	for p, pl := range planes {
 		ei, ga, jr := s.plane(p)
 		k := bending(ei, ga, length)
+		var m [4][4]float64
+		for _, g := range gauss4 {
+			w, psi := shapes(ei, ga, length, g.at)
+			for a := range 4 {
+				for b := range a + 1 {
+					m[a][b] += g.weight * length * (s.M*w[a]*w[b] + jr*psi[a]*psi[b])
+				}
+			}
+		}
 		for a := range 4 {
 			for b := range a + 1 {
 				sign := 1.0
@@ -63,12 +72,7 @@ func Matrices(s Section, length float64, stiffness, mass []float64) {
 					sign = pl.sign
 				}
 				add(stiffness, pl.index[a], pl.index[b], sign*k[a][b])
-				m := 0.0
-				for _, g := range gauss4 {
-					w, psi := shapes(ei, ga, length, g.at)
-					m += g.weight * length * (s.M*w[a]*w[b] + jr*psi[a]*psi[b])
-				}
-				add(mass, pl.index[a], pl.index[b], sign*m)
+				add(mass, pl.index[a], pl.index[b], sign*m[a][b])
 			}
 		}
 	}
