@@ -12,7 +12,8 @@ type Options struct {
 	Limit float64
 	// Modes asks for this many of the lowest λ. With both Limit and Modes set, both are met.
 	Modes int
-	// Shift is σ < 0; 0 lets Lowest choose, from Limit or from the matrices and what the first steps show.
+	// Shift is σ < 0; 0 lets Lowest choose, from Limit or from the matrices and what the first steps show. Errors of λ
+	// are relative to λ-σ, so a shift far below the wanted values costs digits as well as steps.
 	Shift float64
 	// Block is the number of vectors multiplied at a time; 0 means 8. Values repeated more often than Block are found
 	// only through the count.
@@ -49,8 +50,9 @@ type Result struct {
 
 // Status tells how the search ended.
 type Status struct {
-	// Converged says that every returned pair met the tolerance, that there are as many as were asked for (or no more
-	// exist), and that no count tells of missing ones.
+	// Converged says that every returned pair met the tolerance (and kept within a thousand times of it when its residual
+	// was worked out), that there are as many as were asked for or no more exist, and that no count tells of missing
+	// ones.
 	Converged bool
 	// Proved says that the inertia count at CountShift was made, is trustworthy, and equals Found.
 	Proved bool

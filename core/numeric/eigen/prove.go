@@ -15,7 +15,7 @@ func (s *solver) searchAll() error {
 		st.Attempts++
 		q := s.newSearch(block)
 		if adaptable {
-			for range 3 {
+			for range 2 {
 				if _, err := q.run(s.ctx, s.enough, 3); err != nil {
 					return err
 				}
@@ -121,6 +121,10 @@ func (s *solver) finish(q *search) *pairs {
 			xk, mk, yk, zk := part[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n]
 			// The Rayleigh quotient of the operator is right to the square of the error of the vector.
 			theta := inner(yk, mk) / inner(xk, mk)
+			if !(theta > 0) {
+				s.res.Status.note("a vector without mass was dropped")
+				continue
+			}
 			sum := 0.0
 			for i := range yk {
 				sum += (yk[i] - theta*xk[i]) * (zk[i] - theta*mk[i])
@@ -171,21 +175,30 @@ func (f *pairs) sorted(n int) *pairs {
 	return out
 }
 
-// checkSigns refuses a K with a negative eigenvalue that rounding cannot explain.
+// checkSigns refuses a K with a negative eigenvalue that rounding cannot explain: one that is not small against the
+// terms that make up φᵀKφ.
 func (s *solver) checkSigns() error {
 	n := s.p.order()
+	size := make([]float64, n)
 	for k, v := range s.known.values {
-		if v >= -1e-12*s.p.scale() {
+		if v >= 0 {
 			break
 		}
-		at := 0
+		if s.known.residuals[k] > 1e-6 {
+			continue // nothing can be said of it
+		}
 		x := s.known.x[k*n:][:n]
+		sumOfTerms(s.p.k, size, x)
+		terms, at := 0.0, 0
 		for i := range x {
+			terms += size[i] * math.Abs(x[i])
 			if math.Abs(x[i]) > math.Abs(x[at]) {
 				at = i
 			}
 		}
-		return &IndefiniteError{Matrix: "K", Unknown: at, Detail: fmt.Sprintf("the pencil has the eigenvalue %.6g", v)}
+		if v < -max(1e-11*terms, 1e-9*-s.p.shift) {
+			return &IndefiniteError{Matrix: "K", Unknown: at, Detail: fmt.Sprintf("the pencil has the eigenvalue %.6g", v)}
+		}
 	}
 	return nil
 }
@@ -240,7 +253,7 @@ func countBelow(values []float64, s float64) int {
 // gap returns a shift for the count: above all wanted values and away from every value found.
 func (s *solver) gap() (shift float64, ok bool) {
 	const least = 1e-5 // relative width of a gap worth counting in
-	values := s.known.values
+	values, st := s.known.values, &s.res.Status
 	n := len(values)
 	if s.below >= s.opt.Modes {
 		at := s.countAt()
@@ -251,13 +264,19 @@ func (s *solver) gap() (shift float64, ok bool) {
 	if n == 0 {
 		return 0, false
 	}
+	// Null values differ by rounding alone; there is no counting between them.
+	rounding := max(1e-12*s.p.scale(), 1e-3*-s.p.shift)
 	for k := max(s.wanted(), 1); k < n; k++ {
-		if lo, hi := values[k-1], values[k]; hi > 0 && hi-lo > least*hi {
+		if lo, hi := values[k-1], values[k]; hi-lo > max(least*hi, rounding) {
 			return (lo + hi) / 2, true
 		}
 	}
-	// Nothing was found above: all that exist, or as far as the search got.
-	return values[n-1] + 1e-3*math.Abs(values[n-1]-s.p.shift), true
+	last := values[n-1]
+	if st.Exhausted {
+		// If these are all that exist, there are no more below a much higher shift.
+		return 1e3 * max(last, -s.p.shift), true
+	}
+	return last + max(1e-3*last, -0.5*s.p.shift), true
 }
 
 // wanted is how many of the known pairs were asked for.
@@ -283,18 +302,25 @@ func (s *solver) deliver() {
 		fixSign(x)
 		res.Vectors = append(res.Vectors, x)
 	}
-	missing := st.Counted > st.Found
-	st.Exhausted = st.Exhausted && !missing
-	st.Converged = !missing && (st.Exhausted || len(f.values) >= s.opt.Modes &&
-		(s.opt.Limit == 0 || st.Proved || len(f.values) > 0 && f.values[len(f.values)-1] > s.opt.Limit))
-	if st.Exhausted && w < s.opt.Modes {
-		st.note("the pencil has only %d finite eigenvalues", len(f.values))
-	}
 	worst := 0.0
 	for _, r := range res.Residuals {
 		worst = max(worst, r)
 	}
 	if worst > 100*s.opt.Tol {
 		st.note("rounding leaves a residual of %.2g", worst)
+	}
+	missing := st.Counted > st.Found
+	st.Exhausted = st.Exhausted && !missing
+	if st.Exhausted && w < s.opt.Modes {
+		st.note("the pencil has only %d finite eigenvalues", len(f.values))
+	}
+	switch {
+	case missing || worst > 1000*s.opt.Tol:
+	case st.Exhausted:
+		st.Converged = true
+	case s.opt.Limit == 0 || st.Proved:
+		st.Converged = len(f.values) >= s.opt.Modes
+	default:
+		st.Converged = len(f.values) > s.opt.Modes && f.values[len(f.values)-1] > s.opt.Limit
 	}
 }

@@ -158,10 +158,13 @@ func (s *search) ritz(r []float64, kept int) {
 	slices.SortStableFunc(s.pairs, func(a, b pair) int { return cmp.Compare(b.theta, a.theta) })
 }
 
+// infinite is the ratio to the largest θ below which a θ cannot be told from that of a null vector of M.
+const infinite = 1e-13
+
 // leading is the number of pairs from the largest θ on that have converged without a gap.
 func (s *search) leading() int {
 	for k, q := range s.pairs {
-		if !s.converged(q) {
+		if !s.converged(q) || q.theta < infinite*s.pairs[0].theta {
 			return k
 		}
 	}

@@ -1,6 +1,7 @@
 package eigen
 
 import (
+	"errors"
 	"fmt"
 	"math"
 )
@@ -8,10 +9,15 @@ import (
 // chooseShift factorises at a first shift that makes A positive definite.
 func (s *solver) chooseShift() error {
 	sigma := s.opt.Shift
+	if scale := s.p.scale(); scale > 0 && sigma < -1e3*scale {
+		return fmt.Errorf("eigen: shift %.3g is too far below the spectrum, which reaches to about %.3g, to tell values apart", sigma, scale)
+	}
 	if sigma == 0 {
 		// Far enough from zero that rigid motions do not drown in rounding, near enough that the lowest elastic values
-		// are well apart as seen from there: a hundredth of the limit, or a guess that adapt corrects.
-		sigma = -max(1e-10*s.p.scale(), s.opt.Limit/100)
+		// are well apart as seen from there: a hundredth of the limit, or a guess that adapt corrects. In the bending of
+		// sheets the lowest value is to the highest about as one to the number of unknowns squared.
+		n := float64(s.p.order())
+		sigma = -max(s.p.scale()*max(1/n/n, leastShift), s.opt.Limit/100)
 		if sigma == 0 {
 			sigma = -1 // K is zero
 		}
@@ -19,28 +25,40 @@ func (s *solver) chooseShift() error {
 	return s.shiftTo(sigma)
 }
 
-// shiftTo factorises at σ, or further down while eigenvalues that should be zero have come out below σ.
+// shiftTo factorises at σ, or further down while K-σM is singular or indefinite there: where K alone holds nothing, the
+// little that σM adds may be less than the rounding errors of K.
 func (s *solver) shiftTo(sigma float64) error {
 	p, st := s.p, &s.res.Status
-	for range 4 {
-		neg, err := p.setShift(sigma)
-		if err != nil {
-			return err
+	var err error
+	for try := range 5 {
+		if try > 0 {
+			if s.opt.Shift != 0 {
+				break
+			}
+			sigma *= 100
+			st.note("the shift was moved down to %.3g: %v", sigma, err)
 		}
-		if neg == 0 {
+		var neg int
+		neg, err = p.setShift(sigma)
+		if err == nil && neg == 0 {
 			return nil
 		}
-		if s.opt.Shift != 0 {
-			break
+		var singular *SingularError
+		if err != nil && !errors.As(err, &singular) {
+			return err
 		}
-		st.note("%d eigenvalues are below the shift %.3g: it was moved further down", neg, sigma)
-		sigma *= 100
+		if err == nil {
+			err = &IndefiniteError{
+				Matrix: "K or M", Unknown: p.factor.Stats.FirstNegative,
+				Detail: fmt.Sprintf("K-σM has %d negative pivots at σ = %.3g", neg, sigma),
+			}
+		}
 	}
-	return &IndefiniteError{
-		Matrix: "K or M", Unknown: p.factor.Stats.FirstNegative,
-		Detail: fmt.Sprintf("K-σM has negative pivots at σ = %.3g", p.shift),
-	}
+	return err
 }
+
+// leastShift is the part of the scale of the pencil below which rounding in K, some 1e-16 of it, could matter.
+const leastShift = 1e-11
 
 // Within these bounds the number of steps hardly depends on the shift (measured on sheets and chains). A shift much
 // nearer to zero loses digits of the elastic values to the rigid ones; one far below them makes all look alike.
@@ -53,18 +71,22 @@ const (
 // says whether it did.
 func (s *solver) adapt(q *search) (moved bool, err error) {
 	sigma := s.p.shift
+	least := leastShift * s.p.scale()
 	lowest := math.Inf(1)
 	for _, pair := range q.pairs {
-		// Rigid values are zero up to rounding, far below the shift.
-		if v := sigma + 1/pair.theta; pair.theta > 0 && v > 1e-4*-sigma {
+		if !(pair.theta > 0) {
+			continue
+		}
+		// Rigid values are zero up to rounding, far below the shift; values not yet known to a tenth tell nothing.
+		v, doubt := sigma+1/pair.theta, pair.residual/(pair.theta*pair.theta)
+		if v > max(1e-4*-sigma, least) && doubt < 0.1*v {
 			lowest = min(lowest, v)
 		}
 	}
 	if math.IsInf(lowest, 1) || -sigma >= nearest*lowest && -sigma <= farthest*lowest {
 		return false, nil
 	}
-	// Never so near that rounding in K, about 1e-16 of its scale, could matter.
-	to := -max(0.3*lowest, 1e-13*s.p.scale())
+	to := -max(0.3*lowest, least)
 	if to/sigma > 0.5 && to/sigma < 2 {
 		return false, nil
 	}
