@@ -16,6 +16,16 @@ setting "carbon_modulus" {
   about = "in-plane modulus of the carbon plate"
 }
 
+setting "battery_mass" {
+  value = "190 g"
+  about = "battery with its lead"
+}
+
+setting "carbon_loss_factor" {
+  value = 0.010
+  about = "hysteretic loss factor of the carbon plate"
+}
+
 setting "mesh_size" {
   value = "5 mm"
   about = "target edge length away from free edges"
@@ -24,8 +34,10 @@ setting "mesh_size" {
 stage "import" "frame" {
   airframe = "airframe.hcl"
   with = {
-    arm_thickness  = setting.arm_thickness
-    carbon_modulus = setting.carbon_modulus
+    arm_thickness      = setting.arm_thickness
+    carbon_modulus     = setting.carbon_modulus
+    carbon_loss_factor = setting.carbon_loss_factor
+    battery_mass       = setting.battery_mass
   }
 }
 
