@@ -40,6 +40,7 @@ type Options struct {
 // Linear triangles get no row but sides of linearRatio thicknesses: 0.6 to 3 % too large, the worst at two thicknesses.
 const (
 	slender     = 10.0
+	stocky      = 1.5 // below this width there is no row: near corners, where the width runs out
 	rowDepth    = 0.5
 	rowLength   = 3.0
 	bareRatio   = 0.8
@@ -181,7 +182,7 @@ func plateMesh(ctx context.Context, g *airframe.Geometry, i int, o Options) (*pl
 	if o.element(p.Name) != linear {
 		ratio = bareRatio
 		options.Row = func(_ outline.Point, width float64) (depth, length float64) {
-			if !narrow(width) || size <= rowDepth*p.Thickness {
+			if !narrow(width) || width < stocky*p.Thickness || size <= rowDepth*p.Thickness {
 				return 0, 0
 			}
 			depth = min(rowDepth*p.Thickness, width/4)

@@ -173,6 +173,7 @@ func TestGallery(t *testing.T) {
 				if err := g.run(); err != nil {
 					t.Fatal(err)
 				}
+				checkTriangulation(t, g.triangulation)
 				if count, worst := g.narrow(); count > 0 && !e.cramped {
 					t.Errorf("%d triangles are narrow without excuse, down to %.1f degrees", count, worst*180/math.Pi)
 				}

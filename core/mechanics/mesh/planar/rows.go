@@ -20,6 +20,7 @@ const (
 	rowClearance = 0.6                 // distance kept from all else, in depths
 	rowStretch   = 5.0                 // longest boundary segment, in depths
 	rowRise      = 0.18                // most that the curve rises over the chord where a row ends, in depths
+	rowSlope     = 0.15                // most that the depth changes along a segment, per length
 	rowRun       = 3                   // fewest matches in a row
 )
 
@@ -39,13 +40,14 @@ func (g *mesher) layRows(across *widths) error {
 	}
 	vs := g.rowVertices(across)
 	features := len(g.segments)
+	near := newNearby(g.chords())
 	for again := true; again; {
 		again = g.dropShort(vs)
 		for s := range features {
 			if g.plan.pieces[g.segments[s].piece].loop == none {
 				continue
 			}
-			if a, b := &vs[g.segments[s].a], &vs[g.segments[s].b]; (a.ok || b.ok) && !g.rowFits(vs, int32(s), features) {
+			if a, b := &vs[g.segments[s].a], &vs[g.segments[s].b]; (a.ok || b.ok) && !g.rowFits(vs, int32(s), near) {
 				a.ok, b.ok = false, false
 				again = true
 			}
@@ -109,6 +111,15 @@ func (g *mesher) rowVertices(across *widths) []rowVertex {
 	return vs
 }
 
+// chords returns the boxes of the chords of all segments.
+func (g *mesher) chords() []outline.Box {
+	boxes := make([]outline.Box, len(g.segments))
+	for i, s := range g.segments {
+		boxes[i] = outline.EmptyBox().With(g.plan.vertices[s.a]).With(g.plan.vertices[s.b])
+	}
+	return boxes
+}
+
 // dropShort takes the match from vertices that have fewer than rowRun of them in a row, and reports whether it did.
 func (g *mesher) dropShort(vs []rowVertex) bool {
 	dropped := false
@@ -136,7 +147,7 @@ func (g *mesher) dropShort(vs []rowVertex) bool {
 }
 
 // rowFits reports whether the cell of a row along segment s has a good shape and keeps clear of everything else.
-func (g *mesher) rowFits(vs []rowVertex, s int32, features int) bool {
+func (g *mesher) rowFits(vs []rowVertex, s int32, nearby *nearby) bool {
 	x := &g.segments[s]
 	a, b := g.plan.vertices[x.a], g.plan.vertices[x.b]
 	c, d := b, a // the cell is a, b, c, d
@@ -157,14 +168,20 @@ func (g *mesher) rowFits(vs []rowVertex, s int32, features int) bool {
 			return false
 		}
 	}
+	if !vs[x.a].ok && g.tight(vs, x.a) || !vs[x.b].ok && g.tight(vs, x.b) {
+		return false
+	}
+	if vs[x.a].ok && vs[x.b].ok && math.Abs(vs[x.a].depth-vs[x.b].depth) > rowSlope*length {
+		return false
+	}
 	keep := rowClearance * depth
-	near := outline.EmptyBox().With(a).With(b).With(c).With(d).Grow(keep)
-	for t := range features {
-		y := &g.segments[t]
-		p, q := g.plan.vertices[y.a], g.plan.vertices[y.b]
-		if int32(t) == s || !near.Meets(outline.EmptyBox().With(p).With(q)) {
+	box := outline.EmptyBox().With(a).With(b).With(c).With(d).Grow(2 * depth)
+	for t := range nearby.in(box) {
+		if t == s {
 			continue
 		}
+		y := &g.segments[t]
+		p, q := g.plan.vertices[y.a], g.plan.vertices[y.b]
 		touching := y.a == x.a || y.a == x.b || y.b == x.a || y.b == x.b
 		if !touching && (chordDistance(c, d, p, q) < keep || chordDistance(a, d, p, q) < keep/2 || chordDistance(b, c, p, q) < keep/2) {
 			return false
@@ -180,6 +197,20 @@ func (g *mesher) rowFits(vs []rowVertex, s int32, features int) bool {
 		}
 	}
 	return true
+}
+
+// tight reports whether the rows that end at vertex v leave less than a sharp angle of the region there.
+func (g *mesher) tight(vs []rowVertex, v int32) bool {
+	toward := func(w int32) outline.Point {
+		p := g.plan.vertices[w]
+		if vs[w].ok {
+			p = vs[w].match
+		}
+		return p.Sub(g.plan.vertices[v])
+	}
+	from, to := toward(g.segments[vs[v].after].b), toward(g.segments[vs[v].before].a)
+	angle := math.Atan2(from.Cross(to), from.Dot(to)) // of the region, counterclockwise
+	return angle > 0 && angle < sharpAngle
 }
 
 // chordDistance returns the distance between the straight stretches ab and cd, 0 when they cross.
