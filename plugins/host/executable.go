@@ -14,19 +14,40 @@ import (
 type Executable struct {
 	Path   string
 	SHA256 string // hex
+
+	self bool
 }
 
-// Self is the running executable. On Linux it is addressed so that a build
-// that replaces the file during a run changes nothing.
+// runningFile is the file of the running executable, also after a build has
+// replaced it under its name. Linux alone has such a name.
+const runningFile = "/proc/self/exe"
+
+// Self is the running executable.
 func Self() (Executable, error) {
 	path, err := os.Executable()
 	if err != nil {
 		return Executable{}, fault.New(fault.Internal, "the running executable cannot be found: %v", err)
 	}
+	read := path
 	if runtime.GOOS == "linux" {
-		path = "/proc/self/exe"
+		read = runningFile
 	}
-	return Find(path)
+	e, err := Find(read)
+	e.Path, e.self = path, true
+	return e, err
+}
+
+// file is what to start: the path, unless it holds another file by now.
+func (e Executable) file() string {
+	if !e.self || runtime.GOOS != "linux" {
+		return e.Path
+	}
+	now, err1 := os.Stat(e.Path)
+	own, err2 := os.Stat(runningFile)
+	if err1 == nil && err2 == nil && os.SameFile(now, own) {
+		return e.Path
+	}
+	return runningFile
 }
 
 // Find takes the checksum of an executable.

@@ -421,7 +421,7 @@ func TestMisdeedsAtStart(t *testing.T) {
 		})
 	}
 	t.Run("no executable", func(t *testing.T) {
-		h := open(t, func(o *Options) { o.Self.Path = filepath.Join(t.TempDir(), "none") })
+		h := open(t, func(o *Options) { o.Self = Executable{Path: filepath.Join(t.TempDir(), "none")} })
 		_, err := run(t, h, "echo", newCall(t))
 		if fault.KindOf(err) != fault.Missing {
 			t.Errorf("got %v", err)

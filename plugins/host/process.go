@@ -2,6 +2,7 @@ package host
 
 import (
 	"context"
+	"encoding/pem"
 	"errors"
 	"fmt"
 	"os/exec"
@@ -38,7 +39,7 @@ type process struct {
 
 // start starts an executable and waits until it is attached.
 func (h *Host) start(ctx context.Context, label string, e Executable, argument string) (*process, error) {
-	certificate, trust, err := newIdentity()
+	certificate, trust, err := wire.NewIdentity()
 	if err != nil {
 		return nil, fault.New(fault.Internal, "no certificate can be made: %v", err).In("start", label)
 	}
@@ -46,7 +47,7 @@ func (h *Host) start(ctx context.Context, label string, e Executable, argument s
 	if h.options.Output != nil {
 		p.printed.each = func(line string) { h.options.Output(label, line) }
 	}
-	if p.child, err = newChild(e.Path, []string{e.Path, argument}, p.printed); err != nil {
+	if p.child, err = newChild(e.file(), []string{e.Path, argument}, p.printed); err != nil {
 		return nil, fault.New(fault.Limit, "%v", err).In("start", label)
 	}
 	p.client = plugin.NewClient(&plugin.ClientConfig{
@@ -62,7 +63,8 @@ func (h *Host) start(ctx context.Context, label string, e Executable, argument s
 		// Its reader of log lines panics on some JSON; off, it does not parse.
 		Logger: hclog.New(&hclog.LoggerOptions{Level: hclog.Off}),
 		RunnerFunc: func(_ hclog.Logger, cmd *exec.Cmd, _ string) (runner.Runner, error) {
-			p.child.cmd.Env = append(cmd.Env, "PLUGIN_CLIENT_CERT="+string(certificate), wire.StdinEnv+"=1")
+			p.child.cmd.Env = append(cmd.Env, wire.StdinEnv+"=1",
+				wire.HostCertificateEnv+"="+string(pem.EncodeToMemory(&pem.Block{Type: "CERTIFICATE", Bytes: certificate})))
 			return p.child, nil
 		},
 	})

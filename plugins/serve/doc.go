@@ -64,9 +64,11 @@ func Main(offer Offer) {
 	if os.Getenv(wire.StdinEnv) == "1" {
 		go watch(os.Stdin, func() { os.Exit(3) })
 	}
+	streams := [2]*os.File{os.Stdout, os.Stderr}
 	plugin.Serve(&plugin.ServeConfig{
 		HandshakeConfig: wire.Handshake(),
-		Plugins:         plugin.PluginSet{wire.PluginName: &adapter{offer: offer}},
+		Plugins:         plugin.PluginSet{wire.PluginName: &adapter{offer: offer, streams: streams}},
+		TLSProvider:     provideTLS,
 		GRPCServer:      newServer,
 		Logger:          hclog.New(&hclog.LoggerOptions{Level: hclog.Error, Output: os.Stderr}),
 	})

@@ -20,7 +20,8 @@ import (
 // adapter joins an offer to go-plugin.
 type adapter struct {
 	plugin.NetRPCUnsupportedPlugin
-	offer Offer
+	offer   Offer
+	streams [2]*os.File // standard output and error of the process
 }
 
 var _ plugin.GRPCPlugin = (*adapter)(nil)
@@ -29,7 +30,7 @@ var _ plugin.GRPCPlugin = (*adapter)(nil)
 func (a *adapter) GRPCServer(broker *plugin.GRPCBroker, s *grpc.Server) error {
 	wire.RegisterExtensionServer(s, &server{
 		offer:    a.offer,
-		streams:  [2]*os.File{os.Stdout, os.Stderr},
+		streams:  a.streams,
 		dial:     func(stream uint32) (*grpc.ClientConn, error) { return broker.DialWithOptions(stream, limits()) },
 		running:  map[string]context.CancelFunc{},
 		granted:  map[string]share{},

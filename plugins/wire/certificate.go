@@ -1,25 +1,27 @@
-package host
+package wire
 
 import (
-	"bytes"
 	"crypto/ecdsa"
 	"crypto/elliptic"
 	"crypto/rand"
 	"crypto/tls"
 	"crypto/x509"
 	"crypto/x509/pkix"
-	"encoding/pem"
 	"math/big"
 	"time"
 )
 
-// newIdentity makes the certificate by which one process knows its host, and
-// the TLS configuration that goes with it. The process is trusted by the
-// certificate in its handshake line, which go-plugin adds.
+// HostCertificateEnv holds the certificate of the host, PEM.
+const HostCertificateEnv = "PLUGIN_CLIENT_CERT"
+
+// NewIdentity makes a certificate (DER) for one end of one connection, and the TLS
+// configuration that goes with it. Each end trusts nothing but the certificate
+// of the other, which comes by the environment and by the handshake line.
 //
 // The scheme is that of go-plugin's automatic mutual TLS except for the curve:
-// that one uses P-521, which the gRPC of other languages does not accept.
-func newIdentity() (certificate []byte, config *tls.Config, err error) {
+// that one uses P-521, which the gRPC of other languages does not accept, and
+// which takes a hundred times as long.
+func NewIdentity() (der []byte, config *tls.Config, err error) {
 	key, err := ecdsa.GenerateKey(elliptic.P256(), rand.Reader)
 	if err != nil {
 		return nil, nil, err
@@ -40,15 +42,11 @@ func newIdentity() (certificate []byte, config *tls.Config, err error) {
 		BasicConstraintsValid: true,
 		IsCA:                  true,
 	}
-	der, err := x509.CreateCertificate(rand.Reader, template, template, key.Public(), key)
+	der, err = x509.CreateCertificate(rand.Reader, template, template, key.Public(), key)
 	if err != nil {
 		return nil, nil, err
 	}
-	var out bytes.Buffer
-	if err := pem.Encode(&out, &pem.Block{Type: "CERTIFICATE", Bytes: der}); err != nil {
-		return nil, nil, err
-	}
-	return out.Bytes(), &tls.Config{
+	return der, &tls.Config{
 		Certificates: []tls.Certificate{{Certificate: [][]byte{der}, PrivateKey: key}},
 		ClientAuth:   tls.RequireAndVerifyClientCert,
 		MinVersion:   tls.VersionTLS12,
