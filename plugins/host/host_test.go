@@ -103,6 +103,19 @@ var testStages = []stage.Stage{
 		fmt.Fprintln(os.Stderr, `{"@message": {"a": 1}}`)
 		return nil, nil
 	}},
+	staged{"hungry", func(ctx context.Context, c *stage.Call) (*stage.Outcome, error) {
+		var eaten [][]byte
+		for {
+			b := make([]byte, 8<<20)
+			for i := 0; i < len(b); i += 4096 {
+				b[i] = 1
+			}
+			if eaten = append(eaten, b); len(eaten) > 64 {
+				return &stage.Outcome{Notes: []string{fmt.Sprint(len(eaten))}}, nil
+			}
+			time.Sleep(20 * time.Millisecond)
+		}
+	}},
 	staged{"services", useServices},
 	staged{"family", func(_ context.Context, c *stage.Call) (*stage.Outcome, error) {
 		child := exec.Command("sleep", "100")
@@ -469,6 +482,24 @@ func TestFrozenProcess(t *testing.T) {
 	h.Close()
 	if left := children(t); len(left) != 0 {
 		t.Errorf("processes left: %v", left)
+	}
+}
+
+func TestMemoryLimit(t *testing.T) {
+	if runtime.GOOS != "linux" {
+		t.Skip("needs /proc")
+	}
+	h := open(t, nil)
+	call := newCall(t)
+	call.Memory = 100 << 20
+	_, err := run(t, h, "hungry", call)
+	f := fault.From(err)
+	if f == nil || f.Kind != fault.Limit || f.Argument != "memory_limit" || !strings.Contains(f.Text, "where 100 MiB were granted, and was killed") {
+		t.Errorf("got %v", err)
+	}
+	call.Memory = 2 << 30
+	if _, err := run(t, h, "hungry", call); err != nil {
+		t.Errorf("within its share: %v", err)
 	}
 }
 

@@ -51,10 +51,14 @@ func (x *proxy) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, erro
 	}()
 	pulse := time.NewTicker(x.host.options.Silence / 2)
 	defer pulse.Stop()
+	weigh := time.NewTicker(memoryEvery)
+	defer weigh.Stop()
 	for {
 		select {
 		case r := <-done:
 			return r.outcome, r.err
+		case <-weigh.C:
+			p.checkMemory()
 		case <-pulse.C:
 			go func() {
 				if !p.answers(x.host.options.Silence) {
@@ -72,6 +76,21 @@ func (x *proxy) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, erro
 				}
 			})
 		}
+	}
+}
+
+// memoryEvery is how often the memory of a process is looked at.
+const memoryEvery = 200 * time.Millisecond
+
+// checkMemory kills a process that uses more than its steps may.
+func (p *process) checkMemory() {
+	may := p.service.granted()
+	if may == 0 {
+		return
+	}
+	if uses := memoryOf(p.child.cmd.Process.Pid); uses > may {
+		go p.kill(fault.New(fault.Limit, "the process used %d MiB, where %d MiB were granted, and was killed", uses>>20, may>>20).
+			In("run", p.label).Of("memory_limit").Do("raise memory_limit or --memory, or make the step smaller"))
 	}
 }
 

@@ -110,6 +110,21 @@ func (x *service) end(s *session) {
 	delete(x.sessions, s.id)
 }
 
+// granted is the memory that the running steps may use together; 0 when one of
+// them has no limit.
+func (x *service) granted() int64 {
+	x.mu.Lock()
+	defer x.mu.Unlock()
+	var total int64
+	for _, s := range x.sessions {
+		if s.call.Memory == 0 {
+			return 0
+		}
+		total += s.call.Memory
+	}
+	return total
+}
+
 func (x *service) session(id string) (*session, error) {
 	x.mu.Lock()
 	defer x.mu.Unlock()

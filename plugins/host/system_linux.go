@@ -1,7 +1,10 @@
 package host
 
 import (
+	"bufio"
+	"fmt"
 	"os"
+	"strings"
 	"syscall"
 )
 
@@ -12,3 +15,21 @@ func processAttributes() *syscall.SysProcAttr {
 }
 
 func killGroup(p *os.Process) { _ = syscall.Kill(-p.Pid, syscall.SIGKILL) }
+
+// memoryOf gives the memory a process has for itself, in bytes; 0 when it
+// cannot be known.
+func memoryOf(pid int) int64 {
+	f, err := os.Open(fmt.Sprintf("/proc/%d/status", pid))
+	if err != nil {
+		return 0
+	}
+	defer f.Close()
+	for lines := bufio.NewScanner(f); lines.Scan(); {
+		if value, ok := strings.CutPrefix(lines.Text(), "RssAnon:"); ok {
+			var kib int64
+			_, _ = fmt.Sscan(value, &kib)
+			return kib << 10
+		}
+	}
+	return 0
+}

@@ -14,3 +14,6 @@ func processAttributes() *syscall.SysProcAttr {
 }
 
 func killGroup(p *os.Process) { _ = syscall.Kill(-p.Pid, syscall.SIGKILL) }
+
+// memoryOf cannot be known here: a stage keeps to its share by itself.
+func memoryOf(int) int64 { return 0 }
