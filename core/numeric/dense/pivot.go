@@ -59,7 +59,7 @@ func Pivoted(n int, a []float64, lda int, least, deferBelow float64, pv *Pivots)
 		}
 		swap(n, k+1, p, a, lda, pv.Perm)
 		d0, d1, e := a[k*lda+k], a[(k+1)*lda+k+1], a[(k+1)*lda+k]
-		if s := smallerOfTwo(d0, d1, e); !(s > least) || math.IsInf(s, 0) {
+		if s := SmallerOfTwo(d0, d1, e); !(s > least) || math.IsInf(s, 0) {
 			pv.Failed = true
 			return
 		}
@@ -71,9 +71,9 @@ func Pivoted(n int, a []float64, lda int, least, deferBelow float64, pv *Pivots)
 	}
 }
 
-// smallerOfTwo is the smaller magnitude of the two eigenvalues of [d0 e; e d1], from the determinant so that nothing
+// SmallerOfTwo is the smaller magnitude of the two eigenvalues of [d0 e; e d1], from the determinant so that nothing
 // cancels.
-func smallerOfTwo(d0, d1, e float64) float64 {
+func SmallerOfTwo(d0, d1, e float64) float64 {
 	mean, half := (d0+d1)/2, (d0-d1)/2
 	larger := math.Abs(mean) + math.Hypot(half, e)
 	if larger == 0 {

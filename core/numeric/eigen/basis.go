@@ -2,6 +2,7 @@ package eigen
 
 import (
 	"math"
+	"slices"
 	"time"
 
 	"hushframe/core/numeric/dense"
@@ -28,12 +29,12 @@ func (b *basis) vectors() []float64 { return b.v[:b.count*b.n] }
 const negligible = 1e-13
 
 // append makes count vectors w orthogonal to the basis and to one another and appends what is left of them. It returns
-// the number kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
+// which were kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
 // w = V·c + Q·r up to what is negligible. w is used as scratch.
 //
 // Projections are done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem), and once
 // more when the vectors of the block turn out to be nearly dependent.
-func (b *basis) append(w []float64, count int) (kept int, c, r []float64) {
+func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
 	began := time.Now()
 	defer func() { b.p.stats.OrthogonalSeconds += time.Since(began).Seconds() }()
 	n, old := b.n, b.count
@@ -52,20 +53,18 @@ func (b *basis) append(w []float64, count int) (kept int, c, r []float64) {
 	keep, r, shrunk := gramSchmidt(w, z, count, n, before)
 	for pass := 0; shrunk && pass < 3; pass++ {
 		b.project(w, z, len(keep), make([]float64, old*len(keep)))
-		ones := make([]float64, len(keep))
-		for i := range ones {
-			ones[i] = 1
-		}
 		var again []int
 		var r2 []float64
-		again, r2, shrunk = gramSchmidt(w, z, len(keep), n, ones)
+		again, r2, shrunk = gramSchmidt(w, z, len(keep), n, slices.Repeat([]float64{1}, len(keep)))
 		r = product(r2, r, len(again), len(keep), count)
+		for i, k := range again {
+			again[i] = keep[k]
+		}
 		keep = again
 	}
-	kept = len(keep)
-	copy(b.v[old*n:], w[:kept*n])
-	b.count += kept
-	return kept, c, r
+	copy(b.v[old*n:], w[:len(keep)*n])
+	b.count += len(keep)
+	return keep, c, r
 }
 
 // project subtracts from w its part in the basis, adds the coefficients to c and renews z = M·w.

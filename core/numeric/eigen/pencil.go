@@ -4,6 +4,7 @@ import (
 	"context"
 	"errors"
 	"math"
+	"math/rand/v2"
 	"time"
 
 	"hushframe/core/numeric/dense"
@@ -148,16 +149,11 @@ func (p *pencil) solveError(f *sparse.Factor, s float64) float64 {
 	return math.Sqrt(wrong / size)
 }
 
-// fillRandom fills with uniform numbers in (-1, 1) from a fixed generator (splitmix64; G. Steele, D. Lea, C. Flood, Fast
-// splittable pseudorandom number generators, OOPSLA 2014).
+// fillRandom fills with uniform numbers in [-1, 1) from a fixed generator.
 func fillRandom(x []float64, seed uint64) {
+	r := rand.New(rand.NewPCG(seed, 0))
 	for i := range x {
-		seed += 0x9e3779b97f4a7c15
-		z := seed
-		z = (z ^ z>>30) * 0xbf58476d1ce4e5b9
-		z = (z ^ z>>27) * 0x94d049bb133111eb
-		z ^= z >> 31
-		x[i] = float64(z>>11)/(1<<52) - 1
+		x[i] = 2*r.Float64() - 1
 	}
 }
 

@@ -1,6 +1,7 @@
 package eigen
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -117,34 +118,40 @@ func (s *solver) finish(q *search) *pairs {
 		copy(y, mx[:size*n])
 		p.solve(y, size)
 		p.mass(my, y, size)
+		values, residuals := make([]float64, size), make([]float64, size)
 		for k := range size {
-			xk, mk, yk, zk := part[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n]
-			// The Rayleigh quotient of the operator is right to the square of the error of the vector.
-			theta := inner(yk, mk) / inner(xk, mk)
-			if !(theta > 0) {
-				s.res.Status.note("a vector without mass was dropped")
-				continue
-			}
-			sum := 0.0
-			for i := range yk {
-				sum += (yk[i] - theta*xk[i]) * (zk[i] - theta*mk[i])
-				yk[i] /= theta
-			}
-			if c, _, _ := b.append(yk, 1); c == 0 {
-				s.res.Status.note("a vector for %.6g depended on others and was dropped", p.shift+1/theta)
-				continue
-			}
-			value := p.shift + 1/theta
+			theta, residual := quotient(part[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n])
+			values[k], residuals[k] = p.shift+1/theta, residual
 			if rigid[from+k] {
-				value = 0
+				values[k] = 0
 			}
-			out.values = append(out.values, value)
-			out.residuals = append(out.residuals, math.Sqrt(max(0, sum))/theta)
+			if !(theta > 0) {
+				clear(y[k*n:][:n]) // no mass: rounding has made it a null vector of M
+			}
+		}
+		keep, _, _ := b.append(y, size)
+		for _, k := range keep {
+			out.values = append(out.values, values[k])
+			out.residuals = append(out.residuals, residuals[k])
 			out.rigid = append(out.rigid, rigid[from+k])
+		}
+		if len(keep) < size {
+			s.res.Status.note("%d vectors without mass or depending on others were dropped", size-len(keep))
 		}
 	}
 	out.x = b.vectors()
 	return out.sorted(n)
+}
+
+// quotient returns the Rayleigh quotient θ of the operator for a vector x of unit norm, right to the square of the error
+// of x, and the residual ‖y-θx‖/θ, given mx = M·x, y = A⁻¹·mx and my = M·y.
+func quotient(x, mx, y, my []float64) (theta, residual float64) {
+	theta = inner(y, mx) / inner(x, mx)
+	sum := 0.0
+	for i := range y {
+		sum += (y[i] - theta*x[i]) * (my[i] - theta*mx[i])
+	}
+	return theta, math.Sqrt(max(0, sum)) / theta
 }
 
 // sorted returns the pairs by rising λ.
@@ -153,15 +160,7 @@ func (f *pairs) sorted(n int) *pairs {
 	for i := range order {
 		order[i] = i
 	}
-	slices.SortStableFunc(order, func(a, b int) int {
-		switch {
-		case f.values[a] < f.values[b]:
-			return -1
-		case f.values[a] > f.values[b]:
-			return 1
-		}
-		return 0
-	})
+	slices.SortStableFunc(order, func(a, b int) int { return cmp.Compare(f.values[a], f.values[b]) })
 	if slices.IsSorted(order) {
 		return f
 	}

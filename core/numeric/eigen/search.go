@@ -3,6 +3,7 @@ package eigen
 import (
 	"cmp"
 	"context"
+	"errors"
 	"math"
 	"slices"
 
@@ -62,9 +63,9 @@ func (s *search) begin() bool {
 	fillRandom(x, s.seed)
 	s.p.mass(w, x, count)
 	s.p.solve(w, count)
-	kept, _, _ := s.b.append(w, count)
-	s.start, s.end = s.end, s.end+kept
-	return kept > 0
+	keep, _, _ := s.b.append(w, count)
+	s.start, s.end = s.end, s.end+len(keep)
+	return len(keep) > 0
 }
 
 // run iterates until enough says so of the leading pairs, nothing is left, or steps have been made. It returns whether
@@ -72,7 +73,9 @@ func (s *search) begin() bool {
 func (s *search) run(ctx context.Context, enough func(s *search) bool, steps int) (bool, error) {
 	if s.end == 0 && !s.exhausted {
 		s.exhausted = !s.begin()
-		s.ritz(nil, 0)
+		if err := s.ritz(nil, 0); err != nil {
+			return false, err
+		}
 	}
 	for range steps {
 		if enough(s) {
@@ -84,7 +87,9 @@ func (s *search) run(ctx context.Context, enough func(s *search) bool, steps int
 		if ctx.Err() != nil {
 			return false, context.Cause(ctx)
 		}
-		s.step()
+		if err := s.step(); err != nil {
+			return false, err
+		}
 		if at := s.b.negative; at >= 0 {
 			return false, &IndefiniteError{Matrix: "M", Unknown: at, Detail: "a vector has a negative square in its norm"}
 		}
@@ -93,20 +98,23 @@ func (s *search) run(ctx context.Context, enough func(s *search) bool, steps int
 }
 
 // step multiplies the last block by the operator, appends what is new and finds the Ritz pairs.
-func (s *search) step() {
+func (s *search) step() error {
 	n, l := s.p.order(), len(s.locked)
 	count := s.end - s.start
 	w := make([]float64, count*n)
 	s.p.mass(w, s.b.v[(l+s.start)*n:], count)
 	s.p.solve(w, count)
-	kept, c, r := s.b.append(w, count)
+	keep, c, r := s.b.append(w, count)
+	kept := len(keep)
 	s.status.Steps++
 	for i := range s.end {
 		for j := range count {
 			s.h[i*s.room+s.start+j] = c[(l+i)*count+j]
 		}
 	}
-	s.ritz(r, kept)
+	if err := s.ritz(r, kept); err != nil {
+		return err
+	}
 	s.start, s.end = s.end, s.end+kept
 	if s.end+max(kept, s.block) > s.room {
 		s.restart(kept)
@@ -114,11 +122,12 @@ func (s *search) step() {
 	if kept == 0 {
 		s.exhausted = !s.begin()
 	}
+	return nil
 }
 
 // ritz finds the Ritz pairs of the first end vectors, the last block being start..end with coefficients r (kept by
 // end-start) along the vectors after it.
-func (s *search) ritz(r []float64, kept int) {
+func (s *search) ritz(r []float64, kept int) error {
 	m, count := s.end, s.end-s.start
 	s.pairs = s.pairs[:0]
 	for k, theta := range s.locked {
@@ -138,7 +147,7 @@ func (s *search) ritz(r []float64, kept int) {
 		}
 		var e mat.EigenSym
 		if !e.Factorize(sym, true) {
-			panic("eigen: projected matrix is not finite")
+			return errors.New("eigen: the entries of K and M are too far apart in size to be worked with")
 		}
 		values := e.Values(nil)
 		s.rotation = &mat.Dense{}
@@ -156,6 +165,7 @@ func (s *search) ritz(r []float64, kept int) {
 		}
 	}
 	slices.SortStableFunc(s.pairs, func(a, b pair) int { return cmp.Compare(b.theta, a.theta) })
+	return nil
 }
 
 // infinite is the ratio to the largest θ below which a θ cannot be told from that of a null vector of M.

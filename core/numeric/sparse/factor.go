@@ -7,6 +7,8 @@ import (
 	"math"
 	"runtime"
 	"time"
+
+	"hushframe/core/numeric/dense"
 )
 
 // Factor is the factorisation S·A·S = P·L·D·Lᵀ·Pᵀ of a symmetric matrix (see the package doc). It is not changed by its
@@ -148,7 +150,7 @@ func (f *Factor) takeStock() {
 			small, negative := math.Abs(f.d[first+k]), f.d[first+k] < 0
 			if e := f.e[first+k]; e != 0 {
 				st.TwoByTwo++
-				small, negative = smallerEigenvalue(f.d[first+k], f.d[first+k+1], e), true
+				small, negative = dense.SmallerOfTwo(f.d[first+k], f.d[first+k+1], e), true
 			} else if k > 0 && f.e[first+k-1] != 0 {
 				continue
 			}
@@ -169,7 +171,7 @@ func (f *Factor) Inertia() (neg, zero, pos int) {
 		d := f.d[k]
 		if e := f.e[k]; e != 0 {
 			// A block of order two chosen by the pivot rule has a negative determinant.
-			if smallerEigenvalue(d, f.d[k+1], e) < doubtfulPivot {
+			if dense.SmallerOfTwo(d, f.d[k+1], e) < doubtfulPivot {
 				zero++
 				if d+f.d[k+1] < 0 {
 					neg++
@@ -193,10 +195,4 @@ func (f *Factor) Inertia() (neg, zero, pos int) {
 		}
 	}
 	return neg, zero, pos
-}
-
-// smallerEigenvalue is the smaller magnitude of the eigenvalues of [d0 e; e d1].
-func smallerEigenvalue(d0, d1, e float64) float64 {
-	larger := math.Abs((d0+d1)/2) + math.Hypot((d0-d1)/2, e)
-	return math.Abs((d0/larger)*d1 - (e/larger)*e)
 }
