@@ -2,7 +2,8 @@
 //
 //   - spectrum: windows, Welch power and cross spectra, their confidence bounds
 //   - peaks: local maxima of a power spectrum, their frequency, width and uncertainty
-//   - order: the frequency bands that rotor orders occupy in a recording
+//   - order: the frequency bands that rotor orders occupy in a recording, and what is left without them
+//   - identify: modes without known force, by subspace identification and frequency-domain decomposition
 //   - recording: the interface of recording readers, and the checks on a time column
 //
 // Everything is in SI units. Frequencies are in hertz, sample rates in samples per second (also written Hz). Power

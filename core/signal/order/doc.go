@@ -13,4 +13,8 @@
 // A speed wanders, so an order is a distribution and not a line. Its bands are the fewest cells that together hold a given
 // share of the time, joined where they touch and widened by a margin on either side. Two speeds held in turn give two
 // bands with the frequencies between them free; a mean would give one band in the wrong place.
+//
+// Where the angle of a rotor follows from its speed, its orders can be taken out of a signal: what turns with the angle at
+// nearly steady amplitude and phase is the order, what is left is structure and noise. Folding needs no care there, since
+// the samples of a folded line are those of its mirror image.
 package order

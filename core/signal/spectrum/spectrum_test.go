@@ -3,6 +3,7 @@ package spectrum
 import (
 	"errors"
 	"math"
+	"math/cmplx"
 	"testing"
 
 	"hushframe/core/signal/internal/noise"
@@ -172,6 +173,34 @@ func BenchmarkWelchThreeAxes(b *testing.B) {
 			if _, err := Welch([][]float64{x}, s); err != nil {
 				b.Fatal(err)
 			}
+		}
+	}
+}
+
+// The matrix of two channels holds their Welch spectra on the diagonal and their cross spectrum beside it.
+func TestCrossMatrix(t *testing.T) {
+	source := noise.Source(8)
+	x, y := make([]float64, 3000), make([]float64, 3000)
+	for i := range x {
+		x[i] = source.Gauss()
+		y[i] = source.Gauss()
+		if i > 2 {
+			y[i] += x[i-2]
+		}
+	}
+	s := Settings{Rate: 500, Segment: 256, Overlap: 100}
+	m, err := CrossMatrix([][][]float64{{x[:1800], y[:1800]}, {x[1800:], y[1800:]}}, s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	c, err := CrossSpectrum([][]float64{x[:1800], x[1800:]}, [][]float64{y[:1800], y[1800:]}, s)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for k, v := range m.Values {
+		near := func(got, want complex128) bool { return cmplx.Abs(got-want) < 1e-12*(c.XX[k]+c.YY[k]) }
+		if !near(v[0], complex(c.XX[k], 0)) || !near(v[3], complex(c.YY[k], 0)) || !near(v[2], c.XY[k]) || !near(v[1], cmplx.Conj(c.XY[k])) {
+			t.Fatalf("bin %d: %v, want %g, %g, %v", k, v, c.XX[k], c.YY[k], c.XY[k])
 		}
 	}
 }

@@ -1,0 +1,36 @@
+// Package identify finds the modes of a structure from its vibration alone, without knowing the force.
+//
+// Terms and symbols
+//
+//	y[j]   the l channels at sample j, taken as the response of a linear structure to broadband force
+//	R_k    covariance at lag k, mean of y[j+k]·y[j]ᵀ over all j of all runs; pairs never straddle a gap
+//	i      block rows: the lags 1 to 2i-1 are used
+//	T      block Toeplitz matrix, block (a, b) = R_{i+a-b}, a, b = 0 … i-1
+//	n      order of a model: number of its states, two for each mode
+//	O      observability matrix C, CA, CA²… of a model
+//	μ, λ   pole of A per sample, and λ = ln(μ)·rate in 1/s
+//	f, ζ   |λ|/2π in Hz, and -Re λ/|λ|
+//	φ      shape, the l complex components C·v of an eigenvector v of A
+//
+// Subspace identification. R_k = C·A^(k-1)·G for a response to white force, so T = O·Γ has rank n. A singular value
+// decomposition of T gives O = U·√S for every order at once, A from O without its last and without its first block row by
+// least squares, and the modes from A and C (B. Peeters and G. De Roeck, Reference-based stochastic subspace
+// identification for output-only modal analysis, Mech. Syst. Signal Process. 13, 1999). With canonical weights T is first
+// divided by the square roots of the covariances of future and past, so that weak modes count as much as strong ones
+// (P. Van Overschee and B. De Moor, Subspace Identification for Linear Systems, 1996).
+//
+// A pole is stable when a pole of the order before has nearly its frequency, damping and shape. Stable poles of all orders
+// are clustered by these three; a cluster that reaches through enough orders is a mode. A line is a pole without damping.
+//
+// Uncertainty. The record is cut into groups of time; leaving out one group at a time changes R_k, and through the fixed
+// right singular vectors O, A and the modes to first order. The variance is that of the jackknife (B. Efron, The
+// Jackknife, the Bootstrap and Other Resampling Plans, 1982), to which the scatter over the orders of the cluster is added.
+//
+// Decomposition. The cross-spectral matrix of all channels is decomposed into singular values per bin; a peak of the first
+// one is a mode whose shape is the singular vector. Around it the bins whose vector agrees with that shape are turned into
+// a covariance, whose zero crossings and decay give frequency and damping (R. Brincker, L. Zhang, P. Andersen, Modal
+// identification of output-only systems using frequency domain decomposition, Smart Mater. Struct. 10, 2001).
+//
+// Lines of machines satisfy none of the assumptions. They are told by their bands where speeds are known, and by the
+// kurtosis of the band-passed signal: 3 for the response to noise, 1.5 for a steady sine.
+package identify
