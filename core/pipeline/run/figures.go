@@ -8,9 +8,9 @@ import (
 	"hushframe/core/pipeline/stage"
 )
 
-// checkFigures compares the figures a stage reports with those it declared. A
+// CheckFigures compares the figures a stage reports with those it declared. A
 // declared figure may have no value in a run.
-func checkFigures(d stage.Description, figures map[string]any) error {
+func CheckFigures(d stage.Description, figures map[string]any) error {
 	declared := map[string]stage.Type{}
 	for _, f := range d.Figures {
 		declared[f.Name] = f.Type

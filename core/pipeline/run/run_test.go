@@ -463,14 +463,14 @@ func TestFiguresAreChecked(t *testing.T) {
 	}}
 	kg := stage.Quantity{SI: 1, Dimension: "mass"}
 	good := map[string]any{"n": 1.0, "m": kg, "t": "x", "b": true, "l": []any{kg}, "o": map[string]any{"x": 1.0}, "any": []any{}, "map": map[string]any{"k": 1.0}}
-	if err := checkFigures(d, good); err != nil {
+	if err := CheckFigures(d, good); err != nil {
 		t.Error(err)
 	}
-	if err := checkFigures(d, map[string]any{"n": nil}); err != nil {
+	if err := CheckFigures(d, map[string]any{"n": nil}); err != nil {
 		t.Errorf("without a value: %v", err)
 	}
 	for name, v := range map[string]any{"n": "1", "m": stage.Quantity{SI: 1, Dimension: "length"}, "t": 1.0, "b": 1.0, "l": []any{1.0}, "o": map[string]any{"x": "y"}, "map": []any{}, "other": 1.0} {
-		if err := checkFigures(d, map[string]any{name: v}); fault.KindOf(err) != fault.Protocol || !strings.Contains(err.Error(), fmt.Sprintf("%q", name)) {
+		if err := CheckFigures(d, map[string]any{name: v}); fault.KindOf(err) != fault.Protocol || !strings.Contains(err.Error(), fmt.Sprintf("%q", name)) {
 			t.Errorf("%s: %v", name, err)
 		}
 	}

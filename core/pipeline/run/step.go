@@ -151,7 +151,7 @@ func (r *runner) work(ctx context.Context, s *plan.Step, p *prepared, threads in
 	if outcome == nil {
 		outcome = &stage.Outcome{}
 	}
-	if err := checkFigures(d, outcome.Figures); err != nil {
+	if err := CheckFigures(d, outcome.Figures); err != nil {
 		return nil, err
 	}
 	result := &Step{State: Ran, Key: p.key, Outcome: *outcome, Outputs: map[string]store.Output{}, Files: call.Files.Used()}
