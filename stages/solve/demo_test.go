@@ -18,7 +18,7 @@ import (
 )
 
 // imported runs the import stage on a frame of the repository.
-func imported(t *testing.T, folder, file string) (*airframe.Geometry, *airframe.Properties, *stage.Outcome) {
+func imported(t testing.TB, folder, file string) (*airframe.Geometry, *airframe.Properties, *stage.Outcome) {
 	t.Helper()
 	call := &stage.Call{
 		Arguments: stage.Arguments{"airframe": file}, Outputs: map[string]string{"geometry": t.TempDir(), "properties": t.TempDir()},

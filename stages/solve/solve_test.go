@@ -20,7 +20,7 @@ import (
 )
 
 // quiet takes progress and log lines.
-type quiet struct{ t *testing.T }
+type quiet struct{ t testing.TB }
 
 func (quiet) Progress(string, float64) {}
 func (q quiet) Log(_ stage.Level, text string, fields ...any) {

@@ -5,6 +5,7 @@ import (
 
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/beam"
+	"hushframe/core/numeric/dense"
 )
 
 // EnergyKinds are the kinds of strain energy of a structure: those of plates and beams, then joints
@@ -20,19 +21,17 @@ type Energies struct {
 }
 
 // Energies splits the strain and kinetic energy of each motion y (unknowns).
-func (s *System) Energies(ctx context.Context, ys [][]float64) (*Energies, error) {
+func (s *System) Energies(ctx context.Context, ys [][]float64, threads int) (*Energies, error) {
 	p := s.layout.problem
 	out := &Energies{}
-	nodes := make([][]float64, len(ys))
-	for m, y := range ys {
-		nodes[m] = make([]float64, 6*len(p.Nodes))
-		s.Expand(nodes[m], y)
+	nodes := s.expandAll(ys, threads)
+	for _, y := range ys {
 		out.Strain = append(out.Strain, make([][6]float64, len(p.Groups)))
 		out.Kinetic = append(out.Kinetic, make([]float64, len(p.Groups)))
 		out.Body = append(out.Body, s.bodyKinetic(y))
 	}
 	for i := range s.plates {
-		if err := s.plateEnergies(ctx, &s.plates[i], nodes, out); err != nil {
+		if err := s.plateEnergies(ctx, &s.plates[i], nodes, out, threads); err != nil {
 			return nil, err
 		}
 	}
@@ -40,7 +39,7 @@ func (s *System) Energies(ctx context.Context, ys [][]float64) (*Energies, error
 		a := &s.beams[i]
 		for e, ends := range a.part.Elements {
 			for m := range ys {
-				u := local(nodes[m], ends[:], a.axes[e])
+				u := local(nil, nodes[m], ends[:], a.axes[e])
 				strain := beam.Energies(a.part.Section, a.lengths[e], u)
 				for k, v := range strain {
 					out.Strain[m][a.part.Group][k] += v
@@ -67,28 +66,37 @@ func (s *System) Energies(ctx context.Context, ys [][]float64) (*Energies, error
 }
 
 // energyBatch bounds how many motions one call of an element type gets, for its memory.
-const energyBatch = 16
+const energyBatch = 32
 
-func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes [][]float64, out *Energies) error {
-	size, count := element.Packed(6*a.nodes), len(a.part.Elements)
+func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes [][]float64, out *Energies, threads int) error {
+	order, count := 6*a.nodes, len(a.part.Elements)
+	w := newWork(nodes, count, a.nodes, func(e int) []int32 { return a.part.Elements[e][:a.nodes] }, func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
+	if err := w.apply(ctx, a.matrices.Mass, threads); err != nil {
+		return err
+	}
+	for m := range nodes {
+		out.Kinetic[m][a.part.Group] += w.own(m) / 2
+	}
 	for lo := 0; lo < len(nodes); lo += energyBatch {
-		some := nodes[lo:min(lo+energyBatch, len(nodes))]
-		motions := make([]float64, 0, count*len(some)*6*a.nodes)
-		for e, list := range a.part.Elements {
-			for m := range some {
-				u := local(some[m], list[:a.nodes], a.part.Axes)
-				motions = append(motions, u...)
-				out.Kinetic[lo+m][a.part.Group] += half(a.matrices.Mass[size*e:size*(e+1)], u)
+		some := min(energyBatch, len(nodes)-lo)
+		motions := make([]float64, count*some*order)
+		dense.Parallel(threads, some, func(m int) {
+			row := w.motion[(lo+m)*w.width:]
+			for e := range count {
+				to := motions[(e*some+m)*order:]
+				for i := range a.nodes {
+					copy(to[6*i:][:6], row[6*w.node(e, i):])
+				}
 			}
-		}
-		got := make([]float64, count*len(some)*element.Kinds)
+		})
+		got := make([]float64, count*some*element.Kinds)
 		if err := a.part.Type.Energies(ctx, &a.batch, motions, got); err != nil {
 			return &PartError{s.layout.problem.Groups[a.part.Group].Name, err}
 		}
 		for e := range count {
 			for m := range some {
 				for k := range element.Kinds {
-					out.Strain[lo+m][a.part.Group][k] += got[(e*len(some)+m)*element.Kinds+k]
+					out.Strain[lo+m][a.part.Group][k] += got[(e*some+m)*element.Kinds+k]
 				}
 			}
 		}
@@ -96,9 +104,8 @@ func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes []
 	return nil
 }
 
-// local gathers the motion of nodes in an element's axes.
-func local(nodes []float64, list []int32, axes Axes) []float64 {
-	u := make([]float64, 0, 6*len(list))
+// local appends the motion of nodes in an element's axes.
+func local(u, nodes []float64, list []int32, axes Axes) []float64 {
 	for _, v := range list {
 		m := axes.in6([6]float64(nodes[6*v : 6*v+6]))
 		u = append(u, m[:]...)

@@ -5,11 +5,8 @@ import (
 
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/beam"
+	"hushframe/core/numeric/dense"
 )
-
-// groupChunk is the number of elements whose share is summed by itself: it fixes the order of the
-// sums whatever the number of threads.
-const groupChunk = 128
 
 // GroupStiffness returns, per group of the problem, the matrix y_iᵀ K_g y_j of the motions ys: n×n,
 // row-major and symmetric. They add up to that of K. Groups without stiffness have zeros.
@@ -19,28 +16,24 @@ func (s *System) GroupStiffness(ctx context.Context, ys [][]float64, threads int
 	for g := range out {
 		out[g] = make([]float64, n*n)
 	}
-	nodes := make([][]float64, n)
-	for m, y := range ys {
-		nodes[m] = make([]float64, 6*len(p.Nodes))
-		s.Expand(nodes[m], y)
-	}
+	nodes := s.expandAll(ys, threads)
 	for i := range s.plates {
 		a := &s.plates[i]
-		err := s.sumGroup(ctx, out[a.part.Group], len(a.part.Elements), 6*a.nodes, threads, a.matrices.Stiffness, func(e, m int) []float64 {
-			return local(nodes[m], a.part.Elements[e][:a.nodes], a.part.Axes)
-		}, n)
-		if err != nil {
+		lists := func(e int) []int32 { return a.part.Elements[e][:a.nodes] }
+		w := newWork(nodes, len(a.part.Elements), a.nodes, lists, func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
+		if err := w.apply(ctx, a.matrices.Stiffness, threads); err != nil {
 			return nil, err
 		}
+		w.products(out[a.part.Group], threads)
 	}
 	for i := range s.beams {
 		a := &s.beams[i]
-		err := s.sumGroup(ctx, out[a.part.Group], len(a.part.Elements), beam.Unknowns, threads, a.matrices.Stiffness, func(e, m int) []float64 {
-			return local(nodes[m], a.part.Elements[e][:], a.axes[e])
-		}, n)
-		if err != nil {
+		lists := func(e int) []int32 { return a.part.Elements[e][:] }
+		w := newWork(nodes, len(a.part.Elements), beam.Unknowns/6, lists, func(e int) Axes { return a.axes[e] }, Global, threads)
+		if err := w.apply(ctx, a.matrices.Stiffness, threads); err != nil {
 			return nil, err
 		}
+		w.products(out[a.part.Group], threads)
 	}
 	for i := range s.springs {
 		a := &s.springs[i]
@@ -70,56 +63,149 @@ func (s *System) GroupStiffness(ctx context.Context, ys [][]float64, threads int
 	return out, nil
 }
 
-// sumGroup adds u_rᵀ K_e u_q (q ≤ r) over elements of the given order to dst.
-func (s *System) sumGroup(ctx context.Context, dst []float64, count, order, threads int, stiffness []float64, motion func(e, m int) []float64, n int) error {
-	chunks := (count + groupChunk - 1) / groupChunk
-	partial := make([][]float64, chunks)
-	size := element.Packed(order)
-	err := element.Each(ctx, chunks, 1, threads, func() struct{} { return struct{}{} }, func(_ struct{}, c int) error {
-		sum := make([]float64, n*n)
-		u, ku := make([][]float64, n), make([]float64, order)
-		for e := c * groupChunk; e < min((c+1)*groupChunk, count); e++ {
-			for m := range n {
-				u[m] = motion(e, m)
+func (s *System) expandAll(ys [][]float64, threads int) [][]float64 {
+	nodes := make([][]float64, len(ys))
+	dense.Parallel(threads, len(ys), func(m int) {
+		nodes[m] = make([]float64, 6*len(s.layout.problem.Nodes))
+		s.Expand(nodes[m], ys[m])
+	})
+	return nodes
+}
+
+// work holds the motions of one part and the forces that its matrices answer with, as rows over the
+// components of its own nodes in one set of axes.
+type work struct {
+	count, width  int // of motions; of components
+	order         int // of the element matrices
+	elements      int
+	node          func(e, i int) int // of the part
+	turned        func(e int) (axes Axes, differ bool)
+	motion, force []float64 // count × width
+}
+
+// newWork gathers nodes, the motions of all nodes in airframe axes, into common axes. Elements may have
+// axes of their own.
+func newWork(nodes [][]float64, elements, perElement int, list func(e int) []int32, axes func(e int) Axes, common Axes, threads int) *work {
+	w := &work{count: len(nodes), order: 6 * perElement, elements: elements}
+	place := map[int32]int{}
+	var own []int32
+	index := make([]int, elements*perElement)
+	for e := range elements {
+		for i, v := range list(e) {
+			at, ok := place[v]
+			if !ok {
+				at = len(own)
+				place[v] = at
+				own = append(own, v)
 			}
-			k := stiffness[size*e : size*(e+1)]
-			for r := range n {
-				multiply(ku, k, u[r])
-				for q := range r + 1 {
-					x := 0.0
-					for i, v := range ku {
-						x += v * u[q][i]
+			index[e*perElement+i] = at
+		}
+	}
+	w.width = 6 * len(own)
+	w.node = func(e, i int) int { return index[e*perElement+i] }
+	w.turned = func(e int) (Axes, bool) {
+		a := axes(e)
+		return a, a != common
+	}
+	w.motion, w.force = make([]float64, w.count*w.width), make([]float64, w.count*w.width)
+	dense.Parallel(threads, w.count, func(m int) {
+		row := w.motion[m*w.width:]
+		for i, v := range own {
+			u := common.in6([6]float64(nodes[m][6*v : 6*v+6]))
+			copy(row[6*i:], u[:])
+		}
+	})
+	return w
+}
+
+// panel is the number of motions that one goroutine multiplies at a time. A panel owns its rows of the
+// forces, so their sums run over the elements in order whatever the number of threads.
+const panel = 12
+
+// apply computes the forces of the packed element matrices.
+func (w *work) apply(ctx context.Context, packed []float64, threads int) error {
+	clear(w.force)
+	size, n := element.Packed(w.order), w.order
+	dense.Parallel(threads, (w.count+panel-1)/panel, func(t int) {
+		lo := t * panel
+		rows := min(panel, w.count-lo)
+		full, u, f := make([]float64, n*n), make([]float64, rows*n), make([]float64, rows*n)
+		for e := range w.elements {
+			if e%64 == 0 && ctx.Err() != nil {
+				return
+			}
+			unpack(full, packed[size*e:size*(e+1)], n)
+			axes, differ := w.turned(e)
+			for r := range rows {
+				row := w.motion[(lo+r)*w.width:]
+				for i := range n / 6 {
+					at := 6 * w.node(e, i)
+					copy(u[r*n+6*i:][:6], row[at:])
+				}
+			}
+			if differ {
+				turn(u, axes.in6)
+			}
+			clear(f)
+			dense.SubMulT(rows, n, n, u, n, full, n, f, n)
+			if differ {
+				turn(f, axes.out6)
+			}
+			for r := range rows {
+				row := w.force[(lo+r)*w.width:]
+				for i := range n / 6 {
+					to, from := row[6*w.node(e, i):][:6], f[r*n+6*i:][:6]
+					for k := range to {
+						to[k] -= from[k]
 					}
-					sum[r*n+q] += x
 				}
 			}
 		}
-		partial[c] = sum
-		return nil
 	})
-	if err != nil {
-		return err
-	}
-	for _, sum := range partial {
-		for i, v := range sum {
-			dst[i] += v
-		}
-	}
-	return nil
+	return ctx.Err()
 }
 
-// multiply computes dst = A x of a packed matrix.
-func multiply(dst, a, x []float64) {
-	clear(dst)
-	at := 0
-	for i := range x {
-		sum := 0.0
-		for j := range i {
-			v := a[at+j]
-			sum += v * x[j]
-			dst[j] += v * x[i]
-		}
-		dst[i] += sum + a[at+i]*x[i]
-		at += i + 1
+func turn(motions []float64, by func([6]float64) [6]float64) {
+	for i := 0; i < len(motions); i += 6 {
+		m := by([6]float64(motions[i : i+6]))
+		copy(motions[i:], m[:])
 	}
+}
+
+func unpack(full, packed []float64, n int) {
+	at := 0
+	for i := range n {
+		for j := range i + 1 {
+			full[i*n+j], full[j*n+i] = packed[at], packed[at]
+			at++
+		}
+	}
+}
+
+// products adds the work of every force on every motion to the lower triangle of dst.
+func (w *work) products(dst []float64, threads int) {
+	const piece = 1024
+	n, pieces := w.count, (w.width+piece-1)/piece
+	parts := make([]float64, pieces*n*n)
+	dense.Parallel(threads, pieces, func(t int) {
+		p := t * piece
+		dense.SubMulTLower(n, min(piece, w.width-p), w.force[p:], w.width, w.motion[p:], w.width, parts[t*n*n:], n)
+	})
+	for t := range pieces {
+		for r := range n {
+			for q := range r + 1 {
+				dst[r*n+q] -= parts[t*n*n+r*n+q]
+			}
+		}
+	}
+}
+
+// own returns the work of each force on its own motion.
+func (w *work) own(m int) float64 {
+	sum := 0.0
+	f := w.force[m*w.width:][:w.width]
+	for i, u := range w.motion[m*w.width:][:w.width] {
+		sum += u * f[i]
+	}
+	return sum
 }

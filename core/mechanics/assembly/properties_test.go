@@ -151,7 +151,7 @@ func TestEnergiesAndGroups(t *testing.T) {
 		}
 		ys = append(ys, y)
 	}
-	e, err := s.Energies(context.Background(), ys)
+	e, err := s.Energies(context.Background(), ys, 2)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -7,6 +7,7 @@ import (
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/assembly"
+	"hushframe/core/numeric/dense"
 	"hushframe/core/numeric/eigen"
 )
 
@@ -83,22 +84,29 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	if st.RigidRatio, err = rigidRatio(res.Values); err != nil {
 		return nil, err
 	}
-	b := &builder{system: s, threads: opt.Threads}
-	rigid := s.Rigid()
-	for _, y := range rigid {
-		b.append(RigidBody, 0, y)
+	b := &span{system: s, threads: opt.Threads, n: s.N}
+	var rigid, elastic, frequency []float64
+	for _, y := range s.Rigid() {
+		rigid = append(rigid, y...)
+	}
+	if err := b.extend(RigidBody, make([]float64, RigidBodies), rigid); err != nil {
+		return nil, err
 	}
 	for i := RigidBodies; i < len(res.Values); i++ {
-		b.append(Elastic, math.Sqrt(res.Values[i])/(2*math.Pi), res.Vectors[i])
+		elastic = append(elastic, res.Vectors[i]...)
+		frequency = append(frequency, math.Sqrt(res.Values[i])/(2*math.Pi))
 	}
-	elastic := len(b.vectors)
+	if err := b.extend(Elastic, frequency, elastic); err != nil {
+		return nil, err
+	}
+	modes := b.list(RigidBodies)
 
 	progress("static answers", 0)
 	if err := b.residuals(ctx, places, res); err != nil {
 		return nil, err
 	}
 	progress("energies", 0)
-	e, err := s.Energies(ctx, b.vectors[RigidBodies:elastic])
+	e, err := s.Energies(ctx, modes, opt.Threads)
 	if err != nil {
 		return nil, err
 	}
@@ -129,82 +137,31 @@ func rigidRatio(values []float64) (float64, error) {
 	return ratio, nil
 }
 
-// builder gathers M-orthonormal vectors.
-type builder struct {
-	system    *assembly.System
-	threads   int
-	kinds     []VectorKind
-	frequency []float64
-	vectors   [][]float64
-	masses    [][]float64 // M times each vector
-}
-
-// append makes y orthogonal to the vectors so far, in M and twice over, normalises and keeps it.
-func (b *builder) append(kind VectorKind, frequency float64, y []float64) {
-	my := make([]float64, len(y))
-	for range 2 {
-		b.project(y)
-		b.system.M.MulVec(my, y)
-		c := 1 / math.Sqrt(inner(y, my))
-		for i := range y {
-			y[i] *= c
-			my[i] *= c
-		}
-	}
-	b.kinds, b.frequency = append(b.kinds, kind), append(b.frequency, frequency)
-	b.vectors, b.masses = append(b.vectors, y), append(b.masses, my)
-}
-
-// project takes from y its part along the vectors so far.
-func (b *builder) project(y []float64) {
-	for v := range b.vectors {
-		axpy(y, -inner(b.masses[v], y), b.vectors[v])
-	}
-}
-
-func inner(a, b []float64) float64 {
-	sum := 0.0
-	for i, v := range a {
-		sum += v * b[i]
-	}
-	return sum
-}
-
-func axpy(y []float64, c float64, x []float64) {
-	for i, v := range x {
-		y[i] += c * v
-	}
-}
-
 // finish fills the basis.
-func (b *builder) finish(ctx context.Context, out *Basis, places []Place) error {
-	s := b.system
+func (b *span) finish(ctx context.Context, out *Basis, places []Place) error {
+	s, n := b.system, b.count()
 	out.Kinds, out.Frequency = b.kinds, b.frequency
-	for _, y := range b.vectors {
-		shape := make([]float64, 6*len(s.Problem().Nodes))
-		s.Expand(shape, y)
-		out.Shapes = append(out.Shapes, shape)
-	}
+	out.Shapes = make([][]float64, n)
+	dense.Parallel(b.threads, n, func(v int) {
+		out.Shapes[v] = make([]float64, 6*len(s.Problem().Nodes))
+		s.Expand(out.Shapes[v], b.vector(v))
+	})
 	for _, p := range places {
 		site := Site{Name: p.Name, Kind: p.Kind, Point: p.Point}
-		for _, y := range b.vectors {
-			site.Motion = append(site.Motion, s.Motion(p.Body, p.Point, y))
+		for v := range n {
+			site.Motion = append(site.Motion, s.Motion(p.Body, p.Point, b.vector(v)))
 		}
 		out.Sites = append(out.Sites, site)
 	}
-	stiffness, err := s.GroupStiffness(ctx, b.vectors, b.threads)
+	// Rigid motions strain nothing.
+	stiffness, err := s.GroupStiffness(ctx, b.list(RigidBodies), b.threads)
 	if err != nil {
 		return err
 	}
-	n := len(b.vectors)
 	for g, group := range s.Problem().Groups {
-		k := stiffness[g]
-		for i := range n {
-			for j := range n {
-				if i < RigidBodies || j < RigidBodies { // rounding: rigid motions strain nothing
-					k[i*n+j] = 0
-				}
-			}
+		k, some := make([]float64, n*n), n-RigidBodies
+		for i := range some {
+			copy(k[(RigidBodies+i)*n+RigidBodies:], stiffness[g][i*some:(i+1)*some])
 		}
 		out.Groups = append(out.Groups, LossGroup{Name: group.Name, Kind: group.Kind, Stiffness: k})
 	}

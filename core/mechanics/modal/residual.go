@@ -3,18 +3,19 @@ package modal
 import (
 	"context"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 
 	"hushframe/core/mechanics/assembly"
+	"hushframe/core/numeric/dense"
 	"hushframe/core/numeric/eigen"
 )
 
 // loads lists the unit loads whose static answers the basis must contain: six components at every
 // rotor hub and at the gyro, and a pair of opposite forces at the ends of every spring of a mount.
-func (b *builder) loads(places []Place) [][]float64 {
+func (b *span) loads(places []Place) (all []float64, count int) {
 	s := b.system
-	var all [][]float64
 	for _, p := range places {
 		if p.Kind != "rotor" && p.Kind != "gyro" {
 			continue
@@ -24,7 +25,8 @@ func (b *builder) loads(places []Place) [][]float64 {
 			var unit [6]float64
 			unit[c] = 1
 			s.Load(f, p.Body, p.Point, unit)
-			all = append(all, f)
+			all = append(all, f...)
+			count++
 		}
 	}
 	problem := s.Problem()
@@ -49,15 +51,19 @@ func (b *builder) loads(places []Place) [][]float64 {
 				}
 				s.Load(f, body, sp.Point, force)
 			}
-			all = append(all, f)
+			all = append(all, f...)
+			count++
 		}
 	}
-	return all
+	return all, count
 }
 
 const (
-	// settled is the error of a static answer, relative, at which refinement ends.
-	settled = 1e-6
+	// settled is the error of a static answer, relative, at which refinement ends. What it spoils in the
+	// response is of the order of its square, for the Ritz step takes the best of the answers.
+	settled = 0.02
+	// mostSweeps bounds refinement where the shift is far below the few modes kept.
+	mostSweeps = 8
 	// dependent is the flexibility, of loads scaled to unit own flexibility, below which a combination
 	// of static answers adds nothing.
 	dependent = 1e-10
@@ -71,58 +77,57 @@ const (
 // hand by x ← A⁻¹(P f - σ M x): without parts along kept modes the error shrinks by at least
 // -σ/(λ - σ) each time, λ the highest kept value. A Ritz step in the span of the answers makes them
 // orthogonal in M and K.
-func (b *builder) residuals(ctx context.Context, places []Place, res *eigen.Result) error {
-	s := b.system
-	f := b.loads(places)
-	if len(f) == 0 {
+func (b *span) residuals(ctx context.Context, places []Place, res *eigen.Result) error {
+	f, count := b.loads(places)
+	if count == 0 {
 		return nil
 	}
-	n, count := s.N, len(f)
-	rate := -res.Shift / (res.Values[len(res.Values)-1] - res.Shift)
-	x, p := make([]float64, n*count), make([]float64, n*count)
-	for j := range f {
-		b.balance(f[j])
-		copy(p[n*j:], f[j])
-	}
-	mx := make([]float64, n*count)
-	for err := 1.0; err > settled; err *= rate {
+	sigma, highest := res.Shift, res.Values[len(res.Values)-1]
+	rate := -sigma / (highest - sigma)
+	b.balance(f, count)
+	right := slices.Clone(f) // A x
+	x, mx := make([]float64, len(f)), make([]float64, len(f))
+	for err, sweep := rate, 1; ; err, sweep = err*rate, sweep+1 {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
-		s.M.MulBlock(mx, x, count)
-		for i := range x {
-			x[i] = p[i] - res.Shift*mx[i]
-		}
+		copy(x, right)
 		res.Factor.SolveThreads(x, count, b.threads)
-		for j := range count {
-			b.project(x[n*j : n*(j+1)])
+		b.project(x, count)
+		b.multiply(mx, x, count)
+		if err <= settled || sweep == mostSweeps {
+			break
+		}
+		for i := range right {
+			right[i] = f[i] - sigma*mx[i]
 		}
 	}
-	column := func(j int) []float64 { return x[n*j : n*(j+1)] }
-
-	flex, mass := mat.NewSymDense(count, nil), mat.NewSymDense(count, nil)
-	s.M.MulBlock(mx, x, count)
-	for i := range count {
-		for j := range i + 1 {
-			flex.SetSym(i, j, (inner(f[i], column(j))+inner(f[j], column(i)))/2)
-			mass.SetSym(i, j, inner(mx[n*i:n*(i+1)], column(j)))
-		}
+	// K x = A x + σ M x.
+	mass, stiff := make([]float64, count*count), make([]float64, count*count)
+	dense.Gram(count, count, b.n, mx, x, mass, b.threads)
+	dense.Gram(count, count, b.n, right, x, stiff, b.threads)
+	for i, m := range mass {
+		stiff[i] += sigma * m
 	}
-	for _, r := range ritz(flex, mass) {
-		y := make([]float64, n)
-		for j, c := range r.combination {
-			axpy(y, c, column(j))
-		}
-		b.append(Residual, math.Sqrt(r.value)/(2*math.Pi), y)
+	pairs := ritz(symmetric(count, stiff), symmetric(count, mass))
+	var combinations, frequency []float64
+	for _, r := range pairs {
+		combinations = append(combinations, r.combination...)
+		frequency = append(frequency, math.Sqrt(r.value)/(2*math.Pi))
 	}
-	return nil
+	dense.Rotate(len(pairs), count, b.n, combinations, x, b.threads)
+	return b.extend(Residual, frequency, x[:len(pairs)*b.n])
 }
 
-// balance replaces a load by f - M Φ Φᵀ f.
-func (b *builder) balance(f []float64) {
-	for v := range b.vectors {
-		axpy(f, -inner(b.vectors[v], f), b.masses[v])
+// symmetric returns the mean of a matrix and its transpose.
+func symmetric(n int, a []float64) *mat.SymDense {
+	s := mat.NewSymDense(n, nil)
+	for i := range n {
+		for j := range i + 1 {
+			s.SetSym(i, j, (a[i*n+j]+a[j*n+i])/2)
+		}
 	}
+	return s
 }
 
 type ritzPair struct {
@@ -130,7 +135,7 @@ type ritzPair struct {
 	combination []float64
 }
 
-// ritz finds combinations of static answers, of flexibility (energy) matrix flex and mass matrix
+// ritz finds combinations of static answers, of energy matrix flex and mass matrix
 // mass, that are orthogonal in both, by ascending ω².
 func ritz(flex, mass *mat.SymDense) []ritzPair {
 	n := flex.SymmetricDim()

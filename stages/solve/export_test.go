@@ -1,0 +1,4 @@
+package solve
+
+// Places gives tests the sites of a frame.
+var Places = places
