@@ -12,14 +12,15 @@ import (
 	"hushframe/core/signal/recording"
 	"hushframe/core/signal/spectrum"
 	"hushframe/stages/kinds"
+	"hushframe/stages/record/gather"
 )
 
 // found is the description of a recording.
 type found struct {
 	spectra *kinds.Spectra
 	timing  recording.Timing
-	time    []float64 // of the samples used
-	unused  int       // samples per axis in no segment
+	axes    gather.Series // the samples used
+	unused  int           // samples per axis in no segment
 }
 
 const (
@@ -30,12 +31,12 @@ const (
 )
 
 // describe computes everything the artifact holds.
-func describe(d *data, p plan, set settings) (*found, error) {
-	axes, timing, err := window(d, p, set)
+func describe(r *gather.Recording, set settings) (*found, error) {
+	axes, timing, err := r.Window()
 	if err != nil {
 		return nil, err
 	}
-	f := &found{timing: timing, time: axes.time}
+	f := &found{timing: timing, axes: axes}
 	ws, err := segments(timing, set)
 	if err != nil {
 		return nil, err
@@ -56,9 +57,9 @@ func describe(d *data, p plan, set settings) (*found, error) {
 	if to == 0 {
 		to = 0.4 * s.Rate
 	}
-	for i, c := range p.axes {
-		values := axes.values[i]
-		power, err := spectrum.Welch(cutRuns(values, timing.Runs), ws)
+	for i, c := range r.Plan.Axes {
+		values := axes.Values[i]
+		power, err := spectrum.Welch(gather.Runs(values, timing.Runs), ws)
 		if err != nil {
 			return nil, refuse(err, timing, set)
 		}
@@ -76,52 +77,8 @@ func describe(d *data, p plan, set settings) (*found, error) {
 			})
 		}
 	}
-	rotors(s, d, p, set)
+	rotors(s, r, set)
 	return f, nil
-}
-
-// window cuts the axes to the times asked for and checks them.
-func window(d *data, p plan, set settings) (series, recording.Timing, error) {
-	if len(set.window) == 0 {
-		timing, err := analyse(d.axes, d.rate, p)
-		return d.axes, timing, err
-	}
-	first, last := d.axes.time[0], d.axes.time[len(d.axes.time)-1]
-	if first == last && len(d.axes.time) > 1 {
-		_, err := recording.Analyse(d.axes.time) // the time never changes, and no window could tell
-		return series{}, recording.Timing{}, placed(err, d.axes, p)
-	}
-	axes := d.axes.cut(set.window[0], set.window[1])
-	if len(axes.time) < 2 {
-		return series{}, recording.Timing{}, fault.New(fault.Input, "the window of %g s to %g s holds %d samples; the recording runs from %.6g s to %.6g s",
-			set.window[0], set.window[1], len(axes.time), first, last).In("", "").Of("window").Do("choose a window within the recording")
-	}
-	timing, err := analyse(axes, d.rate, p)
-	return axes, timing, err
-}
-
-func analyse(s series, rate float64, p plan) (recording.Timing, error) {
-	if n := len(s.row); rate > 0 && s.row[n-1]-s.row[0] == int64(n-1) {
-		t := recording.Steady(len(s.time), rate)
-		t.Start, t.End = s.time[0], s.time[len(s.time)-1]
-		return t, nil
-	}
-	t, err := recording.Analyse(s.time)
-	return t, placed(err, s, p)
-}
-
-// placed gives an error of a series the row and column of the recording.
-func placed(err error, s series, p plan) error {
-	var e *recording.Error
-	if !errors.As(err, &e) {
-		return err
-	}
-	out := *e
-	if out.Row > 0 {
-		out.Row = s.row[out.Row-1]
-	}
-	out.Column = p.time
-	return &out
 }
 
 // segments chooses the length of a segment: as the job says, or the power of two that makes bins just below half a
@@ -167,14 +124,6 @@ func segments(t recording.Timing, set settings) (spectrum.Settings, error) {
 	return s, nil
 }
 
-func cutRuns(values []float64, runs []recording.Run) [][]float64 {
-	var out [][]float64
-	for _, r := range runs {
-		out = append(out, values[r.First:r.End])
-	}
-	return out
-}
-
 func refuse(err error, t recording.Timing, set settings) error {
 	var short *spectrum.ShortError
 	if !errors.As(err, &short) {
@@ -188,7 +137,7 @@ func refuse(err error, t recording.Timing, set settings) error {
 	return &recording.Error{Text: text, Remedy: "give a longer recording or window, or one with fewer gaps"}
 }
 
-func axisOf(c channel, values, density []float64) kinds.SpectraAxis {
+func axisOf(c gather.Channel, values, density []float64) kinds.SpectraAxis {
 	q := recording.Inspect(values)
 	mean := 0.0
 	for _, v := range values {
@@ -200,27 +149,27 @@ func axisOf(c channel, values, density []float64) kinds.SpectraAxis {
 		squares += (v - mean) * (v - mean)
 	}
 	return kinds.SpectraAxis{
-		Axis: c.name, Quantity: c.of, Unit: unitOfSI[c.of], Column: c.shown(), Mean: mean, Deviation: math.Sqrt(squares / float64(len(values))),
+		Axis: c.Name, Quantity: c.Of, Unit: gather.UnitOfSI[c.Of], Column: c.Shown(), Mean: mean, Deviation: math.Sqrt(squares / float64(len(values))),
 		Largest: max(math.Abs(q.Min), math.Abs(q.Max)), Saturated: q.Saturated, Repeated: q.Repeated, Density: density,
 	}
 }
 
 // rotors adds the speeds of the rotors and the bands of their orders, within the times of the spectra.
-func rotors(s *kinds.Spectra, d *data, p plan, set settings) {
+func rotors(s *kinds.Spectra, r *gather.Recording, set settings) {
 	var turning []order.Rotor
-	for i, c := range p.rotors {
-		speeds := d.rotors[i].cut(s.From, s.To).values[0]
+	for i, c := range r.Plan.Rotors {
+		speeds := r.Data.Rotors[i].Cut(s.From, s.To).Values[0]
 		sorted := slices.Clone(speeds)
 		slices.Sort(sorted)
-		r := kinds.SpectraRotor{Rotor: c.name, Column: c.column, Blades: set.blades, Median: math.NaN(), Low: math.NaN(), High: math.NaN()}
+		x := kinds.SpectraRotor{Rotor: c.Name, Column: c.Column, Blades: set.blades, Median: math.NaN(), Low: math.NaN(), High: math.NaN()}
 		if n := len(sorted); n > 0 {
-			r.Median, r.Low, r.High = sorted[n/2], sorted[n/100], sorted[n-1-n/100]
+			x.Median, x.Low, x.High = sorted[n/2], sorted[n/100], sorted[n-1-n/100]
 		}
-		s.Rotors = append(s.Rotors, r)
+		s.Rotors = append(s.Rotors, x)
 		for k := range speeds {
 			speeds[k] = math.Abs(speeds[k]) / (2 * math.Pi)
 		}
-		turning = append(turning, order.Rotor{Name: c.name, Speed: speeds, Blades: set.blades})
+		turning = append(turning, order.Rotor{Name: c.Name, Speed: speeds, Blades: set.blades})
 	}
 	orders := slices.Clone(set.orders)
 	if orders == nil {

@@ -3,25 +3,23 @@ package record
 import (
 	"fmt"
 	"math"
-	"slices"
 	"strings"
 
 	"hushframe/core/pipeline/stage"
-	"hushframe/core/signal/recording"
 	"hushframe/stages/kinds"
+	"hushframe/stages/record/gather"
 )
 
 const degree = math.Pi / 180
 
 // Thresholds of warnings; common practice.
 const (
-	muchJitter   = 0.05
 	muchRepeated = 0.5
 	fewAverages  = 16
 )
 
 // outcome tells what was found, guessed and left out.
-func outcome(f *found, h recording.Header, p plan, d *data, set settings) *stage.Outcome {
+func outcome(f *found, r *gather.Recording, set settings) *stage.Outcome {
 	s := f.spectra
 	saturated := 0.0
 	for _, a := range s.Axes {
@@ -40,23 +38,13 @@ func outcome(f *found, h recording.Header, p plan, d *data, set settings) *stage
 			"rate": hertz(s.Rate), "samples": float64(s.Samples), "gaps": float64(s.Gaps), "averages": float64(s.Segments),
 			"saturated": saturated, "peaks": listed,
 		},
-		Notes:    append(append([]string{}, h.Notes...), p.notes...),
-		Warnings: warnings(f, p, d, set),
-	}
-	o.Notes = append(o.Notes, d.notes...)
-	if d.partial > 0 {
-		o.Notes = append(o.Notes, fmt.Sprintf("%d rows hold some axes but not all and were left out", d.partial))
-	}
-	if left := d.rows - int64(len(d.axes.row)) - int64(d.partial); left > 0 {
-		o.Notes = append(o.Notes, fmt.Sprintf("%d of %d rows hold no sample of the axes", left, d.rows))
-	}
-	if d.epoch {
-		o.Notes = append(o.Notes, "the time column counts from an epoch; times are told from its first row")
+		Notes:    r.Notes(),
+		Warnings: warnings(f, r, set),
 	}
 	if f.unused > 0 {
 		o.Notes = append(o.Notes, fmt.Sprintf("%d of %d samples are in no whole segment", f.unused, s.Samples))
 	}
-	o.Summary = []stage.Section{axisTable(s, set.file), peakTable(s)}
+	o.Summary = []stage.Section{axisTable(s, set.File), peakTable(s)}
 	if len(s.Rotors) > 0 {
 		o.Summary = append(o.Summary, rotorTable(s))
 	}
@@ -65,21 +53,11 @@ func outcome(f *found, h recording.Header, p plan, d *data, set settings) *stage
 
 func hertz(f float64) stage.Quantity { return stage.Quantity{SI: f, Dimension: "frequency"} }
 
-func warnings(f *found, p plan, d *data, set settings) []stage.Warning {
-	var out []stage.Warning
+func warnings(f *found, r *gather.Recording, set settings) []stage.Warning {
+	out := r.Warnings("record", f.axes, f.timing)
 	s := f.spectra
 	add := func(id, where, remedy, format string, args ...any) {
 		out = append(out, stage.Warning{ID: "record." + id, Where: where, Remedy: remedy, Text: fmt.Sprintf(format, args...)})
-	}
-	for _, text := range append(slices.Clone(p.assumed), d.assumed...) {
-		add("unit-assumed", set.file, "state it in units", "%s", text)
-	}
-	if s.Gaps > 0 {
-		first := f.timing.Gaps[0]
-		add("gaps", set.file, "", "%d gaps with %d samples missing, the first at %.6g s; no segment straddles one", s.Gaps, s.Missing, f.time[first.After])
-	}
-	if s.Jitter > muchJitter {
-		add("jitter", set.file, "log at equal steps", "steps between samples differ by %.1f %% (root mean square); lines are blurred and levels lowered towards high frequencies", 100*s.Jitter)
 	}
 	for _, a := range s.Axes {
 		if a.Saturated > 0 {
@@ -91,29 +69,21 @@ func warnings(f *found, p plan, d *data, set settings) []stage.Warning {
 		}
 	}
 	if s.Segments < fewAverages {
-		add("few-averages", set.file, "choose a wider bin or a longer window", "only %d segments are averaged, so a density is known to within a factor of %.2g to %.2g", s.Segments, s.Lower, s.Upper)
-	}
-	if len(p.rotors) == 0 {
-		add("no-rotor-speed", set.file, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")
-	}
-	for i, c := range p.rotors {
-		if len(d.rotors[i].cut(s.From, s.To).time) == 0 {
-			add("no-rotor-speed", c.column, "", "rotor %s has no speed within the times used", c.name)
-		}
+		add("few-averages", set.File, "choose a wider bin or a longer window", "only %d segments are averaged, so a density is known to within a factor of %.2g to %.2g", s.Segments, s.Lower, s.Upper)
 	}
 	return out
 }
 
 // shownRate turns a value into the unit it is shown in.
 func shownRate(a kinds.SpectraAxis, v float64) float64 {
-	if a.Quantity == angularRate {
+	if a.Quantity == gather.AngularRate {
 		return v / degree
 	}
 	return v
 }
 
 func shownUnit(a kinds.SpectraAxis) string {
-	if a.Quantity == angularRate {
+	if a.Quantity == gather.AngularRate {
 		return "deg/s"
 	}
 	return "m/s²"

@@ -1,4 +1,4 @@
-package record
+package gather
 
 import (
 	"fmt"
@@ -12,51 +12,51 @@ import (
 	"hushframe/stages/record/delimited"
 )
 
-// plan says which columns are read and what they mean.
-type plan struct {
-	time     string // "" for none
-	timeUnit string // "" if it is to be guessed from the steps
-	second   float64
-	axes     []channel
-	rotors   []channel
-	notes    []string // what was found or assumed
-	assumed  []string // what was assumed with little ground, worth a warning
+// Plan says which columns are read and what they mean.
+type Plan struct {
+	Time     string // "" for none
+	TimeUnit string // "" if it is to be guessed from the steps
+	Second   float64
+	Axes     []Channel
+	Rotors   []Channel
+	Notes    []string // what was found or assumed
+	Assumed  []string // what was assumed with little ground, worth a warning
 }
 
-// channel is a column with its meaning.
-type channel struct {
-	name   string // axis or rotor
-	column string
-	sign   float64
-	unit   string
-	factor float64 // to SI, with the sign
-	of     string  // dimension
+// Channel is a column with its meaning.
+type Channel struct {
+	Name   string // axis or rotor
+	Column string
+	Sign   float64
+	Unit   string
+	Factor float64 // to SI, with the sign
+	Of     string  // dimension
 }
 
-// shown is the column with its sign.
-func (c channel) shown() string {
-	if c.sign < 0 {
-		return "-" + c.column
+// Shown is the column with its sign.
+func (c Channel) Shown() string {
+	if c.Sign < 0 {
+		return "-" + c.Column
 	}
-	return c.column
+	return c.Column
 }
 
 var rateAxes, accelerationAxes = []string{"roll", "pitch", "yaw"}, []string{"x", "y", "z"}
 
 // assign chooses the columns.
-func assign(h recording.Header, set settings) (plan, error) {
-	p := plan{second: 1}
+func assign(h recording.Header, set Settings) (Plan, error) {
+	p := Plan{Second: 1}
 	roles := append(append([]string{"time"}, rateAxes...), accelerationAxes...)
-	for _, role := range sorted(set.columns) {
+	for _, role := range sorted(set.Columns) {
 		if !slices.Contains(roles, role) {
 			remedy := "the roles are " + strings.Join(roles, ", ")
 			if near := nearest.Name(role, roles); near != "" {
 				remedy = fmt.Sprintf("did you mean %q? %s", near, remedy)
 			}
-			return p, fault.New(fault.Input, "there is no role %q", role).In("record", "").Of("columns").Do("%s", remedy)
+			return p, fault.New(fault.Input, "there is no role %q", role).Of("columns").Do("%s", remedy)
 		}
 	}
-	for _, column := range sorted(set.units) {
+	for _, column := range sorted(set.Units) {
 		if _, err := delimited.Find(h.Names(), column); err != nil {
 			return p, err
 		}
@@ -70,14 +70,14 @@ func assign(h recording.Header, set settings) (plan, error) {
 	return p, p.chooseRotors(h, set)
 }
 
-func (p *plan) chooseTime(h recording.Header, set settings) error {
-	given := set.columns["time"]
+func (p *Plan) chooseTime(h recording.Header, set Settings) error {
+	given := set.Columns["time"]
 	switch {
-	case given != "" && set.rate > 0:
-		return fault.New(fault.Input, "both a time column and a rate are given").In("record", "").Of("rate").
+	case given != "" && set.Rate > 0:
+		return fault.New(fault.Input, "both a time column and a rate are given").Of("rate").
 			Do("leave out the rate, or the time column if its times cannot be trusted")
-	case set.rate > 0:
-		p.notes = append(p.notes, fmt.Sprintf("the rate of %g Hz is that of the job; no time column is used", set.rate))
+	case set.Rate > 0:
+		p.Notes = append(p.Notes, fmt.Sprintf("the rate of %g Hz is that of the job; no time column is used", set.Rate))
 		return nil
 	case h.Timed && given == "":
 		return nil
@@ -86,7 +86,7 @@ func (p *plan) chooseTime(h recording.Header, set settings) error {
 		if err != nil {
 			return err
 		}
-		p.time = h.Columns[i].Name
+		p.Time = h.Columns[i].Name
 	default:
 		found := matching(h, func(w []string) string {
 			if isTime(w) {
@@ -98,51 +98,51 @@ func (p *plan) chooseTime(h recording.Header, set settings) error {
 			return several("time", h, found)
 		}
 		if len(found) == 0 && h.Rate > 0 {
-			p.notes = append(p.notes, fmt.Sprintf("the rate of %g Hz is that of the recording", h.Rate))
+			p.Notes = append(p.Notes, fmt.Sprintf("the rate of %g Hz is that of the recording", h.Rate))
 			return nil
 		}
 		if len(found) == 0 {
 			return &recording.Error{Text: "no column is a time by its name",
 				Remedy: `name it in columns, such as { time = "t" }, or state the rate, such as rate = "2 kHz"; ` + list(h)}
 		}
-		p.time = h.Columns[found[0]].Name
-		p.notes = append(p.notes, fmt.Sprintf("time is column %q by its name", p.time))
+		p.Time = h.Columns[found[0]].Name
+		p.Notes = append(p.Notes, fmt.Sprintf("time is column %q by its name", p.Time))
 	}
-	i := slices.Index(h.Names(), p.time)
+	i := slices.Index(h.Names(), p.Time)
 	unit, _ := unitOf(h.Columns[i], "time", set)
 	if unit != "" {
 		var err error
-		if p.second, err = factor(unit, "time", p.time); err != nil {
+		if p.Second, err = factor(unit, "time", p.Time); err != nil {
 			return err
 		}
-		p.timeUnit = unit
+		p.TimeUnit = unit
 	}
 	return nil
 }
 
-func (p *plan) chooseAxes(h recording.Header, set settings) error {
+func (p *Plan) chooseAxes(h recording.Header, set Settings) error {
 	for _, group := range []struct {
 		axes []string
 		of   string
-	}{{rateAxes, angularRate}, {accelerationAxes, acceleration}} {
+	}{{rateAxes, AngularRate}, {accelerationAxes, Acceleration}} {
 		for _, axis := range group.axes {
-			if column := set.columns[axis]; column != "" {
+			if column := set.Columns[axis]; column != "" {
 				c, err := p.stated(h, axis, column, group.of, set)
 				if err != nil {
 					return err
 				}
-				p.axes = append(p.axes, c)
+				p.Axes = append(p.Axes, c)
 			}
 		}
 	}
-	if len(p.axes) > 0 {
+	if len(p.Axes) > 0 {
 		return nil
 	}
 	for _, group := range []struct {
 		axes []string
 		of   string
 		find func([]string) string
-	}{{rateAxes, angularRate, rateAxis}, {accelerationAxes, acceleration, accelerationAxis}} {
+	}{{rateAxes, AngularRate, rateAxis}, {accelerationAxes, Acceleration, accelerationAxis}} {
 		found := matching(h, group.find)
 		for _, axis := range group.axes {
 			switch at := found[axis]; {
@@ -153,28 +153,28 @@ func (p *plan) chooseAxes(h recording.Header, set settings) error {
 				if err != nil {
 					return err
 				}
-				p.axes = append(p.axes, c)
-				p.notes = append(p.notes, fmt.Sprintf("%s is column %q by its name, in %s", axis, c.column, c.unit))
+				p.Axes = append(p.Axes, c)
+				p.Notes = append(p.Notes, fmt.Sprintf("%s is column %q by its name, in %s", axis, c.Column, c.Unit))
 			}
 		}
-		if len(p.axes) > 0 {
-			p.notes = append(p.notes, "columns found by name are taken to point along the airframe's axes; a turned sign changes no spectrum")
+		if len(p.Axes) > 0 {
+			p.Notes = append(p.Notes, "columns found by name are taken to point along the airframe's axes; a turned sign changes no spectrum")
 			return nil
 		}
 	}
-	return &recording.Error{Text: "no column is an angular rate or an acceleration by its name",
+	return &recording.Error{Text: "no column is an angular rate or an Acceleration by its name",
 		Remedy: `name them in columns, such as { roll = "gx", pitch = "-gy", yaw = "-gz" }; ` + list(h)}
 }
 
-func (p *plan) chooseRotors(h recording.Header, set settings) error {
-	for _, name := range sorted(set.rotors) {
-		c, err := p.stated(h, name, set.rotors[name], rotorSpeed, set)
+func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
+	for _, name := range sorted(set.Rotors) {
+		c, err := p.stated(h, name, set.Rotors[name], RotorSpeed, set)
 		if err != nil {
 			return err
 		}
-		p.rotors = append(p.rotors, c)
+		p.Rotors = append(p.Rotors, c)
 	}
-	if len(set.rotors) > 0 {
+	if len(set.Rotors) > 0 {
 		return nil
 	}
 	names := map[string]bool{}
@@ -187,20 +187,20 @@ func (p *plan) chooseRotors(h recording.Header, set settings) error {
 			name = column.Name
 		}
 		names[name] = true
-		c, err := p.stated(h, name, column.Name, rotorSpeed, set)
+		c, err := p.stated(h, name, column.Name, RotorSpeed, set)
 		if err != nil {
 			return err
 		}
-		p.rotors = append(p.rotors, c)
-		p.notes = append(p.notes, fmt.Sprintf("the speed of rotor %s is column %q by its name, in %s", name, c.column, c.unit))
+		p.Rotors = append(p.Rotors, c)
+		p.Notes = append(p.Notes, fmt.Sprintf("the speed of rotor %s is column %q by its name, in %s", name, c.Column, c.Unit))
 	}
 	return nil
 }
 
-// stated makes a channel of a column as the job writes it, with an optional sign. A column whose own name begins with a
+// stated makes a Channel of a column as the job writes it, with an optional sign. A column whose own name begins with a
 // sign wins over a sign.
-func (p *plan) stated(h recording.Header, name, written, of string, set settings) (channel, error) {
-	c := channel{name: name, sign: 1, of: of}
+func (p *Plan) stated(h recording.Header, name, written, of string, set Settings) (Channel, error) {
+	c := Channel{Name: name, Sign: 1, Of: of}
 	i, err := delimited.Find(h.Names(), written)
 	if err != nil {
 		rest, minus := strings.CutPrefix(written, "-")
@@ -211,28 +211,28 @@ func (p *plan) stated(h recording.Header, name, written, of string, set settings
 			return c, err
 		}
 		if minus {
-			c.sign = -1
+			c.Sign = -1
 		}
 		if i, err = delimited.Find(h.Names(), strings.TrimSpace(rest)); err != nil {
 			return c, err
 		}
 	}
-	c.column = h.Columns[i].Name
+	c.Column = h.Columns[i].Name
 	var ok bool
-	if c.unit, ok = unitOf(h.Columns[i], of, set); !ok {
-		c.unit = map[string]string{angularRate: "deg/s", acceleration: "m/s2", rotorSpeed: "rpm"}[of]
-		p.assumed = append(p.assumed, fmt.Sprintf("column %q states no unit and is taken in %s", c.column, c.unit))
+	if c.Unit, ok = unitOf(h.Columns[i], of, set); !ok {
+		c.Unit = map[string]string{AngularRate: "deg/s", Acceleration: "m/s2", RotorSpeed: "rpm"}[of]
+		p.Assumed = append(p.Assumed, fmt.Sprintf("column %q states no unit and is taken in %s", c.Column, c.Unit))
 	}
-	f, err := factor(c.unit, of, c.column)
-	c.factor = f * c.sign
+	f, err := factor(c.Unit, of, c.Column)
+	c.Factor = f * c.Sign
 	return c, err
 }
 
 // unitOf returns the unit of a column: from the job, from the recording, from its name.
-func unitOf(c recording.Column, dimension string, set settings) (string, bool) {
-	for _, column := range sorted(set.units) {
+func unitOf(c recording.Column, dimension string, set Settings) (string, bool) {
+	for _, column := range sorted(set.Units) {
 		if i, err := delimited.Find([]string{c.Name}, column); err == nil && i == 0 {
-			return set.units[column], true
+			return set.Units[column], true
 		}
 	}
 	if c.Unit != "" {

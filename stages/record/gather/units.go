@@ -1,4 +1,4 @@
-package record
+package gather
 
 import (
 	"fmt"
@@ -11,18 +11,18 @@ import (
 
 // The dimensions of columns.
 const (
-	angularRate  = "angular rate"
-	acceleration = "acceleration"
-	rotorSpeed   = "rotational speed"
+	AngularRate  = "angular rate"
+	Acceleration = "acceleration"
+	RotorSpeed   = "rotational speed"
 )
 
-var unitOfSI = map[string]string{angularRate: "rad/s", acceleration: "m/s2"}
+var UnitOfSI = map[string]string{AngularRate: "rad/s", Acceleration: "m/s2"}
 
 // spellings are units as recordings write them, where these differ from those of jobs.
 var spellings = map[string]map[string]string{
-	angularRate:  {"dps": "deg/s", "rps": "rad/s"},
-	acceleration: {"g": "g0", "G": "g0"},
-	rotorSpeed:   {"rps": "turn/s", "Hz": "turn/s", "hz": "turn/s", "1/s": "turn/s", "RPM": "rpm", "1/min": "rpm"},
+	AngularRate:  {"dps": "deg/s", "rps": "rad/s"},
+	Acceleration: {"g": "g0", "G": "g0"},
+	RotorSpeed:   {"rps": "turn/s", "Hz": "turn/s", "hz": "turn/s", "1/s": "turn/s", "RPM": "rpm", "1/min": "rpm"},
 }
 
 // factor returns what a number in that unit is multiplied by to be in SI.
@@ -31,7 +31,7 @@ func factor(unit, dimension, column string) (float64, error) {
 	if s, ok := spellings[dimension][unit]; ok {
 		spelled = s
 	}
-	if dimension == acceleration && spelled == "mg" {
+	if dimension == Acceleration && spelled == "mg" {
 		g, _ := quantity.ParseUnit("g0")
 		return g.Factor / 1000, nil
 	}
@@ -48,14 +48,14 @@ var nameUnits = map[string][]struct {
 	words []string
 	unit  string
 }{
-	angularRate: {
+	AngularRate: {
 		{[]string{"deg", "s"}, "deg/s"}, {[]string{"deg", "per", "s"}, "deg/s"}, {[]string{"degs"}, "deg/s"}, {[]string{"dps"}, "deg/s"},
 		{[]string{"rad", "s"}, "rad/s"}, {[]string{"rad", "per", "s"}, "rad/s"}, {[]string{"rads"}, "rad/s"},
 	},
-	acceleration: {
+	Acceleration: {
 		{[]string{"g"}, "g"}, {[]string{"mg"}, "mg"}, {[]string{"m", "s", "2"}, "m/s2"}, {[]string{"ms", "2"}, "m/s2"}, {[]string{"m", "per", "s", "2"}, "m/s2"},
 	},
-	rotorSpeed: {
+	RotorSpeed: {
 		{[]string{"rad", "s"}, "rad/s"}, {[]string{"hz"}, "turn/s"}, {[]string{"rps"}, "turn/s"}, {[]string{"rev", "s"}, "turn/s"},
 	},
 	"time": {
@@ -66,7 +66,7 @@ var nameUnits = map[string][]struct {
 
 // unitInName returns the unit that a column name ends in, "" for none. A speed with "rpm" anywhere is in rpm.
 func unitInName(w []string, dimension string) string {
-	if dimension == rotorSpeed && has(w, "rpm") {
+	if dimension == RotorSpeed && has(w, "rpm") {
 		return "rpm"
 	}
 	for _, n := range nameUnits[dimension] {

@@ -1,0 +1,137 @@
+// Package gather gets the samples that stages analyse out of a recording: for every stage that takes one, with the same
+// arguments, the same guesses and the same words about them.
+//
+// In order: the header is read and columns are chosen, from the job or by generic words (columns.go, words.go, units.go);
+// the samples are read and rows without samples are left out (samples.go); the window is cut and the times are checked
+// (window.go); what was guessed and left out is told (tell.go).
+package gather
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"io"
+
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
+	"hushframe/core/signal/recording"
+	"hushframe/stages/record/delimited"
+)
+
+// builtin are the readers in this executable.
+var builtin = []recording.Reader{delimited.Reader{}}
+
+// Settings are the arguments that say what is read.
+type Settings struct {
+	File, Reader           string
+	Options                map[string]string
+	Columns, Rotors, Units map[string]string
+	Rate                   float64
+	Window                 []float64 // empty or two times
+}
+
+// Arguments describes them.
+func Arguments() []stage.Argument {
+	zero := 0.0
+	texts := stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}}
+	return []stage.Argument{
+		{Name: "file", About: "the recording", Type: stage.Type{Kind: stage.File}, Required: true, Example: `"flights/hover.csv.gz"`},
+		{Name: "reader", About: "reader of its format", Type: stage.Type{Kind: stage.Text}, Default: "delimited", Example: `"delimited"`},
+		{Name: "options", About: "options of the reader, by name", Type: texts, Example: `{ separator = "tab" }`},
+		{Name: "columns", About: "columns by role: time, and roll, pitch, yaw (angular rate) or x, y, z (acceleration); left out, found by their names",
+			Type: texts, Example: `{ time = "t", roll = "gx", pitch = "-gy", yaw = "-gz" }`},
+		{Name: "rotors", About: "columns of rotor speed by rotor; left out, found by their names", Type: texts, Example: `{ fr = "rpm_1" }`},
+		{Name: "units", About: "units by column, where the recording does not state them", Type: texts, Example: `{ gx = "rad/s" }`},
+		{Name: "rate", About: "sample rate, for a recording without a time column", Type: stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"},
+			Example: `"2 kHz"`, Above: &zero},
+		{Name: "window", About: "first and last time used; left out, all", Type: stage.Type{Kind: stage.List,
+			Element: &stage.Type{Kind: stage.Amount, Dimension: "time", Unit: "s"}}, Example: `["8 s", "60 s"]`},
+	}
+}
+
+// Read takes the settings out of the arguments of a stage.
+func Read(a stage.Arguments, name string) (Settings, error) {
+	s := Settings{
+		File: a.Text("file"), Reader: a.Text("reader"), Options: texts(a, "options"),
+		Columns: texts(a, "columns"), Rotors: texts(a, "rotors"), Units: texts(a, "units"), Rate: a.SI("rate"), Window: a.SIs("window"),
+	}
+	switch {
+	case a.Has("window") && len(s.Window) != 2:
+		return s, fault.New(fault.Input, "the window has %d times", len(s.Window)).In(name, "").Of("window").
+			Do(`give the first and the last time, such as ["8 s", "60 s"]`)
+	case len(s.Window) == 2 && !(s.Window[1] > s.Window[0]):
+		return s, fault.New(fault.Input, "the window ends at %g s, where it has not begun", s.Window[1]).In(name, "").Of("window").
+			Do("make its second time later than the first, which is %g s", s.Window[0])
+	}
+	return s, nil
+}
+
+func texts(a stage.Arguments, name string) map[string]string {
+	out := map[string]string{}
+	for k, v := range a.Map(name) {
+		out[k] = v.(string)
+	}
+	return out
+}
+
+// Recording is what was read.
+type Recording struct {
+	Header recording.Header
+	Plan   Plan
+	Data   *Data
+	set    Settings
+}
+
+// Load reads the channels of a recording.
+func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, error) {
+	reader, err := choose(set.Reader)
+	if err != nil {
+		return nil, err
+	}
+	file, err := files.Open(set.File)
+	if err != nil {
+		return nil, err
+	}
+	defer file.Close()
+	header, err := reader.Inspect(ctx, file, set.Options)
+	if err != nil {
+		return nil, Explain(err, set.File)
+	}
+	plan, err := assign(header, set)
+	if err != nil {
+		return nil, Explain(err, set.File)
+	}
+	if _, err := file.Seek(0, io.SeekStart); err != nil {
+		return nil, fault.New(fault.Input, "%v", err).In("read recording", set.File)
+	}
+	data, err := samples(ctx, reader, file, plan, set, header)
+	if err != nil {
+		return nil, Explain(err, set.File)
+	}
+	return &Recording{Header: header, Plan: plan, Data: data, set: set}, nil
+}
+
+func choose(name string) (recording.Reader, error) {
+	var known []string
+	for _, r := range builtin {
+		if d := r.Describe(); d.Name == name {
+			return r, nil
+		} else {
+			known = append(known, fmt.Sprintf("%q", d.Name))
+		}
+	}
+	return nil, fault.New(fault.Missing, "there is no reader %q", name).Of("reader").Do("the readers are %v", known)
+}
+
+// Explain turns an error of a reader or kernel into a fault that names the file.
+func Explain(err error, file string) error {
+	var r *recording.Error
+	if errors.As(err, &r) {
+		return &fault.Error{Kind: fault.Input, Op: "read recording", Item: file, Place: r.Place(), Argument: "file", Text: r.Text, Remedy: r.Remedy}
+	}
+	f := fault.From(err)
+	if f.Kind == fault.Input && f.Item == "" {
+		f = f.In("read recording", file)
+	}
+	return f
+}
