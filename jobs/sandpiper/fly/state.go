@@ -22,7 +22,6 @@ type plant struct {
 	gyro   *mat.Dense   // 3 × n, rad/s per unit modal velocity
 	omega  []float64    // rad/s
 	sites  []modal.Site // rotors
-	radius []float64
 }
 
 // rateLoop is the bandwidth to which the control loop damps rigid rotation,
