@@ -7,6 +7,7 @@ import (
 	"io"
 	"os"
 	"os/signal"
+	"sync"
 	"syscall"
 
 	"github.com/mattn/go-isatty"
@@ -45,6 +46,25 @@ type app struct {
 	logFormat string
 	verbose   bool
 	log       zerolog.Logger
+	logOut    *redirect // below log
+}
+
+// redirect is a writer that can be turned elsewhere while others write to it.
+type redirect struct {
+	mu sync.Mutex
+	w  io.Writer
+}
+
+func (r *redirect) Write(p []byte) (int, error) {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	return r.w.Write(p)
+}
+
+func (r *redirect) to(w io.Writer) {
+	r.mu.Lock()
+	defer r.mu.Unlock()
+	r.w = w
 }
 
 func newApp(builtin []stage.Stage, out, err *os.File) *app {
@@ -124,13 +144,13 @@ multirotor airframes. A job file says what to do; results are kept beside it in
 }
 
 func (a *app) openLog() error {
-	var w io.Writer
+	a.logOut = &redirect{w: a.err}
+	var w io.Writer = a.logOut
 	switch a.logFormat {
 	case "json":
-		w = a.err
 		a.live = false
 	case "human":
-		w = a.humanLog(a.err)
+		w = a.humanLog(w)
 	default:
 		return fault.New(fault.Input, "--log is %q; it can be human or json", a.logFormat)
 	}

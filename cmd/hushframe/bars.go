@@ -8,7 +8,6 @@ import (
 	"time"
 	"unicode/utf8"
 
-	"github.com/rs/zerolog"
 	"github.com/vbauerster/mpb/v8"
 	"github.com/vbauerster/mpb/v8/decor"
 
@@ -21,7 +20,7 @@ import (
 // them, and lines above for what has ended.
 type barWatch struct {
 	progress *mpb.Progress
-	log      zerolog.Logger
+	app      *app
 	width    int // of the label
 	kinds    int // width of the kind of stage
 	color    bool
@@ -44,12 +43,12 @@ type stepBar struct {
 func newBarWatch(a *app, p *plan.Plan, width int) *barWatch {
 	w := &barWatch{
 		progress: mpb.New(mpb.WithOutput(a.err), mpb.WithRefreshRate(100*time.Millisecond)),
-		width:    width, color: a.color, bars: map[string]*stepBar{},
+		app:      a, width: width, color: a.color, bars: map[string]*stepBar{},
 	}
 	for _, s := range p.Steps {
 		w.kinds = max(w.kinds, len(s.Stage.Kind))
 	}
-	w.log = a.log.Output(a.humanLog(w.progress))
+	a.logOut.to(w.progress) // log lines go above the bars
 	began := time.Now()
 	w.whole = w.add(1<<30, func(columns int) string {
 		w.mu.Lock()
@@ -120,7 +119,7 @@ func (w *barWatch) Progress(label, phase string, fraction float64) {
 }
 
 func (w *barWatch) Log(label string, level stage.Level, text string, fields []any) {
-	logStep(w.log, label, level, text, fields)
+	logStep(w.app.log, label, level, text, fields)
 }
 
 func (w *barWatch) End(s run.Step) {
@@ -147,6 +146,7 @@ func (w *barWatch) close() {
 	if w.whole != nil {
 		w.whole.Abort(true)
 	}
+	w.app.logOut.to(w.app.err)
 	w.progress.Wait()
 }
 

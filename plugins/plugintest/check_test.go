@@ -131,14 +131,10 @@ func TestCheck(t *testing.T) {
 func TestProcess(t *testing.T) {
 	beads := artifact.New(beadsKind)
 	beads.Table("beads").Set("mass", []float64{1, 2})
-	s := Process(t, "./testdata/doubling", "doubling")
-	Stage(t, s, kinds, Case{Inputs: map[string][]*artifact.Artifact{"beads": {beads}}})
+	path := build(t, "./testdata/doubling")
+	Stage(t, served(t, path, "doubling"), kinds, Case{Inputs: map[string][]*artifact.Artifact{"beads": {beads}}})
 
 	// Started by hand, the executable says what it is.
-	path := filepath.Join(t.TempDir(), "extension.exe")
-	if out, err := exec.Command("go", "build", "-o", path, "./testdata/doubling").CombinedOutput(); err != nil {
-		t.Fatalf("%v\n%s", err, out)
-	}
 	cmd := exec.Command(path)
 	out, _ := cmd.CombinedOutput()
 	want := `extension.exe is an extension for hushframe and does nothing on its own.

@@ -42,10 +42,20 @@ func Stage(t *testing.T, s stage.Stage, registry artifact.Registry, cases ...Cas
 // folder), starts it as a host does and gives a stage of it.
 func Process(t *testing.T, main, name string) stage.Stage {
 	t.Helper()
+	return served(t, build(t, main), name)
+}
+
+func build(t *testing.T, main string) string {
+	t.Helper()
 	path := filepath.Join(t.TempDir(), "extension.exe")
 	if out, err := exec.Command("go", "build", "-o", path, main).CombinedOutput(); err != nil {
 		t.Fatalf("plugintest: %v\n%s", err, out)
 	}
+	return path
+}
+
+func served(t *testing.T, path, name string) stage.Stage {
+	t.Helper()
 	e, err := host.Find(path)
 	if err != nil {
 		t.Fatal(err)
