@@ -5,6 +5,7 @@ import (
 	"io"
 	"strings"
 	"time"
+	"unicode/utf8"
 
 	"github.com/jedib0t/go-pretty/v6/table"
 	"github.com/jedib0t/go-pretty/v6/text"
@@ -119,13 +120,15 @@ func writeSection(out io.Writer, s stage.Section) {
 	t.SetStyle(sectionStyle)
 	header := table.Row{}
 	var columns []table.ColumnConfig
+	widths := fit(s)
 	for i, c := range s.Columns {
 		header = append(header, c.Name)
 		align := text.AlignLeft
 		if c.Right {
 			align = text.AlignRight
 		}
-		columns = append(columns, table.ColumnConfig{Number: i + 1, Align: align, AlignHeader: align, WidthMax: 72, WidthMaxEnforcer: text.WrapSoft})
+		columns = append(columns, table.ColumnConfig{Number: i + 1, Align: align, AlignHeader: align,
+			WidthMax: widths[i], WidthMaxEnforcer: text.WrapSoft})
 	}
 	t.AppendHeader(header)
 	t.SetColumnConfigs(columns)
@@ -143,6 +146,40 @@ func writeSection(out io.Writer, s stage.Section) {
 	for line := range strings.Lines(t.Render() + "\n") {
 		io.WriteString(out, strings.TrimRight(line, " \n")+"\n")
 	}
+}
+
+// tableWidth is how many columns a table takes at most, if wrapping can do it.
+const tableWidth = 140
+
+// fit gives the width of each column: as wide as its cells, but that columns of
+// words give way, the widest first, until the table fits.
+func fit(s stage.Section) []int {
+	const narrowest, gap = 20, 2
+	widths := make([]int, len(s.Columns))
+	total := 0
+	for i, c := range s.Columns {
+		widths[i] = utf8.RuneCountInString(c.Name)
+		for _, row := range s.Rows {
+			if i < len(row) {
+				widths[i] = max(widths[i], utf8.RuneCountInString(row[i]))
+			}
+		}
+		total += widths[i] + gap
+	}
+	for total > tableWidth {
+		widest := -1
+		for i, c := range s.Columns {
+			if !c.Right && widths[i] > narrowest && (widest < 0 || widths[i] > widths[widest]) {
+				widest = i
+			}
+		}
+		if widest < 0 {
+			break
+		}
+		widths[widest]--
+		total--
+	}
+	return widths
 }
 
 // sectionStyle: two spaces between columns, a thin line under the header.

@@ -1,6 +1,7 @@
 package main
 
 import (
+	"bytes"
 	"encoding/json"
 	"os"
 	"path/filepath"
@@ -9,7 +10,9 @@ import (
 	"strings"
 	"testing"
 	"time"
+	"unicode/utf8"
 
+	"hushframe/core/pipeline/stage"
 	"hushframe/core/pipeline/store"
 )
 
@@ -260,5 +263,21 @@ func TestBarLine(t *testing.T) {
 		if got := barLine("modes  solve", c.phase, c.fraction, c.elapsed, c.columns); got != c.want {
 			t.Errorf("got  %q\nwant %q", got, c.want)
 		}
+	}
+}
+
+// A table that is too wide wraps its columns of words, not its numbers.
+func TestWideTable(t *testing.T) {
+	var out bytes.Buffer
+	words := strings.TrimSpace(strings.Repeat("some words ", 12))
+	writeSection(&out, stage.Section{Title: "Wide", Columns: []stage.Column{{Name: "a"}, {Name: "number", Right: true}, {Name: "b"}},
+		Rows: [][]string{{words, "123456", words}, {"short", "7", "é"}}})
+	for line := range strings.Lines(out.String()) {
+		if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > tableWidth {
+			t.Errorf("%d columns: %s", n, line)
+		}
+	}
+	if n := strings.Count(out.String(), "words"); n != 24 || !strings.Contains(out.String(), "  123456  ") {
+		t.Errorf("%d words in\n%s", n, &out)
 	}
 }
