@@ -12,7 +12,7 @@ stage "import" "frame" {
 stage "mesh" "shells" {
   geometry = stage.frame.geometry
   element  = "quadratic-triangle"
-  size     = "8 mm"
+  size     = "14 mm"
 }
 
 stage "solve" "modes" {

@@ -15,13 +15,13 @@ import (
 // viscous damping C, gyroscopic coupling G of the rotors at hover speed and
 // stiffness Λ = diag ω². Outputs are the three rates of the gyro.
 type plant struct {
-	n      int // modal coordinates
-	rigid  int // the first ones are rigid-body motions
-	a      *mat.Dense
-	b      *mat.Dense   // 2n × inputs: six components at each rotor
-	gyro   *mat.Dense   // 3 × n, rad/s per unit modal velocity
-	omega  []float64    // rad/s
-	sites  []modal.Site // rotors
+	n     int // modal coordinates
+	rigid int // the first ones are rigid-body motions
+	a     *mat.Dense
+	b     *mat.Dense   // 2n × inputs: six components at each rotor
+	gyro  *mat.Dense   // 3 × n, rad/s per unit modal velocity
+	omega []float64    // rad/s
+	sites []modal.Site // rotors
 }
 
 // rateLoop is the bandwidth to which the control loop damps rigid rotation,
