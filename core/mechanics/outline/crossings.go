@@ -64,7 +64,9 @@ func ownCrossings(i int, c Curve, tol float64) []Crossing {
 		for b := a + 1; b < len(ts); b++ {
 			p, q := c.Part(ts[a-1], ts[a]), c.Part(ts[b-1], ts[b])
 			for _, m := range Meet(p, q, tol) {
-				if b != a+1 || m.At.Distance(p.P1) > tol {
+				joint := b == a+1 && m.At.Distance(p.P1) <= tol
+				closing := a == 1 && b == len(ts)-1 && m.At.Distance(c.P0) <= tol && m.At.Distance(c.P1) <= tol
+				if !joint && !closing {
 					found = append(found, Crossing{i, i, m.At})
 				}
 			}

@@ -46,37 +46,36 @@ func (c Curve) Nearest(p Point) (t, distance float64) {
 }
 
 func (c Curve) nearestOnCubic(p Point) float64 {
-	const n = 24
 	best, bestD := 0.0, c.P0.Distance(p)
-	for i := 1; i <= n; i++ {
-		t := float64(i) / n
+	try := func(t float64) {
 		if d := c.At(t).Distance(p); d < bestD {
 			best, bestD = t, d
 		}
 	}
-	// The slope of the squared distance changes sign between the neighbours of the best sample.
+	try(1)
+	// The squared distance is least where its slope turns from falling to rising.
 	slope := func(t float64) float64 { return c.At(t).Sub(p).Dot(c.Derivative(t)) }
-	lo, hi := math.Max(0, best-1.0/n), math.Min(1, best+1.0/n)
-	if slope(lo) >= 0 {
-		hi = lo
-	} else if slope(hi) <= 0 {
-		lo = hi
-	}
-	for range 60 {
-		m := 0.5 * (lo + hi)
-		if m <= lo || m >= hi {
-			break
+	const n = 24
+	before := slope(0)
+	for i := 1; i <= n; i++ {
+		lo, hi := float64(i-1)/n, float64(i)/n
+		after := slope(hi)
+		if before < 0 && after >= 0 {
+			for range 60 {
+				m := 0.5 * (lo + hi)
+				if m <= lo || m >= hi {
+					break
+				}
+				if slope(m) < 0 {
+					lo = m
+				} else {
+					hi = m
+				}
+			}
+			try(lo)
+			try(hi)
 		}
-		if slope(m) < 0 {
-			lo = m
-		} else {
-			hi = m
-		}
-	}
-	for _, t := range [2]float64{lo, hi} {
-		if d := c.At(t).Distance(p); d < bestD {
-			best, bestD = t, d
-		}
+		before = after
 	}
 	return best
 }

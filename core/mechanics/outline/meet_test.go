@@ -118,6 +118,7 @@ func TestSelfCrossings(t *testing.T) {
 		"circle":       {Circle(p(0, 0), 1, true)},
 		"half circles": {ArcOf(p(0, 0), 1, 0, math.Pi), ArcOf(p(0, 0), 1, math.Pi, math.Pi)},
 		"square":       Polygon(p(0, 0), p(1, 0), p(1, 1), p(0, 1)),
+		"teardrop":     {Cubic(p(0, 0), p(3, -3), p(3, 3), p(0, 0))},
 		"ellipse":      EllipseArc(p(0, 0), p(2, 0), p(0, 1), 0.4, 2*math.Pi),
 	} {
 		if got := l.SelfCrossings(); len(got) != 0 {

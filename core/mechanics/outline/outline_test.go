@@ -224,7 +224,12 @@ func TestFlattenStaysWithinTolerance(t *testing.T) {
 
 func TestNearestAgainstSampling(t *testing.T) {
 	rng := rand.New(rand.NewPCG(5, 8))
-	for name, c := range samples() {
+	curves := samples()
+	curves["teardrop"] = Cubic(Point{0, 0}, Point{3, -3}, Point{3, 3}, Point{0, 0})
+	if u, d := curves["teardrop"].Nearest(curves["teardrop"].At(0.98)); math.Abs(u-0.98) > 1e-6 || d > 1e-12 {
+		t.Errorf("a place near the far end of a closed cubic is %g away at %g", d, u)
+	}
+	for name, c := range curves {
 		for range 200 {
 			q := Point{-3 + 8*rng.Float64(), -4 + 8*rng.Float64()}
 			best := math.Inf(1)

@@ -3,6 +3,7 @@ package planar
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"strings"
 	"testing"
 
@@ -149,6 +150,21 @@ func TestRowsOfStrip(t *testing.T) {
 				t.Errorf("an edge is %g m long", l)
 			}
 		}
+	}
+}
+
+// Rows of even depth from both sides of a corner of 70 degrees would leave next to nothing between them.
+func TestRowsLeaveTightCornersAlone(t *testing.T) {
+	region := outline.NewRegion(outline.Polygon(pt(0, 0), pt(30e-3, -20e-3), pt(60e-3, 0), pt(30e-3, 22e-3)))
+	g := newMesher(region, Options{Size: uniform(3e-3), Row: func(outline.Point, float64) (float64, float64) { return 1e-3, 3e-3 }})
+	if err := g.run(); err != nil {
+		t.Fatal(err)
+	}
+	if count, worst := g.narrow(); count > 0 {
+		t.Errorf("%d triangles are narrow without excuse, down to %.1f degrees", count, worst*180/math.Pi)
+	}
+	if slices.Index(g.refined, false) < 0 || slices.Equal(g.refined, g.inside) {
+		t.Error("there are no rows")
 	}
 }
 

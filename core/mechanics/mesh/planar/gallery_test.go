@@ -179,6 +179,7 @@ func gallery() []example {
 		{name: "many holes", region: outline.NewRegion(rounded(22.5e-3, 22.5e-3, 55e-3, 55e-3, 4e-3), many...), size: 3e-3},
 		{name: "wave", region: outline.NewRegion(wave), lines: []outline.Loop{disc(30e-3, 5e-3, 8e-3)}, size: 3e-3},
 		{name: "spiral", region: outline.NewRegion(spiral()), size: 3e-3},
+		{name: "teardrop", region: outline.NewRegion(outline.Loop{outline.Cubic(pt(0, 0), pt(9e-3, -7e-3), pt(9e-3, 7e-3), pt(0, 0))}), size: 20e-3},
 		{name: "kite", region: outline.NewRegion(outline.Polygon(pt(0, 0), pt(30e-3, -20e-3), pt(60e-3, 0), pt(30e-3, 22e-3))), size: 3e-3},
 		{name: "star", region: outline.NewRegion(star(9, 20e-3, 5e-3)), size: 3e-3},
 		{name: "needle", region: outline.NewRegion(outline.Polygon(pt(0, 0), pt(60e-3, 0), pt(60e-3, 3e-3))), size: 3e-3},

@@ -3,6 +3,7 @@ package planar
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"hushframe/core/mechanics/outline"
@@ -78,6 +79,28 @@ func TestAreaWithinLines(t *testing.T) {
 				}
 			}
 		})
+	}
+}
+
+// What runs outside the region leaves no trace.
+func TestLinesOutsideChangeNothing(t *testing.T) {
+	region := outline.NewRegion(outline.Rectangle(pt(0, 0), 40e-3, 20e-3, 0), disc(0, 0, 4e-3))
+	bare := must(t, region, Options{Size: uniform(3e-3)})
+	lined := must(t, region, Options{Size: uniform(3e-3), Lines: []outline.Loop{disc(0, 13e-3, 2.5e-3), disc(0, 0, 3e-3)}})
+	if !slices.Equal(bare.Nodes, lined.Nodes) {
+		t.Errorf("%d nodes without, %d with lines outside", len(bare.Nodes), len(lined.Nodes))
+	}
+}
+
+func TestSegmentsPerTurn(t *testing.T) {
+	region := outline.NewRegion(outline.Rectangle(pt(0, 0), 60e-3, 20e-3, 0), disc(-15e-3, 0, 1.6e-3), disc(15e-3, 0, 1.6e-3))
+	m := must(t, region, Options{Size: uniform(10e-3), Lines: []outline.Loop{disc(15e-3, 0, 3e-3)}})
+	count := map[int32]int{}
+	for _, e := range m.Edges {
+		count[e.Loop]++
+	}
+	if count[1] != 12 || count[2] != 8 {
+		t.Errorf("%d edges round the bare hole and %d round the covered one, want 12 and 8", count[1], count[2])
 	}
 }
 
