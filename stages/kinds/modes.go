@@ -8,7 +8,7 @@ import (
 
 // ModesKind is what `solve` makes of a mesh and properties.
 var ModesKind = artifact.Kind{
-	Name: "modes", Version: 1,
+	Name: "modes", Version: 2,
 	About: "modal basis of the free airframe (rigid-body, elastic and residual vectors, mass-normalised) and what each elastic mode is",
 	Scalars: []artifact.Column{
 		col("up_to", artifact.Float, "Hz", "every mode below this is in the basis"),
@@ -27,7 +27,7 @@ var ModesKind = artifact.Kind{
 		{Name: "vectors", About: "vectors of the basis: rigid-body, then elastic by ascending frequency, then residual", Columns: columns(
 			col("kind", artifact.Text, "", "rigid, elastic or residual"),
 			col("frequency", artifact.Float, "Hz", "0 for rigid-body vectors; a mere number of the basis for residual ones"),
-			col("shape", artifact.FloatList, "m and rad per kg^(1/2)*m", "ux, uy, uz, rx, ry, rz of each mesh node in turn"),
+			col("shape", artifact.FloatList, "m per kg^(1/2)*m", "ux, uy, uz of each mesh node in turn"),
 		)},
 		{Name: "sites", About: "points where forces act or motion is read", Columns: columns(
 			col("name", artifact.Text, "", "name"),
@@ -242,7 +242,7 @@ func decodeBasis(a *artifact.Artifact, b *modal.Basis) error {
 		if k != modal.RigidBody && k != modal.Elastic && k != modal.Residual {
 			return malformed("modes", "vector %d is of kind %q", i, kind)
 		}
-		if len(b.Shapes[i]) != len(b.Shapes[0]) || len(b.Shapes[i])%6 != 0 {
+		if len(b.Shapes[i]) != len(b.Shapes[0]) || len(b.Shapes[i])%3 != 0 {
 			return malformed("modes", "vector %d has %d components", i, len(b.Shapes[i]))
 		}
 		b.Kinds = append(b.Kinds, k)

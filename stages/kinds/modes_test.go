@@ -59,7 +59,7 @@ func TestModesRoundTrip(t *testing.T) {
 
 func TestModesThatContradictThemselves(t *testing.T) {
 	for what, spoil := range map[string]func(*kinds.Modes){
-		"components":   func(m *kinds.Modes) { m.Basis.Shapes[1] = m.Basis.Shapes[1][:6] },
+		"components":   func(m *kinds.Modes) { m.Basis.Shapes[1] = m.Basis.Shapes[1][:9] },
 		"is of kind":   func(m *kinds.Modes) { m.Basis.Kinds[2] = "static" },
 		"numbers over": func(m *kinds.Modes) { m.Basis.Groups[0].Stiffness = []float64{1} },
 		"other tables": func(m *kinds.Modes) { m.Survey.Modes[0].ByKind = []float64{1} },

@@ -75,3 +75,43 @@ func TestComparisonRoundTrip(t *testing.T) {
 		t.Errorf("got %+v, want %+v", got, want)
 	}
 }
+
+func sampleIdentified() *Identified {
+	return &Identified{
+		From: 80, To: 500, Start: 8, End: 60, Rate: 2000, Samples: 9, Decimation: 1, Rows: 80, Order: 20, Span: 2, Step: 0.5, Segments: 7,
+		Channels: []IdentifiedChannel{{"roll", "angular rate", "gx", 0.2}, {"pitch", "angular rate", "-gy", 0.1}},
+		Modes: []IdentifiedMode{{Kind: ModeStructure, Reason: "r", Frequency: 100, FrequencyError: 0.3, Damping: 0.02, DampingError: 0.001,
+			Direction: []float64{1, 0}, DirectionError: 0.1, Collinearity: 0.9, ShapeReal: []float64{1, 2}, ShapeImaginary: []float64{0, 1},
+			Models: 0.7, FirstOrder: 6, Kurtosis: 3, PeakFrequency: 101, PeakDamping: 0.03}},
+		Diagram:  []IdentifiedPole{{Order: 6, Frequency: 100, Damping: 0.02, Stable: true, Mode: 0}},
+		Singular: [][]float64{{1, 2, 3}, {0, 1, 0}},
+		Removed:  []RemovedOrder{{"roll", "fr", 1, 0.1}},
+		Orders:   []OrderBand{{Rotor: "fr", Order: 1, Low: 260, High: 270, Share: 0.9}},
+	}
+}
+
+func TestIdentifiedRoundTrip(t *testing.T) {
+	want := sampleIdentified()
+	a := EncodeIdentified(want)
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	got, err := DecodeIdentified(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !reflect.DeepEqual(got, want) {
+		t.Errorf("got %+v, want %+v", got, want)
+	}
+	for what, spoil := range map[string]func(*Identified){
+		"direction": func(x *Identified) { x.Modes[0].Direction = []float64{1} },
+		"mode":      func(x *Identified) { x.Diagram[0].Mode = 1 },
+		"singular":  func(x *Identified) { x.Singular = x.Singular[:1] },
+	} {
+		x := sampleIdentified()
+		spoil(x)
+		if _, err := DecodeIdentified(EncodeIdentified(x)); err == nil {
+			t.Errorf("a wrong %s is read", what)
+		}
+	}
+}

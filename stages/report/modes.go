@@ -41,7 +41,7 @@ func shapesOfModes(s *section, c *content) {
 		s.aside("Pictures of the shapes need the mesh among the included artifacts.")
 		return
 	}
-	if len(m.Basis.Shapes) > 0 && len(m.Basis.Shapes[0]) != 6*len(c.mesh.Nodes) {
+	if len(m.Basis.Shapes) > 0 && len(m.Basis.Shapes[0]) != 3*len(c.mesh.Nodes) {
 		s.aside("The mesh included is not the one that the modes were computed on, so their shapes are not drawn.")
 		return
 	}
@@ -238,7 +238,7 @@ func (c *content) modeMotion(x modal.Mode) draw.Motion {
 	motion := draw.Motion{
 		About: fmt.Sprintf("Shape of mode %d at %.1f Hz. %s", x.Number, x.Frequency, modeCaption(m, x)),
 		Node: func(n int32) airframe.Vec {
-			u := shape[6*n : 6*n+3]
+			u := shape[3*n : 3*n+3]
 			return airframe.Vec{sign * u[0], sign * u[1], sign * u[2]}
 		},
 	}

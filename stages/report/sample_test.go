@@ -118,10 +118,10 @@ func sampleModes(m *mesh.Mesh) *kinds.Modes {
 	n := 6 + len(fields) + 1
 	b := &modal.Basis{}
 	add := func(kind modal.VectorKind, f, scale float64, u field) {
-		shape := make([]float64, 0, 6*len(m.Nodes))
+		shape := make([]float64, 0, 3*len(m.Nodes))
 		for _, p := range m.Nodes {
 			v := u(p)
-			shape = append(shape, scale*v[0], scale*v[1], scale*v[2], 0, 0, 0)
+			shape = append(shape, scale*v[0], scale*v[1], scale*v[2])
 		}
 		b.Kinds, b.Frequency, b.Shapes = append(b.Kinds, kind), append(b.Frequency, f), append(b.Shapes, shape)
 	}
@@ -192,7 +192,7 @@ func sampleSite(name, kind string, at airframe.Vec, b *modal.Basis, m *mesh.Mesh
 	s := modal.Site{Name: name, Kind: kind, Point: at}
 	for v := range b.Kinds {
 		var q [6]float64
-		copy(q[:3], b.Shapes[v][6*near:6*near+3])
+		copy(q[:3], b.Shapes[v][3*near:3*near+3])
 		switch {
 		case v >= 3 && v < 6:
 			q[v] = 20

@@ -309,10 +309,8 @@ func shapes(r *kinds.Response, sys *forced.System, set settings) error {
 			if err != nil {
 				return err
 			}
-			for k, u := range sys.Nodes(q) {
-				if k%6 < 3 {
-					x.Real, x.Imaginary = append(x.Real, real(u)), append(x.Imaginary, imag(u))
-				}
+			for _, u := range sys.Nodes(q) {
+				x.Real, x.Imaginary = append(x.Real, real(u)), append(x.Imaginary, imag(u))
 			}
 		}
 		r.Shapes = append(r.Shapes, x)

@@ -47,7 +47,7 @@ func frame() (*kinds.Modes, *airframe.Properties) {
 	site("b", "rotor", airframe.Vec{0.1, -0.1, 0}, [6]float64{0, 0, -3}, [6]float64{0, 0, 2}, [6]float64{0, 0, -1}, [6]float64{4, 0, 0})
 	site("gyro", "gyro", airframe.Vec{}, [6]float64{0, 0, 0, 20, 0, 0}, [6]float64{0, 0, 0, 0, 30, 0}, [6]float64{0, 0, 0, 0, 15, 0}, [6]float64{0, 0, 0, 0, 0, 40})
 	for v := range n {
-		shape := make([]float64, 4*6)
+		shape := make([]float64, 4*3)
 		for k := range shape {
 			shape[k] = float64(v*k%7) - 3
 		}

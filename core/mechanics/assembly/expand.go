@@ -15,7 +15,10 @@ func (s *System) Expand(dst, y []float64) {
 		nd := &l.nodes[v]
 		var m [6]float64
 		if nd.body >= 0 {
-			m = nd.axes.in6(carried(bodies[nd.body], sub(l.problem.Nodes[v], l.bodies[nd.body].reference)))
+			m = carried(bodies[nd.body], sub(l.problem.Nodes[v], l.bodies[nd.body].reference))
+			if !nd.global {
+				m = nd.axes.in6(m)
+			}
 		}
 		for k := range 6 {
 			switch {
@@ -25,7 +28,9 @@ func (s *System) Expand(dst, y []float64) {
 				m[k] = 0
 			}
 		}
-		m = nd.axes.out6(m)
+		if !nd.global {
+			m = nd.axes.out6(m)
+		}
 		copy(dst[6*v:], m[:])
 	}
 	for i := range l.problem.Plates {

@@ -8,6 +8,7 @@ import (
 // node is how one node of the problem follows the unknowns.
 type node struct {
 	axes     Axes
+	global   bool     // the axes are those of the airframe
 	body     int      // merged body, -1 for a free node
 	own      [6]int32 // unknown of each component in axes, -1 when held or slaved
 	slaved   [6]bool  // components that follow the body
@@ -126,6 +127,7 @@ func number(p *Problem) (*layout, error) {
 	}
 	for v := range l.nodes {
 		nd := &l.nodes[v]
+		nd.global = nd.axes == Global
 		h := held[int32(v)]
 		for c := range 6 {
 			nd.own[c] = -1

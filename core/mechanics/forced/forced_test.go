@@ -66,7 +66,7 @@ func frame(elastic, residual int, seed uint64) *modal.Basis {
 		b.Sites = append(b.Sites, site)
 	}
 	for range n {
-		shape := make([]float64, 5*6)
+		shape := make([]float64, 5*3)
 		for k := range shape {
 			shape[k] = r.NormFloat64()
 		}

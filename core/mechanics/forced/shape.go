@@ -4,8 +4,8 @@ import (
 	"math/cmplx"
 )
 
-// Nodes gives the complex displacement of every mesh node, six components each
-// (m and rad), for modal coordinates q.
+// Nodes gives the complex displacement of every mesh node, three components
+// each (m), for modal coordinates q.
 func (s *System) Nodes(q []complex128) []complex128 {
 	if len(s.vectors) == 0 || len(s.basis.Shapes) == 0 {
 		return nil

@@ -27,9 +27,8 @@ type Basis struct {
 	// the whole basis, n×n row-major, symmetric. They add up to the modal
 	// stiffness; the loss factor of each group makes the damping.
 	Groups []LossGroup
-	// Shapes[v] is the shape of vector v at the mesh nodes: six components
-	// per node (ux, uy, uz in m, rx, ry, rz in rad, airframe axes) per unit
-	// modal coordinate.
+	// Shapes[v] is the displacement of the mesh nodes in vector v: ux, uy, uz
+	// of each (m, airframe axes) per unit modal coordinate.
 	Shapes [][]float64
 }
 

@@ -143,8 +143,13 @@ func (b *span) finish(ctx context.Context, out *Basis, places []Place) error {
 	out.Kinds, out.Frequency = b.kinds, b.frequency
 	out.Shapes = make([][]float64, n)
 	dense.Parallel(b.threads, n, func(v int) {
-		out.Shapes[v] = make([]float64, 6*len(s.Problem().Nodes))
-		s.Expand(out.Shapes[v], b.vector(v))
+		full := make([]float64, 6*len(s.Problem().Nodes))
+		s.Expand(full, b.vector(v))
+		shape := make([]float64, 0, len(full)/2)
+		for i := 0; i < len(full); i += 6 {
+			shape = append(shape, full[i:i+3]...)
+		}
+		out.Shapes[v] = shape
 	})
 	for _, p := range places {
 		site := Site{Name: p.Name, Kind: p.Kind, Point: p.Point}
