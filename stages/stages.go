@@ -4,6 +4,7 @@ package stages
 import (
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/compare"
+	"hushframe/stages/identify"
 	"hushframe/stages/importgeom"
 	"hushframe/stages/meshgen"
 	"hushframe/stages/record"
@@ -20,6 +21,7 @@ func Builtin() []stage.Stage {
 		solve.Stage{},
 		sweep.Stage{},
 		record.Stage{},
+		identify.Stage{},
 		compare.Stage{},
 		report.Stage{},
 	}
