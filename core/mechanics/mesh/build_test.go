@@ -155,6 +155,9 @@ func TestBuildFindsPatchesAndLinks(t *testing.T) {
 	if !reflect.DeepEqual(m.Links, want) {
 		t.Errorf("links %+v, want %+v", m.Links, want)
 	}
+	if f := m.Parts[2].Frame; f.Z != (airframe.Vec{0, 0, 1}) || f.X != (airframe.Vec{1, 0, 0}) || f.Y != (airframe.Vec{0, 1, 0}) {
+		t.Errorf("frame of the standoff %+v", f)
+	}
 	for k := 1; k < len(m.Beams); k++ {
 		if m.Beams[k][0] != m.Beams[k-1][1] || m.BeamPart[k] != 2 {
 			t.Errorf("beam %d does not follow the one below", k)
@@ -212,8 +215,16 @@ func TestSizesAndElementsOfSinglePlates(t *testing.T) {
 		}
 	}
 	// A mid-side node counts only in quadratic triangles.
-	if got := b.NodesInUse(); got >= len(b.Nodes) {
-		t.Errorf("%d of %d nodes in use", got, len(b.Nodes))
+	mids := map[int32]bool{}
+	for k, n := range b.Triangles {
+		for i, v := range n {
+			if b.TrianglePart[k] == 0 && i >= 3 {
+				mids[v] = true
+			}
+		}
+	}
+	if got, want := b.NodesInUse(), len(b.Nodes)-len(mids); got != want || len(mids) == 0 {
+		t.Errorf("%d of %d nodes in use, want %d", got, len(b.Nodes), want)
 	}
 	if got := a.NodesInUse(); got != len(a.Nodes) {
 		t.Errorf("%d of %d nodes in use", got, len(a.Nodes))
@@ -225,12 +236,12 @@ func TestQuality(t *testing.T) {
 	m := &mesh.Mesh{
 		Nodes:        []airframe.Vec{v(0, 0), v(2, 0), v(0, 2), v(10, 1)},
 		Parts:        make([]mesh.Part, 2),
-		Triangles:    [][6]int32{{0, 1, 2}, {1, 3, 2}, {0, 1, 3}},
-		TrianglePart: []int32{0, 0, 1},
+		Triangles:    [][6]int32{{0, 1, 2}, {1, 3, 2}, {2, 0, 1}, {0, 1, 3}},
+		TrianglePart: []int32{0, 0, 0, 1},
 	}
 	q := m.Quality(0, 20*math.Pi/180)
 	want := math.Atan2(1, 8) + math.Atan2(1, 10) // at (10, 1), between (2, 0) and (0, 2)
-	if q.Triangles != 2 || q.Narrow != 1 || math.Abs(q.SmallestAngle-want) > 1e-12 || q.ShortestSide != 2 {
+	if q.Triangles != 3 || q.Narrow != 1 || math.Abs(q.SmallestAngle-want) > 1e-12 || q.ShortestSide != 2 {
 		t.Errorf("quality %+v, smallest angle should be %g", q, want)
 	}
 }
