@@ -182,7 +182,7 @@ func TestPivotedFailsOnSingularAndNaN(t *testing.T) {
 
 func TestGramAndCombinationsAgreeWithSums(t *testing.T) {
 	r := rand.New(rand.NewPCG(1, 5))
-	for _, s := range [][3]int{{1, 1, 5}, {3, 5, 2049}, {8, 7, 5000}} {
+	for _, s := range [][3]int{{1, 1, 5}, {3, 5, 2049}, {8, 7, 5000}, {0, 2, 3000}, {2, 0, 3000}} {
 		m, n, k := s[0], s[1], s[2]
 		x, y := random(r, m*k), random(r, n*k)
 		one, two := make([]float64, m*n), make([]float64, m*n)

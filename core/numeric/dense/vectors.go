@@ -10,6 +10,9 @@ func Gram(m, n, k int, x, y, g []float64, threads int) {
 	if m < 0 || n < 0 || k < 0 || len(x) < m*k || len(y) < n*k || len(g) < m*n {
 		panic("dense: Gram: bad shape")
 	}
+	if m == 0 || n == 0 {
+		return
+	}
 	pieces := (k + pieceLength - 1) / pieceLength
 	parts := make([]float64, pieces*m*n)
 	Parallel(threads, pieces, func(t int) {
@@ -31,6 +34,9 @@ func AddCombined(m, n, k int, sign float64, c, x, y []float64, threads int) {
 	if m < 0 || n < 0 || k < 0 || len(x) < n*k || len(y) < m*k || len(c) < m*n {
 		panic("dense: AddCombined: bad shape")
 	}
+	if m == 0 || n == 0 {
+		return
+	}
 	const piece = 512
 	Parallel(threads, (k+piece-1)/piece, func(t int) {
 		p := t * piece
@@ -43,6 +49,9 @@ func AddCombined(m, n, k int, sign float64, c, x, y []float64, threads int) {
 func Rotate(m, n, k int, c, x []float64, threads int) {
 	if m < 0 || m > n || k < 0 || len(x) < n*k || len(c) < m*n {
 		panic("dense: Rotate: bad shape")
+	}
+	if m == 0 {
+		return
 	}
 	const piece = 256
 	Parallel(threads, (k+piece-1)/piece, func(t int) {

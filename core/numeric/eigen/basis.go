@@ -15,7 +15,7 @@ type basis struct {
 	v []float64
 	// count vectors of v are in use.
 	count int
-	// negative is an unknown in a vector whose square in the norm of M came out negative, or -1.
+	// negative is an unknown in a vector whose square in the norm of M came out negative by more than rounding, or -1.
 	negative int
 }
 
@@ -43,19 +43,20 @@ func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
 	b.p.mass(z, w, count)
 	before := make([]float64, count)
 	for i := range count {
-		before[i] = norm(w[i*n:][:n], z[i*n:][:n])
-		if b.negative < 0 {
-			b.negative = negativeAt(w[i*n:][:n], z[i*n:][:n])
+		square := inner(w[i*n:][:n], z[i*n:][:n])
+		if square < 0 && b.negative < 0 {
+			b.negative = mostNegative(w[i*n:][:n], z[i*n:][:n])
 		}
+		before[i] = math.Sqrt(max(0, square))
 	}
 	b.project(w, z, count, c)
 	b.project(w, z, count, c)
-	keep, r, shrunk := gramSchmidt(w, z, count, n, before)
+	keep, r, shrunk := b.gramSchmidt(w, z, count, before)
 	for pass := 0; shrunk && pass < 3; pass++ {
 		b.project(w, z, len(keep), make([]float64, old*len(keep)))
 		var again []int
 		var r2 []float64
-		again, r2, shrunk = gramSchmidt(w, z, len(keep), n, slices.Repeat([]float64{1}, len(keep)))
+		again, r2, shrunk = b.gramSchmidt(w, z, len(keep), slices.Repeat([]float64{1}, len(keep)))
 		r = product(r2, r, len(again), len(keep), count)
 		for i, k := range again {
 			again[i] = keep[k]
@@ -87,7 +88,8 @@ func (b *basis) project(w, z []float64, count int, c []float64) {
 // gramSchmidt makes vectors w (with z = M·w) M-orthonormal in place, moving those kept to the front. before are sizes
 // that the vectors once had, against which what is left of them is judged. It returns which were kept, the coefficients
 // r (kept by count), and whether some kept vector lost so much that its rounding errors matter.
-func gramSchmidt(w, z []float64, count, n int, before []float64) (keep []int, r []float64, shrunk bool) {
+func (b *basis) gramSchmidt(w, z []float64, count int, before []float64) (keep []int, r []float64, shrunk bool) {
+	n := b.n
 	full := make([]float64, count*count)
 	for i := range count {
 		wi, zi := w[i*n:][:n], z[i*n:][:n]
@@ -103,7 +105,11 @@ func gramSchmidt(w, z []float64, count, n int, before []float64) (keep []int, r 
 				}
 			}
 		}
-		size := norm(wi, zi)
+		square := inner(wi, zi)
+		if square < -1e-10*before[i]*before[i] && b.negative < 0 {
+			b.negative = mostNegative(wi, zi)
+		}
+		size := math.Sqrt(max(0, square))
 		if !(size > negligible*before[i]) {
 			continue
 		}
@@ -141,22 +147,15 @@ func inner(x, y []float64) float64 {
 // norm is the length of x in the norm of M, given z = M·x.
 func norm(x, z []float64) float64 { return math.Sqrt(max(0, inner(x, z))) }
 
-// negativeAt returns -1 or, when the square of x in the norm of M (z = M·x) is negative by more than rounding, the
-// unknown with the most negative share.
-func negativeAt(x, z []float64) int {
-	sum, size, least, at := 0.0, 0.0, 0.0, -1
+// mostNegative is the unknown with the most negative share in the square of x in the norm of M (z = M·x).
+func mostNegative(x, z []float64) int {
+	at := 0
 	for i := range x {
-		v := x[i] * z[i]
-		sum += v
-		size += math.Abs(v)
-		if v < least {
-			least, at = v, i
+		if x[i]*z[i] < x[at]*z[at] {
+			at = i
 		}
 	}
-	if sum < -1e-8*size {
-		return at
-	}
-	return -1
+	return at
 }
 
 // product returns a·b for a of m by k and b of k by n.

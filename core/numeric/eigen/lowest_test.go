@@ -119,6 +119,9 @@ func TestLimitTakesAllBelow(t *testing.T) {
 			}
 		}
 		res := lowest(t, k, m, eigen.Options{Limit: limit * (1 + 1e-10)})
+		if res.Status.Attempts != 1 {
+			t.Errorf("limit %g: the count beforehand was not made use of: %+v", limit, res.Status)
+		}
 		agree(t, res.Values, want[:count], 1e-12)
 		sound(t, k, m, res, 1e-8)
 		both := lowest(t, k, m, eigen.Options{Limit: limit * (1 + 1e-10), Modes: 5})
@@ -316,20 +319,29 @@ func TestSheetHasSixRigidMotions(t *testing.T) {
 	}
 }
 
-// A long soft chain has its lowest values far below the first guess of the shift, a short one far above.
+// The first guess of the shift goes by the size of the matrices; here it is far too near to zero (all values are above
+// one), and far too low (one stiff spring lifts the scale).
 func TestShiftFindsItsPlace(t *testing.T) {
-	k, want := trial.Chain(20000)
-	stiff := sparse.Combine(1e6, k, 0, k)
-	res := lowest(t, stiff, trial.Identity(k.N), eigen.Options{Modes: 10})
-	for i := 1; i < 10; i++ {
-		if math.Abs(res.Values[i]-1e6*want[i]) > 1e-5*1e6*want[i] {
-			t.Errorf("value %d is %g, want %g", i, res.Values[i], 1e6*want[i])
+	k, want := trial.Chain(2000)
+	res := lowest(t, sparse.Combine(1, k, 1, trial.Identity(k.N)), trial.Identity(k.N), eigen.Options{Modes: 10})
+	for i, v := range res.Values {
+		if math.Abs(v-1-want[i]) > 1e-13 {
+			t.Errorf("value %d is %.15g, want %.15g", i, v, 1+want[i])
 		}
 	}
-	k, _ = trial.Chain(12)
-	res = lowest(t, k, trial.Identity(12), eigen.Options{Modes: 3})
-	if -res.Shift < 1e-3*res.Values[1] {
-		t.Errorf("shift %g stayed far from the first elastic value %g: %v", res.Shift, res.Values[1], res.Status.Notes)
+	if -res.Shift < 0.01 {
+		t.Errorf("shift %g stayed far from the first value: %v", res.Shift, res.Status.Notes)
+	}
+
+	a := sparse.NewAssembler(200, [][]int32{{198, 199}})
+	a.Add(0, []float64{1e6, -1e6, 1e6})
+	k, _ = trial.Chain(200)
+	k = sparse.Combine(1e-3, k, 1, a.Matrix())
+	res = lowest(t, k, trial.Identity(200), eigen.Options{Modes: 5})
+	near := lowest(t, k, trial.Identity(200), eigen.Options{Modes: 5, Shift: -1e-6})
+	agree(t, res.Values, near.Values, 1e-9) // of the stiff spring, rounding leaves some 1e-10
+	if -res.Shift > 1e-3 { // the values of the chain alone reach to 4e-3
+		t.Errorf("shift %g stayed far below the first value %g: %v", res.Shift, res.Values[1], res.Status.Notes)
 	}
 }
 

@@ -16,18 +16,9 @@ func (s *solver) searchAll() error {
 		st.Attempts++
 		q := s.newSearch(block)
 		if adaptable {
-			for range 2 {
-				if _, err := q.run(s.ctx, s.enough, 3); err != nil {
-					return err
-				}
-				moved, err := s.adapt(q)
-				if err != nil {
-					return err
-				}
-				if !moved {
-					break
-				}
-				q = s.newSearch(block)
+			var err error
+			if q, err = s.settleShift(q); err != nil {
+				return err
 			}
 			adaptable = false
 		}

@@ -3,7 +3,6 @@ package eigen
 import (
 	"errors"
 	"fmt"
-	"math"
 )
 
 // chooseShift factorises at a first shift that makes A positive definite.
@@ -67,29 +66,47 @@ const (
 	farthest = 50   // times the lowest elastic value
 )
 
-// adapt looks at the first Ritz values and moves the shift when it turns out to be far from the lowest elastic value. It
-// says whether it did.
-func (s *solver) adapt(q *search) (moved bool, err error) {
-	sigma := s.p.shift
-	least := leastShift * s.p.scale()
-	lowest := math.Inf(1)
-	for _, pair := range q.pairs {
-		if !(pair.theta > 0) {
+// settleShift makes the first steps of a search and begins it anew from a better shift while the present one turns out to
+// be far from the lowest elastic value.
+func (s *solver) settleShift(q *search) (*search, error) {
+	const looks, steps = 6, 3
+	for range looks {
+		if _, err := q.run(s.ctx, s.enough, steps); err != nil {
+			return nil, err
+		}
+		to := s.betterShift(q)
+		if to == 0 {
 			continue
 		}
-		// Rigid values are zero up to rounding, far below the shift; values not yet known to a tenth tell nothing.
-		v, doubt := sigma+1/pair.theta, pair.residual/(pair.theta*pair.theta)
-		if v > max(1e-4*-sigma, least) && doubt < 0.1*v {
-			lowest = min(lowest, v)
+		s.res.Status.note("the shift was moved from %.3g to %.3g, nearer to the lowest elastic value", s.p.shift, to)
+		if err := s.shiftTo(to); err != nil {
+			return nil, err
+		}
+		q = s.newSearch(q.block)
+	}
+	return q, nil
+}
+
+// betterShift returns a shift much better than the present one, or zero.
+func (s *solver) betterShift(q *search) float64 {
+	const rigid = 6
+	sigma, least := s.p.shift, leastShift*s.p.scale()
+	// However inexact, the k-th Ritz value is no less than the k-th eigenvalue (Courant and Fischer), so that the
+	// first one beyond the rigid ones is a bound.
+	if len(q.pairs) > rigid && q.pairs[rigid].theta > 0 {
+		if bound := max(q.value(rigid), least); -sigma > farthest*bound {
+			return -bound
 		}
 	}
-	if math.IsInf(lowest, 1) || -sigma >= nearest*lowest && -sigma <= farthest*lowest {
-		return false, nil
+	// From too near, the lowest values come at once, and nothing but an elastic one known well counts.
+	for k, pair := range q.pairs {
+		v, doubt := q.value(k), pair.residual/(pair.theta*pair.theta)
+		if pair.theta > 0 && v > max(1e-4*-sigma, least) && doubt < 0.1*v {
+			if to := max(0.3*v, least); -sigma < nearest*v && to > 2*-sigma {
+				return -to
+			}
+			break
+		}
 	}
-	to := -max(0.3*lowest, least)
-	if to/sigma > 0.5 && to/sigma < 2 {
-		return false, nil
-	}
-	s.res.Status.note("the shift was moved from %.3g to %.3g, nearer to the lowest elastic value", sigma, to)
-	return true, s.shiftTo(to)
+	return 0
 }
