@@ -340,7 +340,7 @@ func TestShiftFindsItsPlace(t *testing.T) {
 	res = lowest(t, k, trial.Identity(200), eigen.Options{Modes: 5})
 	near := lowest(t, k, trial.Identity(200), eigen.Options{Modes: 5, Shift: -1e-6})
 	agree(t, res.Values, near.Values, 1e-9) // of the stiff spring, rounding leaves some 1e-10
-	if -res.Shift > 1e-3 { // the values of the chain alone reach to 4e-3
+	if -res.Shift > 1e-3 {                  // the values of the chain alone reach to 4e-3
 		t.Errorf("shift %g stayed far below the first value %g: %v", res.Shift, res.Values[1], res.Status.Notes)
 	}
 }
