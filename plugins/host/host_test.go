@@ -459,6 +459,11 @@ func TestCancellation(t *testing.T) {
 			if f := fault.From(err); f == nil || f.Kind != fault.Cancelled || f.Error() != c.want {
 				t.Errorf("got %v", err)
 			}
+			if c.stage == "stubborn" {
+				waitNoChildren(t)
+			} else if n := len(children(t)); runtime.GOOS != "windows" && n != 1 {
+				t.Errorf("%d processes after a step that ended as asked", n)
+			}
 			h.Close()
 			if left := children(t); len(left) != 0 {
 				t.Errorf("processes left: %v", left)

@@ -559,6 +559,22 @@ func TestStop(t *testing.T) {
 	}
 }
 
+// A result that comes after the end is none: the step did not see all of its
+// time, and the next run does it again.
+func TestResultAfterStop(t *testing.T) {
+	w := newWorldOfTests(t)
+	ctx, cancel := context.WithCancel(context.Background())
+	w.changes["left"] = func(*stage.Call) error { cancel(); return nil }
+	r, _ := w.run(ctx, base, func(o *Options) { o.Threads = 1 })
+	if got := states(r); got != "thread ran, left stopped, right stopped, card stopped" {
+		t.Errorf("%s: %v", got, r.Diagnostics)
+	}
+	delete(w.changes, "left")
+	if _, ran := w.run(context.Background(), base, nil); strings.Join(ran, ", ") != "card, polish left, polish right" {
+		t.Errorf("afterwards ran %v", ran)
+	}
+}
+
 // listener is an observer that notes what it hears; it would show a race if
 // it were called by two goroutines at once.
 type listener struct {
