@@ -156,7 +156,7 @@ func TestRowsOfStrip(t *testing.T) {
 // Rows of even depth from both sides of a corner of 70 degrees would leave next to nothing between them.
 func TestRowsLeaveTightCornersAlone(t *testing.T) {
 	region := outline.NewRegion(outline.Polygon(pt(0, 0), pt(30e-3, -20e-3), pt(60e-3, 0), pt(30e-3, 22e-3)))
-	g := newMesher(region, Options{Size: uniform(3e-3), Row: func(outline.Point, float64) (float64, float64) { return 1e-3, 3e-3 }})
+	g := newMesher(region, Options{Size: uniform(3e-3), Row: func(outline.Point, float64) (float64, float64) { return 1e-3, 2e-3 }})
 	if err := g.run(); err != nil {
 		t.Fatal(err)
 	}

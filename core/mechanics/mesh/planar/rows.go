@@ -20,7 +20,6 @@ const (
 	rowClearance = 0.6                 // distance kept from all else, in depths
 	rowStretch   = 5.0                 // longest boundary segment, in depths
 	rowRise      = 0.18                // most that the curve rises over the chord where a row ends, in depths
-	rowSlope     = 0.15                // most that the depth changes along a segment, per length
 	rowRun       = 3                   // fewest matches in a row
 )
 
@@ -169,9 +168,6 @@ func (g *mesher) rowFits(vs []rowVertex, s int32, nearby *nearby) bool {
 		}
 	}
 	if !vs[x.a].ok && g.tight(vs, x.a) || !vs[x.b].ok && g.tight(vs, x.b) {
-		return false
-	}
-	if vs[x.a].ok && vs[x.b].ok && math.Abs(vs[x.a].depth-vs[x.b].depth) > rowSlope*length {
 		return false
 	}
 	keep := rowClearance * depth
