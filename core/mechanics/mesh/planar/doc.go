@@ -13,8 +13,12 @@
 // 1993 (segments are protected by lenses instead of circles); A. Üngör, Off-centers, LATIN 2004; J. R. Shewchuk,
 // Delaunay refinement algorithms for triangular mesh generation, Comp. Geometry 22, 2002 (segments that meet at small
 // angles are divided on common circles about the corner, and the short sides across such a corner are left alone).
-// Vertices inside are then moved where that improves the worst angle round them (smooth), and mid-side nodes are put
-// on the true curves (quadratic).
+// Along edges that ask for it a row of stretched triangles is laid out beforehand and kept (rows). Vertices inside are
+// then moved where that improves the worst angle round them (smooth), and mid-side nodes are put on the true curves
+// (quadratic).
+//
+// Limits. Where boundaries come closer than about a thousandth of the wanted size angles are not kept. At sharp corners
+// (below 61 degrees) and in the triangles next to them they cannot be. Rows have angles down to about 10 degrees.
 //
 // The result depends on the input alone: no maps are iterated, nothing is random, one goroutine does the work.
 package planar
