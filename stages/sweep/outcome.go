@@ -92,12 +92,12 @@ func peakTable(r *kinds.Response) stage.Section {
 		Title: "Predicted peaks of the gyro rate",
 		Text:  "under the assumed broadband source; a share is what a mode adds to the peak, negative if it works against it",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}, {Name: "(deg/s)²/Hz", Right: true}, {Name: "stands out, dB", Right: true},
-			{Name: "damping, %", Right: true}, {Name: "made by"}, {Name: "driven most by"}, {Name: "power taken by"}},
+			{Name: "damping, %", Right: true}, {Name: "modes and their shares"}},
 	}
 	for _, p := range r.Peaks {
 		s.Rows = append(s.Rows, []string{
 			p.Axis, fmt.Sprintf("%.1f", p.Frequency), fmt.Sprintf("%.3g", p.Density/degree/degree), fmt.Sprintf("%.1f", 10*math.Log10(p.Prominence)),
-			percent(p.Damping, "%.2f"), makers(p), fmt.Sprintf("%s %s, %.0f %%", p.Rotor, kinds.ComponentNames[p.Component], 100*p.ComponentShare), losers(p),
+			percent(p.Damping, "%.2f"), makers(p),
 		})
 	}
 	return s
@@ -110,31 +110,20 @@ func percent(x float64, format string) string {
 	return fmt.Sprintf(format, 100*x)
 }
 
-// makers puts the makers of a peak in words: "mode 3 91 %, mode 4 −6 %".
+// makers puts the makers of a peak in words: "3: 91 %, 4: −6 %, rigid body: 8 %".
 func makers(p kinds.ResponsePeak) string {
 	var parts []string
 	add := func(name string, share float64) {
-		parts = append(parts, fmt.Sprintf("%s %s %%", name, strings.Replace(fmt.Sprintf("%.0f", 100*share), "-", "−", 1)))
+		parts = append(parts, fmt.Sprintf("%s: %s %%", name, strings.Replace(fmt.Sprintf("%.0f", 100*share), "-", "−", 1)))
 	}
 	for i, m := range p.Modes {
-		add(fmt.Sprintf("mode %d", m), p.Shares[i])
+		add(fmt.Sprint(m), p.Shares[i])
 	}
 	if math.Abs(p.Rigid) >= leastShare {
 		add("rigid body", p.Rigid)
 	}
 	if math.Abs(p.Residual) >= leastShare {
 		add("modes left out", p.Residual)
-	}
-	return strings.Join(parts, ", ")
-}
-
-func losers(p kinds.ResponsePeak) string {
-	var parts []string
-	for i, name := range p.Losses {
-		if i == 3 {
-			break
-		}
-		parts = append(parts, fmt.Sprintf("%s %.0f %%", name, 100*p.LossShares[i]))
 	}
 	return strings.Join(parts, ", ")
 }
@@ -164,6 +153,9 @@ func lineTable(r *kinds.Response) stage.Section {
 			{Name: "roll, deg/s", Right: true}, {Name: "pitch, deg/s", Right: true}, {Name: "yaw, deg/s", Right: true}},
 	}
 	for _, x := range r.Lines {
+		if reach := r.ModesTo / 1.5; x.Frequency > reach*(1+1e-9) {
+			s.Text = fmt.Sprintf("lines above %.4g Hz are rough: the modes go to %.4g Hz, which carries a response to two thirds of that", reach, r.ModesTo)
+		}
 		row := []string{x.Source, x.Rotor, fmt.Sprintf("%.1f", x.Frequency), fmt.Sprintf("%.3g", x.Force)}
 		for _, rate := range x.Rate {
 			row = append(row, fmt.Sprintf("%.3g", rate/degree))

@@ -371,7 +371,7 @@ func TestSummary(t *testing.T) {
 			}
 		}
 	}
-	if row := out.Summary[0].Rows[0]; row[0] != "roll" || row[1] != "150.0" || !strings.HasPrefix(row[5], "mode 1 ") || !strings.Contains(row[6], "force z") {
+	if row := out.Summary[0].Rows[0]; row[0] != "roll" || row[1] != "150.0" || row[5] != "1: 100 %" {
 		t.Errorf("first peak reads %q", row)
 	}
 }
