@@ -23,4 +23,6 @@
 // where the sum runs over all pairs, this one included, that share the predicted or the observed peak. It nears 1 for a
 // lone pair in the right place, ½ for two equal candidates, and is at most ½ at the cut. It rests on τ and w, which are
 // judgement, and is no probability in the strict sense.
+//
+// Modes are paired alike, with signed directions whose sense means nothing, damping, and how well a mode can be seen.
 package match

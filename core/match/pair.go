@@ -49,11 +49,16 @@ type Result struct {
 // that is all zero.
 func Pairs(predicted, observed []Peak, o Options) Result {
 	o = o.filled()
+	return pair(predicted, observed, o, func(i, j int) float64 { return o.cost(predicted[i], observed[j]) })
+}
+
+// pair makes the assignment of least total cost among the peaks within the band; of gives the cost of a pair.
+func pair(predicted, observed []Peak, o Options, of func(i, j int) float64) Result {
 	ps, os := o.within(predicted), o.within(observed)
 	cost := make([]float64, 0, len(ps)*len(os))
 	for _, i := range ps {
 		for _, j := range os {
-			cost = append(cost, o.cost(predicted[i], observed[j]))
+			cost = append(cost, of(i, j))
 		}
 	}
 	var out Result

@@ -45,6 +45,31 @@ func Scale(predicted, observed []float64, use []bool) Level {
 	}
 }
 
+// Assurance returns how alike two spectra are in shape, 0 to 1 whatever their levels: of the amplitudes a = √density,
+//
+//	(Σ a_p·a_o)² / (Σ a_p² · Σ a_o²)
+//
+// the frequency response assurance criterion (R. J. Allemang, The modal assurance criterion: twenty years of use and
+// abuse, Sound and Vibration 37, 2003) without the phase that a density lacks. Entries are left out as in Scale; NaN without any.
+func Assurance(predicted, observed []float64, use []bool) float64 {
+	if len(predicted) != len(observed) || use != nil && len(use) != len(observed) {
+		panic("match: curves of different lengths")
+	}
+	var both, p, o float64
+	for i, v := range predicted {
+		if use != nil && !use[i] || !positive(v) || !positive(observed[i]) {
+			continue
+		}
+		both += math.Sqrt(v) * math.Sqrt(observed[i])
+		p += v
+		o += observed[i]
+	}
+	if p == 0 {
+		return math.NaN()
+	}
+	return both * both / p / o
+}
+
 func positive(v float64) bool { return v > 0 && !math.IsInf(v, 1) }
 
 // Resample reads the curve y(x), given at rising x, at each place of at by straight lines in ln y (in y where a value is
