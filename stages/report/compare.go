@@ -65,7 +65,7 @@ func lonely(file, title, about string, peaks []kinds.ComparisonPeak) *table {
 // recordingSection states what the recording is.
 func recordingSection(sp *kinds.Spectra) *section {
 	s := &section{ID: "recording", Title: "Recording"}
-	facts := &table{Name: "recording", Title: "What was recorded", Columns: []column{{"", "", false}, {"value", "", true}, {"unit", "", false}}}
+	facts := &table{Name: "recording", Title: "What was recorded", Columns: []column{{"what", "", false}, {"value", "", true}, {"unit", "", false}}}
 	add := func(name string, c cell, unit string) {
 		facts.Rows = append(facts.Rows, []cell{words(name), c, words(unit)})
 	}
@@ -75,7 +75,11 @@ func recordingSection(sp *kinds.Spectra) *section {
 	add("samples per axis", count(sp.Samples), "")
 	add("gaps", count(sp.Gaps), "")
 	add("samples missing in gaps", count(sp.Missing), "")
-	add("jitter of the sample interval", plain(100*sp.Jitter, 2), "%")
+	jitter := plain(100*sp.Jitter, 2)
+	if sp.Jitter < 1e-6 { // of the last digit of the clock, not of the recorder
+		jitter.Text = "below 0.0001"
+	}
+	add("jitter of the sample interval", jitter, "%")
 	add("window: "+sp.Window, count(sp.Segment), "samples")
 	add("overlap", count(sp.Overlap), "samples")
 	add("segments averaged", count(sp.Segments), "")
@@ -85,7 +89,7 @@ func recordingSection(sp *kinds.Spectra) *section {
 	s.table(facts)
 
 	axes := &table{Name: "recorded-axes", Title: "Channels", Columns: []column{{"axis", "", false}, {"column", "", false}, {"quantity", "", false}, {"unit", "", false},
-		{"mean", "", true}, {"deviation", "", true}, {"largest", "", true}, {"saturated samples", "", true}, {"repeated samples", "%", true}}}
+		{"mean", "", true}, {"rms about it", "", true}, {"largest", "", true}, {"saturated samples", "", true}, {"repeated samples", "%", true}}}
 	for _, x := range sp.Axes {
 		unit, factor := x.Unit, 1.0
 		if unit == "rad/s" {
@@ -108,7 +112,7 @@ func recordingSection(sp *kinds.Spectra) *section {
 	s.table(rotors)
 
 	orders := &table{Name: "recorded-orders", Title: "Where rotor orders lie in the recording", About: "Bands in which an order spends less than 2 % of the time are left out here, but are masked in the comparison.",
-		Columns: []column{{"rotor", "", false}, {"order", "", true}, {"", "", false}, {"from", "Hz", true}, {"to", "Hz", true}, {"share of the time", "%", true}}}
+		Columns: []column{{"rotor", "", false}, {"order", "", true}, {"remark", "", false}, {"from", "Hz", true}, {"to", "Hz", true}, {"share of the time", "%", true}}}
 	const seldom = 0.02
 	for _, x := range sp.Orders {
 		if x.Share < seldom {
@@ -127,7 +131,7 @@ func recordingSection(sp *kinds.Spectra) *section {
 
 	peaks := &table{Name: "recorded-peaks", Title: "Recorded peaks",
 		Columns: []column{{"axis", "", false}, {"frequency", "Hz", true}, {"± (one sigma)", "Hz", true}, {"density", "(deg/s)²/Hz", true}, {"stands out", "dB", true},
-			{"damping ratio", "%", true}, {"± (one sigma)", "%", true}, {"", "", false}}}
+			{"damping ratio", "%", true}, {"± (one sigma)", "%", true}, {"remark", "", false}}}
 	for _, p := range sp.Peaks {
 		axis := sp.Axes[p.Axis]
 		if axis.Unit != "rad/s" {

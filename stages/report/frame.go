@@ -15,7 +15,7 @@ func frameSection(c *content) *section {
 			1000*m.Mass, millimetres(m.Centre[0]), millimetres(m.Centre[1]), millimetres(m.Centre[2])))
 	}
 	if c.properties != nil {
-		s.table(massTable(c.properties))
+		s.table(massTable(c.geometry, c.properties))
 	}
 	return s
 }

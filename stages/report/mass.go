@@ -5,50 +5,29 @@ import (
 	"sort"
 
 	"hushframe/core/mechanics/airframe"
+	"hushframe/stages/importgeom/assemble"
 )
 
-// massTable lists what the frame is made of, by mass.
-func massTable(p *airframe.Properties) *table {
+// massTable lists what the frame is made of, with alike standoffs, screws and
+// bolts as one; the geometry may be missing.
+func massTable(g *airframe.Geometry, p *airframe.Properties) *table {
 	t := &table{Name: "masses", Title: "Masses",
-		Columns: []column{{"part", "", false}, {"what", "", false}, {"material", "", false}, {"mass", "g", true}}}
-	total := 0.0
-	add := func(name, what, material string, mass float64) {
-		total += mass
-		t.Rows = append(t.Rows, []cell{words(name), words(what), words(material), number(1000*mass, 2)})
+		Columns: []column{{"part", "", false}, {"number", "", true}, {"material", "", false}, {"mass", "g", true}, {"share", "%", true}}}
+	masses, total := assemble.Masses(g, p), 0.0
+	for _, m := range masses {
+		total += m.Mass
 	}
-	for _, x := range p.Plates {
-		material := x.Material
-		if material == "" {
-			material = "ply stack"
-		}
-		add(x.Plate, "plate", material, x.Mass)
+	for _, m := range masses {
+		t.Rows = append(t.Rows, []cell{words(m.Name), count(m.Number), words(m.Material), number(1000*m.Mass, 2), percent(m.Mass/total, 1)})
 	}
-	for _, x := range p.Standoffs {
-		add(x.Standoff, "standoff", x.Material, x.Mass)
+	sum := []cell{words("total"), words(""), words(""), number(1000*total, 2), percent(1, 1)}
+	for i := range sum {
+		sum[i].Strong = true
 	}
-	for _, x := range p.Bodies {
-		what := map[string]string{"rotor": "rotor", "gyro": "gyro", "lump": "body"}[x.Kind]
-		if x.Mount != nil {
-			what += " on " + x.Mount.Name
-		}
-		add(x.Name, what, "", x.Mass)
-	}
-	if len(p.Bolts) > 0 {
-		sum := 0.0
-		for _, x := range p.Bolts {
-			sum += x.Mass
-		}
-		add(joinCount(len(p.Bolts), "bolt", "bolts"), "screws, washers, nuts", "", sum)
-	}
-	row := []cell{words("total"), words(""), words(""), number(1000*total, 2)}
+	t.Rows = append(t.Rows, sum)
 	if p.DeclaredMass > 0 {
-		t.Rows = append(t.Rows, row)
-		row = []cell{words("declared in the airframe"), words(""), words(""), number(1000*p.DeclaredMass, 2)}
+		t.Rows = append(t.Rows, []cell{words("declared in the airframe"), words(""), words(""), number(1000*p.DeclaredMass, 2), words("")})
 	}
-	for i := range row {
-		row[i].Strong = true
-	}
-	t.Rows = append(t.Rows, row)
 	return t
 }
 

@@ -34,6 +34,10 @@ func modesSection(c *content) *section {
 	return s
 }
 
+// negligible is the share of the strongest value of an axis below which a value
+// is shown as zero; the file keeps it.
+const negligible = 1e-3
+
 // shapesOfModes draws the modes if it can, and says why if it cannot.
 func shapesOfModes(s *section, c *content) {
 	m := c.modes
@@ -61,7 +65,7 @@ func below(m *kinds.Modes, limit float64) int {
 
 func modeTable(m *kinds.Modes) *table {
 	t := &table{Name: "modes", Title: "Elastic modes",
-		About: "Gyro strength: peak rate of that mode alone at its own damping, root sum of squares over unit forces at all rotor hubs. In bold the strongest of each axis.",
+		About: "Gyro strength: peak rate of that mode alone at its own damping, root sum of squares over unit forces at all rotor hubs. In bold the strongest of each axis; 0 is below a thousandth of it.",
 		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"damping ratio", "%", true}, {"most strain", "", false},
 			{"roll", "(deg/s)/N", true}, {"pitch", "(deg/s)/N", true}, {"yaw", "(deg/s)/N", true}, {"to the mode below", "Hz", true}, {"above", "Hz", true}}}
 	var best [3]float64
@@ -71,9 +75,9 @@ func modeTable(m *kinds.Modes) *table {
 		}
 	}
 	for _, x := range m.Survey.Modes {
-		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(x.Motion + " of " + x.Part)}
+		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(strained(m, x))}
 		for axis := range best {
-			strength := atLeast(x.Strength[axis]/degree, 0.005)
+			strength := atLeast(x.Strength[axis]/degree, negligible*best[axis]/degree)
 			strength.Strong = x.Strength[axis] > 0 && x.Strength[axis] == best[axis]
 			row = append(row, strength)
 		}
@@ -108,32 +112,51 @@ func gapTable(m *kinds.Modes) *table {
 	return t
 }
 
+// meetingTable has a row per mode; rotors that differ in blades or range make
+// several entries in a cell, with their names.
 func meetingTable(m *kinds.Modes) *table {
 	t := &table{Name: "orders-met", Title: "Rotor speeds at which orders meet modes",
-		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"order", "", false}, {"rotor speed", "rpm", true}, {"range", "", false}, {"rotors", "", false}}}
+		About:   fmt.Sprintf("Speeds that the rotors reach; in bold those within %.0f %% of hover.", 100*modal.HoverBand),
+		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}}}
+	orders := [3]string{"order 1", "order 2", "blade passing"}
+	for _, order := range orders {
+		t.Columns = append(t.Columns, column{order, "rpm", true})
+	}
+	t.Columns = append(t.Columns, column{"near hover", "", false})
 	for _, mode := range m.Survey.Modes {
+		cells := [3]cell{missing(), missing(), missing()}
 		for _, x := range mode.Meetings {
 			if !x.Service {
 				continue
 			}
-			order := fmt.Sprint(x.Order)
-			if x.Blade {
-				order = fmt.Sprintf("%d, blade passing", x.Order)
+			k := 2
+			if !x.Blade {
+				k = x.Order - 1
 			}
-			where := words("in service range")
-			if x.Hover {
-				where = cell{Text: "near hover", Raw: "near hover", Strong: true}
-			}
-			names := "all"
+			c := number(x.Speed/rpm, 0)
 			if len(x.Rotors) < len(m.Survey.Rotors) {
-				var list []string
+				var names []string
 				for _, r := range x.Rotors {
-					list = append(list, m.Survey.Rotors[r])
+					names = append(names, m.Survey.Rotors[r])
 				}
-				names = strings.Join(list, ", ")
+				c = words(c.Text + " (" + strings.Join(names, ", ") + ")")
 			}
-			t.Rows = append(t.Rows, []cell{count(mode.Number), number(mode.Frequency, 1), words(order), number(x.Speed/rpm, 0), where, words(names)})
+			if before := cells[k]; before.Raw != "" {
+				c = words(before.Text + "; " + c.Text)
+				c.Strong = before.Strong
+			}
+			c.Strong = c.Strong || x.Hover
+			cells[k] = c
 		}
+		row := []cell{count(mode.Number), number(mode.Frequency, 1)}
+		var near []string
+		for k, c := range cells {
+			row = append(row, c)
+			if c.Strong {
+				near = append(near, orders[k])
+			}
+		}
+		t.Rows = append(t.Rows, append(row, words(strings.Join(near, ", "))))
 	}
 	return t
 }
@@ -170,7 +193,7 @@ func largest(names []string, shares []float64, n int) string {
 // shareTable says which rotor drives which mode.
 func shareTable(m *kinds.Modes) *table {
 	t := &table{Name: "rotor-shares", Title: "Which rotors drive which mode",
-		About:   "Part of each rotor in the square of the gyro strength for unit forces, and strengths for unit moments.",
+		About:   "Part of each rotor in the square of the gyro strength for unit forces, and strengths for unit moments; 0 is below a thousandth of the strongest on the axis.",
 		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}}}
 	for _, r := range m.Survey.Rotors {
 		t.Columns = append(t.Columns, column{r, "%", true})
@@ -178,13 +201,19 @@ func shareTable(m *kinds.Modes) *table {
 	for _, axis := range kinds.AxisNames {
 		t.Columns = append(t.Columns, column{axis + " by moments", "(deg/s)/(N·m)", true})
 	}
+	var best [3]float64
+	for _, x := range m.Survey.Modes {
+		for axis, strength := range x.MomentStrength {
+			best[axis] = math.Max(best[axis], strength)
+		}
+	}
 	for _, x := range m.Survey.Modes {
 		row := []cell{count(x.Number), number(x.Frequency, 1)}
 		for _, share := range x.RotorShare {
 			row = append(row, percent(share, 0))
 		}
-		for _, strength := range x.MomentStrength {
-			row = append(row, atLeast(strength/degree, 0.005))
+		for axis, strength := range x.MomentStrength {
+			row = append(row, atLeast(strength/degree, negligible*best[axis]/degree))
 		}
 		t.Rows = append(t.Rows, row)
 	}
@@ -283,5 +312,11 @@ func modeCaption(m *kinds.Modes, x modal.Mode) string {
 	case share > 0:
 		gyro = fmt.Sprintf("the gyro turns mostly in %s (%.0f\u00a0%%)", kinds.AxisNames[axis], 100*share)
 	}
-	return fmt.Sprintf("Most strain: %s of %s; %s.", x.Motion, x.Part, gyro)
+	return fmt.Sprintf("Most strain: %s; %s.", strained(m, x), gyro)
+}
+
+// strained says where and how a mode stores most energy: "bending of arm_fl,
+// arm_fr", with all groups that store about as much as the first.
+func strained(m *kinds.Modes, x modal.Mode) string {
+	return x.Motion + " of " + strings.Join(x.Leading(m.Survey.Groups), ", ")
 }

@@ -193,6 +193,39 @@ func TestTablesBesideThePage(t *testing.T) {
 	}
 }
 
+// The sample has two posts of 1.2 g with four screws of 0.7 g, and two bolts of 1.1 g.
+func TestMassesGroupWhatIsAlike(t *testing.T) {
+	_, d := render(t, sampleContent(t))
+	masses := string(d.Files["page-tables/masses.csv"])
+	for _, line := range []string{"standoff post,2,aluminium,2.4,", "screws of standoff post,4,,2.8,"} {
+		if !strings.Contains(masses, "\n"+line) {
+			t.Errorf("no line %q in\n%s", line, masses)
+		}
+	}
+	c := sampleContent(t)
+	c.geometry = nil // it alone knows which bolts belong together
+	_, d = render(t, c)
+	if masses := string(d.Files["page-tables/masses.csv"]); !strings.Contains(masses, "\nbolts,2,,2.2,") {
+		t.Errorf("no line of both bolts in\n%s", masses)
+	}
+}
+
+// In the sample every order 1 equals the frequency; mode 5 alone is near hover, mode 7 at 466 Hz within range.
+func TestOrdersMetHaveALinePerMode(t *testing.T) {
+	c := sampleContent(t)
+	c.modes.Survey.Modes[0].Meetings[0].Rotors = []int{0, 2}
+	_, d := render(t, c)
+	orders := string(d.Files["page-tables/orders-met.csv"])
+	for _, line := range []string{
+		"mode,frequency [Hz],order 1 [rpm],order 2 [rpm],blade passing [rpm],near hover",
+		"1,141.3,\"8478 (fl, rl)\",,2826,", "5,301.7,18102,,6034,order 1",
+	} {
+		if !strings.Contains(orders, line+"\n") {
+			t.Errorf("no line %q in\n%s", line, orders)
+		}
+	}
+}
+
 func TestFieldsAreNoFormulas(t *testing.T) {
 	table := &table{Columns: []column{{"a", "", false}}}
 	for _, s := range []string{"=1+1", "@x", "+cmd", "-2.5", "-x", "plain", "a,\"b\"\nc"} {

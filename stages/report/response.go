@@ -96,7 +96,9 @@ func lineTable(r *kinds.Response) *table {
 		About: "Peak amplitude of the gyro rate. Unbalance is what each rotor's balance grade permits; the thrust at blade passing is assumed to vary by " + plain(100*r.BladeShare, 2).Text + " %.",
 		Columns: []column{{"source", "", false}, {"rotor", "", false}, {"frequency", "Hz", true}, {"force", "N", true},
 			{"roll", "deg/s", true}, {"pitch", "deg/s", true}, {"yaw", "deg/s", true}}}
+	rough := false
 	for _, x := range r.Lines {
+		rough = rough || x.Frequency > r.ModesTo/1.5*(1+1e-9)
 		row := []cell{words(x.Source), words(x.Rotor), number(x.Frequency, 1), digits(x.Force, 3)}
 		for _, rate := range x.Rate {
 			row = append(row, digits(rate/degree, 3))
@@ -107,6 +109,9 @@ func lineTable(r *kinds.Response) *table {
 			}
 		}
 		t.Rows = append(t.Rows, row)
+	}
+	if rough {
+		t.About += fmt.Sprintf(" Lines above %.4g Hz are rough: the modes go to %.4g Hz, which carries a response to two thirds of that.", r.ModesTo/1.5, r.ModesTo)
 	}
 	return t
 }

@@ -78,7 +78,7 @@ func runSection(c *content) *section {
 	r := c.run
 	if r != nil {
 		s.table(requirementTable(r.Verdicts))
-		settings := &table{Name: "settings", Title: "Settings", Columns: []column{{"setting", "", false}, {"value", "", false}, {"about", "", false}, {"", "", false}}}
+		settings := &table{Name: "settings", Title: "Settings", Columns: []column{{"setting", "", false}, {"value", "", false}, {"about", "", false}, {"remark", "", false}}}
 		for _, x := range r.Settings {
 			row := []cell{words(x.Name), words(x.Value), words(x.About), words("")}
 			if x.Overridden {

@@ -15,8 +15,17 @@ type Mass struct {
 }
 
 // Masses lists plates, then bolts by group, standoffs by name and material with their screws, and bodies.
-func (a *Assembly) Masses() []Mass {
-	g, p := &a.Geometry, &a.Properties
+func (a *Assembly) Masses() []Mass { return Masses(&a.Geometry, &a.Properties) }
+
+// Masses lists the masses of an airframe, with alike standoffs, screws and bolts as one. The geometry
+// names the groups of bolts; without it (nil) all bolts are one group.
+func Masses(g *airframe.Geometry, p *airframe.Properties) []Mass {
+	group := map[string]string{}
+	if g != nil {
+		for _, b := range g.Bolts {
+			group[b.Name] = " " + b.Group
+		}
+	}
 	var out []Mass
 	add := func(m Mass) {
 		for i := range out {
@@ -35,14 +44,14 @@ func (a *Assembly) Masses() []Mass {
 		}
 		add(Mass{"plate " + pl.Plate, material, 1, pl.Mass, true})
 	}
-	for i, b := range g.Bolts {
-		add(Mass{"bolts " + b.Group, "", 1, p.Bolts[i].Mass, true})
+	for _, b := range p.Bolts {
+		add(Mass{"bolts" + group[b.Bolt], "", 1, b.Mass, true})
 	}
-	for i, s := range g.Standoffs {
-		add(Mass{"standoff " + base(s.Name), p.Standoffs[i].Material, 1, p.Standoffs[i].Mass, true})
+	for _, s := range p.Standoffs {
+		add(Mass{"standoff " + base(s.Standoff), s.Material, 1, s.Mass, true})
 	}
 	for _, b := range p.Bodies {
-		if IsScrew(b.Name, g) {
+		if IsScrew(b.Name, p) {
 			name := strings.TrimSuffix(strings.TrimSuffix(b.Name, screwSuffix[0]), screwSuffix[1])
 			add(Mass{"screws of standoff " + base(name), "", 1, b.Mass, true})
 			continue
@@ -62,11 +71,11 @@ func base(name string) string {
 }
 
 // IsScrew reports whether a body stands for the screw of a standoff.
-func IsScrew(body string, g *airframe.Geometry) bool {
+func IsScrew(body string, p *airframe.Properties) bool {
 	for _, suffix := range screwSuffix {
 		if name, ok := strings.CutSuffix(body, suffix); ok {
-			for _, s := range g.Standoffs {
-				if s.Name == name {
+			for _, s := range p.Standoffs {
+				if s.Standoff == name {
 					return true
 				}
 			}

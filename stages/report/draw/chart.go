@@ -77,7 +77,7 @@ func (ch *Chart) Draw() string {
 	}
 	c := &canvas{}
 	c.open("chart", ch.About, chartWidth, chartHeight)
-	ch.bands(c, f)
+	labels := ch.bands(c, f)
 	ch.grid(c, f)
 	ch.marks(c, f)
 	for _, curve := range ch.Curves {
@@ -87,6 +87,9 @@ func (ch *Chart) Draw() string {
 	}
 	for _, curve := range ch.Curves {
 		c.tag("path", "class", "curve "+curve.Class, "d", f.path(curve.X, curve.Y))
+	}
+	for _, l := range labels { // over the curves, or they would be crossed out
+		c.text(l.x, l.y, "band-label", "middle", l.text)
 	}
 	ch.peaks(c, f, ch.names(c, f))
 	for i, note := range ch.Notes {
@@ -161,9 +164,16 @@ func step(span float64, n int) float64 {
 	return 10 * unit
 }
 
-func (ch *Chart) bands(c *canvas, f frame) {
+// bandLabel is centred at a place of the picture.
+type bandLabel struct {
+	x, y float64
+	text string
+}
+
+// bands draws the hatching and says where its labels go.
+func (ch *Chart) bands(c *canvas, f frame) (labels []bandLabel) {
 	if len(ch.Bands) == 0 {
-		return
+		return nil
 	}
 	id := "hatch-" + ch.Name
 	c.b.WriteString(`<defs><pattern id="` + id + `" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)"><path class="hatch" d="M0 0V6"/></pattern></defs>`)
@@ -185,8 +195,9 @@ func (ch *Chart) bands(c *canvas, f frame) {
 			}
 		}
 		taken = append(taken, free)
-		c.text(at, chartHeight-bottom-6-13*free.row, "band-label", "middle", b.Label)
+		labels = append(labels, bandLabel{at, chartHeight - bottom - 6 - 13*free.row, b.Label})
 	}
+	return labels
 }
 
 // marks draws the ticks at the top, their labels in two rows where they crowd.
