@@ -10,6 +10,7 @@ import (
 
 	"hushframe/core/numeric/eigen"
 	"hushframe/core/numeric/sparse"
+	"hushframe/core/numeric/trial"
 )
 
 // outerProducts adds count products v·vᵀ of random v on size random unknowns: a matrix of that rank or less.
@@ -92,7 +93,7 @@ func TestClaimsAreTrue(t *testing.T) {
 		if r.IntN(2) == 0 {
 			opt.Limit = math.Exp(6*r.Float64() - 3)
 		}
-		want, ok := finiteValues(full(k), full(m))
+		want, ok := finiteValues(trial.Full(k), trial.Full(m))
 		if !ok {
 			continue
 		}

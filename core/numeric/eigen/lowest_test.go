@@ -3,6 +3,7 @@ package eigen_test
 import (
 	"context"
 	"errors"
+	"fmt"
 	"math"
 	"math/rand/v2"
 	"runtime"
@@ -181,16 +182,6 @@ func randomPencil(r *rand.Rand, n int) (k, m *sparse.Symmetric) {
 	return a.Matrix(), b.Matrix()
 }
 
-func full(s *sparse.Symmetric) *mat.SymDense {
-	d := mat.NewSymDense(s.N, nil)
-	for j := range s.N {
-		for p := s.Ptr[j]; p < s.Ptr[j+1]; p++ {
-			d.SetSym(int(s.Row[p]), j, s.Val[p])
-		}
-	}
-	return d
-}
-
 // denseValues solves K·x = λ·M·x for positive definite M by gonum's Cholesky factor and symmetric eigen-solver.
 func denseValues(t *testing.T, k, m mat.Symmetric) []float64 {
 	t.Helper()
@@ -225,7 +216,7 @@ func TestRandomPencilsAgreeWithDense(t *testing.T) {
 	r := rand.New(rand.NewPCG(6, 1))
 	for _, n := range []int{5, 12, 40, 150} {
 		k, m := randomPencil(r, n)
-		want := denseValues(t, full(k), full(m))
+		want := denseValues(t, trial.Full(k), trial.Full(m))
 		modes := min(n, 20)
 		res := lowest(t, k, m, eigen.Options{Modes: modes})
 		agree(t, res.Values, want[:modes], 1e-9)
@@ -244,7 +235,7 @@ func TestMasslessUnknownsAgreeWithCondensation(t *testing.T) {
 		mass[2*i] = 0.5 + r.Float64()
 	}
 	m := trial.Diagonal(mass)
-	kd := full(k)
+	kd := trial.Full(k)
 	part := func(ri, rj int) *mat.Dense {
 		d := mat.NewDense(heavy, heavy, nil)
 		for i := range heavy {
@@ -408,4 +399,23 @@ func TestCancelStopsWithCause(t *testing.T) {
 	if !errors.Is(err, reason) {
 		t.Errorf("got %v, want the cause", err)
 	}
+}
+
+func ExampleLowest() {
+	// Three unit masses in a row, joined by two unit springs, free in space.
+	a := sparse.NewAssembler(3, [][]int32{{0, 1}, {1, 2}})
+	for e := range 2 {
+		a.Add(e, []float64{1, -1, 1})
+	}
+	k := a.Matrix()
+	res, err := eigen.Lowest(context.Background(), k, trial.Identity(3), sparse.MinimumDegree(k.Pattern()), eigen.Options{Limit: 2})
+	if err != nil {
+		fmt.Println(err)
+		return
+	}
+	fmt.Printf("%.6f, none missed: %v\n", math.Abs(res.Values[0]), res.Status.Proved)
+	fmt.Printf("%.6f, end masses move by %.6f\n", res.Values[1], math.Abs(res.Vectors[1][0]))
+	// Output:
+	// 0.000000, none missed: true
+	// 1.000000, end masses move by 0.707107
 }

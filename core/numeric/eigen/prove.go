@@ -255,7 +255,7 @@ func (s *solver) gap() (shift float64, ok bool) {
 		return 0, false
 	}
 	// Null values differ by rounding alone; there is no counting between them.
-	rounding := max(1e-12*s.p.scale(), 1e-3*-s.p.shift)
+	rounding := max(1e-12*s.p.scale(), 1e-6*-s.p.shift)
 	for k := max(s.wanted(), 1); k < n; k++ {
 		if lo, hi := values[k-1], values[k]; hi-lo > max(least*hi, rounding) {
 			return (lo + hi) / 2, true
@@ -264,7 +264,7 @@ func (s *solver) gap() (shift float64, ok bool) {
 	last := values[n-1]
 	if st.Exhausted {
 		// If these are all that exist, there are no more below a much higher shift.
-		return 1e3 * max(last, -s.p.shift), true
+		return max(10*last, -1e3*s.p.shift, s.p.scale()), true
 	}
 	return last + max(1e-3*last, -0.5*s.p.shift), true
 }

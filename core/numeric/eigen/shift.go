@@ -92,10 +92,13 @@ func (s *solver) betterShift(q *search) float64 {
 	const rigid = 6
 	sigma, least := s.p.shift, leastShift*s.p.scale()
 	// However inexact, the k-th Ritz value is no less than the k-th eigenvalue (Courant and Fischer), so that the
-	// first one beyond the rigid ones is a bound.
-	if len(q.pairs) > rigid && q.pairs[rigid].theta > 0 {
-		if bound := max(q.value(rigid), least); -sigma > farthest*bound {
-			return -bound
+	// first one beyond the rigid ones is a bound. Zero is none: there may be more than six null vectors.
+	for k := rigid; k < len(q.pairs) && q.pairs[k].theta > 0; k++ {
+		if v := q.value(k); v > 1e-6*-sigma {
+			if bound := max(v, least); -sigma > farthest*bound {
+				return -bound
+			}
+			break
 		}
 	}
 	// From too near, the lowest values come at once, and nothing but an elastic one known well counts.

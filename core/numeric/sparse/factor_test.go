@@ -15,16 +15,6 @@ import (
 	"hushframe/core/numeric/trial"
 )
 
-func dense(s *sparse.Symmetric) *mat.SymDense {
-	d := mat.NewSymDense(s.N, nil)
-	for j := range s.N {
-		for p := s.Ptr[j]; p < s.Ptr[j+1]; p++ {
-			d.SetSym(int(s.Row[p]), j, s.Val[p])
-		}
-	}
-	return d
-}
-
 // randomSymmetric is a random sparse symmetric matrix, indefinite.
 func randomSymmetric(r *rand.Rand, n, elements int) *sparse.Symmetric {
 	e, packed := randomElements(r, n, elements)
@@ -58,7 +48,7 @@ func solves(t *testing.T, s *sparse.Symmetric, f *sparse.Factor, tol float64) {
 	}
 	f.Solve(x, nrhs)
 	var want mat.Dense
-	if err := want.Solve(dense(s), b); err != nil {
+	if err := want.Solve(trial.Full(s), b); err != nil {
 		t.Fatal(err)
 	}
 	size := mat.Norm(&want, math.Inf(1))
@@ -97,7 +87,7 @@ func TestInertiaAgreesWithDenseEigenvalues(t *testing.T) {
 	const n = 90
 	a := randomSymmetric(r, n, 120)
 	var e mat.EigenSym
-	if !e.Factorize(dense(a), false) {
+	if !e.Factorize(trial.Full(a), false) {
 		t.Fatal("dense eigenvalues failed")
 	}
 	values := e.Values(nil)
@@ -139,7 +129,7 @@ func TestIndefiniteDenseBlockIsStable(t *testing.T) {
 	}
 	solves(t, s, f, 1e-10)
 	var eig mat.EigenSym
-	eig.Factorize(dense(s), false)
+	eig.Factorize(trial.Full(s), false)
 	want := 0
 	for _, v := range eig.Values(nil) {
 		if v < 0 {

@@ -4,6 +4,8 @@ import (
 	"math"
 	"slices"
 
+	"gonum.org/v1/gonum/mat"
+
 	"hushframe/core/numeric/sparse"
 )
 
@@ -66,6 +68,17 @@ func Diagonal(d []float64) *sparse.Symmetric {
 		s.Ptr[i+1], s.Row[i] = i+1, int32(i)
 	}
 	return s
+}
+
+// Full returns the matrix in dense form.
+func Full(s *sparse.Symmetric) *mat.SymDense {
+	d := mat.NewSymDense(s.N, nil)
+	for j := range s.N {
+		for p := s.Ptr[j]; p < s.Ptr[j+1]; p++ {
+			d.SetSym(int(s.Row[p]), j, s.Val[p])
+		}
+	}
+	return d
 }
 
 // Identity returns the unit matrix.
