@@ -17,7 +17,8 @@ type Mode struct {
 	Strength float64
 }
 
-// ModeOptions are Options with the spread of damping. The zero value of each field means its default.
+// ModeOptions are Options with the spread of damping. A peak is seen on one axis at a time, a mode with its whole direction,
+// so Turning counts for more. The zero value of each field means its default.
 type ModeOptions struct {
 	Options
 	// DampingSpread is the standard deviation of ln(ζp/ζo) that a prediction of damping is trusted to; default ln 2.
@@ -28,6 +29,7 @@ type ModeOptions struct {
 
 // The defaults of ModeOptions.
 const (
+	DefaultModeTurning   = 18 // w: directions 60° apart cost as much as the default cut
 	DefaultDampingSpread = math.Ln2
 	DefaultFaint         = 0.1
 )
@@ -45,6 +47,9 @@ func Agreement(a, b []float64) float64 {
 // θ' is the angle between the directions, less its standard error; sζ² the squares of DampingSpread and of the relative error
 // of ζ added; v = x²/(x²+Faint²) is how likely a mode of relative strength x is seen, and is that of the predicted mode. It panics as Pairs.
 func Modes(predicted, observed []Mode, o ModeOptions) Result {
+	if o.Turning == 0 {
+		o.Turning = DefaultModeTurning
+	}
 	o.Options = o.filled()
 	if o.DampingSpread == 0 {
 		o.DampingSpread = DefaultDampingSpread

@@ -38,10 +38,18 @@ of its peaks and the case that they do not belong together (exp(-9/2)).
 
 The level of the prediction rests on an assumed source, so one factor per axis is
 fitted to it, in the logarithm of the density over the band without the masked
-parts. The factor moves no peak.`,
+parts. The factor moves no peak.
+
+Every observed peak in the band gets a verdict: structure, rotor order, loop, alias
+or unknown, with the reason. Modes identified in flight, where given, decide first,
+since rotor orders were taken out before they were found. With the modes of the
+frame they are paired by frequency, gyro direction, damping and gyro strength.`,
 		Arguments: []stage.Argument{
 			{Name: "predicted", About: "response from sweep", Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"response"}}, Required: true, Example: "stage.flight.response"},
 			{Name: "observed", About: "spectra from record", Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"spectra"}}, Required: true, Example: "stage.hover.spectra"},
+			{Name: "identified", About: "modes found in flight, from identify; with modes, they are paired with those of the frame",
+				Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"identified"}}, Example: "stage.inflight.identified"},
+			{Name: "modes", About: "modes of the frame, from solve", Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"modes"}}, Example: "stage.modes.modes"},
 			{Name: "band", About: "lowest and highest frequency compared; left out, 80 Hz to 0.4 of the sample rate",
 				Type: stage.Type{Kind: stage.List, Element: &frequency}, Example: `["80 Hz", "800 Hz"]`},
 			{Name: "orders", About: "rotor orders to mask besides blade passing", Type: stage.Type{Kind: stage.List, Element: &number},
@@ -65,6 +73,11 @@ parts. The factor moves no peak.`,
 			{Name: "unpaired_observed", About: "observed peaks without a partner", Type: whole},
 			{Name: "masked_predicted", About: "predicted peaks without a partner where a rotor order may be", Type: whole},
 			{Name: "masked_observed", About: "observed peaks where a rotor order may be", Type: whole},
+			{Name: "modes_paired", About: "number of pairs of modes; 0 where no identified modes were given", Type: whole},
+			{Name: "modes_largest_error", About: "largest relative frequency error of a pair of modes, without sign; not a number without pairs", Type: number},
+			{Name: "modes_median_error", About: "median of the same", Type: number},
+			{Name: "modes_unpaired", About: "identified modes without a partner", Type: whole},
+			{Name: "unknown", About: "observed peaks with the verdict unknown", Type: whole},
 			{Name: "pairs", About: "pairs as objects with axis, predicted, observed, error, confidence and modes", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}},
 		},
 	}
@@ -72,6 +85,7 @@ parts. The factor moves no peak.`,
 		d.Figures = append(d.Figures,
 			stage.Figure{Name: "scale_" + axis, About: "factor on the predicted density of " + axis + "; not a number if the axis was not recorded", Type: number},
 			stage.Figure{Name: "residual_" + axis, About: "root mean square of what is left of the ratio after it, in dB", Type: number},
+			stage.Figure{Name: "assurance_" + axis, About: "likeness of the two amplitude spectra whatever their levels, 0 to 1", Type: number},
 		)
 	}
 	return d
@@ -113,23 +127,24 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 		return nil, err
 	}
 	call.Report.Progress("read", -1)
-	a, err := artifact.Open(call.Inputs["predicted"][0].Folder, kinds.Registry())
+	predicted, err := input(call, "predicted", kinds.DecodeResponse)
 	if err != nil {
 		return nil, err
 	}
-	predicted, err := kinds.DecodeResponse(a)
+	observed, err := input(call, "observed", kinds.DecodeSpectra)
 	if err != nil {
 		return nil, err
 	}
-	if a, err = artifact.Open(call.Inputs["observed"][0].Folder, kinds.Registry()); err != nil {
+	identified, err := input(call, "identified", kinds.DecodeIdentified)
+	if err != nil {
 		return nil, err
 	}
-	observed, err := kinds.DecodeSpectra(a)
+	modes, err := input(call, "modes", kinds.DecodeModes)
 	if err != nil {
 		return nil, err
 	}
 	call.Report.Progress("pair", -1)
-	c, err := compare(predicted, observed, set)
+	c, err := compare(predicted, observed, modes, identified, set)
 	if err != nil {
 		return nil, err
 	}
@@ -138,4 +153,17 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 		return nil, err
 	}
 	return outcome(c, observed), nil
+}
+
+// input reads an artifact; nil if the job gives none.
+func input[T any](call *stage.Call, name string, decode func(*artifact.Artifact) (*T, error)) (*T, error) {
+	given := call.Inputs[name]
+	if len(given) == 0 {
+		return nil, nil
+	}
+	a, err := artifact.Open(given[0].Folder, kinds.Registry())
+	if err != nil {
+		return nil, err
+	}
+	return decode(a)
 }

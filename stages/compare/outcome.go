@@ -46,16 +46,17 @@ func outcome(c *kinds.Comparison, observed *kinds.Spectra) *stage.Outcome {
 		},
 		Notes:    c.Notes,
 		Warnings: warnings(c, observed),
-		Summary:  []stage.Section{pairTable(c), levelTable(c)},
+		Summary:  append(modeTables(c), pairTable(c), levelTable(c), verdictTable(c)),
 	}
+	modeFigures(o, c)
 	for _, axis := range kinds.AxisNames {
-		scale, residual := math.NaN(), math.NaN()
+		scale, residual, assurance := math.NaN(), math.NaN(), math.NaN()
 		for _, a := range c.Axes {
 			if a.Axis == axis {
-				scale, residual = a.Scale, a.Residual
+				scale, residual, assurance = a.Scale, a.Residual, a.Assurance
 			}
 		}
-		o.Figures["scale_"+axis], o.Figures["residual_"+axis] = scale, residual
+		o.Figures["scale_"+axis], o.Figures["residual_"+axis], o.Figures["assurance_"+axis] = scale, residual, assurance
 	}
 	if len(c.Unpaired) > 0 {
 		o.Summary = append(o.Summary, aloneTable("Peaks without a partner", c.Unpaired))
@@ -149,11 +150,11 @@ func levelTable(c *kinds.Comparison) stage.Section {
 		Title: "Level of the prediction",
 		Text:  "one factor per axis on the predicted density, fitted in its logarithm without the masked bands; the source is assumed, so its level is free",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "factor", Right: true}, {Name: "dB", Right: true}, {Name: "left over, dB", Right: true},
-			{Name: "bins", Right: true}},
+			{Name: "likeness", Right: true}, {Name: "bins", Right: true}},
 	}
 	for _, a := range c.Axes {
 		t.Rows = append(t.Rows, []string{a.Axis, fmt.Sprintf("%.3g", a.Scale), fmt.Sprintf("%+.1f", 10*math.Log10(a.Scale)),
-			fmt.Sprintf("%.1f", a.Residual), fmt.Sprint(a.Bins)})
+			fmt.Sprintf("%.1f", a.Residual), fmt.Sprintf("%.2f", a.Assurance), fmt.Sprint(a.Bins)})
 	}
 	return t
 }

@@ -15,7 +15,7 @@ import (
 const nearLoop = 1.5
 
 // compare pairs the peaks of every axis that was recorded.
-func compare(predicted *kinds.Response, observed *kinds.Spectra, set settings) (*kinds.Comparison, error) {
+func compare(predicted *kinds.Response, observed *kinds.Spectra, modes *kinds.Modes, identified *kinds.Identified, set settings) (*kinds.Comparison, error) {
 	c := &kinds.Comparison{From: 80, To: 0.4 * observed.Rate, Tolerance: set.tolerance, Reach: set.reach}
 	if len(set.band) == 2 {
 		c.From, c.To = set.band[0], set.band[1]
@@ -36,11 +36,18 @@ func compare(predicted *kinds.Response, observed *kinds.Spectra, set settings) (
 			continue
 		}
 		pairAxis(c, name, predicted, observed, at, set)
+		judge(c, name, observed, at, identified, set)
 		c.Axes = append(c.Axes, curves(c, axis, predicted, observed, at))
 	}
 	if len(c.Axes) == 0 {
 		return nil, fault.New(fault.Input, "the recording has no angular rate on roll, pitch or yaw").In("compare", "").Of("observed").
 			Do("name the columns of the gyro in columns of record")
+	}
+	switch {
+	case identified != nil && modes != nil:
+		pairModes(c, modes, identified, set)
+	case identified != nil:
+		c.Notes = append(c.Notes, "no modes were given, so the identified ones were not paired; give modes from solve")
 	}
 	sortAlone(c.Unpaired)
 	sortAlone(c.Masked)
@@ -105,7 +112,7 @@ func pairAxis(c *kinds.Comparison, name string, predicted *kinds.Response, obser
 		if o.Narrow {
 			reason += "; as narrow as the window shows a line"
 		}
-		c.Unpaired = append(c.Unpaired, alone(name, o, reason))
+		c.Unpaired = append(c.Unpaired, alone(name, o, withOrders(reason, observed, c.Orders, o.Frequency)))
 	}
 }
 
@@ -162,6 +169,7 @@ func curves(c *kinds.Comparison, axis int, predicted *kinds.Response, observed *
 	out.Predicted = match.Resample(predicted.Frequency, predicted.Density[axis], out.Frequency)
 	level := match.Scale(out.Predicted, out.Observed, use)
 	out.Scale, out.Residual, out.Bins = level.Factor, level.Residual, level.Bins
+	out.Assurance = match.Assurance(out.Predicted, out.Observed, use)
 	if level.Bins == 0 {
 		c.Notes = append(c.Notes, "no bin of "+out.Axis+" is left to fit a level to")
 	}

@@ -10,8 +10,8 @@ import (
 // neither of the two.
 var ComparisonKind = artifact.Kind{
 	Name:    "comparison",
-	Version: 1,
-	About:   "predicted and observed peaks, paired, unpaired and masked, with one scale factor per axis",
+	Version: 2,
+	About:   "predicted and observed peaks and modes, paired and alone, a verdict on every observed peak, and one scale factor per axis",
 	Scalars: []artifact.Column{
 		{Name: "from", Type: artifact.Float, Unit: "Hz", About: "lower end of the band compared"},
 		{Name: "to", Type: artifact.Float, Unit: "Hz", About: "upper end of the band compared"},
@@ -23,6 +23,7 @@ var ComparisonKind = artifact.Kind{
 			{Name: "axis", Type: artifact.Text, About: "roll, pitch or yaw"},
 			{Name: "scale", Type: artifact.Float, Unit: "1", About: "factor on the predicted density that fits the observed one best in the logarithm; NaN if no bin is left"},
 			{Name: "residual", Type: artifact.Float, Unit: "dB", About: "root mean square of what is left after it"},
+			{Name: "assurance", Type: artifact.Float, Unit: "1", About: "likeness of the two amplitude spectra whatever their levels, 0 to 1; NaN if no bin is left"},
 			{Name: "bins", Type: artifact.Int, About: "bins it rests on"},
 			{Name: "frequency", Type: artifact.FloatList, Unit: "Hz", About: "frequencies of the two curves"},
 			{Name: "predicted", Type: artifact.FloatList, Unit: "(rad/s)^2/Hz", About: "predicted density, without the factor"},
@@ -60,6 +61,34 @@ var ComparisonKind = artifact.Kind{
 			{Name: "modes", Type: artifact.IntList, About: "modes that make a predicted peak"},
 			{Name: "reason", Type: artifact.Text, About: "the orders whose bands it lies in"},
 		}},
+		{Name: "verdicts", About: "what every observed peak in the band is taken for, by axis and frequency", Columns: []artifact.Column{
+			{Name: "axis", Type: artifact.Text, About: "roll, pitch or yaw"},
+			{Name: "frequency", Type: artifact.Float, Unit: "Hz", About: ""},
+			{Name: "density", Type: artifact.Float, Unit: "(rad/s)^2/Hz", About: ""},
+			{Name: "verdict", Type: artifact.Text, About: "structure, rotor order, loop, alias or unknown"},
+			{Name: "reason", Type: artifact.Text, About: "in words"},
+		}},
+		{Name: "mode_pairs", About: "predicted modes and modes identified in flight, by predicted frequency", Columns: []artifact.Column{
+			{Name: "mode", Type: artifact.Int, About: "number of the predicted mode"},
+			{Name: "predicted", Type: artifact.Float, Unit: "Hz", About: "predicted frequency"},
+			{Name: "observed", Type: artifact.Float, Unit: "Hz", About: "identified frequency"},
+			{Name: "observed_error", Type: artifact.Float, Unit: "Hz", About: "standard error of the identified frequency"},
+			{Name: "error", Type: artifact.Float, Unit: "1", About: "predicted over identified frequency, less one"},
+			{Name: "agreement", Type: artifact.Float, Unit: "1", About: "squared cosine of the angle between the two gyro directions"},
+			{Name: "predicted_damping", Type: artifact.Float, Unit: "1", About: "damping ratio"},
+			{Name: "observed_damping", Type: artifact.Float, Unit: "1", About: "damping ratio"},
+			{Name: "observed_damping_error", Type: artifact.Float, Unit: "1", About: "standard error"},
+			{Name: "confidence", Type: artifact.Float, Unit: "1", About: "0 to 1, as core/match states it"},
+		}},
+		{Name: "modes_alone", About: "modes without a partner, predicted first, by frequency", Columns: []artifact.Column{
+			{Name: "side", Type: artifact.Text, About: "predicted or observed"},
+			{Name: "mode", Type: artifact.Int, About: "number of a predicted mode, 0 for an observed one"},
+			{Name: "frequency", Type: artifact.Float, Unit: "Hz", About: ""},
+			{Name: "damping", Type: artifact.Float, Unit: "1", About: "damping ratio"},
+			{Name: "direction", Type: artifact.FloatList, Unit: "1", About: "gyro direction over roll, pitch, yaw"},
+			{Name: "strength", Type: artifact.Float, Unit: "1", About: "gyro strength over that of the strongest mode in the band; NaN for an observed one"},
+			{Name: "reason", Type: artifact.Text, About: "why it has no partner"},
+		}},
 		{Name: "orders", About: "the bands that were masked", Columns: SpectraKind.Table("orders").Columns},
 		{Name: "notes", About: "what a reader of the comparison should know", Columns: []artifact.Column{
 			{Name: "text", Type: artifact.Text, About: ""},
@@ -76,14 +105,54 @@ type Comparison struct {
 	Pairs    []ComparisonPair
 	Unpaired []ComparisonPeak
 	Masked   []ComparisonPeak
-	Orders   []OrderBand
-	Notes    []string
+	Verdicts []Verdict
+	// ModePairs and ModesAlone are empty where no identified modes were given.
+	ModePairs  []ModePair
+	ModesAlone []ModeAlone
+	Orders     []OrderBand
+	Notes      []string
+}
+
+// The verdicts on an observed peak.
+const (
+	VerdictStructure = "structure"
+	VerdictOrder     = "rotor order"
+	VerdictLoop      = "loop"
+	VerdictAlias     = "alias"
+	VerdictUnknown   = "unknown"
+)
+
+// Verdict says what an observed peak is taken for.
+type Verdict struct {
+	Axis               string
+	Frequency, Density float64
+	Verdict, Reason    string
+}
+
+// ModePair is a predicted mode and the identified one taken for the same.
+type ModePair struct {
+	Mode                                  int
+	Predicted, Observed, ObservedError    float64
+	Error, Agreement                      float64
+	PredictedDamping                      float64
+	ObservedDamping, ObservedDampingError float64
+	Confidence                            float64
+}
+
+// ModeAlone is a mode without a partner.
+type ModeAlone struct {
+	Side               string
+	Mode               int
+	Frequency, Damping float64
+	Direction          []float64
+	Strength           float64
+	Reason             string
 }
 
 // ComparisonAxis is one axis with its two curves.
 type ComparisonAxis struct {
 	Axis                           string
-	Scale, Residual                float64
+	Scale, Residual, Assurance     float64
 	Bins                           int
 	Frequency, Predicted, Observed []float64
 }
@@ -121,6 +190,7 @@ func EncodeComparison(c *Comparison) *artifact.Artifact {
 		Set("axis", list(c.Axes, func(x ComparisonAxis) string { return x.Axis })).
 		Set("scale", list(c.Axes, func(x ComparisonAxis) float64 { return x.Scale })).
 		Set("residual", list(c.Axes, func(x ComparisonAxis) float64 { return x.Residual })).
+		Set("assurance", list(c.Axes, func(x ComparisonAxis) float64 { return x.Assurance })).
 		Set("bins", list(c.Axes, func(x ComparisonAxis) int64 { return int64(x.Bins) })).
 		Set("frequency", list(c.Axes, func(x ComparisonAxis) []float64 { return x.Frequency })).
 		Set("predicted", list(c.Axes, func(x ComparisonAxis) []float64 { return x.Predicted })).
@@ -140,6 +210,7 @@ func EncodeComparison(c *Comparison) *artifact.Artifact {
 		Set("modes", list(c.Pairs, func(x ComparisonPair) []int64 { return ints(x.Modes) }))
 	setPeaks(a.Table("unpaired"), c.Unpaired)
 	setPeaks(a.Table("masked"), c.Masked)
+	setVerdicts(a, c)
 	setOrders(a.Table("orders"), c.Orders)
 	a.Table("notes").Set("text", append([]string{}, c.Notes...))
 	return a
@@ -154,7 +225,7 @@ func DecodeComparison(a *artifact.Artifact) (*Comparison, error) {
 	t := a.Table("axes")
 	for i := range t.Rows() {
 		x := ComparisonAxis{
-			Axis: t.Texts("axis")[i], Scale: t.Floats("scale")[i], Residual: t.Floats("residual")[i], Bins: int(t.Ints("bins")[i]),
+			Axis: t.Texts("axis")[i], Scale: t.Floats("scale")[i], Residual: t.Floats("residual")[i], Assurance: t.Floats("assurance")[i], Bins: int(t.Ints("bins")[i]),
 			Frequency: t.FloatLists("frequency")[i], Predicted: t.FloatLists("predicted")[i], Observed: t.FloatLists("observed")[i],
 		}
 		if len(x.Predicted) != len(x.Frequency) || len(x.Observed) != len(x.Frequency) {
@@ -174,6 +245,7 @@ func DecodeComparison(a *artifact.Artifact) (*Comparison, error) {
 	}
 	c.Unpaired = peaks(a.Table("unpaired"))
 	c.Masked = peaks(a.Table("masked"))
+	decodeVerdicts(a, c)
 	c.Orders = orders(a.Table("orders"))
 	c.Notes = a.Table("notes").Texts("text")
 	return c, nil

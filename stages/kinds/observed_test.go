@@ -53,15 +53,19 @@ func TestSpectraRefusesWhatDoesNotFit(t *testing.T) {
 func TestComparisonRoundTrip(t *testing.T) {
 	want := &Comparison{
 		From: 80, To: 800, Tolerance: 0.05, Reach: 0.2,
-		Axes: []ComparisonAxis{{Axis: "pitch", Scale: 2, Residual: 3, Bins: 4, Frequency: []float64{1, 2},
+		Axes: []ComparisonAxis{{Axis: "pitch", Scale: 2, Residual: 3, Assurance: 0.7, Bins: 4, Frequency: []float64{1, 2},
 			Predicted: []float64{3, 4}, Observed: []float64{5, 6}}},
 		Pairs: []ComparisonPair{{Axis: "pitch", Predicted: 100, Observed: 99, ObservedError: 0.1, Error: 0.0101,
 			Confidence: 0.9, PredictedDensity: 1, ObservedDensity: 2, PredictedDamping: 0.01, ObservedDamping: 0.02,
 			ObservedDampingError: 0.003, Modes: []int{2, 1}}},
 		Unpaired: []ComparisonPeak{{Side: Observed, Axis: "pitch", Frequency: 130, Density: 1, Damping: 0.02, Modes: []int{}, Reason: "none near"}},
 		Masked:   []ComparisonPeak{{Side: Predicted, Axis: "pitch", Frequency: 267, Density: 1, Damping: 0.02, Modes: []int{3}, Reason: "order 1"}},
-		Orders:   []OrderBand{{Rotor: "fr", Order: 1, Low: 250, High: 280, Share: 0.98}},
-		Notes:    []string{"a note"},
+		Verdicts: []Verdict{{Axis: "pitch", Frequency: 130, Density: 1, Verdict: VerdictUnknown, Reason: "r"}},
+		ModePairs: []ModePair{{Mode: 4, Predicted: 100, Observed: 98, ObservedError: 0.2, Error: 0.02, Agreement: 0.99,
+			PredictedDamping: 0.01, ObservedDamping: 0.02, ObservedDampingError: 0.003, Confidence: 0.8}},
+		ModesAlone: []ModeAlone{{Side: Predicted, Mode: 5, Frequency: 120, Damping: 0.01, Direction: []float64{1, 0, 0}, Strength: 0.3, Reason: "none"}},
+		Orders:     []OrderBand{{Rotor: "fr", Order: 1, Low: 250, High: 280, Share: 0.98}},
+		Notes:      []string{"a note"},
 	}
 	a := EncodeComparison(want)
 	if err := a.Check(); err != nil {
