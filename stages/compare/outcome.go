@@ -113,7 +113,7 @@ func pairTable(c *kinds.Comparison) stage.Section {
 		Title: "Predicted and observed peaks",
 		Text:  fmt.Sprintf("%d pairs from %.4g to %.4g Hz", len(c.Pairs), c.From, c.To),
 		Columns: []stage.Column{{Name: "axis"}, {Name: "predicted, Hz", Right: true}, {Name: "observed, Hz", Right: true}, {Name: "±", Right: true},
-			{Name: "error, %", Right: true}, {Name: "confidence", Right: true}, {Name: "damping predicted, %", Right: true}, {Name: "observed, %", Right: true}, {Name: "modes"}},
+			{Name: "error, %", Right: true}, {Name: "confidence", Right: true}, {Name: "damping, %", Right: true}, {Name: "observed, %", Right: true}, {Name: "modes"}},
 	}
 	for _, p := range c.Pairs {
 		t.Rows = append(t.Rows, []string{p.Axis, fmt.Sprintf("%.1f", p.Predicted), fmt.Sprintf("%.1f", p.Observed), fmt.Sprintf("%.2f", p.ObservedError),
@@ -148,7 +148,7 @@ func modes(numbers []int) string {
 func levelTable(c *kinds.Comparison) stage.Section {
 	t := stage.Section{
 		Title: "Level of the prediction",
-		Text:  "one factor per axis on the predicted density, fitted in its logarithm without the masked bands; the source is assumed, so its level is free",
+		Text:  "one factor per axis on the predicted density, whose source is assumed; fitted outside the masked bands",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "factor", Right: true}, {Name: "dB", Right: true}, {Name: "left over, dB", Right: true},
 			{Name: "likeness", Right: true}, {Name: "bins", Right: true}},
 	}

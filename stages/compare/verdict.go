@@ -9,8 +9,8 @@ import (
 )
 
 const (
-	// onAxis is the least component of an identified mode along an axis on which it makes a peak.
-	onAxis = 0.3
+	// onAxis is the least component of an identified mode along an axis on which it makes a peak; it must also be twice its error.
+	onAxis = 0.1
 	// wideBand is the width in Hz above which being in the band of an order says little; common practice.
 	wideBand = 40
 )
@@ -31,7 +31,7 @@ func verdict(c *kinds.Comparison, axis string, o kinds.SpectraPeak, observed *ki
 	masked, others := holding(c.Orders, o.Frequency), holding(observed.Orders, o.Frequency)
 	order := func(where, text string) (string, string) {
 		if onlyFolded(observed.Orders, o.Frequency) {
-			return kinds.VerdictAlias, text + where + ", which lies above half the sample rate and appears mirrored here"
+			return kinds.VerdictAlias, text + where + ", mirrored about half the sample rate"
 		}
 		return kinds.VerdictOrder, text + where
 	}
@@ -39,6 +39,8 @@ func verdict(c *kinds.Comparison, axis string, o kinds.SpectraPeak, observed *ki
 	switch {
 	case o.Frequency <= set.loop:
 		return kinds.VerdictLoop, fmt.Sprintf("below %.4g Hz, where the rate loop acts", set.loop)
+	case mode != nil && identified.Span > 0 && masked != "" && math.Abs(mode.Frequency-o.Frequency) > max(3*mode.FrequencyError, 0.01*mode.Frequency):
+		return order(masked, fmt.Sprintf("on the flank of the mode at %.1f Hz, where there is ", mode.Frequency))
 	case mode != nil && identified.Span > 0: // the orders were taken out before it was found
 		text := fmt.Sprintf("a mode was identified at %.1f Hz with %.1f %% damping", mode.Frequency, 100*mode.Damping)
 		if others != "" {
@@ -81,7 +83,7 @@ func structureAt(identified *kinds.Identified, axis string, o kinds.SpectraPeak)
 			continue
 		}
 		for k, channel := range identified.Channels {
-			if channel.Axis != axis || math.Abs(m.Direction[k]) < onAxis {
+			if channel.Axis != axis || math.Abs(m.Direction[k]) < max(onAxis, 2*m.DirectionError) {
 				continue
 			}
 			off := math.Abs(m.Frequency - o.Frequency)

@@ -87,8 +87,8 @@ func orderShare(x *kinds.Identified) float64 {
 func modeTable(x *kinds.Identified) stage.Section {
 	t := stage.Section{
 		Title: "Modes found in flight",
-		Text: fmt.Sprintf("%.4g to %.4g Hz, %.5g s to %.5g s, models up to order %d; ± is one standard error", x.From, x.To, x.Start, x.End, x.Order) +
-			"; \"by peak\" is from the decay behind the peak of the cross spectra",
+		Text: fmt.Sprintf("%.4g to %.4g Hz, %.5g s to %.5g s, models to order %d; ± is one standard error; by peak: from the cross spectra",
+			x.From, x.To, x.Start, x.End, x.Order),
 		Columns: []stage.Column{{Name: "Hz", Right: true}, {Name: "±", Right: true}, {Name: "damping, %", Right: true}, {Name: "±", Right: true}},
 	}
 	for _, c := range x.Channels {

@@ -305,7 +305,7 @@ func (m *Mode) judge(r Record, s Settings, d *Decomposition) {
 	case m.Kurtosis < steadyBelow:
 		set(Line, "steady in amplitude: kurtosis %.2f, where the response to noise has 3", m.Kurtosis)
 	case in:
-		set(Doubtful, "narrow, and where a line was taken out from %.1f to %.1f Hz: it may be what is left of it", b.Low, b.High)
+		set(Doubtful, "narrow, and a line was taken out there, %.1f to %.1f Hz: maybe its remains", b.Low, b.High)
 	case m.Share < enoughOrders:
 		set(Doubtful, "only %.0f %% of the models have it", 100*m.Share)
 	case m.FrequencyError > sureFrequency*m.Frequency:
