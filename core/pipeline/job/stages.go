@@ -280,8 +280,14 @@ func (s *Stage) Evaluate(figures Figures) (stage.Arguments, map[string][]Artifac
 	return arguments, inputs, diags
 }
 
-// sound reports whether every stage it refers to could be described.
+// sound reports whether every setting has a value and every stage it refers to
+// could be described; what is missing otherwise has been reported already.
 func (s *Stage) sound() bool {
+	for _, v := range s.scope.settings {
+		if !v.IsWhollyKnown() {
+			return false
+		}
+	}
 	for _, u := range s.uses {
 		if st, ok := s.scope.stages[u.label]; !ok || !st.described {
 			return false

@@ -19,3 +19,9 @@ setting "element" {
   value   = "linear"
   choices = ["linear", "quadratic"]
 }
+
+# What uses a wrong setting is not another mistake.
+stage "import" "frame" {
+  airframe = "../good/airframe.hcl"
+  with     = { thickness = setting.thickness }
+}
