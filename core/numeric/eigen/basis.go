@@ -32,8 +32,10 @@ const negligible = 1e-13
 // which were kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
 // w = V·c + Q·r up to what is negligible. w is used as scratch.
 //
-// Projections are done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem), and once
-// more when the vectors of the block turn out to be nearly dependent.
+// Projections are always done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem): what
+// one leaves along the old vectors is their own want of orthogonality times the size of w, and would grow from step to
+// step by the ratio of w to what is left of it. They are repeated once more when the vectors of the block turn out to be
+// nearly dependent.
 func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
 	began := time.Now()
 	defer func() { b.p.stats.OrthogonalSeconds += time.Since(began).Seconds() }()
