@@ -4,6 +4,7 @@
 //   - peaks: local maxima of a power spectrum, their frequency, width and uncertainty
 //   - order: the frequency bands that rotor orders occupy in a recording, and what is left without them
 //   - identify: modes without known force, by subspace identification and frequency-domain decomposition
+//   - filter: what chains of filters buy and cost
 //   - recording: the interface of recording readers, and the checks on a time column
 //
 // Everything is in SI units. Frequencies are in hertz, sample rates in samples per second (also written Hz). Power
