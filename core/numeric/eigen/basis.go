@@ -32,11 +32,12 @@ const negligible = 1e-13
 // which were kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
 // w = V·c + Q·r up to what is negligible. w is used as scratch.
 //
-// Projections are always done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem): what
-// one leaves along the old vectors is their own want of orthogonality times the size of w, and would grow from step to
-// step by the ratio of w to what is left of it. They are repeated once more when the vectors of the block turn out to be
-// nearly dependent.
-func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
+// Projections are done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem): what one
+// leaves along the old vectors is their own want of orthogonality times the part it removed, and would grow from step to
+// step. The first is on the vectors from the given one on; when w has hardly anything along those before, as the
+// recurrence of Lanczos promises, the second serves them as well. Both are repeated when the vectors of the block turn
+// out to be nearly dependent.
+func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64) {
 	began := time.Now()
 	defer func() { b.p.stats.OrthogonalSeconds += time.Since(began).Seconds() }()
 	n, old := b.n, b.count
@@ -51,11 +52,11 @@ func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
 		}
 		before[i] = math.Sqrt(max(0, square))
 	}
-	b.project(w, z, count, c)
-	b.project(w, z, count, c)
+	b.project(w, z, count, from, c)
+	b.project(w, z, count, 0, c)
 	keep, r, shrunk := b.gramSchmidt(w, z, count, before)
 	for pass := 0; shrunk && pass < 3; pass++ {
-		b.project(w, z, len(keep), make([]float64, old*len(keep)))
+		b.project(w, z, len(keep), 0, make([]float64, old*len(keep)))
 		var again []int
 		var r2 []float64
 		again, r2, shrunk = b.gramSchmidt(w, z, len(keep), slices.Repeat([]float64{1}, len(keep)))
@@ -70,19 +71,21 @@ func (b *basis) append(w []float64, count int) (keep []int, c, r []float64) {
 	return keep, c, r
 }
 
-// project subtracts from w its part in the basis, adds the coefficients to c and renews z = M·w.
-func (b *basis) project(w, z []float64, count int, c []float64) {
-	if b.count > 0 && count > 0 {
-		g := make([]float64, b.count*count)
-		dense.Gram(b.count, count, b.n, b.v, z, g, b.p.threads)
+// project subtracts from w its part along the vectors from the given one on, adds the coefficients to c and renews z =
+// M·w.
+func (b *basis) project(w, z []float64, count, from int, c []float64) {
+	if old := b.count - from; old > 0 && count > 0 {
+		v := b.v[from*b.n:]
+		g := make([]float64, old*count)
+		dense.Gram(old, count, b.n, v, z, g, b.p.threads)
 		t := make([]float64, len(g))
-		for i := range b.count {
+		for i := range old {
 			for j := range count {
-				c[i*count+j] += g[i*count+j]
-				t[j*b.count+i] = g[i*count+j]
+				c[(from+i)*count+j] += g[i*count+j]
+				t[j*old+i] = g[i*count+j]
 			}
 		}
-		dense.AddCombined(count, b.count, b.n, -1, t, b.v, w, b.p.threads)
+		dense.AddCombined(count, old, b.n, -1, t, v, w, b.p.threads)
 	}
 	b.p.mass(z, w, count)
 }

@@ -120,7 +120,7 @@ func (s *solver) finish(q *search) *pairs {
 				clear(y[k*n:][:n]) // no mass: rounding has made it a null vector of M
 			}
 		}
-		keep, _, _ := b.append(y, size)
+		keep, _, _ := b.append(y, size, 0)
 		for _, k := range keep {
 			out.values = append(out.values, values[k])
 			out.residuals = append(out.residuals, residuals[k])

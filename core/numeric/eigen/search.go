@@ -33,6 +33,7 @@ type search struct {
 
 	h          []float64 // operator on the vectors beyond the locked ones, upper triangle, room by room
 	start, end int       // last block, counted without the locked ones
+	coupled    int       // first vector of the basis to which the recurrence couples the last block
 	pairs      []pair    // of all vectors but the block just appended, by falling θ
 	rotation   *mat.Dense
 	exhausted  bool // nothing is left outside the basis
@@ -63,8 +64,9 @@ func (s *search) begin() bool {
 	fillRandom(x, s.seed)
 	s.p.mass(w, x, count)
 	s.p.solve(w, count)
-	keep, _, _ := s.b.append(w, count)
+	keep, _, _ := s.b.append(w, count, 0)
 	s.start, s.end = s.end, s.end+len(keep)
+	s.coupled = 0
 	return len(keep) > 0
 }
 
@@ -104,7 +106,7 @@ func (s *search) step() error {
 	w := make([]float64, count*n)
 	s.p.mass(w, s.b.v[(l+s.start)*n:], count)
 	s.p.solve(w, count)
-	keep, c, r := s.b.append(w, count)
+	keep, c, r := s.b.append(w, count, s.coupled)
 	kept := len(keep)
 	s.status.Steps++
 	for i := range s.end {
@@ -115,6 +117,7 @@ func (s *search) step() error {
 	if err := s.ritz(r, kept); err != nil {
 		return err
 	}
+	s.coupled = l + s.start
 	s.start, s.end = s.end, s.end+kept
 	if s.end+max(kept, s.block) > s.room {
 		s.restart(kept)
@@ -210,6 +213,7 @@ func (s *search) restart(kept int) {
 		s.h[k*s.room+k] = t
 	}
 	s.start, s.end = keep, keep+kept
+	s.coupled = 0
 	s.b.count = l + s.end
 	s.status.Restarts++
 	// The pairs now are the kept vectors themselves.
