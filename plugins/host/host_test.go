@@ -100,6 +100,7 @@ var testStages = []stage.Stage{
 	staged{"babble", func(_ context.Context, c *stage.Call) (*stage.Outcome, error) {
 		fmt.Println(`{"@message": 5, "@level": true}`)
 		fmt.Println(strings.Repeat("y", 1<<20))
+		c.Report.Log(stage.Info, strings.Repeat("z", 40<<20))
 		fmt.Fprintln(os.Stderr, `{"@message": {"a": 1}}`)
 		return nil, nil
 	}},
@@ -389,8 +390,18 @@ func TestMisdeeds(t *testing.T) {
 			}
 		})
 	}
-	if _, err := run(t, h, "babble", newCall(t)); err != nil {
+	call := newCall(t)
+	if _, err := run(t, h, "babble", call); err != nil {
 		t.Errorf("printing is no misdeed: %v", err)
+	}
+	if said := call.Report.(*testReporter).said; len(said) != 1 || len(said[0]) > 1<<16 {
+		t.Errorf("%d log lines came over", len(said))
+	}
+	call = newCall(t)
+	call.Arguments = stage.Arguments{"text": strings.Repeat("x", 40<<20)}
+	_, err := run(t, h, "echo", call)
+	if f := fault.From(err); f == nil || f.Kind != fault.Limit || f.Error() != "run: stage echo: a message is larger than the 32 MiB that the boundary passes; put bulk data in an artifact" {
+		t.Errorf("large arguments: %v", err)
 	}
 	h.Close()
 	if left := children(t); len(left) != 0 {

@@ -2,6 +2,7 @@ package serve
 
 import (
 	"encoding/json"
+	"strings"
 	"sync"
 	"time"
 
@@ -40,8 +41,14 @@ func (e *events) Progress(phase string, fraction float64) {
 	e.send(&wire.RunEvent{Event: &wire.RunEvent_Progress{Progress: &wire.Progress{Phase: phase, Fraction: fraction}}})
 }
 
+// longest is how much of a log line is sent; what is longer is no line.
+const longest = 16 << 10
+
 // Log sends one line.
 func (e *events) Log(level stage.Level, text string, fields ...any) {
+	if len(text) > longest {
+		text = strings.ToValidUTF8(text[:longest], "") + "…"
+	}
 	e.mu.Lock()
 	defer e.mu.Unlock()
 	e.send(&wire.RunEvent{Event: &wire.RunEvent_Log{Log: wire.EncodeLog(level, text, fields)}})

@@ -95,7 +95,8 @@ type Output struct {
 	Kind  string `json:"kind"`
 	About string `json:"about"`
 	// Publish names the argument of type Target under which the host copies
-	// the files of this artifact once the step is done.
+	// the files of this artifact once the step is done: the one that has the
+	// base name of the target, and the others beside it by their paths.
 	Publish string `json:"publish,omitempty"`
 }
 
