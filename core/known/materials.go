@@ -3,7 +3,6 @@ package known
 import (
 	"encoding/json"
 	"math"
-	"testing"
 
 	"hushframe/core/mechanics/laminate"
 )
@@ -20,7 +19,7 @@ func (c Constants) Material() laminate.Material {
 
 // Plies returns the stack that a row's setup lists under plies_bottom_to_top, its material given per
 // ply, by name or once for all.
-func (r Row) Plies(t testing.TB) []laminate.Ply {
+func (r Row) Plies(t T) []laminate.Ply {
 	t.Helper()
 	var setup struct {
 		Plies []struct {

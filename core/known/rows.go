@@ -9,39 +9,59 @@ import (
 	"runtime"
 	"slices"
 	"strings"
-	"testing"
 )
+
+// T takes the failures of what reads rows: a *testing.T, or whoever runs problems outside a test. Fatal
+// and Fatalf do not return.
+type T interface {
+	Helper()
+	Errorf(format string, args ...any)
+	Fatal(args ...any)
+	Fatalf(format string, args ...any)
+}
 
 // Row is one row of a reference file. Values are finite; complex values are not read here.
 type Row struct {
-	ID       string
-	Setup    json.RawMessage
-	Labels   []string
-	Values   []float64
-	TolRel   []float64 `json:"tol_rel"`
-	TolAbs   []float64 `json:"tol_abs"`
-	Quantity string
+	ID, Title      string
+	Setup          json.RawMessage
+	Labels         []string
+	Values         []float64
+	TolRel         []float64 `json:"tol_rel"`
+	TolAbs         []float64 `json:"tol_abs"`
+	Quantity, Unit string
+	Source         []string
+	HowKnown       string `json:"how_known"`
 }
 
 // Rows returns the rows of testdata/known/<file> whose ids begin with any of the prefixes, in file
 // order. It fails the test when a prefix matches nothing.
-func Rows(t testing.TB, file string, prefixes ...string) []Row {
+func Rows(t T, file string, prefixes ...string) []Row {
 	t.Helper()
 	_, here, _, _ := runtime.Caller(0)
 	text, err := os.ReadFile(filepath.Join(filepath.Dir(here), "..", "..", "testdata", "known", file))
 	if err != nil {
 		t.Fatal(err)
 	}
+	rows, err := Select(text, prefixes...)
+	if err != nil {
+		t.Fatalf("%s: %v", file, err)
+	}
+	return rows
+}
+
+// Select reads the rows of a reference file whose ids begin with any of the prefixes, in file order. It
+// fails when a prefix matches nothing.
+func Select(text []byte, prefixes ...string) ([]Row, error) {
 	var all struct{ Rows []json.RawMessage }
 	if err := json.Unmarshal(text, &all); err != nil {
-		t.Fatalf("%s: %v", file, err)
+		return nil, err
 	}
 	matched := make([]bool, len(prefixes))
 	var rows []Row
 	for _, raw := range all.Rows {
 		var id struct{ ID string }
 		if err := json.Unmarshal(raw, &id); err != nil {
-			t.Fatalf("%s: %v", file, err)
+			return nil, err
 		}
 		i := slices.IndexFunc(prefixes, func(p string) bool { return strings.HasPrefix(id.ID, p) })
 		if i < 0 {
@@ -50,20 +70,20 @@ func Rows(t testing.TB, file string, prefixes ...string) []Row {
 		matched[i] = true
 		var row Row
 		if err := json.Unmarshal(raw, &row); err != nil {
-			t.Fatalf("%s: row %s: %v", file, id.ID, err)
+			return nil, fmt.Errorf("row %s: %w", id.ID, err)
 		}
 		rows = append(rows, row)
 	}
 	for i, ok := range matched {
 		if !ok {
-			t.Fatalf("%s has no row %s", file, prefixes[i])
+			return nil, fmt.Errorf("there is no row %s", prefixes[i])
 		}
 	}
-	return rows
+	return rows, nil
 }
 
 // One returns the row with exactly this id.
-func One(t testing.TB, file, id string) Row {
+func One(t T, file, id string) Row {
 	t.Helper()
 	for _, r := range Rows(t, file, id) {
 		if r.ID == id {
@@ -75,7 +95,7 @@ func One(t testing.TB, file, id string) Row {
 }
 
 // Decode reads the row's setup into the struct that dst points to.
-func (r Row) Decode(t testing.TB, dst any) {
+func (r Row) Decode(t T, dst any) {
 	t.Helper()
 	if err := json.Unmarshal(r.Setup, dst); err != nil {
 		t.Fatalf("row %s: setup: %v", r.ID, err)
@@ -83,7 +103,7 @@ func (r Row) Decode(t testing.TB, dst any) {
 }
 
 // Value returns the value with the given label.
-func (r Row) Value(t testing.TB, label string) float64 {
+func (r Row) Value(t T, label string) float64 {
 	t.Helper()
 	i := slices.Index(r.Labels, label)
 	if i < 0 {
@@ -97,7 +117,7 @@ const printed = 5e-9
 
 // Check compares got with the first len(got) values under the row's own tolerances times slack, and
 // half of the last digit printed.
-func (r Row) Check(t testing.TB, slack float64, got ...float64) {
+func (r Row) Check(t T, slack float64, got ...float64) {
 	t.Helper()
 	if len(got) == 0 || len(got) > len(r.Values) {
 		t.Fatalf("row %s: %d values to check, the row has %d", r.ID, len(got), len(r.Values))

@@ -11,6 +11,7 @@ import (
 	"hushframe/core/known"
 	"hushframe/core/mechanics/assembly"
 	"hushframe/core/mechanics/element"
+	"hushframe/core/mechanics/element/beam"
 	"hushframe/core/mechanics/element/shell"
 	"hushframe/core/mechanics/laminate"
 )
@@ -107,7 +108,7 @@ func tilted(t *testing.T, turn assembly.Axes) *assembly.Problem {
 	end := f.point(0, 0, 0)
 	tip := f.point(0, 0, 0)
 	f.Nodes[end], f.Nodes[tip] = out(assembly.Vec{0.1, 0.06, 0.001}), out(assembly.Vec{0.1, 0.06, 0.026})
-	f.member("post", tube(0.004, 70e9, 0.33, 2700), turn[1], end, tip, 3)
+	f.member("post", beam.Tube(0.004, 0, 70e9, 0.33, 2700), turn[1], end, tip, 3)
 	f.body("foot", append(foot(0.1, 0.06), end))
 	top := f.body("cap", []int32{tip}, assembly.Inertia{Mass: 0.005, Centre: f.Nodes[tip], Tensor: tensor(1e-7, 1e-7, 1e-7)})
 	// A body on a joint with rigid, elastic and free components in turned axes.

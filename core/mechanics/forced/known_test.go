@@ -169,6 +169,30 @@ func TestResonancePeakAndHalfPower(t *testing.T) {
 	}
 }
 
+// Row D-MILES-150: an oscillator on a base of white acceleration. The integral over all frequencies is
+// taken over u with f = f_n tan u, which has no ends.
+func TestWhiteBase(t *testing.T) {
+	row := known.One(t, "D_harmonic.json", "D-MILES-150")
+	var setup struct {
+		Frequency float64 `json:"fn_Hz"`
+		Zeta      float64
+		Density   float64 `json:"base_acceleration_PSD_one_sided_g2_per_Hz"`
+	}
+	row.Decode(t, &setup)
+	c, fn := oscillator(1, sq(2*math.Pi*setup.Frequency), setup.Zeta, 0)
+	s := c.system(t, Options{})
+	const steps = 4000
+	sum := 0.0
+	for k := range steps {
+		u := (float64(k) + 0.5) / steps * math.Pi / 2
+		f := fn * math.Tan(u)
+		pull := complex(sq(2*math.Pi*fn), 2*math.Pi*f*c.rate[0])
+		sum += sq(cmplx.Abs(receptance(t, s, f, 0, 0)*pull)) * fn / sq(math.Cos(u)) * math.Pi / 2 / steps
+	}
+	exact := math.Sqrt(setup.Density * sum)
+	row.Check(t, 1, exact/math.Sqrt(1+4*sq(setup.Zeta)), exact)
+}
+
 // pair is the two-mass chain of the D-TWODOF rows, its modes in closed form.
 func pair(m1, m2, k1, k2 float64) chain {
 	a, b, d := (k1+k2)/m1, -k2/math.Sqrt(m1*m2), k2/m2

@@ -35,6 +35,21 @@ func TestTorsionConstant(t *testing.T) {
 	row.Check(t, 1, got...)
 }
 
+// Rows A-ORTHO-TORSION-*: an orthotropic bar twists like an isotropic one that is wider by √(Gxz/Gxy).
+func TestOrthotropicTorsion(t *testing.T) {
+	for _, row := range known.Rows(t, "A_beams.json", "A-ORTHO-TORSION-") {
+		var c struct {
+			Width     float64 `json:"width_y_m"`
+			Thickness float64 `json:"thickness_z_m"`
+			Gxy       float64 `json:"Gxy_Pa"`
+			Gxz       float64 `json:"Gxz_Pa"`
+		}
+		row.Decode(t, &c)
+		wider := math.Sqrt(c.Gxz / c.Gxy)
+		row.Check(t, 1, c.Gxy/wider*beam.TorsionConstant(c.Width*wider, c.Thickness))
+	}
+}
+
 // One element is exact under end loads: row A-STATIC-CANT, in both planes.
 func TestCantileverIsExact(t *testing.T) {
 	row := known.One(t, "A_beams.json", "A-STATIC-CANT")

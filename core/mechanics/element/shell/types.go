@@ -23,6 +23,19 @@ func QuadraticTriangle() element.Type {
 	}
 }
 
+// QuadraticFacet returns the six-node element as a flat facet of a curved shell. Where facets are tilted
+// against each other the turn about the normal of one bends the next, so it must follow the turn of the
+// surface closely: the drilling stiffness is the full shear stiffness, as T. J. R. Hughes and F. Brezzi
+// advise. With the small share of QuadraticTriangle, right for plates that are flat, a twisted strip of
+// facets is too soft by more than half.
+func QuadraticFacet() element.Type {
+	t := *QuadraticTriangle().(*triangle)
+	t.drilling = 1
+	t.description.Name = "quadratic-facet"
+	t.description.About = "six-node shear-deformable triangle as a flat facet of a curved shell"
+	return &t
+}
+
 // LinearTriangle returns the three-node element.
 func LinearTriangle() element.Type {
 	return &triangle{
