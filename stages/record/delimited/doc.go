@@ -1,4 +1,4 @@
-// Package delimited reads recordings in delimited text, plain or compressed with gzip (told by content, not by name).
+// Package delimited reads recordings in delimited text, plain or compressed with gzip or zstd (told by content, not by name).
 //
 // Layout. A recording has any number of lines before its samples: free text, key and value pairs, comments, a line of
 // names, a line of units. Samples begin at the first line with the usual number of fields in which the usual columns hold

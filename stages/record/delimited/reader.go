@@ -10,6 +10,8 @@ import (
 	"io"
 	"strings"
 
+	"github.com/klauspost/compress/zstd"
+
 	"hushframe/core/pipeline/nearest"
 	"hushframe/core/signal/recording"
 )
@@ -33,7 +35,7 @@ func (Reader) Describe() recording.Description {
 	}
 	return recording.Description{
 		Name:  "delimited",
-		About: "text with one row per line, plain or gzip",
+		About: "text with one row per line, plain, gzip or zstd",
 		Options: []recording.Option{{
 			Name: "separator", About: "what stands between two fields; auto finds it", Choices: choices,
 		}},
@@ -117,6 +119,17 @@ func unpack(source io.Reader) (*bufio.Reader, error) {
 		}
 		raw = bufio.NewReaderSize(unzipped, blockSize)
 		mark, _ = raw.Peek(3)
+	case bytes.HasPrefix(mark, []byte{0x28, 0xb5, 0x2f}):
+		// One goroutine and a bounded window: a hostile frame may ask for gigabytes.
+		unzipped, err := zstd.NewReader(raw, zstd.WithDecoderConcurrency(1), zstd.WithDecoderMaxWindow(128<<20))
+		if err != nil {
+			return nil, readError(errDamaged, 0)
+		}
+		raw = bufio.NewReaderSize(&unpacked{decoder: unzipped}, blockSize)
+		mark, err = raw.Peek(3)
+		if err != nil && !errors.Is(err, io.EOF) {
+			return nil, readError(err, 0)
+		}
 	case bytes.HasPrefix(mark, []byte{0xff, 0xfe}), bytes.HasPrefix(mark, []byte{0xfe, 0xff}):
 		return nil, &recording.Error{Text: "the text is in UTF-16", Remedy: "save it in UTF-8"}
 	}
@@ -126,13 +139,40 @@ func unpack(source io.Reader) (*bufio.Reader, error) {
 	return raw, nil
 }
 
+// errDamaged stands for whatever a decoder finds wrong with packed bytes.
+var errDamaged = errors.New("damaged")
+
+// unpacked makes the many errors of a decoder one.
+type unpacked struct {
+	decoder *zstd.Decoder
+	ended   error
+}
+
+func (u *unpacked) Read(p []byte) (int, error) {
+	if u.ended != nil {
+		return 0, u.ended
+	}
+	n, err := u.decoder.Read(p)
+	switch {
+	case err == nil:
+		return n, nil
+	case errors.Is(err, io.ErrUnexpectedEOF):
+		err = io.ErrUnexpectedEOF
+	case !errors.Is(err, io.EOF):
+		err = errDamaged
+	}
+	u.decoder.Close()
+	u.ended = err
+	return n, err
+}
+
 // readError explains why bytes end, after that many of them.
 func readError(err error, at int64) error {
 	switch {
 	case errors.Is(err, io.ErrUnexpectedEOF):
 		return &recording.Error{Byte: at, Text: "the compressed file ends in its middle",
 			Remedy: "copy it again from the recorder, or unpack what is there and give the text"}
-	case errors.Is(err, gzip.ErrChecksum), errors.Is(err, gzip.ErrHeader):
+	case errors.Is(err, gzip.ErrChecksum), errors.Is(err, gzip.ErrHeader), errors.Is(err, errDamaged):
 		return &recording.Error{Byte: at, Text: "the compressed file is damaged", Remedy: "copy it again from the recorder"}
 	}
 	var corrupt interface{ Error() string }
