@@ -21,8 +21,8 @@ const style = `<style>
 .af-spring{fill:none;stroke:var(--af-gyro,#a3386c);stroke-width:.6;stroke-dasharray:1.2 .8}
 .af-thin{fill:none;stroke:currentColor;stroke-width:.35}
 .af-solid{fill:currentColor;stroke:none}
-.af-word{font:4px system-ui,sans-serif;fill:currentColor;text-anchor:middle}
-.af-quiet{font:3.4px system-ui,sans-serif;fill:currentColor;fill-opacity:.7}
+.af-word{font-family:system-ui,sans-serif;fill:currentColor;text-anchor:middle}
+.af-quiet{font-family:system-ui,sans-serif;fill:currentColor;fill-opacity:.7}
 </style>`
 
 // view maps airframe axes to the page: right and down, in millimetres.
@@ -91,25 +91,29 @@ func (v *view) circle(class, title string, c outline.Point, r float64) {
 	v.titled("circle", title)
 }
 
-func (v *view) text(class string, at outline.Point, s string) {
-	fmt.Fprintf(&v.b, `<text class="%s" x="%s" y="%s">%s</text>`, class, mm(at.X), mm(at.Y), html.EscapeString(s))
+func (v *view) text(class string, size float64, at outline.Point, s string) {
+	fmt.Fprintf(&v.b, `<text class="%s" font-size="%s" x="%s" y="%s">%s</text>`, class, mm(size), mm(at.X), mm(at.Y), html.EscapeString(s))
 }
 
 // label asks for a word at a place; words are moved down where they would cover each other.
 func (v *view) label(at outline.Point, s string) { v.words = append(v.words, word{at, s}) }
 
+// Sizes of words, as shares of the extent of what is drawn, so that a frame of any size has words that
+// can be read; the rest as shares of the size of a word.
 const (
-	letter = 2.2 // mm, width of a letter
-	lineUp = 4.6 // mm, height of a line
+	wordSize = 0.024
+	letter   = 0.56 // width of a letter
+	lineUp   = 1.15 // height of a line
 )
 
-func (v *view) writeWords() {
+func (v *view) writeWords(size float64) {
+	line := lineUp * size
 	var boxes []outline.Box
 	for _, w := range v.words {
-		half := letter * float64(len([]rune(w.text))) / 2
+		half := letter * size * float64(len([]rune(w.text))) / 2
 		at := w.at
 		for range 20 {
-			b := outline.Box{Min: outline.Point{X: at.X - half, Y: at.Y - lineUp/2}, Max: outline.Point{X: at.X + half, Y: at.Y + lineUp/2}}
+			b := outline.Box{Min: outline.Point{X: at.X - half, Y: at.Y - line/2}, Max: outline.Point{X: at.X + half, Y: at.Y + line/2}}
 			clear := true
 			for _, o := range boxes {
 				clear = clear && !o.Meets(b)
@@ -118,31 +122,33 @@ func (v *view) writeWords() {
 				boxes = append(boxes, b)
 				break
 			}
-			at.Y += lineUp
+			at.Y += line
 		}
-		v.grow(outline.Point{X: at.X - half, Y: at.Y - lineUp}, outline.Point{X: at.X + half, Y: at.Y + lineUp/2})
-		v.text("af-word", outline.Point{X: at.X, Y: at.Y + 1.4}, w.text)
+		v.grow(outline.Point{X: at.X - half, Y: at.Y - line}, outline.Point{X: at.X + half, Y: at.Y + line/2})
+		v.text("af-word", size, outline.Point{X: at.X, Y: at.Y + 0.35*size}, w.text)
 	}
 }
 
 // finish puts the frame of the picture, its title, a scale and the direction of flight round what was drawn.
 func (v *view) finish(about string, forward outline.Point) string {
-	v.writeWords()
-	const margin = 6
+	size := wordSize * math.Max(v.box.Width(), v.box.Height())
+	v.writeWords(size)
+	margin := 1.5 * size
 	b := v.box.Grow(margin)
 	bar := scaleBar(b.Width())
-	base := b.Max.Y + 4
+	base := b.Max.Y + size
 	left := b.Min.X + margin
-	v.b.WriteString(fmt.Sprintf(`<path class="af-thin" d="M%s %sv-2m0 1h%sm0 -1v2"/>`, mm(left), mm(base+1), mm(bar)))
-	v.text("af-quiet", outline.Point{X: left + bar + 2, Y: base + 1}, mm(bar)+" mm")
-	tip := outline.Point{X: b.Max.X - margin - 6, Y: base - 1}
-	start, end := tip.Sub(forward.Scale(5)), tip.Add(forward.Scale(5))
+	tick := 0.3 * size
+	v.b.WriteString(fmt.Sprintf(`<path class="af-thin" d="M%s %sv%sm0 %sh%sm0 %sv%s"/>`, mm(left), mm(base+tick), mm(-2*tick), mm(tick), mm(bar), mm(-tick), mm(2*tick)))
+	v.text("af-quiet", 0.9*size, outline.Point{X: left + bar + size/2, Y: base + tick}, mm(bar)+" mm")
+	tip := outline.Point{X: b.Max.X - margin - 1.4*size, Y: base - tick}
+	start, end := tip.Sub(forward.Scale(1.2*size)), tip.Add(forward.Scale(1.2*size))
 	side := outline.Point{X: -forward.Y, Y: forward.X}
 	v.b.WriteString(fmt.Sprintf(`<path class="af-thin" d="M%s %sL%s %s"/>`, mm(start.X), mm(start.Y), mm(end.X), mm(end.Y)))
-	head := [3]outline.Point{end.Add(forward.Scale(1.5)), end.Sub(forward.Scale(1.5)).Add(side.Scale(1.3)), end.Sub(forward.Scale(1.5)).Sub(side.Scale(1.3))}
+	head := [3]outline.Point{end.Add(forward.Scale(0.4 * size)), end.Sub(forward.Scale(0.4 * size)).Add(side.Scale(0.33 * size)), end.Sub(forward.Scale(0.4 * size)).Sub(side.Scale(0.33 * size))}
 	v.b.WriteString(fmt.Sprintf(`<path class="af-solid" d="M%s %sL%s %sL%s %sZ"/>`, mm(head[0].X), mm(head[0].Y), mm(head[1].X), mm(head[1].Y), mm(head[2].X), mm(head[2].Y)))
-	v.text("af-quiet", outline.Point{X: tip.X - 26, Y: base + 1}, "forward")
-	b.Max.Y = base + 7
+	v.text("af-quiet", 0.9*size, outline.Point{X: tip.X - 6*size, Y: base + tick}, "forward")
+	b.Max.Y = base + 1.8*size
 	return fmt.Sprintf(`<svg xmlns="http://www.w3.org/2000/svg" role="img" viewBox="%s %s %s %s" aria-label="%s">`,
 		mm(b.Min.X), mm(b.Min.Y), mm(b.Width()), mm(b.Height()), html.EscapeString(about)) + style + v.b.String() + "</svg>"
 }

@@ -175,6 +175,27 @@ func TestWordsKeepClear(t *testing.T) {
 	}
 }
 
+// Words grow with the frame, since the picture of any frame is shown at the same width.
+func TestWordsGrowWithTheFrame(t *testing.T) {
+	size := func(scale float64) float64 {
+		g, p := sample()
+		for i := range p.Bodies {
+			for d := range p.Bodies[i].Centre {
+				p.Bodies[i].Centre[d] *= scale
+			}
+		}
+		_, rest, _ := strings.Cut(Top(g, p, nil), `<text class="af-word" font-size="`)
+		x, err := strconv.ParseFloat(rest[:strings.Index(rest, `"`)], 64)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return x
+	}
+	if near, far := size(1), size(20); far < 2*near {
+		t.Errorf("words of %g mm, and of %g mm on a much larger frame", near, far)
+	}
+}
+
 func BenchmarkTop(b *testing.B) {
 	g, p := sample()
 	for b.Loop() {
