@@ -112,8 +112,8 @@ func (r Row) Value(t T, label string) float64 {
 	return r.Values[i]
 }
 
-// printed is the relative error of a value printed with nine significant digits, as the rows are.
-const printed = 5e-9
+// Printed is the relative error of a value printed with nine significant digits, as the rows are.
+const Printed = 5e-9
 
 // Check compares got with the first len(got) values under the row's own tolerances times slack, and
 // half of the last digit printed.
@@ -124,7 +124,7 @@ func (r Row) Check(t T, slack float64, got ...float64) {
 	}
 	for i, x := range got {
 		want := r.Values[i]
-		tol := slack*(r.TolAbs[i]+r.TolRel[i]*math.Abs(want)) + printed*math.Abs(want)
+		tol := slack*(r.TolAbs[i]+r.TolRel[i]*math.Abs(want)) + Printed*math.Abs(want)
 		if !(math.Abs(x-want) <= tol) {
 			t.Errorf("row %s: %s = %.9g, want %.9g (off by %s, tolerance %.3g)", r.ID, r.Labels[i], x, want, relative(x, want), tol)
 		}
