@@ -23,7 +23,7 @@ type Stage struct{}
 var _ stage.Stage = Stage{}
 
 // readable lists the kinds a report can show, besides that of the run.
-var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison"}
+var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "verification"}
 
 // Describe implements stage.Stage.
 func (Stage) Describe() stage.Description {
@@ -51,6 +51,11 @@ the page.`,
 
 // Run implements stage.Stage.
 func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) {
+	to := call.Arguments.Text("to")
+	if ext := strings.ToLower(path.Ext(to)); ext != ".html" && ext != ".htm" {
+		// Whatever else has that name is not a page, and may be what the job reads.
+		return nil, fault.New(fault.Input, "%q does not end in .html", to).In("report", "").Of("to").Do("name a page, such as \"report/page.html\"")
+	}
 	call.Report.Progress("read", -1)
 	c := &content{}
 	inputs := append(append([]stage.Input{}, call.Inputs["include"]...), call.Inputs["run"]...)
@@ -64,7 +69,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		call.Report.Progress("read", float64(i+1)/float64(len(inputs)))
 	}
 	call.Report.Progress("draw", -1)
-	d, err := compose(c, call.Arguments.Text("title"), path.Base(strings.ReplaceAll(call.Arguments.Text("to"), `\`, "/")))
+	d, err := compose(c, call.Arguments.Text("title"), path.Base(strings.ReplaceAll(to, `\`, "/")))
 	if err != nil {
 		return nil, err
 	}

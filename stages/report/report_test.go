@@ -301,8 +301,11 @@ func TestStage(t *testing.T) {
 	if _, err = (Stage{}).Run(context.Background(), call); fault.KindOf(err) != fault.Input {
 		t.Errorf("a document in a report: %v", err)
 	}
-	call.Inputs["include"], call.Arguments["to"] = nil, ""
-	if _, err = (Stage{}).Run(context.Background(), call); fault.From(err).Argument != "to" {
-		t.Errorf("no target: %v", err)
+	call.Inputs["include"] = nil
+	for _, to := range []string{"", "airframe.hcl", "page"} {
+		call.Arguments["to"] = to
+		if _, err = (Stage{}).Run(context.Background(), call); fault.From(err).Argument != "to" {
+			t.Errorf("written to %q: %v", to, err)
+		}
 	}
 }

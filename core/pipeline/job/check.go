@@ -32,6 +32,15 @@ func (l *loader) targets() {
 				return
 			}
 			written[clean] = st
+			full := name
+			if !filepath.IsAbs(name) {
+				full = filepath.Join(l.job.Folder, filepath.FromSlash(name))
+			}
+			for _, source := range l.job.Sources {
+				if filepath.Clean(full) == filepath.Join(l.job.Folder, source.File) {
+					l.wrong(st.ArgumentRange(argument), "Job would be overwritten", "%s is a file of the job itself; write to another path, such as \"report/page.html\"", name)
+				}
+			}
 		})
 	}
 	for i, st := range l.job.Stages {

@@ -21,3 +21,7 @@ stage "report" "second" {
   after   = [stage.page]
   to      = "report/bad.html"
 }
+stage "report" "third" {
+  include = [stage.modes.modes]
+  to      = "report/../late.hcl"
+}
