@@ -11,6 +11,7 @@ import (
 	"hushframe/stages/report"
 	"hushframe/stages/solve"
 	"hushframe/stages/sweep"
+	"hushframe/stages/verify"
 )
 
 // Builtin lists the built-in stages in the order of a job.
@@ -23,6 +24,7 @@ func Builtin() []stage.Stage {
 		record.Stage{},
 		identify.Stage{},
 		compare.Stage{},
+		verify.Stage{},
 		report.Stage{},
 	}
 }

@@ -98,3 +98,32 @@ func TestMeshRoundTrip(t *testing.T) {
 		t.Error("a node that does not exist was accepted")
 	}
 }
+
+func TestVerificationRoundTrip(t *testing.T) {
+	v := &Verification{Problems: []VerifiedProblem{
+		{ID: "A-1", Family: "bars", Title: "a bar", Mesh: "4 beams", Source: "a book", Known: "closed form", Quantity: "frequency", Unit: "Hz",
+			Values: []VerifiedValue{{"mode 1", 10, 10.1, 0.5}, {"mode 2", 20, 19, 3}}},
+		{ID: "A-2", Failure: "it has no mass"},
+	}}
+	a := EncodeVerification(v)
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	back, err := DecodeVerification(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !reflect.DeepEqual(v, back) {
+		t.Errorf("got %+v\nwant %+v", back, v)
+	}
+	if w, ok := back.Problems[0].Worst(); !ok || w.Label != "mode 2" {
+		t.Errorf("the worst value is %+v", w)
+	}
+	if _, ok := back.Problems[1].Worst(); ok {
+		t.Error("a problem without values has a worst one")
+	}
+	a.Table("values").Ints("problem")[0] = 2
+	if _, err := DecodeVerification(a); err == nil {
+		t.Error("a value of a problem that does not exist was accepted")
+	}
+}

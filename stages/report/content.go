@@ -22,6 +22,7 @@ type content struct {
 	response   *kinds.Response
 	spectra    *kinds.Spectra
 	comparison *kinds.Comparison
+	verified   *kinds.Verification
 	run        *account.Account
 	sources    []kinds.DocumentSource
 
@@ -74,6 +75,8 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
 	case "comparison":
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
+	case "verification":
+		err = once(in, &c.verified, a, kinds.DecodeVerification)
 	case account.KindName:
 		c.run = account.Decode(a)
 	default:

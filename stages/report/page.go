@@ -84,6 +84,9 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if c.spectra != nil {
 		add(recordingSection(c.spectra))
 	}
+	if c.verified != nil {
+		add(verificationSection(c.verified))
+	}
 	add(modelSection(c))
 	add(cautionSection())
 	add(runSection(c))
