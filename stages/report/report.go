@@ -23,7 +23,7 @@ type Stage struct{}
 var _ stage.Stage = Stage{}
 
 // readable lists the kinds a report can show, besides that of the run.
-var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison"}
+var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "verification"}
 
 // Describe implements stage.Stage.
 func (Stage) Describe() stage.Description {
