@@ -15,11 +15,14 @@ import (
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
 	"hushframe/core/signal/recording"
+	"hushframe/stages/record/columnar"
 	"hushframe/stages/record/delimited"
+	"hushframe/stages/record/flat"
+	"hushframe/stages/record/wave"
 )
 
 // builtin are the readers in this executable.
-var builtin = []recording.Reader{delimited.Reader{}}
+var builtin = []recording.Reader{delimited.Reader{}, wave.Reader{}, columnar.Reader{}, flat.Reader{}}
 
 // Settings are the arguments that say what is read.
 type Settings struct {
@@ -36,7 +39,8 @@ func Arguments() []stage.Argument {
 	texts := stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}}
 	return []stage.Argument{
 		{Name: "file", About: "the recording", Type: stage.Type{Kind: stage.File}, Required: true, Example: `"flights/hover.csv.gz"`},
-		{Name: "reader", About: "reader of its format", Type: stage.Type{Kind: stage.Text}, Default: "delimited", Example: `"delimited"`},
+		{Name: "reader", About: "reader of its format: delimited, wave, arrow or flat; auto tells all but flat by the first bytes",
+			Type: stage.Type{Kind: stage.Text}, Default: "auto", Example: `"auto"`},
 		{Name: "options", About: "options of the reader, by name", Type: texts, Example: `{ separator = "tab" }`},
 		{Name: "columns", About: "columns by role: time, and roll, pitch, yaw (angular rate) or x, y, z (acceleration); left out, found by their names",
 			Type: texts, Example: `{ time = "t", roll = "gx", pitch = "-gy", yaw = "-gz" }`},
@@ -84,8 +88,7 @@ type Recording struct {
 
 // Load reads the channels of a recording.
 func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, error) {
-	reader, err := choose(set.Reader)
-	if err != nil {
+	if _, err := choose(set.Reader, nil); err != nil {
 		return nil, err
 	}
 	file, err := files.Open(set.File)
@@ -93,6 +96,12 @@ func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, er
 		return nil, err
 	}
 	defer file.Close()
+	head := make([]byte, 16)
+	n, _ := file.ReadAt(head, 0) // a file that cannot be read says so to its reader
+	reader, err := choose(set.Reader, head[:n])
+	if err != nil {
+		return nil, err
+	}
 	header, err := reader.Inspect(ctx, file, set.Options)
 	if err != nil {
 		return nil, Explain(err, set.File)
@@ -111,16 +120,25 @@ func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, er
 	return &Recording{Header: header, Plan: plan, Data: data, set: set}, nil
 }
 
-func choose(name string) (recording.Reader, error) {
-	var known []string
-	for _, r := range builtin {
-		if d := r.Describe(); d.Name == name {
-			return r, nil
-		} else {
-			known = append(known, fmt.Sprintf("%q", d.Name))
-		}
+// choose returns the reader of that name; for auto, the one whose mark the file begins with, or the reader of text.
+func choose(name string, head []byte) (recording.Reader, error) {
+	switch {
+	case name == "auto" && wave.Mark(head):
+		return wave.Reader{}, nil
+	case name == "auto" && columnar.Mark(head):
+		return columnar.Reader{}, nil
+	case name == "auto":
+		return delimited.Reader{}, nil
 	}
-	return nil, fault.New(fault.Missing, "there is no reader %q", name).Of("reader").Do("the readers are %v", known)
+	known := `"auto"`
+	for _, r := range builtin {
+		d := r.Describe()
+		if d.Name == name {
+			return r, nil
+		}
+		known += fmt.Sprintf(", %q", d.Name)
+	}
+	return nil, fault.New(fault.Missing, "there is no reader %q", name).Of("reader").Do("the readers are %s", known)
 }
 
 // Explain turns an error of a reader or kernel into a fault that names the file.
