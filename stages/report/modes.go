@@ -221,7 +221,7 @@ func shareTable(m *kinds.Modes) *table {
 }
 
 // mostPictures bounds the gallery, and with it the page.
-const mostPictures = 24
+const mostPictures = 36
 
 // gallery draws the elastic modes in the band.
 func gallery(s *section, c *content) {
