@@ -19,6 +19,11 @@ func random(r *rand.Rand, n int) []float64 {
 var shapes = [][3]int{{1, 1, 1}, {4, 2, 8}, {5, 3, 7}, {3, 33, 130}, {9, 65, 129}, {64, 48, 300}, {7, 1, 0}, {0, 4, 3}}
 
 func TestSubMulTAgreesWithSums(t *testing.T) {
+	eachLevel(t, func(t *testing.T, _ bool) { subMulTAgreesWithSums(t) })
+}
+
+func subMulTAgreesWithSums(t *testing.T) {
+	t.Helper()
 	r := rand.New(rand.NewPCG(1, 1))
 	for _, s := range shapes {
 		m, n, k := s[0], s[1], s[2]
@@ -41,6 +46,11 @@ func TestSubMulTAgreesWithSums(t *testing.T) {
 }
 
 func TestSubMulTLowerAgreesWithFullProduct(t *testing.T) {
+	eachLevel(t, func(t *testing.T, _ bool) { subMulTLowerAgreesWithFullProduct(t) })
+}
+
+func subMulTLowerAgreesWithFullProduct(t *testing.T) {
+	t.Helper()
 	r := rand.New(rand.NewPCG(1, 2))
 	for _, n := range []int{1, 5, 8, 30, 67} {
 		const k = 21
@@ -59,6 +69,11 @@ func TestSubMulTLowerAgreesWithFullProduct(t *testing.T) {
 }
 
 func TestSolveLowerTInvertsProduct(t *testing.T) {
+	eachLevel(t, func(t *testing.T, _ bool) { solveLowerTInvertsProduct(t) })
+}
+
+func solveLowerTInvertsProduct(t *testing.T) {
+	t.Helper()
 	r := rand.New(rand.NewPCG(1, 3))
 	for _, n := range []int{1, 7, 8, 9, 48} {
 		const m = 13
@@ -181,6 +196,11 @@ func TestPivotedFailsOnSingularAndNaN(t *testing.T) {
 }
 
 func TestGramAndCombinationsAgreeWithSums(t *testing.T) {
+	eachLevel(t, func(t *testing.T, _ bool) { gramAndCombinationsAgreeWithSums(t) })
+}
+
+func gramAndCombinationsAgreeWithSums(t *testing.T) {
+	t.Helper()
 	r := rand.New(rand.NewPCG(1, 5))
 	for _, s := range [][3]int{{1, 1, 5}, {3, 5, 2049}, {8, 7, 5000}, {0, 2, 3000}, {2, 0, 3000}} {
 		m, n, k := s[0], s[1], s[2]

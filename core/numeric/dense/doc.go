@@ -7,12 +7,15 @@
 //
 // Determinism. Every kernel adds its terms in an order fixed by the shapes alone. Kernels that take a number of
 // threads split their work at places which do not depend on it, so that results are the same bit by bit for every
-// number of threads.
+// number of threads on one machine. From one kind of machine to another last digits differ: the assembly fuses each
+// multiplication with its addition and rounds once, the Go code may round twice.
 //
-// Method. The products work on tiles of 3 by 2 results kept in registers while the inner index runs. Larger tiles would
-// read less, but the compiler then keeps sums in memory, which costs a third of the speed; this one runs at the rate of
-// the scalar multiply and add units. Operands are taken in pieces that stay in the first-level cache (K. Goto and R. van de Geijn, Anatomy of high-performance matrix
-// multiplication, ACM Trans. Math. Softw. 34, 2008). There is no assembly.
+// Method. All products end in one kernel, strip: it subtracts a product from up to eight columns of C, a tile of which
+// stays in registers while the inner index runs. One operand is read in any storage; the other has the eight entries of
+// a step side by side, which Panels arranges (K. Goto and R. van de Geijn, Anatomy of high-performance matrix
+// multiplication, ACM Trans. Math. Softw. 34, 2008). The kernel exists in assembly for AVX2 with FMA (tiles of 6 by 8)
+// and for AVX-512 (12 by 8), chosen when the program starts, and in Go for all other processors. The build tag purego
+// leaves the assembly out. The generator of the assembly, in folder gen, is a module of its own.
 //
 // Failures. Wrong shapes panic with the prefix "dense:"; numerical failures are part of the result.
 package dense
