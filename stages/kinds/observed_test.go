@@ -14,8 +14,9 @@ func sampleSpectra() *Spectra {
 			Largest: 3, Saturated: 4, Repeated: 0.5, Density: []float64{1, 2, 3}}},
 		Peaks: []SpectraPeak{{Frequency: 500, FrequencyError: 1, Density: 2, Prominence: 3, OverFloor: 4, Lower: 490,
 			Upper: 510, Damping: 0.02, DampingError: 0.01, Narrow: true}},
-		Rotors: []SpectraRotor{{Rotor: "fr", Column: "rpm", Blades: 3, Median: 1600, Low: 1500, High: 1700}},
-		Orders: []OrderBand{{Rotor: "fr", Order: 3, BladePassing: true, Low: 700, High: 800, Share: 0.98, Folded: true}},
+		Rotors:   []SpectraRotor{{Rotor: "fr", Column: "rpm", Blades: 3, Median: 1600, Low: 1500, High: 1700}},
+		Findings: []Finding{{What: "gaps", Where: "t", Extent: "one", Consequence: "none"}},
+		Orders:   []OrderBand{{Rotor: "fr", Order: 3, BladePassing: true, Low: 700, High: 800, Share: 0.98, Folded: true}},
 	}
 }
 

@@ -9,7 +9,7 @@ import (
 // SpectraKind is what `record` makes of a recording.
 var SpectraKind = artifact.Kind{
 	Name:    "spectra",
-	Version: 1,
+	Version: 2,
 	About:   "Welch spectra of a recording per axis, with their peaks, bounds, and the bands of the rotor orders",
 	Scalars: []artifact.Column{
 		{Name: "rate", Type: artifact.Float, Unit: "Hz", About: "samples per second between gaps"},
@@ -64,6 +64,12 @@ var SpectraKind = artifact.Kind{
 			{Name: "low", Type: artifact.Float, Unit: "rad/s", About: "speed below which it ran for one per cent of the time"},
 			{Name: "high", Type: artifact.Float, Unit: "rad/s", About: "speed above which it ran for one per cent of the time"},
 		}},
+		{Name: "findings", About: "what is not as it should be with the recording", Columns: []artifact.Column{
+			{Name: "what", Type: artifact.Text, About: "one or two words, such as gaps or steps"},
+			{Name: "where", Type: artifact.Text, About: "column, or empty for the whole recording"},
+			{Name: "extent", Type: artifact.Text, About: "how much, and where in time or frequency"},
+			{Name: "consequence", Type: artifact.Text, About: "what it does to the spectra"},
+		}},
 		{Name: "orders", About: "frequencies at which rotor orders appear in the recording", Columns: []artifact.Column{
 			{Name: "rotor", Type: artifact.Text, About: "name"},
 			{Name: "order", Type: artifact.Float, Unit: "1", About: "multiple of the rotor's speed"},
@@ -88,11 +94,15 @@ type Spectra struct {
 	Samples, Gaps, Missing int
 	Jitter                 float64
 
-	Axes   []SpectraAxis
-	Peaks  []SpectraPeak
-	Rotors []SpectraRotor
-	Orders []OrderBand
+	Axes     []SpectraAxis
+	Peaks    []SpectraPeak
+	Rotors   []SpectraRotor
+	Findings []Finding
+	Orders   []OrderBand
 }
+
+// Finding is something that is not as it should be with a recording.
+type Finding struct{ What, Where, Extent, Consequence string }
 
 // SpectraAxis is one axis of a recording.
 type SpectraAxis struct {
@@ -185,6 +195,11 @@ func EncodeSpectra(s *Spectra) *artifact.Artifact {
 		Set("median", list(s.Rotors, func(x SpectraRotor) float64 { return x.Median })).
 		Set("low", list(s.Rotors, func(x SpectraRotor) float64 { return x.Low })).
 		Set("high", list(s.Rotors, func(x SpectraRotor) float64 { return x.High }))
+	a.Table("findings").
+		Set("what", list(s.Findings, func(x Finding) string { return x.What })).
+		Set("where", list(s.Findings, func(x Finding) string { return x.Where })).
+		Set("extent", list(s.Findings, func(x Finding) string { return x.Extent })).
+		Set("consequence", list(s.Findings, func(x Finding) string { return x.Consequence }))
 	setOrders(a.Table("orders"), s.Orders)
 	return a
 }
@@ -232,6 +247,10 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 			Rotor: t.Texts("rotor")[i], Column: t.Texts("column")[i], Blades: int(t.Ints("blades")[i]),
 			Median: t.Floats("median")[i], Low: t.Floats("low")[i], High: t.Floats("high")[i],
 		})
+	}
+	t = a.Table("findings")
+	for i := range t.Rows() {
+		s.Findings = append(s.Findings, Finding{t.Texts("what")[i], t.Texts("where")[i], t.Texts("extent")[i], t.Texts("consequence")[i]})
 	}
 	s.Orders = orders(a.Table("orders"))
 	return s, nil

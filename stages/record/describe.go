@@ -78,6 +78,7 @@ func describe(r *gather.Recording, set settings) (*found, error) {
 		}
 	}
 	rotors(s, r, set)
+	s.Findings = findings(f, r)
 	return f, nil
 }
 

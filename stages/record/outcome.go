@@ -48,6 +48,9 @@ func outcome(f *found, r *gather.Recording, set settings) *stage.Outcome {
 	if len(s.Rotors) > 0 {
 		o.Summary = append(o.Summary, rotorTable(s))
 	}
+	if len(s.Findings) > 0 {
+		o.Summary = append(o.Summary, findingTable(s))
+	}
 	return o
 }
 

@@ -1,0 +1,103 @@
+package record
+
+import (
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"os"
+	"path/filepath"
+	"strings"
+	"testing"
+
+	"hushframe/core/pipeline/stage"
+	"hushframe/stages/kinds"
+)
+
+// rowsOf makes a recording of rows of numbers at 1 kHz.
+func rowsOf(t *testing.T, header string, rows int, row func(i int) []float64) string {
+	t.Helper()
+	var text strings.Builder
+	fmt.Fprintln(&text, header)
+	for i := range rows {
+		fmt.Fprintf(&text, "%g", float64(i)/1000)
+		for _, v := range row(i) {
+			fmt.Fprintf(&text, ",%.6g", v)
+		}
+		text.WriteByte('\n')
+	}
+	folder := t.TempDir()
+	if err := os.WriteFile(filepath.Join(folder, "a.csv"), []byte(text.String()), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	return folder
+}
+
+func told(s *kinds.Spectra) string {
+	var out []string
+	for _, f := range s.Findings {
+		out = append(out, f.What+"|"+f.Where+"|"+f.Extent)
+	}
+	return strings.Join(out, "\n")
+}
+
+// A sound recording has no findings; each fault put into one is found, with its extent.
+func TestFindings(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 4))
+	noise := func(rms float64) float64 { return rms * random.NormFloat64() }
+	var low [2]float64
+	rates := []float64{0.4 * 1000, 0.4 * 1000}
+	for name, c := range map[string]struct {
+		header string
+		row    func(i int) []float64
+		want   []string
+		none   bool
+	}{
+		"sound": {"time_s,gx_deg_s,gy_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(20), noise(20), 4000} }, nil, true},
+		"steps": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{math.Round(noise(20)/38) * 38, 4000} },
+			[]string{"coarse steps|gx_deg_s|steps of 38 deg/s"}, false},
+		"stuck": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 {
+			if i >= 3000 && i < 3500 {
+				return []float64{7, 4000}
+			}
+			return []float64{noise(20), 4000}
+		}, []string{"stuck|gx_deg_s|500 samples stay at 7 deg/s from 3 s"}, false},
+		"radians": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(0.1), 4000} }, []string{"unit|gx_deg_s|only 0.1 deg/s"}, false},
+		"degrees": {"time_s,gx_rad_s,rpm_1", func(i int) []float64 { return []float64{noise(60), 4000} }, []string{"unit|gx_rad_s|reaches"}, false},
+		"gravity": {"time_s,ax_m_s2,ay_m_s2,az_m_s2,rpm_1", func(i int) []float64 { return []float64{noise(0.1), noise(0.1), 1 + noise(0.1), 4000} },
+			[]string{"unit||the mean acceleration is 1 m/s²: the numbers may be in g"}, false},
+		"offset": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{400 + noise(20), 4000} }, []string{"offset|gx_deg_s|mean of 400 deg/s"}, false},
+		"mirror": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(20), 9600} }, []string{"alias||order 4 of 1 appears mirrored at 355 to 363 Hz",
+			"alias||order 5 of 1 appears mirrored at 195 to 203 Hz", "alias||order 6 of 1 appears mirrored at 35 to 43 Hz"}, false},
+		"filter": {"time_s,gx_deg_s,gy_deg_s,rpm_1", func(i int) []float64 {
+			for d := range low {
+				// Two first-order low-passes of 20 Hz in a row, ten steps a sample, so that little folds back.
+				for range 10 {
+					rates[d] += (noise(4000) - rates[d]) * 0.01249
+					low[d] += (rates[d] - low[d]) * 0.01249
+				}
+			}
+			return []float64{low[0], low[1], 4000}
+		}, []string{"low-pass||the floor falls by"}, false},
+		"no rotor": {"time_s,gx_deg_s", func(i int) []float64 { return []float64{noise(20)} }, []string{"alias||no filter before sampling shows"}, false},
+	} {
+		s, o, err := run(t, rowsOf(t, c.header, 16000, c.row), stage.Arguments{"file": "a.csv"})
+		if err != nil {
+			t.Fatalf("%s: %v", name, err)
+		}
+		text := told(s)
+		for _, want := range c.want {
+			if !strings.Contains(text, want) {
+				t.Errorf("%s: %q is not among\n%s", name, want, text)
+			}
+		}
+		if len(c.want) > 0 && len(s.Findings) != len(c.want) {
+			t.Errorf("%s:\n%s", name, text)
+		}
+		if c.none && len(s.Findings) > 0 {
+			t.Errorf("%s:\n%s", name, text)
+		}
+		if shown := o.Summary[len(o.Summary)-1].Title == "Health of the recording"; shown != (len(s.Findings) > 0) {
+			t.Errorf("%s: findings are shown: %v", name, shown)
+		}
+	}
+}
