@@ -10,7 +10,7 @@
 // number of threads on one machine. From one kind of machine to another last digits differ: the assembly fuses each
 // multiplication with its addition and rounds once, the Go code may round twice.
 //
-// Method. All products end in one kernel, strip: it subtracts a product from up to eight columns of C, a tile of which
+// Method. All products end in one kernel, Strip: it subtracts a product from up to eight columns of C, a tile of which
 // stays in registers while the inner index runs. One operand is read in any storage; the other has the eight entries of
 // a step side by side, which Panels arranges (K. Goto and R. van de Geijn, Anatomy of high-performance matrix
 // multiplication, ACM Trans. Math. Softw. 34, 2008). The kernel exists in assembly for AVX2 with FMA (tiles of 6 by 8)

@@ -2,13 +2,13 @@ package dense
 
 //go:generate go run -C gen . -out ../kernel_amd64.s -stubs ../kernel_amd64_stubs.go -pkg dense
 
-// columns is the width of a panel: the columns of C that strip works on at a time.
-const columns = 8
+// Columns is the width of a panel: the columns of C that Strip works on at a time.
+const Columns = 8
 
-// strip computes C -= A·B for C of m by cols, A of m by depth and B of depth by cols, cols being at most eight. Entry
+// Strip computes C -= A·B for C of m by cols, A of m by depth and B of depth by cols, cols being at most eight. Entry
 // (i, p) of A is at i*ars+p*acs, so that A may be stored either way; entry (p, j) of B is at p*bs+j, and entry (i, j) of C
 // at i*ldc+j. Each entry of C takes its terms one after another in the order of p, whatever the shape.
-func strip(m, cols, depth int, a []float64, ars, acs int, b []float64, bs int, c []float64, ldc int) {
+func Strip(m, cols, depth int, a []float64, ars, acs int, b []float64, bs int, c []float64, ldc int) {
 	if m <= 0 || cols <= 0 || depth <= 0 {
 		return
 	}
@@ -21,7 +21,7 @@ func strip(m, cols, depth int, a []float64, ars, acs int, b []float64, bs int, c
 	}
 }
 
-// stripPlain is strip in Go: tiles of 3 by 2 results kept in registers, what is left row by row. Larger tiles would read
+// stripPlain is Strip in Go: tiles of 3 by 2 results kept in registers, what is left row by row. Larger tiles would read
 // less, but the compiler then keeps sums in memory, which costs a third of the speed.
 func stripPlain(m, cols, depth int, a []float64, ars, acs int, b []float64, bs int, c []float64, ldc int) {
 	i := 0

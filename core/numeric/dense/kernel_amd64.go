@@ -15,7 +15,7 @@ const (
 
 var (
 	best = detect()
-	// using is the level that strip uses; tests try the lower ones too.
+	// using is the level that Strip uses; tests try the lower ones too.
 	using = best
 )
 
@@ -29,7 +29,7 @@ func detect() level {
 	return plain
 }
 
-// stripFast is strip in assembly. It returns false when there is none for this processor.
+// stripFast is Strip in assembly. It returns false when there is none for this processor.
 func stripFast(m, cols, depth int, a []float64, ars, acs int, b []float64, bs int, c []float64, ldc int) bool {
 	switch using {
 	case avx512:

@@ -4,12 +4,12 @@
 
 package dense
 
-// stripAVX2 computes C -= A·B for C of m by cols ≤ 8; see strip.
+// stripAVX2 computes C -= A·B for C of m by cols ≤ 8; see Strip.
 //
 //go:noescape
 func stripAVX2(m int, cols int, depth int, a *float64, ars int, acs int, b *float64, bs int, c *float64, ldc int)
 
-// stripAVX512 computes C -= A·B for C of m by cols ≤ 8; see strip.
+// stripAVX512 computes C -= A·B for C of m by cols ≤ 8; see Strip.
 //
 //go:noescape
 func stripAVX512(m int, cols int, depth int, a *float64, ars int, acs int, b *float64, bs int, c *float64, ldc int)

@@ -12,9 +12,9 @@ func TestStripAgreesWithSums(t *testing.T) {
 	eachLevel(t, func(t *testing.T, fused bool) {
 		r := rand.New(rand.NewPCG(2, 1))
 		for m := range 29 {
-			for cols := 0; cols <= columns; cols++ {
+			for cols := 0; cols <= Columns; cols++ {
 				for _, depth := range []int{0, 1, 2, 7, 40} {
-					for _, s := range [][4]int{{depth + 1, 1, columns, columns}, {1, m + 2, cols + 3, cols + 1}} {
+					for _, s := range [][4]int{{depth + 1, 1, Columns, Columns}, {1, m + 2, cols + 3, cols + 1}} {
 						checkStrip(t, r, m, cols, depth, s[0], s[1], s[2], s[3], fused)
 					}
 				}
@@ -38,7 +38,7 @@ func checkStrip(t *testing.T, r *rand.Rand, m, cols, depth, ars, acs, bs, ldc in
 		c[i] = r.Float64()
 	}
 	got := append([]float64(nil), c...)
-	strip(m, cols, depth, a, ars, acs, b, bs, got[:max(0, size(m, ldc, cols, 1))], ldc)
+	Strip(m, cols, depth, a, ars, acs, b, bs, got[:max(0, size(m, ldc, cols, 1))], ldc)
 	for i, v := range c {
 		row, j := i/ldc, i%ldc
 		want := v
@@ -59,13 +59,13 @@ func TestPanelsHoldTranspose(t *testing.T) {
 		n, k := s[0], s[1]
 		b := random(r, n*(k+1))
 		p.Pack(n, k, b, k+1)
-		for j := range (n + columns - 1) / columns * columns {
+		for j := range (n + Columns - 1) / Columns * Columns {
 			for q := range k {
 				want := 0.0
 				if j < n {
 					want = b[j*(k+1)+q]
 				}
-				if got := p.panel(j / columns * columns)[q*columns+j%columns]; got != want {
+				if got := p.panel(j / Columns * Columns)[q*Columns+j%Columns]; got != want {
 					t.Fatalf("%v: row %d entry %d is %g, want %g", s, j, q, got, want)
 				}
 			}

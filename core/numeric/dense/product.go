@@ -12,19 +12,19 @@ func (p *Panels) Reset(n, k int) {
 	if n < 0 || k < 0 {
 		panic("dense: Panels: bad shape")
 	}
-	size := (n + columns - 1) / columns * columns * k
+	size := (n + Columns - 1) / Columns * Columns * k
 	if cap(p.v) < size {
 		p.v = make([]float64, size+size/4)
 	}
 	p.N, p.K, p.v = n, k, p.v[:size]
-	if n%columns > 0 {
-		clear(p.v[n/columns*columns*k:])
+	if n%Columns > 0 {
+		clear(p.v[n/Columns*Columns*k:])
 	}
 }
 
 // Row returns the place of row j: entry k belongs at index 8k of the slice.
 func (p *Panels) Row(j int) []float64 {
-	return p.v[j/columns*columns*p.K+j%columns : (j/columns+1)*columns*p.K]
+	return p.v[j/Columns*Columns*p.K+j%Columns : (j/Columns+1)*Columns*p.K]
 }
 
 // panel is the group of eight rows that begins with row j, a multiple of eight.
@@ -48,7 +48,7 @@ func packRow(to, from []float64) {
 	at := 0
 	for _, v := range from {
 		to[at] = v
-		at += columns
+		at += Columns
 	}
 }
 
@@ -62,8 +62,8 @@ func SubMul(m int, a []float64, lda int, b *Panels, c []float64, ldc int) {
 	}
 	for p := 0; p < b.K; p += cacheDepth {
 		depth := min(cacheDepth, b.K-p)
-		for j := 0; j < b.N; j += columns {
-			strip(m, min(columns, b.N-j), depth, a[p:], lda, 1, b.panel(j)[p*columns:], columns, c[j:], ldc)
+		for j := 0; j < b.N; j += Columns {
+			Strip(m, min(Columns, b.N-j), depth, a[p:], lda, 1, b.panel(j)[p*Columns:], Columns, c[j:], ldc)
 		}
 	}
 }
@@ -76,9 +76,9 @@ func SubMulLower(from, to int, a []float64, lda int, b *Panels, c []float64, ldc
 	}
 	for p := 0; p < b.K; p += cacheDepth {
 		depth := min(cacheDepth, b.K-p)
-		for j := 0; j < to; j += columns {
+		for j := 0; j < to; j += Columns {
 			i := max(from, j)
-			strip(to-i, min(columns, b.N-j), depth, a[i*lda+p:], lda, 1, b.panel(j)[p*columns:], columns, c[i*ldc+j:], ldc)
+			Strip(to-i, min(Columns, b.N-j), depth, a[i*lda+p:], lda, 1, b.panel(j)[p*Columns:], Columns, c[i*ldc+j:], ldc)
 		}
 	}
 }
@@ -102,11 +102,11 @@ func SubMulTLower(n, k int, a []float64, lda int, b []float64, ldb int, c []floa
 
 // subMulT packs one panel at a time.
 func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float64, ldc int, lower bool) {
-	var panel [cacheDepth * columns]float64
+	var panel [cacheDepth * Columns]float64
 	for p := 0; p < k; p += cacheDepth {
 		depth := min(cacheDepth, k-p)
-		for j := 0; j < n; j += columns {
-			cols, i := min(columns, n-j), 0
+		for j := 0; j < n; j += Columns {
+			cols, i := min(Columns, n-j), 0
 			if lower {
 				i = j
 			}
@@ -114,7 +114,7 @@ func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 				packRow(panel[q:], b[(j+q)*ldb+p:][:depth])
 			}
 			if i < m {
-				strip(m-i, cols, depth, a[i*lda+p:], lda, 1, panel[:], columns, c[i*ldc+j:], ldc)
+				Strip(m-i, cols, depth, a[i*lda+p:], lda, 1, panel[:], Columns, c[i*ldc+j:], ldc)
 			}
 		}
 	}
@@ -123,7 +123,7 @@ func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 // SolveLowerT solves X·Lᵀ = B in place for the m rows of B (m by n), L being lower triangular of n by n with ones on
 // the diagonal, which are not read.
 func SolveLowerT(m, n int, l []float64, ldl int, b []float64, ldb int) {
-	const tile = columns
+	const tile = Columns
 	if m < 0 || n < 0 || ldl < n || ldb < n {
 		panic("dense: SolveLowerT: bad shape")
 	}

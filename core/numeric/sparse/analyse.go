@@ -15,7 +15,8 @@ type Analysis struct {
 	nodes   []supernode
 	source  []sourceEntry // entries of the matrix by the column of the lower position, see columns
 	columns []int         // entries of position k are source[columns[k]:columns[k+1]]
-	tasks   schedule
+	tasks   schedule      // of the elimination
+	passes  schedule      // of solving
 
 	// Entries is the number of non-zeros of the factor including those that merged supernodes store in vain; Flops the
 	// additions and multiplications of the elimination.
@@ -65,7 +66,8 @@ func Analyse(p *Pattern, order Ordering) (*Analysis, error) {
 	a.layOut(c, q)
 	a.findSources()
 	a.measure()
-	a.tasks = a.split()
+	a.tasks = a.split(func(s *supernode) float64 { return s.flops }, largestSubtree)
+	a.passes = a.split(func(s *supernode) float64 { return float64(len(s.rows)) * float64(s.width) }, largestPass)
 	a.Seconds = time.Since(began).Seconds()
 	return a, nil
 }

@@ -1,171 +1,221 @@
 package sparse
 
 import (
+	"sync"
+
 	"hushframe/core/numeric/dense"
 )
 
-// lanes is the number of right-hand sides solved for in one pass over the factor. Those of a position lie side by side.
-const lanes = 4
-
-type lane = [lanes]float64
+// lanes is the number of right-hand sides solved for in one pass over the factor, which is what a pass costs: reading
+// it. Those of a position lie side by side.
+const lanes = dense.Columns
 
 // Solve overwrites nrhs right-hand sides, stored one after another, each of length N, with the solutions of A·x = b.
 // Each gets the same bits whatever is solved along with it. It uses one goroutine; SolveThreads uses several.
 func (f *Factor) Solve(x []float64, nrhs int) { f.SolveThreads(x, nrhs, 1) }
 
-// SolveThreads is Solve with groups of four right-hand sides spread over goroutines.
+// SolveThreads is Solve with the subtrees of the elimination tree spread over goroutines.
 func (f *Factor) SolveThreads(x []float64, nrhs, threads int) {
 	n := len(f.d)
 	if nrhs < 0 || len(x) != n*nrhs {
 		panic("sparse: Solve: bad length")
 	}
-	groups := (nrhs + lanes - 1) / lanes
-	dense.Parallel(threads, groups, func(g int) {
-		count := min(lanes, nrhs-g*lanes)
-		f.solveGroup(x[g*lanes*n:][:count*n], count)
-	})
+	if n == 0 || nrhs == 0 {
+		return
+	}
+	ps := f.newPassage(threads)
+	for r := 0; r < nrhs; r += lanes {
+		ps.count = min(lanes, nrhs-r)
+		ps.solve(x[r*n:][:ps.count*n])
+	}
 }
 
-// solveGroup solves for up to four right-hand sides.
-func (f *Factor) solveGroup(x []float64, count int) {
-	n := len(f.d)
-	y := make([]lane, n)
-	order := f.analysis.order
-	for r := range count {
-		b := x[r*n:][:n]
-		for k, u := range order {
-			y[k][r] = b[u] * f.scale[u]
-		}
-	}
-	widest := 0
+// passage is a pass over the factor for some right-hand sides.
+type passage struct {
+	f       *Factor
+	threads int
+	count   int       // right-hand sides
+	y       []float64 // lanes of each position
+	// carries holds what each subtree subtracts from the positions beyond it, those of the rows below its root. It is
+	// added when all subtrees are done, in their order, so that it does not matter who has done them.
+	carries [][]float64
+	rooms   sync.Pool // of *room
+}
+
+// room is the workspace of one goroutine.
+type room struct {
+	z     []float64 // lanes of the columns of a supernode, in pivot order
+	local []int32   // place in the carry of each position beyond the subtree
+}
+
+func (f *Factor) newPassage(threads int) *passage {
+	n, widest := len(f.d), 0
 	for s := range f.pivots {
 		widest = max(widest, len(f.pivots[s]))
 	}
-	z := make([]lane, widest)
-	for s := range f.pivots {
-		f.forward(s, y, z)
+	ps := &passage{f: f, threads: threads, y: make([]float64, n*lanes)}
+	ps.rooms.New = func() any { return &room{z: make([]float64, widest*lanes), local: make([]int32, n)} }
+	for _, t := range f.analysis.passes.subtrees {
+		ps.carries = append(ps.carries, make([]float64, f.analysis.nodes[t.last].below()*lanes))
 	}
-	for s := len(f.pivots) - 1; s >= 0; s-- {
-		f.backward(s, y, z)
-	}
-	for r := range count {
-		b := x[r*n:][:n]
-		for k, u := range order {
-			b[u] = y[k][r] * f.scale[u]
-		}
-	}
+	return ps
 }
 
-// forward eliminates the columns of supernode s from the right-hand sides y and divides them by D. z is room for them.
-func (f *Factor) forward(s int, y, z []lane) {
+func (ps *passage) solve(x []float64) {
+	f, an := ps.f, ps.f.analysis
+	ps.exchange(x, true)
+	dense.Parallel(ps.threads, len(an.passes.subtrees), func(k int) {
+		w := ps.rooms.Get().(*room)
+		defer ps.rooms.Put(w)
+		t := an.passes.subtrees[k]
+		root := &an.nodes[t.last]
+		for i, position := range root.rows[root.width:] {
+			w.local[position] = int32(i)
+		}
+		clear(ps.carries[k])
+		for s := t.first; s <= t.last; s++ {
+			ps.forward(s, int(root.first+root.width), ps.carries[k], w)
+		}
+	})
+	for k, t := range an.passes.subtrees {
+		root := &an.nodes[t.last]
+		for i, position := range root.rows[root.width:] {
+			y := ps.y[int(position)*lanes:][:lanes]
+			for r, v := range ps.carries[k][i*lanes:][:lanes] {
+				y[r] += v
+			}
+		}
+	}
+	w := ps.rooms.Get().(*room)
+	for _, s := range an.passes.top {
+		ps.forward(s, len(f.d), nil, w)
+	}
+	for k := len(an.passes.top) - 1; k >= 0; k-- {
+		ps.backward(an.passes.top[k], w)
+	}
+	ps.rooms.Put(w)
+	dense.Parallel(ps.threads, len(an.passes.subtrees), func(k int) {
+		w := ps.rooms.Get().(*room)
+		defer ps.rooms.Put(w)
+		t := an.passes.subtrees[k]
+		for s := t.last; s >= t.first; s-- {
+			ps.backward(s, w)
+		}
+	})
+	ps.exchange(x, false)
+}
+
+// exchange brings the scaled right-hand sides into the order of elimination, or the solutions back.
+func (ps *passage) exchange(x []float64, in bool) {
+	const piece = 4096
+	f, n := ps.f, len(ps.f.d)
+	dense.Parallel(ps.threads, (n+piece-1)/piece, func(t int) {
+		for k := t * piece; k < min(n, (t+1)*piece); k++ {
+			u := int(f.analysis.order[k])
+			y, s := ps.y[k*lanes:][:ps.count], f.scale[u]
+			for r := range y {
+				if in {
+					y[r] = x[r*n+u] * s
+				} else {
+					x[r*n+u] = y[r] * s
+				}
+			}
+		}
+	})
+}
+
+// multiply computes C -= A·B for the lanes in use.
+func (ps *passage) multiply(m, depth int, a []float64, ars, acs int, b, c []float64) {
+	dense.Strip(m, ps.count, depth, a, ars, acs, b, lanes, c, lanes)
+}
+
+// run returns the number of leading rows that follow one another without a gap, up to a position.
+func run(rows []int32, end int) int {
+	k := 1
+	for k < len(rows) && rows[k] == rows[0]+int32(k) && int(rows[k]) != end {
+		k++
+	}
+	return k
+}
+
+// few is the number of columns of the diagonal block of a supernode that are substituted one by one.
+const few = 6
+
+// forward eliminates the columns of supernode s from the right-hand sides and divides them by D. What belongs to
+// positions from end on goes into the carry.
+func (ps *passage) forward(s int32, end int, carry []float64, w *room) {
+	f := ps.f
 	node := &f.analysis.nodes[s]
 	width := int(node.width)
 	l := f.l[node.offset:]
-	z = z[:width]
+	z := w.z[:width*lanes]
 	for k, position := range f.pivots[s] {
-		z[k] = y[position]
+		copy(z[k*lanes:][:lanes], ps.y[int(position)*lanes:])
 	}
-	for k := 1; k < width; k++ {
-		subtract(&z[k], dot(l[k*width:][:k], z))
+	for k := 0; k < width; k += few {
+		ps.multiply(min(few, width-k), k, l[k*width:], width, 1, z, z[k*lanes:])
+		for i := k + 1; i < min(k+few, width); i++ {
+			ps.multiply(1, i-k, l[i*width+k:], width, 1, z[k*lanes:], z[i*lanes:])
+		}
 	}
 	below := l[width*width:]
-	rows := node.rows[width:]
-	for _, position := range rows {
-		subtract(&y[position], dot(below[:width], z))
-		below = below[width:]
+	for rows := node.rows[width:]; len(rows) > 0; {
+		m := run(rows, end)
+		to := ps.y[int(rows[0])*lanes:]
+		if int(rows[0]) >= end {
+			to = carry[int(w.local[rows[0]])*lanes:]
+		}
+		ps.multiply(m, width, below, width, 1, z, to)
+		rows, below = rows[m:], below[m*width:]
 	}
 	f.divideLanes(int(node.first), z)
 	for k, position := range f.pivots[s] {
-		y[position] = z[k]
+		copy(ps.y[int(position)*lanes:], z[k*lanes:][:lanes])
 	}
 }
 
 // backward substitutes the rows below into the columns of supernode s.
-func (f *Factor) backward(s int, y, z []lane) {
+func (ps *passage) backward(s int32, w *room) {
+	f := ps.f
 	node := &f.analysis.nodes[s]
 	width := int(node.width)
 	l := f.l[node.offset:]
-	z = z[:width]
+	z := w.z[:width*lanes]
 	for k, position := range f.pivots[s] {
-		z[k] = y[position]
+		copy(z[k*lanes:][:lanes], ps.y[int(position)*lanes:])
 	}
 	below := l[width*width:]
-	rows := node.rows[width:]
-	for len(rows) >= 2 {
-		subtractTwo(z, below[:width], below[width:2*width], &y[rows[0]], &y[rows[1]])
-		rows, below = rows[2:], below[2*width:]
+	depth := max(8, 4096/width) // rows that stay in the first-level cache while all columns are served
+	for rows := node.rows[width:]; len(rows) > 0; {
+		m := min(run(rows, -1), depth)
+		ps.multiply(width, m, below, 1, width, ps.y[int(rows[0])*lanes:], z)
+		rows, below = rows[m:], below[m*width:]
 	}
-	if len(rows) > 0 {
-		subtractRow(z, below[:width], &y[rows[0]])
-	}
-	for k := width - 1; k > 0; k-- {
-		subtractRow(z[:k], l[k*width:][:k], &z[k])
+	for k := (width - 1) / few * few; k >= 0; k -= few {
+		for i := min(k+few, width) - 1; i > k; i-- {
+			ps.multiply(i-k, 1, l[i*width+k:], 1, width, z[i*lanes:], z[k*lanes:])
+		}
+		ps.multiply(k, min(few, width-k), l[k*width:], 1, width, z[k*lanes:], z)
 	}
 	for k, position := range f.pivots[s] {
-		y[position] = z[k]
-	}
-}
-
-func subtract(t *lane, s lane) {
-	t[0] -= s[0]
-	t[1] -= s[1]
-	t[2] -= s[2]
-	t[3] -= s[3]
-}
-
-// dot returns the sum over k of l[k]·z[k].
-func dot(l []float64, z []lane) lane {
-	var s0, s1, s2, s3 float64
-	z = z[:len(l)]
-	for k, u := range l {
-		t := &z[k]
-		s0 += u * t[0]
-		s1 += u * t[1]
-		s2 += u * t[2]
-		s3 += u * t[3]
-	}
-	return lane{s0, s1, s2, s3}
-}
-
-// subtractRow computes z[k] -= l[k]·t for all k.
-func subtractRow(z []lane, l []float64, t *lane) {
-	a0, a1, a2, a3 := t[0], t[1], t[2], t[3]
-	z = z[:len(l)]
-	for k, u := range l {
-		w := &z[k]
-		w[0] -= u * a0
-		w[1] -= u * a1
-		w[2] -= u * a2
-		w[3] -= u * a3
-	}
-}
-
-// subtractTwo computes z[k] -= l[k]·s + m[k]·t for all k.
-func subtractTwo(z []lane, l, m []float64, s, t *lane) {
-	a0, a1, a2, a3 := s[0], s[1], s[2], s[3]
-	b0, b1, b2, b3 := t[0], t[1], t[2], t[3]
-	z, m = z[:len(l)], m[:len(l)]
-	for k, u := range l {
-		w, v := &z[k], m[k]
-		w[0] -= u*a0 + v*b0
-		w[1] -= u*a1 + v*b1
-		w[2] -= u*a2 + v*b2
-		w[3] -= u*a3 + v*b3
+		copy(ps.y[int(position)*lanes:], z[k*lanes:][:lanes])
 	}
 }
 
 // divideLanes divides by the blocks of D of the columns from first on.
-func (f *Factor) divideLanes(first int, z []lane) {
-	for k := 0; k < len(z); k++ {
+func (f *Factor) divideLanes(first int, z []float64) {
+	for k := 0; k*lanes < len(z); k++ {
 		d, e := f.d[first+k], f.e[first+k]
+		a := z[k*lanes:][:lanes]
 		if e == 0 {
-			for r := range z[k] {
-				z[k][r] /= d
+			for r := range a {
+				a[r] /= d
 			}
 			continue
 		}
-		for r := range z[k] {
-			z[k][r], z[k+1][r] = dense.SolveTwo(d, f.d[first+k+1], e, z[k][r], z[k+1][r])
+		b := z[(k+1)*lanes:][:lanes]
+		for r := range a {
+			a[r], b[r] = dense.SolveTwo(d, f.d[first+k+1], e, a[r], b[r])
 		}
 		k++
 	}

@@ -40,7 +40,7 @@ type strides struct {
 // generate writes the function that takes whole tiles of rows, and then one smaller tile for what is left.
 func generate(x machine) {
 	TEXT("strip"+x.name, NOSPLIT, "func(m, cols, depth int, a *float64, ars, acs int, b *float64, bs int, c *float64, ldc int)")
-	Doc("strip" + x.name + " computes C -= A·B for C of m by cols ≤ 8; see strip.")
+	Doc("strip" + x.name + " computes C -= A·B for C of m by cols ≤ 8; see Strip.")
 	Pragma("noescape")
 	s := strides{}
 	load := func(name string) reg.GPVirtual { return Load(Param(name), GP64()).(reg.GPVirtual) }
