@@ -8,7 +8,7 @@ import (
 
 // ModesKind is what `solve` makes of a mesh and properties.
 var ModesKind = artifact.Kind{
-	Name: "modes", Version: 2,
+	Name: "modes", Version: 3,
 	About: "modal basis of the free airframe (rigid-body, elastic and residual vectors, mass-normalised) and what each elastic mode is",
 	Scalars: []artifact.Column{
 		col("up_to", artifact.Float, "Hz", "every mode below this is in the basis"),
@@ -70,6 +70,11 @@ var ModesKind = artifact.Kind{
 			col("moment_shares", artifact.FloatList, "1", "the same for moments"),
 			col("below", artifact.Float, "Hz", "distance to the elastic mode below; infinite for none"),
 			col("above", artifact.Float, "Hz", "distance to the elastic mode above; infinite for none"),
+		)},
+		{Name: "mesh_errors", About: "how far the mesh is thought to put frequencies off, by comparison with another mesh; empty if not asked for", Columns: columns(
+			col("mode", artifact.Int, "", "number of the mode"),
+			col("other", artifact.Float, "Hz", "frequency of the same mode on the other mesh"),
+			col("error", artifact.Float, "Hz", "estimated error of the frequency"),
 		)},
 		{Name: "meetings", About: "rotor speeds at which orders meet modes", Columns: columns(
 			col("mode", artifact.Int, "", "number of the mode"),
@@ -153,6 +158,10 @@ func EncodeModes(m *Modes) *artifact.Artifact {
 			numbers, meetings = append(numbers, mode.Number), append(meetings, x)
 		}
 	}
+	a.Table("mesh_errors").
+		Set("mode", list(s.MeshErrors, func(x modal.MeshError) int64 { return int64(x.Mode) })).
+		Set("other", list(s.MeshErrors, func(x modal.MeshError) float64 { return x.Other })).
+		Set("error", list(s.MeshErrors, func(x modal.MeshError) float64 { return x.Error }))
 	a.Table("meetings").
 		Set("mode", ints(numbers)).
 		Set("order", list(meetings, func(x modal.Meeting) int64 { return int64(x.Order) })).
@@ -296,6 +305,14 @@ func decodeSurvey(a *artifact.Artifact, m *Modes) error {
 			return malformed("modes", "mode %d contradicts the other tables", i+1)
 		}
 		s.Modes = append(s.Modes, x)
+	}
+	t = a.Table("mesh_errors")
+	for i := range t.Rows() {
+		x := modal.MeshError{Mode: int(t.Ints("mode")[i]), Other: t.Floats("other")[i], Error: t.Floats("error")[i]}
+		if x.Mode < 1 || x.Mode > len(s.Modes) {
+			return malformed("modes", "an error is of mode %d", x.Mode)
+		}
+		s.MeshErrors = append(s.MeshErrors, x)
 	}
 	t = a.Table("meetings")
 	for i := range t.Rows() {

@@ -68,6 +68,11 @@ func modeTable(m *kinds.Modes) *table {
 		About: "Gyro strength: peak rate of that mode alone at its own damping, root sum of squares over unit forces at all rotor hubs. In bold the strongest of each axis; 0 is below a thousandth of it.",
 		Columns: []column{{"mode", "", true}, {"frequency", "Hz", true}, {"damping ratio", "%", true}, {"most strain", "", false},
 			{"roll", "(deg/s)/N", true}, {"pitch", "(deg/s)/N", true}, {"yaw", "(deg/s)/N", true}, {"to the mode below", "Hz", true}, {"above", "Hz", true}}}
+	estimated := len(m.Survey.MeshErrors) > 0
+	if estimated {
+		t.Columns = append(t.Columns, column{"mesh error", "%", true})
+		t.About += " The mesh error is what the mesh is thought to put the frequency off, from a second mesh; a dash where the mode was not found on it."
+	}
 	var best [3]float64
 	for _, x := range m.Survey.Modes {
 		for axis := range best {
@@ -81,7 +86,13 @@ func modeTable(m *kinds.Modes) *table {
 			strength.Strong = x.Strength[axis] > 0 && x.Strength[axis] == best[axis]
 			row = append(row, strength)
 		}
-		t.Rows = append(t.Rows, append(row, distance(x.Below), distance(x.Above)))
+		row = append(row, distance(x.Below), distance(x.Above))
+		if e, ok := m.Survey.MeshError(x.Number); ok {
+			row = append(row, percent(e.Error/x.Frequency, 2))
+		} else if estimated {
+			row = append(row, missing())
+		}
+		t.Rows = append(t.Rows, row)
 	}
 	return t
 }

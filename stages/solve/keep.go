@@ -18,11 +18,11 @@ import (
 
 // kept computes the modes, or takes those kept from an earlier run in which all that matters to K and M
 // was the same. Either way the result has passed through the same files, so that both give equal bytes.
-func kept(ctx context.Context, call *stage.Call, f *assembly.Frame, p *airframe.Properties, set settings) (*kinds.Modes, []string, error) {
-	key := fmt.Sprintf("solve modes mesh=%s properties=%s up_to=%v", call.Inputs["mesh"][0].Hash, kinds.EncodeProperties(neutral(p)).Hash(), set.upTo)
+func kept(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []string, error) {
+	key := fmt.Sprintf("solve modes mesh=%s properties=%s up_to=%v refined=%v", call.Inputs["mesh"][0].Hash, kinds.EncodeProperties(neutral(k.properties)).Hash(), k.set.upTo, k.refined)
 	const modesFolder, notesFile = "modes", "notes.json"
 	folder, found, err := call.Services.Keep(ctx, key, func(folder string) error {
-		modes, notes, err := compute(ctx, call, f, p, set)
+		modes, notes, err := compute(ctx, call, k)
 		if err != nil {
 			return explain(err)
 		}

@@ -41,7 +41,7 @@ func outcome(m *kinds.Modes, p *airframe.Properties, set settings, notes []strin
 	}
 	o.Figures = map[string]any{
 		"modes": objects, "lowest": hertz(s.Modes[0].Frequency), "modes_below": float64(below), "modes_wanted": float64(wanted),
-		"mass": stage.Quantity{SI: m.Mass, Dimension: "mass"}, "rigid_ratio": m.RigidRatio,
+		"mass": stage.Quantity{SI: m.Mass, Dimension: "mass"}, "rigid_ratio": m.RigidRatio, "largest_error": largestError(m, set.upTo),
 	}
 	for axis, name := range kinds.AxisNames {
 		width := math.Inf(1)
@@ -128,10 +128,20 @@ func modeTable(m *kinds.Modes) stage.Section {
 		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "frequency, Hz", Right: true}, {Name: "damping, %", Right: true}, {Name: "motion"},
 			{Name: "roll, deg/s/N", Right: true}, {Name: "pitch, deg/s/N", Right: true}, {Name: "yaw, deg/s/N", Right: true}, {Name: "gap, Hz", Right: true}},
 	}
+	estimated := len(m.Survey.MeshErrors) > 0
+	if estimated {
+		s.Columns = append(s.Columns, stage.Column{Name: "mesh error, %", Right: true})
+	}
 	for i := range m.Survey.Modes {
 		mode := &m.Survey.Modes[i]
-		s.Rows = append(s.Rows, []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), motion(mode, m.Survey.Groups),
-			strength(mode.Strength[0]), strength(mode.Strength[1]), strength(mode.Strength[2]), gap(mode)})
+		row := []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), motion(mode, m.Survey.Groups),
+			strength(mode.Strength[0]), strength(mode.Strength[1]), strength(mode.Strength[2]), gap(mode)}
+		if e, ok := m.Survey.MeshError(mode.Number); ok {
+			row = append(row, fmt.Sprintf("%.2g", 100*e.Error/mode.Frequency))
+		} else if estimated {
+			row = append(row, "-")
+		}
+		s.Rows = append(s.Rows, row)
 	}
 	return s
 }

@@ -58,6 +58,7 @@ type bench struct {
 	t      *testing.T
 	folder string
 	keep   *keeper
+	truths map[string]bool
 }
 
 func newBench(t *testing.T) *bench {
@@ -92,6 +93,9 @@ func (b *bench) run(m *mesh.Mesh, p *airframe.Properties, threads int, set map[s
 	}
 	for name, v := range set {
 		arguments[name] = stage.Quantity{SI: v, Dimension: "frequency"}
+	}
+	for name, v := range b.truths {
+		arguments[name] = v
 	}
 	outcome, err := (solve.Stage{}).Run(context.Background(), &stage.Call{
 		Arguments: arguments,
@@ -315,4 +319,44 @@ func weak(points []airframe.MountPoint) []airframe.MountPoint {
 		}
 	}
 	return out
+}
+
+// On request every frequency gets an error, from a solution that is kept by itself.
+func TestErrorEstimate(t *testing.T) {
+	b := newBench(t)
+	m, p := known.Airframe(0.03)
+	set := map[string]float64{"up_to": 400, "swept_to": 260}
+	o, folder, err := b.run(m, p, 2, set)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !math.IsInf(figure(t, o, "largest_error"), 1) || len(modesIn(t, folder).Survey.MeshErrors) != 0 {
+		t.Errorf("errors without asking: %g", figure(t, o, "largest_error"))
+	}
+	b.truths = map[string]bool{"estimate_error": true}
+	o, folder, err = b.run(m, p, 2, set)
+	if err != nil || b.keep.made != 2 {
+		t.Fatalf("%v; solved %d times", err, b.keep.made)
+	}
+	s := modesIn(t, folder).Survey
+	if len(s.MeshErrors) != len(s.Modes) {
+		t.Errorf("%d of %d modes have an error", len(s.MeshErrors), len(s.Modes))
+	}
+	worst := 0.0
+	for _, e := range s.MeshErrors {
+		f := s.Modes[e.Mode-1].Frequency
+		if !(e.Error > 0) || !(e.Other < f) {
+			t.Errorf("mode %d at %g Hz has %+v: a finer mesh is softer", e.Mode, f, e)
+		}
+		if f <= 400 {
+			worst = max(worst, e.Error/f)
+		}
+	}
+	if got := figure(t, o, "largest_error"); got != worst || !(got < 0.05) {
+		t.Errorf("largest error %g, want %g", got, worst)
+	}
+	table := o.Summary[0]
+	if last := table.Columns[len(table.Columns)-1].Name; last != "mesh error, %" || len(table.Rows[0]) != len(table.Columns) {
+		t.Errorf("the mode table ends with %q", last)
+	}
 }

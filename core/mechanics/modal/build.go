@@ -24,6 +24,8 @@ type Options struct {
 	// UpTo asks for every mode below it, Hz.
 	UpTo    float64
 	Threads int
+	// Bare leaves out residual vectors, shapes and the stiffness of groups: what a comparison of meshes needs.
+	Bare bool
 	// Progress, when not nil, is told the phase and the fraction of it that is done.
 	Progress func(phase string, fraction float64)
 }
@@ -101,9 +103,11 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	}
 	modes := b.list(RigidBodies)
 
-	progress("static answers", 0)
-	if err := b.residuals(ctx, places, res); err != nil {
-		return nil, err
+	if !opt.Bare {
+		progress("static answers", 0)
+		if err := b.residuals(ctx, places, res); err != nil {
+			return nil, err
+		}
 	}
 	progress("energies", 0)
 	e, err := s.Energies(ctx, modes, opt.Threads)
@@ -112,7 +116,7 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	}
 	st.shares(s, e)
 	progress("damping groups", 0)
-	if err := b.finish(ctx, st.Basis, places); err != nil {
+	if err := b.finish(ctx, st.Basis, places, opt.Bare); err != nil {
 		return nil, err
 	}
 	return st, nil
@@ -138,11 +142,14 @@ func rigidRatio(values []float64) (float64, error) {
 }
 
 // finish fills the basis.
-func (b *span) finish(ctx context.Context, out *Basis, places []Place) error {
+func (b *span) finish(ctx context.Context, out *Basis, places []Place, bare bool) error {
 	s, n := b.system, b.count()
 	out.Kinds, out.Frequency = b.kinds, b.frequency
 	out.Shapes = make([][]float64, n)
 	dense.Parallel(b.threads, n, func(v int) {
+		if bare {
+			return
+		}
 		full := make([]float64, 6*len(s.Problem().Nodes))
 		s.Expand(full, b.vector(v))
 		shape := make([]float64, 0, len(full)/2)
@@ -159,14 +166,19 @@ func (b *span) finish(ctx context.Context, out *Basis, places []Place) error {
 		out.Sites = append(out.Sites, site)
 	}
 	// Rigid motions strain nothing.
-	stiffness, err := s.GroupStiffness(ctx, b.list(RigidBodies), b.threads)
-	if err != nil {
-		return err
+	var stiffness [][]float64
+	if !bare {
+		var err error
+		if stiffness, err = s.GroupStiffness(ctx, b.list(RigidBodies), b.threads); err != nil {
+			return err
+		}
 	}
 	for g, group := range s.Problem().Groups {
 		k, some := make([]float64, n*n), n-RigidBodies
-		for i := range some {
-			copy(k[(RigidBodies+i)*n+RigidBodies:], stiffness[g][i*some:(i+1)*some])
+		if !bare {
+			for i := range some {
+				copy(k[(RigidBodies+i)*n+RigidBodies:], stiffness[g][i*some:(i+1)*some])
+			}
 		}
 		out.Groups = append(out.Groups, LossGroup{Name: group.Name, Kind: group.Kind, Stiffness: k})
 	}

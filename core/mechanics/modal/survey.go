@@ -8,6 +8,8 @@ type Survey struct {
 	// the shares of kinetic energy: parts, then bodies; Rotors the rotors.
 	Groups, Kinds, Carriers, Rotors []string
 	Modes                           []Mode
+	// MeshErrors holds what is known of the error of frequencies, by mode; none if not asked for.
+	MeshErrors []MeshError
 	// Gaps holds, per axis, neighbouring modes that the gyro feels on it.
 	Gaps [3][]Gap
 }
@@ -53,6 +55,16 @@ const HoverBand = 0.15
 type Gap struct {
 	Lower, Upper int     // mode numbers
 	Width        float64 // Hz
+}
+
+// MeshError returns the error of a mode, in Hz.
+func (s *Survey) MeshError(number int) (e MeshError, ok bool) {
+	for _, e := range s.MeshErrors {
+		if e.Mode == number {
+			return e, true
+		}
+	}
+	return MeshError{}, false
 }
 
 // SmallestGap returns the narrowest gap of an axis; ok is false when fewer than two modes count.

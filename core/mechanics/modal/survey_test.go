@@ -235,3 +235,44 @@ func TestHingeIsRefused(t *testing.T) {
 		t.Errorf("got %v", err)
 	}
 }
+
+// The error that a comparison with the refined mesh gives, against what further refinement shows.
+func TestMeshErrors(t *testing.T) {
+	m, p := known.Airframe(0.03)
+	var structures []*modal.Structure
+	var surveys []*modal.Survey
+	for range 3 {
+		f, err := assembly.FromAirframe(m, p, builtin)
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := assembly.Assemble(context.Background(), &f.Problem, 2)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var places []modal.Place
+		for i, b := range p.Bodies {
+			places = append(places, modal.Place{Name: b.Name, Kind: "body", Body: f.BodyOf[i], Point: b.Centre})
+		}
+		st, err := modal.Build(context.Background(), s, places, modal.Options{UpTo: 700, Threads: 2, Bare: true})
+		if err != nil {
+			t.Fatal(err)
+		}
+		carriers := make([]string, len(st.Kinetic[0]))
+		structures, surveys = append(structures, st), append(surveys, modal.Describe(st.Basis, st.Strain, st.Kinetic, carriers))
+		m = assembly.Refine(m)
+	}
+	errs := surveys[0].CompareMeshes(structures[0].Basis, surveys[1], structures[1].Basis, 0.5)
+	best := surveys[0].CompareMeshes(structures[0].Basis, surveys[2], structures[2].Basis, 0.25)
+	if len(errs) < 8 || len(best) != len(errs) {
+		t.Fatalf("%d and %d of %d modes are found again", len(errs), len(best), len(surveys[0].Modes))
+	}
+	for i, e := range errs {
+		f := surveys[0].Modes[e.Mode-1].Frequency
+		shown := math.Abs(f - best[i].Other)
+		t.Logf("mode %d at %.1f Hz: estimated %.3f %%, shown %.3f %%", e.Mode, f, 100*e.Error/f, 100*shown/f)
+		if e.Mode != best[i].Mode || e.Error < 0.5*shown || e.Error > 2*shown+1e-4*f {
+			t.Errorf("mode %d at %g Hz: the estimate is %g Hz, two refinements show %g", e.Mode, f, e.Error, shown)
+		}
+	}
+}
