@@ -1,4 +1,4 @@
-# Question: does a stiffness limit that revision A cannot meet stop the job?
+# Question: does a mass limit that revision A cannot meet fail the job?
 # Expected: it does, with exit code 3, and the report is written all the same.
 
 job "sandpiper-limit" {
@@ -19,6 +19,7 @@ stage "solve" "modes" {
   mesh       = stage.shells.mesh
   properties = stage.frame.properties
   up_to      = "300 Hz"
+  swept_to   = "200 Hz"
 }
 
 stage "report" "page" {

@@ -36,6 +36,9 @@ func outcome(m *mesh.Mesh) *stage.Outcome {
 	s.Rows = append(s.Rows, row("all", "", all, len(m.Beams)))
 	nodes := m.NodesInUse()
 	s.Text = fmt.Sprintf("%d nodes, %d unknowns before rigid ties", nodes, 6*nodes)
+	if all.Narrow > 0 {
+		s.Text += "; flat triangles lie in the stretched rows along free edges and at sharp corners"
+	}
 	return &stage.Outcome{
 		Figures: map[string]any{
 			"nodes":            float64(nodes),

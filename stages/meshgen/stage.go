@@ -4,10 +4,14 @@ package meshgen
 import (
 	"context"
 	"errors"
+	"slices"
+	"strings"
 
+	"hushframe/core/mechanics/element/shell"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/nearest"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -32,7 +36,7 @@ along its edges are short enough for torsion; elsewhere they are as long as
 wanted, and shorter near small features. Standoffs become beams.`,
 		Arguments: []stage.Argument{
 			{Name: "geometry", About: "geometry from import", Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"geometry"}}, Required: true},
-			{Name: "element", About: "element type of plates", Type: stage.Type{Kind: stage.Text}, Default: "quadratic-triangle", Example: `"quadratic-triangle"`},
+			{Name: "element", About: "element type of plates", Type: stage.Type{Kind: stage.Text}, Default: "quadratic-triangle", Example: `"quadratic-triangle"`, Choices: elementNames()},
 			{Name: "elements", About: "element types of single plates, by name", Type: stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}},
 				Example: `{ top = "linear-triangle" }`},
 			{Name: "size", About: "wanted length of triangle sides", Type: length, Default: stage.Quantity{SI: 5e-3, Dimension: "length"}, Example: "5 mm", Above: &zero},
@@ -69,6 +73,13 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		Progress: func(done, total int) { call.Report.Progress("plates", float64(done)/float64(total)) },
 	}
 	for name, v := range call.Arguments.Map("elements") {
+		if !slices.Contains(elementNames(), v.(string)) {
+			f := fault.New(fault.Input, "there is no element type %q", v).In("mesh plate", name).Of("elements")
+			if near := nearest.Name(v.(string), elementNames()); near != "" {
+				return nil, f.Do("did you mean %q?", near)
+			}
+			return nil, f.Do("use one of %s", strings.Join(elementNames(), ", "))
+		}
 		o.Elements[name] = v.(string)
 	}
 	for name, v := range call.Arguments.Map("sizes") {
@@ -84,6 +95,15 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, err
 	}
 	return outcome(m), nil
+}
+
+// elementNames lists the element types that plates can have.
+func elementNames() []string {
+	var names []string
+	for _, t := range shell.Types() {
+		names = append(names, t.Describe().Name)
+	}
+	return names
 }
 
 // explain turns an error of the kernel into a fault with a remedy.

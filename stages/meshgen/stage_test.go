@@ -163,6 +163,7 @@ func TestFaultsNameWhatIsToBlame(t *testing.T) {
 		wantItem, text string
 	}{
 		{"element of no plate", same, "elements", map[string]any{"tpo": "linear-triangle"}, "elements", "tpo", "no such plate"},
+		{"no such element type", same, "elements", map[string]any{"top": "quadratic-trangle"}, "elements", "top", "no element type"},
 		{"size of no plate", same, "sizes", map[string]any{"tpo": mm(1)}, "sizes", "tpo", "no such plate"},
 		{"negative size", same, "sizes", map[string]any{"top": mm(-1)}, "sizes", "top", "must be positive"},
 		{"far too small", same, "size", mm(0.003), "size", "top", "would need about"},
