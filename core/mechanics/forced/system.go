@@ -14,6 +14,9 @@ type Options struct {
 	// Rate is C over the whole basis, n×n row-major, N·s/m in the basis: its
 	// symmetric part dissipates, its skew part is gyroscopic. nil is none.
 	Rate []float64
+	// Gyroscopic lists the spinning rotors whose couplings are added to C.
+	// They cost little where Rate is nil.
+	Gyroscopic []Gyroscopic
 }
 
 // Input is one force or moment component at a rotor.
@@ -32,11 +35,14 @@ type System struct {
 	vectors []int     // vectors of the basis in use, ascending
 	square  []float64 // ω_v²
 	loss    []float64 // Σ η_g K_g, n×n
-	rate    []float64 // C, n×n, or nil
+	rate    []float64 // C without gyroscopic couplings, n×n, or nil
 	inputs  []Input
 	load    [][]float64  // load[input][v]: modal force of a unit of the input
 	gyro    [3][]float64 // gyro[axis][v]: rotation of the gyro in vector v, rad
 	reduced *hessenberg  // when rate is nil
+	// Gyroscopic couplings: rows 2r and 2r+1 of tilt are those of rotor r.
+	tilt     [][]float64
+	momentum []float64
 }
 
 // New builds the system of a basis. Inputs are all six components at each site
@@ -73,6 +79,9 @@ func New(basis *modal.Basis, opt Options) (*System, error) {
 	if err := s.sites(); err != nil {
 		return nil, err
 	}
+	if err := s.spins(opt.Gyroscopic); err != nil {
+		return nil, err
+	}
 	for _, part := range [][]float64{s.square, s.loss, s.rate} {
 		for _, x := range part {
 			if math.IsNaN(x) || math.IsInf(x, 0) {
@@ -81,7 +90,7 @@ func New(basis *modal.Basis, opt Options) (*System, error) {
 		}
 	}
 	if s.rate == nil {
-		s.reduced = reduce(s.matrix(0), n)
+		s.reduced = reduce(s.matrix(0), n) // nothing gyroscopic is in it at 0
 	}
 	return s, nil
 }
@@ -162,6 +171,7 @@ func (s *System) matrix(omega float64) []complex128 {
 	for i, x := range s.square {
 		a[i*n+i] += complex(x-omega*omega, 0)
 	}
+	s.addGyroscopic(a, complex(0, omega))
 	return a
 }
 

@@ -73,29 +73,81 @@ func (s *System) Solve(frequency float64, force []complex128) ([]complex128, err
 	}
 	omega := angular(frequency)
 	n := len(s.vectors)
-	var q []complex128
-	var ok bool
-	if s.reduced != nil {
-		x := s.reduced.turn(force)
-		ok = s.reduced.solve(omega*omega, make([]complex128, n*n), x)
-		q = s.reduced.turnBack(x)
-	} else {
-		q = append([]complex128(nil), force...)
-		ok = factorSolve(s.matrix(omega), n, q)
+	if q, ok := s.fast(omega, force); ok {
+		return q, nil
 	}
-	if !ok || !finite(q) {
+	q := append([]complex128(nil), force...)
+	if !factorSolve(s.matrix(omega), n, q) || !finite(q) {
 		return nil, &Unbounded{frequency}
 	}
 	return q, nil
 }
 
+// fast solves by the Hessenberg form, and by Woodbury's identity when rotors
+// spin. It gives up when there is no such form, or when the frame at rest has
+// no bounded response.
+func (s *System) fast(omega float64, force []complex128) ([]complex128, bool) {
+	if s.reduced == nil {
+		return nil, false
+	}
+	n := len(s.vectors)
+	sides := [][]complex128{s.reduced.turn(force)}
+	if s.spinning() {
+		for _, row := range s.tilt {
+			sides = append(sides, s.reduced.turn(complexRow(row)))
+		}
+	}
+	if !s.reduced.solve(omega*omega, make([]complex128, n*n), sides...) {
+		return nil, false
+	}
+	for k := range sides {
+		sides[k] = s.reduced.turnBack(sides[k])
+	}
+	q := sides[0]
+	if m := len(sides) - 1; m > 0 {
+		p := make([]complex128, m*m)
+		answer := make([]complex128, m)
+		for i, row := range s.tilt {
+			answer[i] = along(row, q)
+			for j := range m {
+				p[i*m+j] = along(row, sides[1+j])
+			}
+		}
+		if !couple(p, s.momentum, omega) {
+			return nil, false
+		}
+		for i := range m {
+			var sum complex128
+			for j := range m {
+				sum += p[i*m+j] * answer[j]
+			}
+			for v, z := range sides[1+i] {
+				q[v] -= z * sum
+			}
+		}
+	}
+	return q, finite(q)
+}
+
+func complexRow(row []float64) []complex128 {
+	x := make([]complex128, len(row))
+	for v := range row {
+		x[v] = complex(row[v], 0)
+	}
+	return x
+}
+
+func along(row []float64, q []complex128) complex128 {
+	var sum complex128
+	for v, x := range row {
+		sum += complex(x, 0) * q[v]
+	}
+	return sum
+}
+
 // Drive gives the modal coordinates for one unit of an input.
 func (s *System) Drive(frequency float64, input int) ([]complex128, error) {
-	force := make([]complex128, len(s.vectors))
-	for v, x := range s.load[input] {
-		force[v] = complex(x, 0)
-	}
-	return s.Solve(frequency, force)
+	return s.Solve(frequency, complexRow(s.load[input]))
 }
 
 // driver computes all transfer functions at one frequency after another with
@@ -104,31 +156,34 @@ func (s *System) Drive(frequency float64, input int) ([]complex128, error) {
 type driver struct {
 	s      *System
 	work   []complex128
-	load   [][]complex128  // load in the coordinates of the solve
-	output [3][]complex128 // gyro rotation in the same
-	side   [3][]complex128
+	load   [][]complex128 // loads, then tilts, in the coordinates of the solve
+	output [][]complex128 // gyro rotation about three axes, then tilts, in the same
+	side   [][]complex128
 	rates  [3][]complex128
+	p      []complex128 // tilts under unit moments about the tilt axes
+	part   []complex128
 }
 
 func (s *System) driver() *driver {
 	n := len(s.vectors)
 	d := &driver{s: s, work: make([]complex128, n*n)}
-	for axis := range 3 {
-		d.output[axis] = make([]complex128, n)
-		for v, x := range s.gyro[axis] {
-			d.output[axis][v] = complex(x, 0)
-		}
-		if s.reduced != nil {
-			d.output[axis] = s.reduced.turn(d.output[axis])
-		}
-		d.side[axis] = make([]complex128, n)
-		d.rates[axis] = make([]complex128, len(s.inputs))
+	outputs, loads := s.gyro[:], s.load
+	if s.reduced != nil && s.spinning() {
+		outputs = append(append([][]float64{}, outputs...), s.tilt...)
+		loads = append(append([][]float64{}, loads...), s.tilt...)
+		d.p = make([]complex128, len(s.tilt)*len(s.tilt))
+		d.part = make([]complex128, len(s.tilt))
 	}
-	for _, row := range s.load {
-		x := make([]complex128, n)
-		for v := range row {
-			x[v] = complex(row[v], 0)
+	for _, row := range outputs {
+		x := complexRow(row)
+		if s.reduced != nil {
+			x = s.reduced.turn(x)
 		}
+		d.output = append(d.output, x)
+		d.side = append(d.side, make([]complex128, n))
+	}
+	for _, row := range loads {
+		x := complexRow(row)
 		if s.reduced != nil {
 			// bᵀ Q = (Qᴴ b̄)ᴴ with b real: the conjugate of Qᴴ b.
 			x = s.reduced.turn(x)
@@ -138,43 +193,99 @@ func (s *System) driver() *driver {
 		}
 		d.load = append(d.load, x)
 	}
+	for axis := range d.rates {
+		d.rates[axis] = make([]complex128, len(s.inputs))
+	}
 	return d
 }
 
 // gyroRates fills d.rates at a frequency.
 func (d *driver) gyroRates(frequency float64) error {
 	omega := angular(frequency)
-	for axis := range 3 {
-		copy(d.side[axis], d.output[axis])
-	}
-	var ok bool
 	if d.s.reduced != nil {
-		// Without C the matrix is symmetric and so its own transpose.
-		ok = d.s.reduced.solve(omega*omega, d.work, d.side[0], d.side[1], d.side[2])
-	} else {
-		n := len(d.s.vectors)
-		a := d.s.matrix(omega)
-		for i := range n {
-			for j := range n {
-				d.work[j*n+i] = a[i*n+j]
+		for k := range d.side {
+			copy(d.side[k], d.output[k])
+		}
+		// The matrix at rest is symmetric and so its own transpose.
+		if d.s.reduced.solve(omega*omega, d.work, d.side...) && d.combine(omega) {
+			return nil
+		}
+		if !d.s.spinning() {
+			return &Unbounded{frequency}
+		}
+		// The frame at rest has no bound here; with spinning rotors it may have.
+	}
+	return d.direct(frequency)
+}
+
+// combine fills d.rates from the solutions, with the gyroscopic couplings.
+func (d *driver) combine(omega float64) bool {
+	inputs, m := len(d.s.inputs), len(d.part)
+	for i := range m {
+		for j := range m {
+			d.p[i*m+j] = product(d.side[3+i], d.load[inputs+j])
+		}
+	}
+	if m > 0 && !couple(d.p, d.s.momentum, omega) {
+		return false
+	}
+	ok := true
+	for axis := range 3 {
+		x := d.side[axis]
+		// oᵀ (B⁻¹ − B⁻¹ Uᵀ M U B⁻¹) with B symmetric: x − Σ_ij (x·u_i) M_ij z_j.
+		for j := range m {
+			d.part[j] = 0
+			for i := range m {
+				d.part[j] += product(x, d.load[inputs+i]) * d.p[i*m+j]
 			}
 		}
-		ok = factorSolve(d.work, n, d.side[0], d.side[1], d.side[2])
-	}
-	for axis := range 3 {
-		for j, b := range d.load {
-			var sum complex128
-			for v, x := range d.side[axis] {
-				sum += x * b[v]
+		for j, f := range d.part {
+			for v, z := range d.side[3+j] {
+				x[v] -= f * z
 			}
-			d.rates[axis][j] = complex(0, omega) * sum
+		}
+		for j := range inputs {
+			d.rates[axis][j] = complex(0, omega) * product(x, d.load[j])
 		}
 		ok = ok && finite(d.rates[axis])
 	}
-	if !ok {
+	return ok
+}
+
+// direct fills d.rates by a full factorisation.
+func (d *driver) direct(frequency float64) error {
+	n := len(d.s.vectors)
+	omega := angular(frequency)
+	a := d.s.matrix(omega)
+	for i := range n {
+		for j := range n {
+			d.work[j*n+i] = a[i*n+j]
+		}
+	}
+	var sides [3][]complex128
+	for axis := range sides {
+		sides[axis] = complexRow(d.s.gyro[axis])
+	}
+	if !factorSolve(d.work, n, sides[:]...) {
 		return &Unbounded{frequency}
 	}
+	for axis, x := range sides {
+		for j, row := range d.s.load {
+			d.rates[axis][j] = complex(0, omega) * along(row, x)
+		}
+		if !finite(d.rates[axis]) {
+			return &Unbounded{frequency}
+		}
+	}
 	return nil
+}
+
+func product(x, y []complex128) complex128 {
+	var sum complex128
+	for v, z := range x {
+		sum += z * y[v]
+	}
+	return sum
 }
 
 func angular(frequency float64) float64 {

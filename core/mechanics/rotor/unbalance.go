@@ -32,6 +32,17 @@ func Whirl(axis airframe.Vec, spin int) [3]complex128 {
 	if spin != 1 && spin != -1 {
 		panic(fmt.Sprintf("rotor: spin is %d, not 1 or -1", spin))
 	}
+	e1, e2 := Square(axis)
+	var f [3]complex128
+	for c := range f {
+		f[c] = complex(e1[c], -float64(spin)*e2[c])
+	}
+	return f
+}
+
+// Square gives two unit vectors square to a unit axis and to each other, with
+// e₁ × e₂ along the axis.
+func Square(axis airframe.Vec) (e1, e2 airframe.Vec) {
 	// e₁ from the airframe axis that is farthest from the shaft.
 	far := 0
 	for c := range axis {
@@ -41,14 +52,11 @@ func Whirl(axis airframe.Vec, spin int) [3]complex128 {
 	}
 	var start airframe.Vec
 	start[far] = 1
-	e2 := unit(cross(axis, start))
-	e1 := cross(e2, axis)
-	var f [3]complex128
-	for c := range f {
-		f[c] = complex(e1[c], -float64(spin)*e2[c])
-	}
-	return f
+	e2 = unit(cross(axis, start))
+	return cross(e2, axis), e2
 }
+
+func dot(a, b airframe.Vec) float64 { return a[0]*b[0] + a[1]*b[1] + a[2]*b[2] }
 
 func cross(a, b airframe.Vec) airframe.Vec {
 	return airframe.Vec{a[1]*b[2] - a[2]*b[1], a[2]*b[0] - a[0]*b[2], a[0]*b[1] - a[1]*b[0]}

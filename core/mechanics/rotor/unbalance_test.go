@@ -77,5 +77,3 @@ func TestWhirlTurnsWithTheSpin(t *testing.T) {
 		}
 	}
 }
-
-func dot(a, b airframe.Vec) float64 { return a[0]*b[0] + a[1]*b[1] + a[2]*b[2] }

@@ -99,7 +99,8 @@ func truth(ctx context.Context, job string) (*plant, *airframe.Properties, error
 	if err != nil {
 		return nil, nil, err
 	}
-	return newPlant(m.Basis, p, 1200), p, nil
+	pl, err := newPlant(m.Basis, p, 1200)
+	return pl, p, err
 }
 
 // rotors turns the rotors of the frame into those of the flight. The

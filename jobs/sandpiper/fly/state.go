@@ -9,6 +9,7 @@ import (
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/modal"
+	"hushframe/core/mechanics/rotor"
 )
 
 // plant is the truth in modal coordinates: q″ + (C + G) q′ + Λ q = Bᵀ f, with
@@ -34,8 +35,8 @@ const (
 // newPlant builds the equations. Hysteretic losses Σ η_g K_g become the
 // equivalent viscous ones C_ij = Σ η_g (K_g)_ij / √(ω_i ω_j), which take the
 // same energy per cycle at the resonance of each mode: a time simulation
-// cannot be hysteretic and causal at once.
-func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) *plant {
+// cannot be hysteretic and causal at once. It fails when a rotor has no site.
+func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) (*plant, error) {
 	var keep []int
 	rigid := 0
 	for v, k := range b.Kinds {
@@ -83,7 +84,9 @@ func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) *plant {
 		}
 	}
 	pl.holdRigid(damp, gyro, keep)
-	pl.spin(damp, p, keep)
+	if err := pl.spin(damp, b, p, keep); err != nil {
+		return nil, err
+	}
 
 	pl.a = mat.NewDense(2*n, 2*n, nil)
 	for i := range n {
@@ -101,7 +104,7 @@ func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) *plant {
 			}
 		}
 	}
-	return pl
+	return pl, nil
 }
 
 // holdRigid damps the rigid-body motions: rotation to the bandwidth of the
@@ -124,26 +127,22 @@ func (pl *plant) holdRigid(damp *mat.Dense, gyro modal.Site, keep []int) {
 	}
 }
 
-// spin adds the gyroscopic matrix of each rotor with angular momentum
-// H = Jp Ω along its axis: the structure feels the moment −θ′ × H.
-func (pl *plant) spin(damp *mat.Dense, p *airframe.Properties, keep []int) {
-	for _, s := range pl.sites {
-		for _, r := range p.Rotors {
-			if r.Name != s.Name {
-				continue
-			}
-			h := r.PolarInertia * r.HoverSpeed * float64(r.Spin)
-			hv := airframe.Vec{h * r.Axis[0], h * r.Axis[1], h * r.Axis[2]}
-			for j, w := range keep {
-				t := s.Motion[w]
-				moment := airframe.Vec{t[4]*hv[2] - t[5]*hv[1], t[5]*hv[0] - t[3]*hv[2], t[3]*hv[1] - t[4]*hv[0]}
-				for i, v := range keep {
-					m := s.Motion[v]
-					damp.Set(i, j, damp.At(i, j)+m[3]*moment[0]+m[4]*moment[1]+m[5]*moment[2])
-				}
-			}
+// spin adds the gyroscopic matrix of the rotors at hover speed.
+func (pl *plant) spin(damp *mat.Dense, b *modal.Basis, p *airframe.Properties, keep []int) error {
+	var speeds []float64
+	for _, r := range p.Rotors {
+		speeds = append(speeds, r.HoverSpeed)
+	}
+	g, err := rotor.Matrix(b, p.Rotors, speeds)
+	if err != nil {
+		return err
+	}
+	for i, v := range keep {
+		for j, w := range keep {
+			damp.Set(i, j, damp.At(i, j)+g[v*len(b.Kinds)+w])
 		}
 	}
+	return nil
 }
 
 // trueMode is one mode of the truth at hover speed.
