@@ -38,8 +38,7 @@ const negligible = 1e-13
 // recurrence of Lanczos promises, the second serves them as well. Both are repeated when the vectors of the block turn
 // out to be nearly dependent.
 func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64) {
-	began := time.Now()
-	defer func() { b.p.stats.OrthogonalSeconds += time.Since(began).Seconds() }()
+	defer since(time.Now(), &b.p.stats.OrthogonalSeconds)
 	n, old := b.n, b.count
 	c = make([]float64, old*count)
 	z := make([]float64, count*n)

@@ -79,8 +79,9 @@ type Stats struct {
 	Factor sparse.FactorStats
 	// Factorisations counts all, those for inertia included; Solves counts right-hand sides.
 	Factorisations, Solves int
-	// Seconds of wall time: for factorisations, for solves with them, for making vectors orthogonal, and in all.
-	FactorSeconds, SolveSeconds, OrthogonalSeconds, TotalSeconds float64
+	// Seconds of wall time: for factorisations at shifts, for solves with them, for making vectors orthogonal
+	// (multiplications by M included), for Ritz pairs, for counts by inertia, and in all.
+	FactorSeconds, SolveSeconds, OrthogonalSeconds, RitzSeconds, CountSeconds, TotalSeconds float64
 }
 
 // IndefiniteError says that a matrix is not positive semi-definite.

@@ -26,15 +26,13 @@ func (p *pencil) order() int { return p.k.N }
 
 // factorise returns the factorisation of K-sM.
 func (p *pencil) factorise(s float64) (*sparse.Factor, error) {
-	began := time.Now()
-	f, err := p.analysis.Factorise(p.ctx, sparse.Combine(1, p.k, -s, p.m), p.threads)
 	p.stats.Factorisations++
-	p.stats.FactorSeconds += time.Since(began).Seconds()
-	return f, err
+	return p.analysis.Factorise(p.ctx, sparse.Combine(1, p.k, -s, p.m), p.threads)
 }
 
 // setShift makes the operator for σ < 0. It returns how many eigenvalues of A are not positive.
 func (p *pencil) setShift(sigma float64) (int, error) {
+	defer since(time.Now(), &p.stats.FactorSeconds)
 	p.factor = nil // let the old one go before the new one is made
 	f, err := p.factorise(sigma)
 	if err != nil {
@@ -64,11 +62,13 @@ func (p *pencil) multiply(a *sparse.Symmetric, y, x []float64, count int) {
 
 // solve overwrites count vectors with A⁻¹ times them.
 func (p *pencil) solve(x []float64, count int) {
-	began := time.Now()
+	defer since(time.Now(), &p.stats.SolveSeconds)
 	p.factor.SolveThreads(x[:count*p.order()], count, p.threads)
 	p.stats.Solves += count
-	p.stats.SolveSeconds += time.Since(began).Seconds()
 }
+
+// since adds the seconds that have passed.
+func since(began time.Time, sum *float64) { *sum += time.Since(began).Seconds() }
 
 // check looks for what makes a pencil senseless before any work is done.
 func (p *pencil) check() error {
@@ -109,6 +109,7 @@ func (p *pencil) scale() float64 {
 // count returns the number of eigenvalues below s, and whether the factorisation it comes from is good enough to be
 // believed: no pivot of doubtful sign, and a solve that gives back a known vector.
 func (p *pencil) count(s float64) (int, bool, error) {
+	defer since(time.Now(), &p.stats.CountSeconds)
 	f, err := p.factorise(s)
 	if err != nil {
 		var pivot *sparse.PivotError

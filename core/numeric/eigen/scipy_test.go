@@ -12,6 +12,16 @@ import (
 	"hushframe/core/numeric/trial"
 )
 
+// scipyPython is a Python that has SciPy, or nothing.
+func scipyPython() string {
+	for _, p := range []string{"python3", "/usr/bin/python3"} {
+		if exec.Command(p, "-c", "import scipy").Run() == nil {
+			return p
+		}
+	}
+	return ""
+}
+
 // An independent sparse solver, when there is one on the machine: scipy.sparse.linalg.eigsh in shift-invert mode.
 func TestSheetAgreesWithSciPy(t *testing.T) {
 	const script = `
@@ -24,13 +34,7 @@ def full(m):
     return low + sp.tril(low, -1).T
 print(json.dumps(sorted(eigsh(full(d["k"]), k=d["modes"], M=full(d["m"]), sigma=d["sigma"], which="LM")[0].tolist())))
 `
-	python := ""
-	for _, p := range []string{"python3", "/usr/bin/python3"} {
-		if exec.Command(p, "-c", "import scipy").Run() == nil {
-			python = p
-			break
-		}
-	}
+	python := scipyPython()
 	if python == "" {
 		t.Skip("python3 with scipy is not installed: no comparison with it")
 	}

@@ -6,6 +6,7 @@ import (
 	"errors"
 	"math"
 	"slices"
+	"time"
 
 	"gonum.org/v1/gonum/mat"
 
@@ -131,6 +132,7 @@ func (s *search) step() error {
 // ritz finds the Ritz pairs of the first end vectors, the last block being start..end with coefficients r (kept by
 // end-start) along the vectors after it.
 func (s *search) ritz(r []float64, kept int) error {
+	defer since(time.Now(), &s.p.stats.RitzSeconds)
 	m, count := s.end, s.end-s.start
 	s.pairs = s.pairs[:0]
 	for k, theta := range s.locked {

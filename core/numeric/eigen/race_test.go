@@ -1,0 +1,264 @@
+package eigen_test
+
+import (
+	"bufio"
+	"bytes"
+	"cmp"
+	"encoding/binary"
+	"encoding/json"
+	"fmt"
+	"math"
+	"os"
+	"os/exec"
+	"path/filepath"
+	"runtime/debug"
+	"slices"
+	"strconv"
+	"strings"
+	"testing"
+	"time"
+
+	"hushframe/core/numeric/eigen"
+	"hushframe/core/numeric/sparse"
+	"hushframe/core/numeric/trial"
+)
+
+// runner is a problem to race on.
+type runner struct {
+	name   string
+	k, m   *sparse.Symmetric
+	nodeOf []int32
+	coords [][3]float64
+}
+
+func sheetRunner(name string, s trial.Sheet) runner {
+	l := s.Lattice()
+	return runner{name: name, k: l.K, m: l.M, nodeOf: l.NodeOf, coords: l.Coords}
+}
+
+const raceModes = 30
+
+// lap is one timed solution.
+type lap struct {
+	Seconds, Factor float64
+	Values          []float64
+	Bytes           int64 // most memory held above what was held before
+	stats           eigen.Stats
+	order           float64
+}
+
+// BenchmarkRace times the 30 lowest modes against SciPy on the same matrices and the same shift, run by run in turn, and
+// logs a table of the fastest laps; ratios are those of totals without the inertia count, which SciPy does not make.
+// The matrices are those of crosses, and of the folder that HUSHFRAME_RACE names, if any: K.mtx and M.mtx in the
+// Matrix Market format (coordinate real symmetric).
+//
+//	go test -run XXX -bench Race -benchtime 3x -timeout 1h ./core/numeric/eigen
+//
+// HUSHFRAME_RACE_SIZES=20,50,100,200,400 chooses the crosses (thousands of unknowns).
+func BenchmarkRace(b *testing.B) {
+	for _, r := range runners(b) {
+		b.Run(fmt.Sprintf("%s/unknowns=%d", r.name, r.k.N), func(b *testing.B) { race(b, r) })
+	}
+}
+
+func runners(b *testing.B) (out []runner) {
+	for word := range strings.SplitSeq(cmp.Or(os.Getenv("HUSHFRAME_RACE_SIZES"), "50"), ",") {
+		thousands, err := strconv.Atoi(word)
+		if err != nil {
+			b.Fatal(err)
+		}
+		n := int(math.Round(90 * math.Sqrt(float64(thousands)/51)))
+		out = append(out, sheetRunner("cross-"+word+"k", trial.Sheet{
+			Nx: n, Ny: n, Cell: 0.27 / float64(n), Thick: 2e-3, Keep: trial.Cross(n, max(1, n*4/90)),
+		}))
+	}
+	if folder := os.Getenv("HUSHFRAME_RACE"); folder != "" {
+		out = append(out, runner{
+			name: filepath.Base(folder), k: readMarket(b, filepath.Join(folder, "K.mtx")), m: readMarket(b, filepath.Join(folder, "M.mtx")),
+		})
+	}
+	return out
+}
+
+func race(b *testing.B, r runner) {
+	ctx := b.Context()
+	pattern := sparse.Combine(1, r.k, 1, r.m).Pattern()
+	// The shift is the one that the solver chooses by itself.
+	first, err := eigen.Lowest(ctx, r.k, r.m, sparse.Order(pattern, r.nodeOf, r.coords), eigen.Options{Modes: raceModes})
+	if err != nil {
+		b.Fatal(err)
+	}
+	shift := first.Shift
+	first = nil
+	python, folder := scipyPython(), ""
+	if python != "" {
+		folder = b.TempDir()
+		writeRaw(b, folder, "k", r.k)
+		writeRaw(b, folder, "m", r.m)
+	} else {
+		b.Log("python3 with scipy is not installed: no comparison with it")
+	}
+	routes := []string{"plain", "prepared", "loose"}
+	bests := map[string]lap{}
+	keep := func(name string, l lap) {
+		if old, ok := bests[name]; !ok || l.Seconds < old.Seconds {
+			bests[name] = l
+		}
+	}
+	for b.Loop() {
+		for threads := 1; threads <= 2; threads++ {
+			keep(fmt.Sprint("ours-", threads), ourLap(b, r, shift, threads))
+		}
+		for _, route := range routes {
+			if python != "" {
+				keep(route, scipyLap(b, python, folder, route, shift))
+			}
+		}
+	}
+	ours := bests["ours-2"]
+	st := ours.stats
+	b.ReportMetric(float64(st.Factor.Entries), "entries")
+	b.ReportMetric(st.Factor.Flops/1e9, "GFLOP")
+	var t strings.Builder
+	fmt.Fprintf(&t, "\n%-12s %8s %8s %8s %8s %8s %8s %8s | %8s %8s\n", "", "order", "analyse", "factor", "solves", "orthog.", "Ritz", "total", "count", "MB")
+	for threads := 1; threads <= 2; threads++ {
+		o := bests[fmt.Sprint("ours-", threads)]
+		st := o.stats
+		fmt.Fprintf(&t, "%-12s %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f | %8.3f %8.0f   %d solves, %.1f and %.1f GFLOP/s\n", fmt.Sprint("threads=", threads),
+			o.order, st.Factor.AnalyseSeconds, st.FactorSeconds, st.SolveSeconds, st.OrthogonalSeconds, st.RitzSeconds, o.Seconds, st.CountSeconds, float64(o.Bytes)/1e6,
+			st.Solves, st.Factor.Flops/st.FactorSeconds/1e9, 4*float64(st.Solves)*float64(st.Factor.Entries)/st.SolveSeconds/1e9)
+	}
+	for _, route := range routes {
+		l, ok := bests[route]
+		if !ok {
+			continue
+		}
+		fmt.Fprintf(&t, "%-12s %8s %8s %8.3f %8s %8s %8s %8.3f | %8s %8.0f   %.2f times ours\n", "scipy "+route, "", "", l.Factor, "", "", "", l.Seconds, "", float64(l.Bytes)/1e6, l.Seconds/ours.Seconds)
+		b.ReportMetric(l.Seconds/ours.Seconds, route+"/ours")
+		for i, v := range ours.Values {
+			if want := l.Values[i]; math.Abs(v-want) > 1e-6*max(math.Abs(want), 1e-2*l.Values[6]) {
+				b.Errorf("%s: value %d is %g, ours %g", route, i, want, v)
+			}
+		}
+	}
+	b.Log(t.String())
+}
+
+// ourLap includes the ordering, as SciPy's laps do, and leaves out the count.
+func ourLap(b *testing.B, r runner, shift float64, threads int) lap {
+	debug.FreeOSMemory()
+	held := resident("VmRSS:")
+	_ = os.WriteFile("/proc/self/clear_refs", []byte("5"), 0) // forgets the peak, where there is such a thing
+	began := time.Now()
+	order := sparse.Order(sparse.Combine(1, r.k, 1, r.m).Pattern(), r.nodeOf, r.coords)
+	l := lap{order: time.Since(began).Seconds()}
+	res, err := eigen.Lowest(b.Context(), r.k, r.m, order, eigen.Options{Modes: raceModes, Shift: shift, Threads: threads})
+	if err != nil || !res.Status.Converged || !res.Status.Proved {
+		b.Fatal(err, res)
+	}
+	l.Seconds = time.Since(began).Seconds() - res.Stats.CountSeconds
+	l.Bytes = resident("VmHWM:") - held
+	l.Values, l.stats = res.Values, res.Stats
+	return l
+}
+
+// resident reads a line of the memory status of this process, in bytes; 0 where there is none.
+func resident(key string) int64 {
+	text, _ := os.ReadFile("/proc/self/status")
+	_, after, _ := strings.Cut(string(text), key)
+	fields := strings.Fields(after)
+	if len(fields) == 0 {
+		return 0
+	}
+	kb, _ := strconv.ParseInt(fields[0], 10, 64)
+	return kb * 1024
+}
+
+func scipyLap(b *testing.B, python, folder, route string, shift float64) (l lap) {
+	cmd := exec.Command(python, "testdata/race.py", folder, route, strconv.Itoa(raceModes), strconv.FormatFloat(shift, 'g', -1, 64))
+	// Settings that someone has made for another library's sake would slow it down.
+	cmd.Env = slices.DeleteFunc(os.Environ(), func(v string) bool { return strings.HasPrefix(v, "OPENBLAS_") || strings.HasPrefix(v, "OMP_") })
+	cmd.Stderr = os.Stderr
+	text, err := cmd.Output()
+	if err != nil {
+		b.Fatal(err)
+	}
+	if err := json.Unmarshal(text, &l); err != nil {
+		b.Fatal(err)
+	}
+	return l
+}
+
+// writeRaw writes the arrays of a matrix: column starts (64 bits), rows (32 bits), values.
+func writeRaw(b *testing.B, folder, name string, s *sparse.Symmetric) {
+	ptr := make([]int64, len(s.Ptr))
+	for i, v := range s.Ptr {
+		ptr[i] = int64(v)
+	}
+	for suffix, data := range map[string]any{"ptr": ptr, "row": s.Row, "val": s.Val} {
+		var buf bytes.Buffer
+		if err := binary.Write(&buf, binary.LittleEndian, data); err != nil {
+			b.Fatal(err)
+		}
+		if err := os.WriteFile(filepath.Join(folder, name+"."+suffix), buf.Bytes(), 0o600); err != nil {
+			b.Fatal(err)
+		}
+	}
+}
+
+// readMarket reads the lower triangle of a symmetric matrix in the Matrix Market format. Diagonal entries that are not
+// given are zero.
+func readMarket(b *testing.B, name string) *sparse.Symmetric {
+	file, err := os.Open(name)
+	if err != nil {
+		b.Fatal(err)
+	}
+	defer file.Close()
+	type entry struct {
+		row int32
+		val float64
+	}
+	var columns [][]entry
+	lines := bufio.NewScanner(file)
+	for lines.Scan() {
+		if strings.HasPrefix(lines.Text(), "%") {
+			continue
+		}
+		var i, j int
+		var v float64
+		if columns == nil {
+			if _, err := fmt.Sscan(lines.Text(), &i, &j); err != nil || i != j {
+				b.Fatalf("%s: bad size: %v", name, err)
+			}
+			columns = make([][]entry, i)
+			for j := range columns {
+				columns[j] = []entry{{int32(j), 0}}
+			}
+			continue
+		}
+		f := strings.Fields(lines.Text())
+		i, _ = strconv.Atoi(f[0])
+		j, _ = strconv.Atoi(f[1])
+		if v, err = strconv.ParseFloat(f[2], 64); err != nil {
+			b.Fatal(err)
+		}
+		i, j = max(i, j)-1, min(i, j)-1
+		if i == j {
+			columns[j][0].val = v
+			continue
+		}
+		columns[j] = append(columns[j], entry{int32(i), v})
+	}
+	s := &sparse.Symmetric{N: len(columns), Ptr: make([]int, len(columns)+1)}
+	for j, c := range columns {
+		slices.SortFunc(c, func(x, y entry) int { return cmp.Compare(x.row, y.row) })
+		for _, e := range c {
+			s.Row, s.Val = append(s.Row, e.row), append(s.Val, e.val)
+		}
+		s.Ptr[j+1] = len(s.Row)
+	}
+	if err := s.Check(); err != nil {
+		b.Fatal(err)
+	}
+	return s
+}

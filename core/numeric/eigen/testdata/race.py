@@ -1,0 +1,51 @@
+"""One run of SciPy's shift-invert eigensolver on matrices of a folder, timed; see race_test.go.
+
+usage: race.py folder route modes shift
+
+Routes: plain is eigsh as it comes; prepared gives it the factor of K - shift*M made by splu in symmetric mode; loose is
+prepared with the tolerance 1e-9 instead of machine precision.
+"""
+import json
+import resource
+import sys
+import time
+
+import numpy as np
+import scipy.sparse as sp
+from scipy.sparse.linalg import LinearOperator, eigsh, splu
+
+folder, route, modes, shift = sys.argv[1], sys.argv[2], int(sys.argv[3]), float(sys.argv[4])
+
+
+def read(name):
+    """The full matrix of a lower triangle stored by columns."""
+    ptr = np.fromfile(f"{folder}/{name}.ptr", np.int64)
+    row = np.fromfile(f"{folder}/{name}.row", np.int32)
+    val = np.fromfile(f"{folder}/{name}.val", np.float64)
+    n = len(ptr) - 1
+    low = sp.csc_matrix((val, row, ptr), shape=(n, n))
+    return (low + sp.tril(low, -1).T).tocsc()
+
+
+def resident():
+    with open("/proc/self/statm") as f:
+        return int(f.read().split()[1]) * resource.getpagesize()
+
+
+K, M = read("k"), read("m")
+before = resident()
+began = time.perf_counter()
+factor = 0.0
+if route == "plain":
+    values = eigsh(K, k=modes, M=M, sigma=shift, which="LM")[0]
+else:
+    lu = splu((K - shift * M).tocsc(), diag_pivot_thresh=0, permc_spec="MMD_AT_PLUS_A", options=dict(SymmetricMode=True))
+    factor = time.perf_counter() - began
+    inverse = LinearOperator(K.shape, matvec=lu.solve, dtype=float)
+    values = eigsh(K, k=modes, M=M, sigma=shift, which="LM", OPinv=inverse, tol=1e-9 if route == "loose" else 0)[0]
+print(json.dumps({
+    "Seconds": time.perf_counter() - began,
+    "Factor": factor,
+    "Values": sorted(values.tolist()),
+    "Bytes": resource.getrusage(resource.RUSAGE_SELF).ru_maxrss * 1024 - before,
+}))
