@@ -50,7 +50,12 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		turning = append(turning, order.Rotor{Name: c.Name, Speed: order.Follow(s.Time, s.Values[0], axes.Time)})
 	}
 	// One Hz is fine beside the width of a band, and a line is as wide as the inverse of its span.
-	bands := order.Bands(turning, order.Settings{Orders: set.orders, Rate: timing.Rate, Step: 1, Margin: 1})
+	margin := 1.0
+	if r.Found {
+		// A speed that is not known to a fraction of the inverse span gives no angle to take an order out by.
+		set.remove, margin = false, 2
+	}
+	bands := order.Bands(turning, order.Settings{Orders: set.orders, Rate: timing.Rate, Step: 1, Margin: margin})
 	power := make([][][]float64, len(axes.Values)) // channel, rotor, order
 	for c := range power {
 		power[c] = make([][]float64, len(turning))

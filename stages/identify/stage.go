@@ -39,7 +39,8 @@ Models of rising order are fitted to the covariances of all axes together
 (covariance-driven stochastic subspace identification). A pole that keeps its
 frequency, damping and direction over two fifths of the models is a mode, if its
 frequency is sure to 2 % and its damping to a half. Poles where a rotor order is
-or was, and lines that are steady in amplitude, are told apart from structure.
+or was, and lines that are steady in amplitude, are told apart from structure. Where
+speeds are followed in the signal (find_rotors), orders are only told apart.
 
 The frame is taken to be driven by broadband force. In flight, the loop of the
 control changes what is seen near and below its bandwidth.`,
@@ -140,6 +141,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, err
 	}
 	call.Report.Progress("rotor orders", -1)
+	r.FindRotors(axes, timing, call.Threads)
 	lines, err := takeOut(r, axes, timing, set, call.Threads)
 	if err != nil {
 		return nil, gather.Explain(refuse(err), set.File)

@@ -1,6 +1,8 @@
 package identify
 
 import (
+	"bufio"
+	"compress/gzip"
 	"context"
 	"encoding/json"
 	"errors"
@@ -187,6 +189,59 @@ func TestSandpiperWithOrders(t *testing.T) {
 	}
 	if lines == 0 {
 		t.Error("no pole is told to be a line, though four rotors turn")
+	}
+}
+
+// With the speeds struck out of the recording, rotors are followed in the gyro itself, and no order of them is told as
+// a mode.
+func TestSandpiperWithoutSpeeds(t *testing.T) {
+	file, err := os.Open(filepath.Join(flights, "hover-03.csv.gz"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer file.Close()
+	unzipped, err := gzip.NewReader(file)
+	if err != nil {
+		t.Fatal(err)
+	}
+	var kept strings.Builder
+	for lines := bufio.NewScanner(unzipped); lines.Scan(); {
+		kept.WriteString(strings.Join(strings.Split(lines.Text(), ",")[:4], ",") + "\n")
+	}
+	folder := t.TempDir()
+	if err := os.WriteFile(filepath.Join(folder, "a.csv"), []byte(kept.String()), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	x, o, err := run(t, folder, stage.Arguments{"file": "a.csv", "window": seconds(14, 72), "find_rotors": 3.0, "to": hertz(340),
+		"columns": map[string]any{"time": "time_us", "roll": "gx", "pitch": "-gy", "yaw": "-gz"},
+		"units":   map[string]any{"gx": "deg/s", "gy": "deg/s", "gz": "deg/s"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	print(t, o)
+	tr := readTruth(t)
+	modes := 0
+	for _, m := range x.Modes {
+		if m.Kind != kinds.ModeStructure {
+			continue
+		}
+		modes++
+		real := false
+		for _, want := range tr.Modes {
+			real = real || math.Abs(m.Frequency/want.Frequency-1) < 0.02
+		}
+		if !real {
+			t.Errorf("a mode at %.2f ± %.2f Hz, %.4f that is none", m.Frequency, m.FrequencyError, m.Damping)
+		}
+	}
+	lines := 0
+	for _, m := range x.Modes {
+		if m.Kind == kinds.ModeLine {
+			lines++
+		}
+	}
+	if modes < 5 || lines < 2 || len(x.Removed) > 0 || !strings.Contains(strings.Join(o.Notes, "\n"), "was followed in the signal") {
+		t.Errorf("%d modes, %d lines, %d orders taken out, %v", modes, lines, len(x.Removed), o.Notes)
 	}
 }
 

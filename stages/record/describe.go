@@ -31,11 +31,12 @@ const (
 )
 
 // describe computes everything the artifact holds.
-func describe(r *gather.Recording, set settings) (*found, error) {
+func describe(r *gather.Recording, set settings, threads int) (*found, error) {
 	axes, timing, err := r.Window()
 	if err != nil {
 		return nil, err
 	}
+	r.FindRotors(axes, timing, threads)
 	f := &found{timing: timing, axes: axes}
 	ws, err := segments(timing, set)
 	if err != nil {

@@ -113,7 +113,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, err
 	}
 	call.Report.Progress("spectra", -1)
-	found, err := describe(r, set)
+	found, err := describe(r, set, call.Threads)
 	if err != nil {
 		return nil, gather.Explain(err, set.File)
 	}

@@ -15,6 +15,7 @@
 // bands with the frequencies between them free; a mean would give one band in the wrong place.
 //
 // Where the angle of a rotor follows from its speed, its orders can be taken out of a signal: what turns with the angle at
-// nearly steady amplitude and phase is the order, what is left is structure and noise. Folding needs no care there, since
+// nearly steady amplitude and phase is the order, what is left is structure and noise. Where no speed was recorded, the
+// orders themselves can be followed in the signal. Folding needs no care there, since
 // the samples of a folded line are those of its mirror image.
 package order

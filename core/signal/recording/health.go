@@ -51,6 +51,8 @@ type Stuck struct {
 	Value         float64
 }
 
+const shortStuck = 50
+
 // Longest returns the longest stretch of equal values.
 func Longest(values []float64) Stuck {
 	var out Stuck
@@ -69,13 +71,13 @@ func Longest(values []float64) Stuck {
 
 // Unlikely tells whether a stretch of equal values is longer than chance makes it among n values of which a share repeats the
 // one before: longer than three times ln(n·(1-share))/ln(1/share), the usual longest one (P. Erdős and A. Rényi, On a new law of large
-// numbers, J. Analyse Math. 23, 1970), and than ten.
+// numbers, J. Analyse Math. 23, 1970), and than fifty: quiet stretches between coarse steps repeat, too.
 func (s Stuck) Unlikely(n int, share float64) bool {
 	if share >= 1 || share <= 0 {
-		return s.Length > 10
+		return s.Length > shortStuck
 	}
 	usual := math.Log(float64(n)*(1-share)) / math.Log(1/share)
-	return float64(s.Length) > max(10, 3*usual)
+	return float64(s.Length) > max(shortStuck, 3*usual)
 }
 
 // RollOff is a fall of the floor of a density towards half the sample rate.

@@ -11,6 +11,7 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"math"
 
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
@@ -31,11 +32,16 @@ type Settings struct {
 	Columns, Rotors, Units map[string]string
 	Rate                   float64
 	Window                 []float64 // empty or two times
+	Find                   int       // rotors to find in the signal
+	Speeds                 []float64 // their least and greatest speed, rad/s
 }
 
 // Arguments describes them.
 func Arguments() []stage.Argument {
-	zero := 0.0
+	zero, most := 0.0, 16.0
+	rpm := func(v float64) stage.Quantity {
+		return stage.Quantity{SI: v * 2 * math.Pi / 60, Dimension: RotorSpeed}
+	}
 	texts := stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}}
 	return []stage.Argument{
 		{Name: "file", About: "the recording", Type: stage.Type{Kind: stage.File}, Required: true, Example: `"flights/hover.csv.gz"`},
@@ -50,6 +56,11 @@ func Arguments() []stage.Argument {
 			Example: `"2 kHz"`, Above: &zero},
 		{Name: "window", About: "first and last time used; left out, all", Type: stage.Type{Kind: stage.List,
 			Element: &stage.Type{Kind: stage.Amount, Dimension: "time", Unit: "s"}}, Example: `["8 s", "60 s"]`},
+		{Name: "find_rotors", About: "rotors whose speeds are followed in the signal itself, where none is recorded", Type: stage.Type{Kind: stage.Whole},
+			Default: 0.0, Example: "4", Min: &zero, Max: &most},
+		{Name: "speed_range", About: "least and greatest speed that is looked for", Type: stage.Type{Kind: stage.List,
+			Element: &stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}},
+			Default: []any{rpm(7500), rpm(24000)}, Example: `["7500 rpm", "24000 rpm"]`},
 	}
 }
 
@@ -58,8 +69,12 @@ func Read(a stage.Arguments, name string) (Settings, error) {
 	s := Settings{
 		File: a.Text("file"), Reader: a.Text("reader"), Options: texts(a, "options"),
 		Columns: texts(a, "columns"), Rotors: texts(a, "rotors"), Units: texts(a, "units"), Rate: a.SI("rate"), Window: a.SIs("window"),
+		Find: a.Whole("find_rotors"), Speeds: a.SIs("speed_range"),
 	}
 	switch {
+	case s.Find > 0 && (len(s.Speeds) != 2 || !(s.Speeds[0] > 0 && s.Speeds[1] > s.Speeds[0])):
+		return s, fault.New(fault.Input, "the range of speeds is no two rising speeds").In(name, "").Of("speed_range").
+			Do(`give the least and the greatest, such as ["7500 rpm", "24000 rpm"]`)
 	case a.Has("window") && len(s.Window) != 2:
 		return s, fault.New(fault.Input, "the window has %d times", len(s.Window)).In(name, "").Of("window").
 			Do(`give the first and the last time, such as ["8 s", "60 s"]`)
@@ -83,7 +98,9 @@ type Recording struct {
 	Header recording.Header
 	Plan   Plan
 	Data   *Data
-	set    Settings
+	// Found tells that the speeds of the rotors were found in the signal: to within a hertz or so, and not which rotor is which.
+	Found bool
+	set   Settings
 }
 
 // Load reads the channels of a recording.
