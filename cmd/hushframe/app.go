@@ -107,12 +107,26 @@ func (a *app) main(ctx context.Context, args []string) int {
 		}
 		return exitFailed
 	}
+	if a.logOut == nil { // the flags were not read to the end, but how to say so may be among them
+		flags := root.PersistentFlags()
+		flags.ParseErrorsAllowlist.UnknownFlags = true
+		_ = flags.Parse(args)
+		_ = a.openLog()
+	}
+	if a.logFormat == "json" {
+		a.log.Error().Str("event", "usage").Msg(err.Error())
+		return exitUsage
+	}
 	fmt.Fprintf(a.err, "%s\nTry %q.\n", err, root.Name()+" help")
 	return exitUsage
 }
 
 // fault says what went wrong outside of any step.
 func (a *app) fault(f *fault.Error) {
+	if a.logFormat == "json" {
+		a.log.Error().Str("event", "fault").Interface("fault", f).Msg(f.Error())
+		return
+	}
 	fmt.Fprintf(a.err, "Error: %s\n", f)
 	for _, line := range f.Lines {
 		fmt.Fprintf(a.err, "  | %s\n", line)
@@ -190,9 +204,10 @@ func (a *app) humanLog(w io.Writer) zerolog.ConsoleWriter {
 	}
 }
 
-// lines shows what the process of a failed step printed last.
+// lines shows what the process of a failed step printed last. A log for
+// machines has it with the end of the step.
 func (a *app) lines(label string, f *fault.Error) {
-	for ; f != nil; f = f.Cause {
+	for ; f != nil && a.logFormat != "json"; f = f.Cause {
 		if len(f.Lines) == 0 {
 			continue
 		}

@@ -107,12 +107,30 @@ func (a *app) stageNames(h *host.Host) []string {
 	return names
 }
 
-// diagnose writes diagnostics with the lines of the job they are about.
+// diagnose writes diagnostics with the lines of the job they are about, or as
+// JSON with their places.
 func (a *app) diagnose(j *job.Job, diags hcl.Diagnostics) {
 	if len(diags) == 0 {
 		return
 	}
-	_ = job.WriteDiagnostics(a.err, diags, j.Sources, 100, a.color)
+	if a.logFormat != "json" {
+		_ = job.WriteDiagnostics(a.err, diags, j.Sources, 100, a.color)
+		return
+	}
+	for _, d := range diags {
+		e := a.log.Error()
+		if d.Severity == hcl.DiagWarning {
+			e = a.log.Warn()
+		}
+		e = e.Str("event", "diagnostic")
+		if d.Subject != nil {
+			e = e.Str("file", d.Subject.Filename).Int("line", d.Subject.Start.Line).Int("column", d.Subject.Start.Column)
+		}
+		if d.Detail != "" {
+			e = e.Str("detail", d.Detail)
+		}
+		e.Msg(d.Summary)
+	}
 }
 
 // jobFolder is the folder of a job file or the job folder itself, where the

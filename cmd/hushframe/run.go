@@ -76,10 +76,10 @@ progress, log lines and mistakes to standard error.
 		if err != nil {
 			return err
 		}
-		a.summary(result)
+		a.summary(p.Job.Folder, result)
 		a.diagnose(p.Job, result.Diagnostics)
 		for _, s := range result.Steps {
-			if s.State == run.Failed && s.Fault != nil {
+			if s.State == run.Failed {
 				a.lines(s.Label, s.Fault)
 			}
 		}

@@ -3,6 +3,9 @@ package main
 import (
 	"encoding/json"
 	"fmt"
+	"maps"
+	"slices"
+	"strconv"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -132,19 +135,56 @@ func takes(x stage.Argument) string {
 	return words
 }
 
+// defaultText says what an argument is when it is left out, or else what it
+// may look like.
 func defaultText(x stage.Argument) string {
-	switch {
-	case x.Required:
-		return "required"
-	case x.Default != nil && x.Example != "":
-		return x.Example
-	case x.Default != nil:
-		if q, ok := x.Default.(stage.Quantity); ok {
-			return quantity.Format(q.SI, q.Dimension, x.Type.Unit)
-		}
-		return fmt.Sprint(x.Default)
+	if !x.Required && x.Default != nil {
+		return jobText(x.Default, x.Type)
 	}
-	return ""
+	var parts []string
+	if x.Required {
+		parts = append(parts, "required")
+	}
+	if x.Example != "" {
+		parts = append(parts, "such as "+x.Example)
+	}
+	return strings.Join(parts, ", ")
+}
+
+// jobText writes a value of a type as a job file would.
+func jobText(v any, t stage.Type) string {
+	element := stage.Type{}
+	if t.Element != nil {
+		element = *t.Element
+	}
+	switch v := v.(type) {
+	case stage.Quantity:
+		return strconv.Quote(quantity.Format(v.SI, v.Dimension, t.Unit))
+	case string:
+		return strconv.Quote(v)
+	case []any:
+		parts := make([]string, len(v))
+		for i, x := range v {
+			parts[i] = jobText(x, element)
+		}
+		return "[" + strings.Join(parts, ", ") + "]"
+	case map[string]any:
+		if len(v) == 0 {
+			return "{}"
+		}
+		var parts []string
+		for _, name := range slices.Sorted(maps.Keys(v)) {
+			of := element
+			for _, f := range t.Fields {
+				if f.Name == name {
+					of = f.Type
+				}
+			}
+			parts = append(parts, name+" = "+jobText(v[name], of))
+		}
+		return "{ " + strings.Join(parts, ", ") + " }"
+	}
+	return fmt.Sprint(v)
 }
 
 // typeText says in a word or two what a type is.

@@ -15,8 +15,8 @@ import (
 )
 
 // summary writes the results of a run: what each step has to say, findings,
-// requirements, and where reports are.
-func (a *app) summary(r *run.Result) {
+// requirements, and where reports are. The folder is that of the job.
+func (a *app) summary(folder string, r *run.Result) {
 	titles := map[string]int{}
 	for _, s := range r.Steps {
 		for _, section := range s.Outcome.Summary {
@@ -54,12 +54,13 @@ func (a *app) summary(r *run.Result) {
 		}
 		writeSection(a.out, section)
 	}
-	a.published(r)
+	a.published(folder, r)
 }
 
-// published says where reports are: the main file of each, and how many lie
-// beside it.
-func (a *app) published(r *run.Result) {
+// published says where reports are, from where the user stands: the main file
+// of each, and how many lie beside it.
+func (a *app) published(folder string, r *run.Result) {
+	files := stage.NewFiles(folder)
 	for _, s := range r.Steps {
 		if len(s.Published) == 0 {
 			continue
@@ -68,7 +69,7 @@ func (a *app) published(r *run.Result) {
 		if n := len(s.Published) - 1; n > 0 {
 			more = fmt.Sprintf(" (and %s beside it)", count(n, "file", "files"))
 		}
-		fmt.Fprintf(a.out, "\n%s wrote %s%s\n", s.Label, s.Published[0], more)
+		fmt.Fprintf(a.out, "\n%s wrote %s%s\n", s.Label, files.Path(s.Published[0]), more)
 	}
 }
 
@@ -120,7 +121,7 @@ func writeSection(out io.Writer, s stage.Section) {
 	t.SetStyle(sectionStyle)
 	header := table.Row{}
 	var columns []table.ColumnConfig
-	widths := fit(s)
+	widths := fit(s, tableWidth(out))
 	for i, c := range s.Columns {
 		header = append(header, c.Name)
 		align := text.AlignLeft
@@ -148,12 +149,9 @@ func writeSection(out io.Writer, s stage.Section) {
 	}
 }
 
-// tableWidth is how many columns a table takes at most, if wrapping can do it.
-const tableWidth = 140
-
 // fit gives the width of each column: as wide as its cells, but that columns of
-// words give way, the widest first, until the table fits.
-func fit(s stage.Section) []int {
+// words give way, the widest first, until the table fits into a width.
+func fit(s stage.Section, width int) []int {
 	const narrowest, gap = 20, 2
 	widths := make([]int, len(s.Columns))
 	total := 0
@@ -166,7 +164,7 @@ func fit(s stage.Section) []int {
 		}
 		total += widths[i] + gap
 	}
-	for total > tableWidth {
+	for total > width {
 		widest := -1
 		for i, c := range s.Columns {
 			if !c.Right && widths[i] > narrowest && (widest < 0 || widths[i] > widths[widest]) {

@@ -7,6 +7,7 @@ import (
 	"path/filepath"
 	"regexp"
 	"slices"
+	"strconv"
 	"strings"
 	"testing"
 	"time"
@@ -270,14 +271,105 @@ func TestBarLine(t *testing.T) {
 func TestWideTable(t *testing.T) {
 	var out bytes.Buffer
 	words := strings.TrimSpace(strings.Repeat("some words ", 12))
+	const width = 96
+	t.Setenv("COLUMNS", strconv.Itoa(width))
 	writeSection(&out, stage.Section{Title: "Wide", Columns: []stage.Column{{Name: "a"}, {Name: "number", Right: true}, {Name: "b"}},
 		Rows: [][]string{{words, "123456", words}, {"short", "7", "é"}}})
 	for line := range strings.Lines(out.String()) {
-		if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > tableWidth {
+		if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > width {
 			t.Errorf("%d columns: %s", n, line)
 		}
 	}
 	if n := strings.Count(out.String(), "words"); n != 24 || !strings.Contains(out.String(), "  123456  ") {
 		t.Errorf("%d words in\n%s", n, &out)
+	}
+}
+
+// Help shows what a job gets when it leaves an argument out, as a job would write it; an example is only that.
+func TestDefaultText(t *testing.T) {
+	length := stage.Type{Kind: stage.Amount, Dimension: "length", Unit: "mm"}
+	for want, x := range map[string]stage.Argument{
+		`"5 mm"`:                              {Type: length, Default: stage.Quantity{SI: 5e-3, Dimension: "length"}, Example: "3 mm"},
+		"0":                                   {Type: stage.Type{Kind: stage.Whole}, Default: 0.0, Example: "3"},
+		"false":                               {Type: stage.Type{Kind: stage.Truth}, Default: false, Example: "true"},
+		`"hann"`:                              {Type: stage.Type{Kind: stage.Text}, Default: "hann", Example: `"flat"`},
+		`["1 mm", "2.5 mm"]`:                  {Type: stage.Type{Kind: stage.List, Element: &length}, Default: []any{stage.Quantity{SI: 1e-3, Dimension: "length"}, stage.Quantity{SI: 2.5e-3, Dimension: "length"}}},
+		`{ a = 1, b = [] }`:                   {Type: stage.Type{Kind: stage.Any}, Default: map[string]any{"b": []any{}, "a": 1.0}},
+		`such as "3 mm"`:                      {Type: length, Example: `"3 mm"`},
+		"":                                    {Type: length},
+		"required":                            {Type: length, Required: true},
+		"required, such as stage.modes.modes": {Type: stage.Type{Kind: stage.Artifact}, Required: true, Example: "stage.modes.modes"},
+	} {
+		if got := defaultText(x); got != want {
+			t.Errorf("got %s, want %s", got, want)
+		}
+	}
+}
+
+// Also what goes wrong is JSON in the log for machines.
+func TestJSONLogOfFailures(t *testing.T) {
+	w := newTower(t)
+	broken := filepath.Join(w.dir, "broken.hcl")
+	w.write("broken.hcl", strings.Replace(bellJob, `"great.txt"`, "12", 1))
+	w.write("crash.hcl", strings.Replace(bellJob, `"small.txt"`, `"small.txt"`+"\n  mood = \"crash\"", 1))
+	for _, c := range []struct {
+		args string
+		code int
+		has  []string
+	}{
+		{"run " + broken, exitUsage, []string{`"event":"diagnostic"`, `broken.hcl"`, `"line":11`}},
+		{"chain " + broken, exitUsage, []string{`"event":"diagnostic"`}},
+		{"run " + filepath.Join(w.dir, "crash.hcl"), exitFailed, []string{`"event":"diagnostic"`, `"line":14`, `"the clapper flies off"`}},
+		{"run " + filepath.Join(w.dir, "none.hcl"), exitUsage, nil},
+		{"run " + broken + " --set raise", exitUsage, []string{`"fault":{`, "write NAME=VALUE"}},
+		{"run " + broken + " --sett raise", exitUsage, []string{"unknown flag: --sett"}},
+		{"run", exitUsage, []string{"one job is wanted"}},
+	} {
+		code, _, err := w.call(append(strings.Fields(c.args), "--log", "json")...)
+		if code != c.code || err == "" {
+			t.Errorf("%s: exit %d, %q", c.args, code, err)
+		}
+		for line := range strings.Lines(err) {
+			if !json.Valid([]byte(line)) {
+				t.Errorf("%s: no JSON: %s", c.args, line)
+			}
+		}
+		for _, word := range c.has {
+			if !strings.Contains(err, word) {
+				t.Errorf("%s: %s is missing in\n%s", c.args, word, err)
+			}
+		}
+	}
+}
+
+// A table takes the width of the terminal, else what COLUMNS says, else a fixed one.
+func TestTableWidth(t *testing.T) {
+	for value, want := range map[string]int{"": plainWidth, "90": 90, "wide": plainWidth, "-3": plainWidth} {
+		t.Setenv("COLUMNS", value)
+		if got := tableWidth(&bytes.Buffer{}); got != want {
+			t.Errorf("COLUMNS %q gives %d, want %d", value, got, want)
+		}
+	}
+}
+
+// Reports are named so that a click or a copy of the path finds them from the folder of the user.
+func TestPublishedPath(t *testing.T) {
+	w := newTower(t)
+	t.Chdir(filepath.Dir(w.dir))
+	job := filepath.Join(filepath.Base(w.dir), "bells.hcl")
+	_, out, err := w.call("run", job)
+	want := "page wrote " + filepath.Join(filepath.Base(w.dir), "out", "page.txt") + " (and"
+	if !strings.Contains(out, want) {
+		t.Errorf("%q is missing in %s%s", want, out, err)
+	}
+}
+
+// The words of a requirement that was not judged say so once.
+func TestNotJudgedOnce(t *testing.T) {
+	w := newTower(t)
+	w.write("bells.hcl", strings.Replace(bellJob, `"small.txt"`, `"small.txt"`+"\n  mood = \"fail\"", 1))
+	_, out, err := w.call("run", w.job)
+	if !strings.Contains(out, "not judged  stage small did not finish") || !strings.Contains(err, "requirement low not judged: stage small did not finish") {
+		t.Errorf("%s%s", out, err)
 	}
 }

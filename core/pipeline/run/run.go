@@ -278,10 +278,10 @@ func (r *runner) judge(atEnd bool) {
 			v.Verdict, diags = q.Judge(r.figures)
 			v.Judged = !diags.HasErrors()
 			if diags.HasErrors() {
-				v.Holds, v.Shown = false, "could not be judged: "+diags[0].Summary
+				v.Holds, v.Shown = false, diags[0].Summary
 			}
 		case atEnd:
-			v.Verdict = job.Verdict{Name: q.Name, Because: q.Because, Shown: fmt.Sprintf("not judged, since stage %s did not finish", missing)}
+			v.Verdict = job.Verdict{Name: q.Name, Because: q.Because, Shown: fmt.Sprintf("stage %s did not finish", missing)}
 		default:
 			continue
 		}
