@@ -53,12 +53,12 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 	}
 	b.project(w, z, count, from, c)
 	b.project(w, z, count, 0, c)
-	keep, r, shrunk := b.gramSchmidt(w, z, count, before)
+	keep, r, shrunk := b.orthonormalise(w, z, count, before)
 	for pass := 0; shrunk && pass < 3; pass++ {
 		b.project(w, z, len(keep), 0, make([]float64, old*len(keep)))
 		var again []int
 		var r2 []float64
-		again, r2, shrunk = b.gramSchmidt(w, z, len(keep), slices.Repeat([]float64{1}, len(keep)))
+		again, r2, shrunk = b.orthonormalise(w, z, len(keep), slices.Repeat([]float64{1}, len(keep)))
 		r = product(r2, r, len(again), len(keep), count)
 		for i, k := range again {
 			again[i] = keep[k]
@@ -89,9 +89,91 @@ func (b *basis) project(w, z []float64, count, from int, c []float64) {
 	b.p.mass(z, w, count)
 }
 
-// gramSchmidt makes vectors w (with z = M·w) M-orthonormal in place, moving those kept to the front. before are sizes
+// orthonormalise makes vectors w (with z = M·w) M-orthonormal in place, moving those kept to the front. before are sizes
 // that the vectors once had, against which what is left of them is judged. It returns which were kept, the coefficients
 // r (kept by count), and whether some kept vector lost so much that its rounding errors matter.
+//
+// It does so by two Cholesky factorisations of the Gram matrix (Y. Yamamoto, Y. Nakatsukasa, Y. Yanagisawa, T. Fukaya,
+// Roundoff error analysis of the CholeskyQR2 algorithm, Electron. Trans. Numer. Anal. 44, 2015), or vector by vector when
+// they are too dependent for that.
+func (b *basis) orthonormalise(w, z []float64, count int, before []float64) (keep []int, r []float64, shrunk bool) {
+	n := b.n
+	g := make([]float64, count*count)
+	dense.Gram(count, count, n, w, z, g, b.p.threads)
+	for i := range count {
+		if !(math.Sqrt(max(0, g[i*count+i])) > 1e-6*before[i]) {
+			return b.gramSchmidt(w, z, count, before)
+		}
+		keep = append(keep, i)
+	}
+	least, ok := cholesky(g, count)
+	if !ok || least < 1e-5 {
+		return b.gramSchmidt(w, z, count, before)
+	}
+	b.divide(w, z, g, count)
+	again := make([]float64, count*count)
+	dense.Gram(count, count, n, w, z, again, b.p.threads)
+	if _, ok = cholesky(again, count); !ok {
+		panic("eigen: orthonormal vectors have a singular Gram matrix")
+	}
+	b.divide(w, z, again, count)
+	// w = Lᵀ·Q by rows is columns times the upper triangles of both.
+	return keep, product(transposed(again, count), transposed(g, count), count, count, count), least < 1e-2
+}
+
+// divide replaces w and z by L⁻¹ times them.
+func (b *basis) divide(w, z, l []float64, count int) {
+	inverse := make([]float64, count*count)
+	for j := range count {
+		inverse[j*count+j] = 1 / l[j*count+j]
+		for i := j + 1; i < count; i++ {
+			s := 0.0
+			for k := j; k < i; k++ {
+				s -= l[i*count+k] * inverse[k*count+j]
+			}
+			inverse[i*count+j] = s / l[i*count+i]
+		}
+	}
+	dense.Rotate(count, count, b.n, inverse, w, b.p.threads)
+	dense.Rotate(count, count, b.n, inverse, z, b.p.threads)
+}
+
+// cholesky overwrites the lower triangle of g by its factor and the rest by zeros. It returns the least part of a vector
+// that those before it leave, and whether the matrix is positive definite.
+func cholesky(g []float64, n int) (least float64, ok bool) {
+	least = 1
+	for i := range n {
+		for j := range i + 1 {
+			s := g[i*n+j]
+			for k := range j {
+				s -= g[i*n+k] * g[j*n+k]
+			}
+			if j < i {
+				g[i*n+j] = s / g[j*n+j]
+				continue
+			}
+			if !(s > 0) {
+				return 0, false
+			}
+			least = min(least, math.Sqrt(s/g[i*n+i]))
+			g[i*n+i] = math.Sqrt(s)
+		}
+		clear(g[i*n+i+1 : (i+1)*n])
+	}
+	return least, true
+}
+
+func transposed(a []float64, n int) []float64 {
+	out := make([]float64, n*n)
+	for i := range n {
+		for j := range n {
+			out[j*n+i] = a[i*n+j]
+		}
+	}
+	return out
+}
+
+// gramSchmidt is orthonormalise for vectors that may depend on one another.
 func (b *basis) gramSchmidt(w, z []float64, count int, before []float64) (keep []int, r []float64, shrunk bool) {
 	n := b.n
 	full := make([]float64, count*count)
