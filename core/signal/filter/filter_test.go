@@ -192,3 +192,13 @@ func TestResidual(t *testing.T) {
 		t.Errorf("%.4f is left, want %.4f", got, want)
 	}
 }
+
+// A chain of six sections over a million samples.
+func BenchmarkApply(b *testing.B) {
+	c := append(Cascade(100, 8000, 3), Notch(200, 3, 8000), Notch(400, 3, 8000), LowPass(150, 0.7, 8000))
+	x := make([]float64, 1_000_000)
+	b.SetBytes(int64(8 * len(x)))
+	for range b.N {
+		c.Apply(x)
+	}
+}

@@ -96,3 +96,25 @@ func TestFollow(t *testing.T) {
 		t.Error("no sample gives a speed")
 	}
 }
+
+// Four rotors and three orders out of three channels of 120 s at 2 kHz.
+func BenchmarkRemove(b *testing.B) {
+	const rate, n = 2000.0, 240000
+	source := noise.Source(2)
+	var speeds, channels [][]float64
+	for r := range 4 {
+		speed, _ := wandering(&source, 260+4*float64(r), n, rate)
+		speeds = append(speeds, speed)
+	}
+	for range 3 {
+		x := make([]float64, n)
+		for i := range x {
+			x[i] = source.Gauss()
+		}
+		channels = append(channels, x)
+	}
+	b.ResetTimer()
+	for range b.N {
+		Remove(channels, speeds, RemoveSettings{Rate: rate, Orders: []float64{1, 2, 3}, Threads: 2})
+	}
+}

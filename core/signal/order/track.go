@@ -149,10 +149,13 @@ func (w *spotter) salience(channels [][]float64, start int, cell float64, cells 
 	out := make([]float64, cells)
 	for _, order := range w.s.Orders {
 		best := make([]float64, cells)
+		// The surroundings are much the same for every slope, and finding their medians takes longest.
+		w.spectrum(channels, start, 0)
+		floor := w.floors()
 		for k := range slopes {
 			slope := w.s.Slope * (2*float64(k)/(slopes-1) - 1)
 			w.spectrum(channels, start, order*slope)
-			levels := w.levels()
+			levels := w.levels(floor)
 			for c := range best {
 				f := order * (w.s.From + float64(c)*cell)
 				// A folded line falls where the order rises: the mirrored slope is among those tried.
@@ -191,8 +194,8 @@ func (w *spotter) spectrum(channels [][]float64, start int, slope float64) {
 	}
 }
 
-// levels returns the power over the median of its surroundings (a tenth to either side, at least twelve lobes), 0 to mostDB.
-func (w *spotter) levels() []float64 {
+// floors returns the median of the power around each bin: a tenth to either side, at least twelve lobes.
+func (w *spotter) floors() []float64 {
 	lobe := w.size / w.length
 	floor := make([]float64, len(w.power))
 	const every = 8
@@ -205,6 +208,11 @@ func (w *spotter) levels() []float64 {
 			floor[i] = sorted[len(sorted)/2]
 		}
 	}
+	return floor
+}
+
+// levels returns the power over its surroundings in decibels, 0 to mostDB.
+func (w *spotter) levels(floor []float64) []float64 {
 	out := make([]float64, len(w.power))
 	for k, p := range w.power {
 		if p > 0 && floor[k] > 0 {
