@@ -9,7 +9,7 @@ import (
 // ResponseKind is what `sweep` makes of a modal basis and assumed sources.
 // Elastic modes are numbered from 1 in ascending frequency.
 var ResponseKind = artifact.Kind{
-	Name: "response", Version: 1,
+	Name: "response", Version: 2,
 	About: "gyro rate that forces and moments at the rotors make: transfer functions, spectra, peaks and the modes that make them, lines at hover, operating shapes",
 	Scalars: []artifact.Column{
 		col("from", artifact.Float, "Hz", "lower end of the sweep"),
@@ -20,6 +20,7 @@ var ResponseKind = artifact.Kind{
 		col("residual", artifact.Truth, "", "the basis holds residual vectors and they are in use"),
 		col("thrust", artifact.Float, "N", "thrust of one rotor at hover, weight over the number of rotors; NaN if the mass is not known"),
 		col("blade_share", artifact.Float, "1", "assumed amplitude of the thrust at blade passing, as a share of the thrust"),
+		col("spinning", artifact.Truth, "", "gyroscopic moments of the rotors are in the response"),
 	},
 	Tables: []artifact.TableSpec{
 		{Name: "spectrum", About: "gyro rate under the broadband source, all rotors added as power", Columns: columns(
@@ -72,6 +73,28 @@ var ResponseKind = artifact.Kind{
 			col("blades", artifact.Int, "", "number of blades"),
 			col("hover", artifact.Float, "rad/s", "speed at hover"),
 			col("highest", artifact.Float, "rad/s", "highest service speed"),
+			col("speed", artifact.Float, "rad/s", "speed in this response, with or without gyroscopic moments"),
+			col("polar", artifact.Float, "kg*m^2", "moment of inertia of what spins, about the shaft"),
+			col("tilt", artifact.Float, "kg*m^2", "moment of inertia of motor and propeller about an axis square to the shaft; NaN without a body"),
+			col("equal", artifact.Float, "Hz", "frequency below which the gyroscopic moment at that speed exceeds the moment of the tilt inertia; NaN without a body"),
+		)},
+		{Name: "speeds", About: "rotor speeds of the table whirl, ascending from 0", Columns: columns(
+			col("speed", artifact.Float, "rad/s", "speed of the first rotor; the others keep the ratio they have at hover"),
+		)},
+		{Name: "whirl", About: "natural motions of the damped frame over rotor speed, each followed from a mode at rest", Columns: columns(
+			col("mode", artifact.Int, "", "elastic mode that it is at rest"),
+			col("frequency", artifact.FloatList, "Hz", "at the speeds of the table speeds; NaN where it could not be followed"),
+			col("damping", artifact.FloatList, "1", "damping ratio"),
+			col("direction", artifact.FloatList, "1", "how rotors tilt: 1 round with their spin, -1 against it, 0 to and fro; NaN if none tilts"),
+		)},
+		{Name: "critical", About: "rotor speeds at which an order has the frequency of a natural motion at that very speed", Columns: columns(
+			col("order", artifact.Int, "", "multiple of the rotors' speed"),
+			col("rotors", artifact.TextList, "", "whose order it is"),
+			col("speed", artifact.Float, "rad/s", "of these rotors"),
+			col("frequency", artifact.Float, "Hz", "of the motion"),
+			col("damping", artifact.Float, "1", "damping ratio"),
+			col("direction", artifact.Float, "1", "as in the table whirl"),
+			col("mode", artifact.Int, "", "elastic mode that it is at rest"),
 		)},
 		{Name: "lines", About: "gyro rate at single frequencies at hover speed", Columns: columns(
 			col("source", artifact.Text, "", "unbalance or blade passing"),
@@ -104,6 +127,7 @@ type Response struct {
 	Force, Moment      float64
 	Residual           bool
 	Thrust, BladeShare float64
+	Spinning           bool
 
 	Frequency   []float64
 	Density     [3][]float64
@@ -116,6 +140,24 @@ type Response struct {
 	Rotors      []ResponseRotor
 	Lines       []ResponseLine
 	Shapes      []ResponseShape
+
+	Speeds   []float64
+	Whirl    []ResponseWhirl
+	Critical []ResponseCritical
+}
+
+// ResponseWhirl is one natural motion over the rotor speeds.
+type ResponseWhirl struct {
+	Mode                          int
+	Frequency, Damping, Direction []float64
+}
+
+// ResponseCritical is one critical speed.
+type ResponseCritical struct {
+	Order                                int
+	Rotors                               []string
+	Speed, Frequency, Damping, Direction float64
+	Mode                                 int
 }
 
 // ResponseSource is the part of one rotor in the spectrum of one axis.
@@ -164,6 +206,9 @@ type ResponseRotor struct {
 	Rotor          string
 	Blades         int
 	Hover, Highest float64
+	Speed          float64
+	// Polar and Tilt are moments of inertia; Tilt and Equal are NaN without a body.
+	Polar, Tilt, Equal float64
 }
 
 // ResponseLine is the answer to one rotor order at hover.
@@ -195,7 +240,7 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 	a := artifact.New(ResponseKind)
 	a.Scalars = map[string]any{
 		"from": r.From, "to": r.To, "modes_to": r.ModesTo, "force_density": r.Force, "moment_density": r.Moment,
-		"residual": r.Residual, "thrust": r.Thrust, "blade_share": r.BladeShare,
+		"residual": r.Residual, "thrust": r.Thrust, "blade_share": r.BladeShare, "spinning": r.Spinning,
 	}
 	t := a.Table("spectrum").Set("frequency", r.Frequency)
 	for axis, name := range AxisNames {
@@ -225,7 +270,25 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 		Set("rotor", list(r.Rotors, func(x ResponseRotor) string { return x.Rotor })).
 		Set("blades", list(r.Rotors, func(x ResponseRotor) int64 { return int64(x.Blades) })).
 		Set("hover", list(r.Rotors, func(x ResponseRotor) float64 { return x.Hover })).
-		Set("highest", list(r.Rotors, func(x ResponseRotor) float64 { return x.Highest }))
+		Set("highest", list(r.Rotors, func(x ResponseRotor) float64 { return x.Highest })).
+		Set("speed", list(r.Rotors, func(x ResponseRotor) float64 { return x.Speed })).
+		Set("polar", list(r.Rotors, func(x ResponseRotor) float64 { return x.Polar })).
+		Set("tilt", list(r.Rotors, func(x ResponseRotor) float64 { return x.Tilt })).
+		Set("equal", list(r.Rotors, func(x ResponseRotor) float64 { return x.Equal }))
+	a.Table("speeds").Set("speed", append([]float64{}, r.Speeds...))
+	a.Table("whirl").
+		Set("mode", list(r.Whirl, func(x ResponseWhirl) int64 { return int64(x.Mode) })).
+		Set("frequency", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Frequency })).
+		Set("damping", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Damping })).
+		Set("direction", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Direction }))
+	a.Table("critical").
+		Set("order", list(r.Critical, func(x ResponseCritical) int64 { return int64(x.Order) })).
+		Set("rotors", list(r.Critical, func(x ResponseCritical) []string { return x.Rotors })).
+		Set("speed", list(r.Critical, func(x ResponseCritical) float64 { return x.Speed })).
+		Set("frequency", list(r.Critical, func(x ResponseCritical) float64 { return x.Frequency })).
+		Set("damping", list(r.Critical, func(x ResponseCritical) float64 { return x.Damping })).
+		Set("direction", list(r.Critical, func(x ResponseCritical) float64 { return x.Direction })).
+		Set("mode", list(r.Critical, func(x ResponseCritical) int64 { return int64(x.Mode) }))
 	t = a.Table("lines").
 		Set("source", list(r.Lines, func(x ResponseLine) string { return x.Source })).
 		Set("rotor", list(r.Lines, func(x ResponseLine) string { return x.Rotor })).
@@ -271,6 +334,7 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	r := &Response{
 		From: a.Float("from"), To: a.Float("to"), ModesTo: a.Float("modes_to"), Force: a.Float("force_density"),
 		Moment: a.Float("moment_density"), Residual: a.Truth("residual"), Thrust: a.Float("thrust"), BladeShare: a.Float("blade_share"),
+		Spinning: a.Truth("spinning"), Speeds: a.Table("speeds").Floats("speed"),
 	}
 	t := a.Table("spectrum")
 	r.Frequency = t.Floats("frequency")
@@ -316,7 +380,21 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	}
 	t = a.Table("rotors")
 	for i := range t.Rows() {
-		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i]})
+		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i],
+			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i]})
+	}
+	t = a.Table("whirl")
+	for i := range t.Rows() {
+		x := ResponseWhirl{int(t.Ints("mode")[i]), t.FloatLists("frequency")[i], t.FloatLists("damping")[i], t.FloatLists("direction")[i]}
+		if n := len(r.Speeds); len(x.Frequency) != n || len(x.Damping) != n || len(x.Direction) != n {
+			return nil, malformed("response", "the whirl of mode %d has %d frequencies over %d speeds", x.Mode, len(x.Frequency), n)
+		}
+		r.Whirl = append(r.Whirl, x)
+	}
+	t = a.Table("critical")
+	for i := range t.Rows() {
+		r.Critical = append(r.Critical, ResponseCritical{int(t.Ints("order")[i]), t.TextLists("rotors")[i], t.Floats("speed")[i],
+			t.Floats("frequency")[i], t.Floats("damping")[i], t.Floats("direction")[i], int(t.Ints("mode")[i])})
 	}
 	t = a.Table("lines")
 	for i := range t.Rows() {

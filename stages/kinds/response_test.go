@@ -16,10 +16,13 @@ func sampleResponse() *Response {
 		Axes:     []ResponseAxis{{"roll", 0.1, -3, 440}},
 		Peaks: []ResponsePeak{{Axis: "roll", Frequency: 230, Density: 2, Prominence: 30, Damping: 0.01, Modes: []int{3, 4}, Shares: []float64{0.9, -0.1},
 			Rigid: 0.1, Residual: 0.1, Uncorrected: 0.95, Rotor: "fr", Component: 4, ComponentShare: 0.4, Losses: []string{"arm"}, LossShares: []float64{1}}},
-		Modes:  []ResponseMode{{1, 150, 0.01}},
-		Rotors: []ResponseRotor{{"fr", 3, 1675, 3450}},
-		Lines:  []ResponseLine{{"unbalance", "fr", 1, 266, 0.1, [3]float64{1, 2, 3}}},
-		Shapes: []ResponseShape{{230, "roll", "fr", 2, []float64{1, 2, 3}, []float64{4, 5, 6}}},
+		Spinning: true, Speeds: []float64{0, 1675},
+		Whirl:    []ResponseWhirl{{4, []float64{230, 220}, []float64{0.01, 0.02}, []float64{0, -0.5}}},
+		Critical: []ResponseCritical{{3, []string{"fr"}, 500, 239, 0.01, 0.4, 4}},
+		Modes:    []ResponseMode{{1, 150, 0.01}},
+		Rotors:   []ResponseRotor{{"fr", 3, 1675, 3450, 1600, 6e-6, 4e-6, 400}},
+		Lines:    []ResponseLine{{"unbalance", "fr", 1, 266, 0.1, [3]float64{1, 2, 3}}},
+		Shapes:   []ResponseShape{{230, "roll", "fr", 2, []float64{1, 2, 3}, []float64{4, 5, 6}}},
 	}
 	return r
 }
@@ -52,6 +55,7 @@ func TestContradictoryResponsesAreRefused(t *testing.T) {
 		"frequencies out of order": func(r *Response) { r.Frequency = []float64{101, 100} },
 		"short source":             func(r *Response) { r.Sources[0].Density = []float64{1} },
 		"short transfer":           func(r *Response) { r.Transfer[0].Imaginary = nil },
+		"short whirl":              func(r *Response) { r.Whirl[0].Damping = nil },
 		"seventh component":        func(r *Response) { r.Transfer[0].Component = 6 },
 		"shares without modes":     func(r *Response) { r.Peaks[0].Shares = nil },
 		"peak of no component":     func(r *Response) { r.Peaks[0].Component = -1 },

@@ -45,6 +45,9 @@ func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
 	}
+	if len(r.Whirl) > 0 {
+		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r))
+	}
 	return o
 }
 
@@ -148,7 +151,7 @@ func axisTable(r *kinds.Response) stage.Section {
 
 func lineTable(r *kinds.Response) stage.Section {
 	s := stage.Section{
-		Title: "Rotor lines at hover speed, peak amplitude",
+		Title: "Rotor lines at " + speedName(r) + ", peak amplitude",
 		Columns: []stage.Column{{Name: "source"}, {Name: "rotor"}, {Name: "Hz", Right: true}, {Name: "force, N", Right: true},
 			{Name: "roll, deg/s", Right: true}, {Name: "pitch, deg/s", Right: true}, {Name: "yaw, deg/s", Right: true}},
 	}

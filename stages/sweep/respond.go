@@ -24,7 +24,11 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 		residual = residual || kind == modal.Residual
 	}
 	residual = residual && set.residual
-	sys, err := forced.New(basis, forced.Options{DropResidual: !residual})
+	fleet, err := newFleet(basis, p, set)
+	if err != nil {
+		return nil, err
+	}
+	sys, err := forced.New(basis, fleet.options(set, residual))
 	if err != nil {
 		return nil, err
 	}
@@ -37,7 +41,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	sp := tr.Broadband(set.source)
 	r := &kinds.Response{
 		From: set.from, To: set.to, Force: set.source.Force, Moment: set.source.Moment, Residual: residual,
-		BladeShare: set.bladeShare, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
+		BladeShare: set.bladeShare, Spinning: set.spinning, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
 	}
 	for axis, name := range kinds.AxisNames {
 		for k, rotor := range sp.Rotors {
@@ -52,7 +56,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 		}
 	}
 	report.Progress("sweep", 0.6)
-	plain, err := uncorrected(ctx, basis, residual, grid, set, threads, r)
+	plain, err := uncorrected(ctx, basis, fleet, residual, grid, set, threads, r)
 	if err != nil {
 		return nil, err
 	}
@@ -70,10 +74,12 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 			r.Modes = append(r.Modes, kinds.ResponseMode{Number: len(r.Modes) + 1, Frequency: basis.Frequency[v], Damping: eta / 2})
 		}
 	}
-	for _, x := range p.Rotors {
-		r.Rotors = append(r.Rotors, kinds.ResponseRotor{Rotor: x.Name, Blades: x.Blades, Hover: x.HoverSpeed, Highest: x.MaxSpeed})
+	fleet.describe(r, p)
+	if r.Lines, err = lines(ctx, sys, fleet, set, r.Thrust); err != nil {
+		return nil, err
 	}
-	if r.Lines, err = lines(ctx, sys, p, set, r.Thrust); err != nil {
+	report.Progress("whirl", 0.85)
+	if err := fleet.whirl(ctx, r, basis, residual, set, threads); err != nil {
 		return nil, err
 	}
 	report.Progress("shapes", 0.9)
@@ -82,7 +88,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 
 // uncorrected fills in the spectrum without residual vectors and returns its
 // system, nil when there is nothing to leave out.
-func uncorrected(ctx context.Context, basis *modal.Basis, residual bool, grid []float64, set settings, threads int, r *kinds.Response) (*forced.System, error) {
+func uncorrected(ctx context.Context, basis *modal.Basis, fleet *fleet, residual bool, grid []float64, set settings, threads int, r *kinds.Response) (*forced.System, error) {
 	if !residual {
 		for axis := range r.Uncorrected {
 			for range grid {
@@ -91,7 +97,7 @@ func uncorrected(ctx context.Context, basis *modal.Basis, residual bool, grid []
 		}
 		return nil, nil
 	}
-	sys, err := forced.New(basis, forced.Options{DropResidual: true})
+	sys, err := forced.New(basis, fleet.options(set, false))
 	if err != nil {
 		return nil, err
 	}
@@ -210,18 +216,19 @@ func thrust(p *airframe.Properties) float64 {
 	return mass * gravity / float64(len(p.Rotors))
 }
 
-// lines drives each rotor at hover by its permitted unbalance and by a thrust
+// lines drives each rotor at its speed by its permitted unbalance and by a thrust
 // that varies at blade passing. Rotors of equal frequency are added as power,
 // since they are not locked to each other.
-func lines(ctx context.Context, sys *forced.System, p *airframe.Properties, set settings, thrust float64) ([]kinds.ResponseLine, error) {
+func lines(ctx context.Context, sys *forced.System, fleet *fleet, set settings, thrust float64) ([]kinds.ResponseLine, error) {
 	var out []kinds.ResponseLine
 	for _, source := range []string{"unbalance", "blade passing"} {
 		first := len(out)
-		for _, x := range p.Rotors {
+		for k, x := range fleet.rotors {
+			speed := fleet.speeds[k]
 			line := kinds.ResponseLine{Source: source, Rotor: x.Name, Order: 1}
 			var load [3]complex128
 			if source == "unbalance" {
-				line.Force = rotor.Force(rotor.Unbalance(x.SpinningMass, x.Grade, x.MaxSpeed), x.HoverSpeed)
+				line.Force = rotor.Force(rotor.Unbalance(x.SpinningMass, x.Grade, x.MaxSpeed), speed)
 				load = rotor.Whirl(x.Axis, x.Spin)
 			} else {
 				line.Order, line.Force = float64(x.Blades), set.bladeShare*thrust
@@ -229,7 +236,7 @@ func lines(ctx context.Context, sys *forced.System, p *airframe.Properties, set 
 					load[c] = complex(x.Axis[c], 0)
 				}
 			}
-			line.Frequency = rotor.Frequency(line.Order, x.HoverSpeed)
+			line.Frequency = rotor.Frequency(line.Order, speed)
 			if !(line.Force > 0 && line.Frequency > 0) {
 				continue
 			}

@@ -39,6 +39,13 @@ component, and is added over rotors as power. Its densities are assumptions: the
 shape of the spectrum and where its peaks lie say more than its level, unless
 the densities were measured.
 
+Spinning rotors add their gyroscopic moments, at hover speed if not told
+otherwise. Natural frequencies, damping and direction of whirl are followed from
+rest to the highest speed, and critical speeds of orders 1, 2, blade passing and
+twice that found with the gyroscopic moments at that very speed. A propeller is taken
+as a disc: with two blades its tilt inertia changes as it turns, and blades that bend
+carry less of the gyroscopic moment; neither is in the model.
+
 Lines at hover come from the unbalance that each rotor's balance grade permits
 and from a thrust that varies at blade passing by an assumed share.`,
 		Arguments: []stage.Argument{
@@ -55,6 +62,8 @@ and from a thrust that varies at blade passing by an assumed share.`,
 				Default: stage.Quantity{SI: 1e-9, Dimension: "moment density"}, Example: "1e-9 (N*m)2/Hz", Min: &zero},
 			{Name: "blade_share", About: "assumed amplitude of the thrust at blade passing, as a share of the thrust at hover",
 				Type: stage.Type{Kind: stage.Number}, Default: 0.01, Example: "0.01", Min: &zero, Max: &one},
+			{Name: "rotor_speed", About: "speed of the spinning rotors: hover, none (no gyroscopic moments), or that of the first rotor, the others in the ratio of their hover speeds",
+				Type: stage.Type{Kind: stage.Text}, Default: "hover", Example: `"hover", "none", "16000 rpm"`},
 			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
 			{Name: "prominence", About: "how far a peak stands above the valleys beside it, in dB, to be listed",
 				Type: stage.Type{Kind: stage.Number}, Default: 1.0, Example: "1", Above: &zero},
@@ -89,6 +98,8 @@ type settings struct {
 	residual       bool
 	prominence     float64 // power ratio
 	shapesAt       []float64
+	spinning       bool
+	speed          float64 // of the first rotor, rad/s; NaN at hover
 }
 
 // mostFrequencies bounds the size of a response.
@@ -100,6 +111,10 @@ func read(a stage.Arguments) (settings, error) {
 		source:     forced.Broadband{Force: a.SI("force_density"), Moment: a.SI("moment_density")},
 		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
 		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"),
+	}
+	var err error
+	if s.spinning, s.speed, err = readSpeed(a.Text("rotor_speed")); err != nil {
+		return s, err
 	}
 	switch {
 	case !(s.to > s.from):

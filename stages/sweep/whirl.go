@@ -1,0 +1,166 @@
+package sweep
+
+import (
+	"context"
+	"math"
+	"sort"
+
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/forced"
+	"hushframe/core/mechanics/modal"
+	"hushframe/core/mechanics/rotor"
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/quantity"
+	"hushframe/stages/kinds"
+)
+
+// readSpeed reads rotor_speed; NaN stands for hover.
+func readSpeed(text string) (spinning bool, speed float64, err error) {
+	switch text {
+	case "hover":
+		return true, math.NaN(), nil
+	case "none":
+		return false, math.NaN(), nil
+	}
+	q, err := quantity.ParseAs(text, "rotational speed")
+	if err != nil {
+		return false, 0, fault.From(err).In("sweep", "").Of("rotor_speed").Do(`write "hover", "none" or a speed such as "16000 rpm"`)
+	}
+	if !(q.SI > 0) {
+		return false, 0, fault.New(fault.Input, "rotors do not turn at %s", text).In("sweep", "").Of("rotor_speed").
+			Do(`write "none" to leave gyroscopic moments out, or a speed above 0 rpm`)
+	}
+	return true, q.SI, nil
+}
+
+// fleet is the rotors with the speeds of this response.
+type fleet struct {
+	rotors    []airframe.Rotor
+	speeds    []float64 // rad/s
+	couplings []forced.Gyroscopic
+}
+
+// newFleet takes the rotors that have a site; properties and basis may come
+// from files of different age, and a rotor without a site does nothing.
+func newFleet(b *modal.Basis, p *airframe.Properties, set settings) (*fleet, error) {
+	f := &fleet{rotors: p.Rotors}
+	if len(p.Rotors) == 0 {
+		return f, nil
+	}
+	for _, r := range p.Rotors {
+		speed := r.HoverSpeed
+		if !math.IsNaN(set.speed) {
+			speed = set.speed
+			if first := p.Rotors[0].HoverSpeed; first > 0 {
+				speed *= r.HoverSpeed / first
+			}
+		}
+		f.speeds = append(f.speeds, speed)
+	}
+	var err error
+	f.couplings, err = rotor.Couplings(b, p.Rotors, f.speeds)
+	return f, err
+}
+
+// options are those of a system with these rotors.
+func (f *fleet) options(set settings, residual bool) forced.Options {
+	o := forced.Options{DropResidual: !residual}
+	if set.spinning {
+		o.Gyroscopic = f.couplings
+	}
+	return o
+}
+
+// describe fills in the table of rotors.
+func (f *fleet) describe(r *kinds.Response, p *airframe.Properties) {
+	for k, x := range f.rotors {
+		row := kinds.ResponseRotor{Rotor: x.Name, Blades: x.Blades, Hover: x.HoverSpeed, Highest: x.MaxSpeed,
+			Speed: f.speeds[k], Polar: x.PolarInertia, Tilt: math.NaN(), Equal: math.NaN()}
+		for _, body := range p.Bodies {
+			if body.Name == x.Body {
+				balance := rotor.BalanceOf(x, body, f.speeds[k])
+				row.Tilt, row.Equal = balance.Tilt, balance.Equal
+			}
+		}
+		r.Rotors = append(r.Rotors, row)
+	}
+}
+
+// whirlSteps is the number of even steps from rest to the highest speed.
+const whirlSteps = 40
+
+// whirl follows the natural motions over rotor speed. Frames whose rotors have
+// no hover speed, no highest speed or no polar inertia have no such table.
+func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis, residual bool, set settings, threads int) error {
+	highest, inertia := 0.0, 0.0
+	for _, x := range f.rotors {
+		if !(x.HoverSpeed > 0) {
+			return nil
+		}
+		highest = max(highest, x.MaxSpeed*f.rotors[0].HoverSpeed/x.HoverSpeed)
+		inertia += x.PolarInertia
+	}
+	if !(highest > 0 && inertia > 0) {
+		return nil
+	}
+	sys, err := forced.New(basis, forced.Options{DropResidual: !residual, Gyroscopic: f.couplings})
+	if err != nil {
+		return err
+	}
+	list, err := rotor.NewFleet(f.rotors, f.couplings)
+	if err != nil {
+		return err
+	}
+	var elastic []int
+	for i, v := range sys.Vectors() {
+		if basis.Kinds[v] == modal.Elastic {
+			elastic = append(elastic, i)
+		}
+	}
+	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), set.to, threads)
+	if err != nil {
+		return err
+	}
+	r.Speeds = d.Speeds
+	for _, l := range d.Lines {
+		r.Whirl = append(r.Whirl, kinds.ResponseWhirl{Mode: l.Mode + 1, Frequency: l.Frequency, Damping: l.Damping, Direction: l.Whirl})
+	}
+	for _, c := range d.Critical {
+		x := kinds.ResponseCritical{Order: c.Order, Speed: c.Speed, Frequency: c.Frequency, Damping: c.Damping, Direction: c.Whirl, Mode: d.Lines[c.Line].Mode + 1}
+		for _, k := range c.Rotors {
+			x.Rotors = append(x.Rotors, f.rotors[k].Name)
+		}
+		r.Critical = append(r.Critical, x)
+	}
+	return nil
+}
+
+// ladder gives even speeds from 0 to the highest with the marked ones among
+// them.
+func ladder(highest float64, marked ...float64) []float64 {
+	var out []float64
+	for k := range whirlSteps + 1 {
+		out = append(out, highest*float64(k)/whirlSteps)
+	}
+	for _, x := range marked {
+		near := false
+		for _, have := range out {
+			near = near || math.Abs(have-x) < 1e-9*highest
+		}
+		if !near && x > 0 {
+			out = append(out, x)
+		}
+	}
+	sort.Float64s(out)
+	return out
+}
+
+// at is the place of a speed among the speeds of the whirl table, -1 for none.
+func at(speeds []float64, speed float64) int {
+	for k, x := range speeds {
+		if math.Abs(x-speed) <= 1e-9*speeds[len(speeds)-1] {
+			return k
+		}
+	}
+	return -1
+}
