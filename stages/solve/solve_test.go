@@ -3,6 +3,7 @@ package solve_test
 import (
 	"context"
 	"errors"
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
@@ -59,6 +60,19 @@ type bench struct {
 	folder string
 	keep   *keeper
 	truths map[string]bool
+	texts  map[string]string
+	memory int64
+	export string // folder of the matrices of the last run
+}
+
+func (b *bench) matrices() string {
+	b.t.Helper()
+	folder, err := os.MkdirTemp(b.folder, "matrices")
+	if err != nil {
+		b.t.Fatal(err)
+	}
+	b.export = folder
+	return folder
 }
 
 func newBench(t *testing.T) *bench {
@@ -97,10 +111,13 @@ func (b *bench) run(m *mesh.Mesh, p *airframe.Properties, threads int, set map[s
 	for name, v := range b.truths {
 		arguments[name] = v
 	}
+	for name, v := range b.texts {
+		arguments[name] = v
+	}
 	outcome, err := (solve.Stage{}).Run(context.Background(), &stage.Call{
 		Arguments: arguments,
 		Inputs:    map[string][]stage.Input{"mesh": {b.write(kinds.EncodeMesh(m))}, "properties": {b.write(kinds.EncodeProperties(p))}},
-		Outputs:   map[string]string{"modes": out}, Threads: threads, Report: quiet{b.t}, Services: b.keep,
+		Outputs:   map[string]string{"modes": out, "matrices": b.matrices()}, Threads: threads, Memory: b.memory, Report: quiet{b.t}, Services: b.keep,
 	})
 	return outcome, out, err
 }
@@ -287,8 +304,17 @@ func TestFaults(t *testing.T) {
 		"stack": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
 			p.Bodies[5].Mount.Points = p.Bodies[5].Mount.Points[:1]
 		},
-		"where the sweep has ended": func(_ *mesh.Mesh, _ *airframe.Properties, set map[string]float64) { set["gaps_from"] = 500 },
-		"does not have six free": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
+		"where the sweep has ended":         func(_ *mesh.Mesh, _ *airframe.Properties, set map[string]float64) { set["gaps_from"] = 500 },
+		`body "battery": its mass is -85 g`: func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Bodies[4].Mass *= -1 },
+		`body "stack": its mass is 0 g`:     func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Bodies[5].Mass = 0 },
+		`joint "tail joint": stiffness of component rz is 0`: func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
+			p.Joints[0].Stiffness[5] = 0
+		},
+		`"tail" moves all but freely, resisted by "tail joint" alone`: func(m *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
+			m.Links, p.Bolts = m.Links[:len(m.Links)-1], p.Bolts[:1]
+			p.Joints[0].Stiffness[5] = 1e-6
+		},
+		`"battery" moves all but freely, resisted by "strap" alone`: func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) {
 			p.Bodies[4].Mount.Points = weak(p.Bodies[4].Mount.Points)
 		},
 		"rotor rl: its body \"x\"": func(_ *mesh.Mesh, p *airframe.Properties, _ map[string]float64) { p.Rotors[1].Body = "x" },
@@ -358,5 +384,74 @@ func TestErrorEstimate(t *testing.T) {
 	table := o.Summary[0]
 	if last := table.Columns[len(table.Columns)-1].Name; last != "mesh error, %" || len(table.Rows[0]) != len(table.Columns) {
 		t.Errorf("the mode table ends with %q", last)
+	}
+}
+
+// A run that is granted little memory says what the mesh would need, before it tries.
+func TestMemoryIsAskedFor(t *testing.T) {
+	b := newBench(t)
+	b.memory = 1 << 20
+	m, p := known.Airframe(0.03)
+	_, _, err := b.run(m, p, 1, nil)
+	var f *fault.Error
+	if !errors.As(err, &f) || f.Kind != fault.Limit || f.Argument != "mesh" || !strings.Contains(f.Text, "0.0 GB are granted") || b.keep.made != 0 && len(b.keep.kept) != 0 {
+		t.Errorf("got %v", err)
+	}
+}
+
+// The matrices as text: what is read back is symmetric, K does not resist a displacement of everything and M
+// weighs the frame by it.
+func TestMatrices(t *testing.T) {
+	b := newBench(t)
+	m, p := known.Airframe(0.03)
+	b.texts = map[string]string{"matrices": "out/stiffness.mtx"}
+	o, _, err := b.run(m, p, 2, map[string]float64{"up_to": 300, "swept_to": 200})
+	if err != nil {
+		t.Fatal(err)
+	}
+	a, err := artifact.Open(b.export, kinds.Registry())
+	if err != nil {
+		t.Fatal(err)
+	}
+	n := int(a.Int("unknowns"))
+	names := a.Table("unknowns").Texts("unknown")
+	x := make([]float64, n)
+	for i, what := range names {
+		if strings.HasSuffix(what, "displacement along z") {
+			x[i] = 1
+		}
+	}
+	square := func(file string) (energy, size float64) {
+		lines := strings.Split(strings.TrimSpace(string(a.Files[file])), "\n")
+		if lines[0] != "%%MatrixMarket matrix coordinate real symmetric" {
+			t.Fatalf("%s begins with %q", file, lines[0])
+		}
+		for len(lines) > 0 && lines[0][0] == '%' {
+			lines = lines[1:]
+		}
+		var rows, columns, entries int
+		if _, err := fmt.Sscan(lines[0], &rows, &columns, &entries); err != nil || rows != n || columns != n || entries != len(lines)-1 {
+			t.Fatalf("%s: %q for %d unknowns, %d lines", file, lines[0], n, len(lines))
+		}
+		for _, line := range lines[1:] {
+			var i, j int
+			var v float64
+			if _, err := fmt.Sscan(line, &i, &j, &v); err != nil || i < j {
+				t.Fatalf("%s: %q", file, line)
+			}
+			twice := 2.0
+			if i == j {
+				twice = 1
+			}
+			energy += twice * v * x[i-1] * x[j-1]
+			size += math.Abs(v * x[i-1] * x[j-1])
+		}
+		return energy, size
+	}
+	if e, size := square("stiffness.mtx"); !(math.Abs(e) < 1e-9*size) {
+		t.Errorf("a displacement along z costs %g of %g", e, size)
+	}
+	if e, _ := square("mass.mtx"); math.Abs(e-figure(t, o, "mass")) > 1e-9 {
+		t.Errorf("the mass matrix weighs %g kg, the model %g", e, figure(t, o, "mass"))
 	}
 }

@@ -11,7 +11,6 @@ import (
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/shell"
 	"hushframe/core/mechanics/modal"
-	"hushframe/core/numeric/eigen"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
@@ -57,8 +56,12 @@ A changed loss factor, unbalance grade or rotor speed does not solve again.`,
 				Default: hertz(500), Example: "500 Hz", Above: &zero},
 			{Name: "gaps_from", About: "gaps count modes from here to swept_to", Type: frequency, Default: hertz(80), Example: "80 Hz", Min: &zero},
 			{Name: "estimate_error", About: "solve again with every element cut in four, and estimate the error of each frequency", Type: stage.Type{Kind: stage.Truth}, Default: false, Example: "true"},
+			{Name: "matrices", About: "where the stiffness goes in Matrix Market form; the mass goes to mass.mtx beside it", Type: stage.Type{Kind: stage.Target}, Example: `"matrices/stiffness.mtx"`},
 		},
-		Outputs: []stage.Output{{Name: "modes", Kind: "modes", About: "modal basis and what each mode is"}},
+		Outputs: []stage.Output{
+			{Name: "modes", Kind: "modes", About: "modal basis and what each mode is"},
+			{Name: "matrices", Kind: "matrices", About: "stiffness and mass, if asked for", Publish: "matrices"},
+		},
 		Figures: []stage.Figure{
 			{Name: "modes", About: "elastic modes as objects with number, frequency, damping, part, motion, and strength per axis",
 				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}},
@@ -129,6 +132,9 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if _, err := artifact.Write(call.Outputs["modes"], kinds.EncodeModes(modes)); err != nil {
 		return nil, err
 	}
+	if err := writeMatrices(ctx, call, problem); err != nil {
+		return nil, explain(err)
+	}
 	return outcome(modes, p, set, notes), nil
 }
 
@@ -166,15 +172,18 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 	if err != nil {
 		return nil, nil, err
 	}
+	if err := afford(call, &f.Problem); err != nil {
+		return nil, nil, err
+	}
 	call.Report.Progress("assemble", -1)
 	s, err := assembly.Assemble(ctx, &f.Problem, call.Threads)
 	if err != nil {
 		return nil, nil, err
 	}
-	call.Report.Log(stage.Info, "assembled", "unknowns", s.N, "entries", len(s.K.Val), "mass_g", 1e3*s.Mass)
+	call.Report.Log(stage.Info, "assembled", "unknowns", s.N, "entries", len(s.K.Val), "mass_g", fmt.Sprintf("%.1f", 1e3*s.Mass))
 	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress, Bare: k.refined})
 	if err != nil {
-		return nil, nil, err
+		return nil, nil, placed(s, err)
 	}
 	modes := &kinds.Modes{
 		UpTo: set.upTo, SweptTo: set.sweptTo, Proved: st.Proved, Unknowns: s.N, Mass: s.Mass, Centre: s.Centre, RigidRatio: st.RigidRatio,
@@ -222,14 +231,13 @@ func places(f *assembly.Frame, p *airframe.Properties) ([]modal.Place, error) {
 // explain turns what the kernels say into a fault with a remedy.
 func explain(err error) error {
 	var (
-		f        *fault.Error
-		input    *assembly.InputError
-		part     *assembly.PartError
-		loose    *assembly.Loose
-		free     *assembly.Free
-		rigid    *modal.RigidError
-		singular *eigen.SingularError
-		shape    *element.ShapeError
+		f     *fault.Error
+		input *assembly.InputError
+		part  *assembly.PartError
+		loose *assembly.Loose
+		free  *assembly.Free
+		rigid *modal.RigidError
+		shape *element.ShapeError
 	)
 	switch {
 	case errors.As(err, &f):
@@ -250,9 +258,7 @@ func explain(err error) error {
 		}
 		return fault.New(fault.Numeric, "%v", err).In("solve", where).Do("mesh again with another size")
 	case errors.As(err, &rigid):
-		return fault.New(fault.Numeric, "%v", rigid).In("solve", "").Do("see whether a mount leaves its body free and whether all stiffnesses are in the units meant")
-	case errors.As(err, &singular):
-		return fault.New(fault.Numeric, "a motion has neither stiffness nor mass: %v", singular).In("solve", "")
+		return fault.New(fault.Numeric, "%v", rigid).In("solve", rigid.Moving).Do("see whether what holds it leaves it free and whether all stiffnesses are in the units meant")
 	}
 	return fault.New(fault.Numeric, "%v", err).In("solve", "")
 }

@@ -287,6 +287,9 @@ func checkStiffness(k [6]float64, all bool) error {
 
 func (b *builder) bodies() error {
 	for _, x := range b.properties.Bodies {
+		if !(x.Mass > 0) && (x.Mass != 0 || x.Mount != nil) { // a massless rigid body harms nothing
+			return blame("body %q", x.Name, fmt.Errorf("its mass is %g g: it must be positive", 1e3*x.Mass))
+		}
 		at := len(b.frame.Bodies)
 		b.frame.Bodies = append(b.frame.Bodies, Body{Name: x.Name, Inertia: []Inertia{{Mass: x.Mass, Centre: x.Centre, Tensor: x.Inertia}}})
 		b.frame.BodyOf = append(b.frame.BodyOf, at)

@@ -162,7 +162,7 @@ func TestAirframeRefusals(t *testing.T) {
 		`mount "strap": stiffness of component x is -1`:         func(_ *mesh.Mesh, p *airframe.Properties) { p.Bodies[4].Mount.Points[0].Stiffness[0] = -1 },
 		`body "fl": there is no patch "nowhere"`:                func(_ *mesh.Mesh, p *airframe.Properties) { p.Bodies[0].Patches = []string{"nowhere"} },
 		`"tail", "bolt near under", "bolt far under" are not c`: func(m *mesh.Mesh, _ *airframe.Properties) { m.Links = m.Links[:4] },
-		`body "rl" has a mass of -1 kg`:                         func(_ *mesh.Mesh, p *airframe.Properties) { p.Bodies[1].Mass = -1 },
+		`body "rl": its mass is -1000 g`:                        func(_ *mesh.Mesh, p *airframe.Properties) { p.Bodies[1].Mass = -1 },
 		`body "stack" can move freely on its mount`:             func(_ *mesh.Mesh, p *airframe.Properties) { p.Bodies[5].Mount.Points = p.Bodies[5].Mount.Points[:1] },
 	} {
 		m, p := known.Airframe(0.02)

@@ -51,16 +51,6 @@ const RigidBodies = 6
 // rigidBelow is the share of the first elastic frequency below which rigid-body ones must lie.
 const rigidBelow = 1e-3
 
-// RigidError says that the structure does not have six rigid-body motions.
-type RigidError struct {
-	// Frequencies are the lowest ones computed, Hz.
-	Frequencies []float64
-}
-
-func (e *RigidError) Error() string {
-	return fmt.Sprintf("the structure does not have six free motions: its lowest frequencies are %.3g Hz; a part may hang by a hinge, or a stiffness may be out of all proportion", e.Frequencies)
-}
-
 // Build computes the modes of a free structure up to opt.UpTo (and two elastic ones at least), its
 // residual vectors, and the energies.
 //
@@ -83,7 +73,7 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 		return nil, fmt.Errorf("the eigensolver did not converge after %d steps and %d restarts", res.Status.Steps, res.Status.Restarts)
 	}
 	st := &Structure{Basis: &Basis{}, Proved: res.Status.Proved, Notes: res.Status.Notes}
-	if st.RigidRatio, err = rigidRatio(res.Values); err != nil {
+	if st.RigidRatio, err = rigidRatio(ctx, s, res, opt.Threads); err != nil {
 		return nil, err
 	}
 	b := &span{system: s, threads: opt.Threads, n: s.N}
@@ -120,25 +110,6 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 		return nil, err
 	}
 	return st, nil
-}
-
-func rigidRatio(values []float64) (float64, error) {
-	var f []float64
-	for _, v := range values[:min(len(values), RigidBodies+2)] {
-		f = append(f, math.Sqrt(math.Abs(v))/(2*math.Pi))
-	}
-	if len(f) <= RigidBodies {
-		return 0, &RigidError{f}
-	}
-	highest := 0.0
-	for _, v := range f[:RigidBodies] {
-		highest = max(highest, v)
-	}
-	ratio := highest / f[RigidBodies]
-	if !(ratio < rigidBelow) {
-		return 0, &RigidError{f}
-	}
-	return ratio, nil
 }
 
 // finish fills the basis.

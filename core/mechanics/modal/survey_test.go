@@ -231,7 +231,7 @@ func TestHingeIsRefused(t *testing.T) {
 		t.Fatal(err)
 	}
 	_, err = modal.Build(context.Background(), s, nil, modal.Options{UpTo: 300, Threads: 2})
-	if _, ok := err.(*modal.RigidError); !ok {
+	if e, ok := err.(*modal.RigidError); !ok || e.Moving != "tail" || e.Against != "tail joint" {
 		t.Errorf("got %v", err)
 	}
 }
