@@ -34,10 +34,6 @@ func modesSection(c *content) *section {
 	return s
 }
 
-// negligible is the share of the strongest value of an axis below which a value
-// is shown as zero; the file keeps it.
-const negligible = 1e-3
-
 // shapesOfModes draws the modes if it can, and says why if it cannot.
 func shapesOfModes(s *section, c *content) {
 	m := c.modes
@@ -73,16 +69,14 @@ func modeTable(m *kinds.Modes) *table {
 		t.Columns = append(t.Columns, column{"mesh error", "%", true})
 		t.About += " The mesh error is what the mesh is thought to put the frequency off, from a second mesh; a dash where the mode was not found on it."
 	}
-	var best [3]float64
+	var best kinds.Strongest
 	for _, x := range m.Survey.Modes {
-		for axis := range best {
-			best[axis] = math.Max(best[axis], x.Strength[axis])
-		}
+		best.Add(x.Strength)
 	}
 	for _, x := range m.Survey.Modes {
 		row := []cell{count(x.Number), number(x.Frequency, 1), percent(x.Loss/2, 2), words(strained(m, x))}
 		for axis := range best {
-			strength := atLeast(x.Strength[axis]/degree, negligible*best[axis]/degree)
+			strength := unless(best.Negligible(axis, x.Strength[axis]), x.Strength[axis]/degree)
 			strength.Strong = x.Strength[axis] > 0 && x.Strength[axis] == best[axis]
 			row = append(row, strength)
 		}
@@ -212,11 +206,9 @@ func shareTable(m *kinds.Modes) *table {
 	for _, axis := range kinds.AxisNames {
 		t.Columns = append(t.Columns, column{axis + " by moments", "(deg/s)/(N·m)", true})
 	}
-	var best [3]float64
+	var best kinds.Strongest
 	for _, x := range m.Survey.Modes {
-		for axis, strength := range x.MomentStrength {
-			best[axis] = math.Max(best[axis], strength)
-		}
+		best.Add(x.MomentStrength)
 	}
 	for _, x := range m.Survey.Modes {
 		row := []cell{count(x.Number), number(x.Frequency, 1)}
@@ -224,7 +216,7 @@ func shareTable(m *kinds.Modes) *table {
 			row = append(row, percent(share, 0))
 		}
 		for axis, strength := range x.MomentStrength {
-			row = append(row, atLeast(strength/degree, negligible*best[axis]/degree))
+			row = append(row, unless(best.Negligible(axis, strength), strength/degree))
 		}
 		t.Rows = append(t.Rows, row)
 	}
@@ -329,5 +321,5 @@ func modeCaption(m *kinds.Modes, x modal.Mode) string {
 // strained says where and how a mode stores most energy: "bending of arm_fl,
 // arm_fr", with all groups that store about as much as the first.
 func strained(m *kinds.Modes, x modal.Mode) string {
-	return x.Motion + " of " + strings.Join(x.Leading(m.Survey.Groups), ", ")
+	return x.Motion + " of " + strings.Join(x.Leading(m.Basis.Groups), ", ")
 }

@@ -63,10 +63,10 @@ func digits(x float64, n int) cell {
 	return cell{Text: significant(x, n), Raw: strconv.FormatFloat(x, 'g', 9, 64)}
 }
 
-// atLeast shows three digits, and zero for what is below a limit.
-func atLeast(x, limit float64) cell {
+// unless shows three digits, and zero for what is negligible; the file keeps it.
+func unless(negligible bool, x float64) cell {
 	c := digits(x, 3)
-	if math.Abs(x) < limit {
+	if negligible {
 		c.Text, c.Quiet = "0", true
 	}
 	return c
