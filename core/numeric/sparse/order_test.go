@@ -142,24 +142,61 @@ func TestDissectionCostGrowsAsTheory(t *testing.T) {
 	}
 }
 
+// brick is a grid of n by n by n cells of eight nodes with six unknowns each, which fills in heavily.
+func brick(n int) (p *sparse.Pattern, nodeOf []int32, coords [][3]float64) {
+	side := n + 1
+	for v := range side * side * side {
+		coords = append(coords, [3]float64{float64(v % side), float64(v / side % side), float64(v / side / side)})
+		nodeOf = append(nodeOf, slices.Repeat([]int32{int32(v)}, 6)...)
+	}
+	var elements [][]int32
+	for cell := range n * n * n {
+		var unknowns []int32
+		for corner := range 8 {
+			v := cell%n + corner%2 + side*(cell/n%n+corner/2%2) + side*side*(cell/n/n+corner/4)
+			for c := range 6 {
+				unknowns = append(unknowns, int32(6*v+c))
+			}
+		}
+		elements = append(elements, unknowns)
+	}
+	return sparse.NewAssembler(len(nodeOf), elements).Pattern(), nodeOf, coords
+}
+
 func TestOrderTakesTheCheaper(t *testing.T) {
+	type problem struct {
+		name   string
+		p      *sparse.Pattern
+		nodeOf []int32
+		coords [][3]float64
+	}
+	var problems []problem
 	for _, s := range []trial.Sheet{{Nx: 30, Ny: 30}, {Nx: 90, Ny: 4}} {
 		s.Cell, s.Thick = 3e-3, 2e-3
 		l := s.Lattice()
-		p := l.K.Pattern()
+		problems = append(problems, problem{fmt.Sprintf("sheet of %d by %d", s.Nx, s.Ny), l.K.Pattern(), l.NodeOf, l.Coords})
+	}
+	p, nodeOf, coords := brick(11)
+	problems = append(problems, problem{"brick", p, nodeOf, coords})
+	for _, q := range problems {
 		var flops []float64
 		for _, o := range []sparse.Ordering{
-			sparse.Order(p, l.NodeOf, l.Coords), sparse.NestedDissection(p, l.NodeOf, l.Coords), sparse.MinimumDegree(p),
+			sparse.Order(q.p, q.nodeOf, q.coords), sparse.NestedDissection(q.p, q.nodeOf, q.coords), sparse.MinimumDegree(q.p),
 		} {
-			a, err := sparse.Analyse(p, o)
+			a, err := sparse.Analyse(q.p, o)
 			if err != nil {
 				t.Fatal(err)
 			}
 			flops = append(flops, a.Flops)
 		}
-		// Merged supernodes make the count at hand differ a little from that compared.
-		if flops[0] > 1.02*min(flops[1], flops[2]) {
-			t.Errorf("%d by %d: operations %.3g, of dissection and degree %.3g", s.Nx, s.Ny, flops[0], flops[1:])
+		// Merged supernodes make the count at hand differ a little from that compared. Where there is little to do,
+		// finding a better order is not worth it.
+		little := flops[0] <= 2e5*float64(q.p.N)
+		if best := min(flops[1], flops[2]); flops[0] > 1.02*best && !little || flops[0] > 1.5*best {
+			t.Errorf("%s: operations %.3g, of dissection and degree %.3g", q.name, flops[0], flops[1:])
+		}
+		if q.name == "brick" && (little || flops[2] < 1.02*flops[1]) {
+			t.Errorf("%s: operations %.3g leave no choice to be made", q.name, flops)
 		}
 	}
 }
