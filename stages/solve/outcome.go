@@ -109,8 +109,19 @@ func warnings(m *kinds.Modes, p *airframe.Properties, set settings) []stage.Warn
 	return out
 }
 
-// strength shows a gyro strength in deg/s per newton with three digits.
-func strength(x float64) string { return fmt.Sprintf("%.3g", x/degree) }
+// strength shows a gyro strength in deg/s per newton with three digits, 0 if it is negligible, and no
+// power of ten unless the strongest itself is tiny.
+func strength(x float64, negligible bool) string {
+	x /= degree
+	if negligible || x == 0 {
+		return "0"
+	}
+	magnitude := math.Floor(math.Log10(x))
+	if math.IsInf(x, 0) || magnitude < -6 {
+		return fmt.Sprintf("%.3g", x)
+	}
+	return fmt.Sprintf("%.*f", max(0, 2-int(magnitude)), x)
+}
 
 // gap shows the distance to the nearer neighbour.
 func gap(m *modal.Mode) string {
@@ -124,9 +135,13 @@ func gap(m *modal.Mode) string {
 func modeTable(m *kinds.Modes) stage.Section {
 	s := stage.Section{
 		Title: "Modes",
-		Text:  "strength: peak gyro rate of the mode alone, root sum of squares over 1 N along each axis at every hub",
-		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "frequency, Hz", Right: true}, {Name: "damping, %", Right: true}, {Name: "motion"},
-			{Name: "roll, deg/s/N", Right: true}, {Name: "pitch, deg/s/N", Right: true}, {Name: "yaw, deg/s/N", Right: true}, {Name: "gap, Hz", Right: true}},
+		Text:  "roll, pitch, yaw: peak gyro rate of the mode alone in deg/s, root sum of squares over 1 N along each axis at every hub;\n0 is below a thousandth of the strongest",
+		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "Hz", Right: true}, {Name: "damping, %", Right: true}, {Name: "motion"},
+			{Name: "roll", Right: true}, {Name: "pitch", Right: true}, {Name: "yaw", Right: true}, {Name: "gap, Hz", Right: true}},
+	}
+	var strongest kinds.Strongest
+	for i := range m.Survey.Modes {
+		strongest.Add(m.Survey.Modes[i].Strength)
 	}
 	estimated := len(m.Survey.MeshErrors) > 0
 	if estimated {
@@ -134,8 +149,11 @@ func modeTable(m *kinds.Modes) stage.Section {
 	}
 	for i := range m.Survey.Modes {
 		mode := &m.Survey.Modes[i]
-		row := []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), motion(mode, m.Survey.Groups),
-			strength(mode.Strength[0]), strength(mode.Strength[1]), strength(mode.Strength[2]), gap(mode)}
+		row := []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), fmt.Sprintf("%.2f", 50*mode.Loss), motion(mode, m.Basis.Groups)}
+		for axis, v := range mode.Strength {
+			row = append(row, strength(v, strongest.Negligible(axis, v)))
+		}
+		row = append(row, gap(mode))
 		if e, ok := m.Survey.MeshError(mode.Number); ok {
 			row = append(row, fmt.Sprintf("%.2g", 100*e.Error/mode.Frequency))
 		} else if estimated {
@@ -148,7 +166,7 @@ func modeTable(m *kinds.Modes) stage.Section {
 
 // motion says in words what a mode is: "bending of arm_fl, arm_fr (41 % each)", with the share of the
 // strain energy in the part.
-func motion(m *modal.Mode, groups []string) string {
+func motion(m *modal.Mode, groups []modal.LossGroup) string {
 	leading := m.Leading(groups)
 	each := ""
 	if len(leading) > 1 {
@@ -167,7 +185,7 @@ func meetingTable(m *kinds.Modes) stage.Section {
 	for i := range m.Survey.Modes {
 		mode := &m.Survey.Modes[i]
 		row := []string{fmt.Sprint(mode.Number), fmt.Sprintf("%.1f", mode.Frequency), "-", "-", "-"}
-		seen := [3]string{}
+		seen := [3][]string{}
 		for _, x := range mode.Meetings {
 			if !x.Service {
 				continue
@@ -180,15 +198,13 @@ func meetingTable(m *kinds.Modes) stage.Section {
 			if x.Hover {
 				text += "*"
 			}
-			if seen[column] == "" {
-				seen[column] = text
-			} else if !strings.Contains(seen[column], text) {
-				seen[column] += ", " + text
+			if !slices.Contains(seen[column], text) {
+				seen[column] = append(seen[column], text)
 			}
 		}
-		for c, text := range seen {
-			if text != "" {
-				row[2+c] = text
+		for c, texts := range seen {
+			if len(texts) > 0 {
+				row[2+c] = strings.Join(texts, ", ")
 			}
 		}
 		s.Rows = append(s.Rows, row)

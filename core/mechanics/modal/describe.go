@@ -145,13 +145,22 @@ func (m *Mode) energies(strain [][6]float64, kinetic []float64, s *Survey) {
 	m.Part, m.Motion = s.Groups[top], s.Kinds[kind]
 }
 
-// Leading lists the groups whose share of the strain energy is the greatest or nearly so, in order.
-func (m *Mode) Leading(groups []string) []string {
+// Leading lists the groups whose share of the strain energy is the greatest or nearly so, in order, of
+// the kind of the first: where a part bends, a mount with as much energy is no part that bends. The groups
+// are those of the basis.
+func (m *Mode) Leading(groups []LossGroup) []string {
 	most := slices.Max(m.ByGroup)
 	var names []string
+	kind := ""
 	for g, v := range m.ByGroup {
-		if v >= alike*most {
-			names = append(names, groups[g])
+		if v < alike*most {
+			continue
+		}
+		if kind == "" {
+			kind = groups[g].Kind
+		}
+		if groups[g].Kind == kind {
+			names = append(names, groups[g].Name)
 		}
 	}
 	return names

@@ -1,0 +1,60 @@
+package solve
+
+import (
+	"strings"
+	"testing"
+	"unicode/utf8"
+
+	"hushframe/core/mechanics/modal"
+	"hushframe/stages/kinds"
+)
+
+// frame is a basis of four arms and a mount, with modes of given strengths (deg/s/N).
+func frame(strengths ...[3]float64) *kinds.Modes {
+	m := &kinds.Modes{Basis: &modal.Basis{}, Survey: &modal.Survey{}}
+	for _, name := range []string{"arm_fl", "arm_fr", "arm_rl", "arm_rr"} {
+		m.Basis.Groups = append(m.Basis.Groups, modal.LossGroup{Name: name, Kind: "part"})
+		m.Survey.Groups = append(m.Survey.Groups, name)
+	}
+	for i, s := range strengths {
+		mode := modal.Mode{Number: i + 1, Frequency: 1057.3, Loss: 0.02, Part: "arm_fl", Motion: "bending", ByGroup: []float64{0.23, 0.23, 0.23, 0.23}, Below: 150, Above: 150}
+		for axis, v := range s {
+			mode.Strength[axis] = v * degree
+		}
+		m.Survey.Modes = append(m.Survey.Modes, mode)
+	}
+	return m
+}
+
+// Strengths are plain numbers, 0 below a thousandth of the strongest of the axis; four alike arms leave the table narrow.
+func TestModeTable(t *testing.T) {
+	s := modeTable(frame([3]float64{1060.4, 0.5, 0}, [3]float64{1.06, 7.39e-7, 0}, [3]float64{1.07, 0.0312, 0}))
+	at := 4
+	for i, want := range []string{"1060 0.500 0", "0 0 0", "1.07 0.0312 0"} {
+		if got := strings.Join(s.Rows[i][at:at+3], " "); got != want {
+			t.Errorf("row %d has strengths %s, want %s", i, got, want)
+		}
+	}
+	width := 0
+	for c, column := range s.Columns {
+		n := utf8.RuneCountInString(column.Name)
+		for _, row := range s.Rows {
+			n = max(n, utf8.RuneCountInString(row[c]))
+		}
+		width += n + 2
+	}
+	if width > 112 {
+		t.Errorf("the table is %d columns wide", width)
+	}
+}
+
+// Speeds are compared whole: 2433 is not in 12433.
+func TestMeetingTable(t *testing.T) {
+	m := frame([3]float64{1, 1, 1})
+	for _, speed := range []float64{12433, 2433, 12433, 2433} {
+		m.Survey.Modes[0].Meetings = append(m.Survey.Modes[0].Meetings, modal.Meeting{Order: 1, Speed: speed * rpm, Service: true})
+	}
+	if got := meetingTable(m).Rows[0][2]; got != "12433, 2433" {
+		t.Errorf("order 1 meets at %s", got)
+	}
+}
