@@ -293,3 +293,12 @@ func TestBadInput(t *testing.T) {
 		}
 	}
 }
+
+// A doubtful pair names its axis once: where it is.
+func TestDoubtfulPair(t *testing.T) {
+	c := &kinds.Comparison{Pairs: []kinds.ComparisonPair{{Axis: "pitch", Predicted: 210, Observed: 201.9, Confidence: 0.31}}}
+	w := warnings(c, observed())
+	if len(w) != 1 || w[0].Where != "pitch" || w[0].Text != "the pair of 210.0 Hz predicted and 201.9 Hz observed has a confidence of only 0.31" {
+		t.Errorf("%+v", w)
+	}
+}

@@ -101,7 +101,7 @@ func warnings(c *kinds.Comparison, observed *kinds.Spectra) []stage.Warning {
 		if p.Confidence < doubtful {
 			out = append(out, stage.Warning{
 				ID: "compare.doubtful-pair", Where: p.Axis,
-				Text: fmt.Sprintf("the pair of %.1f Hz predicted and %.1f Hz observed on %s has a confidence of only %.2f", p.Predicted, p.Observed, p.Axis, p.Confidence),
+				Text: fmt.Sprintf("the pair of %.1f Hz predicted and %.1f Hz observed has a confidence of only %.2f", p.Predicted, p.Observed, p.Confidence),
 			})
 		}
 	}
