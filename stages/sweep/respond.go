@@ -65,8 +65,12 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 		x.Correction, x.CorrectionAt = change(grid, sp.Density[axis], r.Uncorrected[axis])
 		r.Axes = append(r.Axes, x)
 	}
+	report.Progress("whirl", 0.7)
+	if err := fleet.whirl(ctx, r, basis, residual, set, threads); err != nil {
+		return nil, err
+	}
 	report.Progress("peaks", 0.8)
-	if err := findPeaks(r, basis, sys, plain, sp, set); err != nil {
+	if err := findPeaks(r, basis, fleet, sys, plain, sp, set); err != nil {
 		return nil, err
 	}
 	for i, eta := range sys.Damping() {
@@ -76,10 +80,6 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	}
 	fleet.describe(r, p)
 	if r.Lines, err = lines(ctx, sys, fleet, set, r.Thrust); err != nil {
-		return nil, err
-	}
-	report.Progress("whirl", 0.85)
-	if err := fleet.whirl(ctx, r, basis, residual, set, threads); err != nil {
 		return nil, err
 	}
 	report.Progress("shapes", 0.9)
@@ -121,7 +121,7 @@ func change(frequency, with, without []float64) (db, at float64) {
 	return db, at
 }
 
-func findPeaks(r *kinds.Response, basis *modal.Basis, sys, plain *forced.System, sp *forced.Spectrum, set settings) error {
+func findPeaks(r *kinds.Response, basis *modal.Basis, fleet *fleet, sys, plain *forced.System, sp *forced.Spectrum, set settings) error {
 	peaks, err := sys.Peaks(sp, set.source, set.prominence)
 	if err != nil {
 		return err
@@ -135,19 +135,12 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, sys, plain *forced.System,
 		}
 	}
 	damping := sys.Damping()
+	poles, modes := fleet.poles(set)
 	for _, p := range peaks {
 		x := kinds.ResponsePeak{Axis: kinds.AxisNames[p.Axis], Frequency: p.Frequency, Density: p.Density, Prominence: p.Prominence,
 			Damping: math.NaN(), Uncorrected: math.NaN(), ComponentShare: p.InputShare}
 		in := sys.Inputs()[p.Input]
 		x.Rotor, x.Component = in.Rotor, in.Component
-		for _, i := range p.Makers(leastShare) {
-			if number[i] > 0 {
-				if len(x.Modes) == 0 {
-					x.Damping = damping[i] / 2
-				}
-				x.Modes, x.Shares = append(x.Modes, number[i]), append(x.Shares, p.Shares[i])
-			}
-		}
 		for i, v := range sys.Vectors() {
 			switch basis.Kinds[v] {
 			case modal.RigidBody:
@@ -155,6 +148,18 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, sys, plain *forced.System,
 			case modal.Residual:
 				x.Residual += p.Shares[i]
 			}
+		}
+		if poles == nil {
+			for _, i := range p.Makers(leastShare) {
+				if number[i] > 0 {
+					if len(x.Modes) == 0 {
+						x.Damping = damping[i] / 2
+					}
+					x.Modes, x.Shares = append(x.Modes, number[i]), append(x.Shares, p.Shares[i])
+				}
+			}
+		} else if err := whirling(&x, &p, sys, set, poles, modes); err != nil {
+			return err
 		}
 		if plain != nil {
 			tr, err := plain.Transfer(context.Background(), []float64{p.Frequency}, 1)
@@ -169,6 +174,26 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, sys, plain *forced.System,
 		}
 		x.Losses, x.LossShares = losses(basis, sys, p.Frequency, q)
 		r.Peaks = append(r.Peaks, x)
+	}
+	return nil
+}
+
+// whirling names the natural motions of the spinning frame that make a peak.
+func whirling(x *kinds.ResponsePeak, p *forced.Peak, sys *forced.System, set settings, poles []forced.Pole, modes []int) error {
+	shares, err := sys.Attribute(p, set.source, poles)
+	if err != nil {
+		return err
+	}
+	x.Residual = 1 - x.Rigid
+	for _, share := range shares {
+		x.Residual -= share
+	}
+	by := forced.Peak{Shares: shares}
+	for _, k := range by.Makers(leastShare) {
+		if len(x.Modes) == 0 {
+			x.Damping = poles[k].Damping
+		}
+		x.Modes, x.Shares = append(x.Modes, modes[k]), append(x.Shares, shares[k])
 	}
 	return nil
 }

@@ -38,6 +38,7 @@ type fleet struct {
 	rotors    []airframe.Rotor
 	speeds    []float64 // rad/s
 	couplings []forced.Gyroscopic
+	diagram   *rotor.Diagram // nil when nothing whirls
 }
 
 // newFleet takes the rotors that have a site; properties and basis may come
@@ -86,6 +87,22 @@ func (f *fleet) describe(r *kinds.Response, p *airframe.Properties) {
 	}
 }
 
+// poles gives the natural motions at the speeds of this response, and the
+// number of the mode that each is at rest; none without a diagram.
+func (f *fleet) poles(set settings) (poles []forced.Pole, modes []int) {
+	if f.diagram == nil || !set.spinning {
+		return nil, nil
+	}
+	k := at(f.diagram.Speeds, f.speeds[0])
+	for i := range f.diagram.Lines {
+		l := &f.diagram.Lines[i]
+		if p, ok := l.Pole(k); ok {
+			poles, modes = append(poles, p), append(modes, l.Mode+1)
+		}
+	}
+	return poles, modes
+}
+
 // whirlSteps is the number of even steps from rest to the highest speed.
 const whirlSteps = 40
 
@@ -112,20 +129,26 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 		return err
 	}
 	var elastic []int
+	upTo := 0.0
 	for i, v := range sys.Vectors() {
 		if basis.Kinds[v] == modal.Elastic {
 			elastic = append(elastic, i)
+			upTo = max(upTo, 1.1*basis.Frequency[v])
 		}
 	}
-	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), set.to, threads)
+	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
 	if err != nil {
 		return err
 	}
+	f.diagram = d
 	r.Speeds = d.Speeds
 	for _, l := range d.Lines {
 		r.Whirl = append(r.Whirl, kinds.ResponseWhirl{Mode: l.Mode + 1, Frequency: l.Frequency, Damping: l.Damping, Direction: l.Whirl})
 	}
 	for _, c := range d.Critical {
+		if c.Frequency > set.to {
+			continue
+		}
 		x := kinds.ResponseCritical{Order: c.Order, Speed: c.Speed, Frequency: c.Frequency, Damping: c.Damping, Direction: c.Whirl, Mode: d.Lines[c.Line].Mode + 1}
 		for _, k := range c.Rotors {
 			x.Rotors = append(x.Rotors, f.rotors[k].Name)

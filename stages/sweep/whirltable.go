@@ -60,6 +60,9 @@ func whirlTable(r *kinds.Response) stage.Section {
 	}
 	still := 0
 	for _, w := range r.Whirl {
+		if w.Frequency[0] > r.To {
+			continue
+		}
 		if shift(w) < leastShift {
 			still++
 			continue

@@ -10,7 +10,8 @@ import (
 // transformation, 1961; Wilkinson's shift from the last two rows). ok is false
 // when one has not settled after 60 steps.
 func eigenvalues(a []complex128, n int) (values []complex128, ok bool) {
-	h := reduce(a, n).h
+	h := a
+	bring(h, n)
 	values = make([]complex128, n)
 	cos, sin := make([]float64, n), make([]complex128, n)
 	steps := 0
@@ -48,20 +49,20 @@ func eigenvalues(a []complex128, n int) (values []complex128, ok bool) {
 			}
 			cos[k] = cmplx.Abs(x) / r
 			sin[k] = phase * cmplx.Conj(y) / complex(r, 0)
-			c, s := complex(cos[k], 0), sin[k]
+			c, s, back := cos[k], sin[k], -cmplx.Conj(sin[k])
 			top, low := h[k*n:k*n+n], h[(k+1)*n:(k+1)*n+n]
 			for j := k; j <= hi; j++ {
 				u, v := top[j], low[j]
-				top[j] = c*u + s*v
-				low[j] = c*v - cmplx.Conj(s)*u
+				top[j] = complex(c*real(u), c*imag(u)) + s*v
+				low[j] = complex(c*real(v), c*imag(v)) + back*u
 			}
 		}
 		for k := lo; k < hi; k++ { // H = R Gᴴ
-			c, s := complex(cos[k], 0), sin[k]
+			c, s, back := cos[k], -sin[k], cmplx.Conj(sin[k])
 			for i := lo; i <= k+1; i++ {
 				u, v := h[i*n+k], h[i*n+k+1]
-				h[i*n+k] = c*u + cmplx.Conj(s)*v
-				h[i*n+k+1] = c*v - s*u
+				h[i*n+k] = complex(c*real(u), c*imag(u)) + back*v
+				h[i*n+k+1] = complex(c*real(v), c*imag(v)) + s*u
 			}
 		}
 		for i := lo; i <= hi; i++ {

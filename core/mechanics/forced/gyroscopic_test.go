@@ -233,6 +233,59 @@ func TestCoreKeepsThePoles(t *testing.T) {
 	}
 }
 
+// At rest poles are modes, so their shares are those of the vectors; with
+// spinning rotors they still add up where all poles are given.
+func TestPolesShareAPeak(t *testing.T) {
+	b := frame(10, 0, 4)
+	for g := range b.Groups {
+		b.Groups[g].LossFactor *= 0.05
+	}
+	for _, momenta := range [][]float64{{0, 0}, {0.3, -0.4}} {
+		s := build(t, b, Options{Gyroscopic: spinners(b, momenta...)})
+		core, err := s.Core()
+		if err != nil {
+			t.Fatal(err)
+		}
+		poles, err := core.Poles(momenta, 1, math.Inf(1))
+		if err != nil {
+			t.Fatal(err)
+		}
+		grid := Grid(60, 900, 2, s.Resonances())
+		tr, err := s.Transfer(t.Context(), grid, 2)
+		if err != nil {
+			t.Fatal(err)
+		}
+		source := Broadband{Force: 1e-6, Moment: 1e-9}
+		peaks, err := s.Peaks(tr.Broadband(source), source, 1.26)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, p := range peaks {
+			shares, err := s.Attribute(&p, source, poles)
+			if err != nil {
+				t.Fatal(err)
+			}
+			sum := 0.0
+			for k, x := range shares {
+				sum += x
+				if momenta[0] == 0 && math.Abs(x-p.Shares[6+k]) > 0.02 {
+					t.Errorf("%g Hz at rest: pole %d adds %g, its vector %g", p.Frequency, k, x, p.Shares[6+k])
+				}
+			}
+			if momenta[0] == 0 {
+				for v := range 6 {
+					sum += p.Shares[v]
+				}
+				if math.Abs(sum-1) > 0.02 {
+					t.Errorf("%g Hz at rest: shares add up to %g", p.Frequency, sum)
+				}
+			} else if math.Abs(sum-1) > 0.15 { // rigid motion is missing
+				t.Errorf("%g Hz: shares %v add up to %g", p.Frequency, shares, sum)
+			}
+		}
+	}
+}
+
 func TestEigenvalues(t *testing.T) {
 	// The companion matrix of (z − 1)(z − 2i)(z + 3)(z − 4 − i) and a random matrix whose trace and
 	// determinant its eigenvalues must give.

@@ -21,7 +21,14 @@ func reduce(a []complex128, n int) *hessenberg {
 	for i := range n {
 		q[i*n+i] = 1
 	}
-	v := make([]complex128, n)
+	bring(a, n, q)
+	return &hessenberg{n, a, q}
+}
+
+// bring overwrites a with its Hessenberg form and multiplies each of the
+// matrices beside from the right by the Q of it.
+func bring(a []complex128, n int, beside ...[]complex128) {
+	v, dots := make([]complex128, n), make([]complex128, n)
 	for k := 0; k+2 < n; k++ {
 		norm := 0.0
 		for i := k + 1; i < n; i++ {
@@ -49,17 +56,22 @@ func reduce(a []complex128, n int) *hessenberg {
 			length += sq(real(v[i])) + sq(imag(v[i]))
 		}
 		beta := complex(2/length, 0)
-		for j := k; j < n; j++ { // A ← P A
-			var dot complex128
-			for i := k + 1; i < n; i++ {
-				dot += cmplx.Conj(v[i]) * a[i*n+j]
-			}
-			dot *= beta
-			for i := k + 1; i < n; i++ {
-				a[i*n+j] -= v[i] * dot
+		clear(dots[k:])
+		for i := k + 1; i < n; i++ { // A ← P A, by rows
+			c := cmplx.Conj(v[i])
+			row := a[i*n : i*n+n]
+			for j := k; j < n; j++ {
+				dots[j] += c * row[j]
 			}
 		}
-		for _, m := range [][]complex128{a, q} { // A ← A P, Q ← Q P
+		for i := k + 1; i < n; i++ {
+			f := beta * v[i]
+			row := a[i*n : i*n+n]
+			for j := k; j < n; j++ {
+				row[j] -= f * dots[j]
+			}
+		}
+		for _, m := range append([][]complex128{a}, beside...) { // A ← A P, Q ← Q P
 			for i := range n {
 				row := m[i*n : i*n+n]
 				var dot complex128
@@ -76,7 +88,6 @@ func reduce(a []complex128, n int) *hessenberg {
 			a[i*n+k] = 0
 		}
 	}
-	return &hessenberg{n, a, q}
 }
 
 // turn gives Qᴴ x.

@@ -263,7 +263,7 @@ func (c *Core) shape(omega complex128, spin []float64, others [][]complex128) []
 	// Off the pole by little, so that the matrix has an inverse.
 	omega *= 1 + 1e-10
 	a := make([]complex128, m*m)
-	for range 3 {
+	for range 2 {
 		for i := range m {
 			for j := range m {
 				a[i*m+j] = complex(0, c.loss[i*m+j]) + 1i*omega*complex(spin[i*m+j], 0)

@@ -88,6 +88,12 @@ type Line struct {
 	shapes    [][]complex128
 }
 
+// Pole is the motion of the line at speed k; ok is false where it could not be
+// followed.
+func (l *Line) Pole(k int) (pole forced.Pole, ok bool) {
+	return forced.Pole{Frequency: l.Frequency[k], Damping: l.Damping[k], Shape: l.shapes[k]}, l.shapes[k] != nil
+}
+
 // Critical is a speed at which an order of some rotors has the frequency of a
 // natural motion, with the gyroscopic effect at that very speed.
 type Critical struct {
