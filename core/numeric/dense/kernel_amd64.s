@@ -729,13 +729,15 @@ TEXT ·stripAVX512(SB), NOSPLIT, $0-80
 	SHLQ  $0x03, SI
 	SHLQ  $0x03, R8
 	MOVQ  cols+8(FP), R9
+	CMPQ  R9, $0x08
+	JE    full
 	MOVQ  $-1, R10
 	BZHIQ R9, R10, R10
 	KMOVW R10, K1
 
-next:
+partnext:
 	CMPQ      AX, $0x0c
-	JL        rest
+	JL        partrest
 	MOVQ      DI, R9
 	LEAQ      (R9)(R8*2), R10
 	ADDQ      R8, R10
@@ -765,7 +767,7 @@ next:
 	MOVQ      b+48(FP), R13
 	MOVQ      depth+16(FP), R14
 
-loop12:
+partloop12:
 	VMOVUPD.Z         (R13), K1, Z12
 	VFNMADD231PD.BCST (R9), Z12, Z0
 	VFNMADD231PD.BCST (R9)(DX*1), Z12, Z1
@@ -785,7 +787,7 @@ loop12:
 	ADDQ              BX, R12
 	ADDQ              SI, R13
 	DECQ              R14
-	JNZ               loop12
+	JNZ               partloop12
 	MOVQ              DI, R9
 	LEAQ              (R9)(R8*2), R10
 	ADDQ              R8, R10
@@ -810,11 +812,11 @@ loop12:
 	LEAQ              (CX)(R9*4), CX
 	LEAQ              (R8)(R8*2), R9
 	LEAQ              (DI)(R9*4), DI
-	JMP               next
+	JMP               partnext
 
-rest:
+partrest:
 	CMPQ      AX, $0x0b
-	JNE       skip11
+	JNE       partskip11
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -843,7 +845,7 @@ rest:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R12
 
-tailloop11:
+parttailloop11:
 	VMOVUPD.Z         (CX), K1, Z11
 	VFNMADD231PD.BCST (AX), Z11, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z11, Z1
@@ -862,7 +864,7 @@ tailloop11:
 	ADDQ              BX, R11
 	ADDQ              SI, CX
 	DECQ              R12
-	JNZ               tailloop11
+	JNZ               parttailloop11
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -881,11 +883,11 @@ tailloop11:
 	VMOVUPD           Z8, K1, (R10)(R8*2)
 	VMOVUPD           Z9, K1, (R11)
 	VMOVUPD           Z10, K1, (R11)(R8*1)
-	JMP               done
+	JMP               partdone
 
-skip11:
+partskip11:
 	CMPQ      AX, $0x0a
-	JNE       skip10
+	JNE       partskip10
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -913,7 +915,7 @@ skip11:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R12
 
-tailloop10:
+parttailloop10:
 	VMOVUPD.Z         (CX), K1, Z10
 	VFNMADD231PD.BCST (AX), Z10, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z10, Z1
@@ -931,7 +933,7 @@ tailloop10:
 	ADDQ              BX, R11
 	ADDQ              SI, CX
 	DECQ              R12
-	JNZ               tailloop10
+	JNZ               parttailloop10
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -949,11 +951,11 @@ tailloop10:
 	VMOVUPD           Z7, K1, (R10)(R8*1)
 	VMOVUPD           Z8, K1, (R10)(R8*2)
 	VMOVUPD           Z9, K1, (R11)
-	JMP               done
+	JMP               partdone
 
-skip10:
+partskip10:
 	CMPQ      AX, $0x09
-	JNE       skip9
+	JNE       partskip9
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -976,7 +978,7 @@ skip10:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R11
 
-tailloop9:
+parttailloop9:
 	VMOVUPD.Z         (CX), K1, Z9
 	VFNMADD231PD.BCST (AX), Z9, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z9, Z1
@@ -992,7 +994,7 @@ tailloop9:
 	ADDQ              BX, R10
 	ADDQ              SI, CX
 	DECQ              R11
-	JNZ               tailloop9
+	JNZ               parttailloop9
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1007,11 +1009,11 @@ tailloop9:
 	VMOVUPD           Z6, K1, (R10)
 	VMOVUPD           Z7, K1, (R10)(R8*1)
 	VMOVUPD           Z8, K1, (R10)(R8*2)
-	JMP               done
+	JMP               partdone
 
-skip9:
+partskip9:
 	CMPQ      AX, $0x08
-	JNE       skip8
+	JNE       partskip8
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -1033,7 +1035,7 @@ skip9:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R11
 
-tailloop8:
+parttailloop8:
 	VMOVUPD.Z         (CX), K1, Z8
 	VFNMADD231PD.BCST (AX), Z8, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z8, Z1
@@ -1048,7 +1050,7 @@ tailloop8:
 	ADDQ              BX, R10
 	ADDQ              SI, CX
 	DECQ              R11
-	JNZ               tailloop8
+	JNZ               parttailloop8
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1062,11 +1064,11 @@ tailloop8:
 	VMOVUPD           Z5, K1, (R9)(R8*2)
 	VMOVUPD           Z6, K1, (R10)
 	VMOVUPD           Z7, K1, (R10)(R8*1)
-	JMP               done
+	JMP               partdone
 
-skip8:
+partskip8:
 	CMPQ      AX, $0x07
-	JNE       skip7
+	JNE       partskip7
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -1087,7 +1089,7 @@ skip8:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R11
 
-tailloop7:
+parttailloop7:
 	VMOVUPD.Z         (CX), K1, Z7
 	VFNMADD231PD.BCST (AX), Z7, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z7, Z1
@@ -1101,7 +1103,7 @@ tailloop7:
 	ADDQ              BX, R10
 	ADDQ              SI, CX
 	DECQ              R11
-	JNZ               tailloop7
+	JNZ               parttailloop7
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1114,11 +1116,11 @@ tailloop7:
 	VMOVUPD           Z4, K1, (R9)(R8*1)
 	VMOVUPD           Z5, K1, (R9)(R8*2)
 	VMOVUPD           Z6, K1, (R10)
-	JMP               done
+	JMP               partdone
 
-skip7:
+partskip7:
 	CMPQ      AX, $0x06
-	JNE       skip6
+	JNE       partskip6
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -1134,7 +1136,7 @@ skip7:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R10
 
-tailloop6:
+parttailloop6:
 	VMOVUPD.Z         (CX), K1, Z6
 	VFNMADD231PD.BCST (AX), Z6, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z6, Z1
@@ -1146,7 +1148,7 @@ tailloop6:
 	ADDQ              BX, R9
 	ADDQ              SI, CX
 	DECQ              R10
-	JNZ               tailloop6
+	JNZ               parttailloop6
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1156,11 +1158,11 @@ tailloop6:
 	VMOVUPD           Z3, K1, (R9)
 	VMOVUPD           Z4, K1, (R9)(R8*1)
 	VMOVUPD           Z5, K1, (R9)(R8*2)
-	JMP               done
+	JMP               partdone
 
-skip6:
+partskip6:
 	CMPQ      AX, $0x05
-	JNE       skip5
+	JNE       partskip5
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -1175,7 +1177,7 @@ skip6:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R10
 
-tailloop5:
+parttailloop5:
 	VMOVUPD.Z         (CX), K1, Z5
 	VFNMADD231PD.BCST (AX), Z5, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z5, Z1
@@ -1186,7 +1188,7 @@ tailloop5:
 	ADDQ              BX, R9
 	ADDQ              SI, CX
 	DECQ              R10
-	JNZ               tailloop5
+	JNZ               parttailloop5
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1195,11 +1197,11 @@ tailloop5:
 	VMOVUPD           Z2, K1, (AX)(R8*2)
 	VMOVUPD           Z3, K1, (R9)
 	VMOVUPD           Z4, K1, (R9)(R8*1)
-	JMP               done
+	JMP               partdone
 
-skip5:
+partskip5:
 	CMPQ      AX, $0x04
-	JNE       skip4
+	JNE       partskip4
 	MOVQ      DI, AX
 	LEAQ      (AX)(R8*2), R9
 	ADDQ      R8, R9
@@ -1213,7 +1215,7 @@ skip5:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R10
 
-tailloop4:
+parttailloop4:
 	VMOVUPD.Z         (CX), K1, Z4
 	VFNMADD231PD.BCST (AX), Z4, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z4, Z1
@@ -1223,7 +1225,7 @@ tailloop4:
 	ADDQ              BX, R9
 	ADDQ              SI, CX
 	DECQ              R10
-	JNZ               tailloop4
+	JNZ               parttailloop4
 	MOVQ              DI, AX
 	LEAQ              (AX)(R8*2), R9
 	ADDQ              R8, R9
@@ -1231,11 +1233,11 @@ tailloop4:
 	VMOVUPD           Z1, K1, (AX)(R8*1)
 	VMOVUPD           Z2, K1, (AX)(R8*2)
 	VMOVUPD           Z3, K1, (R9)
-	JMP               done
+	JMP               partdone
 
-skip4:
+partskip4:
 	CMPQ      AX, $0x03
-	JNE       skip3
+	JNE       partskip3
 	MOVQ      DI, AX
 	VMOVUPD.Z (AX), K1, Z0
 	VMOVUPD.Z (AX)(R8*1), K1, Z1
@@ -1244,7 +1246,7 @@ skip4:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R9
 
-tailloop3:
+parttailloop3:
 	VMOVUPD.Z         (CX), K1, Z3
 	VFNMADD231PD.BCST (AX), Z3, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z3, Z1
@@ -1252,16 +1254,16 @@ tailloop3:
 	ADDQ              BX, AX
 	ADDQ              SI, CX
 	DECQ              R9
-	JNZ               tailloop3
+	JNZ               parttailloop3
 	MOVQ              DI, AX
 	VMOVUPD           Z0, K1, (AX)
 	VMOVUPD           Z1, K1, (AX)(R8*1)
 	VMOVUPD           Z2, K1, (AX)(R8*2)
-	JMP               done
+	JMP               partdone
 
-skip3:
+partskip3:
 	CMPQ      AX, $0x02
-	JNE       skip2
+	JNE       partskip2
 	MOVQ      DI, AX
 	VMOVUPD.Z (AX), K1, Z0
 	VMOVUPD.Z (AX)(R8*1), K1, Z1
@@ -1269,40 +1271,615 @@ skip3:
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), R9
 
-tailloop2:
+parttailloop2:
 	VMOVUPD.Z         (CX), K1, Z2
 	VFNMADD231PD.BCST (AX), Z2, Z0
 	VFNMADD231PD.BCST (AX)(DX*1), Z2, Z1
 	ADDQ              BX, AX
 	ADDQ              SI, CX
 	DECQ              R9
-	JNZ               tailloop2
+	JNZ               parttailloop2
 	MOVQ              DI, AX
 	VMOVUPD           Z0, K1, (AX)
 	VMOVUPD           Z1, K1, (AX)(R8*1)
-	JMP               done
+	JMP               partdone
 
-skip2:
+partskip2:
 	CMPQ      AX, $0x01
-	JNE       skip1
+	JNE       partskip1
 	MOVQ      DI, AX
 	VMOVUPD.Z (AX), K1, Z0
 	MOVQ      CX, AX
 	MOVQ      b+48(FP), CX
 	MOVQ      depth+16(FP), DX
 
-tailloop1:
+parttailloop1:
 	VMOVUPD.Z         (CX), K1, Z1
 	VFNMADD231PD.BCST (AX), Z1, Z0
 	ADDQ              BX, AX
 	ADDQ              SI, CX
 	DECQ              DX
-	JNZ               tailloop1
+	JNZ               parttailloop1
 	MOVQ              DI, AX
 	VMOVUPD           Z0, K1, (AX)
-	JMP               done
+	JMP               partdone
 
-skip1:
-done:
+partskip1:
+partdone:
+	VZEROUPPER
+	RET
+
+full:
+fullnext:
+	CMPQ    AX, $0x0c
+	JL      fullrest
+	MOVQ    DI, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	LEAQ    (R10)(R8*2), R11
+	ADDQ    R8, R11
+	LEAQ    (R11)(R8*2), R12
+	ADDQ    R8, R12
+	VMOVUPD (R9), Z0
+	VMOVUPD (R9)(R8*1), Z1
+	VMOVUPD (R9)(R8*2), Z2
+	VMOVUPD (R10), Z3
+	VMOVUPD (R10)(R8*1), Z4
+	VMOVUPD (R10)(R8*2), Z5
+	VMOVUPD (R11), Z6
+	VMOVUPD (R11)(R8*1), Z7
+	VMOVUPD (R11)(R8*2), Z8
+	VMOVUPD (R12), Z9
+	VMOVUPD (R12)(R8*1), Z10
+	VMOVUPD (R12)(R8*2), Z11
+	MOVQ    CX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	LEAQ    (R10)(DX*2), R11
+	ADDQ    DX, R11
+	LEAQ    (R11)(DX*2), R12
+	ADDQ    DX, R12
+	MOVQ    b+48(FP), R13
+	MOVQ    depth+16(FP), R14
+
+fullloop12:
+	VMOVUPD           (R13), Z12
+	VFNMADD231PD.BCST (R9), Z12, Z0
+	VFNMADD231PD.BCST (R9)(DX*1), Z12, Z1
+	VFNMADD231PD.BCST (R9)(DX*2), Z12, Z2
+	VFNMADD231PD.BCST (R10), Z12, Z3
+	VFNMADD231PD.BCST (R10)(DX*1), Z12, Z4
+	VFNMADD231PD.BCST (R10)(DX*2), Z12, Z5
+	VFNMADD231PD.BCST (R11), Z12, Z6
+	VFNMADD231PD.BCST (R11)(DX*1), Z12, Z7
+	VFNMADD231PD.BCST (R11)(DX*2), Z12, Z8
+	VFNMADD231PD.BCST (R12), Z12, Z9
+	VFNMADD231PD.BCST (R12)(DX*1), Z12, Z10
+	VFNMADD231PD.BCST (R12)(DX*2), Z12, Z11
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              BX, R11
+	ADDQ              BX, R12
+	ADDQ              SI, R13
+	DECQ              R14
+	JNZ               fullloop12
+	MOVQ              DI, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	LEAQ              (R10)(R8*2), R11
+	ADDQ              R8, R11
+	LEAQ              (R11)(R8*2), R12
+	ADDQ              R8, R12
+	VMOVUPD           Z0, (R9)
+	VMOVUPD           Z1, (R9)(R8*1)
+	VMOVUPD           Z2, (R9)(R8*2)
+	VMOVUPD           Z3, (R10)
+	VMOVUPD           Z4, (R10)(R8*1)
+	VMOVUPD           Z5, (R10)(R8*2)
+	VMOVUPD           Z6, (R11)
+	VMOVUPD           Z7, (R11)(R8*1)
+	VMOVUPD           Z8, (R11)(R8*2)
+	VMOVUPD           Z9, (R12)
+	VMOVUPD           Z10, (R12)(R8*1)
+	VMOVUPD           Z11, (R12)(R8*2)
+	SUBQ              $0x0c, AX
+	LEAQ              (DX)(DX*2), R9
+	LEAQ              (CX)(R9*4), CX
+	LEAQ              (R8)(R8*2), R9
+	LEAQ              (DI)(R9*4), DI
+	JMP               fullnext
+
+fullrest:
+	CMPQ    AX, $0x0b
+	JNE     fullskip11
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	LEAQ    (R10)(R8*2), R11
+	ADDQ    R8, R11
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	VMOVUPD (R10), Z6
+	VMOVUPD (R10)(R8*1), Z7
+	VMOVUPD (R10)(R8*2), Z8
+	VMOVUPD (R11), Z9
+	VMOVUPD (R11)(R8*1), Z10
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	LEAQ    (R10)(DX*2), R11
+	ADDQ    DX, R11
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R12
+
+fulltailloop11:
+	VMOVUPD           (CX), Z11
+	VFNMADD231PD.BCST (AX), Z11, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z11, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z11, Z2
+	VFNMADD231PD.BCST (R9), Z11, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z11, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z11, Z5
+	VFNMADD231PD.BCST (R10), Z11, Z6
+	VFNMADD231PD.BCST (R10)(DX*1), Z11, Z7
+	VFNMADD231PD.BCST (R10)(DX*2), Z11, Z8
+	VFNMADD231PD.BCST (R11), Z11, Z9
+	VFNMADD231PD.BCST (R11)(DX*1), Z11, Z10
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              BX, R11
+	ADDQ              SI, CX
+	DECQ              R12
+	JNZ               fulltailloop11
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	LEAQ              (R10)(R8*2), R11
+	ADDQ              R8, R11
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	VMOVUPD           Z6, (R10)
+	VMOVUPD           Z7, (R10)(R8*1)
+	VMOVUPD           Z8, (R10)(R8*2)
+	VMOVUPD           Z9, (R11)
+	VMOVUPD           Z10, (R11)(R8*1)
+	JMP               fulldone
+
+fullskip11:
+	CMPQ    AX, $0x0a
+	JNE     fullskip10
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	LEAQ    (R10)(R8*2), R11
+	ADDQ    R8, R11
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	VMOVUPD (R10), Z6
+	VMOVUPD (R10)(R8*1), Z7
+	VMOVUPD (R10)(R8*2), Z8
+	VMOVUPD (R11), Z9
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	LEAQ    (R10)(DX*2), R11
+	ADDQ    DX, R11
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R12
+
+fulltailloop10:
+	VMOVUPD           (CX), Z10
+	VFNMADD231PD.BCST (AX), Z10, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z10, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z10, Z2
+	VFNMADD231PD.BCST (R9), Z10, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z10, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z10, Z5
+	VFNMADD231PD.BCST (R10), Z10, Z6
+	VFNMADD231PD.BCST (R10)(DX*1), Z10, Z7
+	VFNMADD231PD.BCST (R10)(DX*2), Z10, Z8
+	VFNMADD231PD.BCST (R11), Z10, Z9
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              BX, R11
+	ADDQ              SI, CX
+	DECQ              R12
+	JNZ               fulltailloop10
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	LEAQ              (R10)(R8*2), R11
+	ADDQ              R8, R11
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	VMOVUPD           Z6, (R10)
+	VMOVUPD           Z7, (R10)(R8*1)
+	VMOVUPD           Z8, (R10)(R8*2)
+	VMOVUPD           Z9, (R11)
+	JMP               fulldone
+
+fullskip10:
+	CMPQ    AX, $0x09
+	JNE     fullskip9
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	VMOVUPD (R10), Z6
+	VMOVUPD (R10)(R8*1), Z7
+	VMOVUPD (R10)(R8*2), Z8
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R11
+
+fulltailloop9:
+	VMOVUPD           (CX), Z9
+	VFNMADD231PD.BCST (AX), Z9, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z9, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z9, Z2
+	VFNMADD231PD.BCST (R9), Z9, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z9, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z9, Z5
+	VFNMADD231PD.BCST (R10), Z9, Z6
+	VFNMADD231PD.BCST (R10)(DX*1), Z9, Z7
+	VFNMADD231PD.BCST (R10)(DX*2), Z9, Z8
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              SI, CX
+	DECQ              R11
+	JNZ               fulltailloop9
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	VMOVUPD           Z6, (R10)
+	VMOVUPD           Z7, (R10)(R8*1)
+	VMOVUPD           Z8, (R10)(R8*2)
+	JMP               fulldone
+
+fullskip9:
+	CMPQ    AX, $0x08
+	JNE     fullskip8
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	VMOVUPD (R10), Z6
+	VMOVUPD (R10)(R8*1), Z7
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R11
+
+fulltailloop8:
+	VMOVUPD           (CX), Z8
+	VFNMADD231PD.BCST (AX), Z8, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z8, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z8, Z2
+	VFNMADD231PD.BCST (R9), Z8, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z8, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z8, Z5
+	VFNMADD231PD.BCST (R10), Z8, Z6
+	VFNMADD231PD.BCST (R10)(DX*1), Z8, Z7
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              SI, CX
+	DECQ              R11
+	JNZ               fulltailloop8
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	VMOVUPD           Z6, (R10)
+	VMOVUPD           Z7, (R10)(R8*1)
+	JMP               fulldone
+
+fullskip8:
+	CMPQ    AX, $0x07
+	JNE     fullskip7
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	LEAQ    (R9)(R8*2), R10
+	ADDQ    R8, R10
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	VMOVUPD (R10), Z6
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	LEAQ    (R9)(DX*2), R10
+	ADDQ    DX, R10
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R11
+
+fulltailloop7:
+	VMOVUPD           (CX), Z7
+	VFNMADD231PD.BCST (AX), Z7, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z7, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z7, Z2
+	VFNMADD231PD.BCST (R9), Z7, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z7, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z7, Z5
+	VFNMADD231PD.BCST (R10), Z7, Z6
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              BX, R10
+	ADDQ              SI, CX
+	DECQ              R11
+	JNZ               fulltailloop7
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	LEAQ              (R9)(R8*2), R10
+	ADDQ              R8, R10
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	VMOVUPD           Z6, (R10)
+	JMP               fulldone
+
+fullskip7:
+	CMPQ    AX, $0x06
+	JNE     fullskip6
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	VMOVUPD (R9)(R8*2), Z5
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R10
+
+fulltailloop6:
+	VMOVUPD           (CX), Z6
+	VFNMADD231PD.BCST (AX), Z6, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z6, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z6, Z2
+	VFNMADD231PD.BCST (R9), Z6, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z6, Z4
+	VFNMADD231PD.BCST (R9)(DX*2), Z6, Z5
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              SI, CX
+	DECQ              R10
+	JNZ               fulltailloop6
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	VMOVUPD           Z5, (R9)(R8*2)
+	JMP               fulldone
+
+fullskip6:
+	CMPQ    AX, $0x05
+	JNE     fullskip5
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	VMOVUPD (R9)(R8*1), Z4
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R10
+
+fulltailloop5:
+	VMOVUPD           (CX), Z5
+	VFNMADD231PD.BCST (AX), Z5, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z5, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z5, Z2
+	VFNMADD231PD.BCST (R9), Z5, Z3
+	VFNMADD231PD.BCST (R9)(DX*1), Z5, Z4
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              SI, CX
+	DECQ              R10
+	JNZ               fulltailloop5
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	VMOVUPD           Z4, (R9)(R8*1)
+	JMP               fulldone
+
+fullskip5:
+	CMPQ    AX, $0x04
+	JNE     fullskip4
+	MOVQ    DI, AX
+	LEAQ    (AX)(R8*2), R9
+	ADDQ    R8, R9
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	VMOVUPD (R9), Z3
+	MOVQ    CX, AX
+	LEAQ    (AX)(DX*2), R9
+	ADDQ    DX, R9
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R10
+
+fulltailloop4:
+	VMOVUPD           (CX), Z4
+	VFNMADD231PD.BCST (AX), Z4, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z4, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z4, Z2
+	VFNMADD231PD.BCST (R9), Z4, Z3
+	ADDQ              BX, AX
+	ADDQ              BX, R9
+	ADDQ              SI, CX
+	DECQ              R10
+	JNZ               fulltailloop4
+	MOVQ              DI, AX
+	LEAQ              (AX)(R8*2), R9
+	ADDQ              R8, R9
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	VMOVUPD           Z3, (R9)
+	JMP               fulldone
+
+fullskip4:
+	CMPQ    AX, $0x03
+	JNE     fullskip3
+	MOVQ    DI, AX
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	VMOVUPD (AX)(R8*2), Z2
+	MOVQ    CX, AX
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R9
+
+fulltailloop3:
+	VMOVUPD           (CX), Z3
+	VFNMADD231PD.BCST (AX), Z3, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z3, Z1
+	VFNMADD231PD.BCST (AX)(DX*2), Z3, Z2
+	ADDQ              BX, AX
+	ADDQ              SI, CX
+	DECQ              R9
+	JNZ               fulltailloop3
+	MOVQ              DI, AX
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	VMOVUPD           Z2, (AX)(R8*2)
+	JMP               fulldone
+
+fullskip3:
+	CMPQ    AX, $0x02
+	JNE     fullskip2
+	MOVQ    DI, AX
+	VMOVUPD (AX), Z0
+	VMOVUPD (AX)(R8*1), Z1
+	MOVQ    CX, AX
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), R9
+
+fulltailloop2:
+	VMOVUPD           (CX), Z2
+	VFNMADD231PD.BCST (AX), Z2, Z0
+	VFNMADD231PD.BCST (AX)(DX*1), Z2, Z1
+	ADDQ              BX, AX
+	ADDQ              SI, CX
+	DECQ              R9
+	JNZ               fulltailloop2
+	MOVQ              DI, AX
+	VMOVUPD           Z0, (AX)
+	VMOVUPD           Z1, (AX)(R8*1)
+	JMP               fulldone
+
+fullskip2:
+	CMPQ    AX, $0x01
+	JNE     fullskip1
+	MOVQ    DI, AX
+	VMOVUPD (AX), Z0
+	MOVQ    CX, AX
+	MOVQ    b+48(FP), CX
+	MOVQ    depth+16(FP), DX
+
+fulltailloop1:
+	VMOVUPD           (CX), Z1
+	VFNMADD231PD.BCST (AX), Z1, Z0
+	ADDQ              BX, AX
+	ADDQ              SI, CX
+	DECQ              DX
+	JNZ               fulltailloop1
+	MOVQ              DI, AX
+	VMOVUPD           Z0, (AX)
+	JMP               fulldone
+
+fullskip1:
+fulldone:
 	VZEROUPPER
 	RET

@@ -50,23 +50,21 @@ func generate(x machine) {
 	}
 	cols := GP64()
 	Load(Param("cols"), cols)
-	if x.wide {
-		ones := GP64()
-		MOVQ(I32(-1), ones)
-		BZHIQ(cols, ones, ones)
-		k := K()
-		KMOVW(ones.As32(), k)
-		s.mask = k
-		x.tiles(&s, true, "")
-		return
-	}
 	CMPQ(cols, Imm(columns))
 	JE(LabelRef("full"))
-	Comment("Masks start at the number of unused columns in a run of ones and zeros.")
-	NEGQ(cols)
-	s.table = GP64()
-	LEAQ(maskTable(), s.table)
-	LEAQ(Mem{Base: s.table, Index: cols, Scale: 8, Disp: 64}, s.table)
+	if x.wide {
+		ones, k := GP64(), K()
+		MOVQ(I32(-1), ones)
+		BZHIQ(cols, ones, ones)
+		KMOVW(ones.As32(), k)
+		s.mask = k
+	} else {
+		Comment("Masks start at the number of unused columns in a run of ones and zeros.")
+		NEGQ(cols)
+		s.table = GP64()
+		LEAQ(maskTable(), s.table)
+		LEAQ(Mem{Base: s.table, Index: cols, Scale: 8, Disp: 64}, s.table)
+	}
 	x.tiles(&s, true, "part")
 	Label("full")
 	x.tiles(&s, false, "full")
@@ -177,18 +175,19 @@ func (x machine) tile(s *strides, rows int, masked bool, prefix string) {
 }
 
 func (x machine) fetch(s *strides, from Mem, v int, masked bool) reg.VecVirtual {
+	to := YMM()
 	if x.wide {
-		z := ZMM()
-		VMOVUPD_Z(from, s.mask, z)
-		return z
+		to = ZMM()
 	}
-	y := YMM()
-	if !masked {
-		VMOVUPD(from, y)
-		return y
+	switch {
+	case !masked:
+		VMOVUPD(from, to)
+	case x.wide:
+		VMOVUPD_Z(from, s.mask, to)
+	default:
+		VMASKMOVPD(from, s.loadMask(v), to)
 	}
-	VMASKMOVPD(from, s.loadMask(v), y)
-	return y
+	return to
 }
 
 func (s *strides) loadMask(v int) reg.VecVirtual {
@@ -199,11 +198,11 @@ func (s *strides) loadMask(v int) reg.VecVirtual {
 
 func (x machine) store(s *strides, z reg.VecVirtual, to Mem, v int, masked bool) {
 	switch {
+	case !masked:
+		VMOVUPD(z, to) // one with a mask would hold up a load that follows
 	case x.wide:
 		VMOVUPD(z, s.mask, to)
-	case masked:
-		VMASKMOVPD(z, s.loadMask(v), to)
 	default:
-		VMOVUPD(z, to)
+		VMASKMOVPD(z, s.loadMask(v), to)
 	}
 }
