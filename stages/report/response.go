@@ -38,6 +38,10 @@ func responseSection(c *content) *section {
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))
+		if len(r.Whirl) > 0 {
+			s.table(spinTable(r))
+			s.table(whirlTable(r))
+		}
 		shapeGallery(s, c)
 	}
 	return s
@@ -92,7 +96,7 @@ func levelTable(r *kinds.Response) *table {
 }
 
 func lineTable(r *kinds.Response) *table {
-	t := &table{Name: "rotor-lines", Title: "Rotor lines at hover speed",
+	t := &table{Name: "rotor-lines", Title: "Rotor lines at " + spinName(r),
 		About: "Peak amplitude of the gyro rate. Unbalance is what each rotor's balance grade permits; the thrust at blade passing is assumed to vary by " + plain(100*r.BladeShare, 2).Text + " %.",
 		Columns: []column{{"source", "", false}, {"rotor", "", false}, {"frequency", "Hz", true}, {"force", "N", true},
 			{"roll", "deg/s", true}, {"pitch", "deg/s", true}, {"yaw", "deg/s", true}}}
