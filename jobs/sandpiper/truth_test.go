@@ -21,11 +21,9 @@ type truth struct {
 	} `json:"rotors"`
 }
 
-// TestPairsAreTrueModes holds the comparison to the hidden truth: at least
-// three observed peaks that were paired are true modes on the axis on which
-// the truth turns the gyro; no paired one is a rotor order; and the nominal
-// model is visibly wrong, as it was made to be.
-func TestPairsAreTrueModes(t *testing.T) {
+// readTruth reads what fly wrote.
+func readTruth(t *testing.T) truth {
+	t.Helper()
 	data, err := os.ReadFile("flights/hover-03-truth.json")
 	if err != nil {
 		t.Fatal(err)
@@ -34,6 +32,15 @@ func TestPairsAreTrueModes(t *testing.T) {
 	if err := json.Unmarshal(data, &tr); err != nil {
 		t.Fatal(err)
 	}
+	return tr
+}
+
+// TestPairsAreTrueModes holds the comparison to the hidden truth: at least
+// three observed peaks that were paired are true modes on the axis on which
+// the truth turns the gyro; no paired one is a rotor order; and the nominal
+// model is visibly wrong, as it was made to be.
+func TestPairsAreTrueModes(t *testing.T) {
+	tr := readTruth(t)
 	d := perform(t, "baseline.hcl", map[string]string{"mesh_size": coarse})
 	a, err := d.Artifact("check", "comparison")
 	if err != nil {
@@ -80,5 +87,42 @@ func TestPairsAreTrueModes(t *testing.T) {
 	}
 	if visible < 3 {
 		t.Errorf("only %d predicted peaks differ from the flight by more than 3 %%: %v", visible, errors)
+	}
+}
+
+// TestFlightPairs holds the modes found in flight and paired with the model to
+// the truth: at least seven pairs, each of a true mode of that gyro direction
+// within 1.5 % of its frequency.
+func TestFlightPairs(t *testing.T) {
+	tr := readTruth(t)
+	d := perform(t, "flight.hcl", map[string]string{"mesh_size": coarse})
+	a, err := d.Artifact("check", "comparison")
+	if err != nil {
+		t.Fatal(err)
+	}
+	c, err := kinds.DecodeComparison(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(c.ModePairs) < 7 {
+		t.Errorf("%d pairs of modes", len(c.ModePairs))
+	}
+	predicted := modes(t, d).Survey.Modes
+	for _, p := range c.ModePairs {
+		turn := predicted[p.Mode-1].Rotation
+		best := math.Inf(1)
+		for _, m := range tr.Modes {
+			var dot, norm float64
+			for i, x := range m.Direction {
+				dot += x * turn[i]
+				norm += turn[i] * turn[i]
+			}
+			if dot*dot > 0.9*norm {
+				best = math.Min(best, math.Abs(p.Observed/m.Frequency-1))
+			}
+		}
+		if best > 0.015 {
+			t.Errorf("the mode found at %.1f Hz is %.1f %% from the nearest true mode of its direction", p.Observed, 100*best)
+		}
 	}
 }
