@@ -123,25 +123,51 @@ func subMulT(m, n, k int, a []float64, lda int, b []float64, ldb int, c []float6
 // SolveLowerT solves X·Lᵀ = B in place for the m rows of B (m by n), L being lower triangular of n by n with ones on
 // the diagonal, which are not read.
 func SolveLowerT(m, n int, l []float64, ldl int, b []float64, ldb int) {
-	const tile = Columns
 	if m < 0 || n < 0 || ldl < n || ldb < n {
 		panic("dense: SolveLowerT: bad shape")
 	}
-	for j := 0; j < n; j += tile {
-		cols := min(tile, n-j)
-		if j > 0 {
-			subMulT(m, cols, j, b, ldb, l[j*ldl:], ldl, b[j:], ldb, false)
-		}
+	var p Panels
+	p.Pack(n, n, l, ldl)
+	SolveLowerPacked(m, &p, b, ldb)
+}
+
+// SolveLowerPacked is SolveLowerT for a packed L.
+func SolveLowerPacked(m int, l *Panels, b []float64, ldb int) {
+	n := l.N
+	if m < 0 || l.K != n || ldb < n {
+		panic("dense: SolveLowerPacked: bad shape")
+	}
+	for j := 0; j < n; j += Columns {
+		cols, panel := min(Columns, n-j), l.panel(j)
+		Strip(m, cols, j, b, ldb, 1, panel, Columns, b[j:], ldb)
+		solveUnit(m, cols, panel[j*Columns:], b[j:], ldb)
+	}
+}
+
+// solveUnit solves with a diagonal block of up to eight columns: entry (q, p) of it is at 8p+q.
+func solveUnit(m, cols int, l, b []float64, ldb int) {
+	l = l[:(cols-1)*Columns+cols]
+	if cols < Columns {
 		for i := range m {
-			x := b[i*ldb+j:][:cols]
-			for q := 1; q < cols; q++ {
-				row := l[(j+q)*ldl+j:][:q]
-				s := x[q]
-				for p, v := range row {
-					s -= v * x[p]
+			x := b[i*ldb:][:cols]
+			for p := range x {
+				for q := p + 1; q < cols; q++ {
+					x[q] -= l[p*Columns+q] * x[p]
 				}
-				x[q] = s
 			}
 		}
+		return
+	}
+	for i := range m {
+		x := b[i*ldb:][:Columns:Columns]
+		x0 := x[0]
+		x1 := x[1] - l[1]*x0
+		x2 := x[2] - l[2]*x0 - l[10]*x1
+		x3 := x[3] - l[3]*x0 - l[11]*x1 - l[19]*x2
+		x4 := x[4] - l[4]*x0 - l[12]*x1 - l[20]*x2 - l[28]*x3
+		x5 := x[5] - l[5]*x0 - l[13]*x1 - l[21]*x2 - l[29]*x3 - l[37]*x4
+		x6 := x[6] - l[6]*x0 - l[14]*x1 - l[22]*x2 - l[30]*x3 - l[38]*x4 - l[46]*x5
+		x7 := x[7] - l[7]*x0 - l[15]*x1 - l[23]*x2 - l[31]*x3 - l[39]*x4 - l[47]*x5 - l[55]*x6
+		x[1], x[2], x[3], x[4], x[5], x[6], x[7] = x1, x2, x3, x4, x5, x6, x7
 	}
 }

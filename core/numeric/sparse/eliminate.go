@@ -11,7 +11,7 @@ import (
 
 const (
 	panelWidth = 48 // columns eliminated together
-	stripRows  = 66 // rows that one goroutine updates at a time; fixed, so that sums do not depend on threads
+	stripRows  = 72 // rows that one goroutine updates at a time; fixed, so that sums do not depend on threads
 )
 
 // update is what a supernode leaves for its parent: a square matrix on its rows below, lower triangle.
@@ -80,8 +80,9 @@ type worker struct {
 	threads int
 	local   []int32 // row of the current front at each position
 	pool    [][]float64
-	panel   []float64 // diagonal block of the current panel
-	weighed []float64 // rows of L·D
+	panel   []float64    // diagonal block of the current panel
+	weighed dense.Panels // rows of L·D
+	unit    dense.Panels // the diagonal block once it is factorised
 	pv      dense.Pivots
 }
 

@@ -6,6 +6,7 @@ import (
 	"fmt"
 	"math"
 	"runtime"
+	"sync"
 	"time"
 
 	"hushframe/core/numeric/dense"
@@ -19,6 +20,7 @@ type Factor struct {
 	l        []float64 // trapezoids of the supernodes, row by row
 	pivots   [][]int32 // positions of each supernode's columns in pivot order
 	d, e     []float64 // D in pivot order, see dense.Pivots
+	passages sync.Pool // of *passage, which solves use again
 
 	// Stats tells what the factorisation was and cost.
 	Stats FactorStats

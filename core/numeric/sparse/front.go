@@ -18,12 +18,12 @@ func (f *Factor) eliminateColumns(s int32, l []float64, w *worker) *PivotError {
 
 	for k := 0; k < width; {
 		b := min(panelWidth, width-k)
-		weighed := w.weigh(f, first, k, l[k*width:], width, b)
+		w.weigh(f, first, k, l[k*width:], width, b)
 		// The diagonal block is worked on in a copy, because columns put off must stay as they were.
 		for i := range b {
 			copy(w.panel[i*panelWidth:][:i+1], l[(k+i)*width+k:])
 		}
-		dense.SubMulTLower(b, k, l[k*width:], width, weighed, k, w.panel, panelWidth)
+		dense.SubMulLower(0, b, l[k*width:], width, &w.weighed, w.panel, panelWidth)
 		deferBelow := 0.0
 		if k+b < width {
 			deferBelow = 1e-3
@@ -42,15 +42,16 @@ func (f *Factor) eliminateColumns(s int32, l []float64, w *worker) *PivotError {
 			copy(l[(k+i)*width+k:], w.panel[i*panelWidth:][:i])
 		}
 
-		weighed = w.weigh(f, first, k, l[k*width:], width, done)
+		w.weigh(f, first, k, l[k*width:], width, done)
+		w.unit.Pack(done, done, w.panel, panelWidth)
 		start := k + done
 		strips := (m - start + stripRows - 1) / stripRows
 		dense.Parallel(w.threadsFor((m-start)*done*(k+done)), strips, func(t int) {
 			i := start + t*stripRows
 			rows := min(stripRows, m-i)
 			block := l[i*width:]
-			dense.SubMulT(rows, done, k, block, width, weighed, k, block[k:], width)
-			dense.SolveLowerT(rows, done, w.panel, panelWidth, block[k:], width)
+			dense.SubMul(rows, block, width, &w.weighed, block[k:], width)
+			dense.SolveLowerPacked(rows, &w.unit, block[k:], width)
 			f.divide(first+k, done, rows, block[k:], width)
 		})
 		k += done
@@ -66,28 +67,24 @@ func (w *worker) threadsFor(work int) int {
 	return w.threads
 }
 
-// weigh returns L·D for the first k columns of the given rows of a trapezoid.
-func (w *worker) weigh(f *Factor, first, k int, l []float64, width, rows int) []float64 {
-	if cap(w.weighed) < rows*k {
-		w.weighed = make([]float64, rows*k)
+// weigh packs L·D for the first k columns of the given rows of a trapezoid.
+func (w *worker) weigh(f *Factor, first, k int, l []float64, width, rows int) {
+	w.weighed.Reset(rows, k)
+	if k == 0 {
+		return
 	}
-	out := w.weighed[:rows*k]
-	f.weighInto(out, first, k, l, width, rows)
-	return out
-}
-
-func (f *Factor) weighInto(out []float64, first, k int, l []float64, width, rows int) {
 	d, e := f.d[first:][:k], f.e[first:][:k]
 	for i := range rows {
-		src, dst := l[i*width:][:k], out[i*k:][:k]
-		for j := 0; j < k; j++ {
+		src, dst := l[i*width:][:k], w.weighed.Row(i)
+		for j, at := 0, 0; j < k; j, at = j+1, at+dense.Columns {
 			if e[j] != 0 {
 				u, v := src[j], src[j+1]
-				dst[j], dst[j+1] = d[j]*u+e[j]*v, e[j]*u+d[j+1]*v
-				j++
+				dst[at] = d[j]*u + e[j]*v
+				j, at = j+1, at+dense.Columns
+				dst[at] = e[j-1]*u + d[j]*v
 				continue
 			}
-			dst[j] = d[j] * src[j]
+			dst[at] = d[j] * src[j]
 		}
 	}
 }
@@ -136,13 +133,12 @@ func (f *Factor) reduceBelow(s int32, l []float64, up update, w *worker) {
 		return
 	}
 	rows := l[width*width:]
-	weighed := w.weigh(f, int(node.first), width, rows, width, below)
+	w.weigh(f, int(node.first), width, rows, width, below)
 	strips := (below + stripRows - 1) / stripRows
 	// Later strips are longer; taking them first evens out the ends.
 	dense.Parallel(w.threadsFor(below*below*width), strips, func(t int) {
 		i := (strips - 1 - t) * stripRows
 		n := min(stripRows, below-i)
-		dense.SubMulT(n, i, width, rows[i*width:], width, weighed, width, up[i*below:], below)
-		dense.SubMulTLower(n, width, rows[i*width:], width, weighed[i*width:], width, up[i*below+i:], below)
+		dense.SubMulLower(i, i+n, rows, width, &w.weighed, up, below)
 	})
 }

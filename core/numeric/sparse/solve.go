@@ -23,14 +23,19 @@ func (f *Factor) SolveThreads(x []float64, nrhs, threads int) {
 	if n == 0 || nrhs == 0 {
 		return
 	}
-	ps := f.newPassage(threads)
+	ps, _ := f.passages.Get().(*passage)
+	if ps == nil {
+		ps = f.newPassage()
+	}
+	defer f.passages.Put(ps)
+	ps.threads = threads
 	for r := 0; r < nrhs; r += lanes {
 		ps.count = min(lanes, nrhs-r)
 		ps.solve(x[r*n:][:ps.count*n])
 	}
 }
 
-// passage is a pass over the factor for some right-hand sides.
+// passage is a pass over the factor for some right-hand sides, and the memory it needs.
 type passage struct {
 	f       *Factor
 	threads int
@@ -48,12 +53,12 @@ type room struct {
 	local []int32   // place in the carry of each position beyond the subtree
 }
 
-func (f *Factor) newPassage(threads int) *passage {
+func (f *Factor) newPassage() *passage {
 	n, widest := len(f.d), 0
 	for s := range f.pivots {
 		widest = max(widest, len(f.pivots[s]))
 	}
-	ps := &passage{f: f, threads: threads, y: make([]float64, n*lanes)}
+	ps := &passage{f: f, y: make([]float64, n*lanes)}
 	ps.rooms.New = func() any { return &room{z: make([]float64, widest*lanes), local: make([]int32, n)} }
 	for _, t := range f.analysis.passes.subtrees {
 		ps.carries = append(ps.carries, make([]float64, f.analysis.nodes[t.last].below()*lanes))
@@ -107,18 +112,20 @@ func (ps *passage) solve(x []float64) {
 
 // exchange brings the scaled right-hand sides into the order of elimination, or the solutions back.
 func (ps *passage) exchange(x []float64, in bool) {
-	const piece = 4096
+	const piece = 512 // positions whose lanes stay in the first-level cache
 	f, n := ps.f, len(ps.f.d)
 	dense.Parallel(ps.threads, (n+piece-1)/piece, func(t int) {
-		for k := t * piece; k < min(n, (t+1)*piece); k++ {
-			u := int(f.analysis.order[k])
-			y, s := ps.y[k*lanes:][:ps.count], f.scale[u]
-			for r := range y {
+		order := f.analysis.order[t*piece : min(n, (t+1)*piece)]
+		y := ps.y[t*piece*lanes:]
+		for r := range ps.count {
+			b, at := x[r*n:][:n], r
+			for _, u := range order {
 				if in {
-					y[r] = x[r*n+u] * s
+					y[at] = b[u] * f.scale[u]
 				} else {
-					x[r*n+u] = y[r] * s
+					b[u] = y[at] * f.scale[u]
 				}
+				at += lanes
 			}
 		}
 	})
