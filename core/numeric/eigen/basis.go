@@ -15,6 +15,8 @@ type basis struct {
 	v []float64
 	// count vectors of v are in use.
 	count int
+	// tail is M times the vectors appended last.
+	tail []float64
 	// negative is an unknown in a vector whose square in the norm of M came out negative by more than rounding, or -1.
 	negative int
 }
@@ -41,7 +43,10 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 	defer since(time.Now(), &b.p.stats.OrthogonalSeconds)
 	n, old := b.n, b.count
 	c = make([]float64, old*count)
-	z := make([]float64, count*n)
+	if cap(b.tail) < count*n {
+		b.tail = make([]float64, count*n)
+	}
+	z := b.tail[:count*n]
 	b.p.mass(z, w, count)
 	before := make([]float64, count)
 	for i := range count {
@@ -67,6 +72,7 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 	}
 	copy(b.v[old*n:], w[:len(keep)*n])
 	b.count += len(keep)
+	b.tail = z[:len(keep)*n]
 	return keep, c, r
 }
 

@@ -37,7 +37,8 @@ type search struct {
 	coupled    int       // first vector of the basis to which the recurrence couples the last block
 	pairs      []pair    // of all vectors but the block just appended, by falling θ
 	rotation   *mat.Dense
-	exhausted  bool // nothing is left outside the basis
+	work       []float64 // room for the block at hand
+	exhausted  bool      // nothing is left outside the basis
 }
 
 func newSearch(p *pencil, known *pairs, block, room int, seed uint64, tol float64, st *Status) *search {
@@ -104,8 +105,11 @@ func (s *search) run(ctx context.Context, enough func(s *search) bool, steps int
 func (s *search) step() error {
 	n, l := s.p.order(), len(s.locked)
 	count := s.end - s.start
-	w := make([]float64, count*n)
-	s.p.mass(w, s.b.v[(l+s.start)*n:], count)
+	if cap(s.work) < count*n {
+		s.work = make([]float64, count*n)
+	}
+	w := s.work[:count*n]
+	copy(w, s.b.tail) // M times the last block
 	s.p.solve(w, count)
 	keep, c, r := s.b.append(w, count, s.coupled)
 	kept := len(keep)
