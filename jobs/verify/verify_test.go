@@ -6,7 +6,12 @@ import (
 	"strings"
 	"testing"
 
+	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/job"
+	"hushframe/core/pipeline/plan"
+	"hushframe/core/pipeline/stage"
 	"hushframe/jobs/inprocess"
+	"hushframe/stages"
 	"hushframe/stages/kinds"
 )
 
@@ -52,5 +57,29 @@ func TestVerify(t *testing.T) {
 		if !strings.Contains(string(page.Files["verify.html"]), want) {
 			t.Errorf("the page lacks %q", want)
 		}
+	}
+}
+
+// The job on the demo's mesh solves a quarter of a million unknowns, so here it is only read and planned;
+// the estimate itself is tested on small frames beside the kernels.
+func TestMeshJobIsSound(t *testing.T) {
+	describe := func(_ context.Context, name string) (stage.Description, error) {
+		for _, s := range stages.Builtin() {
+			if d := s.Describe(); d.Name == name {
+				return d, nil
+			}
+		}
+		return stage.Description{}, fault.New(fault.Missing, "there is no stage %q", name)
+	}
+	j, diags := job.Load(context.Background(), "mesh.hcl", job.Options{Describe: describe})
+	if diags.HasErrors() {
+		t.Fatal(diags)
+	}
+	p, diags := plan.Make(j)
+	if diags.HasErrors() {
+		t.Fatal(diags)
+	}
+	if len(p.Steps) != 4 {
+		t.Errorf("%d steps", len(p.Steps))
 	}
 }

@@ -117,6 +117,7 @@ func Families() []Family {
 		{"board on mounts", "20 × 18 cells", shells, []string{"C-BOARD-MOUNTS"}, nil, 0.5, boardOnMounts},
 
 		{"two masses on springs", "springs only", forcing, []string{"D-TWODOF-A-MODES"}, nil, 0.4, twoMasses},
+		{"two masses with dampers", "springs only", forcing, []string{"D-TWODOF-A-PROPZETA", "D-TWODOF-A-NONPROP-EIG"}, nil, 0.5, dampedMasses},
 		{"deep beam under a harmonic load", "20 beams", forcing, []string{"D-FORCED-DEEP-BEAM"}, nil, 0.5, forcedBeam},
 		{"plates under a harmonic pressure", "12 cells across the quarter", forcing, []string{"D-FORCED-THIN-PLATE", "D-FORCED-THICK-PLATE"}, nil, 0.1, forcedPlate},
 		{"free beam with losses", "60 beams, 40 modes", forcing, []string{"D-FFBEAM-FRF", "D-FFBEAM-ROT"}, nil, 0.9, freeBeam},

@@ -108,28 +108,85 @@ func combined(a float64, x []float64, b float64, y []float64) []float64 {
 	return out
 }
 
-// Row D-TWODOF-A-MODES: two bodies that slide along x.
-func twoMasses(t known.T, row known.Row) []float64 {
-	var c struct {
-		M1 float64 `json:"m1_kg"`
-		M2 float64 `json:"m2_kg"`
-		K1 float64 `json:"k1_ground_to_1"`
-		K2 float64 `json:"k2_between"`
+// pair is two bodies that slide along x, solved.
+type pair struct {
+	res   *eigen.Result
+	moves [2][2]float64 // of each body in each mode
+	setup struct {
+		M1      float64 `json:"m1_kg"`
+		M2      float64 `json:"m2_kg"`
+		K1      float64 `json:"k1_ground_to_1"`
+		K2      float64 `json:"k2_between"`
+		Alpha   float64
+		Beta    float64
+		Between float64 `json:"c_between_Ns_per_m"`
 	}
-	row.Decode(t, &c)
+}
+
+func newPair(t known.T, row known.Row) *pair {
+	t.Helper()
+	p := &pair{}
+	row.Decode(t, &p.setup)
+	c := &p.setup
 	var f frame
 	a := f.body("one", nil, assembly.Inertia{Mass: c.M1})
 	b := f.body("two", nil, assembly.Inertia{Mass: c.M2})
 	f.spring("ground", a, assembly.Ground, assembly.Vec{}, [6]float64{c.K1, inf, inf, inf, inf, inf})
 	f.spring("between", a, b, assembly.Vec{}, [6]float64{c.K2, inf, inf, inf, inf, inf})
 	s := assemble(t, &f.Problem)
-	res := solve(t, s, eigen.Options{Modes: 2})
+	p.res = solve(t, s, eigen.Options{Modes: 2})
+	for v, y := range p.res.Vectors {
+		p.moves[0][v], p.moves[1][v] = s.Motion(a, assembly.Vec{}, y)[0], s.Motion(b, assembly.Vec{}, y)[0]
+	}
+	return p
+}
+
+// Row D-TWODOF-A-MODES: frequencies, then the modes.
+func twoMasses(t known.T, row known.Row) []float64 {
+	p := newPair(t, row)
 	var got []float64
-	for _, v := range res.Values {
+	for _, v := range p.res.Values {
 		got = append(got, math.Sqrt(v)/(2*math.Pi))
 	}
-	for _, y := range res.Vectors {
-		got = append(got, math.Abs(s.Motion(a, assembly.Vec{}, y)[0]), math.Abs(s.Motion(b, assembly.Vec{}, y)[0]))
+	for v := range 2 {
+		got = append(got, math.Abs(p.moves[0][v]), math.Abs(p.moves[1][v]))
+	}
+	return got
+}
+
+// Rows D-TWODOF-A-PROPZETA and D-TWODOF-A-NONPROP-EIG: natural motions with dampers.
+func dampedMasses(t known.T, row known.Row) []float64 {
+	p := newPair(t, row)
+	b := &modal.Basis{Groups: []modal.LossGroup{{Name: "all", Kind: "part", Stiffness: make([]float64, 4)}}}
+	c := make([]float64, 4)
+	for v, lambda := range p.res.Values {
+		b.Kinds = append(b.Kinds, modal.Elastic)
+		b.Frequency = append(b.Frequency, math.Sqrt(lambda)/(2*math.Pi))
+		b.Groups[0].Stiffness[3*v] = lambda
+		c[3*v] += p.setup.Alpha + p.setup.Beta*lambda
+		for w := range 2 {
+			c[2*v+w] += p.setup.Between * (p.moves[1][v] - p.moves[0][v]) * (p.moves[1][w] - p.moves[0][w])
+		}
+	}
+	b.Sites = []modal.Site{{Name: "load", Kind: "rotor", Motion: make([][6]float64, 2)}, {Name: "gyro", Kind: "gyro", Motion: make([][6]float64, 2)}}
+	s, err := forced.New(b, forced.Options{Rate: c})
+	if err != nil {
+		t.Fatal(err)
+	}
+	core, err := s.Core()
+	if err != nil {
+		t.Fatal(err)
+	}
+	poles, err := core.Poles(nil, 0, math.Inf(1))
+	if err != nil {
+		t.Fatal(err)
+	}
+	var got []float64
+	for _, x := range poles {
+		if p.setup.Between > 0 {
+			got = append(got, x.Frequency)
+		}
+		got = append(got, x.Damping)
 	}
 	return got
 }
