@@ -17,21 +17,21 @@ import (
 //
 // of the rotation o·q under a force f, the left shape being x̄ but for terms of the order of the loss factor.
 func (s *System) Attribute(p *Peak, b Broadband, poles []Pole) ([]float64, error) {
-	d := s.driver()
+	d := s.driver(false)
 	if err := d.gyroRates(p.Frequency); err != nil {
 		return nil, err
 	}
 	shares := make([]float64, len(poles))
 	omega := angular(p.Frequency)
+	parts := b.drives(s.inputs, p.Frequency)
 	total := 0.0
-	weight := make([]float64, len(s.inputs))
-	for j, in := range s.inputs {
-		weight[j] = b.density(in)
-		total += weight[j] * power(d.rates[p.Axis][j])
+	for _, part := range parts {
+		total += part.weight * power(part.sum(d.rates[p.Axis]))
 	}
 	if total == 0 {
 		return shares, nil
 	}
+	made := make([]complex128, len(s.inputs))
 	for k, pole := range poles {
 		w := complex(2*math.Pi*pole.Frequency, 0) * complex(math.Sqrt(1-sq(pole.Damping)), pole.Damping)
 		norm := 0.0
@@ -43,12 +43,11 @@ func (s *System) Attribute(p *Peak, b Broadband, poles []Pole) ([]float64, error
 		near := out / (scale * (complex(omega, 0) - w))
 		far := cmplx.Conj(out) / (-scale * (complex(omega, 0) + cmplx.Conj(w)))
 		for j, load := range s.load {
-			if weight[j] == 0 {
-				continue
-			}
 			in := along(load, pole.Shape)
-			phasor := complex(0, omega) * (near*cmplx.Conj(in) + far*in)
-			shares[k] += weight[j] * real(phasor*cmplx.Conj(d.rates[p.Axis][j])) / total
+			made[j] = complex(0, omega) * (near*cmplx.Conj(in) + far*in)
+		}
+		for _, part := range parts {
+			shares[k] += part.weight * real(part.sum(made)*cmplx.Conj(part.sum(d.rates[p.Axis]))) / total
 		}
 	}
 	return shares, nil

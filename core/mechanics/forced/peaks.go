@@ -19,7 +19,7 @@ type Peak struct {
 	// power. They add up to 1; a vector that works against the others has a
 	// negative share.
 	Shares []float64
-	// Input is the strongest input and InputShare its part of Density.
+	// Input is the strongest input and InputShare what it makes alone, over Density.
 	Input      int
 	InputShare float64
 }
@@ -29,7 +29,7 @@ type Peak struct {
 // neighbours to a part in 1e7 of frequency. Maxima at the ends of the grid are
 // not peaks.
 func (s *System) Peaks(sp *Spectrum, b Broadband, prominence float64) ([]Peak, error) {
-	d := s.driver()
+	d := s.driver(false)
 	var out []Peak
 	for axis := range 3 {
 		y := sp.Density[axis]
@@ -100,8 +100,8 @@ func (d *driver) density(axis int, b Broadband, frequency float64) (float64, err
 		return 0, err
 	}
 	sum := 0.0
-	for j, h := range d.rates[axis] {
-		sum += b.density(d.s.inputs[j]) * power(h)
+	for _, part := range b.drives(d.s.inputs, frequency) {
+		sum += part.weight * power(part.sum(d.rates[axis]))
 	}
 	return sum, nil
 }
@@ -117,23 +117,26 @@ func (d *driver) explain(p *Peak, b Broadband) error {
 	strongest := -1.0
 	total := 0.0
 	for j, in := range s.inputs {
-		h := d.rates[p.Axis][j]
-		weight := b.density(in)
-		own := weight * power(h)
-		total += own
-		if own > strongest {
+		if own := b.density(in) * power(d.rates[p.Axis][j]); own > strongest {
 			strongest, p.Input = own, j
 		}
-		if own == 0 {
-			continue
+	}
+	for _, part := range b.drives(s.inputs, p.Frequency) {
+		h := part.sum(d.rates[p.Axis])
+		total += part.weight * power(h)
+		force := make([]complex128, len(s.vectors))
+		for _, j := range part.inputs {
+			for v, x := range s.load[j] {
+				force[v] += complex(x, 0)
+			}
 		}
-		q, err := s.Drive(p.Frequency, j)
+		q, err := s.Solve(p.Frequency, force)
 		if err != nil {
 			return err
 		}
 		for v, x := range q {
 			phasor := complex(0, omega*s.gyro[p.Axis][v]) * x
-			p.Shares[v] += weight * real(phasor*cmplx.Conj(h))
+			p.Shares[v] += part.weight * real(phasor*cmplx.Conj(h))
 		}
 	}
 	if total == 0 {

@@ -27,6 +27,15 @@ func (e *Unbounded) Error() string {
 // 0 Hz (it panics otherwise), on up to the given number of threads. The result
 // does not depend on threads. It fails with *Unbounded, or when ctx ends.
 func (s *System) Transfer(ctx context.Context, frequency []float64, threads int) (*Transfer, error) {
+	return s.TransferSpun(ctx, frequency, nil, threads)
+}
+
+// TransferSpun is Transfer with angular momenta of their own at each frequency:
+// momenta[k] is one per gyroscopic coupling, as for Spun; nil keeps those of s.
+func (s *System) TransferSpun(ctx context.Context, frequency []float64, momenta [][]float64, threads int) (*Transfer, error) {
+	if momenta != nil && len(momenta) != len(frequency) {
+		panic(fmt.Sprintf("forced: %d sets of angular momenta for %d frequencies", len(momenta), len(frequency)))
+	}
 	t := &Transfer{Frequency: frequency, Inputs: s.inputs}
 	for axis := range t.Rate {
 		t.Rate[axis] = make([][]complex128, len(s.inputs))
@@ -39,11 +48,14 @@ func (s *System) Transfer(ctx context.Context, frequency []float64, threads int)
 	var group sync.WaitGroup
 	for w := range threads {
 		group.Go(func() {
-			d := s.driver()
+			d := s.driver(momenta != nil)
 			for k := w; k < len(frequency); k += threads {
 				if err := ctx.Err(); err != nil {
 					failed[w] = err
 					return
+				}
+				if momenta != nil {
+					d.s = s.Spun(momenta[k])
 				}
 				if err := d.gyroRates(frequency[k]); err != nil {
 					failed[w] = err
@@ -164,11 +176,13 @@ type driver struct {
 	part   []complex128
 }
 
-func (s *System) driver() *driver {
+// driver makes one; spins tells that it will meet rotors that spin although
+// those of s may be at rest.
+func (s *System) driver(spins bool) *driver {
 	n := len(s.vectors)
 	d := &driver{s: s, work: make([]complex128, n*n)}
 	outputs, loads := s.gyro[:], s.load
-	if s.reduced != nil && s.spinning() {
+	if s.reduced != nil && (spins || s.spinning()) {
 		outputs = append(append([][]float64{}, outputs...), s.tilt...)
 		loads = append(append([][]float64{}, loads...), s.tilt...)
 		d.p = make([]complex128, len(s.tilt)*len(s.tilt))

@@ -38,20 +38,25 @@ func TestForceAndFrequencyAgainstSpeed(t *testing.T) {
 		Blades float64
 	}
 	row.Decode(t, &s)
-	label := regexp.MustCompile(`(force|rotation|blade passing) (\d+) rpm`)
 	var got []float64
 	for _, l := range row.Labels {
-		m := label.FindStringSubmatch(l)
-		rpm, err := strconv.ParseFloat(m[2], 64)
-		if err != nil {
-			t.Fatal(err)
-		}
-		speed := rpm * 2 * math.Pi / 60
+		kind, speed := label(t, l)
 		got = append(got, map[string]float64{
 			"force": Force(s.U, speed), "rotation": Frequency(1, speed), "blade passing": Frequency(s.Blades, speed),
-		}[m[1]])
+		}[kind])
 	}
 	row.Check(t, 1, got...)
+}
+
+// label reads what a value is of and at which speed in rad/s.
+func label(t *testing.T, text string) (kind string, speed float64) {
+	t.Helper()
+	m := regexp.MustCompile(`(force|rotation|blade passing) (\d+) rpm`).FindStringSubmatch(text)
+	rpm, err := strconv.ParseFloat(m[2], 64)
+	if err != nil {
+		t.Fatal(err)
+	}
+	return m[1], rpm * 2 * math.Pi / 60
 }
 
 func TestWhirlTurnsWithTheSpin(t *testing.T) {
