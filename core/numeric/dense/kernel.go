@@ -1,6 +1,6 @@
 package dense
 
-//go:generate go run -C gen . -out ../kernel_amd64.s -stubs ../kernel_amd64_stubs.go -pkg dense
+//go:generate go run -C gen . -out ../kernel_amd64.s -stubs ../kernel_stubs_amd64.go -pkg dense
 
 // Columns is the width of a panel: the columns of C that Strip works on at a time.
 const Columns = 8

@@ -138,7 +138,7 @@ func TestChain(t *testing.T) {
 	row.Check(t, 1, y[0][1], y[1][1], y[2][1], y[0][1000], y[2][1000], y[1][len(y[1])-1], square(y[0]), square(y[1]), square(y[2]))
 
 	// Row F-OMA-COV: P = Ad·P·Adᵀ + Bd·Bdᵀ by its series.
-	c, row = readChain(t, "F-OMA-COV")
+	_, row = readChain(t, "F-OMA-COV")
 	var p, q mat.Dense
 	q.Mul(bd, bd.T())
 	p.CloneFrom(&q)
