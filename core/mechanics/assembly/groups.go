@@ -120,7 +120,7 @@ func newWork(nodes [][]float64, elements, perElement int, list func(e int) []int
 
 // panel is the number of motions that one goroutine multiplies at a time. A panel owns its rows of the
 // forces, so their sums run over the elements in order whatever the number of threads.
-const panel = 12
+const panel = 20
 
 // apply computes the forces of the packed element matrices.
 func (w *work) apply(ctx context.Context, packed []float64, threads int) error {
