@@ -2,6 +2,8 @@ package kinds
 
 import (
 	"fmt"
+	"math"
+	"slices"
 
 	"hushframe/core/pipeline/artifact"
 )
@@ -9,7 +11,7 @@ import (
 // ResponseKind is what `sweep` makes of a modal basis and assumed sources.
 // Elastic modes are numbered from 1 in ascending frequency.
 var ResponseKind = artifact.Kind{
-	Name: "response", Version: 2,
+	Name: "response", Version: 3,
 	About: "gyro rate that forces and moments at the rotors make: transfer functions, spectra, peaks and the modes that make them, lines at hover, operating shapes",
 	Scalars: []artifact.Column{
 		col("from", artifact.Float, "Hz", "lower end of the sweep"),
@@ -27,6 +29,7 @@ var ResponseKind = artifact.Kind{
 			col("frequency", artifact.Float, "Hz", "ascending, not evenly spaced"),
 			axisCols("", "(rad/s)^2/Hz", "one-sided power spectral density"),
 			axisCols("uncorrected_", "(rad/s)^2/Hz", "the same without residual vectors; NaN if the basis has none or they are off"),
+			axisCols("flown_", "(rad/s)^2/Hz", "the broadband density with the rotors' lines spread over the speeds of a flight; NaN if rotors have no speed"),
 		)},
 		{Name: "sources", About: "the part of each rotor in the spectrum", Columns: columns(
 			col("rotor", artifact.Text, "", "name"),
@@ -87,6 +90,17 @@ var ResponseKind = artifact.Kind{
 			col("damping", artifact.FloatList, "1", "damping ratio"),
 			col("direction", artifact.FloatList, "1", "how rotors tilt: 1 round with their spin, -1 against it, 0 to and fro; NaN if none tilts"),
 		)},
+		{Name: "map_speeds", About: "rotor speeds of the table map, ascending", Columns: columns(
+			col("speed", artifact.Float, "rad/s", "speed of the first rotor; the others keep the ratio they have at hover"),
+		)},
+		{Name: "map", About: "lines over rotor speed, with the gyroscopic moments of each speed if rotors spin; rotors of one frequency added as power", Columns: columns(
+			col("source", artifact.Text, "", "unbalance, blade passing, blade side force or torque ripple"),
+			col("order", artifact.Float, "1", "multiple of the speed of the first rotor"),
+			col("rotors", artifact.TextList, "", "whose lines they are"),
+			col("roll", artifact.FloatList, "rad/s", "peak amplitude at the speeds of the table map_speeds"),
+			col("pitch", artifact.FloatList, "rad/s", "the same"),
+			col("yaw", artifact.FloatList, "rad/s", "the same"),
+		)},
 		{Name: "critical", About: "rotor speeds at which an order has the frequency of a natural motion at that very speed", Columns: columns(
 			col("order", artifact.Int, "", "multiple of the rotors' speed"),
 			col("rotors", artifact.TextList, "", "whose order it is"),
@@ -97,11 +111,11 @@ var ResponseKind = artifact.Kind{
 			col("mode", artifact.Int, "", "elastic mode that it is at rest"),
 		)},
 		{Name: "lines", About: "gyro rate at single frequencies at hover speed", Columns: columns(
-			col("source", artifact.Text, "", "unbalance or blade passing"),
+			col("source", artifact.Text, "", "unbalance, blade passing (of the thrust), blade side force (of unknown direction) or torque ripple"),
 			col("rotor", artifact.Text, "", "name; \"all\" is the root sum of squares over rotors of equal frequency"),
 			col("order", artifact.Float, "1", "multiple of the rotor's speed"),
 			col("frequency", artifact.Float, "Hz", ""),
-			col("force", artifact.Float, "N", "amplitude at one rotor"),
+			col("force", artifact.Float, "N or N*m", "amplitude at one rotor; N*m for torque ripple"),
 			axisCols("", "rad/s", "peak amplitude"),
 		)},
 		{Name: "shapes", About: "operating shapes: motion of the mesh nodes under one unit of one component", Columns: columns(
@@ -144,6 +158,18 @@ type Response struct {
 	Speeds   []float64
 	Whirl    []ResponseWhirl
 	Critical []ResponseCritical
+
+	MapSpeeds []float64
+	Orders    []ResponseOrder
+	Flown     [3][]float64 // nil when rotors have no speed
+}
+
+// ResponseOrder is one line over the speeds of the map.
+type ResponseOrder struct {
+	Source string
+	Order  float64
+	Rotors []string
+	Rate   [3][]float64
 }
 
 // ResponseWhirl is one natural motion over the rotor speeds.
@@ -244,7 +270,11 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 	}
 	t := a.Table("spectrum").Set("frequency", r.Frequency)
 	for axis, name := range AxisNames {
-		t.Set(name, r.Density[axis]).Set("uncorrected_"+name, r.Uncorrected[axis])
+		flown := r.Flown[axis]
+		if flown == nil {
+			flown = slices.Repeat([]float64{math.NaN()}, len(r.Frequency))
+		}
+		t.Set(name, r.Density[axis]).Set("uncorrected_"+name, r.Uncorrected[axis]).Set("flown_"+name, flown)
 	}
 	a.Table("sources").
 		Set("rotor", list(r.Sources, func(x ResponseSource) string { return x.Rotor })).
@@ -276,6 +306,14 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 		Set("tilt", list(r.Rotors, func(x ResponseRotor) float64 { return x.Tilt })).
 		Set("equal", list(r.Rotors, func(x ResponseRotor) float64 { return x.Equal }))
 	a.Table("speeds").Set("speed", append([]float64{}, r.Speeds...))
+	a.Table("map_speeds").Set("speed", append([]float64{}, r.MapSpeeds...))
+	t = a.Table("map").
+		Set("source", list(r.Orders, func(x ResponseOrder) string { return x.Source })).
+		Set("order", list(r.Orders, func(x ResponseOrder) float64 { return x.Order })).
+		Set("rotors", list(r.Orders, func(x ResponseOrder) []string { return x.Rotors }))
+	for axis, name := range AxisNames {
+		t.Set(name, list(r.Orders, func(x ResponseOrder) []float64 { return x.Rate[axis] }))
+	}
 	a.Table("whirl").
 		Set("mode", list(r.Whirl, func(x ResponseWhirl) int64 { return int64(x.Mode) })).
 		Set("frequency", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Frequency })).
@@ -340,6 +378,9 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	r.Frequency = t.Floats("frequency")
 	for axis, name := range AxisNames {
 		r.Density[axis], r.Uncorrected[axis] = t.Floats(name), t.Floats("uncorrected_"+name)
+		if flown := t.Floats("flown_" + name); len(flown) > 0 && !math.IsNaN(flown[0]) {
+			r.Flown[axis] = flown
+		}
 	}
 	for k := 1; k < len(r.Frequency); k++ {
 		if !(r.Frequency[k] > r.Frequency[k-1]) {
@@ -382,6 +423,18 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	for i := range t.Rows() {
 		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i],
 			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i]})
+	}
+	r.MapSpeeds = a.Table("map_speeds").Floats("speed")
+	t = a.Table("map")
+	for i := range t.Rows() {
+		x := ResponseOrder{Source: t.Texts("source")[i], Order: t.Floats("order")[i], Rotors: t.TextLists("rotors")[i]}
+		for axis, name := range AxisNames {
+			x.Rate[axis] = t.FloatLists(name)[i]
+			if len(x.Rate[axis]) != len(r.MapSpeeds) {
+				return nil, malformed("response", "%s of order %g has %d values over %d speeds", x.Source, x.Order, len(x.Rate[axis]), len(r.MapSpeeds))
+			}
+		}
+		r.Orders = append(r.Orders, x)
 	}
 	t = a.Table("whirl")
 	for i := range t.Rows() {

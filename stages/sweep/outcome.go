@@ -5,6 +5,7 @@ import (
 	"math"
 	"strings"
 
+	"hushframe/core/mechanics/forced"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
@@ -44,6 +45,10 @@ func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome
 	o.Summary = []stage.Section{peakTable(r), axisTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
+	}
+	if len(r.Orders) > 0 {
+		o.Summary = append(o.Summary, mapTable(r))
+		o.Notes = append(o.Notes, fmt.Sprintf("rotor speed is assumed to stray by %.3g %% over a flight", 100*set.spread))
 	}
 	if len(r.Whirl) > 0 {
 		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r))
@@ -134,9 +139,13 @@ func makers(p kinds.ResponsePeak) string {
 func axisTable(r *kinds.Response) stage.Section {
 	s := stage.Section{
 		Title:   fmt.Sprintf("Gyro rate from %.4g to %.4g Hz", r.From, r.To),
-		Columns: []stage.Column{{Name: "axis"}, {Name: "rms, deg/s", Right: true}, {Name: "strongest peak, Hz", Right: true}, {Name: "static correction, dB", Right: true}},
+		Columns: []stage.Column{{Name: "axis"}, {Name: "rms, deg/s", Right: true}, {Name: "with lines, deg/s", Right: true}, {Name: "strongest peak, Hz", Right: true}, {Name: "static correction, dB", Right: true}},
 	}
-	for _, x := range r.Axes {
+	for axis, x := range r.Axes {
+		flown := "–"
+		if y := r.Flown[axis]; y != nil {
+			flown = fmt.Sprintf("%.3g", math.Sqrt(forced.MeanSquare(r.Frequency, y))/degree)
+		}
 		top, correction := "–", "–"
 		if p, ok := strongest(r, x.Axis); ok {
 			top = fmt.Sprintf("%.1f", p.Frequency)
@@ -144,15 +153,41 @@ func axisTable(r *kinds.Response) stage.Section {
 		if !math.IsNaN(x.Correction) {
 			correction = fmt.Sprintf("%+.2f at %.1f Hz", x.Correction, x.CorrectionAt)
 		}
-		s.Rows = append(s.Rows, []string{x.Axis, fmt.Sprintf("%.3g", x.RMS/degree), top, correction})
+		s.Rows = append(s.Rows, []string{x.Axis, fmt.Sprintf("%.3g", x.RMS/degree), flown, top, correction})
 	}
+	return s
+}
+
+// mapTable gives the speeds at which lines are loudest.
+func mapTable(r *kinds.Response) stage.Section {
+	last := r.MapSpeeds[len(r.MapSpeeds)-1]
+	s := stage.Section{
+		Title: fmt.Sprintf("Rotor lines up to %.0f rpm, largest amplitude and its speed", last/rpm),
+		Columns: []stage.Column{{Name: "source"}, {Name: "order", Right: true}, {Name: "roll, deg/s", Right: true}, {Name: "at rpm", Right: true},
+			{Name: "pitch, deg/s", Right: true}, {Name: "at rpm", Right: true}, {Name: "yaw, deg/s", Right: true}, {Name: "at rpm", Right: true}},
+	}
+	reach := r.ModesTo / 1.5
+	for _, x := range r.Orders {
+		row := []string{x.Source, fmt.Sprintf("%.4g", x.Order)}
+		for axis := range x.Rate {
+			best, at := 0.0, math.NaN()
+			for k, a := range x.Rate[axis] {
+				if a > best && x.Order*r.MapSpeeds[k]/(2*math.Pi) <= reach*(1+1e-9) {
+					best, at = a, r.MapSpeeds[k]
+				}
+			}
+			row = append(row, fmt.Sprintf("%.3g", best/degree), dash("%.0f", at/rpm))
+		}
+		s.Rows = append(s.Rows, row)
+	}
+	s.Text = fmt.Sprintf("rotors added as power; only lines up to %.4g Hz, to which the modes carry", reach)
 	return s
 }
 
 func lineTable(r *kinds.Response) stage.Section {
 	s := stage.Section{
 		Title: "Rotor lines at " + speedName(r) + ", peak amplitude",
-		Columns: []stage.Column{{Name: "source"}, {Name: "rotor"}, {Name: "Hz", Right: true}, {Name: "force, N", Right: true},
+		Columns: []stage.Column{{Name: "source"}, {Name: "rotor"}, {Name: "Hz", Right: true}, {Name: "N or N·m", Right: true},
 			{Name: "roll, deg/s", Right: true}, {Name: "pitch, deg/s", Right: true}, {Name: "yaw, deg/s", Right: true}},
 	}
 	for _, x := range r.Lines {

@@ -9,7 +9,6 @@ import (
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/forced"
 	"hushframe/core/mechanics/modal"
-	"hushframe/core/mechanics/rotor"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -79,7 +78,10 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 		}
 	}
 	fleet.describe(r, p)
-	if r.Lines, err = lines(ctx, sys, fleet, set, r.Thrust); err != nil {
+	if r.Lines, err = fleet.lines(ctx, sys, set.excitation(r.Thrust)); err != nil {
+		return nil, err
+	}
+	if err := fleet.overSpeed(ctx, r, sys, tr, set, threads); err != nil {
 		return nil, err
 	}
 	report.Progress("shapes", 0.9)
@@ -239,75 +241,6 @@ func thrust(p *airframe.Properties) float64 {
 		return math.NaN()
 	}
 	return mass * gravity / float64(len(p.Rotors))
-}
-
-// lines drives each rotor at its speed by its permitted unbalance and by a thrust
-// that varies at blade passing. Rotors of equal frequency are added as power,
-// since they are not locked to each other.
-func lines(ctx context.Context, sys *forced.System, fleet *fleet, set settings, thrust float64) ([]kinds.ResponseLine, error) {
-	var out []kinds.ResponseLine
-	for _, source := range []string{"unbalance", "blade passing"} {
-		first := len(out)
-		for k, x := range fleet.rotors {
-			speed := fleet.speeds[k]
-			line := kinds.ResponseLine{Source: source, Rotor: x.Name, Order: 1}
-			var load [3]complex128
-			if source == "unbalance" {
-				line.Force = rotor.Force(rotor.Unbalance(x.SpinningMass, x.Grade, x.MaxSpeed), speed)
-				load = rotor.Whirl(x.Axis, x.Spin)
-			} else {
-				line.Order, line.Force = float64(x.Blades), set.bladeShare*thrust
-				for c := range load {
-					load[c] = complex(x.Axis[c], 0)
-				}
-			}
-			line.Frequency = rotor.Frequency(line.Order, speed)
-			if !(line.Force > 0 && line.Frequency > 0) {
-				continue
-			}
-			tr, err := sys.Transfer(ctx, []float64{line.Frequency}, 1)
-			if err != nil {
-				return nil, err
-			}
-			rate := tr.Respond(0, func(in forced.Input) complex128 {
-				if in.Rotor != x.Name || in.Moment() {
-					return 0
-				}
-				return load[in.Component] * complex(line.Force, 0)
-			})
-			for axis := range rate {
-				line.Rate[axis] = math.Hypot(real(rate[axis]), imag(rate[axis]))
-			}
-			out = append(out, line)
-		}
-		if all, ok := together(out[first:]); ok {
-			out = append(out, all)
-		}
-	}
-	return out, nil
-}
-
-// together adds lines as power when all have one frequency and there are two
-// or more.
-func together(rows []kinds.ResponseLine) (kinds.ResponseLine, bool) {
-	if len(rows) < 2 {
-		return kinds.ResponseLine{}, false
-	}
-	sum := rows[0]
-	sum.Rotor = "all"
-	var square [3]float64
-	for _, x := range rows {
-		if math.Abs(x.Frequency-sum.Frequency) > 1e-9*sum.Frequency {
-			return kinds.ResponseLine{}, false
-		}
-		for axis := range square {
-			square[axis] += x.Rate[axis] * x.Rate[axis]
-		}
-	}
-	for axis := range square {
-		sum.Rate[axis] = math.Sqrt(square[axis])
-	}
-	return sum, true
 }
 
 // shapes keeps operating shapes: at the frequencies asked for under the

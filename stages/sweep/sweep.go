@@ -26,7 +26,7 @@ var _ stage.Stage = Stage{}
 func (Stage) Describe() stage.Description {
 	frequency := stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
 	zero := 0.0
-	one := 1.0
+	one, less := 1.0, -1.0
 	d := stage.Description{
 		Name:  "sweep",
 		About: "predict the gyro rate that the rotors cause, over frequency",
@@ -46,8 +46,11 @@ twice that found with the gyroscopic moments at that very speed. A propeller is 
 as a disc: with two blades its tilt inertia changes as it turns, and blades that bend
 carry less of the gyroscopic moment; neither is in the model.
 
-Lines at hover come from the unbalance that each rotor's balance grade permits
-and from a thrust that varies at blade passing by an assumed share.`,
+Lines come from unbalance (what the balance grade of each rotor permits, or a
+given one: a force at the hub that turns with the rotor), from thrust and side
+force that vary at blade passing, and from torque ripple; all grow with the
+square of speed. They are given at the speed of the rotors, over all speeds,
+and spread over the speeds of a flight: what a recorder would see of it.`,
 		Arguments: []stage.Argument{
 			{Name: "modes", About: "modal basis from solve", Type: artifactOf("modes"), Required: true},
 			{Name: "properties", About: "properties from import", Type: artifactOf("properties"), Required: true},
@@ -62,6 +65,27 @@ and from a thrust that varies at blade passing by an assumed share.`,
 				Default: stage.Quantity{SI: 1e-9, Dimension: "moment density"}, Example: "1e-9 (N*m)2/Hz", Min: &zero},
 			{Name: "blade_share", About: "assumed amplitude of the thrust at blade passing, as a share of the thrust at hover",
 				Type: stage.Type{Kind: stage.Number}, Default: 0.01, Example: "0.01", Min: &zero, Max: &one},
+			{Name: "side_share", About: "assumed amplitude of the side force at blade passing, as a share of the thrust at hover",
+				Type: stage.Type{Kind: stage.Number}, Default: 0.0, Example: "0.005", Min: &zero, Max: &one},
+			{Name: "unbalance", About: "unbalance of every rotor; left out, what its balance grade permits",
+				Type: stage.Type{Kind: stage.Amount, Dimension: "unbalance", Unit: "g*mm"}, Example: "0.3 g*mm", Min: &zero},
+			{Name: "torque_ripple", About: "assumed amplitude of the motor's torque ripple at hover",
+				Type: stage.Type{Kind: stage.Amount, Dimension: "moment", Unit: "N*m"}, Default: stage.Quantity{SI: 0, Dimension: "moment"}, Example: "0.001 N*m", Min: &zero},
+			{Name: "ripple_order", About: "order of the torque ripple: a brushless motor has it at multiples of its poles and slots",
+				Type: stage.Type{Kind: stage.Number}, Default: 6.0, Example: "6", Above: &zero},
+			{Name: "correlation", About: "bands in which the broadband force of the rotors is correlated, by a coefficient from -1 to 1; elsewhere it is not",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "from", About: "lower end of the band", Type: frequency, Default: hertz(0), Example: "0 Hz", Min: &zero},
+					{Name: "to", About: "upper end of the band; left out, none", Type: frequency, Example: "80 Hz", Above: &zero},
+					{Name: "coefficient", About: "1 in step, 0 unrelated, negative against each other", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.5", Min: &less, Max: &one},
+				}}}, Example: `[{ from = "0 Hz", to = "80 Hz", coefficient = 0.8 }]`},
+			{Name: "speed_spread", About: "assumed standard deviation of rotor speed over a flight, as a share of the speed",
+				Type: stage.Type{Kind: stage.Number}, Default: 0.03, Example: "0.03", Above: &zero, Max: &one},
+			{Name: "speeds_flown", About: "speeds of the first rotor over a flight with the share of each; left out, that of this response",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "16000 rpm", Above: &zero},
+					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
+				}}}, Example: `[{ speed = "15000 rpm", share = 0.7 }, { speed = "19000 rpm", share = 0.3 }]`},
 			{Name: "rotor_speed", About: "speed of the spinning rotors: hover, none (no gyroscopic moments), or that of the first rotor, the others in the ratio of their hover speeds",
 				Type: stage.Type{Kind: stage.Text}, Default: "hover", Example: `"hover", "none", "16000 rpm"`},
 			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
@@ -100,6 +124,12 @@ type settings struct {
 	shapesAt       []float64
 	spinning       bool
 	speed          float64 // of the first rotor, rad/s; NaN at hover
+	unbalance      float64 // kg·m; NaN for the grade
+	sideShare      float64
+	ripple         float64 // N·m
+	rippleOrder    float64
+	spread         float64
+	flown          []flight
 }
 
 // mostFrequencies bounds the size of a response.
@@ -112,7 +142,16 @@ func read(a stage.Arguments) (settings, error) {
 		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
 		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"),
 	}
+	s.sideShare, s.ripple, s.rippleOrder, s.spread = a.Number("side_share"), a.SI("torque_ripple"), a.Number("ripple_order"), a.Number("speed_spread")
+	s.unbalance = math.NaN()
+	if a.Has("unbalance") {
+		s.unbalance = a.SI("unbalance")
+	}
+	s.flown = readFlown(a.List("speeds_flown"))
 	var err error
+	if s.source.Together, err = readTogether(a.List("correlation")); err != nil {
+		return s, err
+	}
 	if s.spinning, s.speed, err = readSpeed(a.Text("rotor_speed")); err != nil {
 		return s, err
 	}
@@ -149,6 +188,9 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	}
 	props, err := readProperties(call)
 	if err != nil {
+		return nil, err
+	}
+	if err := correlated(set, len(props.Rotors)); err != nil {
 		return nil, err
 	}
 	r, err := respond(ctx, basis, props, set, call.Threads, call.Report)

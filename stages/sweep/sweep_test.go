@@ -361,7 +361,7 @@ func TestShapesWhereAsked(t *testing.T) {
 func TestSummary(t *testing.T) {
 	m, p := frame()
 	_, out := run(t, m, p, nil)
-	if len(out.Summary) != 3 {
+	if len(out.Summary) != 4 {
 		t.Fatalf("%d tables", len(out.Summary))
 	}
 	for _, s := range out.Summary {

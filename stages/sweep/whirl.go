@@ -109,14 +109,11 @@ const whirlSteps = 40
 // whirl follows the natural motions over rotor speed. Frames whose rotors have
 // no hover speed, no highest speed or no polar inertia have no such table.
 func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis, residual bool, set settings, threads int) error {
-	highest, inertia := 0.0, 0.0
+	inertia := 0.0
 	for _, x := range f.rotors {
-		if !(x.HoverSpeed > 0) {
-			return nil
-		}
-		highest = max(highest, x.MaxSpeed*f.rotors[0].HoverSpeed/x.HoverSpeed)
 		inertia += x.PolarInertia
 	}
+	highest := f.highest()
 	if !(highest > 0 && inertia > 0) {
 		return nil
 	}

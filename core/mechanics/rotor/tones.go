@@ -38,8 +38,8 @@ func (t Tone) Amplitude(speed float64) float64 {
 	return t.Hover * speed * speed / (t.hoverSpeed * t.hoverSpeed)
 }
 
-// Names of the tones, in the order of Tones.
-var ToneNames = [4]string{"unbalance", "blade thrust", "blade side force", "torque ripple"}
+// ToneNames are the names of tones, in the order of Tones; blade passing is that of the thrust.
+var ToneNames = [4]string{"unbalance", "blade passing", "blade side force", "torque ripple"}
 
 // Tones lists the loads of a rotor that have an amplitude: unbalance, a force turning with the rotor; thrust
 // and side force at blade passing; torque ripple. The side force keeps an unknown direction in the plane of the
