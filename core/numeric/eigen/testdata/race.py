@@ -34,7 +34,7 @@ def resident():
 
 K, M = read("k"), read("m")
 before = resident()
-began = time.perf_counter()
+began, busy = time.perf_counter(), time.process_time()
 factor = 0.0
 if route == "plain":
     values = eigsh(K, k=modes, M=M, sigma=shift, which="LM")[0]
@@ -46,6 +46,7 @@ else:
 print(json.dumps({
     "Seconds": time.perf_counter() - began,
     "Factor": factor,
+    "CPU": time.process_time() - busy,
     "Values": sorted(values.tolist()),
     "Bytes": resource.getrusage(resource.RUSAGE_SELF).ru_maxrss * 1024 - before,
 }))
