@@ -11,7 +11,7 @@ import (
 // ResponseKind is what `sweep` makes of a modal basis and assumed sources.
 // Elastic modes are numbered from 1 in ascending frequency.
 var ResponseKind = artifact.Kind{
-	Name: "response", Version: 3,
+	Name: "response", Version: 4,
 	About: "gyro rate that forces and moments at the rotors make: transfer functions, spectra, peaks and the modes that make them, lines at hover, operating shapes",
 	Scalars: []artifact.Column{
 		col("from", artifact.Float, "Hz", "lower end of the sweep"),
@@ -90,6 +90,16 @@ var ResponseKind = artifact.Kind{
 			col("damping", artifact.FloatList, "1", "damping ratio"),
 			col("direction", artifact.FloatList, "1", "how rotors tilt: 1 round with their spin, -1 against it, 0 to and fro; NaN if none tilts"),
 		)},
+		{Name: "separations", About: "neighbouring natural motions at the speed of this response, by frequency", Columns: columns(
+			col("lower", artifact.Int, "", "elastic mode that the lower one is at rest"),
+			col("upper", artifact.Int, "", "the same of the upper one"),
+			col("at", artifact.Float, "Hz", "frequency of the lower one"),
+			col("gap", artifact.Float, "Hz", "distance"),
+			col("bandwidths", artifact.Float, "1", "the same in half-power bandwidths, the mean of both"),
+			axisCols("lower_", "(rad/s)^2/Hz", "highest density that the lower one makes alone under the broadband source"),
+			axisCols("upper_", "(rad/s)^2/Hz", "the same of the upper one"),
+			axisCols("amplification_", "1", "highest density of both together over the higher of those alone; NaN if neither is felt"),
+		)},
 		{Name: "map_speeds", About: "rotor speeds of the table map, ascending", Columns: columns(
 			col("speed", artifact.Float, "rad/s", "speed of the first rotor; the others keep the ratio they have at hover"),
 		)},
@@ -159,9 +169,19 @@ type Response struct {
 	Whirl    []ResponseWhirl
 	Critical []ResponseCritical
 
+	Separations []ResponseSeparation
+
 	MapSpeeds []float64
 	Orders    []ResponseOrder
 	Flown     [3][]float64 // nil when rotors have no speed
+}
+
+// ResponseSeparation is a pair of neighbours.
+type ResponseSeparation struct {
+	Lower, Upper           int
+	At, Gap, Bandwidths    float64
+	LowerAlone, UpperAlone [3]float64
+	Amplification          [3]float64
 }
 
 // ResponseOrder is one line over the speeds of the map.
@@ -306,6 +326,17 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 		Set("tilt", list(r.Rotors, func(x ResponseRotor) float64 { return x.Tilt })).
 		Set("equal", list(r.Rotors, func(x ResponseRotor) float64 { return x.Equal }))
 	a.Table("speeds").Set("speed", append([]float64{}, r.Speeds...))
+	t = a.Table("separations").
+		Set("lower", list(r.Separations, func(x ResponseSeparation) int64 { return int64(x.Lower) })).
+		Set("upper", list(r.Separations, func(x ResponseSeparation) int64 { return int64(x.Upper) })).
+		Set("at", list(r.Separations, func(x ResponseSeparation) float64 { return x.At })).
+		Set("gap", list(r.Separations, func(x ResponseSeparation) float64 { return x.Gap })).
+		Set("bandwidths", list(r.Separations, func(x ResponseSeparation) float64 { return x.Bandwidths }))
+	for axis, name := range AxisNames {
+		t.Set("lower_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.LowerAlone[axis] })).
+			Set("upper_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.UpperAlone[axis] })).
+			Set("amplification_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.Amplification[axis] }))
+	}
 	a.Table("map_speeds").Set("speed", append([]float64{}, r.MapSpeeds...))
 	t = a.Table("map").
 		Set("source", list(r.Orders, func(x ResponseOrder) string { return x.Source })).
@@ -423,6 +454,14 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	for i := range t.Rows() {
 		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i],
 			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i]})
+	}
+	t = a.Table("separations")
+	for i := range t.Rows() {
+		x := ResponseSeparation{Lower: int(t.Ints("lower")[i]), Upper: int(t.Ints("upper")[i]), At: t.Floats("at")[i], Gap: t.Floats("gap")[i], Bandwidths: t.Floats("bandwidths")[i]}
+		for axis, name := range AxisNames {
+			x.LowerAlone[axis], x.UpperAlone[axis], x.Amplification[axis] = t.Floats("lower_" + name)[i], t.Floats("upper_" + name)[i], t.Floats("amplification_" + name)[i]
+		}
+		r.Separations = append(r.Separations, x)
 	}
 	r.MapSpeeds = a.Table("map_speeds").Floats("speed")
 	t = a.Table("map")

@@ -51,7 +51,7 @@ func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome
 		o.Notes = append(o.Notes, fmt.Sprintf("rotor speed is assumed to stray by %.3g %% over a flight", 100*set.spread))
 	}
 	if len(r.Whirl) > 0 {
-		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r))
+		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r), separationTable(r))
 	}
 	return o
 }

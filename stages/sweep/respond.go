@@ -68,6 +68,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	if err := fleet.whirl(ctx, r, basis, residual, set, threads); err != nil {
 		return nil, err
 	}
+	fleet.separate(r, sys, set)
 	report.Progress("peaks", 0.8)
 	if err := findPeaks(r, basis, fleet, sys, plain, sp, set); err != nil {
 		return nil, err
@@ -151,7 +152,7 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, fleet *fleet, sys, plain *
 				x.Residual += p.Shares[i]
 			}
 		}
-		if poles == nil {
+		if poles == nil || !set.spinning {
 			for _, i := range p.Makers(leastShare) {
 				if number[i] > 0 {
 					if len(x.Modes) == 0 {

@@ -87,20 +87,46 @@ func (f *fleet) describe(r *kinds.Response, p *airframe.Properties) {
 	}
 }
 
-// poles gives the natural motions at the speeds of this response, and the
-// number of the mode that each is at rest; none without a diagram.
+// poles gives the natural motions at the speed of this response, by frequency,
+// and the number of the mode that each is at rest; none without a diagram.
 func (f *fleet) poles(set settings) (poles []forced.Pole, modes []int) {
-	if f.diagram == nil || !set.spinning {
+	if f.diagram == nil {
 		return nil, nil
 	}
-	k := at(f.diagram.Speeds, f.speeds[0])
+	k := 0
+	if set.spinning {
+		k = at(f.diagram.Speeds, f.speeds[0])
+	}
+	type motion struct {
+		pole forced.Pole
+		mode int
+	}
+	var all []motion
 	for i := range f.diagram.Lines {
 		l := &f.diagram.Lines[i]
 		if p, ok := l.Pole(k); ok {
-			poles, modes = append(poles, p), append(modes, l.Mode+1)
+			all = append(all, motion{p, l.Mode + 1})
 		}
 	}
+	sort.SliceStable(all, func(i, j int) bool { return all[i].pole.Frequency < all[j].pole.Frequency })
+	for _, x := range all {
+		poles, modes = append(poles, x.pole), append(modes, x.mode)
+	}
 	return poles, modes
+}
+
+// separate compares neighbours of which one lies within the sweep.
+func (f *fleet) separate(r *kinds.Response, sys *forced.System, set settings) {
+	poles, modes := f.poles(set)
+	for k := 1; k < len(poles); k++ {
+		a, b := poles[k-1], poles[k]
+		if b.Frequency < set.from || a.Frequency > set.to {
+			continue
+		}
+		s := sys.Separate(a, b, set.source)
+		r.Separations = append(r.Separations, kinds.ResponseSeparation{Lower: modes[k-1], Upper: modes[k], At: a.Frequency, Gap: s.Gap, Bandwidths: s.Bandwidths,
+			LowerAlone: s.Alone[0], UpperAlone: s.Alone[1], Amplification: s.Amplification})
+	}
 }
 
 // whirlSteps is the number of even steps from rest to the highest speed.

@@ -74,6 +74,11 @@ func TestModesMoveWithTheSpeedOfTheRotors(t *testing.T) {
 	if x := r.Rotors[0]; !r.Spinning || x.Speed != 1700 || x.Polar != 6e-6 || x.Tilt != 4e-6 || math.Abs(x.Equal-1.5*1700/(2*math.Pi)) > 1e-9 {
 		t.Errorf("rotor %+v", x)
 	}
+	// Neighbours at the speed of the response: modes 1 and 2 with their gap there.
+	if len(r.Separations) != 2 || r.Separations[0].Lower != 1 || r.Separations[0].Upper != 2 ||
+		math.Abs(r.Separations[0].Gap-(r.Whirl[1].Frequency[k]-r.Whirl[0].Frequency[k])) > 1e-9 || !(r.Separations[0].LowerAlone[0] > 0) {
+		t.Errorf("separations %+v", r.Separations)
+	}
 	titles := ""
 	for _, s := range out.Summary {
 		titles += s.Title + "\n"

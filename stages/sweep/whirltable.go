@@ -107,3 +107,27 @@ func critical(r *kinds.Response, mode int) string {
 	}
 	return strings.Join(parts, ", ")
 }
+
+// separationTable gives neighbouring modes, each pair on the axis on which the
+// quieter of the two is loudest.
+func separationTable(r *kinds.Response) stage.Section {
+	s := stage.Section{
+		Title: "Separation of neighbouring modes at the gyro",
+		Text: "the gap in Hz and in half-power bandwidths; the density that each makes alone, and what both together add to the louder one. " +
+			"By common practice modes closer than about 20 Hz add up in one peak",
+		Columns: []stage.Column{{Name: "modes"}, {Name: "at, Hz", Right: true}, {Name: "gap, Hz", Right: true}, {Name: "bandwidths", Right: true}, {Name: "axis"},
+			{Name: "lower, (deg/s)²/Hz", Right: true}, {Name: "upper, (deg/s)²/Hz", Right: true}, {Name: "together, dB", Right: true}},
+	}
+	for _, x := range r.Separations {
+		axis := 0
+		for k := range kinds.AxisNames {
+			if min(x.LowerAlone[k], x.UpperAlone[k]) > min(x.LowerAlone[axis], x.UpperAlone[axis]) {
+				axis = k
+			}
+		}
+		s.Rows = append(s.Rows, []string{fmt.Sprintf("%d, %d", x.Lower, x.Upper), fmt.Sprintf("%.1f", x.At), fmt.Sprintf("%.1f", x.Gap), fmt.Sprintf("%.1f", x.Bandwidths),
+			kinds.AxisNames[axis], fmt.Sprintf("%.2g", x.LowerAlone[axis]/degree/degree), fmt.Sprintf("%.2g", x.UpperAlone[axis]/degree/degree),
+			dash("%+.1f", 10*math.Log10(x.Amplification[axis]))})
+	}
+	return s
+}

@@ -33,24 +33,42 @@ func (s *System) Attribute(p *Peak, b Broadband, poles []Pole) ([]float64, error
 	}
 	made := make([]complex128, len(s.inputs))
 	for k, pole := range poles {
-		w := complex(2*math.Pi*pole.Frequency, 0) * complex(math.Sqrt(1-sq(pole.Damping)), pole.Damping)
-		norm := 0.0
-		for _, x := range pole.Shape {
-			norm += power(x)
-		}
-		scale := -2*w*complex(norm, 0) + s.gyroscopicForm(pole.Shape)
-		out := along(s.gyro[p.Axis], pole.Shape)
-		near := out / (scale * (complex(omega, 0) - w))
-		far := cmplx.Conj(out) / (-scale * (complex(omega, 0) + cmplx.Conj(w)))
-		for j, load := range s.load {
-			in := along(load, pole.Shape)
-			made[j] = complex(0, omega) * (near*cmplx.Conj(in) + far*in)
-		}
+		s.residue(pole, p.Axis).rates(omega, made)
 		for _, part := range parts {
 			shares[k] += part.weight * real(part.sum(made)*cmplx.Conj(part.sum(d.rates[p.Axis]))) / total
 		}
 	}
 	return shares, nil
+}
+
+// residue is what one pole makes of the transfer functions to one axis.
+type residue struct {
+	omega     complex128
+	near, far []complex128 // per input
+}
+
+func (s *System) residue(pole Pole, axis int) residue {
+	r := residue{omega: complex(2*math.Pi*pole.Frequency, 0) * complex(math.Sqrt(1-sq(pole.Damping)), pole.Damping)}
+	norm := 0.0
+	for _, x := range pole.Shape {
+		norm += power(x)
+	}
+	scale := -2*r.omega*complex(norm, 0) + s.gyroscopicForm(pole.Shape)
+	out := along(s.gyro[axis], pole.Shape)
+	for _, load := range s.load {
+		in := along(load, pole.Shape)
+		r.near, r.far = append(r.near, out*cmplx.Conj(in)/scale), append(r.far, -cmplx.Conj(out)*in/scale)
+	}
+	return r
+}
+
+// rates gives the gyro rate per unit of each input at ω.
+func (r residue) rates(omega float64, to []complex128) {
+	w := complex(omega, 0)
+	a, b := complex(0, omega)/(w-r.omega), complex(0, omega)/(w+cmplx.Conj(r.omega))
+	for j := range to {
+		to[j] = a*r.near[j] + b*r.far[j]
+	}
 }
 
 // gyroscopicForm is i x̄ᵀ G x, a real number.

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 	"sort"
+
+	"hushframe/core/mechanics/modal"
 )
 
 // Resonance is where a response needs close sampling.
@@ -12,14 +14,34 @@ type Resonance struct {
 	LossFactor float64
 }
 
-// Resonances lists the vectors in use with a frequency, residual ones left out.
+// Resonances lists where the response may peak: the poles of the system, with
+// its damping and its rotors as they spin, up to a fifth above the highest elastic mode. With a
+// Rate, or where the poles do not settle, it lists the elastic modes with their own
+// loss factors.
 func (s *System) Resonances() []Resonance {
 	var out []Resonance
+	highest := 0.0
 	for i, eta := range s.Damping() {
 		v := s.vectors[i]
-		if s.basis.Kinds[v] == "elastic" {
+		if s.basis.Kinds[v] == modal.Elastic {
 			out = append(out, Resonance{s.basis.Frequency[v], eta})
+			highest = max(highest, s.basis.Frequency[v])
 		}
+	}
+	if s.rate != nil {
+		return out
+	}
+	core, err := s.Core()
+	if err != nil {
+		return out
+	}
+	poles, err := core.Poles(s.momentum, 0, 1.2*highest)
+	if err != nil {
+		return out
+	}
+	out = out[:0]
+	for _, p := range poles {
+		out = append(out, Resonance{p.Frequency, 2 * p.Damping})
 	}
 	return out
 }

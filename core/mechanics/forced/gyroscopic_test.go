@@ -286,6 +286,90 @@ func TestPolesShareAPeak(t *testing.T) {
 	}
 }
 
+// However light the damping, and although spinning moves them, the grid finds
+// every pole as a peak: each has twelve samples within its half-power points.
+func TestNoPeakIsMissed(t *testing.T) {
+	for _, loss := range []float64{1e-2, 1e-4, 1e-6} {
+		b := frame(14, 3, 10)
+		for g := range b.Groups {
+			b.Groups[g].LossFactor = loss
+		}
+		s := build(t, b, Options{Gyroscopic: spinners(b, 0.3, -0.4)})
+		core, err := s.Core()
+		if err != nil {
+			t.Fatal(err)
+		}
+		poles, err := core.Poles(s.Momenta(), 25, 850)
+		if err != nil {
+			t.Fatal(err)
+		}
+		moved := false
+		for _, p := range poles {
+			near := math.Inf(1)
+			for _, f := range b.Frequency {
+				near = min(near, math.Abs(f-p.Frequency))
+			}
+			moved = moved || near > 2
+		}
+		if !moved {
+			t.Fatal("spinning moves nothing, which tests nothing")
+		}
+		grid := Grid(20, 900, 5, s.Resonances())
+		tr, err := s.Transfer(t.Context(), grid, 2)
+		if err != nil {
+			t.Fatal(err)
+		}
+		source := Broadband{Force: 1e-6, Moment: 1e-9}
+		peaks, err := s.Peaks(tr.Broadband(source), source, 1.05)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, p := range poles {
+			seen := false
+			for _, x := range peaks {
+				seen = seen || math.Abs(x.Frequency-p.Frequency) < (0.01+3*p.Damping)*p.Frequency
+			}
+			// A pole that a wider or stronger one covers makes no peak of its own.
+			if !seen && loss < 1e-3 {
+				t.Errorf("loss %g: no peak at the pole of %g Hz", loss, p.Frequency)
+			}
+		}
+	}
+}
+
+// Two equal modes: in step at one frequency they are twice as loud (four times in
+// power), far apart each is alone.
+func TestOverlappingModesAmplify(t *testing.T) {
+	pair := func(gap float64) Separation {
+		f := []float64{200 - gap/2, 200 + gap/2}
+		b := &modal.Basis{Kinds: allElastic(2), Frequency: f, Groups: proportional(f, 0.02), Sites: []modal.Site{
+			{Name: "r", Kind: "rotor", Motion: [][6]float64{{0, 0, 2}, {0, 0, 2}}},
+			{Name: "g", Kind: "gyro", Motion: [][6]float64{{0, 0, 0, 0, 30}, {0, 0, 0, 0, 30}}}}}
+		s := build(t, b, Options{})
+		core, err := s.Core()
+		if err != nil {
+			t.Fatal(err)
+		}
+		poles, err := core.Poles(nil, 1, 1000)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return s.Separate(poles[0], poles[1], Broadband{Force: 1e-6})
+	}
+	near, far := pair(0.02), pair(60)
+	if math.Abs(near.Amplification[1]-4) > 0.01 || math.Abs(far.Amplification[1]-1) > 0.1 || !math.IsNaN(near.Amplification[0]) {
+		t.Errorf("amplified by %v together and %v apart", near.Amplification, far.Amplification)
+	}
+	// 60 Hz in bandwidths of 0.02 · 200 Hz; the peak alone is S (ω φ θ / (η ω_n²))².
+	if math.Abs(far.Gap-60) > 0.01 || math.Abs(far.Bandwidths-15) > 0.01 {
+		t.Errorf("%g Hz, %g bandwidths", far.Gap, far.Bandwidths)
+	}
+	want := 1e-6 * sq(2*30/(0.02*2*math.Pi*200))
+	if got := near.Alone[0][1]; math.Abs(got-want) > 1e-3*want {
+		t.Errorf("alone %g, want %g", got, want)
+	}
+}
+
 func TestEigenvalues(t *testing.T) {
 	// The companion matrix of (z − 1)(z − 2i)(z + 3)(z − 4 − i) and a random matrix whose trace and
 	// determinant its eigenvalues must give.
