@@ -2,6 +2,7 @@ package rotor
 
 import (
 	"math"
+	"math/cmplx"
 	"sort"
 	"strings"
 	"testing"
@@ -31,21 +32,35 @@ type clamped struct {
 // rotor "tip" and as gyro.
 func (c clamped) basis(t testing.TB, modes int) *modal.Basis {
 	t.Helper()
+	k, m, keep, tip := c.matrices()
+	b, _ := reduced(t, k[0], m, keep, tip, modes)
+	return b
+}
+
+// matrices gives the stiffness, whole and of either half of the beam, the mass,
+// the unknowns that are free and the first of those at the tip.
+func (c clamped) matrices() (stiffness [3]*mat.SymDense, m *mat.SymDense, keep []int, tip int) {
 	n := 6 * (c.elements + 1)
-	k, m := mat.NewSymDense(n, nil), mat.NewSymDense(n, nil)
+	for g := range stiffness {
+		stiffness[g] = mat.NewSymDense(n, nil)
+	}
+	m = mat.NewSymDense(n, nil)
 	stiff, mass := make([]float64, element.Packed(beam.Unknowns)), make([]float64, element.Packed(beam.Unknowns))
 	beam.Matrices(c.section, c.length/float64(c.elements), stiff, mass)
 	for e := range c.elements {
 		for i := range beam.Unknowns {
 			for j := range i + 1 {
 				p, q := 6*e+i, 6*e+j
-				k.SetSym(p, q, k.At(p, q)+stiff[element.Packed(i)+j])
+				for _, k := range []*mat.SymDense{stiffness[0], stiffness[1+2*e/c.elements]} {
+					k.SetSym(p, q, k.At(p, q)+stiff[element.Packed(i)+j])
+				}
 				m.SetSym(p, q, m.At(p, q)+mass[element.Packed(i)+j])
 			}
 		}
 	}
 	// The centre of gravity moves by u + θ × (0, 0, h).
-	tip, h := 6*c.elements, c.above
+	tip = 6 * c.elements
+	h := c.above
 	move := [3][6]float64{{1, 0, 0, 0, h, 0}, {0, 1, 0, -h, 0, 0}, {0, 0, 1, 0, 0, 0}}
 	for i := range 6 {
 		for j := range i + 1 {
@@ -59,16 +74,15 @@ func (c clamped) basis(t testing.TB, modes int) *modal.Basis {
 			m.SetSym(tip+i, tip+j, m.At(tip+i, tip+j)+x)
 		}
 	}
-	var keep []int
 	for i := 6; i < n; i++ {
 		if !(c.bending && i%3 == 0) {
 			keep = append(keep, i)
 		}
 	}
-	return reduced(t, k, m, keep, tip, modes)
+	return stiffness, m, keep, tip
 }
 
-func reduced(t testing.TB, k, m *mat.SymDense, keep []int, tip, modes int) *modal.Basis {
+func reduced(t testing.TB, k, m *mat.SymDense, keep []int, tip, modes int) (*modal.Basis, *mat.Dense) {
 	t.Helper()
 	n := len(keep)
 	mk, kk := mat.NewSymDense(n, nil), mat.NewDense(n, n, nil)
@@ -123,7 +137,7 @@ func reduced(t testing.TB, k, m *mat.SymDense, keep []int, tip, modes int) *moda
 		rotor.Motion, gyro.Motion = append(rotor.Motion, motion), append(gyro.Motion, motion)
 	}
 	b.Sites = []modal.Site{rotor, gyro}
-	return b
+	return b, &phi
 }
 
 // whirl is a frequency with its direction.
@@ -368,6 +382,82 @@ func TestArmWithSpinningMotor(t *testing.T) {
 			got = append(got, list[k].frequency)
 		}
 		row.Check(t, 1, got...)
+	}
+}
+
+// With all modes of a small model the response is that of the full damped
+// equation [K + iΣ η_g K_g + iωG − ω²M] u = f, solved directly: two halves of
+// an arm with loss factors a hundred times apart, and a spinning motor at its tip.
+func TestModalResponseIsThatOfTheFullEquation(t *testing.T) {
+	c := clamped{section: beam.Rectangle(0.012, 0.005, 55e9, 0.3, 1550), length: 0.09, elements: 6, mass: 0.032, above: 0.01, inertia: [3]float64{4e-6, 4e-6, 6e-6}}
+	stiffness, mass, keep, tip := c.matrices()
+	b, phi := reduced(t, stiffness[0], mass, keep, tip, 0)
+	n := len(keep)
+	eta := [2]float64{0.3, 0.003}
+	for g := range eta {
+		k := mat.NewDense(n, n, nil)
+		for i, p := range keep {
+			for j, q := range keep {
+				k.Set(i, j, stiffness[1+g].At(p, q))
+			}
+		}
+		var half, full mat.Dense
+		half.Mul(phi.T(), k)
+		full.Mul(&half, phi)
+		b.Groups = append(b.Groups, modal.LossGroup{Name: "half", LossFactor: eta[g], Stiffness: full.RawMatrix().Data})
+	}
+	r := airframe.Rotor{Name: "tip", Axis: airframe.Vec{0, 0, 1}, Spin: -1, PolarInertia: 6e-6}
+	const speed = 2500.0
+	couplings, err := Couplings(b, []airframe.Rotor{r}, []float64{speed})
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := forced.New(b, forced.Options{Gyroscopic: couplings})
+	if err != nil {
+		t.Fatal(err)
+	}
+	frequency := []float64{20, 140, 311, 500, 740}
+	tr, err := s.Transfer(t.Context(), frequency, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for at, f := range frequency {
+		omega := 2 * math.Pi * f
+		// Real and imaginary parts as one real system.
+		a, sides := mat.NewDense(2*n, 2*n, nil), mat.NewDense(2*n, 6, nil)
+		for i, p := range keep {
+			for j, q := range keep {
+				re := stiffness[0].At(p, q) - omega*omega*mass.At(p, q)
+				im := eta[0]*stiffness[1].At(p, q) + eta[1]*stiffness[2].At(p, q)
+				switch { // H = −Jp Ω about z
+				case p == tip+3 && q == tip+4:
+					im -= omega * r.PolarInertia * speed
+				case p == tip+4 && q == tip+3:
+					im += omega * r.PolarInertia * speed
+				}
+				a.Set(i, j, re)
+				a.Set(n+i, n+j, re)
+				a.Set(i, n+j, -im)
+				a.Set(n+i, j, im)
+			}
+			if p >= tip {
+				sides.Set(i, p-tip, 1)
+			}
+		}
+		var u mat.Dense
+		if err := u.Solve(a, sides); err != nil {
+			t.Fatal(err)
+		}
+		for axis := range 3 {
+			row := n - 3 + axis
+			for j := range 6 {
+				want := complex(0, omega) * complex(u.At(row, j), u.At(n+row, j))
+				got := tr.Rate[axis][j][at]
+				if d := cmplx.Abs(got - want); d > 1e-6*cmplx.Abs(want) && d > 1e-9 {
+					t.Errorf("%g Hz, axis %d, component %d: %v, directly %v", f, axis, j, got, want)
+				}
+			}
+		}
 	}
 }
 
