@@ -112,7 +112,9 @@ func closing(r *run.Result, took time.Duration) string {
 func writeSection(out io.Writer, s stage.Section) {
 	fmt.Fprintf(out, "\n%s\n", s.Title)
 	if s.Text != "" {
-		fmt.Fprintf(out, "%s\n", s.Text)
+		for line := range strings.Lines(text.WrapSoft(s.Text, tableWidth(out)) + "\n") {
+			io.WriteString(out, strings.TrimRight(line, " \n")+"\n")
+		}
 	}
 	if len(s.Columns) == 0 {
 		return

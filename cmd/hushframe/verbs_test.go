@@ -273,14 +273,14 @@ func TestWideTable(t *testing.T) {
 	words := strings.TrimSpace(strings.Repeat("some words ", 12))
 	const width = 96
 	t.Setenv("COLUMNS", strconv.Itoa(width))
-	writeSection(&out, stage.Section{Title: "Wide", Columns: []stage.Column{{Name: "a"}, {Name: "number", Right: true}, {Name: "b"}},
+	writeSection(&out, stage.Section{Title: "Wide", Text: words, Columns: []stage.Column{{Name: "a"}, {Name: "number", Right: true}, {Name: "b"}},
 		Rows: [][]string{{words, "123456", words}, {"short", "7", "é"}}})
 	for line := range strings.Lines(out.String()) {
 		if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > width {
 			t.Errorf("%d columns: %s", n, line)
 		}
 	}
-	if n := strings.Count(out.String(), "words"); n != 24 || !strings.Contains(out.String(), "  123456  ") {
+	if n := strings.Count(out.String(), "words"); n != 36 || !strings.Contains(out.String(), "  123456  ") {
 		t.Errorf("%d words in\n%s", n, &out)
 	}
 }

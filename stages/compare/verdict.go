@@ -36,6 +36,12 @@ func verdict(c *kinds.Comparison, axis string, o kinds.SpectraPeak, observed *ki
 		return kinds.VerdictOrder, text + where
 	}
 	mode := structureAt(identified, axis, o)
+	var pair *kinds.ComparisonPair
+	for i, p := range c.Pairs {
+		if p.Axis == axis && p.Observed == o.Frequency {
+			pair = &c.Pairs[i]
+		}
+	}
 	switch {
 	case o.Frequency <= set.loop:
 		return kinds.VerdictLoop, fmt.Sprintf("below %.4g Hz, where the rate loop acts", set.loop)
@@ -51,13 +57,13 @@ func verdict(c *kinds.Comparison, axis string, o kinds.SpectraPeak, observed *ki
 		return order(masked, "where there is ")
 	case mode != nil:
 		return kinds.VerdictStructure, fmt.Sprintf("a mode was identified at %.1f Hz with %.1f %% damping", mode.Frequency, 100*mode.Damping)
+	case others != "" && pair != nil && pair.Confidence >= doubtful && !o.Narrow: // only orders that are not masked lie there
+		return kinds.VerdictStructure, fmt.Sprintf("goes with the predicted peak at %.1f Hz; %s may add to it", pair.Predicted, others)
 	case others != "" && (o.Narrow || narrowest(observed.Orders, o.Frequency) <= wideBand):
 		return order(others, "where there is ")
 	}
-	for _, p := range c.Pairs {
-		if p.Axis == axis && p.Observed == o.Frequency {
-			return kinds.VerdictStructure, fmt.Sprintf("goes with the predicted peak at %.1f Hz", p.Predicted)
-		}
+	if pair != nil {
+		return kinds.VerdictStructure, fmt.Sprintf("goes with the predicted peak at %.1f Hz", pair.Predicted)
 	}
 	switch {
 	case o.Narrow:
