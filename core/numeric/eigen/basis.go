@@ -49,8 +49,8 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 	z := b.tail[:count*n]
 	b.p.mass(z, w, count)
 	before := make([]float64, count)
-	for i := range count {
-		square := inner(w[i*n:][:n], z[i*n:][:n])
+	dense.Parallel(b.p.threads, count, func(i int) { before[i] = inner(w[i*n:][:n], z[i*n:][:n]) })
+	for i, square := range before {
 		if square < 0 && b.negative < 0 {
 			b.negative = mostNegative(w[i*n:][:n], z[i*n:][:n])
 		}
@@ -99,7 +99,7 @@ func (b *basis) project(w, z []float64, count, from int, c []float64) {
 // that the vectors once had, against which what is left of them is judged. It returns which were kept, the coefficients
 // r (kept by count), and whether some kept vector lost so much that its rounding errors matter.
 //
-// It does so by two Cholesky factorisations of the Gram matrix (Y. Yamamoto, Y. Nakatsukasa, Y. Yanagisawa, T. Fukaya,
+// It does so by one or two Cholesky factorisations of the Gram matrix (Y. Yamamoto, Y. Nakatsukasa, Y. Yanagisawa, T. Fukaya,
 // Roundoff error analysis of the CholeskyQR2 algorithm, Electron. Trans. Numer. Anal. 44, 2015), or vector by vector when
 // they are too dependent for that.
 func (b *basis) orthonormalise(w, z []float64, count int, before []float64) (keep []int, r []float64, shrunk bool) {
@@ -117,14 +117,31 @@ func (b *basis) orthonormalise(w, z []float64, count int, before []float64) (kee
 		return b.gramSchmidt(w, z, count, before)
 	}
 	b.divide(w, z, g, count)
+	first := transposed(g, count)
 	again := make([]float64, count*count)
 	dense.Gram(count, count, n, w, z, again, b.p.threads)
-	if _, ok = cholesky(again, count); !ok {
-		panic("eigen: orthonormal vectors have a singular Gram matrix")
+	if fromIdentity(again, count) < 1e-13 {
+		return keep, first, least < 1e-2
+	}
+	part, ok := cholesky(again, count)
+	if !ok || part < 0.9 {
+		// Rounding errors along null vectors of M have swamped the products.
+		keep, r, _ = b.gramSchmidt(w, z, count, slices.Repeat([]float64{1}, count))
+		return keep, product(r, first, len(keep), count, count), true
 	}
 	b.divide(w, z, again, count)
-	// w = Lᵀ·Q by rows is columns times the upper triangles of both.
-	return keep, product(transposed(again, count), transposed(g, count), count, count, count), least < 1e-2
+	return keep, product(transposed(again, count), first, count, count, count), least < 1e-2
+}
+
+// fromIdentity is the largest magnitude of an entry of a-1.
+func fromIdentity(a []float64, n int) (largest float64) {
+	for i, v := range a {
+		if i%(n+1) == 0 {
+			v--
+		}
+		largest = max(largest, math.Abs(v))
+	}
+	return largest
 }
 
 // divide replaces w and z by L⁻¹ times them.

@@ -5,6 +5,8 @@ import (
 	"fmt"
 	"math"
 	"slices"
+
+	"hushframe/core/numeric/dense"
 )
 
 // searchAll searches, compares with the count, and searches again in the complement while some are missing.
@@ -110,7 +112,7 @@ func (s *solver) finish(q *search) *pairs {
 		p.solve(y, size)
 		p.mass(my, y, size)
 		values, residuals := make([]float64, size), make([]float64, size)
-		for k := range size {
+		dense.Parallel(p.threads, size, func(k int) {
 			theta, residual := quotient(part[k*n:][:n], mx[k*n:][:n], y[k*n:][:n], my[k*n:][:n])
 			values[k], residuals[k] = p.shift+1/theta, residual
 			if rigid[from+k] {
@@ -119,7 +121,7 @@ func (s *solver) finish(q *search) *pairs {
 			if !(theta > 0) {
 				clear(y[k*n:][:n]) // no mass: rounding has made it a null vector of M
 			}
-		}
+		})
 		keep, _, _ := b.append(y, size, 0)
 		for _, k := range keep {
 			out.values = append(out.values, values[k])
