@@ -38,10 +38,7 @@ func responseSection(c *content) *section {
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))
-		if len(r.Whirl) > 0 {
-			s.table(spinTable(r))
-			s.table(whirlTable(r))
-		}
+		whirlSection(s, r)
 		shapeGallery(s, c)
 	}
 	return s

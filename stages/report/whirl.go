@@ -6,7 +6,85 @@ import (
 	"strings"
 
 	"hushframe/stages/kinds"
+	"hushframe/stages/report/draw"
 )
+
+// whirlSection fills in what changes with rotor speed.
+func whirlSection(s *section, r *kinds.Response) {
+	if len(r.Whirl) == 0 {
+		return
+	}
+	s.heading("Over rotor speed")
+	s.text("Natural frequencies of the damped frame with its rotors spinning. Rings are critical speeds, where an order of the rotors meets a mode.")
+	s.draw(whirlChart(r).Draw(), "")
+	s.table(spinTable(r))
+	s.table(whirlTable(r))
+	s.table(mapTable(r))
+	s.table(separationTable(r))
+}
+
+// whirlChart draws the modes within the sweep over rotor speed.
+func whirlChart(r *kinds.Response) *draw.Whirl {
+	w := &draw.Whirl{About: "Natural frequencies over rotor speed, with the lines of orders; the figures are in the table below.",
+		Fastest: r.Speeds[len(r.Speeds)-1] / rpm, Highest: r.To, Mark: draw.Mark{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}}
+	speeds := scaled(r.Speeds, 1/rpm)
+	for _, x := range r.Whirl {
+		w.Lines = append(w.Lines, draw.Curve{Name: fmt.Sprint(x.Mode), X: speeds, Y: x.Frequency})
+	}
+	seen := map[int]bool{}
+	for _, c := range r.Critical {
+		if len(c.Rotors) < len(r.Rotors) {
+			continue // of rotors with a speed of their own, for which the axis does not hold
+		}
+		w.Meets = append(w.Meets, draw.Peak{X: c.Speed / rpm, Y: c.Frequency})
+		if !seen[c.Order] {
+			seen[c.Order] = true
+			w.Orders = append(w.Orders, draw.Order{Slope: float64(c.Order) / 60, Label: fmt.Sprintf("order %d", c.Order)})
+		}
+	}
+	return w
+}
+
+// mapTable gives the speeds at which lines are loudest.
+func mapTable(r *kinds.Response) *table {
+	t := &table{Name: "lines-over-rotor-speed", Title: "Loudest lines over rotor speed",
+		About:   fmt.Sprintf("The largest peak amplitude of the gyro rate and the speed of the first rotor at which it is reached, rotors added as power. Only lines up to %.4g Hz, to which the modes carry.", r.ModesTo/1.5),
+		Columns: []column{{"source", "", false}, {"order", "", true}, {"roll", "deg/s", true}, {"roll at", "rpm", true}, {"pitch", "deg/s", true}, {"pitch at", "rpm", true}, {"yaw", "deg/s", true}, {"yaw at", "rpm", true}}}
+	for _, x := range r.Orders {
+		row := []cell{words(x.Source), digits(x.Order, 3)}
+		for axis := range x.Rate {
+			best, at := math.NaN(), math.NaN()
+			for k, a := range x.Rate[axis] {
+				if !(a <= best) && x.Order*r.MapSpeeds[k]/(2*math.Pi) <= r.ModesTo/1.5*(1+1e-9) {
+					best, at = a, r.MapSpeeds[k]
+				}
+			}
+			row = append(row, digits(best/degree, 3), number(at/rpm, 0))
+		}
+		t.Rows = append(t.Rows, row)
+	}
+	return t
+}
+
+// separationTable gives each pair of neighbours on the axis on which the
+// quieter is loudest.
+func separationTable(r *kinds.Response) *table {
+	t := &table{Name: "separation", Title: "Separation of neighbouring modes",
+		About: "The gap in Hz and in half-power bandwidths, the peak density that each makes alone, and what both together add to the louder. By common practice modes closer than about 20 Hz add up in one peak.",
+		Columns: []column{{"modes", "", false}, {"at", "Hz", true}, {"gap", "Hz", true}, {"gap in bandwidths", "", true}, {"axis", "", false},
+			{"lower alone", "(deg/s)²/Hz", true}, {"upper alone", "(deg/s)²/Hz", true}, {"together", "dB", true}}}
+	for _, x := range r.Separations {
+		axis := 0
+		for k := range kinds.AxisNames {
+			if min(x.LowerAlone[k], x.UpperAlone[k]) > min(x.LowerAlone[axis], x.UpperAlone[axis]) {
+				axis = k
+			}
+		}
+		t.Rows = append(t.Rows, []cell{words(fmt.Sprintf("%d, %d", x.Lower, x.Upper)), number(x.At, 1), number(x.Gap, 1), number(x.Bandwidths, 1), words(kinds.AxisNames[axis]),
+			digits(x.LowerAlone[axis]/square, 2), digits(x.UpperAlone[axis]/square, 2), signed(10*math.Log10(x.Amplification[axis]), 1)})
+	}
+	return t
+}
 
 // spinName says at what speed the rotors of a response turn.
 func spinName(r *kinds.Response) string {

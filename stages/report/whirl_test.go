@@ -16,7 +16,19 @@ func TestTablesOfSpinningRotors(t *testing.T) {
 		},
 		Critical: []kinds.ResponseCritical{{Order: 1, Rotors: []string{"a", "b"}, Speed: 930, Mode: 1}, {Order: 3, Rotors: []string{"a"}, Speed: 312, Mode: 1}, {Order: 1, Speed: 5, Mode: 2}},
 	}
-	for _, x := range []*table{spinTable(r), whirlTable(r)} {
+	r.MapSpeeds, r.ModesTo = []float64{1000, 2000}, 750
+	r.Orders = []kinds.ResponseOrder{{Source: "unbalance", Order: 1, Rate: [3][]float64{{degree, 2 * degree}, {3 * degree, degree}, {0, 0}}}}
+	r.Separations = []kinds.ResponseSeparation{{Lower: 1, Upper: 2, At: 148, Gap: 20, Bandwidths: 2, LowerAlone: [3]float64{1, 5, 0}, UpperAlone: [3]float64{9, 3, 0}, Amplification: [3]float64{1, 2, 1}}}
+	if row := mapTable(r).Rows[0]; row[2].Text != "2.00" || row[3].Text != "19099" || row[5].Text != "9549" {
+		t.Errorf("loudest lines read %+v", row)
+	}
+	if row := separationTable(r).Rows[0]; row[4].Text != "pitch" || row[7].Text != "+3.0" {
+		t.Errorf("separation reads %+v", row)
+	}
+	if c := whirlChart(r); len(c.Lines) != 2 || len(c.Orders) != 1 || len(c.Meets) != 1 {
+		t.Errorf("chart %+v", c)
+	}
+	for _, x := range []*table{spinTable(r), whirlTable(r), mapTable(r), separationTable(r)} {
 		for _, row := range x.Rows {
 			if len(row) != len(x.Columns) {
 				t.Errorf("%s: %d cells under %d columns", x.Title, len(row), len(x.Columns))
