@@ -32,14 +32,14 @@ const negligible = 1e-13
 
 // append makes count vectors w orthogonal to the basis and to one another and appends what is left of them. It returns
 // which were kept, the coefficients along the old vectors (old by count), and those along the new ones (kept by count):
-// w = V·c + Q·r up to what is negligible. w is used as scratch.
+// w = V·c + Q·r up to what is negligible. mw is M·w, or nil when it is not known. w is used as scratch.
 //
 // Projections are done twice ("twice is enough": W. Kahan in B. Parlett, The Symmetric Eigenvalue Problem): what one
 // leaves along the old vectors is their own want of orthogonality times the part it removed, and would grow from step to
 // step. The first is on the vectors from the given one on; when w has hardly anything along those before, as the
 // recurrence of Lanczos promises, the second serves them as well. Both are repeated when the vectors of the block turn
 // out to be nearly dependent.
-func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64) {
+func (b *basis) append(w, mw []float64, count, from int) (keep []int, c, r []float64) {
 	defer since(time.Now(), &b.p.stats.OrthogonalSeconds)
 	n, old := b.n, b.count
 	c = make([]float64, old*count)
@@ -47,7 +47,11 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 		b.tail = make([]float64, count*n)
 	}
 	z := b.tail[:count*n]
-	b.p.mass(z, w, count)
+	if mw == nil {
+		b.p.mass(z, w, count)
+	} else {
+		copy(z, mw)
+	}
 	before := make([]float64, count)
 	dense.Parallel(b.p.threads, count, func(i int) { before[i] = inner(w[i*n:][:n], z[i*n:][:n]) })
 	for i, square := range before {
@@ -60,6 +64,9 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 	b.project(w, z, count, 0, c)
 	keep, r, shrunk := b.orthonormalise(w, z, count, before)
 	for pass := 0; shrunk && pass < 3; pass++ {
+		if old == 0 {
+			b.p.mass(z, w, len(keep)) // the subtractions have left rounding errors in it
+		}
 		b.project(w, z, len(keep), 0, make([]float64, old*len(keep)))
 		var again []int
 		var r2 []float64
@@ -79,19 +86,21 @@ func (b *basis) append(w []float64, count, from int) (keep []int, c, r []float64
 // project subtracts from w its part along the vectors from the given one on, adds the coefficients to c and renews z =
 // M·w.
 func (b *basis) project(w, z []float64, count, from int, c []float64) {
-	if old := b.count - from; old > 0 && count > 0 {
-		v := b.v[from*b.n:]
-		g := make([]float64, old*count)
-		dense.Gram(old, count, b.n, v, z, g, b.p.threads)
-		t := make([]float64, len(g))
-		for i := range old {
-			for j := range count {
-				c[(from+i)*count+j] += g[i*count+j]
-				t[j*old+i] = g[i*count+j]
-			}
-		}
-		dense.AddCombined(count, old, b.n, -1, t, v, w, b.p.threads)
+	old := b.count - from
+	if old == 0 || count == 0 {
+		return
 	}
+	v := b.v[from*b.n:]
+	g := make([]float64, old*count)
+	dense.Gram(old, count, b.n, v, z, g, b.p.threads)
+	t := make([]float64, len(g))
+	for i := range old {
+		for j := range count {
+			c[(from+i)*count+j] += g[i*count+j]
+			t[j*old+i] = g[i*count+j]
+		}
+	}
+	dense.AddCombined(count, old, b.n, -1, t, v, w, b.p.threads)
 	b.p.mass(z, w, count)
 }
 

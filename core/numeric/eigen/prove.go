@@ -119,10 +119,11 @@ func (s *solver) finish(q *search) *pairs {
 				values[k] = 0
 			}
 			if !(theta > 0) {
-				clear(y[k*n:][:n]) // no mass: rounding has made it a null vector of M
+				clear(y[k*n:][:n])
+				clear(my[k*n:][:n]) // no mass: rounding has made it a null vector of M
 			}
 		})
-		keep, _, _ := b.append(y, size, 0)
+		keep, _, _ := b.append(y, my, size, 0)
 		for _, k := range keep {
 			out.values = append(out.values, values[k])
 			out.residuals = append(out.residuals, residuals[k])

@@ -41,7 +41,7 @@ func (s *solver) lockRigid() error {
 		w = append(w, r...)
 	}
 	b := newBasis(p, len(given))
-	keep, _, _ := b.append(w, len(given), 0)
+	keep, _, _ := b.append(w, nil, len(given), 0)
 	kept := len(keep)
 	if kept < len(given) {
 		s.res.Status.note("%d of the %d rigid vectors given depend on the others or have no mass", len(given)-kept, len(given))

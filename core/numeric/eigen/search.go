@@ -66,7 +66,7 @@ func (s *search) begin() bool {
 	fillRandom(x, s.seed)
 	s.p.mass(w, x, count)
 	s.p.solve(w, count)
-	keep, _, _ := s.b.append(w, count, 0)
+	keep, _, _ := s.b.append(w, nil, count, 0)
 	s.start, s.end = s.end, s.end+len(keep)
 	s.coupled = 0
 	return len(keep) > 0
@@ -111,7 +111,7 @@ func (s *search) step() error {
 	w := s.work[:count*n]
 	copy(w, s.b.tail) // M times the last block
 	s.p.solve(w, count)
-	keep, c, r := s.b.append(w, count, s.coupled)
+	keep, c, r := s.b.append(w, nil, count, s.coupled)
 	kept := len(keep)
 	s.status.Steps++
 	for i := range s.end {
