@@ -70,15 +70,15 @@ const (
 	reach         = 0.04 // distance within a cluster
 	leastOrder    = 20   // highest order of a record without modes
 	mostOrder     = 120
-	leastOrders   = 6    // parts of the orders that a cluster must have: one in six
-	enoughOrders  = 0.4  // share of the orders that a mode must have
-	members       = 8    // of a cluster whose errors are computed
-	sureFrequency = 0.02 // largest relative standard error of a mode's frequency
-	sureDamping   = 0.5  // and of its damping
-	steadyBelow   = 2.1  // kurtosis below which a band holds a steady line
-	analysedRate  = 2.5  // sample rate kept, over To
-	agrees        = 2.0  // combined standard errors within which two estimates agree
-	sameShape     = 0.8  // least agreement of shapes of one mode
+	leastOrders   = 6     // parts of the orders that a cluster must have: one in six
+	enoughOrders  = 0.4   // share of the orders that a mode must have
+	members       = 8     // of a cluster whose errors are computed
+	sureFrequency = 0.015 // largest relative standard error of a mode's frequency
+	sureDamping   = 0.5   // and of its damping
+	steadyBelow   = 2.1   // kurtosis below which a band holds a steady line
+	analysedRate  = 2.5   // sample rate kept, over To
+	agrees        = 2.0   // combined standard errors within which two estimates agree
+	sameShape     = 0.8   // least agreement of shapes of one mode
 )
 
 // Identify finds the modes of a record. It returns ErrDegenerate, or an error of spectrum.CrossMatrix for a record

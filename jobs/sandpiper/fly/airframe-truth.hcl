@@ -8,7 +8,7 @@
 
 airframe "sandpiper" {
   about       = "revision A as built"
-  loss_floor  = 0.003
+  loss_floor  = 0.006
 }
 
 input "arm_thickness" {

@@ -76,7 +76,7 @@ func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) (*plant, err
 	damp := mat.NewDense(n, n, nil)
 	total := len(b.Kinds)
 	for _, g := range b.Groups {
-		eta := g.LossFactor + p.Floor
+		eta := g.LossFactor // the floor is in it
 		for i := rigid; i < n; i++ {
 			for j := rigid; j < n; j++ {
 				damp.Set(i, j, damp.At(i, j)+eta*g.Stiffness[keep[i]*total+keep[j]]/math.Sqrt(pl.omega[i]*pl.omega[j]))
