@@ -6,8 +6,8 @@ import (
 	"hushframe/core/pipeline/artifact"
 )
 
-// Geometry is all that meshing needs of an airframe.
-var Geometry = artifact.Kind{
+// GeometryKind is all that meshing needs of an airframe.
+var GeometryKind = artifact.Kind{
 	Name: "geometry", Version: 1,
 	About: "plates as placed outlines, the patches on them, bolts and standoffs",
 	Tables: []artifact.TableSpec{
@@ -55,7 +55,7 @@ var Geometry = artifact.Kind{
 
 // EncodeGeometry makes the artifact of a geometry.
 func EncodeGeometry(g *airframe.Geometry) *artifact.Artifact {
-	a := artifact.New(Geometry)
+	a := artifact.New(GeometryKind)
 	n := len(g.Plates)
 	t := a.Table("plates")
 	t.Set("name", each(n, func(i int) string { return g.Plates[i].Name }))

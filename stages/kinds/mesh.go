@@ -6,8 +6,8 @@ import (
 	"hushframe/core/pipeline/artifact"
 )
 
-// Mesh is a whole airframe in elements.
-var Mesh = artifact.Kind{
+// MeshKind is a whole airframe in elements.
+var MeshKind = artifact.Kind{
 	Name: "mesh", Version: 1,
 	About: "nodes, triangles of the plates, beams of the standoffs, and the node sets of patches",
 	Tables: []artifact.TableSpec{
@@ -42,7 +42,7 @@ var Mesh = artifact.Kind{
 
 // EncodeMesh makes the artifact of a mesh.
 func EncodeMesh(m *mesh.Mesh) *artifact.Artifact {
-	a := artifact.New(Mesh)
+	a := artifact.New(MeshKind)
 	setVecs(a.Table("nodes"), "at", len(m.Nodes), func(i int) airframe.Vec { return m.Nodes[i] })
 	n := len(m.Parts)
 	t := a.Table("parts")

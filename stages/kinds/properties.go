@@ -23,8 +23,8 @@ func stiffnessCols(about string) []artifact.Column {
 // tensor are the element names of a symmetric 3×3 tensor, in order.
 var tensor = [6]string{"xx", "yy", "zz", "xy", "xz", "yz"}
 
-// Properties is all of an airframe that meshing does not need.
-var Properties = artifact.Kind{
+// PropertiesKind is all of an airframe that meshing does not need.
+var PropertiesKind = artifact.Kind{
 	Name: "properties", Version: 1,
 	About: "materials, joints, mounts, masses, rotors and gyro of an airframe",
 	Scalars: []artifact.Column{
@@ -93,7 +93,7 @@ var Properties = artifact.Kind{
 
 // EncodeProperties makes the artifact of the properties.
 func EncodeProperties(p *airframe.Properties) *artifact.Artifact {
-	a := artifact.New(Properties)
+	a := artifact.New(PropertiesKind)
 	a.Scalars = map[string]any{"gyro_body": p.Gyro.Body, "gyro_x": p.Gyro.At[0], "gyro_y": p.Gyro.At[1], "gyro_z": p.Gyro.At[2],
 		"declared_mass": p.DeclaredMass, "floor": p.Floor}
 
