@@ -17,6 +17,11 @@ func sampleSpectra() *Spectra {
 		Rotors:   []SpectraRotor{{Rotor: "fr", Column: "rpm", Blades: 3, Median: 1600, Low: 1500, High: 1700}},
 		Findings: []Finding{{What: "gaps", Where: "t", Extent: "one", Consequence: "none"}},
 		Orders:   []OrderBand{{Rotor: "fr", Order: 3, BladePassing: true, Low: 700, High: 800, Share: 0.98, Folded: true}},
+		ChosenBy: "throttle", CoherenceLimit: 0.3,
+		Pieces:    []SpectraPiece{{From: 8, To: 20, Samples: 60, Level: 0.4, Used: true, Why: "steady"}},
+		Cross:     []SpectraCross{{A: 0, B: 0, Real: []float64{1, 2, 3}, Imaginary: []float64{4, 5, 6}, Coherence: []float64{0.7, 0.8, 0.9}}},
+		SetPoints: []SpectraSetPoint{{Axis: 0, Column: "sp", Deviation: 2, Coherence: []float64{0.1, 0.2, 0.3}}},
+		Maps:      []SpectraMapRow{{Axis: 0, Against: MapThrottle, Unit: "1", Centre: 0.5, Low: 0.4, High: 0.6, Segments: 3, Step: 500, Density: []float64{1, 2, 3}}},
 	}
 }
 
@@ -48,6 +53,19 @@ func TestSpectraRefusesWhatDoesNotFit(t *testing.T) {
 	s.Axes[0].Density = nil
 	if _, err := DecodeSpectra(EncodeSpectra(s)); err == nil || !strings.Contains(err.Error(), "0 bins") {
 		t.Error(err)
+	}
+	for want, spoil := range map[string]func(*Spectra){
+		"axis 1 of 1": func(s *Spectra) { s.Cross[0].B = 1 },
+		"axis 3 of 1": func(s *Spectra) { s.Maps[0].Axis = 3 },
+		"2 bins":      func(s *Spectra) { s.Cross[0].Coherence = s.Cross[0].Coherence[:2] },
+		"1 bins":      func(s *Spectra) { s.SetPoints[0].Coherence = s.SetPoints[0].Coherence[:1] },
+		"no width":    func(s *Spectra) { s.Maps[0].Step = 0 },
+	} {
+		s = sampleSpectra()
+		spoil(s)
+		if _, err := DecodeSpectra(EncodeSpectra(s)); err == nil || !strings.Contains(err.Error(), want) {
+			t.Errorf("%s: %v", want, err)
+		}
 	}
 }
 

@@ -9,8 +9,8 @@ import (
 // SpectraKind is what `record` makes of a recording.
 var SpectraKind = artifact.Kind{
 	Name:    "spectra",
-	Version: 2,
-	About:   "Welch spectra of a recording per axis, with their peaks, bounds, and the bands of the rotor orders",
+	Version: 3,
+	About:   "Welch spectra of a recording per axis, with their peaks, bounds, maps and coherence, and the bands of the rotor orders",
 	Scalars: []artifact.Column{
 		{Name: "rate", Type: artifact.Float, Unit: "Hz", About: "samples per second between gaps"},
 		{Name: "step", Type: artifact.Float, Unit: "Hz", About: "width of a bin; bin k lies at k times this"},
@@ -29,6 +29,8 @@ var SpectraKind = artifact.Kind{
 		{Name: "gaps", Type: artifact.Int, About: "gaps within those times"},
 		{Name: "missing", Type: artifact.Int, About: "samples missing in the gaps"},
 		{Name: "jitter", Type: artifact.Float, Unit: "1", About: "root mean square deviation of a step, over the step"},
+		{Name: "chosen_by", Type: artifact.Text, About: "what the pieces were chosen by: window, rotor speed, throttle, or empty where all is used"},
+		{Name: "coherence_limit", Type: artifact.Float, Unit: "1", About: "coherence that chance stays below at the level of the bounds; NaN with one average"},
 	},
 	Tables: []artifact.TableSpec{
 		{Name: "axes", About: "one row per axis", Columns: []artifact.Column{
@@ -79,6 +81,7 @@ var SpectraKind = artifact.Kind{
 			{Name: "share", Type: artifact.Float, Unit: "1", About: "share of the time the order spends in this band"},
 			{Name: "folded", Type: artifact.Truth, About: "lies above half the sample rate and appears mirrored here"},
 		}},
+		piecesTable, crossTable, setPointsTable, mapsTable,
 	},
 }
 
@@ -93,12 +96,19 @@ type Spectra struct {
 	From, To               float64
 	Samples, Gaps, Missing int
 	Jitter                 float64
+	ChosenBy               string
+	CoherenceLimit         float64
 
 	Axes     []SpectraAxis
 	Peaks    []SpectraPeak
 	Rotors   []SpectraRotor
 	Findings []Finding
 	Orders   []OrderBand
+
+	Pieces    []SpectraPiece
+	Cross     []SpectraCross
+	SetPoints []SpectraSetPoint
+	Maps      []SpectraMapRow
 }
 
 // Finding is something that is not as it should be with a recording.
@@ -164,6 +174,7 @@ func EncodeSpectra(s *Spectra) *artifact.Artifact {
 		"segment": int64(s.Segment), "overlap": int64(s.Overlap), "segments": int64(s.Segments), "freedom": s.Freedom,
 		"level": s.Level, "lower": s.Lower, "upper": s.Upper, "from": s.From, "to": s.To,
 		"samples": int64(s.Samples), "gaps": int64(s.Gaps), "missing": int64(s.Missing), "jitter": s.Jitter,
+		"chosen_by": s.ChosenBy, "coherence_limit": s.CoherenceLimit,
 	}
 	a.Table("axes").
 		Set("axis", list(s.Axes, func(x SpectraAxis) string { return x.Axis })).
@@ -201,6 +212,7 @@ func EncodeSpectra(s *Spectra) *artifact.Artifact {
 		Set("extent", list(s.Findings, func(x Finding) string { return x.Extent })).
 		Set("consequence", list(s.Findings, func(x Finding) string { return x.Consequence }))
 	setOrders(a.Table("orders"), s.Orders)
+	setDetail(a, s)
 	return a
 }
 
@@ -214,7 +226,7 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 		Segment: int(a.Int("segment")), Overlap: int(a.Int("overlap")), Segments: int(a.Int("segments")),
 		Freedom: a.Float("freedom"), Level: a.Float("level"), Lower: a.Float("lower"), Upper: a.Float("upper"),
 		From: a.Float("from"), To: a.Float("to"), Samples: int(a.Int("samples")), Gaps: int(a.Int("gaps")),
-		Missing: int(a.Int("missing")), Jitter: a.Float("jitter"),
+		Missing: int(a.Int("missing")), Jitter: a.Float("jitter"), ChosenBy: a.Text("chosen_by"), CoherenceLimit: a.Float("coherence_limit"),
 	}
 	t := a.Table("axes")
 	for i := range t.Rows() {
@@ -253,7 +265,7 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 		s.Findings = append(s.Findings, Finding{t.Texts("what")[i], t.Texts("where")[i], t.Texts("extent")[i], t.Texts("consequence")[i]})
 	}
 	s.Orders = orders(a.Table("orders"))
-	return s, nil
+	return s, s.detail(a)
 }
 
 func setOrders(t *artifact.Table, bands []OrderBand) {
