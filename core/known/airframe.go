@@ -65,8 +65,8 @@ func Airframe(size float64) (*mesh.Mesh, *airframe.Properties) {
 		p.Rotors = append(p.Rotors, airframe.Rotor{Name: names[i], Body: names[i], Hub: hub, Axis: airframe.Vec{0, 0, 1}, Blades: 3,
 			Spin: 1 - 2*(i%2), HoverSpeed: 1500, MaxSpeed: 3200, SpinningMass: 0.009, PolarInertia: 1e-6, Grade: 0.0063})
 	}
-	grommets := &airframe.Mount{Name: "grommets", Kind: "grommet", LossFactor: 0.2}
-	strap := &airframe.Mount{Name: "strap", Kind: "strap", LossFactor: 0.25}
+	grommets := &airframe.Mount{Name: "grommets", Kind: "grommet", Loss: [6]float64{0.2, 0.2, 0.2, 0.2, 0.2, 0.2}}
+	strap := &airframe.Mount{Name: "strap", Kind: "strap", Loss: [6]float64{0.25, 0.25, 0.25, 0.25, 0.25, 0.25}}
 	for i, c := range corners {
 		grommets.Points = append(grommets.Points, airframe.MountPoint{Point: airframe.Vec{c[0] * 0.009, c[1] * 0.008, 0.004},
 			Patch: "pad " + names[i], Stiffness: [6]float64{1.2e4, 1.2e4, 2.5e4}})

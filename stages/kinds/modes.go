@@ -8,7 +8,7 @@ import (
 
 // ModesKind is what `solve` makes of a mesh and properties.
 var ModesKind = artifact.Kind{
-	Name: "modes", Version: 3,
+	Name: "modes", Version: 4,
 	About: "modal basis of the free airframe (rigid-body, elastic and residual vectors, mass-normalised) and what each elastic mode is",
 	Scalars: []artifact.Column{
 		col("up_to", artifact.Float, "Hz", "every mode below this is in the basis"),
@@ -38,7 +38,8 @@ var ModesKind = artifact.Kind{
 		{Name: "groups", About: "stiffness of each part, joint group and mount in the basis; they add up to the modal stiffness", Columns: columns(
 			col("name", artifact.Text, "", "name"),
 			col("kind", artifact.Text, "", "part, joint or mount"),
-			col("loss_factor", artifact.Float, "1", "loss factor"),
+			col("loss_factor", artifact.Float, "1", "loss factor, floor included; where the law varies, the floor alone"),
+			lawCols(),
 			col("stiffness", artifact.FloatList, "rad^2/s^2", "n by n, row by row, symmetric"),
 		)},
 		{Name: "masses", About: "what carries mass: parts, then bodies", Columns: columns(
@@ -137,11 +138,12 @@ func EncodeModes(m *Modes) *artifact.Artifact {
 			return flat
 		}))
 	setVecs(t, "point", len(b.Sites), func(i int) airframe.Vec { return b.Sites[i].Point })
-	a.Table("groups").
+	t = a.Table("groups").
 		Set("name", list(b.Groups, func(x modal.LossGroup) string { return x.Name })).
 		Set("kind", list(b.Groups, func(x modal.LossGroup) string { return x.Kind })).
 		Set("loss_factor", list(b.Groups, func(x modal.LossGroup) float64 { return x.LossFactor })).
 		Set("stiffness", list(b.Groups, func(x modal.LossGroup) []float64 { return x.Stiffness }))
+	setLaws(t, len(b.Groups), func(i int) *airframe.Law { return &b.Groups[i].Law })
 	t = a.Table("masses").
 		Set("name", list(m.Masses, func(x MassRow) string { return x.Name })).
 		Set("kind", list(m.Masses, func(x MassRow) string { return x.Kind })).
@@ -271,6 +273,10 @@ func decodeBasis(a *artifact.Artifact, b *modal.Basis) error {
 	t = a.Table("groups")
 	for i := range t.Rows() {
 		g := modal.LossGroup{Name: t.Texts("name")[i], Kind: t.Texts("kind")[i], LossFactor: t.Floats("loss_factor")[i], Stiffness: t.FloatLists("stiffness")[i]}
+		var err error
+		if g.Law, err = getLaw(t, "modes", g.Kind+" "+g.Name, i); err != nil {
+			return err
+		}
 		if len(g.Stiffness) != n*n {
 			return malformed("modes", "group %s has a stiffness of %d numbers over %d vectors", g.Name, len(g.Stiffness), n)
 		}

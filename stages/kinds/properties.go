@@ -25,7 +25,7 @@ var tensor = [6]string{"xx", "yy", "zz", "xy", "xz", "yz"}
 
 // PropertiesKind is all of an airframe that meshing does not need.
 var PropertiesKind = artifact.Kind{
-	Name: "properties", Version: 1,
+	Name: "properties", Version: 2,
 	About: "materials, joints, mounts, masses, rotors and gyro of an airframe",
 	Scalars: []artifact.Column{
 		col("gyro_body", artifact.Text, "", "body that carries the gyro"),
@@ -75,7 +75,11 @@ var PropertiesKind = artifact.Kind{
 			col("mount", artifact.Text, "", "mount, empty when tied rigidly"),
 		)},
 		{Name: "mounts", About: "sets of springs between a body and patches", Columns: columns(
-			col("name", artifact.Text, "", "name"), col("kind", artifact.Text, "", "grommet, strap, foam, ..."), col("loss_factor", artifact.Float, "1", "hysteretic loss factor"),
+			col("name", artifact.Text, "", "name"), col("kind", artifact.Text, "", "grommet, strap, foam, ..."),
+			col("loss_factors", artifact.FloatList, "1", "of the components x, y, z, rx, ry, rz; where the law is fractional at its reference; tables and solids bring their own"),
+			lawCols(),
+			col("preload", artifact.Float, "N", "force it is held with at rest, 0 unknown; nothing is computed from it"),
+			col("origin", artifact.Text, "", "where the values come from"),
 		)},
 		{Name: "mount_points", About: "springs of the mounts, along airframe axes", Columns: columns(
 			col("mount", artifact.Text, "", "name of the mount"), vecCols("point", "m", "where it acts"), col("patch", artifact.Text, "", "patch it stands on"), stiffnessCols("stiffness"),
@@ -179,7 +183,10 @@ func EncodeProperties(p *airframe.Properties) *artifact.Artifact {
 	t = a.Table("mounts")
 	t.Set("name", each(len(mounts), func(i int) string { return mounts[i].Name }))
 	t.Set("kind", each(len(mounts), func(i int) string { return mounts[i].Kind }))
-	t.Set("loss_factor", each(len(mounts), func(i int) float64 { return mounts[i].LossFactor }))
+	t.Set("loss_factors", each(len(mounts), func(i int) []float64 { return append([]float64{}, mounts[i].Loss[:]...) }))
+	setLaws(t, len(mounts), func(i int) *airframe.Law { return &mounts[i].Law })
+	t.Set("preload", each(len(mounts), func(i int) float64 { return mounts[i].Preload }))
+	t.Set("origin", each(len(mounts), func(i int) string { return mounts[i].Origin }))
 	t = a.Table("mount_points")
 	t.Set("mount", each(len(points), func(i int) string { return points[i].mount }))
 	setVecs(t, "point", len(points), func(i int) airframe.Vec { return points[i].Point })
@@ -270,7 +277,14 @@ func DecodeProperties(a *artifact.Artifact) (*airframe.Properties, error) {
 	mounts := map[string]*airframe.Mount{}
 	t = a.Table("mounts")
 	for i := range t.Rows() {
-		m := &airframe.Mount{Name: t.Texts("name")[i], Kind: t.Texts("kind")[i], LossFactor: t.Floats("loss_factor")[i]}
+		m := &airframe.Mount{Name: t.Texts("name")[i], Kind: t.Texts("kind")[i], Preload: t.Floats("preload")[i], Origin: t.Texts("origin")[i]}
+		if copy(m.Loss[:], t.FloatLists("loss_factors")[i]) != len(m.Loss) || len(t.FloatLists("loss_factors")[i]) != len(m.Loss) {
+			return nil, malformed("properties", "mount %q has %d loss factors", m.Name, len(t.FloatLists("loss_factors")[i]))
+		}
+		var err error
+		if m.Law, err = getLaw(t, "properties", "mount "+m.Name, i); err != nil {
+			return nil, err
+		}
 		mounts[m.Name] = m
 	}
 	t = a.Table("mount_points")

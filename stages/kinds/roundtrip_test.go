@@ -43,7 +43,7 @@ func TestGeometryRoundTrip(t *testing.T) {
 }
 
 func TestPropertiesRoundTrip(t *testing.T) {
-	mount := &airframe.Mount{Name: "grommets", Kind: "grommet", LossFactor: 0.2, Points: []airframe.MountPoint{{Point: airframe.Vec{1, 2, 3}, Patch: "g1", Stiffness: [6]float64{1, 2, 3, 4, 5, 6}}}}
+	mount := &airframe.Mount{Name: "grommets", Kind: "grommet", Loss: [6]float64{0.1, 0.2, 0.3, 0.4, 0.5, 0.6}, Law: airframe.Law{Kind: airframe.Table, Reference: 3, Frequency: []float64{10, 20}, Storage: []float64{1, 1.5}, Loss: []float64{0.1, 0.2}, Order: 4, LossFactor: 5, Rise: 6, PeakAt: 7}, Preload: 8, Origin: "o", Points: []airframe.MountPoint{{Point: airframe.Vec{1, 2, 3}, Patch: "g1", Stiffness: [6]float64{1, 2, 3, 4, 5, 6}}}}
 	p := &airframe.Properties{
 		Materials: []airframe.Material{{Name: "m", E1: 1, E2: 2, Nu12: 3, G12: 4, G13: 5, G23: 6, Density: 7, LossFactor: 8, Isotropic: true, Typical: true, Scatter: 9, Origin: "o"}},
 		Plates:    []airframe.PlateProperties{{Plate: "top", Fibre: 0.1, Mass: 0.02, Plies: []airframe.Ply{{Material: "m", Thickness: 0.001, Angle: 0.3}, {Material: "m", Thickness: 0.002, Angle: -0.3}}}},

@@ -1,6 +1,7 @@
 package report
 
 import (
+	"fmt"
 	"math"
 	"sort"
 
@@ -58,7 +59,7 @@ func jointTable(p *airframe.Properties) *table {
 	t := &table{Name: "joints", Title: "Joints and mounts", About: "Forces in N/mm, moments in N·m/rad, in the frame of the bolt or, for mounts, along the airframe's axes per point.",
 		Columns: []column{{"name", "", false}, {"what", "", false}, {"points", "", true}, {"x", "N/mm", true}, {"y", "N/mm", true}, {"z", "N/mm", true},
 			{"about x", "N·m/rad", true}, {"about y", "N·m/rad", true}, {"about z", "N·m/rad", true}, {"loss factor", "", true}}}
-	add := func(name, what string, points int, k [6]float64, loss float64) {
+	add := func(name, what string, points int, k [6]float64, loss string) {
 		row := []cell{words(name), words(what), count(points)}
 		for i, x := range k {
 			switch {
@@ -72,21 +73,44 @@ func jointTable(p *airframe.Properties) *table {
 				row = append(row, digits(x, 3))
 			}
 		}
-		t.Rows = append(t.Rows, append(row, digits(loss, 2)))
+		t.Rows = append(t.Rows, append(row, words(loss)))
 	}
 	bolts := map[string]int{}
 	for _, b := range p.Bolts {
 		bolts[b.Joint]++
 	}
 	for _, j := range p.Joints {
-		add(j.Name, "joint", bolts[j.Name], j.Stiffness, j.LossFactor)
+		add(j.Name, "joint", bolts[j.Name], j.Stiffness, lossOf(j.LossFactor))
 	}
 	for _, b := range p.Bodies {
 		if b.Mount != nil && len(b.Mount.Points) > 0 {
-			add(b.Mount.Name, b.Mount.Kind+" under "+b.Name, len(b.Mount.Points), b.Mount.Points[0].Stiffness, b.Mount.LossFactor)
+			add(b.Mount.Name, b.Mount.Kind+" under "+b.Name, len(b.Mount.Points), b.Mount.Points[0].Stiffness, mountLoss(b.Mount))
 		}
 	}
 	return t
+}
+
+func lossOf(x float64) string { return fmt.Sprintf("%.2g", x) }
+
+// mountLoss gives the loss factor of a mount, or the range of those of its components, and its law.
+func mountLoss(m *airframe.Mount) string {
+	if m.Law.Kind == airframe.Table || m.Law.Kind == airframe.Solid {
+		return "by its " + string(m.Law.Kind)
+	}
+	low, high := math.Inf(1), 0.0
+	for c, k := range m.Points[0].Stiffness {
+		if k != 0 {
+			low, high = min(low, m.Loss[c]), max(high, m.Loss[c])
+		}
+	}
+	text := lossOf(low)
+	if high > low {
+		text += " to " + lossOf(high)
+	}
+	if m.Law.Varies() {
+		text += fmt.Sprintf(" at %.4g Hz", m.Law.Reference)
+	}
+	return text
 }
 
 func rotorTable(p *airframe.Properties) *table {

@@ -234,7 +234,7 @@ func sampleProperties() *airframe.Properties {
 		Bolts:     []airframe.BoltProperties{{Bolt: "b1", Mass: 0.0011, Joint: "clamp"}, {Bolt: "b2", Mass: 0.0011, Joint: "clamp"}},
 		Joints:    []airframe.Joint{{Name: "clamp", Stiffness: [6]float64{2e7, 2e7, math.Inf(1), 80, 80, math.Inf(1)}, LossFactor: 0.03}},
 		Bodies: []airframe.Body{{Name: "battery", Kind: "lump", Mass: 0.2, Centre: airframe.Vec{-0.01, 0, 0.05}, Inertia: [6]float64{4e-5, 1e-4, 1.2e-4}},
-			{Name: "stack", Kind: "gyro", Mass: 0.018, Centre: airframe.Vec{0.02, 0, 0.014}, Inertia: [6]float64{3e-6, 3e-6, 5e-6}, Mount: &airframe.Mount{Name: "grommets", Kind: "grommet", LossFactor: 0.2, Points: []airframe.MountPoint{{Stiffness: [6]float64{2e4, 2e4, 5e4}}}}}},
+			{Name: "stack", Kind: "gyro", Mass: 0.018, Centre: airframe.Vec{0.02, 0, 0.014}, Inertia: [6]float64{3e-6, 3e-6, 5e-6}, Mount: &airframe.Mount{Name: "grommets", Kind: "grommet", Loss: [6]float64{0.2, 0.2, 0.2}, Points: []airframe.MountPoint{{Stiffness: [6]float64{2e4, 2e4, 5e4}}}}}},
 		Gyro: airframe.Gyro{Body: "stack"},
 	}
 	for _, name := range []string{"post-1-lower-screw", "post-1-upper-screw", "post-2-lower-screw", "post-2-upper-screw"} {

@@ -90,9 +90,7 @@ func neutral(p *airframe.Properties) *airframe.Properties {
 	n.Bodies = slices.Clone(p.Bodies)
 	for i := range n.Bodies {
 		if m := n.Bodies[i].Mount; m != nil {
-			plain := *m
-			plain.LossFactor, plain.Kind = 0, ""
-			n.Bodies[i].Mount = &plain
+			n.Bodies[i].Mount = alike(m)
 		}
 	}
 	n.Rotors = slices.Clone(p.Rotors)
@@ -103,10 +101,22 @@ func neutral(p *airframe.Properties) *airframe.Properties {
 	return &n
 }
 
+// alike returns a mount that says of its damping only which components share it: these are a group of their
+// own among the modes.
+func alike(m *airframe.Mount) *airframe.Mount {
+	plain := airframe.Mount{Name: m.Name, Points: m.Points}
+	for k, class := range assembly.MountClasses(m) {
+		for _, c := range class {
+			plain.Loss[c] = float64(k)
+		}
+	}
+	return &plain
+}
+
 // complete fills in what depends on loss factors, rotor speeds and the arguments.
 func complete(m *kinds.Modes, f *assembly.Frame, p *airframe.Properties, set settings) {
 	m.SweptTo = set.sweptTo
-	m.Basis.Dampen(f.Loss, p.Floor)
+	m.Basis.Dampen(f.Loss, f.Laws, p.Floor)
 	m.Survey.Complete(m.Basis, p.Rotors, set.gapsFrom, set.sweptTo)
 }
 

@@ -87,10 +87,32 @@ type Body struct {
 
 // Mount is a set of springs between a body and patches.
 type Mount struct {
-	Name       string
-	Kind       string // "grommet", "strap", "foam", ...
-	Points     []MountPoint
-	LossFactor float64
+	Name   string
+	Kind   string // "grommet", "strap", "foam", ...
+	Points []MountPoint
+	// Loss are the loss factors of the components x, y, z, rx, ry, rz in airframe
+	// axes: with a constant law everywhere, with a fractional one at its
+	// reference. Tables and solids bring their own.
+	Loss [6]float64
+	// Law says how the stiffness of all components depends on frequency.
+	Law Law
+	// Preload is the force (N) it is held with at rest, 0 unknown. The stiffness
+	// is that under the preload; nothing is computed from it.
+	Preload float64
+	Origin  string // where the values come from
+}
+
+// Component gives the loss factor and the law of component c: one of them, for
+// a varying law brings its own loss.
+func (m *Mount) Component(c int) (loss float64, law Law) {
+	law = m.Law
+	switch law.Kind {
+	case Constant:
+		return m.Loss[c], Law{}
+	case Fractional:
+		law.LossFactor = m.Loss[c]
+	}
+	return 0, law
 }
 
 // MountPoint is one spring, acting at a point, along airframe axes.

@@ -17,8 +17,9 @@ type Frame struct {
 	Problem
 	// BodyOf[i] is the body of the problem for body i of the properties.
 	BodyOf []int
-	// Loss[g] is the loss factor of group g.
+	// Loss[g] is the loss factor of group g, Laws[g] how its stiffness depends on frequency.
 	Loss []float64
+	Laws []airframe.Law
 }
 
 // InputError blames something the airframe declares.
@@ -71,7 +72,7 @@ func (b *builder) group(kind, name string, loss float64) int {
 		return g
 	}
 	b.frame.Groups = append(b.frame.Groups, Group{Name: name, Kind: kind})
-	b.frame.Loss = append(b.frame.Loss, loss)
+	b.frame.Loss, b.frame.Laws = append(b.frame.Loss, loss), append(b.frame.Laws, airframe.Law{})
 	b.groups[kind+" "+name] = len(b.frame.Groups) - 1
 	return len(b.frame.Groups) - 1
 }
@@ -275,11 +276,13 @@ func (b *builder) links() error {
 	return nil
 }
 
+var componentNames = [6]string{"x", "y", "z", "rx", "ry", "rz"}
+
 // checkStiffness refuses negative and undefined components, and zero ones where all must resist.
 func checkStiffness(k [6]float64, all bool) error {
 	for c, v := range k {
 		if !(v >= 0) || (all && v == 0) {
-			return fmt.Errorf("stiffness of component %s is %g: it must be positive", [6]string{"x", "y", "z", "rx", "ry", "rz"}[c], v)
+			return fmt.Errorf("stiffness of component %s is %g: it must be positive", componentNames[c], v)
 		}
 	}
 	return nil
@@ -307,7 +310,13 @@ func (b *builder) bodies() error {
 		if name == "" {
 			name = x.Name
 		}
-		g := b.group(MountGroup, name, x.Mount.LossFactor)
+		if len(x.Mount.Points) == 0 {
+			return blame("mount %q", name, errors.New("it stands on nothing: give the places of its springs"))
+		}
+		groups, err := b.mountGroups(name, x.Mount)
+		if err != nil {
+			return blame("mount %q", name, err)
+		}
 		for _, point := range x.Mount.Points {
 			patch, ok := b.patchBody[point.Patch]
 			if !ok {
@@ -316,9 +325,13 @@ func (b *builder) bodies() error {
 			if err := checkStiffness(point.Stiffness, false); err != nil {
 				return blame("mount %q", name, err)
 			}
-			b.frame.Springs = append(b.frame.Springs, Spring{
-				Group: g, A: patch, B: at, Point: point.Point, Axes: Global, Stiffness: point.Stiffness,
-			})
+			for _, g := range groups {
+				k := [6]float64{}
+				for _, c := range g.components {
+					k[c] = point.Stiffness[c]
+				}
+				b.frame.Springs = append(b.frame.Springs, Spring{Group: g.group, A: patch, B: at, Point: point.Point, Axes: Global, Stiffness: k})
+			}
 		}
 	}
 	return nil

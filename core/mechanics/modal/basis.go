@@ -43,8 +43,20 @@ type Site struct {
 
 // LossGroup is the stiffness of one part, joint group or mount in the basis.
 type LossGroup struct {
-	Name       string
-	Kind       string // "part", "joint" or "mount"
+	Name string
+	Kind string // "part", "joint" or "mount"
+	// LossFactor is that of a group whose law is constant, the floor of the
+	// airframe included; where the law varies it brings its own loss and this is
+	// the floor alone.
 	LossFactor float64
-	Stiffness  []float64
+	// Law says how the stiffness depends on frequency; Stiffness is that at its
+	// reference, on which the frequencies of the basis rest.
+	Law       airframe.Law
+	Stiffness []float64
+}
+
+// At gives the complex ratio of the group's stiffness at f (Hz) to Stiffness:
+// 1 + iη where the law is constant.
+func (g *LossGroup) At(f float64) complex128 {
+	return g.Law.At(f) + complex(0, g.LossFactor)
 }

@@ -11,10 +11,10 @@ import (
 // worth is the share of the strongest strength on an axis from which a mode counts in gaps.
 const worth = 0.1
 
-// Dampen gives the groups of the basis their loss factors, in order, each with floor added.
-func (b *Basis) Dampen(loss []float64, floor float64) {
+// Dampen gives the groups of the basis their loss factors and laws, in order, each with floor added.
+func (b *Basis) Dampen(loss []float64, laws []airframe.Law, floor float64) {
 	for g := range b.Groups {
-		b.Groups[g].LossFactor = loss[g] + floor
+		b.Groups[g].LossFactor, b.Groups[g].Law = loss[g]+floor, laws[g]
 	}
 }
 
@@ -62,7 +62,7 @@ func (s *Survey) Complete(b *Basis, rotors []airframe.Rotor, from, to float64) {
 		omega := 2 * math.Pi * m.Frequency
 		m.Loss = 0
 		for _, g := range b.Groups {
-			m.Loss += g.LossFactor * g.Stiffness[m.Vector*n+m.Vector] / (omega * omega)
+			m.Loss += imag(g.At(m.Frequency)) * g.Stiffness[m.Vector*n+m.Vector] / (omega * omega)
 		}
 		force, moment := squares(m.Vector, hubs)
 		for axis, turn := range m.Rotation {

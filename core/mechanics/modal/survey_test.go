@@ -63,7 +63,7 @@ func build(t *testing.T, threads int) *quadrotor {
 		t.Fatal(err)
 	}
 	checkBasis(t, "quad", st, s)
-	st.Basis.Dampen(f.Loss, p.Floor)
+	st.Basis.Dampen(f.Loss, f.Laws, p.Floor)
 	var carriers []string
 	for _, g := range f.Groups {
 		carriers = append(carriers, g.Name)

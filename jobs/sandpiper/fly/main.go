@@ -139,7 +139,7 @@ func describe(pl *plant, p *airframe.Properties) account {
 	}
 	for _, b := range p.Bodies {
 		if b.Mount != nil {
-			parameters["mount "+b.Mount.Name] = map[string]any{"stiffness_of_each_N_m": b.Mount.Points[0].Stiffness, "points": len(b.Mount.Points), "loss_factor": b.Mount.LossFactor}
+			parameters["mount "+b.Mount.Name] = map[string]any{"stiffness_of_each_N_m": b.Mount.Points[0].Stiffness, "points": len(b.Mount.Points), "loss_factors": b.Mount.Loss}
 		}
 	}
 	a := account{

@@ -98,38 +98,6 @@ func (b *block) lump(mount string) Lump {
 	return l
 }
 
-func (b *block) mount(kind string) *Mount {
-	m := &Mount{
-		Part:       b.part,
-		Word:       "grommet",
-		Height:     b.amount("height", "length", notNegative).Value,
-		LossFactor: b.amount("loss_factor", "number", notNegative).Value,
-		Pad:        b.amount("pad", "length", positive),
-	}
-	if kind == "mount" {
-		m.Word = "mount"
-		if s := b.text("kind"); s != "" {
-			m.Word = s
-		}
-	}
-	b.need("places", `[["15 mm", "15 mm"], ...]`)
-	if v, at, ok := b.value("places"); ok {
-		m.Places = b.points("places", v, at)
-	}
-	b.need("stiffness", `["30 N/mm", "30 N/mm", "60 N/mm"]`)
-	dimensions := make([]string, 6)
-	for i := range dimensions {
-		dimensions[i] = stiffnessDimension(i)
-	}
-	k := b.amounts("stiffness", dimensions, 3, 6)
-	copy(m.Stiffness[:], k)
-	if k != nil {
-		b.checkSprings(k, len(m.Places), b.hcl.Body.Attributes["stiffness"].Expr.Range())
-	}
-	b.finish()
-	return m
-}
-
 // checkSprings refuses springs that leave the body loose: each direction needs stiffness, and one place without
 // rotational stiffness holds no rotation.
 func (b *block) checkSprings(k []float64, places int, at hcl.Range) {

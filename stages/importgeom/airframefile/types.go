@@ -197,10 +197,13 @@ type Lump struct {
 // Mount is a set of equal springs below a lump.
 type Mount struct {
 	Part
-	Word       string // the kind in the user's words
-	Places     []outline.Point
-	Height     float64
-	Stiffness  [6]float64
-	LossFactor float64
-	Pad        Opt
+	Word      string // the kind in the user's words
+	Places    []outline.Point
+	Height    float64
+	Stiffness [6]float64
+	Loss      [6]float64
+	Law       airframe.Law
+	Preload   float64
+	Origin    string
+	Pad       Opt
 }

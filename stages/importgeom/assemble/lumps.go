@@ -85,7 +85,7 @@ func (b *builder) lump(l *airframefile.Lump) *fault.Error {
 func (b *builder) mount(l *airframefile.Lump, plate int, owner string, side float64, up vec) (*airframe.Mount, *fault.Error) {
 	m := l.Mount
 	p := b.plates[plate]
-	out := &airframe.Mount{Name: l.Name, Kind: m.Word, LossFactor: m.LossFactor}
+	out := &airframe.Mount{Name: l.Name, Kind: m.Word, Loss: m.Loss, Law: m.Law, Preload: m.Preload, Origin: m.Origin}
 	foot := m.Pad.Or(defaultFoot)
 	if !m.Pad.Given {
 		b.assume(l.Part, "springs stand on footprints of %s", mm(defaultFoot))
