@@ -39,7 +39,7 @@ func pairModes(c *kinds.Comparison, modes *kinds.Modes, found *kinds.Identified,
 		c.ModePairs = append(c.ModePairs, kinds.ModePair{
 			Mode: s.numbers[pair.Predicted], Predicted: p.Frequency, Observed: o.Frequency, ObservedError: o.Error, Error: pair.Error,
 			Agreement: match.Agreement(p.Direction, o.Direction), PredictedDamping: p.Damping, ObservedDamping: o.Damping,
-			ObservedDampingError: o.DampingError, Confidence: pair.Confidence,
+			ObservedDampingError: o.DampingError, DampingRatio: ratio(p.Damping, o.Damping), NearLoop: o.Frequency < nearLoop*set.loop, Confidence: pair.Confidence,
 		})
 	}
 	full := func(d []float64) []float64 {

@@ -89,7 +89,8 @@ func pairAxis(c *kinds.Comparison, name string, predicted *kinds.Response, obser
 		c.Pairs = append(c.Pairs, kinds.ComparisonPair{
 			Axis: name, Predicted: p.Frequency, Observed: o.Frequency, ObservedError: o.FrequencyError, Error: pair.Error, Confidence: pair.Confidence,
 			PredictedDensity: p.Density, ObservedDensity: o.Density, PredictedDamping: p.Damping,
-			ObservedDamping: o.Damping, ObservedDampingError: o.DampingError, Modes: p.Modes,
+			ObservedDamping: o.Damping, ObservedDampingError: o.DampingError, DampingRatio: ratio(p.Damping, o.Damping),
+			NearLoop: o.Frequency < nearLoop*set.loop, Modes: p.Modes,
 		})
 	}
 	for _, i := range r.Predicted {
@@ -118,6 +119,14 @@ func pairAxis(c *kinds.Comparison, name string, predicted *kinds.Response, obser
 
 func alone(axis string, o kinds.SpectraPeak, reason string) kinds.ComparisonPeak {
 	return kinds.ComparisonPeak{Side: kinds.Observed, Axis: axis, Frequency: o.Frequency, Density: o.Density, Damping: o.Damping, Reason: reason}
+}
+
+// ratio of two damping ratios; NaN if either is not known.
+func ratio(predicted, observed float64) float64 {
+	if !(predicted > 0) || !(observed > 0) {
+		return math.NaN()
+	}
+	return predicted / observed
 }
 
 // pairedWith gives, by observed index, the frequency of the predicted partner; observedWith the reverse.

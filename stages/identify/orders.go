@@ -14,6 +14,8 @@ import (
 // orders is a record with what is known of the rotor orders in it.
 type orders struct {
 	record  identify.Record
+	before  identify.Record // the same before orders were taken out
+	turning []order.Rotor   // speeds by sample of all axes
 	bands   []identify.Band // in which a pole may be a line
 	seen    []kinds.OrderBand
 	removed []kinds.RemovedOrder
@@ -38,16 +40,20 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		}
 		out.record.Runs = append(out.record.Runs, channels)
 	}
-	if len(r.Plan.Rotors) == 0 || len(set.orders) == 0 {
+	out.before = out.record
+	if len(r.Plan.Rotors) == 0 {
 		return out, nil
 	}
-	var turning []order.Rotor
 	for i, c := range r.Plan.Rotors {
 		s := r.Data.Rotors[i].Cut(timing.Start, timing.End)
 		for k := range s.Values[0] {
 			s.Values[0][k] = math.Abs(s.Values[0][k]) / (2 * math.Pi)
 		}
-		turning = append(turning, order.Rotor{Name: c.Name, Speed: order.Follow(s.Time, s.Values[0], axes.Time)})
+		out.turning = append(out.turning, order.Rotor{Name: c.Name, Speed: order.Follow(s.Time, s.Values[0], axes.Time)})
+	}
+	turning := out.turning
+	if len(set.orders) == 0 {
+		return out, nil
 	}
 	// One Hz is fine beside the width of a band, and a line is as wide as the inverse of its span.
 	margin := 1.0

@@ -57,7 +57,7 @@ control changes what is seen near and below its bandwidth.`,
 			{Name: "loop_bandwidth", About: "frequency up to which the rate loop of the control is taken to act", Type: frequency,
 				Default: hertz(80), Example: `"80 Hz"`, Above: &zero},
 		}...),
-		Outputs: []stage.Output{{Name: "identified", Kind: "identified", About: "modes, stabilisation diagram, singular values, and the orders taken out"}},
+		Outputs: []stage.Output{{Name: "identified", Kind: "identified", About: "modes, stabilisation diagram, singular values, rotor speeds, where orders meet modes, and spectra with and without them"}},
 		Figures: []stage.Figure{
 			{Name: "modes", About: "number of modes", Type: whole},
 			{Name: "doubtful", About: "number of clusters of poles that are too uncertain, or not to be told from a line", Type: whole},
@@ -156,7 +156,10 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, gather.Explain(refuse(err), set.File)
 	}
-	content := collect(r, axes, timing, set, lines, found)
+	content, err := collect(r, axes, timing, set, lines, found)
+	if err != nil {
+		return nil, gather.Explain(refuse(err), set.File)
+	}
 	call.Report.Progress("write", -1)
 	if _, err := artifact.Write(call.Outputs["identified"], kinds.EncodeIdentified(content)); err != nil {
 		return nil, err
@@ -169,7 +172,7 @@ func refuse(err error) error {
 }
 
 // collect puts the findings into the form of the artifact.
-func collect(r *gather.Recording, axes gather.Series, timing recording.Timing, set settings, lines *orders, found *identify.Result) *kinds.Identified {
+func collect(r *gather.Recording, axes gather.Series, timing recording.Timing, set settings, lines *orders, found *identify.Result) (*kinds.Identified, error) {
 	x := &kinds.Identified{
 		From: set.from, To: set.to, Start: timing.Start, End: timing.End, Rate: timing.Rate, Samples: timing.Samples, Decimation: found.Decimation,
 		Rows: found.Rows, Order: found.Order, Span: lines.span, Step: found.Spectra.Step, Segments: found.Spectra.Segments,
@@ -199,7 +202,11 @@ func collect(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		}
 		x.Singular = append(x.Singular, density)
 	}
-	return x
+	x.Tracks = tracks(r, lines, axes.Time)
+	x.Crossings = crossings(x, lines.turning, set.orders)
+	var err error
+	x.Densities, err = densities(x, lines, found.Spectra.Settings)
+	return x, err
 }
 
 func variance(x []float64) float64 {

@@ -41,6 +41,8 @@ var ComparisonKind = artifact.Kind{
 			{Name: "predicted_damping", Type: artifact.Float, Unit: "1", About: "damping ratio; NaN if not known"},
 			{Name: "observed_damping", Type: artifact.Float, Unit: "1", About: "damping ratio from the width; NaN if not known"},
 			{Name: "observed_damping_error", Type: artifact.Float, Unit: "1", About: "standard error"},
+			{Name: "damping_ratio", Type: artifact.Float, Unit: "1", About: "predicted over observed damping; NaN if either is not known"},
+			{Name: "near_loop", Type: artifact.Truth, About: "the observed peak lies where the rate loop of the control still changes it"},
 			{Name: "modes", Type: artifact.IntList, About: "modes that make the predicted peak, the strongest first"},
 		}},
 		{Name: "unpaired", About: "peaks without a partner, by side, axis and frequency", Columns: []artifact.Column{
@@ -78,6 +80,8 @@ var ComparisonKind = artifact.Kind{
 			{Name: "predicted_damping", Type: artifact.Float, Unit: "1", About: "damping ratio"},
 			{Name: "observed_damping", Type: artifact.Float, Unit: "1", About: "damping ratio"},
 			{Name: "observed_damping_error", Type: artifact.Float, Unit: "1", About: "standard error"},
+			{Name: "damping_ratio", Type: artifact.Float, Unit: "1", About: "predicted over observed damping"},
+			{Name: "near_loop", Type: artifact.Truth, About: "the observed mode lies where the rate loop of the control still changes it"},
 			{Name: "confidence", Type: artifact.Float, Unit: "1", About: "0 to 1, as core/match states it"},
 		}},
 		{Name: "modes_alone", About: "modes without a partner, predicted first, by frequency", Columns: []artifact.Column{
@@ -136,6 +140,8 @@ type ModePair struct {
 	Error, Agreement                      float64
 	PredictedDamping                      float64
 	ObservedDamping, ObservedDampingError float64
+	DampingRatio                          float64
+	NearLoop                              bool
 	Confidence                            float64
 }
 
@@ -165,6 +171,8 @@ type ComparisonPair struct {
 	PredictedDensity, ObservedDensity     float64
 	PredictedDamping                      float64
 	ObservedDamping, ObservedDampingError float64
+	DampingRatio                          float64
+	NearLoop                              bool
 	Modes                                 []int
 }
 
@@ -207,6 +215,8 @@ func EncodeComparison(c *Comparison) *artifact.Artifact {
 		Set("predicted_damping", list(c.Pairs, func(x ComparisonPair) float64 { return x.PredictedDamping })).
 		Set("observed_damping", list(c.Pairs, func(x ComparisonPair) float64 { return x.ObservedDamping })).
 		Set("observed_damping_error", list(c.Pairs, func(x ComparisonPair) float64 { return x.ObservedDampingError })).
+		Set("damping_ratio", list(c.Pairs, func(x ComparisonPair) float64 { return x.DampingRatio })).
+		Set("near_loop", list(c.Pairs, func(x ComparisonPair) bool { return x.NearLoop })).
 		Set("modes", list(c.Pairs, func(x ComparisonPair) []int64 { return ints(x.Modes) }))
 	setPeaks(a.Table("unpaired"), c.Unpaired)
 	setPeaks(a.Table("masked"), c.Masked)
@@ -240,7 +250,8 @@ func DecodeComparison(a *artifact.Artifact) (*Comparison, error) {
 			ObservedError: t.Floats("observed_error")[i], Error: t.Floats("error")[i], Confidence: t.Floats("confidence")[i],
 			PredictedDensity: t.Floats("predicted_density")[i], ObservedDensity: t.Floats("observed_density")[i],
 			PredictedDamping: t.Floats("predicted_damping")[i], ObservedDamping: t.Floats("observed_damping")[i],
-			ObservedDampingError: t.Floats("observed_damping_error")[i], Modes: narrow(t.IntLists("modes")[i]),
+			ObservedDampingError: t.Floats("observed_damping_error")[i],
+			DampingRatio:         t.Floats("damping_ratio")[i], NearLoop: t.Truths("near_loop")[i], Modes: narrow(t.IntLists("modes")[i]),
 		})
 	}
 	c.Unpaired = peaks(a.Table("unpaired"))

@@ -64,6 +64,26 @@ var IdentifiedKind = artifact.Kind{
 			col("mean_square", artifact.Float, "SI^2", "of what was taken out"),
 		)},
 		{Name: "orders", About: "the bands in which rotor orders that are seen appear", Columns: SpectraKind.Table("orders").Columns},
+		{Name: "densities", About: "spectra before and after rotor orders were taken out, in the order of channels; the same where none was", Columns: columns(
+			col("axis", artifact.Text, "", "channel"),
+			col("before", artifact.FloatList, "SI^2/Hz", "one-sided density per bin of width step, from 0 Hz"),
+			col("after", artifact.FloatList, "SI^2/Hz", "the same without the orders"),
+		)},
+		{Name: "tracks", About: "rotor speeds over the time used; an order n lies at n times the speed over 2 pi", Columns: columns(
+			col("rotor", artifact.Text, "", "name"),
+			col("source", artifact.Text, "", "recorded, or followed in the signal"),
+			col("refined", artifact.Truth, "", "sharpened by the phase of its own orders"),
+			col("time", artifact.FloatList, "s", "on the time column, rising"),
+			col("speed", artifact.FloatList, "rad/s", "mean speed about that time; 0 where it stands or is not known"),
+		)},
+		{Name: "crossings", About: "where an order of a rotor meets a mode within the time used, by mode, order and rotor", Columns: columns(
+			col("mode", artifact.Int, "", "row of modes"),
+			col("rotor", artifact.Text, "", "name"),
+			col("order", artifact.Float, "1", "multiple of the rotor's speed"),
+			col("folded", artifact.Truth, "", "the order lies above half the sample rate and meets the mode only in the recording, not in the frame"),
+			col("speed", artifact.Float, "rad/s", "speed at which they meet"),
+			col("share", artifact.Float, "1", "share of the time the order spends within the half-power width of the mode"),
+		)},
 	},
 }
 
@@ -82,6 +102,38 @@ type Identified struct {
 	Singular [][]float64
 	Removed  []RemovedOrder
 	Orders   []OrderBand
+
+	Densities []IdentifiedDensity
+	Tracks    []RotorTrack
+	Crossings []OrderCrossing
+}
+
+// IdentifiedDensity is the density of one channel with and without the rotor orders.
+type IdentifiedDensity struct {
+	Axis          string
+	Before, After []float64
+}
+
+// The sources of a track.
+const (
+	TrackRecorded = "recorded"
+	TrackFollowed = "followed in the signal"
+)
+
+// RotorTrack is the speed of a rotor over time.
+type RotorTrack struct {
+	Rotor, Source string
+	Refined       bool
+	Time, Speed   []float64
+}
+
+// OrderCrossing is a meeting of an order with a mode.
+type OrderCrossing struct {
+	Mode         int
+	Rotor        string
+	Order        float64
+	Folded       bool
+	Speed, Share float64
 }
 
 // IdentifiedChannel is one channel.
@@ -169,6 +221,7 @@ func EncodeIdentified(x *Identified) *artifact.Artifact {
 		Set("order", list(x.Removed, func(r RemovedOrder) float64 { return r.Order })).
 		Set("mean_square", list(x.Removed, func(r RemovedOrder) float64 { return r.MeanSquare }))
 	setOrders(a.Table("orders"), x.Orders)
+	setTracks(a, x)
 	return a
 }
 
@@ -219,5 +272,5 @@ func DecodeIdentified(a *artifact.Artifact) (*Identified, error) {
 		x.Removed = append(x.Removed, RemovedOrder{t.Texts("axis")[i], t.Texts("rotor")[i], t.Floats("order")[i], t.Floats("mean_square")[i]})
 	}
 	x.Orders = orders(a.Table("orders"))
-	return x, nil
+	return x, readTracks(a, x)
 }

@@ -76,12 +76,12 @@ func TestComparisonRoundTrip(t *testing.T) {
 			Predicted: []float64{3, 4}, Observed: []float64{5, 6}}},
 		Pairs: []ComparisonPair{{Axis: "pitch", Predicted: 100, Observed: 99, ObservedError: 0.1, Error: 0.0101,
 			Confidence: 0.9, PredictedDensity: 1, ObservedDensity: 2, PredictedDamping: 0.01, ObservedDamping: 0.02,
-			ObservedDampingError: 0.003, Modes: []int{2, 1}}},
+			ObservedDampingError: 0.003, DampingRatio: 0.5, NearLoop: true, Modes: []int{2, 1}}},
 		Unpaired: []ComparisonPeak{{Side: Observed, Axis: "pitch", Frequency: 130, Density: 1, Damping: 0.02, Modes: []int{}, Reason: "none near"}},
 		Masked:   []ComparisonPeak{{Side: Predicted, Axis: "pitch", Frequency: 267, Density: 1, Damping: 0.02, Modes: []int{3}, Reason: "order 1"}},
 		Verdicts: []Verdict{{Axis: "pitch", Frequency: 130, Density: 1, Verdict: VerdictUnknown, Reason: "r"}},
 		ModePairs: []ModePair{{Mode: 4, Predicted: 100, Observed: 98, ObservedError: 0.2, Error: 0.02, Agreement: 0.99,
-			PredictedDamping: 0.01, ObservedDamping: 0.02, ObservedDampingError: 0.003, Confidence: 0.8}},
+			PredictedDamping: 0.01, ObservedDamping: 0.02, ObservedDampingError: 0.003, DampingRatio: 0.5, NearLoop: true, Confidence: 0.8}},
 		ModesAlone: []ModeAlone{{Side: Predicted, Mode: 5, Frequency: 120, Damping: 0.01, Direction: []float64{1, 0, 0}, Strength: 0.3, Reason: "none"}},
 		Orders:     []OrderBand{{Rotor: "fr", Order: 1, Low: 250, High: 280, Share: 0.98}},
 		Notes:      []string{"a note"},
@@ -110,6 +110,10 @@ func sampleIdentified() *Identified {
 		Singular: [][]float64{{1, 2, 3}, {0, 1, 0}},
 		Removed:  []RemovedOrder{{"roll", "fr", 1, 0.1}},
 		Orders:   []OrderBand{{Rotor: "fr", Order: 1, Low: 260, High: 270, Share: 0.9}},
+
+		Densities: []IdentifiedDensity{{"roll", []float64{1, 2, 3}, []float64{1, 1, 3}}, {"pitch", []float64{1, 2, 3}, []float64{1, 1, 3}}},
+		Tracks:    []RotorTrack{{"fr", TrackRecorded, true, []float64{8, 9}, []float64{1600, 1610}}},
+		Crossings: []OrderCrossing{{0, "fr", 1, true, 1600, 0.2}},
 	}
 }
 
@@ -130,10 +134,53 @@ func TestIdentifiedRoundTrip(t *testing.T) {
 		"direction": func(x *Identified) { x.Modes[0].Direction = []float64{1} },
 		"mode":      func(x *Identified) { x.Diagram[0].Mode = 1 },
 		"singular":  func(x *Identified) { x.Singular = x.Singular[:1] },
+		"density":   func(x *Identified) { x.Densities[0].After = nil },
+		"track":     func(x *Identified) { x.Tracks[0].Time = nil },
+		"crossing":  func(x *Identified) { x.Crossings[0].Mode = 1 },
 	} {
 		x := sampleIdentified()
 		spoil(x)
 		if _, err := DecodeIdentified(EncodeIdentified(x)); err == nil {
+			t.Errorf("a wrong %s is read", what)
+		}
+	}
+}
+
+func sampleFiltered() *Filtered {
+	return &Filtered{
+		Rate: 8000, Bandwidth: 40, From: 80, To: 900, Lag: 0.2, Delay: 8e-4, GroupDelay: 7e-4, Gain: 0.9, Target: 0.02, Chosen: true, Met: true,
+		Filters: []FilteredFilter{{"low-pass 120 Hz", FilterLowPass, 120, 0.7, 1, 2, 0.2, 8e-4, 7e-4, 0.9, []float64{3, 4}, []float64{1, 0.5}}},
+		Curves:  []FilteredCurve{{100, 1, 0.1, 1e-3}, {200, 0.5, 0.2, 1e-3}},
+		Axes: []FilteredAxis{{Axis: "roll", Observed: []float64{1, 2}, ObservedAfter: []float64{1, 1}, Predicted: []float64{3, 4}, PredictedAfter: []float64{3, 2},
+			ObservedRMS: 5, ObservedLeft: 4, PredictedRMS: 3, PredictedLeft: 2},
+			{Axis: "yaw", Observed: []float64{1, 2}, ObservedAfter: []float64{1, 1}, Predicted: []float64{}, PredictedAfter: []float64{}}},
+		Tried: []FilteredTrial{{"low-pass 120 Hz", 1, 0.2, 0.01, true}},
+		Notes: []string{"a note"},
+	}
+}
+
+func TestFilteredRoundTrip(t *testing.T) {
+	want := sampleFiltered()
+	a := EncodeFiltered(want)
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	got, err := DecodeFiltered(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !reflect.DeepEqual(got, want) {
+		t.Errorf("got %+v, want %+v", got, want)
+	}
+	for what, spoil := range map[string]func(*Filtered){
+		"power":    func(x *Filtered) { x.Filters[0].Power = nil },
+		"buys":     func(x *Filtered) { x.Filters[0].Buys = []float64{1} },
+		"observed": func(x *Filtered) { x.Axes[0].Observed = nil },
+		"after":    func(x *Filtered) { x.Axes[0].PredictedAfter = nil },
+	} {
+		x := sampleFiltered()
+		spoil(x)
+		if _, err := DecodeFiltered(EncodeFiltered(x)); err == nil {
 			t.Errorf("a wrong %s is read", what)
 		}
 	}

@@ -21,6 +21,8 @@ func setVerdicts(a *artifact.Artifact, c *Comparison) {
 		Set("predicted_damping", pair(func(x ModePair) float64 { return x.PredictedDamping })).
 		Set("observed_damping", pair(func(x ModePair) float64 { return x.ObservedDamping })).
 		Set("observed_damping_error", pair(func(x ModePair) float64 { return x.ObservedDampingError })).
+		Set("damping_ratio", pair(func(x ModePair) float64 { return x.DampingRatio })).
+		Set("near_loop", list(c.ModePairs, func(x ModePair) bool { return x.NearLoop })).
 		Set("confidence", pair(func(x ModePair) float64 { return x.Confidence }))
 	a.Table("modes_alone").
 		Set("side", list(c.ModesAlone, func(x ModeAlone) string { return x.Side })).
@@ -42,7 +44,8 @@ func decodeVerdicts(a *artifact.Artifact, c *Comparison) {
 		c.ModePairs = append(c.ModePairs, ModePair{
 			Mode: int(t.Ints("mode")[i]), Predicted: t.Floats("predicted")[i], Observed: t.Floats("observed")[i], ObservedError: t.Floats("observed_error")[i],
 			Error: t.Floats("error")[i], Agreement: t.Floats("agreement")[i], PredictedDamping: t.Floats("predicted_damping")[i],
-			ObservedDamping: t.Floats("observed_damping")[i], ObservedDampingError: t.Floats("observed_damping_error")[i], Confidence: t.Floats("confidence")[i],
+			ObservedDamping: t.Floats("observed_damping")[i], ObservedDampingError: t.Floats("observed_damping_error")[i],
+			DampingRatio: t.Floats("damping_ratio")[i], NearLoop: t.Truths("near_loop")[i], Confidence: t.Floats("confidence")[i],
 		})
 	}
 	t = a.Table("modes_alone")

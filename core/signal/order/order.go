@@ -46,6 +46,19 @@ func (b Band) Contains(f float64) bool { return b.Low <= f && f <= b.High }
 // Fold returns where a line at f Hz, not negative, appears when sampled at rate Hz: 0 to rate/2.
 func Fold(f, rate float64) float64 { return math.Abs(f - rate*math.Round(f/rate)) }
 
+// Meets returns the frequency in truth, of those that appear at f Hz when sampled at rate Hz, that is nearest to a line at
+// line Hz.
+func Meets(f, line, rate float64) float64 {
+	turn := math.Round(line/rate) * rate
+	best := f
+	for _, v := range []float64{turn - rate + f, turn - f, turn + f, turn + rate - f} {
+		if v > 0 && math.Abs(v-line) < math.Abs(best-line) {
+			best = v
+		}
+	}
+	return best
+}
+
 // Bands returns the bands of all rotors, in the order of the rotors, then of the orders, then by frequency. A rotor that
 // never turns has none.
 func Bands(rotors []Rotor, s Settings) []Band {
