@@ -20,6 +20,9 @@
 //	match      pairing of predicted and observed
 //	known      problems with known answers, for tests
 //
+// core/extension joins the two: the contracts of element types and recording
+// readers from outside, with the tables that cross between processes.
+//
 // Stages stand between: artifacts in, kernels called, artifacts out. One job,
 // followed from file to report, is told in DEVELOPERS.md.
 package core

@@ -7,7 +7,8 @@ import (
 )
 
 // TestWings holds the direction of imports: cmd and jobs over stages and
-// plugins over core, the wings of core apart, and HCL, gRPC and file formats
+// plugins over core, the wings of core apart and below the contracts that join
+// them, and HCL, gRPC and file formats
 // where they belong. core/known reads the reference rows for tests, and so is
 // the one kernel package that opens files.
 func TestWings(t *testing.T) {
@@ -15,7 +16,7 @@ func TestWings(t *testing.T) {
 	if err != nil {
 		t.Fatalf("go list: %v", err)
 	}
-	const pipeline = "hushframe/core/pipeline/"
+	const pipeline, extension = "hushframe/core/pipeline/", "hushframe/core/extension"
 	under := func(path string, roots ...string) bool {
 		for _, r := range roots {
 			if path == r || strings.HasPrefix(path, strings.TrimSuffix(r, "/")+"/") {
@@ -25,7 +26,7 @@ func TestWings(t *testing.T) {
 		return false
 	}
 	kernel := func(path string) bool {
-		return under(path, "hushframe/core") && !under(path, pipeline) && path != "hushframe/core"
+		return under(path, "hushframe/core") && !under(path, pipeline, extension) && path != "hushframe/core"
 	}
 	seen := 0
 	for _, line := range strings.Split(strings.TrimSpace(string(out)), "\n") {
@@ -39,6 +40,8 @@ func TestWings(t *testing.T) {
 				forbidden = "kernels know nothing of the pipeline"
 			case under(from, pipeline) && kernel(to):
 				forbidden = "the pipeline knows nothing of vibration"
+			case (kernel(from) || under(from, pipeline)) && under(to, extension):
+				forbidden = "the contracts of extensions stand above both wings"
 			case under(from, "hushframe/core") && under(to, "hushframe/stages", "hushframe/plugins", "hushframe/cmd", "hushframe/jobs"):
 				forbidden = "core is below stages, plugins and cmd"
 			case under(from, "hushframe/stages") && under(to, "hushframe/plugins", "hushframe/cmd", "hushframe/jobs"):

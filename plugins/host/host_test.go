@@ -26,7 +26,7 @@ import (
 func TestMain(m *testing.M) {
 	if serve.Started() {
 		misbehave(os.Args[1])
-		serve.Main(serve.Offer{Stages: testStages, Tools: []serve.Tool{doubler{}}})
+		serve.Main(serve.Offer{Stages: testStages, Tools: []stage.Tool{doubler{}}})
 	}
 	if host := os.Getenv("HUSHFRAME_TEST_HOST"); host != "" {
 		beHost(host)

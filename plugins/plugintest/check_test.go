@@ -140,7 +140,7 @@ func TestProcess(t *testing.T) {
 	want := `extension.exe is an extension for hushframe and does nothing on its own.
 It offers
   the stage "doubling": doubles beads
-Name it in a job, or put it in the folder of extensions.
+Put it in the folder "extensions" beside a job, or in yours, and pin it: hushframe extensions pin JOB.
 `
 	if string(out) != want || cmd.ProcessState.ExitCode() != 2 {
 		t.Errorf("exit %d, it says\n%s", cmd.ProcessState.ExitCode(), out)

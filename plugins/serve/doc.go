@@ -15,39 +15,64 @@
 package serve
 
 import (
-	"context"
 	"fmt"
 	"io"
 	"os"
 	"path/filepath"
+	"runtime/debug"
 
 	hclog "github.com/hashicorp/go-hclog"
 	plugin "github.com/hashicorp/go-plugin"
 	"google.golang.org/grpc"
 
+	"hushframe/core/extension"
 	"hushframe/core/pipeline/stage"
 	"hushframe/plugins/wire"
 )
 
-// Tool is an element type or a recording reader from outside.
-type Tool interface {
-	// Describe names kind ("element" or "reader"), name and arguments.
-	Describe() stage.Extension
-	// Call runs one method on a batch: in and out are Arrow files.
-	Call(ctx context.Context, request stage.ExtensionRequest) error
-}
-
 // Offer is all that one executable offers.
 type Offer struct {
-	Stages []stage.Stage
-	Tools  []Tool
+	// Version is that of the executable, such as "1.2.0"; left empty, the
+	// version of its main module, where the build states one.
+	Version  string
+	Stages   []stage.Stage
+	Elements []extension.Element
+	Readers  []extension.Reader
+	// Tools are offered by method, without the help of package extension.
+	Tools []stage.Tool
 }
 
 // Stages serves stages and ends the process.
 func Stages(stages ...stage.Stage) { Main(Offer{Stages: stages}) }
 
-// Tools serves element types and readers and ends the process.
-func Tools(tools ...Tool) { Main(Offer{Tools: tools}) }
+// Elements serves element types and ends the process.
+func Elements(elements ...extension.Element) { Main(Offer{Elements: elements}) }
+
+// Readers serves recording readers and ends the process.
+func Readers(readers ...extension.Reader) { Main(Offer{Readers: readers}) }
+
+// version is what the executable says of itself.
+func (o Offer) version() string {
+	if o.Version != "" {
+		return o.Version
+	}
+	if info, ok := debug.ReadBuildInfo(); ok && info.Main.Version != "(devel)" {
+		return info.Main.Version
+	}
+	return ""
+}
+
+// tools lists all that is called by method.
+func (o Offer) tools() []stage.Tool {
+	var all []stage.Tool
+	for _, e := range o.Elements {
+		all = append(all, extension.ElementTool(e))
+	}
+	for _, r := range o.Readers {
+		all = append(all, extension.ReaderTool(r))
+	}
+	return append(all, o.Tools...)
+}
 
 // Started reports whether a host started this process as an extension.
 func Started() bool {
@@ -82,11 +107,11 @@ func explain(w io.Writer, offer Offer) {
 		d := s.Describe()
 		fmt.Fprintf(w, "\n  the stage %q: %s", d.Name, d.About)
 	}
-	for _, t := range offer.Tools {
+	for _, t := range offer.tools() {
 		d := t.Describe()
 		fmt.Fprintf(w, "\n  the %s %q: %s", d.Kind, d.Name, d.About)
 	}
-	fmt.Fprint(w, "\nName it in a job, or put it in the folder of extensions.\n")
+	fmt.Fprint(w, "\nPut it in the folder \"extensions\" beside a job, or in yours, and pin it: hushframe extensions pin JOB.\n")
 }
 
 // watch calls gone when the pipe from the host ends.

@@ -84,11 +84,15 @@ func (s *server) Attach(_ context.Context, r *wire.AttachRequest) (*wire.AttachR
 func (s *server) Describe(context.Context, *wire.DescribeRequest) (*wire.DescribeReply, error) {
 	var stages []stage.Description
 	for _, x := range s.offer.Stages {
-		stages = append(stages, x.Describe())
+		d := x.Describe()
+		d.Version = s.offer.version()
+		stages = append(stages, d)
 	}
 	var tools []stage.Extension
-	for _, x := range s.offer.Tools {
-		tools = append(tools, x.Describe())
+	for _, x := range s.offer.tools() {
+		d := x.Describe()
+		d.Version = s.offer.version()
+		tools = append(tools, d)
 	}
 	r := &wire.DescribeReply{}
 	var err error
@@ -153,7 +157,7 @@ func (s *server) Cancel(_ context.Context, r *wire.CancelRequest) (*wire.CancelR
 
 // Relay calls a tool.
 func (s *server) Relay(ctx context.Context, r *wire.RelayRequest) (*wire.RelayReply, error) {
-	for _, t := range s.offer.Tools {
+	for _, t := range s.offer.tools() {
 		if d := t.Describe(); d.Kind == r.Kind && d.Name == r.Name {
 			_, err := guarded(func() (any, error) {
 				request, err := wire.DecodeRequest(r.RequestJson)

@@ -8,6 +8,8 @@
 //	unknowns        six per node, node by node: u_x, u_y, u_z (m), θ_x, θ_y, θ_z (rad). A fibre along
 //	                the normal turns by θ, so a point at height z moves in the plane by
 //	                (u_x + z θ_y, u_y - z θ_x); θ_z is the drilling rotation.
+//	points          what a solid element has in place of nodes with six unknowns: places above and below
+//	                the nodes of the triangle, with u_x, u_y, u_z each.
 //	packed          lower triangle of a symmetric matrix, row by row: entry (i, j), j ≤ i, at
 //	                i(i+1)/2 + j. Stiffness in N/m, N, N·m; mass in kg, kg·m, kg·m².
 //	kinds           shares of the strain energy: in-plane ½∫N·ε (with the drilling term), bending

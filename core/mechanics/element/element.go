@@ -44,10 +44,31 @@ type Description struct {
 	// Nodes is 3, corners counterclockwise seen against z, or 6, then the mid-side nodes of sides
 	// 0-1, 1-2 and 2-0. Mid-side nodes may lie off the chord in the plane: curved sides.
 	Nodes int
+	// Points, when there are any, carry the unknowns in place of the nodes: a solid element over the
+	// triangle. Neighbours share a point when they share its node and their heights are equal.
+	Points []Point
 }
 
-// Unknowns is the number of unknowns of one element.
-func (d Description) Unknowns() int { return d.Nodes * NodeUnknowns }
+// Point is where a solid element has unknowns: u_x, u_y, u_z (m) alone.
+type Point struct {
+	Node int // of the triangle
+	// Height is over the mid-surface in half thicknesses: -1 on the lower face, 1 on the upper.
+	Height float64
+}
+
+// PointUnknowns is the number of unknowns per point.
+const PointUnknowns = 3
+
+// Solid reports whether points carry the unknowns.
+func (d Description) Solid() bool { return len(d.Points) > 0 }
+
+// Unknowns is the number of unknowns of one element, node by node or point by point.
+func (d Description) Unknowns() int {
+	if d.Solid() {
+		return len(d.Points) * PointUnknowns
+	}
+	return d.Nodes * NodeUnknowns
+}
 
 // Batch is a set of elements of one type.
 type Batch struct {
@@ -57,6 +78,9 @@ type Batch struct {
 	// Section is the index into Sections of each element.
 	Section  []int32
 	Sections []laminate.Section
+	// Layups holds what each section is made of, from the lower face to the upper; angles are those of
+	// direction 1 in the element frame. A homogeneous plate is one ply.
+	Layups [][]laminate.Ply
 	// Threads bounds the goroutines of the call; 0 is one.
 	Threads int
 }

@@ -51,11 +51,25 @@ type Entry struct {
 
 // Write checks an artifact and writes it to an existing empty folder. It
 // returns the content hash. Equal artifacts give equal bytes.
-func Write(folder string, a *Artifact) (string, error) {
+func Write(folder string, a *Artifact) (string, error) { return write(folder, a, true) }
+
+// WriteUnsealed writes an artifact without hash and checksums, for a reader
+// that reads it at once.
+func WriteUnsealed(folder string, a *Artifact) error {
+	_, err := write(folder, a, false)
+	return err
+}
+
+func write(folder string, a *Artifact, sealed bool) (string, error) {
 	if err := a.Check(); err != nil {
 		return "", fault.New(fault.Internal, "%v", err).In("write artifact", a.Kind.Name)
 	}
-	m := a.manifest()
+	m, entryOf := a.manifest(), entryOf
+	if sealed {
+		m.Hash = a.Hash()
+	} else {
+		entryOf = func(data []byte) Entry { return Entry{Size: int64(len(data))} }
+	}
 	for _, spec := range a.Kind.Tables {
 		t := a.Tables[spec.Name]
 		data, err := EncodeTable(t)
@@ -141,9 +155,9 @@ func Seal(folder string, a *Artifact) (string, error) {
 	return m.Hash, m.write(folder)
 }
 
-// manifest gives the manifest without the entries of files.
+// manifest gives the manifest without hash and the entries of files.
 func (a *Artifact) manifest() *Manifest {
-	m := &Manifest{Kind: a.Kind.Name, Version: a.Kind.Version, Hash: a.Hash(),
+	m := &Manifest{Kind: a.Kind.Name, Version: a.Kind.Version,
 		Scalars: map[string]ManifestScalar{}, Tables: map[string]Entry{}, Files: map[string]Entry{}}
 	for _, s := range a.Kind.Scalars {
 		m.Scalars[s.Name] = ManifestScalar{Value: encodeScalar(a.Scalars[s.Name]), Unit: s.Unit}

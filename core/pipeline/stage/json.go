@@ -73,16 +73,21 @@ func (o *Outcome) UnmarshalJSON(data []byte) error {
 
 type plainRequest ExtensionRequest
 
-// MarshalJSON writes the arguments as EncodeValues does.
+// MarshalJSON writes arguments and request as EncodeValues does.
 func (r ExtensionRequest) MarshalJSON() ([]byte, error) {
 	arguments, err := EncodeValues(r.Arguments)
+	if err != nil {
+		return nil, err
+	}
+	request, err := EncodeValues(r.Request)
 	if err != nil {
 		return nil, err
 	}
 	return json.Marshal(struct {
 		plainRequest
 		Arguments json.RawMessage `json:"arguments"`
-	}{plainRequest(r), arguments})
+		Request   json.RawMessage `json:"request"`
+	}{plainRequest(r), arguments, request})
 }
 
 // UnmarshalJSON reads what MarshalJSON wrote.
@@ -90,12 +95,17 @@ func (r *ExtensionRequest) UnmarshalJSON(data []byte) error {
 	var w struct {
 		plainRequest
 		Arguments json.RawMessage `json:"arguments"`
+		Request   json.RawMessage `json:"request"`
 	}
 	if err := json.Unmarshal(data, &w); err != nil {
 		return err
 	}
 	*r = ExtensionRequest(w.plainRequest)
-	var err error
-	r.Arguments, err = DecodeValues(w.Arguments)
+	arguments, err := DecodeValues(w.Arguments)
+	if err != nil {
+		return err
+	}
+	r.Arguments = arguments
+	r.Request, err = DecodeValues(w.Request)
 	return err
 }

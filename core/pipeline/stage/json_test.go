@@ -27,7 +27,7 @@ func TestJSONRoundTrips(t *testing.T) {
 		Summary: []Section{{Title: "T", Text: "x", Columns: []Column{{"c", true}}, Rows: [][]string{{"1"}}}}}
 	var gotOutcome Outcome
 	roundTrip(t, outcome, &gotOutcome)
-	request := ExtensionRequest{Method: "m", Arguments: values, In: "i", Out: "o"}
+	request := ExtensionRequest{Method: "m", Arguments: values, Request: map[string]any{"columns": []any{"a"}}, In: "i", Out: "o", Threads: 2, Memory: 3}
 	var gotRequest ExtensionRequest
 	roundTrip(t, request, &gotRequest)
 

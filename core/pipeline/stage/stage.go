@@ -36,6 +36,8 @@ type Description struct {
 	Arguments []Argument `json:"arguments"`
 	Outputs   []Output   `json:"outputs"`
 	Figures   []Figure   `json:"figures,omitempty"`
+	// Version is that of the executable, for one from outside.
+	Version string `json:"version,omitempty"`
 	// Last marks a stage that receives the host's run artifact as the implicit
 	// input "run", and so runs after every requirement has been judged.
 	Last bool `json:"last,omitempty"`
@@ -59,6 +61,14 @@ type Argument struct {
 	Above *float64 `json:"above,omitempty"`
 	// Choices lists the only texts allowed, if not empty.
 	Choices []string `json:"choices,omitempty"`
+	// Extension is a kind of extension ("element" or "reader") whose names the
+	// text may be besides Choices.
+	Extension string `json:"extension,omitempty"`
+	// OptionsOf names another argument, a text. Where that one names an
+	// extension, or an entry of Variants, the value is an object of its options.
+	OptionsOf string `json:"options_of,omitempty"`
+	// Variants lists the options of each choice that comes with the stage.
+	Variants map[string][]Argument `json:"variants,omitempty"`
 }
 
 // TypeKind names the shape of a value.
@@ -207,8 +217,9 @@ type Services interface {
 	// folder and whether it was found. A folder with a half result is never
 	// returned.
 	Keep(ctx context.Context, key string, make func(folder string) error) (folder string, found bool, err error)
-	// Element runs one batch of an element type from outside: in and out are
-	// Arrow files in the scratch folder. The name is that used in the job.
+	// Element runs one method of an element type from outside: in and out are
+	// folders of Arrow files in the scratch folder. The name is that used in
+	// the job. Package core/extension makes the calls.
 	Element(ctx context.Context, name string, request ExtensionRequest) error
 	// Reader runs a recording reader from outside in the same way.
 	Reader(ctx context.Context, name string, request ExtensionRequest) error
@@ -220,11 +231,26 @@ type Services interface {
 type ExtensionRequest struct {
 	// Method is a method of the extension kind, such as "matrices" or "read".
 	Method string `json:"method"`
-	// Arguments are constant values.
-	Arguments map[string]any `json:"arguments,omitempty"`
-	// In and Out are paths of Arrow files.
+	// Arguments are the options of the job, checked, defaults filled.
+	Arguments Arguments `json:"arguments,omitempty"`
+	// Request holds what the method needs besides.
+	Request map[string]any `json:"request,omitempty"`
+	// In is the folder or file that the method reads, Out an empty folder for
+	// what it writes; absolute paths.
 	In  string `json:"in,omitempty"`
 	Out string `json:"out,omitempty"`
+	// Threads and Memory (bytes, 0 for no limit) are the share of the step on
+	// whose behalf the call is made. The host fills them in.
+	Threads int   `json:"threads,omitempty"`
+	Memory  int64 `json:"memory,omitempty"`
+}
+
+// Tool is an element type or recording reader as it is called: by method.
+type Tool interface {
+	// Describe names kind ("element" or "reader"), name and arguments.
+	Describe() Extension
+	// Call runs one method; what it needs and gives lies in Arrow files.
+	Call(ctx context.Context, request ExtensionRequest) error
 }
 
 // Extension is an element type or reader that can be reached.
@@ -233,5 +259,7 @@ type Extension struct {
 	Name      string     `json:"name"`
 	About     string     `json:"about"`
 	Arguments []Argument `json:"arguments,omitempty"`
-	Hash      string     `json:"hash"` // SHA-256 of its executable, empty when in process
+	// Version is that of the executable.
+	Version string `json:"version,omitempty"`
+	Hash    string `json:"hash,omitempty"` // SHA-256 of its executable, empty when in process
 }
