@@ -129,7 +129,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, err
 	}
 	call.Report.Progress("read", -1)
-	r, err := gather.Load(ctx, call.Files, set.Settings)
+	r, err := gather.Load(ctx, call, set.Settings)
 	if err != nil {
 		return nil, err
 	}

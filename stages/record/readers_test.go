@@ -70,7 +70,7 @@ func TestReadersAgree(t *testing.T) {
 	}
 	_, _, err = run(t, folder, stage.Arguments{"file": "a.csv", "reader": "wav"})
 	var f *fault.Error
-	if !errors.As(err, &f) || f.Argument != "reader" || !strings.Contains(f.Remedy, `"auto", "delimited", "wave", "arrow", "flat"`) {
+	if !errors.As(err, &f) || f.Argument != "reader" || !strings.Contains(f.Remedy, `did you mean "wave"?`) {
 		t.Errorf("%v", err)
 	}
 	if _, _, err = run(t, folder, stage.Arguments{"file": "a.bin"}); !errors.As(err, &f) || !strings.Contains(f.Text, "this is not text") {

@@ -19,6 +19,11 @@ import (
 
 type silent struct{}
 
+// alone reaches no extension.
+type alone struct{ stage.Services }
+
+func (alone) Extensions(context.Context) ([]stage.Extension, error) { return nil, nil }
+
 func (silent) Progress(string, float64)        {}
 func (silent) Log(stage.Level, string, ...any) {}
 
@@ -32,7 +37,7 @@ func run(t testing.TB, folder string, arguments stage.Arguments) (*kinds.Spectra
 	}
 	out := t.TempDir()
 	o, err := Stage{}.Run(context.Background(), &stage.Call{
-		Arguments: arguments, Outputs: map[string]string{"spectra": out}, Files: stage.NewFiles(folder), Threads: 1, Report: silent{},
+		Arguments: arguments, Outputs: map[string]string{"spectra": out}, Files: stage.NewFiles(folder), Threads: 1, Report: silent{}, Services: alone{},
 	})
 	if err != nil {
 		if left, _ := os.ReadDir(out); len(left) > 0 {

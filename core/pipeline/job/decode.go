@@ -158,13 +158,13 @@ func (d *decoder) text(v cty.Value, p at, a stage.Argument, t stage.Type) any {
 		d.wrong(p.rng, "Empty path", "%s takes %s, relative to the folder of the job file, but this is empty", p.name, describeType(t))
 		return nil
 	}
-	if len(a.Choices) > 0 {
-		for _, c := range a.Choices {
+	if choices := d.scope.choices(a); len(choices) > 0 {
+		for _, c := range choices {
 			if c == s {
 				return s
 			}
 		}
-		d.wrong(p.rng, "Not a choice", "%s cannot be %s%s", p.name, short(strconv.Quote(s)), suggest(s, a.Choices, "it is one of"))
+		d.wrong(p.rng, "Not a choice", "%s cannot be %s%s", p.name, short(strconv.Quote(s)), suggest(s, choices, "it is one of"))
 		return nil
 	}
 	return s

@@ -52,13 +52,15 @@ func (l *loader) describe(ctx context.Context) {
 	}
 }
 
+func wrongDescription(format string, args ...any) error {
+	return fault.New(fault.Protocol, "its description of itself is wrong: "+format, args...).
+		Do("this is a mistake of the extension, not of the job")
+}
+
 // checkDescription finds mistakes in the description of a stage, so that one
 // from outside cannot confuse a job.
 func checkDescription(d stage.Description, kinds func(string) bool) error {
-	bad := func(format string, args ...any) error {
-		return fault.New(fault.Protocol, "its description of itself is wrong: "+format, args...).
-			Do("this is a mistake of the extension, not of the job")
-	}
+	bad := wrongDescription
 	known := func(kind string) bool { return kinds == nil || kinds(kind) }
 	var check func(where string, t stage.Type, top bool) error
 	check = func(where string, t stage.Type, top bool) error {
@@ -100,6 +102,9 @@ func checkDescription(d stage.Description, kinds func(string) bool) error {
 	for _, a := range d.Arguments {
 		if seen[a.Name] || reserved(a.Name) || !hclsyntax.ValidIdentifier(a.Name) {
 			return bad("the argument name %q is reserved, no identifier or used twice", a.Name)
+		}
+		if a.OptionsOf != "" && !seen[a.OptionsOf] {
+			return bad("the argument %s holds the options of %q, which does not come before it", a.Name, a.OptionsOf)
 		}
 		seen[a.Name] = true
 		if err := check("argument "+a.Name, a.Type, true); err != nil {

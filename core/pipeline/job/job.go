@@ -22,6 +22,8 @@ type Options struct {
 	StageNames func() []string
 	// Kinds reports whether an artifact kind is known; nil means all are.
 	Kinds func(kind string) bool
+	// Extensions lists the element types and readers that the job may name.
+	Extensions []stage.Extension
 }
 
 // Job is a checked job. One with error diagnostics must not be run; it then

@@ -24,6 +24,7 @@ type scope struct {
 	stages      map[string]*Stage
 	labels      []string // in file order
 	functions   map[string]function.Function
+	extensions  []stage.Extension
 }
 
 // use is a reference from an expression to another stage.

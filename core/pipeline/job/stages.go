@@ -9,6 +9,7 @@ import (
 
 	"github.com/hashicorp/hcl/v2"
 	"github.com/hashicorp/hcl/v2/hclsyntax"
+	"github.com/zclconf/go-cty/cty"
 
 	"hushframe/core/pipeline/stage"
 )
@@ -241,6 +242,15 @@ func (s *Stage) Evaluate(figures Figures) (stage.Arguments, map[string][]Artifac
 			continue
 		}
 		takesArtifacts := takesArtifacts(spec.Type)
+		if spec.OptionsOf != "" {
+			var of bool
+			if spec, of = s.optionsOf(spec, arguments); of && !given { // its defaults, or what it needs
+				d := decoder{scope: s.scope, self: s.Label}
+				arguments[spec.Name] = d.decode(cty.EmptyObjectVal, at{spec.Name, nil, s.Range}, spec, spec.Type)
+				diags = append(diags, d.diags...)
+				continue
+			}
+		}
 		if !given {
 			if spec.Default != nil && !takesArtifacts {
 				arguments[spec.Name] = plain(spec.Default)

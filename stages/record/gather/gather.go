@@ -9,10 +9,10 @@ package gather
 import (
 	"context"
 	"errors"
-	"fmt"
 	"io"
 	"math"
 
+	"hushframe/core/extension"
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
 	"hushframe/core/signal/recording"
@@ -23,12 +23,34 @@ import (
 )
 
 // builtin are the readers in this executable.
-var builtin = []recording.Reader{delimited.Reader{}, wave.Reader{}, columnar.Reader{}, flat.Reader{}}
+var builtin = []extension.Reader{extension.FromReader(delimited.Reader{}), extension.FromReader(wave.Reader{}),
+	extension.FromReader(columnar.Reader{}), extension.FromReader(flat.Reader{})}
+
+// auto stands for the reader that the first bytes call for.
+const auto = "auto"
+
+// readerNames lists what the argument reader may be without an extension.
+func readerNames() []string {
+	names := []string{auto}
+	for _, r := range builtin {
+		names = append(names, r.Describe().Name)
+	}
+	return names
+}
+
+func readerOptions() map[string][]stage.Argument {
+	out := map[string][]stage.Argument{}
+	for _, r := range builtin {
+		d := r.Describe()
+		out[d.Name] = d.Arguments
+	}
+	return out
+}
 
 // Settings are the arguments that say what is read.
 type Settings struct {
 	File, Reader           string
-	Options                map[string]string
+	Options                stage.Arguments
 	Columns, Rotors, Units map[string]string
 	Rate                   float64
 	Window                 []float64 // empty or two times
@@ -45,9 +67,9 @@ func Arguments() []stage.Argument {
 	texts := stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}}
 	return []stage.Argument{
 		{Name: "file", About: "the recording", Type: stage.Type{Kind: stage.File}, Required: true, Example: `"flights/hover.csv.gz"`},
-		{Name: "reader", About: "reader of its format: delimited, wave, arrow or flat; auto tells all but flat by the first bytes",
-			Type: stage.Type{Kind: stage.Text}, Default: "auto", Example: `"auto"`},
-		{Name: "options", About: "options of the reader, by name", Type: texts, Example: `{ separator = "tab" }`},
+		{Name: "reader", About: "reader of its format; auto tells all built-in ones but flat by the first bytes",
+			Type: stage.Type{Kind: stage.Text}, Default: auto, Example: `"auto"`, Choices: readerNames(), Extension: extension.ReaderKind},
+		{Name: "options", About: "options of the reader, by name", Type: texts, Example: `{ separator = "tab" }`, OptionsOf: "reader", Variants: readerOptions()},
 		{Name: "columns", About: "columns by role: time, and roll, pitch, yaw (angular rate) or x, y, z (acceleration); left out, found by their names",
 			Type: texts, Example: `{ time = "t", roll = "gx", pitch = "-gy", yaw = "-gz" }`},
 		{Name: "rotors", About: "columns of rotor speed by rotor; left out, found by their names", Type: texts, Example: `{ fr = "rpm_1" }`},
@@ -67,7 +89,7 @@ func Arguments() []stage.Argument {
 // Read takes the settings out of the arguments of a stage.
 func Read(a stage.Arguments, name string) (Settings, error) {
 	s := Settings{
-		File: a.Text("file"), Reader: a.Text("reader"), Options: texts(a, "options"),
+		File: a.Text("file"), Reader: a.Text("reader"), Options: a.Map("options"),
 		Columns: texts(a, "columns"), Rotors: texts(a, "rotors"), Units: texts(a, "units"), Rate: a.SI("rate"), Window: a.SIs("window"),
 		Find: a.Whole("find_rotors"), Speeds: a.SIs("speed_range"),
 	}
@@ -104,18 +126,20 @@ type Recording struct {
 }
 
 // Load reads the channels of a recording.
-func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, error) {
-	if _, err := choose(set.Reader, nil); err != nil {
-		return nil, err
+func Load(ctx context.Context, call *stage.Call, set Settings) (*Recording, error) {
+	if set.Reader != auto { // a wrong name before a missing file
+		if _, err := choose(ctx, call, set.Reader, nil); err != nil {
+			return nil, err
+		}
 	}
-	file, err := files.Open(set.File)
+	file, err := call.Files.Open(set.File)
 	if err != nil {
 		return nil, err
 	}
 	defer file.Close()
 	head := make([]byte, 16)
 	n, _ := file.ReadAt(head, 0) // a file that cannot be read says so to its reader
-	reader, err := choose(set.Reader, head[:n])
+	reader, err := choose(ctx, call, set.Reader, head[:n])
 	if err != nil {
 		return nil, err
 	}
@@ -138,24 +162,20 @@ func Load(ctx context.Context, files *stage.Files, set Settings) (*Recording, er
 }
 
 // choose returns the reader of that name; for auto, the one whose mark the file begins with, or the reader of text.
-func choose(name string, head []byte) (recording.Reader, error) {
+func choose(ctx context.Context, call *stage.Call, name string, head []byte) (extension.Reader, error) {
 	switch {
-	case name == "auto" && wave.Mark(head):
-		return wave.Reader{}, nil
-	case name == "auto" && columnar.Mark(head):
-		return columnar.Reader{}, nil
-	case name == "auto":
-		return delimited.Reader{}, nil
+	case name == auto && wave.Mark(head):
+		return extension.FromReader(wave.Reader{}), nil
+	case name == auto && columnar.Mark(head):
+		return extension.FromReader(columnar.Reader{}), nil
+	case name == auto:
+		return extension.FromReader(delimited.Reader{}), nil
 	}
-	known := `"auto"`
-	for _, r := range builtin {
-		d := r.Describe()
-		if d.Name == name {
-			return r, nil
-		}
-		known += fmt.Sprintf(", %q", d.Name)
+	r, err := extension.FindReader(ctx, name, builtin, call)
+	if err != nil {
+		return nil, fault.From(err).Of("reader")
 	}
-	return nil, fault.New(fault.Missing, "there is no reader %q", name).Of("reader").Do("the readers are %s", known)
+	return r, nil
 }
 
 // Explain turns an error of a reader or kernel into a fault that names the file.

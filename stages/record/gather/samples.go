@@ -7,6 +7,7 @@ import (
 	"math"
 	"slices"
 
+	"hushframe/core/extension"
 	"hushframe/core/signal/recording"
 )
 
@@ -35,10 +36,10 @@ type Data struct {
 const epochAfter = 1e8
 
 // samples reads the channels of the plan and leaves out rows without a sample. It settles the unit of time.
-func samples(ctx context.Context, reader recording.Reader, source io.Reader, p Plan, set Settings, h recording.Header) (*Data, error) {
+func samples(ctx context.Context, reader extension.Reader, source io.Reader, p Plan, set Settings, h recording.Header) (*Data, error) {
 	d := &Data{}
 	channels := append(slices.Clone(p.Axes), p.Rotors...)
-	request := recording.Request{Time: p.Time, TimeUnit: 1, Options: set.Options}
+	request := recording.Request{Time: p.Time, TimeUnit: 1}
 	place := map[string]int{} // a column may serve two channels
 	at := make([]int, len(channels))
 	for i, c := range channels {
@@ -53,7 +54,7 @@ func samples(ctx context.Context, reader recording.Reader, source io.Reader, p P
 	columns := make([][]float64, len(request.Columns))
 	var times []float64
 	origin := 0.0
-	err := reader.Read(ctx, source, request, func(b recording.Batch) error {
+	err := reader.Read(ctx, source, set.Options, request, func(b recording.Batch) error {
 		times = append(times, b.Time...)
 		for k, v := range b.Values {
 			columns[k] = append(columns[k], v...)
