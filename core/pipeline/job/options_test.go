@@ -8,6 +8,7 @@ import (
 	"strings"
 	"testing"
 
+	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/stage"
 )
 
@@ -47,7 +48,10 @@ func taped(t *testing.T, body string, extensions ...stage.Extension) (stage.Argu
 
 // Options of an extension are checked as those of a stage are, at their place in the file.
 func TestOptionsOfExtensions(t *testing.T) {
-	rate := stage.Quantity{SI: 2000 * (3.141592653589793 / 180), Dimension: "angular rate"}
+	rate, err := quantity.ParseAs("2000 deg/s", "angular rate")
+	if err != nil {
+		t.Fatal(err)
+	}
 	for body, want := range map[string]map[string]any{
 		`reader = "pebble"` + "\n" + `options = { range = "2000 deg/s" }`: {"range": rate, "channels": 3.0},
 		`reader = "pebble"`:                                    {"channels": 3.0},
