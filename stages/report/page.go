@@ -47,6 +47,7 @@ type page struct {
 	Warnings           []account.Warning
 	Sections           []*section
 	Rest               template.HTML // definitions shared by pictures
+	Live               *live
 }
 
 // compose makes the document; name is the file name of the page.
@@ -95,6 +96,10 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 		p.Rest = trusted(c.view.Rest(c.surface, restName))
 	}
 
+	var err error
+	if p.Live, err = newLive(c.scene()); err != nil {
+		return nil, fault.New(fault.Internal, "%v", err).In("report", name)
+	}
 	d := &kinds.Document{Title: p.Title, Page: name, Sources: c.sources, Files: map[string][]byte{}}
 	folder := strings.TrimSuffix(name, path.Ext(name)) + "-tables"
 	for _, s := range p.Sections {

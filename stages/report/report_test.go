@@ -3,8 +3,11 @@ package report
 import (
 	"bytes"
 	"context"
+	"crypto/sha256"
+	"encoding/base64"
 	"encoding/csv"
 	"encoding/xml"
+	"html"
 	"io"
 	"math"
 	"regexp"
@@ -16,6 +19,7 @@ import (
 	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
+	"hushframe/stages/report/front"
 )
 
 func render(t testing.TB, c *content) (string, *kinds.Document) {
@@ -25,6 +29,20 @@ func render(t testing.TB, c *content) (string, *kinds.Document) {
 		t.Fatal(err)
 	}
 	return string(d.Files["page.html"]), d
+}
+
+// still gives the page without its moving part, and what is embedded for that; it fails the test if the latter could
+// end the element that it stands in.
+func still(t *testing.T, page string) (rest, data string) {
+	t.Helper()
+	const start, end = `<script type="application/json" id="scene-data">`, "</script>"
+	before, after, ok := strings.Cut(page, start)
+	data, after, ended := strings.Cut(after, end)
+	script := "<script>" + front.Script + end
+	if !ok || !ended || strings.ContainsAny(data, "<>&") || strings.Count(after, script) != 1 {
+		t.Fatal("the moving part does not stand on the page as it should")
+	}
+	return before + strings.Replace(after, script, "", 1), data
 }
 
 func TestPageShowsWhatIsIncluded(t *testing.T) {
@@ -82,6 +100,11 @@ func TestVerdictInWords(t *testing.T) {
 // A page must not reach for anything outside itself, nor run anything.
 func TestPageIsSelfContained(t *testing.T) {
 	page, _ := render(t, sampleContent(t))
+	sum := sha256.Sum256([]byte(front.Script))
+	if !strings.Contains(html.UnescapeString(page), "script-src 'sha256-"+base64.StdEncoding.EncodeToString(sum[:])+"'\"") {
+		t.Error("the policy of the page allows other scripts than its own")
+	}
+	page, _ = still(t, page)
 	page = strings.ReplaceAll(page, `xmlns="http://www.w3.org/2000/svg"`, "") // a name, not a place
 	outside := regexp.MustCompile(`(?i)<script|<link|<img|<iframe|<object|\bsrc=|@import|javascript:|\bon[a-z]+=|url\([^#]|https?:`)
 	if found := outside.FindAllString(page, -1); len(found) > 0 {
@@ -148,6 +171,10 @@ func TestHostileTextsAreEscaped(t *testing.T) {
 	c.comparison.Unpaired[0].Reason, c.comparison.Notes[0] = bad, bad
 	c.spectra.Axes[0].Column, c.spectra.Window, c.spectra.Rotors[0].Rotor = bad, bad, bad
 	page, _ := render(t, c)
+	page, data := still(t, page)
+	if strings.Count(data, "alert(1)") < 5 {
+		t.Error("the text is not in the moving part")
+	}
 	if n := strings.Count(page, "alert(1)"); n < 30 {
 		t.Errorf("the text is shown %d times only", n)
 	}

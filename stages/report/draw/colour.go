@@ -88,3 +88,11 @@ func Style() string {
 	b.WriteString("}}\n")
 	return b.String()
 }
+
+// Scales gives the steps of the colour scale, on a light and on a dark page.
+func Scales() (light, dark []string) {
+	for k := range Levels {
+		light, dark = append(light, onLight.at(k)), append(dark, onDark.at(k))
+	}
+	return light, dark
+}
