@@ -179,7 +179,7 @@ func collect(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		Removed: lines.removed, Orders: lines.seen,
 	}
 	for i, c := range r.Plan.Axes {
-		x.Channels = append(x.Channels, kinds.IdentifiedChannel{Axis: c.Name, Quantity: c.Of, Column: c.Shown(), MeanSquare: variance(axes.Values[i])})
+		x.Channels = append(x.Channels, kinds.IdentifiedChannel{Axis: c.Name, Quantity: c.Of, Column: c.Shown(), MeanSquare: variance(gather.Join(axes.Values[i], timing.Runs))})
 	}
 	for _, m := range found.Modes {
 		mode := kinds.IdentifiedMode{

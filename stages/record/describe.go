@@ -59,14 +59,13 @@ func describe(r *gather.Recording, set settings, threads int) (*found, error) {
 		to = 0.4 * s.Rate
 	}
 	for i, c := range r.Plan.Axes {
-		values := axes.Values[i]
-		power, err := spectrum.Welch(gather.Runs(values, timing.Runs), ws)
+		power, err := spectrum.Welch(gather.Runs(axes.Values[i], timing.Runs), ws)
 		if err != nil {
 			return nil, refuse(err, timing, set)
 		}
 		s.Segments, s.Freedom, f.unused = power.Segments, power.Freedom, power.Unused
 		s.Lower, s.Upper = power.Bounds(set.level)
-		s.Axes = append(s.Axes, axisOf(c, values, power.Values))
+		s.Axes = append(s.Axes, axisOf(c, gather.Join(axes.Values[i], timing.Runs), power.Values))
 		for _, peak := range peaks.Find(power.Values, power.Step, peaks.Settings{
 			From: from, To: to, Prominence: set.prominence, Freedom: power.Freedom,
 			Resolution: s.Resolution, BinCorrelation: ws.Window.BinCorrelation(ws.Segment),
@@ -79,6 +78,16 @@ func describe(r *gather.Recording, set settings, threads int) (*found, error) {
 		}
 	}
 	rotors(s, r, set)
+	s.ChosenBy, s.Pieces, s.CoherenceLimit = r.ChosenBy, pieces(r), spectrum.CoherenceLimit(s.Freedom, set.level)
+	if s.Cross, err = cross(axes, timing.Runs, ws); err != nil {
+		return nil, refuse(err, timing, set)
+	}
+	if s.SetPoints, err = setPoints(r, axes, timing.Runs, ws); err != nil {
+		return nil, refuse(err, timing, set)
+	}
+	if s.Maps, err = maps(r, axes, timing, set); err != nil {
+		return nil, err
+	}
 	s.Findings = findings(f, r)
 	return f, nil
 }
@@ -146,12 +155,8 @@ func axisOf(c gather.Channel, values, density []float64) kinds.SpectraAxis {
 		mean += v
 	}
 	mean /= float64(len(values))
-	squares := 0.0
-	for _, v := range values {
-		squares += (v - mean) * (v - mean)
-	}
 	return kinds.SpectraAxis{
-		Axis: c.Name, Quantity: c.Of, Unit: gather.UnitOfSI[c.Of], Column: c.Shown(), Mean: mean, Deviation: math.Sqrt(squares / float64(len(values))),
+		Axis: c.Name, Quantity: c.Of, Unit: gather.UnitOfSI[c.Of], Column: c.Shown(), Mean: mean, Deviation: deviation(values),
 		Largest: max(math.Abs(q.Min), math.Abs(q.Max)), Saturated: q.Saturated, Repeated: q.Repeated, Density: density,
 	}
 }
@@ -160,7 +165,7 @@ func axisOf(c gather.Channel, values, density []float64) kinds.SpectraAxis {
 func rotors(s *kinds.Spectra, r *gather.Recording, set settings) {
 	var turning []order.Rotor
 	for i, c := range r.Plan.Rotors {
-		speeds := r.Data.Rotors[i].Cut(s.From, s.To).Values[0]
+		speeds := r.Used(r.Data.Rotors[i]).Values[0]
 		sorted := slices.Clone(speeds)
 		slices.Sort(sorted)
 		x := kinds.SpectraRotor{Rotor: c.Name, Column: c.Column, Blades: set.blades, Median: math.NaN(), Low: math.NaN(), High: math.NaN()}

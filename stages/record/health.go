@@ -30,6 +30,9 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 	add := func(what, where, consequence, extent string, args ...any) {
 		out = append(out, kinds.Finding{What: what, Where: where, Extent: fmt.Sprintf(extent, args...), Consequence: consequence})
 	}
+	for _, x := range r.Findings(f.timing) {
+		out = append(out, kinds.Finding{What: x.What, Where: x.Where, Extent: x.Extent, Consequence: x.Consequence})
+	}
 	if s.Gaps > 0 {
 		add("gaps", "", "no segment straddles one", "%d, %d samples missing, the first at %.6g s", s.Gaps, s.Missing, f.axes.Time[f.timing.Gaps[0].After])
 	}
@@ -37,13 +40,13 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		add("jitter", "", "blurs lines, lowers levels towards high frequencies", "steps differ by %.1f %% (root mean square), at most %.0f %%", 100*s.Jitter, 100*f.timing.Widest)
 	}
 	for i, a := range s.Axes {
-		values := f.axes.Values[i]
+		values := gather.Join(f.axes.Values[i], f.timing.Runs)
 		if a.Saturated > 0 {
 			add("saturation", a.Column, "adds harmonics and broadband noise", "%d samples stay at an extreme of %.4g %s", a.Saturated, shownRate(a, a.Largest), shownUnit(a))
 		}
 		if longest := recording.Longest(values); longest.Unlikely(len(values), a.Repeated) {
 			add("stuck", a.Column, "lowers the density; leave that time out", "%d samples stay at %.4g %s from %.6g s", longest.Length, shownRate(a, longest.Value), shownUnit(a),
-				f.axes.Time[longest.First])
+				gather.Join(f.axes.Time, f.timing.Runs)[longest.First])
 		}
 		if a.Repeated > muchRepeated {
 			add("repeats", a.Column, "mirrors appear above half the true rate", "%.0f %% of the samples equal the one before", 100*a.Repeated)

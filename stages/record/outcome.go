@@ -3,6 +3,7 @@ package record
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"hushframe/core/pipeline/stage"
@@ -47,6 +48,12 @@ func outcome(f *found, r *gather.Recording, set settings) *stage.Outcome {
 	o.Summary = []stage.Section{axisTable(s, set.File), peakTable(s)}
 	if len(s.Rotors) > 0 {
 		o.Summary = append(o.Summary, rotorTable(s))
+	}
+	if len(s.Pieces) > 1 {
+		o.Summary = append(o.Summary, pieceTable(s))
+	}
+	if len(s.Cross) > 0 {
+		o.Summary = append(o.Summary, crossTable(s))
 	}
 	if len(s.Findings) > 0 {
 		o.Summary = append(o.Summary, findingTable(s))
@@ -172,6 +179,68 @@ func rotorTable(s *kinds.Spectra) stage.Section {
 	for _, r := range s.Rotors {
 		t.Rows = append(t.Rows, []string{r.Rotor, r.Column, fmt.Sprintf("%.0f", r.Median/rpm),
 			fmt.Sprintf("%.0f to %.0f", r.Low/rpm, r.High/rpm), fmt.Sprintf("%.1f to %.1f", r.Low/(2*math.Pi), r.High/(2*math.Pi))})
+	}
+	return t
+}
+
+func pieceTable(s *kinds.Spectra) stage.Section {
+	level := "throttle"
+	if s.ChosenBy == kinds.MapRotorSpeed {
+		level = "mean speed, rpm"
+	}
+	t := stage.Section{
+		Title:   "Pieces of the recording",
+		Columns: []stage.Column{{Name: "from, s", Right: true}, {Name: "to, s", Right: true}, {Name: level, Right: true}, {Name: "used"}, {Name: "why"}},
+	}
+	if s.ChosenBy == "window" {
+		t.Columns[2].Name = "samples"
+	}
+	for _, p := range s.Pieces {
+		shown, used := fmt.Sprintf("%.2f", p.Level), "no"
+		switch s.ChosenBy {
+		case kinds.MapRotorSpeed:
+			shown = fmt.Sprintf("%.0f", p.Level*60/(2*math.Pi))
+		case "window":
+			shown = fmt.Sprint(p.Samples)
+		}
+		if p.Used {
+			used = "yes"
+		}
+		t.Rows = append(t.Rows, []string{fmt.Sprintf("%.2f", p.From), fmt.Sprintf("%.2f", p.To), shown, used, p.Why})
+	}
+	return t
+}
+
+// crossTable tells how much of the axes has a common cause, at the listed peaks of either.
+func crossTable(s *kinds.Spectra) stage.Section {
+	t := stage.Section{
+		Title:   "Coherence between axes",
+		Text:    fmt.Sprintf("chance stays below %.2f for %g %% of the bins; the greatest is looked for at the listed peaks", s.CoherenceLimit, 100*s.Level),
+		Columns: []stage.Column{{Name: "axes"}, {Name: "bins above chance, %", Right: true}, {Name: "greatest at a peak", Right: true}, {Name: "Hz", Right: true}},
+	}
+	row := func(name string, coherence []float64, axes ...int) {
+		above, greatest, at := 0, math.NaN(), math.NaN()
+		for _, v := range coherence[1:] {
+			if v > s.CoherenceLimit {
+				above++
+			}
+		}
+		for _, p := range s.Peaks {
+			if k := int(math.Round(p.Frequency / s.Step)); slices.Contains(axes, p.Axis) && k < len(coherence) && !(coherence[k] <= greatest) {
+				greatest, at = coherence[k], p.Frequency
+			}
+		}
+		cells := []string{name, fmt.Sprintf("%.0f", 100*float64(above)/float64(len(coherence)-1)), "–", "–"}
+		if !math.IsNaN(greatest) {
+			cells[2], cells[3] = fmt.Sprintf("%.2f", greatest), fmt.Sprintf("%.1f", at)
+		}
+		t.Rows = append(t.Rows, cells)
+	}
+	for _, x := range s.Cross {
+		row(s.Axes[x.A].Axis+", "+s.Axes[x.B].Axis, x.Coherence, x.A, x.B)
+	}
+	for _, x := range s.SetPoints {
+		row(s.Axes[x.Axis].Axis+", its set-point", x.Coherence, x.Axis)
 	}
 	return t
 }

@@ -80,7 +80,7 @@ type Batch struct {
 	// First is the number of the first row of the batch.
 	First int64
 	// Time holds, per row, the seconds since the first row of the recording; nil without a time column. Readers take the
-	// difference before they scale, so that nanoseconds since an epoch lose nothing.
+	// difference before they scale, so that nanoseconds since an epoch lose nothing. NaN means that the row has no time.
 	Time []float64
 	// Origin is the value of the time column in the first row of the recording, in seconds.
 	Origin float64
@@ -88,6 +88,16 @@ type Batch struct {
 	Values [][]float64
 	// Notes are facts met on the way, such as an incomplete last row that was left out; as a rule in the last batch.
 	Notes []string
+	// Findings are faults of the recording that leave the rest usable; as a rule in the last batch.
+	Findings []Finding
+}
+
+// Finding is something that is not as it should be with a recording that can be used all the same.
+type Finding struct {
+	What        string // one or two words
+	Where       string // column, "" for the whole recording
+	Extent      string // how much, and where in time, rows or frequency
+	Consequence string // what it does to what is computed
 }
 
 // Rows returns the number of rows of the batch.

@@ -16,6 +16,9 @@ type Matrix struct {
 	Values   [][]complex128
 }
 
+// At is the entry (a, b) of bin k.
+func (m Matrix) At(k, a, b int) complex128 { return m.Values[k][a*m.Channels+b] }
+
 // CrossMatrix averages all pairs of channels over the same segments; runs[r][c] are the samples of channel c in run r.
 // Errors and panics as Welch; it also panics if the channels of a run differ in samples or the runs in channels.
 func CrossMatrix(runs [][][]float64, s Settings) (Matrix, error) {

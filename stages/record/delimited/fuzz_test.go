@@ -25,7 +25,7 @@ func FuzzRead(f *testing.F) {
 		}
 		request := recording.Request{TimeUnit: 1}
 		for _, c := range h.Columns {
-			if i, err := Find(h.Names(), c.Name); err != nil || h.Columns[i].Text {
+			if i, err := find(h.Names(), c.Name); err != nil || h.Columns[i].Text {
 				continue
 			}
 			if request.Time == "" {

@@ -353,11 +353,19 @@ func allUnits(cells []string) bool {
 	return some
 }
 
+// header describes the columns. Names that several columns have are told apart by their places.
 func (l layout) header() recording.Header {
 	var h recording.Header
+	times := map[string]int{}
+	for _, name := range l.names {
+		times[name]++
+	}
 	for j, name := range l.names {
-		if name == "" {
+		switch {
+		case name == "":
 			name = fmt.Sprintf("column %d", j+1)
+		case times[name] > 1:
+			name = fmt.Sprintf("%s #%d", name, j+1)
 		}
 		h.Columns = append(h.Columns, recording.Column{Name: name, Unit: strings.Trim(l.units[j], "[]()"), Text: l.text[j]})
 	}

@@ -39,7 +39,7 @@ func newParser(l layout, request recording.Request) (*parser, error) {
 	}
 	names := l.header().Names()
 	for k, name := range request.Columns {
-		j, err := Find(names, name)
+		j, err := find(names, name)
 		if err != nil {
 			return nil, err
 		}
@@ -50,7 +50,7 @@ func newParser(l layout, request recording.Request) (*parser, error) {
 		p.last = max(p.last, j)
 	}
 	if request.Time != "" {
-		j, err := Find(names, request.Time)
+		j, err := find(names, request.Time)
 		if err != nil {
 			return nil, err
 		}

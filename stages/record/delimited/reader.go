@@ -8,11 +8,11 @@ import (
 	"errors"
 	"fmt"
 	"io"
+	"slices"
 	"strings"
 
 	"github.com/klauspost/compress/zstd"
 
-	"hushframe/core/pipeline/nearest"
 	"hushframe/core/signal/recording"
 )
 
@@ -198,43 +198,10 @@ func (Reader) Read(ctx context.Context, source io.Reader, request recording.Requ
 	return p.finish(sink)
 }
 
-// Find returns the index of a column by its name, which may lack the unit in brackets and differ in case. -1 with an
-// error that names near columns.
-func Find(names []string, wanted string) (int, error) {
-	at, count := -1, 0
-	for pass := range 3 {
-		for i, name := range names {
-			plain, _ := bracketed(name)
-			if pass == 0 && name == wanted || pass == 1 && plain == wanted ||
-				pass == 2 && (strings.EqualFold(name, wanted) || strings.EqualFold(plain, wanted)) {
-				at = i
-				count++
-			}
-		}
-		if count == 1 {
-			return at, nil
-		}
-		if count > 1 {
-			return -1, &recording.Error{Column: wanted, Text: fmt.Sprintf("%d columns have this name", count),
-				Remedy: "give the columns of the file different names"}
-		}
+// find returns the place of a column by its name in the header.
+func find(names []string, wanted string) (int, error) {
+	if i := slices.Index(names, wanted); i >= 0 {
+		return i, nil
 	}
-	remedy := "the columns are " + quoted(names)
-	if near := nearest.Name(wanted, names); near != "" {
-		remedy = fmt.Sprintf("did you mean %q? %s", near, remedy)
-	}
-	return -1, &recording.Error{Column: wanted, Text: "the recording has no such column", Remedy: remedy}
-}
-
-// quoted lists names, the first twenty of them.
-func quoted(names []string) string {
-	const most = 20
-	var out []string
-	for _, n := range names[:min(len(names), most)] {
-		out = append(out, fmt.Sprintf("%q", n))
-	}
-	if more := len(names) - most; more > 0 {
-		out = append(out, fmt.Sprintf("and %d more", more))
-	}
-	return strings.Join(out, ", ")
+	return -1, &recording.Error{Column: wanted, Text: "the recording has no such column", Remedy: "name one of its header"}
 }

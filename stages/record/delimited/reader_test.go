@@ -191,8 +191,8 @@ func TestRefusals(t *testing.T) {
 		{"text in a number", "t,a,c\n0,1,1\n1,x1,2\n2,3,3\n", "a", `line 3, row 2, column "a": "x1" is not a number; mend`},
 		{"infinite", "t,a,c\n0,1,1\n1,inf,2\n2,3,3\n", "a", `"inf" is not a number`},
 		{"short row", "t,a,b\n0,1,2\n1,3\n2,5,6\n", "b", `line 3, row 2, column "b": the row ends after field 2 of 3`},
-		{"no column", "t,gyro_x\n0,1\n1,2\n", "gyro_y", `column "gyro_y": the recording has no such column; did you mean "gyro_x"?`},
-		{"two of a name", "t,a,a\n0,1,2\n1,3,4\n", "a", "2 columns have this name"},
+		{"no column", "t,gyro_x\n0,1\n1,2\n", "gyro_y", `column "gyro_y": the recording has no such column`},
+		{"two of a name", "t,a,a\n0,1,2\n1,3,4\n", "a", "no such column"},
 		{"cut off", string(packed[:len(packed)/2]), "column 2", "ends in its middle"},
 		{"damaged", string(flipped), "column 2", "damaged"},
 		{"one endless line", "t,a\n0,1\n1,2\n" + strings.Repeat("3,", blockSize), "a", "longer than"},
@@ -211,6 +211,10 @@ func TestRefusals(t *testing.T) {
 		if e.Remedy == "" {
 			t.Errorf("%s: no remedy", c.name)
 		}
+	}
+	h, err := (Reader{}).Inspect(context.Background(), strings.NewReader("t,a,a,\n0,1,2,5\n1,3,4,5\n"), nil)
+	if names := strings.Join(h.Names(), "|"); err != nil || names != "t|a #2|a #3|column 4" {
+		t.Errorf("%s, %v", names, err)
 	}
 	if _, err := readAll(strings.NewReader("t,a\n0,1\nlate,2\n2,3\n"), recording.Request{Columns: []string{"a"}, Time: "t", TimeUnit: 1}); err == nil ||
 		!strings.Contains(err.Error(), `line 3, row 2, column "t": the time "late" is not a number`) {

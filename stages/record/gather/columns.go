@@ -2,6 +2,7 @@ package gather
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"sort"
 	"strings"
@@ -9,7 +10,6 @@ import (
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/nearest"
 	"hushframe/core/signal/recording"
-	"hushframe/stages/record/delimited"
 )
 
 // Plan says which columns are read and what they mean.
@@ -17,10 +17,15 @@ type Plan struct {
 	Time     string // "" for none
 	TimeUnit string // "" if it is to be guessed from the steps
 	Second   float64
-	Axes     []Channel
-	Rotors   []Channel
-	Notes    []string // what was found or assumed
-	Assumed  []string // what was assumed with little ground, worth a warning
+	// ClockUnits are the units of further time columns, "" where none is stated.
+	ClockUnits map[string]string
+	Axes       []Channel
+	Rotors     []Channel
+	Throttle   *Channel // nil for none
+	// SetPoints are those of axes that are read, each called by its axis.
+	SetPoints []Channel
+	Notes     []string // what was found or assumed
+	Assumed   []string // what was assumed with little ground, worth a warning
 }
 
 // Channel is a column with its meaning.
@@ -31,6 +36,7 @@ type Channel struct {
 	Unit   string
 	Factor float64 // to SI, with the sign
 	Of     string  // dimension
+	Clock  string  // time column of its own, "" for that of the plan
 }
 
 // Shown is the column with its sign.
@@ -56,18 +62,16 @@ func assign(h recording.Header, set Settings) (Plan, error) {
 			return p, fault.New(fault.Input, "there is no role %q", role).Of("columns").Do("%s", remedy)
 		}
 	}
-	for _, column := range sorted(set.Units) {
-		if _, err := delimited.Find(h.Names(), column); err != nil {
+	var err error
+	if set.Units, err = unitsByColumn(h, set.Units); err != nil {
+		return p, err
+	}
+	for _, choose := range []func(recording.Header, Settings) error{p.chooseTime, p.chooseAxes, p.chooseRotors, p.chooseThrottle, p.chooseSetPoints, p.chooseClocks} {
+		if err := choose(h, set); err != nil {
 			return p, err
 		}
 	}
-	if err := p.chooseTime(h, set); err != nil {
-		return p, err
-	}
-	if err := p.chooseAxes(h, set); err != nil {
-		return p, err
-	}
-	return p, p.chooseRotors(h, set)
+	return p, p.mounted(set)
 }
 
 func (p *Plan) chooseTime(h recording.Header, set Settings) error {
@@ -82,7 +86,7 @@ func (p *Plan) chooseTime(h recording.Header, set Settings) error {
 	case h.Timed && given == "":
 		return nil
 	case given != "":
-		i, err := delimited.Find(h.Names(), given)
+		i, err := Find(h.Names(), given)
 		if err != nil {
 			return err
 		}
@@ -162,17 +166,15 @@ func (p *Plan) chooseAxes(h recording.Header, set Settings) error {
 			return nil
 		}
 	}
-	return &recording.Error{Text: "no column is an angular rate or an Acceleration by its name",
+	return &recording.Error{Text: "no column is an angular rate or an acceleration by its name",
 		Remedy: `name them in columns, such as { roll = "gx", pitch = "-gy", yaw = "-gz" }; ` + list(h)}
 }
 
 func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
 	for _, name := range sorted(set.Rotors) {
-		c, err := p.stated(h, name, set.Rotors[name], RotorSpeed, set)
-		if err != nil {
+		if err := p.addRotor(h, name, set.Rotors[name], set); err != nil {
 			return err
 		}
-		p.Rotors = append(p.Rotors, c)
 	}
 	if len(set.Rotors) > 0 {
 		return nil
@@ -187,37 +189,191 @@ func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
 			name = column.Name
 		}
 		names[name] = true
-		c, err := p.stated(h, name, column.Name, RotorSpeed, set)
-		if err != nil {
+		if err := p.addRotor(h, name, column.Name, set); err != nil {
 			return err
 		}
-		p.Rotors = append(p.Rotors, c)
+		c := p.Rotors[len(p.Rotors)-1]
 		p.Notes = append(p.Notes, fmt.Sprintf("the speed of rotor %s is column %q by its name, in %s", name, c.Column, c.Unit))
 	}
 	return nil
 }
 
-// stated makes a Channel of a column as the job writes it, with an optional sign. A column whose own name begins with a
-// sign wins over a sign.
-func (p *Plan) stated(h recording.Header, name, written, of string, set Settings) (Channel, error) {
-	c := Channel{Name: name, Sign: 1, Of: of}
-	i, err := delimited.Find(h.Names(), written)
+// addRotor adds the speed of a rotor; that of the field in the motor is divided by the pole pairs.
+func (p *Plan) addRotor(h recording.Header, name, column string, set Settings) error {
+	c, err := p.stated(h, name, column, RotorSpeed, set)
 	if err != nil {
-		rest, minus := strings.CutPrefix(written, "-")
-		if !minus {
-			rest = strings.TrimPrefix(written, "+")
+		return err
+	}
+	switch {
+	case set.PolePairs > 0:
+		c.Factor /= float64(set.PolePairs)
+		c.Unit += fmt.Sprintf(" electrical, over %d pole pairs", set.PolePairs)
+	case isElectrical(words(c.Column)):
+		return fault.New(fault.Input, "column %q is an electrical speed by its name", c.Column).Of("pole_pairs").
+			Do("give the pole pairs of the motor (half its magnets), such as pole_pairs = 7; or name the column in rotors of a recording that has the speed of the shaft")
+	}
+	p.Rotors = append(p.Rotors, c)
+	return nil
+}
+
+func (p *Plan) chooseThrottle(h recording.Header, set Settings) error {
+	written, found := set.Throttle, false
+	if written == "" {
+		at := matching(h, func(w []string) string {
+			if isThrottle(w) && !isSetPoint(w) {
+				return Throttle
+			}
+			return ""
+		})[Throttle]
+		if len(at) > 1 {
+			p.Notes = append(p.Notes, fmt.Sprintf("%d columns could be the throttle by their names; none is used", len(at)))
 		}
-		if rest == written {
-			return c, err
+		if len(at) != 1 {
+			return nil
 		}
-		if minus {
-			c.Sign = -1
-		}
-		if i, err = delimited.Find(h.Names(), strings.TrimSpace(rest)); err != nil {
-			return c, err
+		written, found = h.Columns[at[0]].Name, true
+	}
+	i, sign, err := findSigned(h, written)
+	if err != nil {
+		return err
+	}
+	c := Channel{Name: Throttle, Column: h.Columns[i].Name, Sign: sign, Of: Throttle}
+	c.Unit, _ = unitOf(h.Columns[i], Throttle, set)
+	if c.Factor, err = factor(c.Unit, Throttle, c.Column); err != nil {
+		return err
+	}
+	c.Factor *= sign
+	p.Throttle = &c
+	if found {
+		p.Notes = append(p.Notes, fmt.Sprintf("the throttle is column %q by its name", c.Column))
+	}
+	return nil
+}
+
+// chooseSetPoints takes the set-points of the axes that are read.
+func (p *Plan) chooseSetPoints(h recording.Header, set Settings) error {
+	for _, role := range sorted(set.SetPoints) {
+		if !slices.Contains(rateAxes, role) {
+			return fault.New(fault.Input, "there is no set-point of %q", role).Of("set_points").Do("give those of roll, pitch and yaw")
 		}
 	}
-	c.Column = h.Columns[i].Name
+	found := matching(h, setPointAxis)
+	for _, axis := range p.Axes {
+		if axis.Of != AngularRate {
+			continue
+		}
+		written := set.SetPoints[axis.Name]
+		byName := written == "" && len(set.SetPoints) == 0 && len(found[axis.Name]) == 1
+		if byName {
+			written = h.Columns[found[axis.Name][0]].Name
+		}
+		if written == "" {
+			continue
+		}
+		i, sign, err := findSigned(h, written)
+		if err != nil {
+			return err
+		}
+		c := Channel{Name: axis.Name, Column: h.Columns[i].Name, Sign: sign, Of: AngularRate}
+		var ok bool
+		if c.Unit, ok = unitOf(h.Columns[i], AngularRate, set); !ok {
+			c.Unit = axis.Unit // its coherence does not depend on it
+		}
+		f, err := factor(c.Unit, AngularRate, c.Column)
+		if err != nil {
+			return err
+		}
+		c.Factor = f * sign
+		p.SetPoints = append(p.SetPoints, c)
+		if byName {
+			p.Notes = append(p.Notes, fmt.Sprintf("the set-point of %s is column %q by its name", c.Name, c.Column))
+		}
+	}
+	return nil
+}
+
+// chooseClocks gives channels the time columns that the job states for them.
+func (p *Plan) chooseClocks(h recording.Header, set Settings) error {
+	clocks := map[string]string{}
+	for _, written := range sorted(set.Clocks) {
+		i, err := Find(h.Names(), written)
+		if err != nil {
+			return err
+		}
+		k, err := Find(h.Names(), set.Clocks[written])
+		if err != nil {
+			return err
+		}
+		clocks[h.Columns[i].Name] = h.Columns[k].Name
+		if p.ClockUnits == nil {
+			p.ClockUnits = map[string]string{}
+		}
+		unit, stated := unitOf(h.Columns[k], "time", set)
+		if !stated {
+			unit = p.TimeUnit
+		}
+		p.ClockUnits[h.Columns[k].Name] = unit
+	}
+	used := map[string]bool{}
+	give := func(c *Channel) {
+		if clock, ok := clocks[c.Column]; ok {
+			used[c.Column] = true
+			if clock != p.Time {
+				c.Clock = clock
+			}
+		}
+	}
+	for _, list := range [][]Channel{p.Axes, p.Rotors, p.SetPoints} {
+		for i := range list {
+			give(&list[i])
+		}
+	}
+	if p.Throttle != nil {
+		give(p.Throttle)
+	}
+	for _, written := range sorted(set.Clocks) {
+		i, _ := Find(h.Names(), written)
+		if !used[h.Columns[i].Name] {
+			return fault.New(fault.Input, "column %q has a clock and is not read", h.Columns[i].Name).Of("clocks").Do("leave it out, or give the column a role")
+		}
+	}
+	for _, c := range p.Axes {
+		if c.Clock != p.Axes[0].Clock {
+			return fault.New(fault.Input, "the axes %s and %s have different clocks", p.Axes[0].Name, c.Name).Of("clocks").
+				Do("describe each sensor in a step of its own")
+		}
+	}
+	return nil
+}
+
+// mounted checks that all axes of a sensor that is turned are there.
+func (p *Plan) mounted(set Settings) error {
+	if len(set.Mounting) == 0 {
+		return nil
+	}
+	count := map[string]int{}
+	for _, c := range p.Axes {
+		count[c.Of]++
+	}
+	for _, of := range []string{AngularRate, Acceleration} {
+		if count[of]%3 != 0 {
+			return fault.New(fault.Input, "a turned sensor needs all three axes, and the recording gives %d of %s", count[of], of).Of("mounting").
+				Do("name the other columns, or leave the mounting out")
+		}
+	}
+	p.Notes = append(p.Notes, fmt.Sprintf("the sensor is turned by %.4g, %.4g and %.4g deg about x, y and z; its axes are turned back to those of the airframe",
+		set.Mounting[0]*180/math.Pi, set.Mounting[1]*180/math.Pi, set.Mounting[2]*180/math.Pi))
+	return nil
+}
+
+// stated makes a Channel of a column as the job writes it, with an optional sign.
+func (p *Plan) stated(h recording.Header, name, written, of string, set Settings) (Channel, error) {
+	c := Channel{Name: name, Of: of}
+	i, sign, err := findSigned(h, written)
+	if err != nil {
+		return c, err
+	}
+	c.Sign, c.Column = sign, h.Columns[i].Name
 	var ok bool
 	if c.Unit, ok = unitOf(h.Columns[i], of, set); !ok {
 		c.Unit = map[string]string{AngularRate: "deg/s", Acceleration: "m/s2", RotorSpeed: "rpm"}[of]
@@ -230,10 +386,8 @@ func (p *Plan) stated(h recording.Header, name, written, of string, set Settings
 
 // unitOf returns the unit of a column: from the job, from the recording, from its name.
 func unitOf(c recording.Column, dimension string, set Settings) (string, bool) {
-	for _, column := range sorted(set.Units) {
-		if i, err := delimited.Find([]string{c.Name}, column); err == nil && i == 0 {
-			return set.Units[column], true
-		}
+	if unit, ok := set.Units[c.Name]; ok {
+		return unit, true
 	}
 	if c.Unit != "" {
 		return c.Unit, true
@@ -263,21 +417,7 @@ func several(role string, h recording.Header, at []int) error {
 }
 
 // list names the columns of the recording.
-func list(h recording.Header) string {
-	const most = 20
-	names := h.Names()
-	out := "the columns are "
-	for i, n := range names[:min(len(names), most)] {
-		if i > 0 {
-			out += ", "
-		}
-		out += fmt.Sprintf("%q", n)
-	}
-	if more := len(names) - most; more > 0 {
-		out += fmt.Sprintf(" and %d more", more)
-	}
-	return out
-}
+func list(h recording.Header) string { return "the columns are " + quoted(h.Names()) }
 
 func sorted(m map[string]string) []string {
 	var out []string

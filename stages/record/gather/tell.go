@@ -1,7 +1,10 @@
 package gather
 
 import (
+	"cmp"
 	"fmt"
+	"math"
+	"strings"
 
 	"hushframe/core/pipeline/stage"
 	"hushframe/core/signal/recording"
@@ -15,11 +18,32 @@ func (r *Recording) Notes() []string {
 	if d.Partial > 0 {
 		out = append(out, fmt.Sprintf("%d rows hold some axes but not all and were left out", d.Partial))
 	}
-	if left := d.Rows - int64(len(d.Axes.Row)) - int64(d.Partial); left > 0 {
+	if left := d.Rows - int64(d.Axes.Len()) - int64(d.Partial); left > 0 && len(d.Findings) == 0 {
 		out = append(out, fmt.Sprintf("%d of %d rows hold no sample of the axes", left, d.Rows))
 	}
 	if d.Epoch {
 		out = append(out, "the time column counts from an epoch; times are told from its first row")
+	}
+	return out
+}
+
+// rateTolerance is how far a stated rate may be off the measured one without a word; common practice.
+const rateTolerance = 0.01
+
+// Findings are faults of the rows and of the rate that leave the rest usable.
+func (r *Recording) Findings(timing recording.Timing) []recording.Finding {
+	out := append([]recording.Finding{}, r.Data.Findings...)
+	stated, by, believed := r.Header.Rate, timing.Rate, "the times are believed"
+	if r.Data.Rate > 0 {
+		by, believed = r.Data.Rate, "that of the job is believed"
+	}
+	if stated > 0 && math.Abs(stated/by-1) > rateTolerance {
+		told := "the times make it"
+		if r.Data.Rate > 0 {
+			told = "the job states"
+		}
+		out = append(out, recording.Finding{What: "rate", Extent: fmt.Sprintf("the recording states %.6g Hz, %s %.6g Hz", stated, told, by),
+			Consequence: believed + "; every frequency is wrong by that ratio if it is the other"})
 	}
 	return out
 }
@@ -47,6 +71,9 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 	if timing.Jitter > muchJitter {
 		add("jitter", r.set.File, "log at equal steps", "steps between samples differ by %.1f %% (root mean square); lines are blurred and levels lowered towards high frequencies",
 			100*timing.Jitter)
+	}
+	for _, f := range r.Findings(timing) {
+		add(strings.ReplaceAll(f.What, " ", "-"), cmp.Or(f.Where, r.set.File), "", "%s; %s", f.Extent, f.Consequence)
 	}
 	if len(r.Plan.Rotors) == 0 {
 		add("no-rotor-speed", r.set.File, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")

@@ -14,6 +14,7 @@ const (
 	AngularRate  = "angular rate"
 	Acceleration = "acceleration"
 	RotorSpeed   = "rotational speed"
+	Throttle     = "throttle" // 0 to 1
 )
 
 var UnitOfSI = map[string]string{AngularRate: "rad/s", Acceleration: "m/s2"}
@@ -27,6 +28,15 @@ var spellings = map[string]map[string]string{
 
 // factor returns what a number in that unit is multiplied by to be in SI.
 func factor(unit, dimension, column string) (float64, error) {
+	if dimension == Throttle {
+		switch unit {
+		case "%", "pct", "percent":
+			return 0.01, nil
+		case "", "1", "us": // none, or pulses, which begin at 1000: see pulses
+			return 1, nil
+		}
+		return 0, &recording.Error{Column: column, Text: fmt.Sprintf("%q is no unit of throttle", unit), Remedy: fmt.Sprintf(`state it as "%%", "1" or "us" (pulses of 1000 to 2000), such as { %q = "%%" }`, column)}
+	}
 	spelled := unit
 	if s, ok := spellings[dimension][unit]; ok {
 		spelled = s
@@ -58,6 +68,7 @@ var nameUnits = map[string][]struct {
 	RotorSpeed: {
 		{[]string{"rad", "s"}, "rad/s"}, {[]string{"hz"}, "turn/s"}, {[]string{"rps"}, "turn/s"}, {[]string{"rev", "s"}, "turn/s"},
 	},
+	Throttle: {{[]string{"pct"}, "%"}, {[]string{"percent"}, "%"}, {[]string{"us"}, "us"}},
 	"time": {
 		{[]string{"s"}, "s"}, {[]string{"sec"}, "s"}, {[]string{"seconds"}, "s"}, {[]string{"ms"}, "ms"}, {[]string{"msec"}, "ms"},
 		{[]string{"us"}, "us"}, {[]string{"usec"}, "us"}, {[]string{"ns"}, "ns"}, {[]string{"nsec"}, "ns"},
@@ -66,7 +77,7 @@ var nameUnits = map[string][]struct {
 
 // unitInName returns the unit that a column name ends in, "" for none. A speed with "rpm" anywhere is in rpm.
 func unitInName(w []string, dimension string) string {
-	if dimension == RotorSpeed && has(w, "rpm") {
+	if dimension == RotorSpeed && has(w, "rpm", "erpm") {
 		return "rpm"
 	}
 	for _, n := range nameUnits[dimension] {
@@ -76,6 +87,22 @@ func unitInName(w []string, dimension string) string {
 	}
 	return ""
 }
+
+// guessThrottle tells the unit of a throttle from its largest value: shares, per cent or pulses.
+func guessThrottle(largest float64) (unit string, ok bool) {
+	switch {
+	case largest <= 1.5:
+		return "1", true
+	case largest <= 150:
+		return "%", true
+	case largest >= 800 && largest <= 2500:
+		return "us", true
+	}
+	return "", false
+}
+
+// pulses turns the length of a pulse in microseconds into a throttle: 1000 is none, 2000 is full; common practice.
+func pulses(us float64) float64 { return (us - 1000) / 1000 }
 
 // guessTimeUnit takes the unit in which a median step makes a rate between 20 Hz and 20 kHz; ok is false if none does.
 // Units are a thousand apart and so is the range, so there is never more than one.

@@ -46,6 +46,9 @@ func isTime(w []string) bool {
 // rateAxis returns roll, pitch or yaw for a column of angular rate, "" for any other. Letters of axes are taken as those of
 // the airframe.
 func rateAxis(w []string) string {
+	if isSetPoint(w) {
+		return ""
+	}
 	if len(w) > 0 {
 		switch w[0] {
 		case "gx", "wx":
@@ -78,7 +81,7 @@ func accelerationAxis(w []string) string {
 
 // axisWord finds the axis in the words and names it.
 func axisWord(w []string, names [3]string) string {
-	for i, letter := range []string{"x", "y", "z"} {
+	for i, letter := range [3]string{"x", "y", "z"} {
 		if has(w, letter, [3]string{"roll", "pitch", "yaw"}[i]) {
 			return names[i]
 		}
@@ -86,9 +89,38 @@ func axisWord(w []string, names [3]string) string {
 	return ""
 }
 
+// isSetPoint tells whether a column is what the control asks for, not what is measured.
+func isSetPoint(w []string) bool {
+	return has(w, "setpoint", "sp", "target", "command", "cmd", "desired", "demand", "reference") || has(w, "set") && has(w, "point")
+}
+
+// setPointAxis returns roll, pitch or yaw for a set-point of angular rate, "" for any other column.
+func setPointAxis(w []string) string {
+	if !isSetPoint(w) || has(w, "angle", "attitude", "position", "velocity", "accel", "acc", "acceleration") && !has(w, "rate", "gyro", "angular") {
+		return ""
+	}
+	return axisWord(w, [3]string{"roll", "pitch", "yaw"})
+}
+
+// isThrottle tells whether a column is the throttle.
+func isThrottle(w []string) bool { return has(w, "throttle", "thrust", "collective") }
+
+// isElectrical tells whether a rotor speed is that of the field in the motor.
+func isElectrical(w []string) bool {
+	for i, word := range w {
+		if word == "erpm" || word == "electrical" || word == "e" && i+1 < len(w) && w[i+1] == "rpm" {
+			return true
+		}
+	}
+	return false
+}
+
 // rotorName returns the name of the rotor whose speed a column holds; ok tells whether it holds one.
 func rotorName(w []string) (name string, ok bool) {
-	speed := has(w, "rpm")
+	if isSetPoint(w) {
+		return "", false
+	}
+	speed := has(w, "rpm", "erpm")
 	if !speed && has(w, "rotor", "motor", "propeller", "prop") {
 		speed = has(w, "speed", "hz", "rps", "rate")
 	}
@@ -97,7 +129,7 @@ func rotorName(w []string) (name string, ok bool) {
 	}
 	var rest []string
 	for _, word := range w {
-		if !slices.Contains([]string{"rpm", "rotor", "motor", "propeller", "prop", "speed", "hz", "rps", "rate", "rad", "rev", "s"}, word) {
+		if !slices.Contains([]string{"rpm", "erpm", "e", "electrical", "rotor", "motor", "propeller", "prop", "speed", "hz", "rps", "rate", "rad", "rev", "s"}, word) {
 			rest = append(rest, word)
 		}
 	}
