@@ -63,7 +63,7 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	order := s.Ordering()
 	limit := 2 * math.Pi * opt.UpTo
 	res, err := eigen.Lowest(ctx, s.K, s.M, order, eigen.Options{
-		Limit: limit * limit, Modes: RigidBodies + 2, Threads: opt.Threads,
+		Limit: limit * limit, Modes: RigidBodies + 2, Static: !opt.Bare, Threads: opt.Threads,
 		Progress: func(f float64) { progress("modes", f) },
 	})
 	if err != nil {

@@ -1,8 +1,25 @@
 package dense
 
+import "sync"
+
 // Products of blocks of long vectors are cut into pieces of this length, each summed by one goroutine; a panel of it
 // stays in the first-level cache. The length is fixed so that sums do not depend on the number of threads.
 const pieceLength = 512
+
+// Goroutines borrow the memory they work in: as garbage it would outgrow what a search holds.
+var (
+	panelsPool  = sync.Pool{New: func() any { return new(Panels) }}
+	scratchPool = sync.Pool{New: func() any { return new([]float64) }}
+)
+
+// borrow returns room for n numbers of no meaning; give the pointer back to scratchPool.
+func borrow(n int) (*[]float64, []float64) {
+	s := scratchPool.Get().(*[]float64)
+	if cap(*s) < n {
+		*s = make([]float64, n)
+	}
+	return s, (*s)[:n]
+}
 
 // Gram computes the m by n matrix G = X·Yᵀ of the inner products of m vectors X and n vectors Y, each of length k and
 // stored one after another.
@@ -14,10 +31,13 @@ func Gram(m, n, k int, x, y, g []float64, threads int) {
 		return
 	}
 	pieces := (k + pieceLength - 1) / pieceLength
-	parts := make([]float64, pieces*m*n)
+	s, parts := borrow(pieces * m * n)
+	defer scratchPool.Put(s)
+	clear(parts)
 	Parallel(threads, pieces, func(t int) {
 		p := t * pieceLength
-		var panels Panels
+		panels := panelsPool.Get().(*Panels)
+		defer panelsPool.Put(panels)
 		length := min(pieceLength, k-p)
 		panels.Pack(n, length, y[p:], k)
 		part := parts[t*m*n:][:m*n]
@@ -72,7 +92,8 @@ func Rotate(m, n, k int, c, x []float64, threads int) {
 	Parallel(threads, (k+piece-1)/piece, func(t int) {
 		p := t * piece
 		length := min(piece, k-p)
-		old := make([]float64, n*length)
+		s, old := borrow(n * length)
+		defer scratchPool.Put(s)
 		for j := range n {
 			copy(old[j*length:][:length], x[j*k+p:])
 		}

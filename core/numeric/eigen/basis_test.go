@@ -18,7 +18,7 @@ func TestBasisStaysOrthonormal(t *testing.T) {
 		mass[i] = 1 + math.Sin(float64(i))/2
 	}
 	for _, block := range []int{1, 3, 8} {
-		p := &pencil{ctx: context.Background(), k: k, m: trial.Diagonal(mass), threads: 1, stats: &Stats{}}
+		p := &pencil{ctx: context.Background(), k: k, m: trial.Diagonal(mass), lean: trial.Diagonal(mass), threads: 1, stats: &Stats{}}
 		var err error
 		if p.analysis, err = sparse.Analyse(k.Pattern(), sparse.MinimumDegree(k.Pattern())); err != nil {
 			t.Fatal(err)

@@ -34,7 +34,7 @@ func Lowest(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, 
 	res.Stats.Unknowns = k.N
 	s := &solver{
 		ctx: ctx, opt: &opt, res: res, below: -1,
-		p: &pencil{ctx: ctx, k: k, m: m.DropZeros(), threads: opt.Threads, stats: &res.Stats},
+		p: &pencil{ctx: ctx, k: k, m: m, lean: m.DropZeros(), threads: opt.Threads, stats: &res.Stats},
 	}
 	if err := s.solve(order); err != nil {
 		return nil, err
@@ -107,6 +107,7 @@ func (s *solver) solve(order sparse.Ordering) error {
 		return err
 	}
 	p.analysis = analysis
+	p.collect()
 	if massless(p.m) {
 		st.Converged, st.Exhausted = true, true
 		st.note("M is zero: there are no finite eigenvalues")

@@ -360,7 +360,7 @@ func TestThreadsChangeNoBit(t *testing.T) {
 
 func TestFactorServesStaticSolutions(t *testing.T) {
 	l := trial.Sheet{Nx: 6, Ny: 6, Cell: 5e-3, Thick: 2e-3}.Lattice()
-	res := lowest(t, l.K, l.M, eigen.Options{Modes: 7})
+	res := lowest(t, l.K, l.M, eigen.Options{Modes: 7, Static: true})
 	x := make([]float64, l.K.N)
 	x[17] = 1
 	res.Factor.Solve(x, 1)

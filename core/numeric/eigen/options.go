@@ -21,6 +21,8 @@ type Options struct {
 	// Tol is the greatest residual ‖A⁻¹Mφ-θφ‖/θ in the norm of M at which a pair counts as converged; 0 means 1e-9. The
 	// relative error of λ-σ is of the order of its square.
 	Tol float64
+	// Static asks for Result.Factor.
+	Static bool
 	// Threads is the number of goroutines; 0 means one per processor.
 	Threads int
 	// Progress, when not nil, is called now and then with the fraction done, rising to 1.
@@ -42,7 +44,7 @@ type Result struct {
 	Residuals []float64
 	Status    Status
 	Stats     Stats
-	// Factor is the factorisation of K-Shift·M, for static solutions.
+	// Factor is the factorisation of K-Shift·M, for static solutions, if Static asked for it.
 	Factor *sparse.Factor
 	// Shift is the σ used.
 	Shift float64

@@ -5,6 +5,7 @@ import (
 	"errors"
 	"math"
 	"math/rand/v2"
+	"runtime"
 	"time"
 
 	"hushframe/core/numeric/dense"
@@ -15,8 +16,10 @@ import (
 type pencil struct {
 	ctx      context.Context
 	k, m     *sparse.Symmetric
+	lean     *sparse.Symmetric // M without its zeros, for products
 	analysis *sparse.Analysis
-	factor   *sparse.Factor
+	factor   *sparse.Factor // at the shift; nil while there is none
+	spare    *sparse.Factor // memory for the next factorisation
 	shift    float64
 	threads  int
 	stats    *Stats
@@ -24,16 +27,48 @@ type pencil struct {
 
 func (p *pencil) order() int { return p.k.N }
 
-// factorise returns the factorisation of K-sM.
+// factorise returns the factorisation of K-sM, in the memory of the last one: there is never more than one.
 func (p *pencil) factorise(s float64) (*sparse.Factor, error) {
 	p.stats.Factorisations++
-	return p.analysis.Factorise(p.ctx, sparse.Combine(1, p.k, -s, p.m), p.threads)
+	p.letGo()
+	p.collect()
+	a := sparse.Combine(1, p.k, -s, p.m)
+	f := p.spare
+	p.spare = nil
+	if f == nil {
+		return p.analysis.Factorise(p.ctx, a, p.threads)
+	}
+	return f, f.Refactorise(p.ctx, a, p.threads)
+}
+
+// letGo gives up the factorisation at the shift but not its memory.
+func (p *pencil) letGo() {
+	if p.factor != nil {
+		p.spare, p.factor = p.factor, nil
+	}
+}
+
+// collect frees what is no longer used before the next phase needs as much: the collector left alone would let the
+// memory held grow to twice what is in use, most of which here are a few large arrays. It takes a few milliseconds, which
+// small problems are spared.
+func (p *pencil) collect() {
+	if p.order() > 10000 {
+		runtime.GC()
+	}
+}
+
+// resume makes the operator at the shift again if the factorisation had to go.
+func (p *pencil) resume() error {
+	if p.factor != nil {
+		return nil
+	}
+	_, err := p.setShift(p.shift)
+	return err
 }
 
 // setShift makes the operator for σ < 0. It returns how many eigenvalues of A are not positive.
 func (p *pencil) setShift(sigma float64) (int, error) {
 	defer since(time.Now(), &p.stats.FactorSeconds)
-	p.factor = nil // let the old one go before the new one is made
 	f, err := p.factorise(sigma)
 	if err != nil {
 		var pivot *sparse.PivotError
@@ -49,7 +84,7 @@ func (p *pencil) setShift(sigma float64) (int, error) {
 }
 
 // mass computes y = M·x for count vectors.
-func (p *pencil) mass(y, x []float64, count int) { p.multiply(p.m, y, x, count) }
+func (p *pencil) mass(y, x []float64, count int) { p.multiply(p.lean, y, x, count) }
 
 func (p *pencil) multiply(a *sparse.Symmetric, y, x []float64, count int) {
 	const group = 4
@@ -107,7 +142,8 @@ func (p *pencil) scale() float64 {
 }
 
 // count returns the number of eigenvalues below s, and whether the factorisation it comes from is good enough to be
-// believed: no pivot of doubtful sign, and a solve that gives back a known vector.
+// believed: no pivot of doubtful sign, and a solve that gives back a known vector. The factorisation at the shift, if
+// any, is lost: see resume.
 func (p *pencil) count(s float64) (int, bool, error) {
 	defer since(time.Now(), &p.stats.CountSeconds)
 	f, err := p.factorise(s)
@@ -118,6 +154,7 @@ func (p *pencil) count(s float64) (int, bool, error) {
 		}
 		return 0, false, err
 	}
+	p.spare = f
 	neg, zero, _ := f.Inertia()
 	return neg, zero == 0 && p.solveError(f, s) <= 1e-3, nil
 }

@@ -15,6 +15,10 @@ func (s *solver) searchAll() error {
 	block := opt.Block
 	adaptable := opt.Shift == 0 && opt.Limit == 0
 	for {
+		if err := s.p.resume(); err != nil {
+			return err
+		}
+		s.p.collect()
 		st.Attempts++
 		q := s.newSearch(block)
 		if adaptable {
@@ -48,6 +52,12 @@ func (s *solver) searchAll() error {
 		block = max(2*block, min(st.Counted-st.Found, 64))
 	}
 	s.deliver()
+	if opt.Static {
+		if err := s.p.resume(); err != nil {
+			return err
+		}
+		s.res.Factor = s.p.factor
+	}
 	s.progress(1)
 	return nil
 }
@@ -92,7 +102,7 @@ func (s *solver) mended(q *search) bool {
 // finish multiplies the converged pairs by the operator once more, which tells their residuals and frees them from null
 // vectors of M, and makes them orthonormal again from the lowest λ up.
 func (s *solver) finish(q *search) *pairs {
-	const chunk = 16
+	const chunk = 8
 	p := s.p
 	n, count := p.order(), q.leading()
 	rigid := make([]bool, count)
@@ -100,7 +110,8 @@ func (s *solver) finish(q *search) *pairs {
 		rigid[k] = q.pairs[k].locked && s.known.rigid[q.pairs[k].at]
 	}
 	x := q.take(count)
-	q.b = nil // its memory is needed
+	q.b, q.work = nil, nil
+	p.collect()
 	out := &pairs{}
 	b := newBasis(p, count)
 	mx, y, my := make([]float64, chunk*n), make([]float64, chunk*n), make([]float64, chunk*n)
@@ -288,7 +299,7 @@ func (s *solver) wanted() int {
 func (s *solver) deliver() {
 	p, st, res, f := s.p, &s.res.Status, s.res, s.known
 	n, w := p.order(), s.wanted()
-	res.Shift, res.Factor = p.shift, p.factor
+	res.Shift = p.shift
 	res.Values, res.Residuals = f.values[:w:w], f.residuals[:w:w]
 	for k := range w {
 		x := f.x[k*n:][:n:n]

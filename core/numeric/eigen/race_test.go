@@ -48,19 +48,66 @@ type lap struct {
 	order           float64
 }
 
-// BenchmarkRace times the 30 lowest modes against SciPy on the same matrices and the same shift, run by run in turn, and
-// logs a table of the fastest laps; ratios are those of totals without the inertia count, which SciPy does not make.
+// BenchmarkRace times the 30 lowest modes against SciPy and SLEPc, those of them that are installed, on the same matrices
+// and the same shift, lap by lap in turn, and prints a table of the fastest laps; ratios are those of totals without the
+// inertia count, which the others do not make. After several crosses it tells how time grows with size.
 // The matrices are those of crosses, and of the folder that HUSHFRAME_RACE names, if any: K.mtx and M.mtx in the
 // Matrix Market format (coordinate real symmetric).
 //
+//	apt-get install python3-scipy python3-petsc4py-real python3-slepc4py-real
 //	go test -run XXX -bench Race -benchtime 3x -timeout 1h ./core/numeric/eigen
 //
 // HUSHFRAME_RACE_SIZES=20,50,100,200,400 chooses the crosses (thousands of unknowns).
 func BenchmarkRace(b *testing.B) {
+	var first, last growth
 	for _, make := range runners(b) {
 		r := make() // one at a time, as what is held decides how often memory is collected
-		b.Run(fmt.Sprintf("%s/unknowns=%d", r.name, r.k.N), func(b *testing.B) { race(b, r) })
+		b.Run(fmt.Sprintf("%s/unknowns=%d", r.name, r.k.N), func(b *testing.B) {
+			ours := race(b, r)
+			if g := (growth{float64(r.k.N), ours.Seconds, ours.CPU}); r.nodeOf == nil {
+				return // another shape
+			} else if last = g; first.unknowns == 0 {
+				first = g
+			}
+		})
 	}
+	if n := math.Log(last.unknowns / first.unknowns); n > 0 {
+		fmt.Printf("from %.0f to %.0f unknowns time grows as n^%.2f, processor time as n^%.2f\n", first.unknowns, last.unknowns,
+			math.Log(last.seconds/first.seconds)/n, math.Log(last.cpu/first.cpu)/n)
+	}
+}
+
+// growth is one point of time over size.
+type growth struct{ unknowns, seconds, cpu float64 }
+
+// rival is another solver with a setting of it.
+type rival struct {
+	name, python, script string
+	args                 []string // after the folder
+	threads              int      // 0 leaves the library its own choice
+	most                 int      // unknowns beyond which it would take minutes; 0 means no bound
+}
+
+// rivals are those that are installed, each with the settings found best for it.
+func rivals(b *testing.B) (out []rival) {
+	if python := pythonWith("scipy"); python == "" {
+		b.Log("python3 with scipy is not installed: no comparison with it")
+	} else {
+		out = append(out,
+			rival{name: "scipy plain", python: python, script: "race.py", args: []string{"plain"}, most: 150e3},
+			rival{name: "scipy prepared", python: python, script: "race.py", args: []string{"prepared"}},
+			rival{name: "scipy loose", python: python, script: "race.py", args: []string{"loose"}, most: 150e3})
+	}
+	if python := pythonWith("runpy; runpy.run_path('testdata/race_slepc.py')"); python == "" {
+		b.Log("python3 with petsc4py and slepc4py is not installed: no comparison with SLEPc")
+	} else {
+		for threads := 1; threads <= 2; threads++ {
+			for _, how := range [][]string{{"cholmod", "external"}, {"mumps", "metis"}} {
+				out = append(out, rival{name: fmt.Sprint("slepc ", how[0], " ", threads), python: python, script: "race_slepc.py", args: how, threads: threads})
+			}
+		}
+	}
+	return out
 }
 
 func runners(b *testing.B) (out []func() runner) {
@@ -85,7 +132,7 @@ func runners(b *testing.B) (out []func() runner) {
 	return out
 }
 
-func race(b *testing.B, r runner) {
+func race(b *testing.B, r runner) (ours lap) {
 	ctx := b.Context()
 	pattern := sparse.Combine(1, r.k, 1, r.m).Pattern()
 	// The shift is the one that the solver chooses by itself.
@@ -95,15 +142,10 @@ func race(b *testing.B, r runner) {
 	}
 	shift := first.Shift
 	first = nil
-	python, folder := scipyPython(), ""
-	if python != "" {
-		folder = b.TempDir()
-		writeRaw(b, folder, "k", r.k)
-		writeRaw(b, folder, "m", r.m)
-	} else {
-		b.Log("python3 with scipy is not installed: no comparison with it")
-	}
-	routes := []string{"plain", "prepared", "loose"}
+	others := slices.DeleteFunc(rivals(b), func(o rival) bool { return o.most > 0 && r.k.N > o.most })
+	folder := b.TempDir()
+	writeRaw(b, folder, "k", r.k)
+	writeRaw(b, folder, "m", r.m)
 	bests := map[string]lap{}
 	keep := func(name string, l lap) {
 		if old, ok := bests[name]; !ok || l.Seconds < old.Seconds {
@@ -114,40 +156,46 @@ func race(b *testing.B, r runner) {
 		for threads := 1; threads <= 2; threads++ {
 			keep(fmt.Sprint("ours-", threads), ourLap(b, r, shift, threads))
 		}
-		for _, route := range routes {
-			if python != "" && (route == "prepared" || r.k.N < 150e3) { // the others would take minutes
-				keep(route, scipyLap(b, python, folder, route, shift))
-			}
+		for _, o := range others {
+			keep(o.name, o.lap(b, folder, shift))
 		}
 	}
-	ours := bests["ours-2"]
+	ours = bests["ours-2"]
 	st := ours.stats
 	b.ReportMetric(float64(st.Factor.Entries), "entries")
 	b.ReportMetric(st.Factor.Flops/1e9, "GFLOP")
 	var t strings.Builder
-	fmt.Fprintf(&t, "\n%-12s %8s %8s %8s %8s %8s %8s %8s %8s | %8s %8s\n", "", "order", "analyse", "factor", "solves", "orthog.", "Ritz", "total", "cpu", "count", "MB")
+	fmt.Fprintf(&t, "\n%-15s %8s %8s %8s %8s %8s %8s %8s %8s | %8s %8s\n", "", "order", "analyse", "factor", "solves", "orthog.", "Ritz", "total", "cpu", "count", "MB")
 	for threads := 1; threads <= 2; threads++ {
 		o := bests[fmt.Sprint("ours-", threads)]
 		st := o.stats
-		fmt.Fprintf(&t, "%-12s %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f | %8.3f %8.0f   %d solves, %.1f and %.1f GFLOP/s\n", fmt.Sprint("threads=", threads),
+		fmt.Fprintf(&t, "%-15s %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f %8.3f | %8.3f %8.0f   %d solves, %.1f and %.1f GFLOP/s\n", fmt.Sprint("threads=", threads),
 			o.order, st.Factor.AnalyseSeconds, st.FactorSeconds, st.SolveSeconds, st.OrthogonalSeconds, st.RitzSeconds, o.Seconds, o.CPU, st.CountSeconds, float64(o.Bytes)/1e6,
 			st.Solves, st.Factor.Flops/st.FactorSeconds/1e9, 4*float64(st.Solves)*float64(st.Factor.Entries)/st.SolveSeconds/1e9)
 	}
-	for _, route := range routes {
-		l, ok := bests[route]
-		if !ok {
+	best, leanest := math.Inf(1), math.Inf(1)
+	for _, o := range others {
+		l := bests[o.name]
+		fmt.Fprintf(&t, "%-15s %8s %8s %8.3f %8s %8s %8s %8.3f %8.3f | %8s %8.0f   %.2f times ours, %.2f in processor time, %.2f in memory\n", o.name, "", "", l.Factor, "", "", "",
+			l.Seconds, l.CPU, "", float64(l.Bytes)/1e6, l.Seconds/ours.Seconds, l.CPU/bests["ours-1"].CPU, float64(l.Bytes)/float64(ours.Bytes))
+		best, leanest = min(best, l.Seconds), min(leanest, float64(l.Bytes))
+		if len(l.Values) != len(ours.Values) {
+			b.Errorf("%s: %d values, ours %d", o.name, len(l.Values), len(ours.Values))
 			continue
 		}
-		fmt.Fprintf(&t, "%-12s %8s %8s %8.3f %8s %8s %8s %8.3f %8.3f | %8s %8.0f   %.2f times ours, %.2f in processor time\n", "scipy "+route, "", "", l.Factor, "", "", "", l.Seconds, l.CPU, "", float64(l.Bytes)/1e6, l.Seconds/ours.Seconds, l.CPU/bests["ours-1"].CPU)
-		b.ReportMetric(l.Seconds/ours.Seconds, route+"/ours")
 		for i, v := range ours.Values {
 			// Rigid values are rounding in both.
 			if want := l.Values[i]; math.Abs(v-want) > 1e-6*want && max(v, want) > 1e-3*l.Values[6] {
-				b.Errorf("%s: value %d is %g, ours %g", route, i, want, v)
+				b.Errorf("%s: value %d is %g, ours %g", o.name, i, want, v)
 			}
 		}
 	}
-	b.Log(t.String())
+	if len(others) > 0 {
+		b.ReportMetric(ours.Seconds/best, "ours/best")
+		b.ReportMetric(float64(ours.Bytes)/leanest, "memory/leanest")
+	}
+	fmt.Println(t.String()) // a benchmark's log is cut after ten lines
+	return ours
 }
 
 // ourLap includes the ordering, as SciPy's laps do, and leaves out the count.
@@ -194,17 +242,21 @@ func resident(key string) int64 {
 	return kb * 1024
 }
 
-func scipyLap(b *testing.B, python, folder, route string, shift float64) (l lap) {
-	cmd := exec.Command(python, "testdata/race.py", folder, route, strconv.Itoa(raceModes), strconv.FormatFloat(shift, 'g', -1, 64))
+func (o rival) lap(b *testing.B, folder string, shift float64) (l lap) {
+	args := append([]string{filepath.Join("testdata", o.script), folder}, o.args...)
+	cmd := exec.Command(o.python, append(args, strconv.Itoa(raceModes), strconv.FormatFloat(shift, 'g', -1, 64))...)
 	// Settings that someone has made for another library's sake would slow it down.
 	cmd.Env = slices.DeleteFunc(os.Environ(), func(v string) bool { return strings.HasPrefix(v, "OPENBLAS_") || strings.HasPrefix(v, "OMP_") })
+	if o.threads > 0 {
+		cmd.Env = append(cmd.Env, fmt.Sprint("OMP_NUM_THREADS=", o.threads))
+	}
 	cmd.Stderr = os.Stderr
 	text, err := cmd.Output()
 	if err != nil {
-		b.Fatal(err)
+		b.Fatal(o.name, err)
 	}
 	if err := json.Unmarshal(text, &l); err != nil {
-		b.Fatal(err)
+		b.Fatal(o.name, err)
 	}
 	return l
 }

@@ -12,10 +12,10 @@ import (
 	"hushframe/core/numeric/trial"
 )
 
-// scipyPython is a Python that has SciPy, or nothing.
-func scipyPython() string {
+// pythonWith is a Python that can import something, or nothing.
+func pythonWith(module string) string {
 	for _, p := range []string{"python3", "/usr/bin/python3"} {
-		if exec.Command(p, "-c", "import scipy").Run() == nil {
+		if exec.Command(p, "-c", "import "+module).Run() == nil {
 			return p
 		}
 	}
@@ -34,7 +34,7 @@ def full(m):
     return low + sp.tril(low, -1).T
 print(json.dumps(sorted(eigsh(full(d["k"]), k=d["modes"], M=full(d["m"]), sigma=d["sigma"], which="LM")[0].tolist())))
 `
-	python := scipyPython()
+	python := pythonWith("scipy")
 	if python == "" {
 		t.Skip("python3 with scipy is not installed: no comparison with it")
 	}

@@ -82,7 +82,10 @@ func (s *solver) settleShift(q *search) (*search, error) {
 		if err := s.shiftTo(to); err != nil {
 			return nil, err
 		}
-		q = s.newSearch(q.block)
+		block := q.block
+		q = nil
+		s.p.collect()
+		q = s.newSearch(block)
 	}
 	return q, nil
 }

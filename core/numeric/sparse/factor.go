@@ -12,8 +12,8 @@ import (
 	"hushframe/core/numeric/dense"
 )
 
-// Factor is the factorisation S·A·S = P·L·D·Lᵀ·Pᵀ of a symmetric matrix (see the package doc). It is not changed by its
-// methods, which may be called from several goroutines.
+// Factor is the factorisation S·A·S = P·L·D·Lᵀ·Pᵀ of a symmetric matrix (see the package doc). Only Refactorise changes
+// it; the other methods may be called from several goroutines.
 type Factor struct {
 	analysis *Analysis
 	scale    []float64 // of each unknown, a power of two
@@ -78,6 +78,30 @@ func Factorise(a *Symmetric, order Ordering, threads int) (*Factor, error) {
 // Factorise factorises a matrix that has the analysed pattern. When ctx is done it stops between two fronts and returns
 // the cause.
 func (an *Analysis) Factorise(ctx context.Context, a *Symmetric, threads int) (*Factor, error) {
+	last := &supernode{}
+	if len(an.nodes) > 0 {
+		last = &an.nodes[len(an.nodes)-1]
+	}
+	f := &Factor{
+		analysis: an, l: make([]float64, last.offset+len(last.rows)*int(last.width)),
+		pivots: make([][]int32, len(an.nodes)), d: make([]float64, an.pattern.N), e: make([]float64, an.pattern.N),
+	}
+	if err := f.fill(ctx, a, threads); err != nil {
+		return nil, err
+	}
+	return f, nil
+}
+
+// Refactorise overwrites the factorisation by that of another matrix of the same pattern, in the same memory. After an
+// error there is no factorisation, and only Refactorise may be called.
+func (f *Factor) Refactorise(ctx context.Context, a *Symmetric, threads int) error {
+	clear(f.l)
+	return f.fill(ctx, a, threads)
+}
+
+// fill makes the factorisation of a. The trapezoids must be zero.
+func (f *Factor) fill(ctx context.Context, a *Symmetric, threads int) error {
+	an := f.analysis
 	if a.N != an.pattern.N || len(a.Val) != len(an.pattern.Row) {
 		panic("sparse: Factorise: matrix does not have the analysed pattern")
 	}
@@ -85,20 +109,12 @@ func (an *Analysis) Factorise(ctx context.Context, a *Symmetric, threads int) (*
 	if threads <= 0 {
 		threads = runtime.GOMAXPROCS(0)
 	}
-	scale, err := scaling(a)
-	if err != nil {
-		return nil, err
-	}
-	last := &supernode{}
-	if len(an.nodes) > 0 {
-		last = &an.nodes[len(an.nodes)-1]
-	}
-	f := &Factor{
-		analysis: an, scale: scale, l: make([]float64, last.offset+len(last.rows)*int(last.width)),
-		pivots: make([][]int32, len(an.nodes)), d: make([]float64, a.N), e: make([]float64, a.N),
+	var err error
+	if f.scale, err = scaling(a); err != nil {
+		return err
 	}
 	if err := f.eliminate(ctx, a, threads); err != nil {
-		return nil, err
+		return err
 	}
 	f.Stats = FactorStats{
 		Unknowns: a.N, Entries: an.Entries, Flops: an.Flops, AnalyseSeconds: an.Seconds,
@@ -106,7 +122,7 @@ func (an *Analysis) Factorise(ctx context.Context, a *Symmetric, threads int) (*
 	}
 	f.takeStock()
 	f.Stats.FactorSeconds = time.Since(began).Seconds()
-	return f, nil
+	return nil
 }
 
 // scaling returns powers of two that bring the diagonal near one. An unknown with a zero diagonal is scaled by its

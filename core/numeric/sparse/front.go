@@ -12,9 +12,11 @@ import (
 func (f *Factor) eliminateColumns(s int32, l []float64, w *worker) *PivotError {
 	node := &f.analysis.nodes[s]
 	width, m, first := int(node.width), len(node.rows), int(node.first)
-	pivots := make([]int32, width)
+	if f.pivots[s] == nil {
+		f.pivots[s] = make([]int32, width)
+	}
+	pivots := f.pivots[s]
 	copy(pivots, node.rows)
-	f.pivots[s] = pivots
 
 	for k := 0; k < width; {
 		b := min(panelWidth, width-k)
