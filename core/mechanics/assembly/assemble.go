@@ -72,9 +72,10 @@ func (s *System) contributions() []contribution {
 	var all []contribution
 	for i := range s.plates {
 		a := &s.plates[i]
-		size := element.Packed(6 * a.nodes)
-		for e, nodes := range a.part.Elements {
-			c := s.follow(nodes[:a.nodes], a.part.Axes)
+		per, list := a.part.unknowns(), a.part.lists()
+		size := element.Packed(per * a.nodes)
+		for e := range a.part.Elements {
+			c := s.follow(list(e), per, a.part.Axes)
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -83,7 +84,7 @@ func (s *System) contributions() []contribution {
 		a := &s.beams[i]
 		size := element.Packed(12)
 		for e, nodes := range a.part.Elements {
-			c := s.follow(nodes[:], a.axes[e])
+			c := s.follow(nodes[:], element.NodeUnknowns, a.axes[e])
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -97,10 +98,10 @@ func (s *System) contributions() []contribution {
 	return all
 }
 
-// follow expresses the element-frame components of the nodes through the unknowns.
-func (s *System) follow(nodes []int32, axes Axes) contribution {
+// follow expresses the element-frame components of the nodes, the first per of each, through the unknowns.
+func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
 	l := s.layout
-	c := contribution{order: 6 * len(nodes)}
+	c := contribution{order: per * len(nodes)}
 	plain := true
 	for _, v := range nodes {
 		nd := &l.nodes[v]
@@ -110,7 +111,7 @@ func (s *System) follow(nodes []int32, axes Axes) contribution {
 	}
 	if plain {
 		for _, v := range nodes {
-			c.unknowns = append(c.unknowns, l.nodes[v].own[:]...)
+			c.unknowns = append(c.unknowns, l.nodes[v].own[:per]...)
 		}
 		return c
 	}
@@ -135,8 +136,8 @@ func (s *System) follow(nodes []int32, axes Axes) contribution {
 			if l.nodes[v].axes != axes {
 				m = axes.in6(l.nodes[v].axes.out6(m))
 			}
-			for k := range 6 {
-				c.transform[(6*i+k)*w+place[col.unknown]] += m[k]
+			for k := range per {
+				c.transform[(per*i+k)*w+place[col.unknown]] += m[k]
 			}
 		}
 	}

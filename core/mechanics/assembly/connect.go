@@ -57,12 +57,13 @@ func checkConnected(p *Problem, l *layout) error {
 	var all []named
 	for i := range p.Plates {
 		part := &p.Plates[i]
-		n := part.Type.Describe().Nodes
-		for _, e := range part.Elements {
-			for _, v := range e[1:n] {
-				f.join(int(e[0]), int(v))
+		list := part.lists()
+		for e := range part.Elements {
+			nodes := list(e)
+			for _, v := range nodes[1:] {
+				f.join(int(nodes[0]), int(v))
 			}
-			all = append(all, named{int(e[0]), p.Groups[part.Group].Name})
+			all = append(all, named{int(nodes[0]), p.Groups[part.Group].Name})
 		}
 	}
 	for i := range p.Beams {

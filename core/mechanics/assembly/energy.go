@@ -69,8 +69,9 @@ func (s *System) Energies(ctx context.Context, ys [][]float64, threads int) (*En
 const energyBatch = 32
 
 func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes [][]float64, out *Energies, threads int) error {
-	order, count := 6*a.nodes, len(a.part.Elements)
-	w := newWork(nodes, count, a.nodes, func(e int) []int32 { return a.part.Elements[e][:a.nodes] }, func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
+	per, count := a.part.unknowns(), len(a.part.Elements)
+	order := per * a.nodes
+	w := newWork(nodes, count, a.nodes, per, a.part.lists(), func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
 	if err := w.apply(ctx, a.matrices.Mass, threads); err != nil {
 		return err
 	}
@@ -85,7 +86,7 @@ func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes []
 			for e := range count {
 				to := motions[(e*some+m)*order:]
 				for i := range a.nodes {
-					copy(to[6*i:][:6], row[6*w.node(e, i):])
+					copy(to[per*i:][:per], row[6*w.node(e, i):])
 				}
 			}
 		})

@@ -3,7 +3,8 @@ package assembly
 import "hushframe/core/numeric/sparse"
 
 // Expand writes the motion of every node under the unknowns y: six components per node, node by
-// node, in airframe axes. Mid-side nodes of three-node elements get the mean of their corners, other
+// node, in airframe axes. A node of the mesh on which solid elements stand gets the straight line that fits the motion
+// of its fibre best. Mid-side nodes of three-node elements get the mean of their corners, other
 // unused nodes zeros. It panics when lengths do not fit.
 func (s *System) Expand(dst, y []float64) {
 	l := s.layout
@@ -35,6 +36,10 @@ func (s *System) Expand(dst, y []float64) {
 	}
 	for i := range l.problem.Plates {
 		part := &l.problem.Plates[i]
+		for f := range part.Fibres {
+			m := part.Fibres[f].line(dst, part.Axes)
+			copy(dst[6*part.Fibres[f].Node:], m[:])
+		}
 		if part.Type.Describe().Nodes != 3 {
 			continue
 		}

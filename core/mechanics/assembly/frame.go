@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/element"
@@ -47,8 +48,8 @@ func blame(format string, name string, err error) error {
 // Errors are *InputError: unknown names, impossible materials, patches without nodes, plies that do
 // not add up to the plate.
 func FromAirframe(m *mesh.Mesh, p *airframe.Properties, types func(name string) element.Type) (*Frame, error) {
-	b := &builder{mesh: m, properties: p, types: types, frame: &Frame{}, groups: map[string]int{}}
-	b.frame.Nodes = m.Nodes
+	b := &builder{mesh: m, properties: p, types: types, frame: &Frame{}, groups: map[string]int{}, fibres: map[int32][]int32{}}
+	b.frame.Nodes = slices.Clip(m.Nodes) // points of solid elements are appended
 	for _, step := range []func() error{b.readMaterials, b.parts, b.patches, b.links, b.bodies} {
 		if err := step(); err != nil {
 			return nil, err
@@ -65,6 +66,7 @@ type builder struct {
 	materials  map[string]airframe.Material
 	patchBody  map[string]int
 	groups     map[string]int
+	fibres     map[int32][]int32 // points of solid elements over a node of the mesh
 }
 
 func (b *builder) group(kind, name string, loss float64) int {
@@ -141,7 +143,7 @@ func (b *builder) parts() error {
 		if !ok {
 			return blame("plate %q", part.Name, errors.New("the properties do not know it"))
 		}
-		section, loss, err := b.section(part, x)
+		section, layup, loss, err := b.section(part, x)
 		if err != nil {
 			return blame("plate %q", part.Name, err)
 		}
@@ -153,42 +155,48 @@ func (b *builder) parts() error {
 		for last < len(b.mesh.Triangles) && int(b.mesh.TrianglePart[last]) == i {
 			last++
 		}
-		b.frame.Plates = append(b.frame.Plates, PlatePart{
-			Group: b.group(PartGroup, part.Name, loss), Type: kind, Section: section,
+		plate := PlatePart{
+			Group: b.group(PartGroup, part.Name, loss), Type: kind, Section: section, Layup: layup,
 			Axes: Axes{part.Frame.X, part.Frame.Y, part.Frame.Z}, Elements: b.mesh.Triangles[first:last],
-		})
+		}
+		b.frame.Extrude(&plate)
+		for _, f := range plate.Fibres {
+			b.fibres[f.Node] = f.Points
+		}
+		b.frame.Plates = append(b.frame.Plates, plate)
 		first = last
 	}
 	return nil
 }
 
-// section returns the section of a plate and its loss factor; that of a stack is the mean of its plies
+// section returns the section of a plate with its plies and its loss factor; that of a stack is the mean of its plies
 // weighted by their part of the bending stiffness.
-func (b *builder) section(part mesh.Part, x airframe.PlateProperties) (laminate.Section, float64, error) {
+func (b *builder) section(part mesh.Part, x airframe.PlateProperties) (laminate.Section, []laminate.Ply, float64, error) {
 	if len(x.Plies) == 0 {
 		m, err := b.material(x.Material)
 		if err != nil {
-			return laminate.Section{}, 0, err
+			return laminate.Section{}, nil, 0, err
 		}
-		s, err := laminate.Homogeneous(elastic(m), part.Thickness, x.Fibre)
-		return s, m.LossFactor, err
+		ply := laminate.Ply{Material: elastic(m), Thickness: part.Thickness, Angle: x.Fibre}
+		s, err := laminate.Homogeneous(ply.Material, ply.Thickness, ply.Angle)
+		return s, []laminate.Ply{ply}, m.LossFactor, err
 	}
 	var plies []laminate.Ply
 	total := 0.0
 	for _, ply := range x.Plies {
 		m, err := b.material(ply.Material)
 		if err != nil {
-			return laminate.Section{}, 0, err
+			return laminate.Section{}, nil, 0, err
 		}
 		plies = append(plies, laminate.Ply{Material: elastic(m), Thickness: ply.Thickness, Angle: x.Fibre + ply.Angle})
 		total += ply.Thickness
 	}
 	if math.Abs(total-part.Thickness) > 1e-3*part.Thickness {
-		return laminate.Section{}, 0, fmt.Errorf("its plies add up to %.4g mm, the plate is %.4g mm thick", 1e3*total, 1e3*part.Thickness)
+		return laminate.Section{}, nil, 0, fmt.Errorf("its plies add up to %.4g mm, the plate is %.4g mm thick", 1e3*total, 1e3*part.Thickness)
 	}
 	s, err := laminate.Stack(plies)
 	if err != nil {
-		return s, 0, err
+		return s, nil, 0, err
 	}
 	loss, weight, z := 0.0, 0.0, -total/2
 	for i, ply := range plies {
@@ -199,7 +207,7 @@ func (b *builder) section(part mesh.Part, x airframe.PlateProperties) (laminate.
 		weight += w
 		z = top
 	}
-	return s, loss / weight, nil
+	return s, plies, loss / weight, nil
 }
 
 func (b *builder) patches() error {
@@ -214,6 +222,7 @@ func (b *builder) patches() error {
 			if used[v] {
 				body.Nodes = append(body.Nodes, v)
 			}
+			body.Nodes = append(body.Nodes, b.fibres[v]...) // clamped through the thickness
 		}
 		if len(body.Nodes) == 0 {
 			return blame("patch %q", x.Name, fmt.Errorf("no node of plate %q lies in it", b.mesh.Parts[x.Part].Name))

@@ -19,8 +19,7 @@ func (s *System) GroupStiffness(ctx context.Context, ys [][]float64, threads int
 	nodes := s.expandAll(ys, threads)
 	for i := range s.plates {
 		a := &s.plates[i]
-		lists := func(e int) []int32 { return a.part.Elements[e][:a.nodes] }
-		w := newWork(nodes, len(a.part.Elements), a.nodes, lists, func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
+		w := newWork(nodes, len(a.part.Elements), a.nodes, a.part.unknowns(), a.part.lists(), func(int) Axes { return a.part.Axes }, a.part.Axes, threads)
 		if err := w.apply(ctx, a.matrices.Stiffness, threads); err != nil {
 			return nil, err
 		}
@@ -29,7 +28,7 @@ func (s *System) GroupStiffness(ctx context.Context, ys [][]float64, threads int
 	for i := range s.beams {
 		a := &s.beams[i]
 		lists := func(e int) []int32 { return a.part.Elements[e][:] }
-		w := newWork(nodes, len(a.part.Elements), beam.Unknowns/6, lists, func(e int) Axes { return a.axes[e] }, Global, threads)
+		w := newWork(nodes, len(a.part.Elements), beam.Unknowns/6, element.NodeUnknowns, lists, func(e int) Axes { return a.axes[e] }, Global, threads)
 		if err := w.apply(ctx, a.matrices.Stiffness, threads); err != nil {
 			return nil, err
 		}
@@ -76,17 +75,17 @@ func (s *System) expandAll(ys [][]float64, threads int) [][]float64 {
 // components of its own nodes in one set of axes.
 type work struct {
 	count, width  int // of motions; of components
-	order         int // of the element matrices
+	order, per    int // of the element matrices; unknowns of one node
 	elements      int
 	node          func(e, i int) int // of the part
 	turned        func(e int) (axes Axes, differ bool)
 	motion, force []float64 // count × width
 }
 
-// newWork gathers nodes, the motions of all nodes in airframe axes, into common axes. Elements may have
-// axes of their own.
-func newWork(nodes [][]float64, elements, perElement int, list func(e int) []int32, axes func(e int) Axes, common Axes, threads int) *work {
-	w := &work{count: len(nodes), order: 6 * perElement, elements: elements}
+// newWork gathers nodes, the motions of all nodes in airframe axes, into common axes. Elements with all six unknowns
+// per node may have axes of their own.
+func newWork(nodes [][]float64, elements, perElement, per int, list func(e int) []int32, axes func(e int) Axes, common Axes, threads int) *work {
+	w := &work{count: len(nodes), order: per * perElement, per: per, elements: elements}
 	place := map[int32]int{}
 	var own []int32
 	index := make([]int, elements*perElement)
@@ -125,7 +124,7 @@ const panel = 20
 // apply computes the forces of the packed element matrices.
 func (w *work) apply(ctx context.Context, packed []float64, threads int) error {
 	clear(w.force)
-	size, n := element.Packed(w.order), w.order
+	size, n, per := element.Packed(w.order), w.order, w.per
 	dense.Parallel(threads, (w.count+panel-1)/panel, func(t int) {
 		lo := t * panel
 		rows := min(panel, w.count-lo)
@@ -138,9 +137,9 @@ func (w *work) apply(ctx context.Context, packed []float64, threads int) error {
 			axes, differ := w.turned(e)
 			for r := range rows {
 				row := w.motion[(lo+r)*w.width:]
-				for i := range n / 6 {
+				for i := range n / per {
 					at := 6 * w.node(e, i)
-					copy(u[r*n+6*i:][:6], row[at:])
+					copy(u[r*n+per*i:][:per], row[at:])
 				}
 			}
 			if differ {
@@ -153,8 +152,8 @@ func (w *work) apply(ctx context.Context, packed []float64, threads int) error {
 			}
 			for r := range rows {
 				row := w.force[(lo+r)*w.width:]
-				for i := range n / 6 {
-					to, from := row[6*w.node(e, i):][:6], f[r*n+6*i:][:6]
+				for i := range n / per {
+					to, from := row[6*w.node(e, i):][:per], f[r*n+per*i:][:per]
 					for k := range to {
 						to[k] -= from[k]
 					}

@@ -25,9 +25,9 @@ func (s *System) Place(unknown int) Vec { return s.layout.where[unknown] }
 func (l *layout) groupOf(node int32) int {
 	for i := range l.problem.Plates {
 		part := &l.problem.Plates[i]
-		n := part.Type.Describe().Nodes
-		for _, e := range part.Elements {
-			if slices.Contains(e[:n], node) {
+		list := part.lists()
+		for e := range part.Elements {
+			if slices.Contains(list(e), node) {
 				return part.Group
 			}
 		}

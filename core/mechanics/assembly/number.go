@@ -3,6 +3,8 @@ package assembly
 import (
 	"fmt"
 	"math"
+
+	"hushframe/core/mechanics/element"
 )
 
 // node is how one node of the problem follows the unknowns.
@@ -13,6 +15,7 @@ type node struct {
 	own      [6]int32 // unknown of each component in axes, -1 when held or slaved
 	slaved   [6]bool  // components that follow the body
 	separate bool     // component 5 is a drilling rotation of its own
+	solid    bool     // a point of a solid element: it has no rotations
 }
 
 // layout is the numbering of a problem.
@@ -39,9 +42,9 @@ type source struct {
 func usedNodes(p *Problem) []bool {
 	used := make([]bool, len(p.Nodes))
 	for i := range p.Plates {
-		n := p.Plates[i].Type.Describe().Nodes
-		for _, e := range p.Plates[i].Elements {
-			for _, v := range e[:n] {
+		list := p.Plates[i].lists()
+		for e := range p.Plates[i].Elements {
+			for _, v := range list(e) {
 				used[v] = true
 			}
 		}
@@ -63,9 +66,10 @@ func (l *layout) frames() {
 	const unseen, flat, folded = 0, 1, 2
 	state := make([]byte, len(p.Nodes))
 	for i := range p.Plates {
-		axes, n := p.Plates[i].Axes, p.Plates[i].Type.Describe().Nodes
-		for _, e := range p.Plates[i].Elements {
-			for _, v := range e[:n] {
+		axes, list, solid := p.Plates[i].Axes, p.Plates[i].lists(), p.Plates[i].Points != nil
+		for e := range p.Plates[i].Elements {
+			for _, v := range list(e) {
+				l.nodes[v].solid = solid
 				switch {
 				case state[v] == unseen:
 					state[v], l.nodes[v].axes = flat, axes
@@ -103,7 +107,7 @@ func number(p *Problem) (*layout, error) {
 		for _, v := range m.nodes {
 			nd := &l.nodes[v]
 			nd.body = b
-			nd.slaved = [6]bool{true, true, true, true, true, !nd.separate}
+			nd.slaved = [6]bool{true, true, true, !nd.solid, !nd.solid, !nd.solid && !nd.separate}
 		}
 	}
 	held := map[int32][6]bool{}
@@ -131,7 +135,7 @@ func number(p *Problem) (*layout, error) {
 		h := held[int32(v)]
 		for c := range 6 {
 			nd.own[c] = -1
-			if l.used[v] && !nd.slaved[c] && !h[c] {
+			if l.used[v] && !nd.slaved[c] && !h[c] && !(nd.solid && c >= element.PointUnknowns) {
 				nd.own[c] = l.unknown(source{node: int32(v), body: -1, component: int8(c)}, p.Nodes[v])
 			}
 		}

@@ -19,6 +19,8 @@ var Global = Axes{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}
 // Problem is a structure to assemble. Nodes in no element are left out and move with nothing.
 type Problem struct {
 	Nodes    []Vec // m
+	// Own is how many of the last nodes are points of solid elements; the others are those of the mesh.
+	Own      int
 	Groups   []Group
 	Plates   []PlatePart
 	Beams    []BeamPart
@@ -46,8 +48,20 @@ type PlatePart struct {
 	Type    element.Type
 	Axes    Axes // of the elements and of the section
 	Section laminate.Section
+	Layup   []laminate.Ply // what the section is made of
 	// Elements lists nodes; only the first Type.Describe().Nodes of each count.
 	Elements [][6]int32
+	// Points lists the nodes that carry the unknowns of each solid element, and Fibres those above and below each node
+	// of the mesh; both nil for elements with six unknowns per node.
+	Points [][]int32
+	Fibres []Fibre
+}
+
+// Fibre is the points of solid elements on one line through the plate, from the lower face to the upper.
+type Fibre struct {
+	Node    int32 // of the mesh, on the mid-surface
+	Points  []int32
+	Heights []float64 // over the mid-surface, m
 }
 
 // BeamPart is a chain of beams of one section. Y is across the beams: the y axis of the section.

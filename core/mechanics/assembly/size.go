@@ -13,34 +13,42 @@ type Size struct {
 	Bytes int64
 }
 
-// Measure estimates the size of a problem. Unknowns are six per node in use and body, before rigid ties.
-// Entries of the factor are those of nested dissection on a plane, 31/4 n log₂ n per unknown of a node
-// (A. George, Nested dissection of a regular finite element mesh, SIAM J. Numer. Anal. 10, 1973), six
-// unknowns to a node; measured on frames it is within a factor of two.
+// Measure estimates the size of a problem. Unknowns are six per node in use and body, three per point of a solid element,
+// before rigid ties. Entries of the factor are those of nested dissection on a plane, 31/4 n log₂ n per pair of unknowns of
+// a place (A. George, Nested dissection of a regular finite element mesh, SIAM J. Numer. Anal. 10, 1973), six unknowns to
+// a node, and those of a whole fibre where solid elements stand; measured on frames it is within a factor of two.
 func Measure(p *Problem, vectors int) Size {
 	var s Size
-	nodes := 0
-	for _, used := range usedNodes(p) {
-		if used {
-			nodes++
+	places, unknowns, pairs := 0, 0, 0.0
+	place := func(n int) {
+		places++
+		unknowns += n
+		pairs += float64(n) * float64(n)
+	}
+	for v, used := range usedNodes(p) {
+		if used && v < len(p.Nodes)-p.Own {
+			place(element.NodeUnknowns)
 		}
 	}
-	s.Unknowns = 6 * (nodes + len(p.Bodies))
 	var packed, entries float64
-	add := func(elements, nodes int) {
+	add := func(elements, unknowns int) {
 		s.Elements += elements
-		packed += float64(elements) * float64(element.Packed(6*nodes))
+		packed += float64(elements) * float64(element.Packed(unknowns))
 		// Each element adds about its own block of the pattern, shared by its neighbours.
-		entries += float64(elements) * float64(element.Packed(6*nodes)) / 2
+		entries += float64(elements) * float64(element.Packed(unknowns)) / 2
 	}
 	for i := range p.Plates {
-		add(len(p.Plates[i].Elements), p.Plates[i].Type.Describe().Nodes)
+		part := &p.Plates[i]
+		add(len(part.Elements), part.Type.Describe().Unknowns())
+		for f := range part.Fibres {
+			place(element.PointUnknowns * len(part.Fibres[f].Points))
+		}
 	}
 	for i := range p.Beams {
-		add(len(p.Beams[i].Elements), 2)
+		add(len(p.Beams[i].Elements), 2*element.NodeUnknowns)
 	}
-	places := math.Max(2, float64(nodes))
-	factor := 31.0 / 4 * places * math.Log2(places) * 6 * 6 / 4
+	s.Unknowns = unknowns + 6*len(p.Bodies)
+	factor := 31.0 / 4 * pairs * math.Log2(math.Max(2, float64(places))) / 4
 	const number, index = 8, 4
 	s.Bytes = int64(2*number*packed + (2*number+index)*entries + number*factor*1.5 + 3*number*float64(vectors)*float64(s.Unknowns))
 	return s

@@ -34,7 +34,7 @@ type System struct {
 // assembledPlates keeps what energies and groups need again.
 type assembledPlates struct {
 	part     *PlatePart
-	nodes    int
+	nodes    int // that carry the unknowns of an element
 	batch    element.Batch
 	matrices *element.Matrices
 }
@@ -117,12 +117,13 @@ func (e *PartError) Unwrap() error { return e.Err }
 
 func (s *System) computePlates(ctx context.Context, part *PlatePart, threads int) error {
 	d := part.Type.Describe()
-	a := assembledPlates{part: part, nodes: d.Nodes}
+	a := assembledPlates{part: part, nodes: d.Unknowns() / part.unknowns()}
 	origin := Vec{}
 	if len(part.Elements) > 0 {
 		origin = s.layout.problem.Nodes[part.Elements[0][0]]
 	}
 	a.batch.Sections = append(a.batch.Sections, part.Section)
+	a.batch.Layups = append(a.batch.Layups, part.Layup)
 	a.batch.Section = make([]int32, len(part.Elements))
 	a.batch.Threads = threads
 	a.batch.Nodes = make([]float64, 0, 3*d.Nodes*len(part.Elements))
@@ -181,16 +182,22 @@ func (s *System) weigh() {
 	}
 	for i := range s.plates {
 		a := &s.plates[i]
-		size := element.Packed(6 * a.nodes)
-		// Coupling inertia: the centre of an unsymmetric plate lies off its reference plane.
-		off := scale(a.part.Section.Coupling/a.part.Section.Mass, a.part.Axes[2])
-		for e, nodes := range a.part.Elements {
+		per, list := a.part.unknowns(), a.part.lists()
+		size := element.Packed(per * a.nodes)
+		// Coupling inertia: the centre of an unsymmetric plate lies off its reference plane; solid elements have their
+		// mass where it is.
+		off := Vec{}
+		if a.part.Points == nil {
+			off = scale(a.part.Section.Coupling/a.part.Section.Mass, a.part.Axes[2])
+		}
+		for e := range a.part.Elements {
+			nodes := list(e)
 			// The mass entries of u_x against u_x add up to the mass; by rows they weigh the nodes.
 			packed := a.matrices.Mass[size*e:]
 			for i := range a.nodes {
 				m := 0.0
 				for j := range a.nodes {
-					m += packed[element.Packed(6*max(i, j))+6*min(i, j)]
+					m += packed[element.Packed(per*max(i, j))+per*min(i, j)]
 				}
 				point(a.part.Group, m, add(p.Nodes[nodes[i]], off))
 			}

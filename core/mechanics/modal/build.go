@@ -123,9 +123,10 @@ func (b *span) finish(ctx context.Context, out *Basis, places []Place, bare bool
 		}
 		full := make([]float64, 6*len(s.Problem().Nodes))
 		s.Expand(full, b.vector(v))
-		shape := make([]float64, 0, len(full)/2)
-		for i := 0; i < len(full); i += 6 {
-			shape = append(shape, full[i:i+3]...)
+		shown := len(s.Problem().Nodes) - s.Problem().Own
+		shape := make([]float64, 0, 3*shown)
+		for i := range shown {
+			shape = append(shape, full[6*i:6*i+3]...)
 		}
 		out.Shapes[v] = shape
 	})
