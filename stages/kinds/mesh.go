@@ -14,6 +14,7 @@ var MeshKind = artifact.Kind{
 		{Name: "nodes", About: "nodes in airframe axes", Columns: vecCols("at", "m", "place")},
 		{Name: "parts", About: "plates and standoffs", Columns: columns(
 			col("name", artifact.Text, "", "name"), col("standoff", artifact.Truth, "", "true for a standoff"), col("element", artifact.Text, "", "element type"),
+			col("options", artifact.Text, "", "options of an element type from outside as JSON, empty for none"),
 			col("thickness", artifact.Float, "m", "of a plate"), col("outer", artifact.Float, "m", "diameter of a standoff"), col("inner", artifact.Float, "m", "diameter of a standoff"),
 			frameCols("mid-surface frame"),
 		)},
@@ -49,6 +50,7 @@ func EncodeMesh(m *mesh.Mesh) *artifact.Artifact {
 	t.Set("name", each(n, func(i int) string { return m.Parts[i].Name }))
 	t.Set("standoff", each(n, func(i int) bool { return m.Parts[i].Standoff }))
 	t.Set("element", each(n, func(i int) string { return m.Parts[i].Element }))
+	t.Set("options", each(n, func(i int) string { return m.Parts[i].Options }))
 	t.Set("thickness", each(n, func(i int) float64 { return m.Parts[i].Thickness }))
 	t.Set("outer", each(n, func(i int) float64 { return m.Parts[i].Outer }))
 	t.Set("inner", each(n, func(i int) float64 { return m.Parts[i].Inner }))
@@ -97,7 +99,7 @@ func DecodeMesh(a *artifact.Artifact) (*mesh.Mesh, error) {
 	m.Nodes = each(t.Rows(), func(i int) airframe.Vec { return getVec(t, "at", i) })
 	t = a.Table("parts")
 	for i := range t.Rows() {
-		m.Parts = append(m.Parts, mesh.Part{Name: t.Texts("name")[i], Standoff: t.Truths("standoff")[i], Element: t.Texts("element")[i],
+		m.Parts = append(m.Parts, mesh.Part{Name: t.Texts("name")[i], Standoff: t.Truths("standoff")[i], Element: t.Texts("element")[i], Options: t.Texts("options")[i],
 			Thickness: t.Floats("thickness")[i], Outer: t.Floats("outer")[i], Inner: t.Floats("inner")[i], Frame: getFrame(t, i)})
 	}
 	var err error

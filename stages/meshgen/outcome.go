@@ -12,7 +12,7 @@ import (
 const narrow = 25 * math.Pi / 180
 
 // outcome reports counts and the shape of the triangles, by part.
-func outcome(m *mesh.Mesh) *stage.Outcome {
+func outcome(m *mesh.Mesh, types map[string]elementType) *stage.Outcome {
 	s := stage.Section{Title: "Mesh", Columns: []stage.Column{
 		{Name: "part"}, {Name: "element"}, {Name: "triangles", Right: true}, {Name: "beams", Right: true},
 		{Name: "smallest angle, deg", Right: true}, {Name: "below 25 deg", Right: true}, {Name: "shortest side, mm", Right: true}}}
@@ -34,8 +34,8 @@ func outcome(m *mesh.Mesh) *stage.Outcome {
 		s.Rows = append(s.Rows, []string{fmt.Sprintf("%d standoffs", standoffs), "beam", "", fmt.Sprint(len(m.Beams)), "", "", ""})
 	}
 	s.Rows = append(s.Rows, row("all", "", all, len(m.Beams)))
-	nodes := m.NodesInUse()
-	s.Text = fmt.Sprintf("%d nodes, %d unknowns before rigid ties", nodes, 6*nodes)
+	nodes, count := unknowns(m, types)
+	s.Text = fmt.Sprintf("%d nodes, %d unknowns before rigid ties", nodes, count)
 	if all.Narrow > 0 {
 		s.Text += "; flat triangles lie in the stretched rows along free edges and at sharp corners"
 	}
@@ -44,7 +44,7 @@ func outcome(m *mesh.Mesh) *stage.Outcome {
 			"nodes":            float64(nodes),
 			"triangles":        float64(len(m.Triangles)),
 			"beams":            float64(len(m.Beams)),
-			"unknowns":         float64(6 * nodes),
+			"unknowns":         float64(count),
 			"smallest_angle":   stage.Quantity{SI: all.SmallestAngle, Dimension: "angle"},
 			"narrow_triangles": float64(all.Narrow),
 			"shortest_side":    stage.Quantity{SI: all.ShortestSide, Dimension: "length"},

@@ -4,14 +4,11 @@ package meshgen
 import (
 	"context"
 	"errors"
-	"slices"
-	"strings"
 
-	"hushframe/core/mechanics/element/shell"
+	"hushframe/core/extension"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
-	"hushframe/core/pipeline/nearest"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -36,19 +33,21 @@ along its edges are short enough for torsion; elsewhere they are as long as
 wanted, and shorter near small features. Standoffs become beams.`,
 		Arguments: []stage.Argument{
 			{Name: "geometry", About: "geometry from import", Type: stage.Type{Kind: stage.Artifact, Kinds: []string{"geometry"}}, Required: true},
-			{Name: "element", About: "element type of plates", Type: stage.Type{Kind: stage.Text}, Default: "quadratic-triangle", Example: `"quadratic-triangle"`, Choices: elementNames()},
-			{Name: "elements", About: "element types of single plates, by name", Type: stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}},
-				Example: `{ top = "linear-triangle" }`},
+			{Name: "element", About: "element type of plates", Type: stage.Type{Kind: stage.Text}, Default: "quadratic-triangle", Example: `"quadratic-triangle"`, Choices: elementNames(), Extension: extension.ElementKind},
+			{Name: "options", About: "options of that element type, for one from outside", Type: stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Any}},
+				OptionsOf: "element", Variants: elementOptions(), Example: `{ layers = 2 }`},
+			{Name: "elements", About: "element types of single plates, by name; one from outside has its default options", Type: stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Text}},
+				Example: `{ top = "linear-triangle" }`, Choices: elementNames(), Extension: extension.ElementKind},
 			{Name: "size", About: "wanted length of triangle sides", Type: length, Default: stage.Quantity{SI: 5e-3, Dimension: "length"}, Example: "5 mm", Above: &zero},
 			{Name: "sizes", About: "wanted lengths for single plates, by name", Type: stage.Type{Kind: stage.Map, Element: &length}, Example: `{ arm_fr = "2 mm" }`},
 			{Name: "round", About: "least number of sides round a hole", Type: whole, Default: 12.0, Example: "12", Min: &four, Max: &many},
 		},
 		Outputs: []stage.Output{{Name: "mesh", Kind: "mesh", About: "nodes, triangles, beams and the nodes of patches"}},
 		Figures: []stage.Figure{
-			{Name: "nodes", About: "number of nodes", Type: whole},
+			{Name: "nodes", About: "number of nodes, or points of solid elements, in use", Type: whole},
 			{Name: "triangles", About: "number of triangles", Type: whole},
 			{Name: "beams", About: "number of beams", Type: whole},
-			{Name: "unknowns", About: "six for each node in use, before rigid ties take some away", Type: whole},
+			{Name: "unknowns", About: "six for each node in use, three for each point of a solid element, before rigid ties take some away", Type: whole},
 			{Name: "smallest_angle", About: "smallest angle of any triangle", Type: stage.Type{Kind: stage.Amount, Dimension: "angle", Unit: "deg"}},
 			{Name: "narrow_triangles", About: "triangles with an angle below 25 degrees", Type: whole},
 			{Name: "shortest_side", About: "shortest side of any triangle", Type: length},
@@ -73,37 +72,28 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		Progress: func(done, total int) { call.Report.Progress("plates", float64(done)/float64(total)) },
 	}
 	for name, v := range call.Arguments.Map("elements") {
-		if !slices.Contains(elementNames(), v.(string)) {
-			f := fault.New(fault.Input, "there is no element type %q", v).In("mesh plate", name).Of("elements")
-			if near := nearest.Name(v.(string), elementNames()); near != "" {
-				return nil, f.Do("did you mean %q?", near)
-			}
-			return nil, f.Do("use one of %s", strings.Join(elementNames(), ", "))
-		}
 		o.Elements[name] = v.(string)
 	}
 	for name, v := range call.Arguments.Map("sizes") {
 		o.Sizes[name] = v.(stage.Quantity).SI
+	}
+	types, err := elementTypes(ctx, call)
+	if err != nil {
+		return nil, err
 	}
 	call.Report.Progress("plates", 0)
 	m, err := mesh.Build(ctx, g, o)
 	if err != nil {
 		return nil, explain(err, call.Arguments)
 	}
+	for p := range m.Parts {
+		m.Parts[p].Options = types[m.Parts[p].Element].options
+	}
 	call.Report.Progress("writing", 1)
 	if _, err := artifact.Write(call.Outputs["mesh"], kinds.EncodeMesh(m)); err != nil {
 		return nil, err
 	}
-	return outcome(m), nil
-}
-
-// elementNames lists the element types that plates can have.
-func elementNames() []string {
-	var names []string
-	for _, t := range shell.Types() {
-		names = append(names, t.Describe().Name)
-	}
-	return names
+	return outcome(m, types), nil
 }
 
 // explain turns an error of the kernel into a fault with a remedy.

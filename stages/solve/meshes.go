@@ -6,6 +6,7 @@ import (
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/assembly"
+	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
@@ -13,8 +14,8 @@ import (
 
 // estimate solves on the refined mesh as well and gives the modes their errors. Meshes of two sizes would not
 // do: what sets the size of most elements is the free edges and the rims of holes.
-func estimate(ctx context.Context, call *stage.Call, modes *kinds.Modes, m *mesh.Mesh, p *airframe.Properties, set settings) error {
-	problem, err := assembly.FromAirframe(assembly.Refine(m), p, builtin)
+func estimate(ctx context.Context, call *stage.Call, modes *kinds.Modes, m *mesh.Mesh, p *airframe.Properties, types func(string) element.Type, set settings) error {
+	problem, err := assembly.FromAirframe(assembly.Refine(m), p, types)
 	if err != nil {
 		return err
 	}

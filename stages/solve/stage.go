@@ -6,10 +6,12 @@ import (
 	"errors"
 	"fmt"
 
+	"hushframe/core/extension"
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/assembly"
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/shell"
+	"hushframe/core/mechanics/mesh"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -114,7 +116,11 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, err
 	}
-	problem, err := assembly.FromAirframe(m, p, builtin)
+	types, err := elementTypes(ctx, call, m)
+	if err != nil {
+		return nil, err
+	}
+	problem, err := assembly.FromAirframe(m, p, types)
 	if err != nil {
 		return nil, explain(err)
 	}
@@ -123,7 +129,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, explain(err)
 	}
 	if call.Arguments.Truth("estimate_error") {
-		if err := estimate(ctx, call, modes, m, p, set); err != nil {
+		if err := estimate(ctx, call, modes, m, p, types, set); err != nil {
 			return nil, explain(err)
 		}
 	}
@@ -147,14 +153,30 @@ func read[T any](call *stage.Call, name string, decode func(*artifact.Artifact) 
 	return decode(a)
 }
 
-// builtin gives the element types that come with the product.
-func builtin(name string) element.Type {
+// elementTypes binds the element types of the plates to their options: built-in ones and those that the step can reach.
+func elementTypes(ctx context.Context, call *stage.Call, m *mesh.Mesh) (func(name string) element.Type, error) {
+	var builtin []extension.Element
 	for _, t := range shell.Types() {
-		if t.Describe().Name == name {
-			return t
+		builtin = append(builtin, extension.FromType(t))
+	}
+	types := map[string]element.Type{}
+	for _, part := range m.Parts {
+		if part.Standoff || types[part.Element] != nil {
+			continue
+		}
+		e, err := extension.FindElement(ctx, part.Element, builtin, call)
+		if err != nil {
+			return nil, fault.From(err).In("solve plate", part.Name).Of("mesh")
+		}
+		options, err := stage.DecodeValues([]byte(part.Options))
+		if err != nil {
+			return nil, fault.New(fault.Protocol, "the options of its element type cannot be read: %v", err).In("solve plate", part.Name).Of("mesh")
+		}
+		if types[part.Element], err = extension.Bind(ctx, e, options); err != nil {
+			return nil, err
 		}
 	}
-	return nil
+	return func(name string) element.Type { return types[name] }, nil
 }
 
 // task is one solution: on the mesh or on its refinement, which needs no response.

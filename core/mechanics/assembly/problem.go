@@ -18,7 +18,7 @@ var Global = Axes{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}}
 
 // Problem is a structure to assemble. Nodes in no element are left out and move with nothing.
 type Problem struct {
-	Nodes    []Vec // m
+	Nodes []Vec // m
 	// Own is how many of the last nodes are points of solid elements; the others are those of the mesh.
 	Own      int
 	Groups   []Group

@@ -214,21 +214,6 @@ func TestSizesAndElementsOfSinglePlates(t *testing.T) {
 			t.Errorf("part %d: %d triangles, then %d", part, p, q)
 		}
 	}
-	// A mid-side node counts only in quadratic triangles.
-	mids := map[int32]bool{}
-	for k, n := range b.Triangles {
-		for i, v := range n {
-			if b.TrianglePart[k] == 0 && i >= 3 {
-				mids[v] = true
-			}
-		}
-	}
-	if got, want := b.NodesInUse(), len(b.Nodes)-len(mids); got != want || len(mids) == 0 {
-		t.Errorf("%d of %d nodes in use, want %d", got, len(b.Nodes), want)
-	}
-	if got := a.NodesInUse(); got != len(a.Nodes) {
-		t.Errorf("%d of %d nodes in use", got, len(a.Nodes))
-	}
 }
 
 func TestQuality(t *testing.T) {

@@ -30,6 +30,7 @@ type Part struct {
 	Name      string
 	Standoff  bool
 	Element   string         // element type, for plates
+	Options   string         // of an element type that has some; the mesh only carries them
 	Thickness float64        // m, of a plate
 	Outer     float64        // diameters of a standoff
 	Inner     float64        // 0 is solid

@@ -37,28 +37,4 @@ func (m *Mesh) Quality(part int32, narrow float64) Quality {
 	return q
 }
 
-// NodesInUse returns the number of nodes that have unknowns: mid-side nodes of linear triangles have none.
-func (m *Mesh) NodesInUse() int {
-	used := make([]bool, len(m.Nodes))
-	for t, n := range m.Triangles {
-		corners := n[:]
-		if m.Parts[m.TrianglePart[t]].Element == linear {
-			corners = n[:3]
-		}
-		for _, v := range corners {
-			used[v] = true
-		}
-	}
-	for _, b := range m.Beams {
-		used[b[0]], used[b[1]] = true, true
-	}
-	count := 0
-	for _, u := range used {
-		if u {
-			count++
-		}
-	}
-	return count
-}
-
 func norm(v airframe.Vec) float64 { return math.Hypot(math.Hypot(v[0], v[1]), v[2]) }

@@ -7,10 +7,11 @@ import (
 	"hushframe/core/pipeline/stage"
 )
 
-// InProcess offers stages as values of this process, for tests and tools. Sum
+// InProcess offers stages and tools as values of this process, for tests and tools. Sum
 // stands for the checksum of their executable.
 type InProcess struct {
 	Stages []stage.Stage
+	Tools  []stage.Tool
 	Sum    string
 }
 
@@ -29,10 +30,23 @@ func (p InProcess) Stage(name string) (stage.Stage, bool) {
 // Checksum gives Sum.
 func (p InProcess) Checksum(string) string { return p.Sum }
 
-// Call fails: there are no extensions.
-func (p InProcess) Call(_ context.Context, kind, name string, _ stage.ExtensionRequest) error {
+// Call calls a tool.
+func (p InProcess) Call(ctx context.Context, kind, name string, request stage.ExtensionRequest) error {
+	for _, t := range p.Tools {
+		if d := t.Describe(); d.Kind == kind && d.Name == name {
+			return t.Call(ctx, request)
+		}
+	}
 	return fault.New(fault.Missing, "no extension offers the %s %q", kind, name)
 }
 
-// Extensions lists none.
-func (p InProcess) Extensions() []stage.Extension { return nil }
+// Extensions lists the tools.
+func (p InProcess) Extensions() []stage.Extension {
+	var out []stage.Extension
+	for _, t := range p.Tools {
+		d := t.Describe()
+		d.Hash = p.Sum
+		out = append(out, d)
+	}
+	return out
+}

@@ -1,10 +1,12 @@
 package run
 
 import (
+	"cmp"
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
+	"slices"
 	"sync"
 
 	"hushframe/core/pipeline/stage"
@@ -16,6 +18,8 @@ import (
 type services struct {
 	runner   *runner
 	checksum string // of the executable of the stage
+	threads  int    // the share of the step
+	memory   int64
 
 	mu   sync.Mutex
 	uses map[store.ToolUse]bool
@@ -23,10 +27,11 @@ type services struct {
 
 var _ stage.Services = (*services)(nil)
 
-// Keep finds or makes an intermediate result.
+// Keep finds or makes an intermediate result. It depends on every element type and reader that the step has called
+// so far, besides the executable of the stage.
 func (s *services) Keep(ctx context.Context, key string, make func(folder string) error) (string, bool, error) {
-	st := s.runner.Store
-	if folder, ok := st.FindKept(s.checksum, key); ok && !s.runner.Force {
+	st, sums := s.runner.Store, s.sums()
+	if folder, ok := st.FindKept(sums, key); ok && !s.runner.Force {
 		return folder, true, nil
 	}
 	folder, err := st.NewKept()
@@ -39,7 +44,7 @@ func (s *services) Keep(ctx context.Context, key string, make func(folder string
 	if err := ctx.Err(); err != nil {
 		return "", false, err
 	}
-	folder, err = st.CommitKept(s.checksum, key, folder)
+	folder, err = st.CommitKept(sums, key, folder)
 	return folder, false, err
 }
 
@@ -55,6 +60,7 @@ func (s *services) Reader(ctx context.Context, name string, request stage.Extens
 
 func (s *services) call(ctx context.Context, kind, name string, request stage.ExtensionRequest) error {
 	s.use(kind, name)
+	request.Threads, request.Memory = s.threads, s.memory
 	return s.runner.Source.Call(ctx, kind, name, request)
 }
 
@@ -76,7 +82,18 @@ func (s *services) use(kind, name string) {
 	s.uses[store.ToolUse{Kind: kind, Name: name, Hash: toolHash(s.runner.Source, kind, name)}] = true
 }
 
-// used lists the uses; Save sorts them.
+// sums is the checksum of the stage with those of the extensions it has called.
+func (s *services) sums() string {
+	all := s.checksum
+	for _, u := range s.used() {
+		if u.Kind != toolList {
+			all += " " + u.Hash
+		}
+	}
+	return all
+}
+
+// used lists the uses, sorted.
 func (s *services) used() []store.ToolUse {
 	s.mu.Lock()
 	defer s.mu.Unlock()
@@ -84,6 +101,9 @@ func (s *services) used() []store.ToolUse {
 	for u := range s.uses {
 		out = append(out, u)
 	}
+	slices.SortFunc(out, func(a, b store.ToolUse) int {
+		return cmp.Or(cmp.Compare(a.Kind, b.Kind), cmp.Compare(a.Name, b.Name), cmp.Compare(a.Hash, b.Hash))
+	})
 	return out
 }
 

@@ -120,7 +120,7 @@ func (r *runner) work(ctx context.Context, s *plan.Step, p *prepared, threads in
 		return nil, err
 	}
 	defer os.RemoveAll(dir) // what is left goes with the scratch of the run
-	services := &services{runner: r, checksum: r.Source.Checksum(s.Stage.Kind)}
+	services := &services{runner: r, checksum: r.Source.Checksum(s.Stage.Kind), threads: threads, memory: memory}
 	call := &stage.Call{
 		Arguments: p.arguments, Inputs: map[string][]stage.Input{}, Outputs: map[string]string{}, Scratch: filepath.Join(dir, "scratch"),
 		Files: stage.NewFiles(r.Plan.Job.Folder), Threads: threads, Memory: memory,
