@@ -57,7 +57,7 @@ func defaults() stage.Arguments {
 func run(t *testing.T, geometry string, a stage.Arguments) (string, *stage.Outcome, error) {
 	t.Helper()
 	out := folder(t)
-	o, err := meshgen.Stage{}.Run(context.Background(), &stage.Call{
+	o, err := meshgen.Stage{}.Run(context.Background(), &stage.Call{Services: alone{},
 		Arguments: a, Inputs: map[string][]stage.Input{"geometry": {{Folder: geometry, Kind: "geometry"}}},
 		Outputs: map[string]string{"mesh": out}, Report: silent{}, Threads: 2,
 	})
@@ -120,6 +120,11 @@ func TestMeshOfSandpiper(t *testing.T) {
 	}
 }
 
+// alone reaches no extension.
+type alone struct{ stage.Services }
+
+func (alone) Extensions(context.Context) ([]stage.Extension, error) { return nil, nil }
+
 func contents(t *testing.T, folder string) map[string]string {
 	t.Helper()
 	files := map[string]string{}
@@ -163,7 +168,7 @@ func TestFaultsNameWhatIsToBlame(t *testing.T) {
 		wantItem, text string
 	}{
 		{"element of no plate", same, "elements", map[string]any{"tpo": "linear-triangle"}, "elements", "tpo", "no such plate"},
-		{"no such element type", same, "elements", map[string]any{"top": "quadratic-trangle"}, "elements", "top", "no element type"},
+		{"no such element type", same, "elements", map[string]any{"top": "quadratic-trangle"}, "elements", "top", "there is no element type"},
 		{"size of no plate", same, "sizes", map[string]any{"tpo": mm(1)}, "sizes", "tpo", "no such plate"},
 		{"negative size", same, "sizes", map[string]any{"top": mm(-1)}, "sizes", "top", "must be positive"},
 		{"far too small", same, "size", mm(0.003), "size", "top", "would need about"},
@@ -178,7 +183,7 @@ func TestFaultsNameWhatIsToBlame(t *testing.T) {
 		}
 		_, _, err := run(t, geometry(c.spoil), a)
 		var f *fault.Error
-		if !errors.As(err, &f) || f.Kind != fault.Input || f.Argument != c.wantArgument || f.Item != c.wantItem || !strings.Contains(f.Text, c.text) || f.Remedy == "" {
+		if !errors.As(err, &f) || f.Kind != fault.Input && f.Kind != fault.Missing || f.Argument != c.wantArgument || f.Item != c.wantItem || !strings.Contains(f.Text, c.text) || f.Remedy == "" {
 			t.Errorf("%s: %+v", c.name, err)
 		}
 	}
