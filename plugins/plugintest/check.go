@@ -60,13 +60,7 @@ func checkDescription(s stage.Stage, registry artifact.Registry) []string {
 	if again, _ := json.Marshal(back); err != nil || string(again) != string(data) {
 		bad("it does not survive the boundary: %v", err)
 	}
-	about := func(what, text string) {
-		if text == "" {
-			bad("%s has no about", what)
-		} else if strings.HasSuffix(text, ".") {
-			bad("the about of %s ends with a full stop", what)
-		}
-	}
+	about := func(what, text string) { checkAbout(bad, what, text) }
 	if !name.MatchString(d.Name) {
 		bad("%q is no name: lower-case words joined by - or _", d.Name)
 	}
@@ -104,6 +98,14 @@ func checkDescription(s stage.Stage, registry artifact.Registry) []string {
 		checkType("figure "+f.Name, f.Type, registry, bad)
 	}
 	return problems
+}
+
+func checkAbout(bad func(string, ...any), what, text string) {
+	if text == "" {
+		bad("%s has no about", what)
+	} else if strings.HasSuffix(text, ".") {
+		bad("the about of %s ends with a full stop", what)
+	}
 }
 
 func checkType(what string, t stage.Type, registry artifact.Registry, bad func(string, ...any)) {
