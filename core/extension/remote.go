@@ -253,3 +253,9 @@ func (x *remoteReader) path(source io.Reader) (string, error) {
 	}
 	return path, nil
 }
+
+// ReadsFiles reports whether a reader opens the recording by its path, as one in another process does.
+func ReadsFiles(r Reader) bool {
+	_, ok := r.(*remoteReader)
+	return ok
+}

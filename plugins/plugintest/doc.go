@@ -7,7 +7,8 @@
 //
 // The first line runs the stage within the test, the second in a process of
 // its own, built from the package that has its main function. Both must do the
-// same.
+// same. Element and ElementProcess, Reader and ReaderProcess do so for element
+// types and recording readers.
 package plugintest
 
 import (
@@ -16,6 +17,7 @@ import (
 	"path/filepath"
 	"testing"
 
+	"hushframe/core/extension"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/stage"
 	"hushframe/plugins/host"
@@ -54,7 +56,45 @@ func build(t *testing.T, main string) string {
 	return path
 }
 
+// ElementProcess does the same and gives an element type.
+func ElementProcess(t *testing.T, main, name string) extension.Element {
+	t.Helper()
+	h := open(t, build(t, main))
+	return extension.RemoteElement(find(t, h, extension.ElementKind, name), caller(h, extension.ElementKind, name), t.TempDir())
+}
+
+// ReaderProcess does the same and gives a recording reader, which reads files: its sources must be of type *os.File.
+func ReaderProcess(t *testing.T, main, name string) extension.Reader {
+	t.Helper()
+	h := open(t, build(t, main))
+	return extension.RemoteReader(find(t, h, extension.ReaderKind, name), caller(h, extension.ReaderKind, name), t.TempDir())
+}
+
+func caller(h *host.Host, kind, name string) extension.Caller {
+	return func(ctx context.Context, r stage.ExtensionRequest) error { return h.Call(ctx, kind, name, r) }
+}
+
+func find(t *testing.T, h *host.Host, kind, name string) stage.Extension {
+	t.Helper()
+	for _, x := range h.Extensions() {
+		if x.Kind == kind && x.Name == name {
+			return x
+		}
+	}
+	t.Fatalf("plugintest: the executable offers no %s %q", kind, name)
+	return stage.Extension{}
+}
+
 func served(t *testing.T, path, name string) stage.Stage {
+	t.Helper()
+	s, ok := open(t, path).Stage(name)
+	if !ok {
+		t.Fatalf("plugintest: the executable offers no stage %q", name)
+	}
+	return s
+}
+
+func open(t *testing.T, path string) *host.Host {
 	t.Helper()
 	e, err := host.Find(path)
 	if err != nil {
@@ -67,9 +107,5 @@ func served(t *testing.T, path, name string) stage.Stage {
 		t.Fatal(err)
 	}
 	t.Cleanup(h.Close)
-	s, ok := h.Stage(name)
-	if !ok {
-		t.Fatalf("plugintest: the executable offers no stage %q", name)
-	}
-	return s
+	return h
 }
