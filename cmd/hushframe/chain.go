@@ -24,7 +24,11 @@ when it ran. A step marked as open depends on one that has to run first.`,
 	}
 	job.add(c)
 	c.RunE = func(c *cobra.Command, args []string) error {
-		h, err := a.openHost(c.Context())
+		folder, err := jobFolder(args[0])
+		if err != nil {
+			return err
+		}
+		h, err := a.openHost(c.Context(), folder)
 		if err != nil {
 			return err
 		}

@@ -20,7 +20,11 @@ shows the steps in the order of the plan with what each takes from which other.
 	}
 	job.add(c)
 	c.RunE = func(c *cobra.Command, args []string) error {
-		h, err := a.openHost(c.Context())
+		folder, err := jobFolder(args[0])
+		if err != nil {
+			return err
+		}
+		h, err := a.openHost(c.Context(), folder)
 		if err != nil {
 			return err
 		}

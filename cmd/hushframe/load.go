@@ -54,16 +54,56 @@ func registry() artifact.Registry {
 	return r
 }
 
-// openHost makes the host; no process starts before a step runs.
-func (a *app) openHost(ctx context.Context) (*host.Host, error) {
+// openHost makes the host with the extensions that are pinned for the jobs of a folder ("" for none). Only those are
+// started, to be described.
+func (a *app) openHost(ctx context.Context, folder string) (*host.Host, error) {
 	self, err := host.Self()
 	if err != nil {
 		return nil, err
 	}
-	return host.Open(ctx, host.Options{
-		Self: self, Builtin: a.builtin,
+	var trusted []host.Executable
+	if folder != "" {
+		if trusted, err = a.pinned(folder); err != nil {
+			return nil, err
+		}
+	}
+	h, err := host.Open(ctx, a.hostOptions(self, trusted))
+	if err != nil {
+		return nil, err
+	}
+	if err := a.checkTools(h); err != nil {
+		h.Close()
+		return nil, err
+	}
+	return h, nil
+}
+
+func (a *app) hostOptions(self host.Executable, extensions []host.Executable) host.Options {
+	return host.Options{
+		Self: self, Builtin: a.builtin, Extensions: extensions,
 		Output: func(process, line string) { a.log.Debug().Str("step", process).Msg(line) },
-	})
+	}
+}
+
+// checkTools refuses element types and readers that say what no job could use, or take a built-in name.
+func (a *app) checkTools(h *host.Host) error {
+	taken := map[string]bool{}
+	for _, s := range a.builtin {
+		for _, x := range s.Describe().Arguments {
+			for _, c := range x.Choices {
+				taken[x.Extension+" "+c] = true
+			}
+		}
+	}
+	for _, x := range h.Extensions() {
+		if err := job.CheckExtension(x); err != nil {
+			return fault.From(err).In("describe", x.Kind+" "+x.Name)
+		}
+		if taken[x.Kind+" "+x.Name] {
+			return fault.New(fault.Input, "it has the name of a built-in %s", x.Kind).In("describe", x.Kind+" "+x.Name).Do("its author has to choose another name")
+		}
+	}
+	return nil
 }
 
 // load reads and checks a job and plans it. What is wrong has been written
@@ -79,6 +119,9 @@ func (a *app) load(ctx context.Context, h *host.Host, path string, f *jobFlags) 
 		Describe: func(_ context.Context, name string) (stage.Description, error) {
 			s, ok := h.Stage(name)
 			if !ok {
+				if err := a.absent("stage "+name, path); err != nil {
+					return stage.Description{}, err
+				}
 				return stage.Description{}, fault.New(fault.Missing, "there is no stage %q", name)
 			}
 			return s.Describe(), nil

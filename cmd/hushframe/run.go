@@ -53,7 +53,11 @@ progress, log lines and mistakes to standard error.
 			}
 			bytes = q.SI
 		}
-		h, err := a.openHost(ctx)
+		folder, err := jobFolder(args[0])
+		if err != nil {
+			return err
+		}
+		h, err := a.openHost(ctx, folder)
 		if err != nil {
 			return err
 		}

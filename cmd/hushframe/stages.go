@@ -17,11 +17,13 @@ import (
 
 func (a *app) stagesCommand() *cobra.Command {
 	var asJSON bool
+	var of string
 	c := &cobra.Command{
 		Use:   "stages [STAGE]",
 		Short: "List the stages that are installed, or explain one",
-		Long:  "Lists the stages a job may use. With the name of one, explains its arguments, outputs and figures.",
-		Args:  cobra.MaximumNArgs(1),
+		Long: `Lists the stages a job may use. With the name of one, explains its arguments, outputs and figures.
+With --job also those of the extensions pinned for that job, and what its element types and readers take.`,
+		Args: cobra.MaximumNArgs(1),
 		ValidArgsFunction: func(c *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
 			var names []string
 			if len(args) == 0 {
@@ -33,14 +35,28 @@ func (a *app) stagesCommand() *cobra.Command {
 		},
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write the descriptions as JSON")
+	c.Flags().StringVar(&of, "job", "", "with the extensions that this job may use")
 	c.RunE = func(c *cobra.Command, args []string) error {
-		h, err := a.openHost(c.Context())
+		folder := ""
+		if of != "" {
+			var err error
+			if folder, err = jobFolder(of); err != nil {
+				return err
+			}
+		}
+		h, err := a.openHost(c.Context(), folder)
 		if err != nil {
 			return err
 		}
 		defer h.Close()
 		list := h.Descriptions()
 		if len(args) == 1 {
+			for _, x := range h.Extensions() {
+				if x.Name == args[0] {
+					a.explainTool(x)
+					return nil
+				}
+			}
 			s, ok := h.Stage(args[0])
 			if !ok {
 				return fault.New(fault.Missing, "there is no stage %q%s", args[0], suggest(args[0], a.stageNames(h)))
@@ -99,6 +115,18 @@ func (a *app) explain(d stage.Description) {
 	}
 }
 
+// explainTool writes all that an element type or reader says about itself.
+func (a *app) explainTool(x stage.Extension) {
+	fmt.Fprintf(a.out, "\n%s: %s (%s from outside)\n", x.Name, x.About, x.Kind)
+	if len(x.Arguments) == 0 {
+		fmt.Fprintf(a.out, "\nIt has no options.\n")
+		return
+	}
+	options := stage.Section{Title: "Options", Columns: []stage.Column{{Name: "option"}, {Name: "takes"}, {Name: "default"}, {Name: ""}}}
+	addArguments(&options, "", x.Arguments)
+	writeSection(a.out, options)
+}
+
 func addArguments(s *stage.Section, prefix string, list []stage.Argument) {
 	for _, x := range list {
 		s.Rows = append(s.Rows, []string{prefix + x.Name, takes(x), defaultText(x), x.About})
@@ -108,6 +136,11 @@ func addArguments(s *stage.Section, prefix string, list []stage.Argument) {
 		if x.Type.Element != nil && x.Type.Element.Kind == stage.Object {
 			addArguments(s, prefix+x.Name+"[].", x.Type.Element.Fields)
 		}
+		for _, choice := range slices.Sorted(maps.Keys(x.Variants)) {
+			for _, o := range x.Variants[choice] {
+				s.Rows = append(s.Rows, []string{prefix + x.Name + "." + o.Name, takes(o), defaultText(o), "of " + choice + ": " + o.About})
+			}
+		}
 	}
 }
 
@@ -116,6 +149,9 @@ func takes(x stage.Argument) string {
 	words := typeText(x.Type)
 	if len(x.Choices) > 0 {
 		words = strings.Join(x.Choices, ", ")
+		if x.Extension != "" {
+			words += ", or one from outside"
+		}
 	}
 	show := func(v float64) string {
 		if x.Type.Kind == stage.Amount {

@@ -50,6 +50,22 @@ func (e Executable) file() string {
 	return runningFile
 }
 
+// unchanged looks once more at a file from outside, just before it is started.
+func (e Executable) unchanged() error {
+	if e.self || e.SHA256 == "" {
+		return nil
+	}
+	now, err := Find(e.Path)
+	if err != nil {
+		return err
+	}
+	if now.SHA256 != e.SHA256 {
+		return fault.New(fault.Input, "the executable has changed since it was checked: SHA-256 %s, was %s", now.SHA256, e.SHA256).
+			Do("run again; if you did not change it, find out who did")
+	}
+	return nil
+}
+
 // Find takes the checksum of an executable.
 func Find(path string) (Executable, error) {
 	f, err := os.Open(path)

@@ -39,6 +39,9 @@ type process struct {
 
 // start starts an executable and waits until it is attached.
 func (h *Host) start(ctx context.Context, label string, e Executable, argument string) (*process, error) {
+	if err := e.unchanged(); err != nil {
+		return nil, fault.From(err).In("start", label)
+	}
 	certificate, trust, err := wire.NewIdentity()
 	if err != nil {
 		return nil, fault.New(fault.Internal, "no certificate can be made: %v", err).In("start", label)
