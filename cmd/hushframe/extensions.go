@@ -282,5 +282,5 @@ func (a *app) absent(what, path string) error {
 		return nil
 	}
 	return fault.New(fault.Input, "there is none installed; extensions that are not pinned are not asked: %s", strings.Join(loose, ", ")).
-		Do("if one of them offers it and you trust it: hushframe extensions pin JOB NAME")
+		Do("to trust one of them: hushframe extensions pin JOB NAME")
 }

@@ -4,8 +4,10 @@ import (
 	"bytes"
 	"context"
 	"encoding/binary"
+	"flag"
 	"hash/crc32"
 	"math"
+	"os"
 	"strings"
 	"testing"
 
@@ -71,5 +73,21 @@ func TestDamagedRefused(t *testing.T) {
 		func(recording.Batch) error { return nil })
 	if e, ok := err.(*recording.Error); !ok || e.Byte != 84+10*404 || e.Row != 641 || !strings.Contains(e.Text, "checksum") {
 		t.Errorf("%+v", err)
+	}
+}
+
+var update = flag.Bool("update", false, "write the recording of jobs/extensions anew")
+
+// The recording of the recipe is one that the format describes: 3.2 s with a lost block.
+func TestRecipeRecording(t *testing.T) {
+	const path = "../../jobs/extensions/bench.pebble"
+	want := write(100, 40)
+	if *update {
+		if err := os.WriteFile(path, want, 0o644); err != nil {
+			t.Fatal(err)
+		}
+	}
+	if got, err := os.ReadFile(path); err != nil || !bytes.Equal(got, want) {
+		t.Errorf("%s is not what the format makes of the samples (%v); run the test with -update", path, err)
 	}
 }
