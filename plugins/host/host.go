@@ -168,7 +168,12 @@ func (h *Host) Call(ctx context.Context, kind, name string, request stage.Extens
 	if err != nil {
 		return err
 	}
-	return p.relay(ctx, kind, name, request)
+	s := p.service.enter(ctx, nil, request.Memory)
+	defer p.service.end(s)
+	line, hangUp := context.WithCancel(context.WithoutCancel(ctx))
+	defer hangUp()
+	_, err = watch(ctx, h.options, p, s.id, func() (struct{}, error) { return struct{}{}, p.relay(line, s.id, kind, name, request) })
+	return err
 }
 
 // process gives the running process of a kind, and starts it if needed.

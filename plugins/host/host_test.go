@@ -458,7 +458,7 @@ func TestCancellation(t *testing.T) {
 		stage, want string
 	}{
 		{"polite", "run: stage polite: stopped on request"},
-		{"stubborn", "run: stage stubborn: stopped on request; the stage did not end within 200ms and its process was killed"},
+		{"stubborn", "run: stage stubborn: stopped on request; it did not end within 200ms and its process was killed"},
 	} {
 		t.Run(c.stage, func(t *testing.T) {
 			h := open(t, func(o *Options) { o.Grace = 200 * time.Millisecond })

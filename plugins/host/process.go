@@ -248,12 +248,12 @@ func (p *process) describe(ctx context.Context) ([]stage.Description, []stage.Ex
 	return stages, tools, nil
 }
 
-func (p *process) relay(ctx context.Context, kind, name string, request stage.ExtensionRequest) error {
+func (p *process) relay(ctx context.Context, call, kind, name string, request stage.ExtensionRequest) error {
 	data, err := wire.EncodeRequest(request)
 	if err != nil {
 		return err
 	}
-	r, err := p.rpc.Relay(ctx, &wire.RelayRequest{Kind: kind, Name: name, RequestJson: data})
+	r, err := p.rpc.Relay(ctx, &wire.RelayRequest{Call: call, Kind: kind, Name: name, RequestJson: data})
 	if ctx.Err() != nil {
 		return fault.From(ctx.Err())
 	}

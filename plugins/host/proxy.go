@@ -40,34 +40,41 @@ func (x *proxy) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, erro
 	// The stream outlives ctx by the grace, so that the step can say how it ended.
 	stream, hangUp := context.WithCancel(context.WithoutCancel(ctx))
 	defer hangUp()
+	return watch(ctx, x.host.options, p, s.id, func() (*stage.Outcome, error) { return p.run(stream, request, call) })
+}
+
+// watch waits for a call in a process. It kills the process when that uses more memory than its calls may or gives no
+// sign of life; when ctx ends, the call is asked to end, and if it does not within the grace, its process is killed.
+func watch[T any](ctx context.Context, o Options, p *process, id string, call func() (T, error)) (T, error) {
 	type result struct {
-		outcome *stage.Outcome
-		err     error
+		value T
+		err   error
 	}
 	done := make(chan result, 1)
 	go func() {
-		o, err := p.run(stream, request, call)
-		done <- result{o, err}
+		v, err := call()
+		done <- result{v, err}
 	}()
-	pulse := time.NewTicker(x.host.options.Silence / 2)
+	pulse := time.NewTicker(o.Silence / 2)
 	defer pulse.Stop()
 	weigh := time.NewTicker(memoryEvery)
 	defer weigh.Stop()
 	for {
 		select {
 		case r := <-done:
-			return r.outcome, r.err
+			return r.value, r.err
 		case <-weigh.C:
 			p.checkMemory()
 		case <-pulse.C:
 			go func() {
-				if !p.answers(x.host.options.Silence) {
-					p.kill(fault.New(fault.Crash, "the process did not answer for %v and was killed", x.host.options.Silence).
+				if !p.answers(o.Silence) {
+					p.kill(fault.New(fault.Crash, "the process did not answer for %v and was killed", o.Silence).
 						In("run", p.label).With(p.printed.Last()))
 				}
 			}()
 		case <-ctx.Done():
-			return nil, x.cancel(ctx, p, s.id, func(grace time.Duration) bool {
+			var none T
+			return none, p.cancel(ctx, o.Grace, id, func(grace time.Duration) bool {
 				select {
 				case <-done:
 					return true
@@ -94,18 +101,17 @@ func (p *process) checkMemory() {
 	}
 }
 
-// cancel asks a step to end and kills its process when it does not.
-func (x *proxy) cancel(ctx context.Context, p *process, id string, ends func(time.Duration) bool) error {
+// cancel asks a call to end and kills its process when it does not.
+func (p *process) cancel(ctx context.Context, grace time.Duration, id string, ends func(time.Duration) bool) error {
 	f := fault.From(ctx.Err()).In("run", p.label)
-	grace := x.host.options.Grace
 	ask, stop := context.WithTimeout(context.Background(), grace)
 	defer stop()
 	go func() { _, _ = p.rpc.Cancel(ask, &wire.CancelRequest{Call: id}) }()
 	if ends(grace) {
 		return f
 	}
-	p.kill(fault.New(fault.Cancelled, "the process was killed because another step in it did not end when asked to").In("run", p.label))
-	f.Text += "; the stage did not end within " + grace.String() + " and its process was killed"
+	p.kill(fault.New(fault.Cancelled, "the process was killed because another call in it did not end when asked to").In("run", p.label))
+	f.Text += "; it did not end within " + grace.String() + " and its process was killed"
 	return f
 }
 

@@ -66,7 +66,9 @@ type session struct {
 	id   string
 	ctx  context.Context
 	stop context.CancelFunc
-	call *stage.Call
+	call *stage.Call // nil for a call of an element type or reader
+	// memory is what it may use, bytes; 0 for no limit.
+	memory int64
 
 	mu      sync.Mutex
 	next    int
@@ -93,10 +95,14 @@ func (x *service) stop() {
 }
 
 func (x *service) begin(ctx context.Context, call *stage.Call) *session {
+	return x.enter(ctx, call, call.Memory)
+}
+
+func (x *service) enter(ctx context.Context, call *stage.Call, memory int64) *session {
 	x.mu.Lock()
 	defer x.mu.Unlock()
 	x.next++
-	s := &session{id: strconv.Itoa(x.next), call: call, pending: map[string]chan error{}, kept: map[string]chan kept{}}
+	s := &session{id: strconv.Itoa(x.next), call: call, memory: memory, pending: map[string]chan error{}, kept: map[string]chan kept{}}
 	s.ctx, s.stop = context.WithCancel(ctx)
 	x.sessions[s.id] = s
 	return s
@@ -117,10 +123,10 @@ func (x *service) granted() int64 {
 	defer x.mu.Unlock()
 	var total int64
 	for _, s := range x.sessions {
-		if s.call.Memory == 0 {
+		if s.memory == 0 {
 			return 0
 		}
-		total += s.call.Memory
+		total += s.memory
 	}
 	return total
 }
@@ -129,7 +135,7 @@ func (x *service) session(id string) (*session, error) {
 	x.mu.Lock()
 	defer x.mu.Unlock()
 	s, ok := x.sessions[id]
-	if !ok {
+	if !ok || s.call == nil {
 		return nil, fault.New(fault.Protocol, "no step %q runs in this process", id)
 	}
 	return s, nil

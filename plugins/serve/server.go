@@ -107,7 +107,7 @@ func (s *server) Describe(context.Context, *wire.DescribeRequest) (*wire.Describ
 func (s *server) Run(r *wire.RunRequest, stream grpc.ServerStreamingServer[wire.RunEvent]) error {
 	ctx, cancel := context.WithCancel(stream.Context())
 	defer cancel()
-	s.begin(r, cancel)
+	s.begin(r.Call, share{int(r.Threads), r.Memory}, cancel)
 	defer s.end(r.Call)
 	out := &events{stream: stream}
 	call, err := wire.DecodeCall(r)
@@ -164,6 +164,10 @@ func (s *server) Relay(ctx context.Context, r *wire.RelayRequest) (*wire.RelayRe
 				if err != nil {
 					return nil, err
 				}
+				ctx, cancel := context.WithCancel(ctx)
+				defer cancel()
+				s.begin(r.Call, share{request.Threads, request.Memory}, cancel)
+				defer s.end(r.Call)
 				return nil, t.Call(ctx, request)
 			})
 			return &wire.RelayReply{FaultJson: wire.EncodeFault(err)}, nil
@@ -178,11 +182,11 @@ type share struct {
 	memory  int64
 }
 
-func (s *server) begin(r *wire.RunRequest, cancel context.CancelFunc) {
+func (s *server) begin(call string, granted share, cancel context.CancelFunc) {
 	s.mu.Lock()
 	defer s.mu.Unlock()
-	s.running[r.Call] = cancel
-	s.granted[r.Call] = share{int(r.Threads), r.Memory}
+	s.running[call] = cancel
+	s.granted[call] = granted
 	s.setShare(s.sum())
 }
 

@@ -951,7 +951,8 @@ func (*CancelReply) Descriptor() ([]byte, []int) {
 
 type RelayRequest struct {
 	state protoimpl.MessageState `protogen:"open.v1"`
-	// The step on whose behalf (calls to Host only).
+	// In a call to Host the step on whose behalf it is made; in one to Extension
+	// its own name, for Cancel.
 	Call string `protobuf:"bytes,1,opt,name=call,proto3" json:"call,omitempty"`
 	// "element" or "reader".
 	Kind          string `protobuf:"bytes,2,opt,name=kind,proto3" json:"kind,omitempty"`

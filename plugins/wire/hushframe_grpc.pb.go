@@ -45,7 +45,8 @@ type ExtensionClient interface {
 	// Run runs one step of a stage. Several may run at once. The last event is
 	// Finished or Failed.
 	Run(ctx context.Context, in *RunRequest, opts ...grpc.CallOption) (grpc.ServerStreamingClient[RunEvent], error)
-	// Cancel asks a running step to end soon; its stream then ends with Failed.
+	// Cancel asks a running step or a relayed call to end soon; the stream of a
+	// step then ends with Failed.
 	Cancel(ctx context.Context, in *CancelRequest, opts ...grpc.CallOption) (*CancelReply, error)
 	// Relay calls a method of an element type or reader that the process offers.
 	Relay(ctx context.Context, in *RelayRequest, opts ...grpc.CallOption) (*RelayReply, error)
@@ -132,7 +133,8 @@ type ExtensionServer interface {
 	// Run runs one step of a stage. Several may run at once. The last event is
 	// Finished or Failed.
 	Run(*RunRequest, grpc.ServerStreamingServer[RunEvent]) error
-	// Cancel asks a running step to end soon; its stream then ends with Failed.
+	// Cancel asks a running step or a relayed call to end soon; the stream of a
+	// step then ends with Failed.
 	Cancel(context.Context, *CancelRequest) (*CancelReply, error)
 	// Relay calls a method of an element type or reader that the process offers.
 	Relay(context.Context, *RelayRequest) (*RelayReply, error)
