@@ -151,6 +151,7 @@ func (p *process) ended(within time.Duration) bool {
 	}
 	select {
 	case <-p.child.exited:
+		p.child.stderr.last()
 		return true
 	case <-time.After(within):
 		return false

@@ -27,7 +27,7 @@ type child struct {
 	printed *lines
 	stdin   *os.File
 	stdout  *handshake
-	stderr  *os.File
+	stderr  *drained
 	exited  chan struct{}
 	state   string // how it ended; valid once exited is closed
 
@@ -60,7 +60,7 @@ func newChild(path string, args []string, printed *lines) (*child, error) {
 		Stdin: inR, Stdout: outW, Stderr: errW, SysProcAttr: processAttributes(),
 	}
 	return &child{
-		cmd: cmd, printed: printed, stdin: inW, stderr: errR, exited: make(chan struct{}),
+		cmd: cmd, printed: printed, stdin: inW, stderr: &drained{File: errR, end: make(chan struct{})}, exited: make(chan struct{}),
 		stdout: &handshake{file: outR, in: bufio.NewReader(outR), printed: printed},
 	}, nil
 }
@@ -143,6 +143,30 @@ func (c *child) PluginToHost(network, address string) (string, string, error) {
 // HostToPlugin is the reverse.
 func (c *child) HostToPlugin(network, address string) (string, string, error) {
 	return network, address, nil
+}
+
+// drained is a stream that tells when it has been read to its end.
+type drained struct {
+	*os.File
+	once sync.Once
+	end  chan struct{}
+}
+
+// Read reads on.
+func (d *drained) Read(p []byte) (int, error) {
+	n, err := d.File.Read(p)
+	if err != nil {
+		d.once.Do(func() { close(d.end) })
+	}
+	return n, err
+}
+
+// last waits a moment for the last words of a process that has ended.
+func (d *drained) last() {
+	select {
+	case <-d.end:
+	case <-time.After(200 * time.Millisecond): // something it started holds the stream
+	}
 }
 
 // handshake reads standard output: one line of bounded length for go-plugin,
