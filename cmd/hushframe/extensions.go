@@ -4,6 +4,8 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"os"
+	"path/filepath"
 	"slices"
 	"strings"
 
@@ -13,6 +15,7 @@ import (
 	"hushframe/core/pipeline/pins"
 	"hushframe/core/pipeline/stage"
 	"hushframe/plugins/host"
+	"hushframe/plugins/scaffold"
 	"hushframe/plugins/wire"
 )
 
@@ -38,7 +41,7 @@ Nothing is started by this. A job starts only what is pinned and unchanged.`,
 		}
 		return a.listExtensions(folder, asJSON)
 	}
-	c.AddCommand(a.pinCommand())
+	c.AddCommand(a.pinCommand(), a.newCommand())
 	return c
 }
 
@@ -127,6 +130,60 @@ Do this only for programs that you would run yourself, then look at the change i
 			}
 			return a.pin(c.Context(), folder, args[1:])
 		},
+	}
+}
+
+func (a *app) newCommand() *cobra.Command {
+	var source, name string
+	c := &cobra.Command{
+		Use:   "new stage|element|reader FOLDER",
+		Short: "Write a new extension that builds, passes its tests and runs in a sample job",
+		Long: `Writes a Go module for an extension into a new folder: main, the thing itself, its
+tests with the conformance suite, a README and a sample job. Everything works as it
+stands; DEVELOPERS.md tells how to go on.`,
+		Example:   "  hushframe extensions new reader ~/my-recorder --source ~/hushframe",
+		Args:      cobra.ExactArgs(2),
+		ValidArgs: scaffold.Kinds(),
+	}
+	c.Flags().StringVar(&source, "source", "", "folder of a checkout of hushframe (default: the one this is called in)")
+	c.Flags().StringVar(&name, "name", "", "name used in jobs (default: the name of the folder)")
+	c.RunE = func(c *cobra.Command, args []string) error {
+		folder, err := filepath.Abs(args[1])
+		if err != nil {
+			return err
+		}
+		if name == "" {
+			name = filepath.Base(folder)
+		}
+		if source == "" {
+			source = checkout()
+		}
+		files, err := scaffold.Write(scaffold.Options{Kind: args[0], Name: name, Folder: folder, Source: source})
+		if err != nil {
+			return err
+		}
+		for _, f := range files {
+			fmt.Fprintln(a.out, filepath.Join(args[1], filepath.FromSlash(f)))
+		}
+		fmt.Fprintf(a.out, "\nNext:\n  cd %s\n  go test .\n  go build -o extensions/ .\n  hushframe extensions pin job.hcl\n  hushframe run job.hcl\n", args[1])
+		return nil
+	}
+	return c
+}
+
+// checkout is the nearest folder above that holds a go.mod, or this one.
+func checkout() string {
+	at, err := os.Getwd()
+	if err != nil {
+		return "."
+	}
+	for dir := at; ; dir = filepath.Dir(dir) {
+		if _, err := os.Stat(filepath.Join(dir, "go.mod")); err == nil {
+			return dir
+		}
+		if filepath.Dir(dir) == dir {
+			return at
+		}
 	}
 }
 
