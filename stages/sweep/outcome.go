@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"hushframe/core/mechanics/forced"
-	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -14,7 +13,7 @@ import (
 const degree = math.Pi / 180
 
 // outcome sums up a response in figures, warnings and tables.
-func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome {
+func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	o := &stage.Outcome{Figures: map[string]any{}, Warnings: warnings(r, set)}
 	for axis, name := range kinds.AxisNames {
 		frequency, level := math.NaN(), math.NaN()
@@ -48,7 +47,7 @@ func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome
 	}
 	if len(r.Orders) > 0 {
 		o.Summary = append(o.Summary, mapTable(r))
-		o.Notes = append(o.Notes, fmt.Sprintf("rotor speed is assumed to stray by %.3g %% over a flight", 100*set.spread))
+		o.Notes = append(o.Notes, flownNote(set, g.recorded != nil))
 	}
 	if len(r.Whirl) > 0 {
 		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r), separationTable(r))

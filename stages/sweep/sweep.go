@@ -8,8 +8,8 @@ import (
 	"fmt"
 	"math"
 
-	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/forced"
+	"hushframe/core/mechanics/mesh"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -86,6 +86,18 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "16000 rpm", Above: &zero},
 					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
 				}}}, Example: `[{ speed = "15000 rpm", share = 0.7 }, { speed = "19000 rpm", share = 0.3 }]`},
+			{Name: "recording", About: "spectra from record, whose rotor speeds then say how a flight is spread over speeds",
+				Type: artifactOf("spectra")},
+			{Name: "gyro_noise", About: "assumed one-sided density of the gyro's own noise on each axis, in what a recorder sees of a flight",
+				Type:    stage.Type{Kind: stage.Amount, Dimension: "angular rate density", Unit: "(deg/s)2/Hz"},
+				Default: stage.Quantity{SI: 2.5e-5 * degree * degree, Dimension: "angular rate density"}, Example: "2.5e-5 (deg/s)2/Hz", Min: &zero},
+			{Name: "points", About: "further named points: the node of a part of the mesh nearest to a place; bodies, rotors and the gyro are points anyway",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "name", About: "name of the point", Type: stage.Type{Kind: stage.Text}, Required: true, Example: "nose"},
+					{Name: "at", About: "place in airframe axes: x forward, y left, z up", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Amount, Dimension: "length", Unit: "mm"}}, Required: true, Example: `["70 mm", "0 mm", "25 mm"]`},
+					{Name: "part", About: "plate or standoff it lies on; left out, any", Type: stage.Type{Kind: stage.Text}, Example: "top"},
+				}}}, Example: `[{ name = "nose", at = ["70 mm", "0 mm", "25 mm"], part = "top" }]`},
+			{Name: "mesh", About: "mesh from mesh, for points and check_at", Type: artifactOf("mesh")},
 			{Name: "rotor_speed", About: "speed of the spinning rotors: hover, none (no gyroscopic moments), or that of the first rotor, the others in the ratio of their hover speeds",
 				Type: stage.Type{Kind: stage.Text}, Default: "hover", Example: `"hover", "none", "16000 rpm"`},
 			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
@@ -130,6 +142,8 @@ type settings struct {
 	rippleOrder    float64
 	spread         float64
 	flown          []flight
+	noise          float64 // of the gyro, (rad/s)²/Hz
+	points         []pointAt
 }
 
 // mostFrequencies bounds the size of a response.
@@ -147,8 +161,11 @@ func read(a stage.Arguments) (settings, error) {
 	if a.Has("unbalance") {
 		s.unbalance = a.SI("unbalance")
 	}
-	s.flown = readFlown(a.List("speeds_flown"))
+	s.flown, s.noise = readFlown(a.List("speeds_flown")), a.SI("gyro_noise")
 	var err error
+	if s.points, err = readPoints(a.List("points")); err != nil {
+		return s, err
+	}
 	if s.source.Together, err = readTogether(a.List("correlation")); err != nil {
 		return s, err
 	}
@@ -186,14 +203,18 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, err
 	}
-	props, err := readProperties(call)
+	props, err := readInput(call, "properties", kinds.DecodeProperties)
 	if err != nil {
 		return nil, err
 	}
 	if err := correlated(set, len(props.Rotors)); err != nil {
 		return nil, err
 	}
-	r, err := respond(ctx, basis, props, set, call.Threads, call.Report)
+	given, err := readGiven(call, set)
+	if err != nil {
+		return nil, err
+	}
+	r, err := respond(ctx, basis, props, given, set, call.Threads, call.Report)
 	if err != nil {
 		return nil, explain(err)
 	}
@@ -202,19 +223,50 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if _, err := artifact.Write(call.Outputs["response"], kinds.EncodeResponse(r)); err != nil {
 		return nil, err
 	}
-	return outcome(r, basis, set), nil
+	return outcome(r, given, set), nil
 }
 
-func readProperties(call *stage.Call) (*airframe.Properties, error) {
-	a, err := artifact.Open(call.Inputs["properties"][0].Folder, kinds.Registry())
-	if err != nil {
-		return nil, err
+// given are the inputs that a sweep may do without.
+type given struct {
+	mesh     *mesh.Mesh
+	recorded *kinds.Spectra
+}
+
+func readGiven(call *stage.Call, set settings) (given, error) {
+	var g given
+	var err error
+	if len(call.Inputs["mesh"]) > 0 {
+		if g.mesh, err = readInput(call, "mesh", kinds.DecodeMesh); err != nil {
+			return g, err
+		}
 	}
-	return kinds.DecodeProperties(a)
+	if len(call.Inputs["recording"]) > 0 {
+		if g.recorded, err = readInput(call, "recording", kinds.DecodeSpectra); err != nil {
+			return g, err
+		}
+	}
+	if g.mesh == nil && len(set.points) > 0 {
+		return g, fault.New(fault.Input, "a point at a place is found on the mesh, which is not given").In("sweep", "point "+set.points[0].name).Of("points").
+			Do("add mesh = stage.shells.mesh, after the name of your mesh stage, to the sweep")
+	}
+	return g, nil
+}
+
+func readInput[T any](call *stage.Call, name string, decode func(*artifact.Artifact) (T, error)) (T, error) {
+	a, err := artifact.Open(call.Inputs[name][0].Folder, kinds.Registry())
+	if err != nil {
+		var none T
+		return none, err
+	}
+	return decode(a)
 }
 
 // explain turns what the kernel says into a fault.
 func explain(err error) error {
+	var said *fault.Error
+	if errors.As(err, &said) {
+		return said
+	}
 	var unbounded *forced.Unbounded
 	if errors.As(err, &unbounded) {
 		return fault.New(fault.Numeric, "%v", err).In("sweep", fmt.Sprintf("%g Hz", unbounded.Frequency)).
@@ -228,11 +280,7 @@ func explain(err error) error {
 
 // readBasis gives the modal basis and the frequency below which it is complete.
 func readBasis(call *stage.Call) (*modal.Basis, float64, error) {
-	a, err := artifact.Open(call.Inputs["modes"][0].Folder, kinds.Registry())
-	if err != nil {
-		return nil, 0, err
-	}
-	m, err := kinds.DecodeModes(a)
+	m, err := readInput(call, "modes", kinds.DecodeModes)
 	if err != nil {
 		return nil, 0, err
 	}

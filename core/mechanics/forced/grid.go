@@ -68,18 +68,9 @@ func Grid(from, to, step float64, resonances []Resonance) []float64 {
 	grid = append(grid, to)
 	least := step
 	for _, r := range resonances {
-		half := r.Frequency * r.LossFactor / 2
-		if !(half > 0) {
-			half = r.Frequency * 1e-5 // undamped: close enough to be seen
-		}
-		least = min(least, half)
-		for k := -11; k <= 11; k++ {
-			f := r.Frequency + half*math.Tan(float64(k)*arc)
-			if f > from && f < to {
-				grid = append(grid, f)
-			}
-		}
+		least = min(least, r.half())
 	}
+	grid = append(grid, Around(from, to, resonances)...)
 	sort.Float64s(grid)
 	kept := grid[:1]
 	for _, f := range grid[1:] {
@@ -89,4 +80,26 @@ func Grid(from, to, step float64, resonances []Resonance) []float64 {
 	}
 	kept[len(kept)-1] = to
 	return kept
+}
+
+// half is half the half-power width, Hz.
+func (r Resonance) half() float64 {
+	if half := r.Frequency * r.LossFactor / 2; half > 0 {
+		return half
+	}
+	return r.Frequency * 1e-5 // undamped: close enough to be seen
+}
+
+// Around gives the frequencies that Grid adds around resonances, ascending, between from and to.
+func Around(from, to float64, resonances []Resonance) []float64 {
+	var out []float64
+	for _, r := range resonances {
+		for k := -11; k <= 11; k++ {
+			if f := r.Frequency + r.half()*math.Tan(float64(k)*arc); f > from && f < to {
+				out = append(out, f)
+			}
+		}
+	}
+	sort.Float64s(out)
+	return out
 }
