@@ -12,6 +12,7 @@ import (
 // or of a body over its columns.
 type contribution struct {
 	unknowns []int32
+	group    int // whose stiffness it is
 	// For elements: full packed matrices over 6·nodes.
 	stiffness, mass []float64
 	// Each component is the sum of the shares that it follows: those of component i are
@@ -86,6 +87,7 @@ func (s *System) contributions() []contribution {
 		size := element.Packed(6 * a.nodes)
 		for e, nodes := range a.part.Elements {
 			c := s.follow(nodes[:a.nodes], a.part.Axes)
+			c.group = a.part.Group
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -95,6 +97,7 @@ func (s *System) contributions() []contribution {
 		size := element.Packed(12)
 		for e, nodes := range a.part.Elements {
 			c := s.follow(nodes[:], a.axes[e])
+			c.group = a.part.Group
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -167,7 +170,7 @@ func (s *System) springContribution(a *assembledSpring) contribution {
 			set.add(col.unknown, m, float64(2*side-1))
 		}
 	}
-	c := contribution{stiffness: make([]float64, element.Packed(6))}
+	c := contribution{group: a.spring.Group, stiffness: make([]float64, element.Packed(6))}
 	for k, v := range a.spring.Stiffness {
 		c.stiffness[element.Packed(k)+k] = v
 	}
