@@ -36,6 +36,7 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 		})
 	}
 	o.Figures["peaks"] = list
+	o.Figures["direct_error"] = directError(r)
 	o.Notes = append(o.Notes,
 		fmt.Sprintf("the source is assumed, not measured: %.3g N²/Hz and %.3g (N·m)²/Hz along each component at each rotor", set.source.Force, set.source.Moment))
 	if !math.IsNaN(r.Thrust) && set.bladeShare > 0 {
@@ -48,6 +49,9 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if len(r.Orders) > 0 {
 		o.Summary = append(o.Summary, mapTable(r))
 		o.Notes = append(o.Notes, flownNote(set, g.recorded != nil))
+	}
+	if len(r.Direct) > 0 {
+		o.Summary = append(o.Summary, directTable(r))
 	}
 	if len(r.Whirl) > 0 {
 		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r), separationTable(r))

@@ -49,7 +49,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	r := &kinds.Response{
 		From: set.from, To: set.to, Force: set.source.Force, Moment: set.source.Moment, Residual: residual,
 		BladeShare: set.bladeShare, Spinning: set.spinning, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
-		GyroNoise: set.noise, FirstMode: first(basis),
+		GyroNoise: set.noise, FirstMode: first(basis), LawsAt: math.NaN(),
 	}
 	rigid, static := sys.Static(grid)
 	r.Rigid, r.Static = rigid.Broadband(set.source).Density, static.Broadband(set.source).Density
@@ -105,6 +105,9 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 		return nil, err
 	}
 	if err := points(ctx, r, named, fleet, sys, set, threads); err != nil {
+		return nil, err
+	}
+	if err := fleet.check(ctx, r, basis, sys, p, g, set, threads, report); err != nil {
 		return nil, err
 	}
 	report.Progress("shapes", 0.95)

@@ -61,7 +61,7 @@ func (f *fleet) narrow(r *kinds.Response, sys *forced.System, set settings) (*fo
 	for _, w := range r.Whirl {
 		for k, freq := range w.Frequency {
 			if freq >= set.from && freq <= set.to && thin(freq, w.Damping[k], set) {
-				return sys.Core()
+				return sys.Frozen(set.middle()).Core()
 			}
 		}
 	}

@@ -98,6 +98,8 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 					{Name: "part", About: "plate or standoff it lies on; left out, any", Type: stage.Type{Kind: stage.Text}, Example: "top"},
 				}}}, Example: `[{ name = "nose", at = ["70 mm", "0 mm", "25 mm"], part = "top" }]`},
 			{Name: "mesh", About: "mesh from mesh, for points and check_at", Type: artifactOf("mesh")},
+			{Name: "check_at", About: "frequencies at which the full damped equations are solved as well, to hold the modal response against; takes mesh, and about as long as the modes for every ten",
+				Type: stage.Type{Kind: stage.List, Element: &frequency}, Example: `["121 Hz", "290 Hz"]`},
 			{Name: "rotor_speed", About: "speed of the spinning rotors: hover, none (no gyroscopic moments), or that of the first rotor, the others in the ratio of their hover speeds",
 				Type: stage.Type{Kind: stage.Text}, Default: "hover", Example: `"hover", "none", "16000 rpm"`},
 			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
@@ -116,6 +118,7 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 		)
 	}
 	d.Figures = append(d.Figures,
+		stage.Figure{Name: "direct_error", About: "greatest difference of the modal response from the direct solve at the frequencies of check_at, relative; not a number without", Type: stage.Type{Kind: stage.Number}},
 		stage.Figure{Name: "peaks", About: "peaks as objects with axis, frequency, level, damping and modes", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}})
 	return d
 }
@@ -144,6 +147,7 @@ type settings struct {
 	flown          []flight
 	noise          float64 // of the gyro, (rad/s)²/Hz
 	points         []pointAt
+	checkAt        []float64
 }
 
 // mostFrequencies bounds the size of a response.
@@ -154,7 +158,7 @@ func read(a stage.Arguments) (settings, error) {
 		from: a.SI("from"), to: a.SI("to"), step: a.SI("resolution"),
 		source:     forced.Broadband{Force: a.SI("force_density"), Moment: a.SI("moment_density")},
 		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
-		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"),
+		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"), checkAt: a.SIs("check_at"),
 	}
 	s.sideShare, s.ripple, s.rippleOrder, s.spread = a.Number("side_share"), a.SI("torque_ripple"), a.Number("ripple_order"), a.Number("speed_spread")
 	s.unbalance = math.NaN()
@@ -182,6 +186,11 @@ func read(a stage.Arguments) (settings, error) {
 	case s.source.Force == 0 && s.source.Moment == 0:
 		return s, fault.New(fault.Input, "both densities are zero, so nothing drives the frame").In("sweep", "").Of("force_density").
 			Do("give at least one of force_density and moment_density")
+	}
+	for _, f := range s.checkAt {
+		if !(f > 0) {
+			return s, fault.New(fault.Input, "a free frame has no response at %g Hz", f).In("sweep", "").Of("check_at").Do("name frequencies above 0 Hz")
+		}
 	}
 	for _, f := range s.shapesAt {
 		if !(f > 0) {
@@ -247,6 +256,10 @@ func readGiven(call *stage.Call, set settings) (given, error) {
 	}
 	if g.mesh == nil && len(set.points) > 0 {
 		return g, fault.New(fault.Input, "a point at a place is found on the mesh, which is not given").In("sweep", "point "+set.points[0].name).Of("points").
+			Do("add mesh = stage.shells.mesh, after the name of your mesh stage, to the sweep")
+	}
+	if g.mesh == nil && len(set.checkAt) > 0 {
+		return g, fault.New(fault.Input, "the full equations are assembled from the mesh, which is not given").In("sweep", "").Of("check_at").
 			Do("add mesh = stage.shells.mesh, after the name of your mesh stage, to the sweep")
 	}
 	return g, nil

@@ -162,7 +162,10 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 			upTo = max(upTo, 1.1*basis.Frequency[v])
 		}
 	}
-	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
+	if sys.Varies() {
+		r.LawsAt = set.middle()
+	}
+	d, err := list.Campbell(ctx, sys.Frozen(set.middle()), elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
 	if err != nil {
 		return err
 	}
@@ -183,6 +186,10 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 	}
 	return nil
 }
+
+// middle is the frequency of the sweep at which stiffness that depends on
+// frequency is taken for natural motions and critical speeds.
+func (s settings) middle() float64 { return math.Sqrt(s.from * s.to) }
 
 // ladder gives even speeds from 0 to the highest with the marked ones among
 // them.

@@ -21,11 +21,10 @@ import (
 
 // bars is a bar along x with a motor at each end and a soft lossy mount in the
 // middle that carries the gyro.
-func bars() *assembly.Problem {
+func bars(nodes int) *assembly.Problem {
 	p := &assembly.Problem{Groups: []assembly.Group{{Name: "left", Kind: assembly.PartGroup}, {Name: "right", Kind: assembly.PartGroup}, {Name: "grommets", Kind: assembly.MountGroup}}}
-	const nodes = 9
 	for i := range nodes {
-		p.Nodes = append(p.Nodes, assembly.Vec{0.025 * float64(i-nodes/2), 0, 0})
+		p.Nodes = append(p.Nodes, assembly.Vec{0.1 * float64(i-nodes/2) / float64(nodes/2), 0, 0})
 	}
 	for g := range 2 {
 		part := assembly.BeamPart{Group: g, Section: beam.Rectangle(0.012, 0.005, 55e9, 0.3, 1550), Y: assembly.Vec{0, 1, 0}}
@@ -44,9 +43,9 @@ func bars() *assembly.Problem {
 		p.Bodies = append(p.Bodies, b)
 	}
 	body("a", 0, 0.032, 0.01, 4e-6)
-	body("b", nodes-1, 0.032, 0.01, 4e-6)
+	body("b", int32(nodes-1), 0.032, 0.01, 4e-6)
 	body("stack", -1, 0.026, 0.008, 8e-6)
-	body("pad", nodes/2, 0.002, 0, 1e-7)
+	body("pad", int32(nodes/2), 0.002, 0, 1e-7)
 	for _, q := range [][2]float64{{1, 1}, {-1, 1}, {-1, -1}, {1, -1}} {
 		p.Springs = append(p.Springs, assembly.Spring{Group: 2, A: 3, B: 2, Point: assembly.Vec{0.015 * q[0], 0.015 * q[1], 0.004}, Axes: assembly.Global, Stiffness: [6]float64{2e4, 2e4, 4e4}})
 	}
@@ -74,9 +73,9 @@ func frame(s *assembly.System) (*direct.Frame, direct.Place, []direct.Place) {
 	return f, direct.Place{Body: 2, Point: assembly.Vec{0, 0, 0.01}}, at
 }
 
-func assembled(t testing.TB) *assembly.System {
+func assembled(t testing.TB, nodes int) *assembly.System {
 	t.Helper()
-	s, err := assembly.Assemble(context.Background(), bars(), 1)
+	s, err := assembly.Assemble(context.Background(), bars(nodes), 1)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -86,7 +85,7 @@ func assembled(t testing.TB) *assembly.System {
 // The answer is that of the equations written out and solved by elimination, real and
 // imaginary parts as one real system.
 func TestAnswerIsThatOfTheEquationsWrittenOut(t *testing.T) {
-	s := assembled(t)
+	s := assembled(t, 9)
 	f, gyro, at := frame(s)
 	n := s.N
 	for _, hz := range []float64{1, 90, 233, 480} {
@@ -175,7 +174,7 @@ func TestAnswerIsThatOfTheEquationsWrittenOut(t *testing.T) {
 
 // Weights of one give the stiffness; groups do not mix.
 func TestWeightedStiffness(t *testing.T) {
-	s := assembled(t)
+	s := assembled(t, 9)
 	ones := s.Weighted([]float64{1, 1, 1}, 1)
 	mixed := s.Weighted([]float64{2, 0, -1}, 2)
 	a, b, c := s.Weighted([]float64{1, 0, 0}, 1), s.Weighted([]float64{0, 1, 0}, 1), s.Weighted([]float64{0, 0, 1}, 1)
@@ -194,11 +193,11 @@ func TestWeightedStiffness(t *testing.T) {
 // with few modes and residual vectors, to 1 %. The frame has a soft and lossy mount and
 // spinning rotors, one of them with a tilted shaft.
 func TestModalResponseIsTheDirectOne(t *testing.T) {
-	s := assembled(t)
-	f, gyro, at := frame(s)
-	places := []modal.Place{{Name: "a", Kind: "rotor", Body: 0, Point: rotors[0].Hub}, {Name: "b", Kind: "rotor", Body: 1, Point: rotors[1].Hub}, {Name: "stack", Kind: "gyro", Body: 2, Point: gyro.Point}}
+	places := []modal.Place{{Name: "a", Kind: "rotor", Body: 0, Point: rotors[0].Hub}, {Name: "b", Kind: "rotor", Body: 1, Point: rotors[1].Hub}, {Name: "stack", Kind: "gyro", Body: 2, Point: assembly.Vec{0, 0, 0.01}}}
 	worst := map[string]float64{}
 	for name, upTo := range map[string]float64{"all": 1e6, "few": 750} {
+		s := assembled(t, map[string]int{"all": 9, "few": 41}[name])
+		f, gyro, at := frame(s)
 		st, err := modal.Build(t.Context(), s, places, modal.Options{UpTo: upTo, Threads: 1})
 		if err != nil {
 			t.Fatal(err)
@@ -209,7 +208,7 @@ func TestModalResponseIsTheDirectOne(t *testing.T) {
 				modes++
 			}
 		}
-		if name == "all" && modes != s.N || name == "few" && modes > s.N/3 {
+		if name == "all" && modes != s.N || name == "few" && len(st.Basis.Kinds) > s.N/3 {
 			t.Fatalf("%s: %d modes of %d", name, modes, s.N)
 		}
 		for g := range st.Basis.Groups {
@@ -266,7 +265,7 @@ func TestModalResponseIsTheDirectOne(t *testing.T) {
 }
 
 func TestSolvesThatCannotBe(t *testing.T) {
-	s := assembled(t)
+	s := assembled(t, 9)
 	f, gyro, at := frame(s)
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()

@@ -169,7 +169,7 @@ func (s *System) driver(spins bool) *driver {
 	n := len(s.vectors)
 	d := &driver{s: s, work: make([]complex128, n*n)}
 	outputs, loads := s.gyro[:], s.load
-	if s.reduced != nil && (spins || s.spinning()) {
+	if s.rate == nil && (spins || s.spinning()) {
 		outputs = append(append([][]float64{}, outputs...), s.tilt...)
 		loads = append(append([][]float64{}, loads...), s.tilt...)
 		d.p = make([]complex128, len(s.tilt)*len(s.tilt))
@@ -203,7 +203,7 @@ func (s *System) driver(spins bool) *driver {
 // gyroRates fills d.rates at a frequency.
 func (d *driver) gyroRates(frequency float64) error {
 	omega := angular(frequency)
-	if d.s.reduced != nil {
+	if d.s.rate == nil {
 		if d.rest(omega) && d.combine(omega) {
 			return nil
 		}
@@ -216,15 +216,18 @@ func (d *driver) gyroRates(frequency float64) error {
 }
 
 // rest fills d.side with what the outputs need, the rotors taken as at rest;
-// false when there is no such form or no bound.
+// false when there are dampers or no bound.
 func (d *driver) rest(omega float64) bool {
-	if d.s.reduced == nil {
+	if d.s.rate != nil {
 		return false
 	}
 	for k := range d.side {
 		copy(d.side[k], d.output[k])
 	}
 	// The matrix at rest is symmetric and so its own transpose.
+	if d.s.reduced == nil {
+		return factorSolve(d.s.still(omega, d.work), len(d.s.vectors), d.side...)
+	}
 	return d.s.reduced.solve(omega*omega, d.work, d.side...)
 }
 
