@@ -33,13 +33,9 @@ func builtin(name string) element.Type {
 
 // check solves the full damped equations at the frequencies of check_at and
 // sets the transfer functions beside those of the modal basis.
-func (f *fleet) check(ctx context.Context, r *kinds.Response, basis *modal.Basis, sys *forced.System, p *airframe.Properties, g given, set settings, threads int, report stage.Reporter) error {
-	if len(set.checkAt) == 0 {
+func (w *whole) check(ctx context.Context, r *kinds.Response, sys *forced.System, set settings, threads int, report stage.Reporter) error {
+	if w == nil {
 		return nil
-	}
-	frame, gyro, at, err := f.whole(ctx, basis, p, g, set, threads)
-	if err != nil {
-		return err
 	}
 	tr, err := sys.Transfer(ctx, set.checkAt, threads)
 	if err != nil {
@@ -47,17 +43,17 @@ func (f *fleet) check(ctx context.Context, r *kinds.Response, basis *modal.Basis
 	}
 	for k, frequency := range set.checkAt {
 		report.Progress("direct solve", float64(k)/float64(len(set.checkAt)))
-		want, err := frame.Rates(ctx, frequency, gyro, at, threads)
+		want, err := w.frame.Rates(ctx, frequency, w.gyro, w.at, threads)
 		if err != nil {
 			return unsolved(err, frequency)
 		}
 		for axis, name := range kinds.AxisNames {
 			var off, size [2]float64 // over forces, over moments
 			for j, in := range sys.Inputs() {
-				h, w := tr.Rate[axis][j][k], want.Rate[axis][j/6][in.Component]
-				r.Direct = append(r.Direct, kinds.ResponseDirect{Frequency: frequency, Rotor: in.Rotor, Component: in.Component, Axis: name, Modal: h, Direct: w})
+				h, d := tr.Rate[axis][j][k], want.Rate[axis][j/6][in.Component]
+				r.Direct = append(r.Direct, kinds.ResponseDirect{Frequency: frequency, Rotor: in.Rotor, Component: in.Component, Axis: name, Modal: h, Direct: d})
 				kind := in.Component / 3
-				off[kind], size[kind] = math.Hypot(off[kind], cmplx.Abs(h-w)), math.Hypot(size[kind], cmplx.Abs(w))
+				off[kind], size[kind] = math.Hypot(off[kind], cmplx.Abs(h-d)), math.Hypot(size[kind], cmplx.Abs(d))
 			}
 			for kind := range off {
 				r.DirectErrors = append(r.DirectErrors, kinds.ResponseDirectError{Frequency: frequency, Axis: name, Moment: kind == 1, Error: off[kind] / size[kind]})
@@ -67,13 +63,22 @@ func (f *fleet) check(ctx context.Context, r *kinds.Response, basis *modal.Basis
 	return nil
 }
 
-// whole assembles the frame again, with the damping of the basis and the
+// whole is the frame of every unknown, with the damping of the basis and the
 // rotors as they spin.
-func (f *fleet) whole(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g given, set settings, threads int) (*direct.Frame, direct.Place, []direct.Place, error) {
-	var gyro direct.Place
+type whole struct {
+	frame *direct.Frame
+	gyro  direct.Place
+	at    []direct.Place // rotors
+}
+
+// assemble makes it when check_at asks for it, else nil.
+func (f *fleet) assemble(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g given, set settings, threads int) (*whole, error) {
+	if len(set.checkAt) == 0 {
+		return nil, nil
+	}
 	problem, err := assembly.FromAirframe(g.mesh, p, builtin)
 	if err != nil {
-		return nil, gyro, nil, fault.New(fault.Input, "the frame cannot be assembled again: %v", err).In("sweep", "").Of("check_at").
+		return nil, fault.New(fault.Input, "the frame cannot be assembled again: %v", err).In("sweep", "").Of("check_at").
 			Do("give the mesh and properties that solve was given; check_at knows only the element types that come with the product")
 	}
 	same := len(problem.Groups) == len(basis.Groups)
@@ -81,12 +86,12 @@ func (f *fleet) whole(ctx context.Context, basis *modal.Basis, p *airframe.Prope
 		same = problem.Groups[k].Name == basis.Groups[k].Name && problem.Groups[k].Kind == basis.Groups[k].Kind
 	}
 	if !same || len(basis.Shapes) == 0 || len(basis.Shapes[0]) != 3*len(problem.Nodes) {
-		return nil, gyro, nil, fault.New(fault.Input, "the modes are not of this mesh and these properties: they have other parts, joints or mounts, or another number of nodes").In("sweep", "").Of("mesh").
+		return nil, fault.New(fault.Input, "the modes are not of this mesh and these properties: they have other parts, joints or mounts, or another number of nodes").In("sweep", "").Of("mesh").
 			Do("give the mesh and properties that solve was given")
 	}
 	system, err := assembly.Assemble(ctx, &problem.Problem, threads)
 	if err != nil {
-		return nil, gyro, nil, fault.From(err).In("sweep", "").Of("check_at")
+		return nil, fault.From(err).In("sweep", "").Of("check_at")
 	}
 	bodies := map[string]int{}
 	for k, b := range p.Bodies {
@@ -102,7 +107,7 @@ func (f *fleet) whole(ctx context.Context, basis *modal.Basis, p *airframe.Prope
 			frame.Spins = append(frame.Spins, direct.Spin{Place: place, First: e1, Second: e2, Momentum: c.Momentum})
 		}
 	}
-	return frame, direct.Place{Body: bodies[p.Gyro.Body], Point: p.Gyro.At}, at, nil
+	return &whole{frame, direct.Place{Body: bodies[p.Gyro.Body], Point: p.Gyro.At}, at}, nil
 }
 
 func unsolved(err error, frequency float64) error {

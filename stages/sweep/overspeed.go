@@ -9,9 +9,6 @@ import (
 	"hushframe/stages/kinds"
 )
 
-// mapSpeeds is the number of even speeds of the map, up to the highest.
-const mapSpeeds = 200
-
 // voice is one tone of one rotor.
 type voice struct {
 	rotor int
@@ -43,8 +40,8 @@ func (f *fleet) overSpeed(ctx context.Context, r *kinds.Response, sys *forced.Sy
 	if !(highest > 0) {
 		return nil
 	}
-	for k := range mapSpeeds {
-		r.MapSpeeds = append(r.MapSpeeds, highest*float64(k+1)/mapSpeeds)
+	for k := range set.mapSpeeds {
+		r.MapSpeeds = append(r.MapSpeeds, highest*float64(k+1)/float64(set.mapSpeeds))
 	}
 	if err := f.weigh(r, sys, rest, set); err != nil {
 		return err

@@ -35,6 +35,10 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	if err != nil {
 		return nil, err
 	}
+	all, err := fleet.assemble(ctx, basis, p, g, set, threads)
+	if err != nil {
+		return nil, err
+	}
 	report.Progress("sweep", 0)
 	grid := forced.Grid(set.from, set.to, set.step, sys.Resonances())
 	rest, err := sys.Rest(ctx, grid, threads)
@@ -107,7 +111,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	if err := points(ctx, r, named, fleet, sys, set, threads); err != nil {
 		return nil, err
 	}
-	if err := fleet.check(ctx, r, basis, sys, p, g, set, threads, report); err != nil {
+	if err := all.check(ctx, r, sys, set, threads, report); err != nil {
 		return nil, err
 	}
 	report.Progress("shapes", 0.95)

@@ -26,7 +26,7 @@ var _ stage.Stage = Stage{}
 func (Stage) Describe() stage.Description {
 	frequency := stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
 	zero := 0.0
-	one, less := 1.0, -1.0
+	one, less, many := 1.0, -1.0, 1000.0
 	d := stage.Description{
 		Name:  "sweep",
 		About: "predict the gyro rate that the rotors cause, over frequency",
@@ -86,6 +86,8 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "16000 rpm", Above: &zero},
 					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
 				}}}, Example: `[{ speed = "15000 rpm", share = 0.7 }, { speed = "19000 rpm", share = 0.3 }]`},
+			{Name: "map_speeds", About: "number of even rotor speeds, up to the highest, of the maps over rotor speed",
+				Type: stage.Type{Kind: stage.Whole}, Default: 200.0, Example: "200", Min: &one, Max: &many},
 			{Name: "recording", About: "spectra from record, whose rotor speeds then say how a flight is spread over speeds",
 				Type: artifactOf("spectra")},
 			{Name: "gyro_noise", About: "assumed one-sided density of the gyro's own noise on each axis, in what a recorder sees of a flight",
@@ -148,6 +150,7 @@ type settings struct {
 	noise          float64 // of the gyro, (rad/s)²/Hz
 	points         []pointAt
 	checkAt        []float64
+	mapSpeeds      int // number
 }
 
 // mostFrequencies bounds the size of a response.
@@ -158,7 +161,7 @@ func read(a stage.Arguments) (settings, error) {
 		from: a.SI("from"), to: a.SI("to"), step: a.SI("resolution"),
 		source:     forced.Broadband{Force: a.SI("force_density"), Moment: a.SI("moment_density")},
 		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
-		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"), checkAt: a.SIs("check_at"),
+		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"), checkAt: a.SIs("check_at"), mapSpeeds: a.Whole("map_speeds"),
 	}
 	s.sideShare, s.ripple, s.rippleOrder, s.spread = a.Number("side_share"), a.SI("torque_ripple"), a.Number("ripple_order"), a.Number("speed_spread")
 	s.unbalance = math.NaN()

@@ -68,6 +68,9 @@ func frame() (*kinds.Modes, *airframe.Properties) {
 	return m, p
 }
 
+// mapSpeeds is the number of speeds of maps in tests, to save time.
+const mapSpeeds = 20
+
 type silent struct{}
 
 func (silent) Progress(string, float64)        {}
@@ -81,6 +84,7 @@ func call(t testing.TB, m *kinds.Modes, p *airframe.Properties, change stage.Arg
 			c.Arguments[a.Name] = a.Default
 		}
 	}
+	c.Arguments["map_speeds"] = float64(mapSpeeds)
 	for name, v := range change {
 		c.Arguments[name] = v
 	}
