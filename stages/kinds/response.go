@@ -51,6 +51,8 @@ var ResponseKind = artifact.Kind{
 			col("rms", artifact.Float, "rad/s", "root mean square within the sweep"),
 			col("correction", artifact.Float, "dB", "largest change that residual vectors make to the density, signed; NaN if not computed"),
 			col("correction_at", artifact.Float, "Hz", "where that is"),
+			col("give_force", artifact.Float, "rad/N", "rotation of the gyro by which the frame gives at rest under a unit force, root sum of squares over all components at all hubs, rigid-body motion not counted"),
+			col("give_moment", artifact.Float, "rad/(N*m)", "the same under a unit moment"),
 		)},
 		{Name: "peaks", About: "peaks of the spectrum, by axis and frequency", Columns: columns(
 			col("axis", artifact.Text, "", "roll, pitch or yaw"),
@@ -245,6 +247,7 @@ type ResponseTransfer struct {
 type ResponseAxis struct {
 	Axis                          string
 	RMS, Correction, CorrectionAt float64
+	GiveForce, GiveMoment         float64
 }
 
 // ResponsePeak is one peak of one axis.

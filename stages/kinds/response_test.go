@@ -13,7 +13,7 @@ func sampleResponse() *Response {
 		Frequency: []float64{100, 101}, Density: [3][]float64{{1, 2}, {3, 4}, {5, 6}}, Uncorrected: [3][]float64{{1, 2}, {3, 4}, nan},
 		Sources:  []ResponseSource{{"fr", "roll", []float64{1, 2}}},
 		Transfer: []ResponseTransfer{{"fr", 2, "pitch", []float64{1, 2}, []float64{3, 4}}},
-		Axes:     []ResponseAxis{{"roll", 0.1, -3, 440}},
+		Axes:     []ResponseAxis{{"roll", 0.1, -3, 440, 1e-5, 2e-3}},
 		Peaks: []ResponsePeak{{Axis: "roll", Frequency: 230, Density: 2, Prominence: 30, Damping: 0.01, Modes: []int{3, 4}, Shares: []float64{0.9, -0.1},
 			Rigid: 0.1, Residual: 0.1, Uncorrected: 0.95, Rotor: "fr", Component: 4, ComponentShare: 0.4, Losses: []string{"arm"}, LossShares: []float64{1},
 			ModeShares: []float64{0.9}, RotorShares: []float64{1}}},

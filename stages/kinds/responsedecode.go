@@ -53,7 +53,8 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	}
 	t = a.Table("axes")
 	for i := range t.Rows() {
-		r.Axes = append(r.Axes, ResponseAxis{t.Texts("axis")[i], t.Floats("rms")[i], t.Floats("correction")[i], t.Floats("correction_at")[i]})
+		r.Axes = append(r.Axes, ResponseAxis{t.Texts("axis")[i], t.Floats("rms")[i], t.Floats("correction")[i], t.Floats("correction_at")[i],
+			t.Floats("give_force")[i], t.Floats("give_moment")[i]})
 	}
 	var err error
 	if r.Peaks, err = responsePeaks(a.Table("peaks")); err != nil {

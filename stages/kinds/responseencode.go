@@ -49,7 +49,9 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 		Set("axis", list(r.Axes, func(x ResponseAxis) string { return x.Axis })).
 		Set("rms", list(r.Axes, func(x ResponseAxis) float64 { return x.RMS })).
 		Set("correction", list(r.Axes, func(x ResponseAxis) float64 { return x.Correction })).
-		Set("correction_at", list(r.Axes, func(x ResponseAxis) float64 { return x.CorrectionAt }))
+		Set("correction_at", list(r.Axes, func(x ResponseAxis) float64 { return x.CorrectionAt })).
+		Set("give_force", list(r.Axes, func(x ResponseAxis) float64 { return x.GiveForce })).
+		Set("give_moment", list(r.Axes, func(x ResponseAxis) float64 { return x.GiveMoment }))
 	setResponsePeaks(a.Table("peaks"), r.Peaks)
 	a.Table("modes").
 		Set("number", list(r.Modes, func(x ResponseMode) int64 { return int64(x.Number) })).

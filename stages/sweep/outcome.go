@@ -42,7 +42,7 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if !math.IsNaN(r.Thrust) && set.bladeShare > 0 {
 		o.Notes = append(o.Notes, fmt.Sprintf("the thrust of %.3g N per rotor is assumed to vary by %.3g %% at blade passing", r.Thrust, 100*set.bladeShare))
 	}
-	o.Summary = []stage.Section{peakTable(r), axisTable(r)}
+	o.Summary = []stage.Section{peakTable(r), axisTable(r), staticTable(r), pointTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
 	}
@@ -56,6 +56,7 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if len(r.Whirl) > 0 {
 		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r), separationTable(r))
 	}
+	o.Summary = append(o.Summary, practiceTable(r))
 	return o
 }
 

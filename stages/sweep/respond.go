@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"sort"
 
 	"hushframe/core/mechanics/airframe"
@@ -76,6 +77,14 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	}
 	for axis, name := range kinds.AxisNames {
 		x := kinds.ResponseAxis{Axis: name, RMS: math.Sqrt(forced.MeanSquare(grid, sp.Density[axis]))}
+		for j, in := range tr.Inputs {
+			give := cmplx.Abs(static.Rate[axis][j][0]-rigid.Rate[axis][j][0]) / (2 * math.Pi * grid[0])
+			if in.Moment() {
+				x.GiveMoment = math.Hypot(x.GiveMoment, give)
+			} else {
+				x.GiveForce = math.Hypot(x.GiveForce, give)
+			}
+		}
 		x.Correction, x.CorrectionAt = change(grid, sp.Density[axis], r.Uncorrected[axis])
 		r.Axes = append(r.Axes, x)
 	}

@@ -231,6 +231,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, explain(err)
 	}
 	r.ModesTo = reach
+	r.Practice = practice(r)
 	call.Report.Progress("write", -1)
 	if _, err := artifact.Write(call.Outputs["response"], kinds.EncodeResponse(r)); err != nil {
 		return nil, err

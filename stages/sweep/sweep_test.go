@@ -365,7 +365,7 @@ func TestShapesWhereAsked(t *testing.T) {
 func TestSummary(t *testing.T) {
 	m, p := frame()
 	_, out := run(t, m, p, nil)
-	if len(out.Summary) != 4 {
+	if len(out.Summary) != 7 {
 		t.Fatalf("%d tables", len(out.Summary))
 	}
 	for _, s := range out.Summary {

@@ -36,11 +36,20 @@ func (s *System) Probe(ctx context.Context, frequency []float64, rows [][]float6
 			panic(fmt.Sprintf("forced: row of %d numbers over %d vectors", len(row), len(s.vectors)))
 		}
 	}
+	own := s.own()
 	return s.each(ctx, len(frequency), threads, func() func(k int) error {
 		p := s.prober(rows)
+		if own != nil {
+			p.quick = own.bilinear(append(append([][]float64{}, rows...), s.tilt...), append(append([][]float64{}, s.load...), s.tilt...))
+			for range len(rows) + len(s.tilt) {
+				p.all = append(p.all, make([]complex128, len(s.inputs)+len(s.tilt)))
+			}
+		}
 		return func(k int) error {
-			if err := p.solve(frequency[k]); err != nil {
-				return err
+			if p.quick == nil || !p.couple(frequency[k]) {
+				if err := p.solve(frequency[k]); err != nil {
+					return err
+				}
 			}
 			visit(k, p.motion)
 			return nil
@@ -103,6 +112,48 @@ type prober struct {
 	motion     [][]complex128
 	p, part    []complex128
 	full       bool // the last solve was in modal coordinates
+	quick      *bilinear
+	all        [][]complex128 // rows, then tilts, under inputs, then tilts, of the frame at rest
+}
+
+// couple fills motion from the spectral form, with the gyroscopic couplings;
+// false when there is no bounded answer that way.
+func (p *prober) couple(frequency float64) bool {
+	s := p.s
+	omega := angular(frequency)
+	if !p.quick.at(omega, p.all) {
+		return false
+	}
+	rows, inputs, m := len(p.plain), len(s.inputs), len(s.tilt)
+	for i := range rows {
+		copy(p.motion[i], p.all[i][:inputs])
+	}
+	if s.spinning() {
+		middle := make([]complex128, m*m)
+		for i := range m {
+			copy(middle[i*m:], p.all[rows+i][inputs:])
+		}
+		if !couple(middle, s.momentum, omega) {
+			return false
+		}
+		for i := range rows {
+			for j := range m {
+				var f complex128
+				for k, x := range p.all[i][inputs:] {
+					f += x * middle[k*m+j]
+				}
+				for c, y := range p.all[rows+j][:inputs] {
+					p.motion[i][c] -= f * y
+				}
+			}
+		}
+	}
+	for i := range p.motion {
+		if !finite(p.motion[i]) {
+			return false
+		}
+	}
+	return true
 }
 
 func (s *System) prober(rows [][]float64) *prober {

@@ -26,6 +26,9 @@ type restPoint struct {
 // response, of which a Reader tells.
 func (s *System) Rest(ctx context.Context, frequency []float64, threads int) (*Rest, error) {
 	r := &Rest{s: s, Frequency: frequency, at: make([]*restPoint, len(frequency))}
+	if own := s.own(); own != nil {
+		return r, r.fast(ctx, own, threads)
+	}
 	still := s.Spun(make([]float64, len(s.momentum)))
 	inputs, m := len(s.inputs), len(s.tilt)
 	return r, s.each(ctx, len(frequency), threads, func() func(k int) error {
@@ -48,6 +51,35 @@ func (s *System) Rest(ctx context.Context, frequency []float64, threads int) (*R
 			for i := range m {
 				copy(p.tilt[i*m:], read(d.side[3+i], inputs, m))
 				p.loaded = append(p.loaded, read(d.side[3+i], 0, inputs))
+			}
+			r.at[k] = p
+			return nil
+		}
+	})
+}
+
+// fast fills r by the spectral form.
+func (r *Rest) fast(ctx context.Context, own *spectral, threads int) error {
+	s := r.s
+	inputs, m := len(s.inputs), len(s.tilt)
+	rows := append(append([][]float64{}, s.gyro[:]...), s.tilt...)
+	loads := append(append([][]float64{}, s.load...), s.tilt...)
+	return s.each(ctx, len(r.Frequency), threads, func() func(k int) error {
+		b := own.bilinear(rows, loads)
+		return func(k int) error {
+			y := make([][]complex128, len(rows))
+			for i := range y {
+				y[i] = make([]complex128, len(loads))
+			}
+			if !b.at(angular(r.Frequency[k]), y) {
+				return nil
+			}
+			p := &restPoint{}
+			for axis := range 3 {
+				p.direct[axis], p.toTilt[axis] = y[axis][:inputs], y[axis][inputs:]
+			}
+			for i := range m {
+				p.loaded, p.tilt = append(p.loaded, y[3+i][:inputs]), append(p.tilt, y[3+i][inputs:]...)
 			}
 			r.at[k] = p
 			return nil

@@ -3,6 +3,7 @@ package forced
 import (
 	"fmt"
 	"math"
+	"sync"
 
 	"hushframe/core/mechanics/modal"
 )
@@ -41,7 +42,8 @@ type System struct {
 	inputs  []Input
 	load    [][]float64  // load[input][v]: modal force of a unit of the input
 	gyro    [3][]float64 // gyro[axis][v]: rotation of the gyro in vector v, rad
-	reduced *hessenberg  // when rate is nil
+	reduced *hessenberg  // when rate is nil and there are no laws
+	own     func() *spectral
 	// Gyroscopic couplings: rows 2r and 2r+1 of tilt are those of rotor r.
 	tilt     [][]float64
 	momentum []float64
@@ -169,6 +171,12 @@ func (s *System) Vectors() []int { return s.vectors }
 
 // prepare brings the matrix to its form for many frequencies, where it is constant but for ω².
 func (s *System) prepare() {
+	s.own = sync.OnceValue(func() *spectral {
+		if s.reduced == nil {
+			return nil
+		}
+		return s.spectral()
+	})
 	if s.rate == nil && len(s.laws) == 0 {
 		s.reduced = reduce(s.still(0, make([]complex128, len(s.loss))), len(s.vectors))
 	}
