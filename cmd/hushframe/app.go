@@ -152,7 +152,7 @@ multirotor airframes. A job file says what to do; results are kept beside it in
 	root.SetErr(a.err)
 	root.PersistentFlags().StringVar(&a.logFormat, "log", "human", "form of log lines: human or json")
 	root.PersistentFlags().BoolVarP(&a.verbose, "verbose", "v", false, "also log what only helps to find mistakes")
-	root.AddCommand(a.runCommand(), a.checkCommand(), a.chainCommand(), a.stagesCommand(), a.inspectCommand(), a.startCommand(),
+	root.AddCommand(a.runCommand(), a.checkCommand(), a.chainCommand(), a.stagesCommand(), a.inspectCommand(), a.diffCommand(), a.runsCommand(), a.startCommand(),
 		a.pruneCommand(), a.versionCommand())
 	return root
 }

@@ -17,7 +17,7 @@ func (a *app) runCommand() *cobra.Command {
 	var (
 		job           jobFlags
 		threads       int
-		memory        string
+		memory, name  string
 		force, verify bool
 	)
 	c := &cobra.Command{
@@ -35,6 +35,7 @@ progress, log lines and mistakes to standard error.
 	job.add(c)
 	c.Flags().IntVar(&threads, "threads", 0, "threads for all steps together (default: as many as the machine has)")
 	c.Flags().StringVar(&memory, "memory", "", `memory for all steps together, such as "8 GiB" (default: no limit)`)
+	c.Flags().StringVar(&name, "name", "", "keep the run under a name, for diff: prune leaves it alone until the name is given to another run")
 	c.Flags().BoolVar(&force, "force", false, "run every step, also those whose inputs are as before")
 	c.Flags().BoolVar(&verify, "verify", false, "read and check stored results in full before they are reused")
 	c.RunE = func(c *cobra.Command, args []string) error {
@@ -44,6 +45,11 @@ progress, log lines and mistakes to standard error.
 		}
 		if threads == 0 {
 			threads = runtime.GOMAXPROCS(0)
+		}
+		if name != "" {
+			if err := store.CheckLabel(name); err != nil {
+				return fault.From(err).In("read --name", name)
+			}
 		}
 		bytes := 0.0
 		if memory != "" {
@@ -69,7 +75,7 @@ progress, log lines and mistakes to standard error.
 		defer st.Close()
 		w := a.watch(p)
 		result, err := run.Run(ctx, run.Options{
-			Plan: p, Source: h, Store: st, Observer: w, Name: jobName(args[0]), Program: program(),
+			Plan: p, Source: h, Store: st, Observer: w, Name: jobName(args[0]), Program: program(), Label: name,
 			Threads: threads, Memory: int64(bytes), Force: force, Verify: verify,
 		})
 		w.close()
