@@ -8,6 +8,7 @@ import (
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
+	"hushframe/core/pipeline/stage"
 )
 
 // artifactData is an artifact as JSON: every table as rows, with the units of its columns once.
@@ -55,7 +56,8 @@ func dataOf(a *artifact.Artifact, without ...string) artifactData {
 	return d
 }
 
-// forJSON turns a value into what JSON can hold: what is not a number is null, infinities are texts.
+// forJSON turns a value into what JSON can hold: what is not a number is null, infinities are texts, quantities objects with
+// their SI value and dimension.
 func forJSON(v any) any {
 	switch x := v.(type) {
 	case float64:
@@ -71,6 +73,20 @@ func forJSON(v any) any {
 		out := make([]any, len(x))
 		for i := range x {
 			out[i] = forJSON(x[i])
+		}
+		return out
+	case stage.Quantity:
+		return map[string]any{"value": forJSON(x.SI), "dimension": x.Dimension}
+	case []any:
+		out := make([]any, len(x))
+		for i := range x {
+			out[i] = forJSON(x[i])
+		}
+		return out
+	case map[string]any:
+		out := map[string]any{}
+		for k := range x {
+			out[k] = forJSON(x[k])
 		}
 		return out
 	case []int64:
