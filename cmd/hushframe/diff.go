@@ -216,12 +216,15 @@ func (a *app) showDifference(d *differences) {
 	}
 	writeSection(a.out, heads)
 	for _, f := range d.frames {
+		more := ""
+		if len(d.frames) > 1 {
+			more = ", " + f.labels[1]
+		}
 		for _, s := range contrast.Tables(f.Difference) {
-			if len(d.frames) > 1 {
-				s.Title += ", " + f.labels[1]
-			}
+			s.Title += more
 			writeSection(a.out, s)
 		}
+		a.differenceStrips(f.Difference, more)
 	}
 	a.requirementChanges(d.account.Verdicts)
 	for _, x := range []struct {
@@ -255,6 +258,22 @@ func (a *app) showDifference(d *differences) {
 		fmt.Fprintf(a.out, "\n%s\n", note)
 	}
 	fmt.Fprintf(a.out, "\n%s\n", d.closing())
+}
+
+// differenceStrips draws both responses, the axes one below the other.
+func (a *app) differenceStrips(d *kinds.Difference, more string) {
+	if len(d.Frequency) == 0 {
+		return
+	}
+	var groups [][]strip
+	for axis, name := range kinds.AxisNames {
+		var group []strip
+		for k, side := range []string{" before", " now"} {
+			group = append(group, strip{name + side, d.Frequency, d.Density[k][axis], highestWords(d.Frequency, d.Density[k][axis])})
+		}
+		groups = append(groups, group)
+	}
+	a.writeStrips("Response before and after"+more, fmt.Sprintf("density of the gyro rate, each axis down to %d dB below the highest value of both;\nhighest values at the right in (deg/s)²/Hz", stripDepth), d.From, d.To, groups, nil)
 }
 
 // requirementChanges lists the requirements whose state or value differs.

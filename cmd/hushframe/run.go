@@ -92,7 +92,7 @@ numbers are in SI units, and runs that come to the same write the same bytes.
 				return err
 			}
 		} else {
-			a.summary(p.Job.Folder, result)
+			a.summary(p.Job.Folder, st, result)
 		}
 		a.diagnose(p.Job, result.Diagnostics)
 		for _, s := range result.Steps {

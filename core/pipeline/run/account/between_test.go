@@ -9,7 +9,7 @@ func TestBetween(t *testing.T) {
 	before := &Account{
 		Sources: []Source{{"job.hcl", "", "1"}}, Files: []File{{"frame", "cut/arm.dxf", "2"}, {"frame", "cut/top.dxf", "3"}},
 		Settings:    []Setting{{Name: "t", Value: `"5 mm"`}, {Name: "gone", Value: "1"}, {Name: "same", Value: "2"}},
-		Figures:     []Figure{{Step: "modes", Name: "gap", Text: "20 Hz"}, {Step: "modes", Name: "n", Text: "7"}},
+		Figures:     []Figure{{Step: "modes", Name: "gap", Text: "20 Hz", Number: 20}, {Step: "modes", Name: "n", Text: "7", Number: 7}, {Step: "frame", Name: "centre_y", Text: "1e-18 m", Number: 1e-18}},
 		Executables: []Executable{{Name: "stages", SHA256: "a"}},
 		Verdicts: []Verdict{{Name: "light", Holds: true, Judged: true, Value: "500 g"}, {Name: "apart", Judged: true}, {Name: "old", Holds: true, Judged: true},
 			{Name: "steady", Holds: true, Judged: true}},
@@ -17,7 +17,7 @@ func TestBetween(t *testing.T) {
 	after := &Account{
 		Sources: []Source{{"job.hcl", "", "1"}}, Files: []File{{"frame", "cut/arm.dxf", "4"}, {"frame", "cut/top.dxf", "3"}},
 		Settings:    []Setting{{Name: "t", Value: `"6 mm"`}, {Name: "same", Value: "2"}, {Name: "fresh", Value: "3"}},
-		Figures:     []Figure{{Step: "modes", Name: "gap", Text: "25 Hz"}, {Step: "modes", Name: "n", Text: "7"}},
+		Figures:     []Figure{{Step: "modes", Name: "gap", Text: "25 Hz", Number: 25}, {Step: "modes", Name: "n", Text: "7", Number: 7}, {Step: "frame", Name: "centre_y", Text: "-2e-18 m", Number: -2e-18}},
 		Executables: []Executable{{Name: "stages", SHA256: "b"}},
 		Verdicts: []Verdict{{Name: "apart", Holds: true, Judged: true}, {Name: "light", Judged: true, Value: "560 g"}, {Name: "steady", Holds: true, Judged: true},
 			{Name: "fresh", Holds: true, Judged: true}},
