@@ -152,7 +152,11 @@ func uncorrected(ctx context.Context, basis *modal.Basis, fleet *fleet, residual
 	if err != nil {
 		return nil, err
 	}
-	tr, err := sys.Transfer(ctx, grid, threads)
+	rest, err := sys.Rest(ctx, grid, threads)
+	if err != nil {
+		return nil, err
+	}
+	tr, err := rest.Transfer(sys.Momenta())
 	if err != nil {
 		return nil, err
 	}
