@@ -19,6 +19,8 @@ type contribution struct {
 	// shares[starts[i]:starts[i+1]]. Without starts the components are the unknowns, in order.
 	starts []int32
 	shares []share
+	// compute, when set, adds the stiffness over the unknowns to dst in place of all these; it has no mass.
+	compute func(dst []float64)
 }
 
 // share is a part of an unknown, by its place in the list of unknowns.
@@ -40,13 +42,22 @@ func (s *System) add(threads int) {
 	dense.Parallel(threads, 2, func(which int) {
 		each := (threads + 1) / 2
 		if which == 0 {
-			k.AddAll(each, func(e int, packed []float64) { all[e].reduce(packed, all[e].stiffness) })
+			k.AddAll(each, func(e int, packed []float64) { all[e].addStiffness(packed) })
 			s.K = k.Matrix()
 			return
 		}
 		m.AddAll(each, func(e int, packed []float64) { all[e].reduce(packed, all[e].mass) })
 		s.M = m.Matrix()
 	})
+}
+
+// addStiffness adds the stiffness over the unknowns to dst, which is zero.
+func (c *contribution) addStiffness(dst []float64) {
+	if c.compute != nil {
+		c.compute(dst)
+		return
+	}
+	c.reduce(dst, c.stiffness)
 }
 
 // reduce writes Tᵀ A T, T being the matrix of the shares, or A where there are none. A nil A leaves dst zero.
@@ -105,6 +116,7 @@ func (s *System) contributions() []contribution {
 	for i := range s.springs {
 		all = append(all, s.springContribution(&s.springs[i]))
 	}
+	all = s.contactContributions(all)
 	for b := range s.layout.bodies {
 		all = append(all, s.bodyContribution(b))
 	}

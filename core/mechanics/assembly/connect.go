@@ -90,6 +90,13 @@ func checkConnected(p *Problem, l *layout) error {
 		}
 		f.join(ends[0], ends[1])
 	}
+	for i := range p.Contacts {
+		if c := &p.Contacts[i]; c.Stiffness != [6]float64{} {
+			for _, x := range c.Points {
+				f.join(int(x.Sides[0].Nodes[0]), int(x.Sides[1].Nodes[0]))
+			}
+		}
+	}
 	byRoot := map[int]int{}
 	var pieces [][]string
 	var sizes []int
