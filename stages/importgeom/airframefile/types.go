@@ -21,6 +21,7 @@ type File struct {
 	Plates    []Plate
 	Copies    []Copy
 	Joints    []Joint
+	Contacts  []Contact
 	Bolts     Bolts
 	Bolted    []Bolt
 	Standoffs []Standoff
@@ -111,10 +112,41 @@ type Copy struct {
 	Move   airframe.Vec
 }
 
-// Joint is a declared elastic connection.
+// Joint is a declared elastic connection. Where Screw is given, components that are not come from plates and screw;
+// those that are, or all without Screw, stand in Stiffness, infinite ones being rigid or to be computed.
 type Joint struct {
 	Part
 	airframe.Joint
+	Screw         Opt // nominal diameter
+	ScrewMaterial string
+	Bearing       bool // the screw's shank carries what goes across, not friction
+}
+
+// Contact is plates pressed together, a glued seam or a key.
+type Contact struct {
+	Part
+	Sort   airframe.ContactKind
+	Plates []string // pressed: every two of them that touch; else edge and face, or the two that the key stops
+	// Pressed: shape of the region, and stiffness (N/m³) where it is not computed from the plates.
+	At            *outline.Point
+	Diameter      Opt
+	Size          *[2]float64
+	Turn          float64
+	Bonded        bool
+	Normal, Shear Opt
+	// Lines.
+	From, To   airframe.Vec
+	Flat       bool // From and To have no height
+	Glue       *Glue
+	Stiffness  [3]float64 // of the whole line: seam along, across, normal; key square to it first
+	LossFactor float64
+	Low, High  float64
+	Origin     string
+}
+
+// Glue is the adhesive of a seam.
+type Glue struct {
+	Modulus, Poisson, Thickness, Width float64
 }
 
 // Fastening is what bolts may have in common.
