@@ -7,6 +7,8 @@ import (
 	"strings"
 
 	"gonum.org/v1/gonum/mat"
+
+	"hushframe/core/mechanics/airframe"
 )
 
 // Loose says that the structure falls apart: Pieces lists the names of parts and bodies of each
@@ -143,7 +145,7 @@ func checkBodies(p *Problem) error {
 			if !(in.Mass >= 0) || math.IsInf(in.Mass, 1) {
 				return fmt.Errorf("body %q has a mass of %g kg", body.Name, in.Mass)
 			}
-			if err := in.check(); err != nil {
+			if err := airframe.CheckInertia(in.Tensor); err != nil {
 				return fmt.Errorf("body %q: %w", body.Name, err)
 			}
 		}
@@ -152,21 +154,6 @@ func checkBodies(p *Problem) error {
 				return err
 			}
 		}
-	}
-	return nil
-}
-
-// check reports an inertia tensor that no distribution of mass has: principal moments must not be
-// negative, and none may exceed the sum of the other two.
-func (in Inertia) check() error {
-	t := in.Tensor
-	var eig mat.EigenSym
-	if !eig.Factorize(mat.NewSymDense(3, []float64{t[0], t[3], t[4], t[3], t[1], t[5], t[4], t[5], t[2]}), false) {
-		return fmt.Errorf("its inertia %v is not finite", t)
-	}
-	v := eig.Values(nil)
-	if slack := 1e-9 * v[2]; v[0] < -slack || v[2] > v[0]+v[1]+slack {
-		return fmt.Errorf("principal moments of inertia %.4g, %.4g, %.4g kg·m² are impossible: none may be negative or exceed the sum of the others", v[0], v[1], v[2])
 	}
 	return nil
 }

@@ -197,6 +197,7 @@ type Rotor struct {
 	Height            float64
 	Diameter, Length  Opt
 	Inertia           []float64 // 0, 3 or 6 tensor elements
+	Bell, Stator      *Solid    // both or neither; Mass and Height are then those of both
 	HubHeight         Opt
 	PropellerMass     Opt
 	PropellerDiameter Opt
@@ -209,21 +210,32 @@ type Rotor struct {
 	Grade             Opt
 }
 
+// Solid is the bell or stator of a motor: a hollow cylinder about the shaft, or a given inertia.
+type Solid struct {
+	Mass, Height            float64 // height of its centre of gravity above the face
+	Diameter, Inner, Length float64
+	Inertia                 []float64
+}
+
 // Lump is a rigid body that is no rotor.
 type Lump struct {
 	Part
-	Gyro    bool
-	On      string
-	Lower   bool
-	At      outline.Point
-	Mass    float64
-	Size    airframe.Vec
-	Turn    float64
-	Lift    float64
-	Height  Opt
-	Inertia []float64
-	Pad     *[2]float64
-	Mount   *Mount
+	Gyro  bool
+	On    string
+	Lower bool
+	At    outline.Point
+	Mass  float64
+	Size  airframe.Vec // of the box, or of that round the cylinder
+	// Diameter is given of a cylinder, Axis the axis of Size along which it lies.
+	Diameter Opt
+	Axis     int
+	Offset   [2]float64 // centre of gravity from the middle, along the box
+	Turn     float64
+	Lift     float64
+	Height   Opt
+	Inertia  []float64
+	Pad      *[2]float64
+	Mount    *Mount
 }
 
 // Mount is a set of equal springs below a lump.
