@@ -72,6 +72,7 @@ func getContacts(a *artifact.Artifact, plates int) ([]airframe.Contact, error) {
 var meshContactTables = []artifact.TableSpec{
 	{Name: "contacts", About: "plates tied at points", Columns: columns(
 		col("name", artifact.Text, "", "name"), col("first", artifact.Int, "", "index of the first part"), col("second", artifact.Int, "", "index of the second part"),
+		col("area", artifact.Truth, "", "points stand for areas, not for lengths"),
 		frameCols("axes of the springs"),
 	)},
 	{Name: "contact_points", About: "points of the contacts, in the order of these", Columns: columns(
@@ -91,6 +92,7 @@ func setMeshContacts(a *artifact.Artifact, list []mesh.Contact) {
 	for side, name := range contactSides {
 		t.Set(name, each(n, func(i int) int64 { return int64(list[i].Parts[side]) }))
 	}
+	t.Set("area", each(n, func(i int) bool { return list[i].Area }))
 	setFrames(t, n, func(i int) airframe.Frame { return list[i].Axes })
 	var of []int
 	var points []mesh.ContactPoint
@@ -113,7 +115,7 @@ func setMeshContacts(a *artifact.Artifact, list []mesh.Contact) {
 func getMeshContacts(a *artifact.Artifact, m *mesh.Mesh) error {
 	t := a.Table("contacts")
 	for i := range t.Rows() {
-		c := mesh.Contact{Name: t.Texts("name")[i], Axes: getFrame(t, i)}
+		c := mesh.Contact{Name: t.Texts("name")[i], Area: t.Truths("area")[i], Axes: getFrame(t, i)}
 		for side, name := range contactSides {
 			part, err := nodeIndices("mesh", "part of a contact", t.Ints(name)[i:i+1], len(m.Parts))
 			if err != nil {

@@ -84,7 +84,7 @@ func TestMeshRoundTrip(t *testing.T) {
 		Edges: [][3]int32{{0, 3, 1}}, EdgePart: []int32{0},
 		Patches: []mesh.Patch{{Name: "a", Owner: "s", Part: 0, Nodes: []int32{0, 3}, Centre: airframe.Vec{0, 0, 1}}},
 		Links:   []mesh.Link{{Name: "s", Kind: "standoff", Patches: []int32{0, 0}, Nodes: []int32{6, 7}, Axis: airframe.Vec{0, 0, 1}}},
-		Contacts: []mesh.Contact{{Name: "c", Parts: [2]int32{0, 0}, Axes: upright,
+		Contacts: []mesh.Contact{{Name: "c", Parts: [2]int32{0, 0}, Area: true, Axes: upright,
 			Points: []mesh.ContactPoint{{At: airframe.Vec{1, 2, 3}, Measure: 4, Triangle: [2]int32{0, 0}, Local: [2][2]float64{{0.1, 0.2}, {0.3, 0.4}}}}}},
 	}
 	a := EncodeMesh(m)

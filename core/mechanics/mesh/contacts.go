@@ -21,7 +21,7 @@ const (
 // addContact places the points of a contact in the triangles of its plates. Where a bolt clamps both plates a pressed
 // contact has none: that stiffness is the bolt's.
 func (m *Mesh) addContact(g *airframe.Geometry, c *airframe.Contact) error {
-	out := Contact{Name: c.Name, Parts: [2]int32{int32(c.Plates[0]), int32(c.Plates[1])}, Axes: c.Axes}
+	out := Contact{Name: c.Name, Parts: [2]int32{int32(c.Plates[0]), int32(c.Plates[1])}, Area: c.Kind == airframe.Pressed, Axes: c.Axes}
 	sides := [2]*flat{m.flatten(out.Parts[0]), m.flatten(out.Parts[1])}
 	if c.Kind == airframe.Pressed {
 		out.Points = pressed(g, c, sides)

@@ -62,6 +62,7 @@ type Link struct {
 type Contact struct {
 	Name  string
 	Parts [2]int32
+	Area  bool // points stand for areas, not for lengths
 	// Axes of the springs.
 	Axes   airframe.Frame
 	Points []ContactPoint
