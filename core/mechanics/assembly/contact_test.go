@@ -237,3 +237,27 @@ func TestKey(t *testing.T) {
 		t.Errorf("%.2f and %.2f Hz, want %.2f about z and %.2f along x", got[10], got[11], about, along)
 	}
 }
+
+// Three-node elements are tied by their corners: bonded layers of them agree with those of six-node ones.
+func TestContactsOfLinearTriangles(t *testing.T) {
+	g := &airframe.Geometry{Plates: []airframe.Plate{slab("lower", raised(-1e-3), 0.09, 0.06, 0.002), slab("upper", raised(1e-3), 0.09, 0.06, 0.002)},
+		Contacts: []airframe.Contact{{Name: "face", Kind: airframe.Pressed, Plates: [2]int{0, 1}, Axes: level}}}
+	var first []float64
+	for _, o := range []mesh.Options{{Size: 8e-3, Element: "quadratic-triangle"}, {Size: 3e-3, Element: "linear-triangle"}} {
+		f, _ := tied(t, g, o, noPoisson(70e9, 0.33, 2700), airframe.Joint{Name: "glue", Measure: airframe.PerArea, Stiffness: [6]float64{1e14, 1e14, 1e14}})
+		got, s, _ := hertz(t, &f.Problem, 8)
+		first = append(first, got[6])
+		for k, y := range s.Rigid() {
+			e, err := s.Energies(context.Background(), [][]float64{y}, 2)
+			if err != nil {
+				t.Fatal(err)
+			}
+			if strain := e.Strain[0][2][4]; strain > 1e-9 {
+				t.Errorf("%s: rigid motion %d strains the contact by %g J", o.Element, k, strain)
+			}
+		}
+	}
+	if math.Abs(first[1]/first[0]-1) > 0.02 {
+		t.Errorf("%.2f Hz of linear triangles, %.2f Hz of quadratic ones", first[1], first[0])
+	}
+}

@@ -139,7 +139,7 @@ func (s shift) String() string {
 }
 
 // alike is the least assurance of two shapes that count as the same mode.
-const alike = 0.6
+const alike = 0.8
 
 // compare pairs the elastic modes from 80 to 500 Hz by their shapes.
 func (m *model) compare(o *model) shift {
