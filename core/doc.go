@@ -15,7 +15,7 @@
 // The kernel wing knows numbers and frames, and nothing of HCL, gRPC or files:
 //
 //	numeric    sparse storage, ordering, factors, block Lanczos
-//	mechanics  outline, airframe, laminate, mesh, element, assembly, modal, forced, rotor
+//	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, rotor
 //	signal     windows, spectra, orders, recordings
 //	match      pairing of predicted and observed
 //	known      problems with known answers, for tests

@@ -4,6 +4,7 @@ package stages
 import (
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/compare"
+	"hushframe/stages/contrast"
 	"hushframe/stages/identify"
 	"hushframe/stages/importgeom"
 	"hushframe/stages/meshgen"
@@ -24,6 +25,7 @@ func Builtin() []stage.Stage {
 		record.Stage{},
 		identify.Stage{},
 		compare.Stage{},
+		contrast.Stage{},
 		verify.Stage{},
 		report.Stage{},
 	}

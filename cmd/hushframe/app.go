@@ -42,6 +42,8 @@ type app struct {
 	err     io.Writer // progress, log lines, diagnostics
 	// color and live say whether err is a terminal that shows colours and bars.
 	color, live bool
+	// blocks says whether out is a terminal that shows block characters.
+	blocks bool
 
 	logFormat string
 	verbose   bool
@@ -68,11 +70,13 @@ func (r *redirect) to(w io.Writer) {
 }
 
 func newApp(builtin []stage.Stage, out, err *os.File) *app {
-	terminal := isatty.IsTerminal(err.Fd()) || isatty.IsCygwinTerminal(err.Fd())
+	isTerminal := func(f *os.File) bool { return isatty.IsTerminal(f.Fd()) || isatty.IsCygwinTerminal(f.Fd()) }
+	terminal := isTerminal(err)
 	return &app{
 		builtin: builtin, out: out, err: err,
-		color: terminal && os.Getenv("NO_COLOR") == "",
-		live:  terminal && os.Getenv("TERM") != "dumb",
+		color:  terminal && os.Getenv("NO_COLOR") == "",
+		live:   terminal && os.Getenv("TERM") != "dumb",
+		blocks: showsBlocks(isTerminal(out), os.Getenv),
 	}
 }
 
@@ -152,7 +156,7 @@ multirotor airframes. A job file says what to do; results are kept beside it in
 	root.SetErr(a.err)
 	root.PersistentFlags().StringVar(&a.logFormat, "log", "human", "form of log lines: human or json")
 	root.PersistentFlags().BoolVarP(&a.verbose, "verbose", "v", false, "also log what only helps to find mistakes")
-	root.AddCommand(a.runCommand(), a.checkCommand(), a.chainCommand(), a.stagesCommand(), a.inspectCommand(), a.startCommand(), a.extensionsCommand(),
+	root.AddCommand(a.runCommand(), a.checkCommand(), a.chainCommand(), a.stagesCommand(), a.inspectCommand(), a.diffCommand(), a.runsCommand(), a.startCommand(), a.extensionsCommand(),
 		a.pruneCommand(), a.versionCommand())
 	return root
 }

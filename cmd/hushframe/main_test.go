@@ -47,6 +47,7 @@ func (s testStage) Run(ctx context.Context, c *stage.Call) (*stage.Outcome, erro
 var frequency = stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
 
 var testStages = []stage.Stage{
+	plank,
 	testStage{stage.Description{
 		Name: "ring", About: "rings a bell", Doc: "Rings a bell of a file and says how high it sounds.",
 		Arguments: []stage.Argument{

@@ -17,15 +17,18 @@ func (a *app) runCommand() *cobra.Command {
 	var (
 		job           jobFlags
 		threads       int
-		memory        string
+		memory, name  string
 		force, verify bool
+		asJSON        bool
 	)
 	c := &cobra.Command{
 		Use:   "run JOB",
 		Short: "Run a job: compute what has changed, judge the requirements, write the reports",
 		Long: `Runs a job file, or a folder of them. Steps whose inputs are as before are not
 run again; independent steps run side by side. Results go to standard output;
-progress, log lines and mistakes to standard error.
+progress, log lines and mistakes to standard error. With --json the whole result
+is one object with figures, requirements, tables, warnings and artifacts; its
+numbers are in SI units, and runs that come to the same write the same bytes.
 
 ` + exitHelp,
 		Example:           "  hushframe run baseline.hcl --set arm_thickness=6mm",
@@ -35,6 +38,8 @@ progress, log lines and mistakes to standard error.
 	job.add(c)
 	c.Flags().IntVar(&threads, "threads", 0, "threads for all steps together (default: as many as the machine has)")
 	c.Flags().StringVar(&memory, "memory", "", `memory for all steps together, such as "8 GiB" (default: no limit)`)
+	c.Flags().StringVar(&name, "name", "", "keep the run under a name, for diff: prune leaves it alone until the name is given to another run")
+	c.Flags().BoolVar(&asJSON, "json", false, "write the result as one JSON object in place of tables")
 	c.Flags().BoolVar(&force, "force", false, "run every step, also those whose inputs are as before")
 	c.Flags().BoolVar(&verify, "verify", false, "read and check stored results in full before they are reused")
 	c.RunE = func(c *cobra.Command, args []string) error {
@@ -44,6 +49,11 @@ progress, log lines and mistakes to standard error.
 		}
 		if threads == 0 {
 			threads = runtime.GOMAXPROCS(0)
+		}
+		if name != "" {
+			if err := store.CheckLabel(name); err != nil {
+				return fault.From(err).In("read --name", name)
+			}
 		}
 		bytes := 0.0
 		if memory != "" {
@@ -73,30 +83,47 @@ progress, log lines and mistakes to standard error.
 		defer st.Close()
 		w := a.watch(p)
 		result, err := run.Run(ctx, run.Options{
-			Plan: p, Source: h, Store: st, Observer: w, Name: jobName(args[0]), Program: program(),
+			Plan: p, Source: h, Store: st, Observer: w, Name: jobName(args[0]), Program: program(), Label: name,
 			Threads: threads, Memory: int64(bytes), Force: force, Verify: verify,
 		})
 		w.close()
 		if err != nil {
 			return err
 		}
-		a.summary(p.Job.Folder, result)
+		code := runExit(result)
+		if asJSON {
+			if err := writeJSON(a.out, describeRun(p, result, code)); err != nil {
+				return err
+			}
+		} else {
+			a.summary(p.Job.Folder, st, result)
+		}
 		a.diagnose(p.Job, result.Diagnostics)
 		for _, s := range result.Steps {
 			if s.State == run.Failed {
 				a.lines(s.Label, s.Fault)
 			}
 		}
-		fmt.Fprintf(a.out, "\n%s\n", closing(result, time.Since(began)))
-		switch {
-		case result.Stopped:
-			return exitError(exitStopped)
-		case result.Failed():
-			return exitError(exitFailed)
-		case len(result.Broken()) > 0:
-			return exitError(exitBroken)
+		if !asJSON {
+			fmt.Fprintf(a.out, "\n%s\n", closing(result, time.Since(began)))
+		}
+		if code != exitHeld {
+			return exitError(code)
 		}
 		return nil
 	}
 	return c
+}
+
+// runExit is the exit code of a run.
+func runExit(r *run.Result) int {
+	switch {
+	case r.Stopped:
+		return exitStopped
+	case r.Failed():
+		return exitFailed
+	case len(r.Broken()) > 0:
+		return exitBroken
+	}
+	return exitHeld
 }

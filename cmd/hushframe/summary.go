@@ -12,11 +12,12 @@ import (
 
 	"hushframe/core/pipeline/run"
 	"hushframe/core/pipeline/stage"
+	"hushframe/core/pipeline/store"
 )
 
-// summary writes the results of a run: what each step has to say, findings,
+// summary writes the results of a run: what each step has to say, responses in a few lines, findings,
 // requirements, and where reports are. The folder is that of the job.
-func (a *app) summary(folder string, r *run.Result) {
+func (a *app) summary(folder string, st *store.Store, r *run.Result) {
 	titles := map[string]int{}
 	for _, s := range r.Steps {
 		for _, section := range s.Outcome.Summary {
@@ -30,6 +31,7 @@ func (a *app) summary(folder string, r *run.Result) {
 			}
 			writeSection(a.out, section)
 		}
+		a.responseStrips(st, s)
 	}
 	findings := stage.Section{Title: "Warnings", Columns: []stage.Column{{Name: "step"}, {Name: "warning"}, {Name: "finding"}}}
 	for _, s := range r.Steps {

@@ -21,7 +21,7 @@ func TestHelp(t *testing.T) {
 	w := newTower(t)
 	w.raw = true
 	var all strings.Builder
-	for _, verb := range [][]string{{"help"}, {"run", "--help"}, {"check", "--help"}, {"chain", "--help"}, {"stages", "--help"}, {"inspect", "--help"}, {"start", "--help"}, {"prune", "--help"}, {"version", "--help"}} {
+	for _, verb := range [][]string{{"help"}, {"run", "--help"}, {"check", "--help"}, {"chain", "--help"}, {"stages", "--help"}, {"inspect", "--help"}, {"diff", "--help"}, {"runs", "--help"}, {"start", "--help"}, {"extensions", "--help"}, {"extensions", "pin", "--help"}, {"extensions", "new", "--help"}, {"prune", "--help"}, {"version", "--help"}} {
 		code, out, err := w.call(verb...)
 		if code != exitHeld || err != "" {
 			t.Errorf("%v: exit %d, %s", verb, code, err)
@@ -214,7 +214,7 @@ func TestCompletion(t *testing.T) {
 			t.Errorf("%s: exit %d, %d bytes", shell, code, len(out))
 		}
 	}
-	if _, out, _ := w.call("__complete", "stages", ""); !strings.HasPrefix(out, "ring\nwrite\n") {
+	if _, out, _ := w.call("__complete", "stages", ""); !strings.HasPrefix(out, "plank\nring\nwrite\n") {
 		t.Errorf("stages: %s", out)
 	}
 }

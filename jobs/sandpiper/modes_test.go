@@ -2,6 +2,7 @@ package sandpiper
 
 import (
 	"math"
+	"slices"
 	"testing"
 )
 
@@ -111,8 +112,11 @@ func TestPractice(t *testing.T) {
 	d := perform(t, "baseline.hcl", map[string]string{"mesh_size": coarse})
 	m := modes(t, d)
 	count, twist := 0, false
+	mount := slices.Index(m.Survey.Kinds, "mount")
 	for _, x := range m.Survey.Modes {
-		if x.Frequency >= 150 && x.Frequency <= 750 {
+		// The rule is about the frame: what mostly sways on its mounts (six modes each of stack, battery and camera)
+		// is left out.
+		if x.Frequency >= 150 && x.Frequency <= 750 && x.ByKind[mount] < 0.5 {
 			count++
 		}
 		if x.Motion == "twist" && (x.Part == "arm_fl" || x.Part == "arm_fr" || x.Part == "arm_rl" || x.Part == "arm_rr") && math.Max(x.Strength[0], x.Strength[1]) > 1 {

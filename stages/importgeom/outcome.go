@@ -53,6 +53,9 @@ func outcome(file *airframefile.File, a *assemble.Assembly) *stage.Outcome {
 	if len(g.Bolts)+len(a.Removed) > 0 {
 		out.Summary = append(out.Summary, bolts(a))
 	}
+	if len(p.Joints) > 0 {
+		out.Summary = append(out.Summary, groups(p))
+	}
 	return out
 }
 

@@ -9,6 +9,7 @@ import (
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/importgeom/airframefile"
 	"hushframe/stages/importgeom/assemble"
+	"hushframe/stages/importgeom/mounts"
 	"hushframe/stages/kinds"
 )
 
@@ -31,7 +32,14 @@ func (Stage) Describe() stage.Description {
 outer and hole loops, infers bolts from coaxial holes of plates that touch, and
 places standoffs, rotors, lumps and the gyro. Whatever was assumed, joined,
 dropped or merged is noted. All that meshing needs goes into geometry, all the
-rest into properties.`,
+rest into properties.
+
+Joints are rigid, of given stiffness, or computed from plates and screw; faces
+press, seams are glued, keys stop, each a joint group with a range of a common
+factor. Mounts may take the values of a typical piece (like = "..."), of common
+practice, from memory, without source:
+
+` + mounts.Text(),
 		Arguments: []stage.Argument{
 			{Name: "airframe", About: "description of the frame", Type: stage.Type{Kind: stage.File}, Required: true, Example: `"airframe.hcl"`},
 			{Name: "with", About: "values for inputs of the airframe file, by name", Type: stage.Type{Kind: stage.Map, Element: &stage.Type{Kind: stage.Any}},

@@ -8,8 +8,8 @@ import (
 
 // GeometryKind is all that meshing needs of an airframe.
 var GeometryKind = artifact.Kind{
-	Name: "geometry", Version: 1,
-	About: "plates as placed outlines, the patches on them, bolts and standoffs",
+	Name: "geometry", Version: 2,
+	About: "plates as placed outlines, the patches on them, bolts, standoffs and contacts",
 	Tables: []artifact.TableSpec{
 		{Name: "plates", About: "flat plates; the frame lies on the mid-surface", Columns: columns(
 			col("name", artifact.Text, "", "name in the airframe file"),
@@ -50,6 +50,7 @@ var GeometryKind = artifact.Kind{
 			vecCols("from", "m", "lower end on the plate's face"), vecCols("to", "m", "upper end on the plate's face"),
 			col("outer", artifact.Float, "m", "outer diameter"), col("inner", artifact.Float, "m", "inner diameter, 0 is solid"),
 		)},
+		contactTable,
 	},
 }
 
@@ -137,6 +138,7 @@ func EncodeGeometry(g *airframe.Geometry) *artifact.Artifact {
 	setVecs(t, "to", n, func(i int) airframe.Vec { return g.Standoffs[i].Ends[1] })
 	t.Set("outer", each(n, func(i int) float64 { return g.Standoffs[i].Outer }))
 	t.Set("inner", each(n, func(i int) float64 { return g.Standoffs[i].Inner }))
+	setContacts(a, g.Contacts)
 	return a
 }
 
@@ -223,5 +225,7 @@ func DecodeGeometry(a *artifact.Artifact) (*airframe.Geometry, error) {
 		}
 		g.Standoffs = append(g.Standoffs, s)
 	}
-	return g, nil
+	var err error
+	g.Contacts, err = getContacts(a, len(g.Plates))
+	return g, err
 }

@@ -8,7 +8,7 @@ import (
 
 // MeshKind is a whole airframe in elements.
 var MeshKind = artifact.Kind{
-	Name: "mesh", Version: 1,
+	Name: "mesh", Version: 2,
 	About: "nodes, triangles of the plates, beams of the standoffs, and the node sets of patches",
 	Tables: []artifact.TableSpec{
 		{Name: "nodes", About: "nodes in airframe axes", Columns: vecCols("at", "m", "place")},
@@ -38,6 +38,7 @@ var MeshKind = artifact.Kind{
 			col("patches", artifact.IntList, "", "patches from bottom to top"), col("nodes", artifact.IntList, "", "beam end nodes of a standoff"),
 			vecCols("point", "m", "middle"), vecCols("axis", "1", "axis"),
 		)},
+		meshContactTables[0], meshContactTables[1],
 	},
 }
 
@@ -84,6 +85,7 @@ func EncodeMesh(m *mesh.Mesh) *artifact.Artifact {
 	t.Set("nodes", each(n, func(i int) []int64 { return ints(m.Links[i].Nodes) }))
 	setVecs(t, "point", n, func(i int) airframe.Vec { return m.Links[i].Point })
 	setVecs(t, "axis", n, func(i int) airframe.Vec { return m.Links[i].Axis })
+	setMeshContacts(a, m.Contacts)
 	return a
 }
 
@@ -152,6 +154,9 @@ func DecodeMesh(a *artifact.Artifact) (*mesh.Mesh, error) {
 			Point: getVec(t, "point", i), Axis: getVec(t, "axis", i)})
 	}
 	if err != nil {
+		return nil, err
+	}
+	if err := getMeshContacts(a, m); err != nil {
 		return nil, err
 	}
 	return m, nil

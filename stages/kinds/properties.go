@@ -36,7 +36,7 @@ var PropertiesKind = artifact.Kind{
 	Tables: []artifact.TableSpec{
 		{Name: "materials", About: "homogeneous orthotropic materials, axis 1 along the fibre direction", Columns: columns(
 			col("name", artifact.Text, "", "name"),
-			col("e1", artifact.Float, "Pa", "modulus along 1"), col("e2", artifact.Float, "Pa", "modulus along 2"),
+			col("e1", artifact.Float, "Pa", "modulus along 1"), col("e2", artifact.Float, "Pa", "modulus along 2"), col("e3", artifact.Float, "Pa", "modulus through the thickness, 0 unknown"),
 			col("nu12", artifact.Float, "1", "Poisson's ratio"),
 			col("g12", artifact.Float, "Pa", "in-plane shear modulus"), col("g13", artifact.Float, "Pa", "transverse shear modulus"), col("g23", artifact.Float, "Pa", "transverse shear modulus"),
 			col("density", artifact.Float, "kg/m^3", "density"), col("loss_factor", artifact.Float, "1", "hysteretic loss factor"),
@@ -55,11 +55,19 @@ var PropertiesKind = artifact.Kind{
 		)},
 		{Name: "bolts", About: "mass and joint of each bolt, in the order of the geometry", Columns: columns(
 			col("bolt", artifact.Text, "", "name"), col("mass", artifact.Float, "kg", "screw, washer and nut"), col("joint", artifact.Text, "", "joint, empty for rigid"),
+			col("pairs", artifact.FloatList, "N/m and N·m/rad", "own stiffness between each pair of plates from bottom to top, six components each; empty where it is that of the joint"),
 		)},
-		{Name: "joints", About: "six-component elastic connections in the frame of their bolt; infinite is rigid", Columns: columns(
-			col("name", artifact.Text, "", "name"), stiffnessCols("stiffness"),
+		{Name: "contacts", About: "what ties each contact, in the order of the geometry", Columns: columns(
+			col("contact", artifact.Text, "", "name"), col("joint", artifact.Text, "", "joint per area or length"),
+			col("stiffness", artifact.FloatList, "N/m and N·m/rad, per m^2 or m", "own stiffness, six components; empty where it is that of the joint"),
+		)},
+		{Name: "joints", About: "joint groups: six-component elastic connections in the frame of their bolt or contact; infinite is rigid", Columns: columns(
+			col("name", artifact.Text, "", "name"), col("per", artifact.Text, "", "what the stiffness counts for: empty for one connection, area (m^2) or length (m) of a contact"),
+			stiffnessCols("nominal stiffness"),
 			col("loss_factor", artifact.Float, "1", "hysteretic loss factor"),
 			col("low", artifact.Float, "1", "lowest likely factor on the stiffness, 0 unknown"), col("high", artifact.Float, "1", "highest likely factor, 0 unknown"),
+			col("preload", artifact.Float, "N", "of each bolt, 0 unknown; nothing is computed from it"),
+			col("origin", artifact.Text, "", "where the values come from"),
 		)},
 		{Name: "bodies", About: "rigid bodies", Columns: columns(
 			col("name", artifact.Text, "", "name"), col("kind", artifact.Text, "", "rotor, lump or gyro"),
@@ -90,6 +98,7 @@ var PropertiesKind = artifact.Kind{
 			col("blades", artifact.Int, "", "number of blades"), col("spin", artifact.Int, "", "1 counterclockwise about the axis, -1 clockwise"),
 			col("hover_speed", artifact.Float, "rad/s", "speed at hover"), col("max_speed", artifact.Float, "rad/s", "highest service speed"),
 			col("spinning_mass", artifact.Float, "kg", "bell and propeller"), col("polar_inertia", artifact.Float, "kg·m^2", "spinning part about the axis"),
+			col("bell_inertia", artifact.Float, "kg·m^2", "share of the motor's bell in it, 0 unknown"), col("propeller_inertia", artifact.Float, "kg·m^2", "share of the propeller in it, 0 unknown"),
 			col("grade", artifact.Float, "m/s", "balance quality grade e·Ω at the highest service speed"),
 		)},
 	},
@@ -139,6 +148,24 @@ func EncodeProperties(p *airframe.Properties) *artifact.Artifact {
 	t.Set("bolt", each(n, func(i int) string { return p.Bolts[i].Bolt }))
 	t.Set("mass", each(n, func(i int) float64 { return p.Bolts[i].Mass }))
 	t.Set("joint", each(n, func(i int) string { return p.Bolts[i].Joint }))
+	t.Set("pairs", each(n, func(i int) []float64 {
+		list := []float64{}
+		for _, k := range p.Bolts[i].Pairs {
+			list = append(list, k[:]...)
+		}
+		return list
+	}))
+
+	n = len(p.Contacts)
+	t = a.Table("contacts")
+	t.Set("contact", each(n, func(i int) string { return p.Contacts[i].Contact }))
+	t.Set("joint", each(n, func(i int) string { return p.Contacts[i].Joint }))
+	t.Set("stiffness", each(n, func(i int) []float64 {
+		if k := p.Contacts[i].Stiffness; k != nil {
+			return append([]float64{}, k[:]...)
+		}
+		return []float64{}
+	}))
 
 	n = len(p.Joints)
 	t = a.Table("joints")
@@ -147,6 +174,9 @@ func EncodeProperties(p *airframe.Properties) *artifact.Artifact {
 	t.Set("loss_factor", each(n, func(i int) float64 { return p.Joints[i].LossFactor }))
 	t.Set("low", each(n, func(i int) float64 { return p.Joints[i].Low }))
 	t.Set("high", each(n, func(i int) float64 { return p.Joints[i].High }))
+	t.Set("per", each(n, func(i int) string { return string(p.Joints[i].Measure) }))
+	t.Set("preload", each(n, func(i int) float64 { return p.Joints[i].Preload }))
+	t.Set("origin", each(n, func(i int) string { return p.Joints[i].Origin }))
 
 	n = len(p.Bodies)
 	t = a.Table("bodies")
@@ -212,6 +242,7 @@ func EncodeProperties(p *airframe.Properties) *artifact.Artifact {
 // consequence.
 var materialFields = map[string]func(m *airframe.Material) *float64{
 	"e1": func(m *airframe.Material) *float64 { return &m.E1 }, "e2": func(m *airframe.Material) *float64 { return &m.E2 },
+	"e3":   func(m *airframe.Material) *float64 { return &m.E3 },
 	"nu12": func(m *airframe.Material) *float64 { return &m.Nu12 }, "g12": func(m *airframe.Material) *float64 { return &m.G12 },
 	"g13": func(m *airframe.Material) *float64 { return &m.G13 }, "g23": func(m *airframe.Material) *float64 { return &m.G23 },
 	"density": func(m *airframe.Material) *float64 { return &m.Density }, "loss_factor": func(m *airframe.Material) *float64 { return &m.LossFactor },
@@ -221,6 +252,7 @@ var materialFields = map[string]func(m *airframe.Material) *float64{
 var rotorFields = map[string]func(r *airframe.Rotor) *float64{
 	"hover_speed": func(r *airframe.Rotor) *float64 { return &r.HoverSpeed }, "max_speed": func(r *airframe.Rotor) *float64 { return &r.MaxSpeed },
 	"spinning_mass": func(r *airframe.Rotor) *float64 { return &r.SpinningMass }, "polar_inertia": func(r *airframe.Rotor) *float64 { return &r.PolarInertia },
+	"bell_inertia": func(r *airframe.Rotor) *float64 { return &r.BellInertia }, "propeller_inertia": func(r *airframe.Rotor) *float64 { return &r.PropellerInertia },
 	"grade": func(r *airframe.Rotor) *float64 { return &r.Grade },
 }
 
@@ -267,12 +299,32 @@ func DecodeProperties(a *artifact.Artifact) (*airframe.Properties, error) {
 	}
 	t = a.Table("bolts")
 	for i := range t.Rows() {
-		p.Bolts = append(p.Bolts, airframe.BoltProperties{Bolt: t.Texts("bolt")[i], Mass: t.Floats("mass")[i], Joint: t.Texts("joint")[i]})
+		b := airframe.BoltProperties{Bolt: t.Texts("bolt")[i], Mass: t.Floats("mass")[i], Joint: t.Texts("joint")[i]}
+		pairs := t.FloatLists("pairs")[i]
+		if len(pairs)%6 != 0 {
+			return nil, malformed("properties", "the pairs of bolt %q have %d numbers", b.Bolt, len(pairs))
+		}
+		for ; len(pairs) > 0; pairs = pairs[6:] {
+			b.Pairs = append(b.Pairs, [6]float64(pairs))
+		}
+		p.Bolts = append(p.Bolts, b)
+	}
+	t = a.Table("contacts")
+	for i := range t.Rows() {
+		c := airframe.ContactProperties{Contact: t.Texts("contact")[i], Joint: t.Texts("joint")[i]}
+		switch k := t.FloatLists("stiffness")[i]; len(k) {
+		case 0:
+		case 6:
+			c.Stiffness = (*[6]float64)(k)
+		default:
+			return nil, malformed("properties", "the stiffness of contact %q has %d numbers", c.Contact, len(k))
+		}
+		p.Contacts = append(p.Contacts, c)
 	}
 	t = a.Table("joints")
 	for i := range t.Rows() {
 		p.Joints = append(p.Joints, airframe.Joint{Name: t.Texts("name")[i], Stiffness: getStiffness(t, i), LossFactor: t.Floats("loss_factor")[i],
-			Low: t.Floats("low")[i], High: t.Floats("high")[i]})
+			Low: t.Floats("low")[i], High: t.Floats("high")[i], Measure: airframe.Measure(t.Texts("per")[i]), Preload: t.Floats("preload")[i], Origin: t.Texts("origin")[i]})
 	}
 	mounts := map[string]*airframe.Mount{}
 	t = a.Table("mounts")

@@ -1,8 +1,6 @@
 package kinds
 
 import (
-	"fmt"
-	"math"
 	"slices"
 
 	"hushframe/core/pipeline/artifact"
@@ -11,7 +9,7 @@ import (
 // ResponseKind is what `sweep` makes of a modal basis and assumed sources.
 // Elastic modes are numbered from 1 in ascending frequency.
 var ResponseKind = artifact.Kind{
-	Name: "response", Version: 4,
+	Name: "response", Version: 5,
 	About: "gyro rate that forces and moments at the rotors make: transfer functions, spectra, peaks and the modes that make them, lines at hover, operating shapes",
 	Scalars: []artifact.Column{
 		col("from", artifact.Float, "Hz", "lower end of the sweep"),
@@ -23,13 +21,18 @@ var ResponseKind = artifact.Kind{
 		col("thrust", artifact.Float, "N", "thrust of one rotor at hover, weight over the number of rotors; NaN if the mass is not known"),
 		col("blade_share", artifact.Float, "1", "assumed amplitude of the thrust at blade passing, as a share of the thrust"),
 		col("spinning", artifact.Truth, "", "gyroscopic moments of the rotors are in the response"),
+		col("first_mode", artifact.Float, "Hz", "natural frequency of the lowest elastic mode; below it the frame follows its loads as it would at rest"),
+		col("laws_at", artifact.Float, "Hz", "frequency at which stiffness that depends on frequency is taken in the tables whirl, critical and separations and in the shares and damping of peaks; NaN if none does. The spectra take it at each frequency"),
+		col("gyro_noise", artifact.Float, "(rad/s)^2/Hz", "assumed one-sided density of the gyro's own noise on each axis, in the columns flown_ of the spectrum"),
 	},
-	Tables: []artifact.TableSpec{
+	Tables: slices.Concat([]artifact.TableSpec{
 		{Name: "spectrum", About: "gyro rate under the broadband source, all rotors added as power", Columns: columns(
 			col("frequency", artifact.Float, "Hz", "ascending, not evenly spaced"),
 			axisCols("", "(rad/s)^2/Hz", "one-sided power spectral density"),
 			axisCols("uncorrected_", "(rad/s)^2/Hz", "the same without residual vectors; NaN if the basis has none or they are off"),
-			axisCols("flown_", "(rad/s)^2/Hz", "the broadband density with the rotors' lines spread over the speeds of a flight; NaN if rotors have no speed"),
+			axisCols("flown_", "(rad/s)^2/Hz", "what a recorder sees of a flight: the broadband density at the speeds of the table flight, weighted by their shares, the rotors' lines spread over them, and the noise of the gyro; NaN if rotors have no speed"),
+			axisCols("rigid_", "(rad/s)^2/Hz", "the broadband density of the frame taken as rigid"),
+			axisCols("static_", "(rad/s)^2/Hz", "the same with every elastic mode following its load as if at rest: rigid-body motion and the give of plates and mounts under the gyro, without resonance"),
 		)},
 		{Name: "sources", About: "the part of each rotor in the spectrum", Columns: columns(
 			col("rotor", artifact.Text, "", "name"),
@@ -48,6 +51,8 @@ var ResponseKind = artifact.Kind{
 			col("rms", artifact.Float, "rad/s", "root mean square within the sweep"),
 			col("correction", artifact.Float, "dB", "largest change that residual vectors make to the density, signed; NaN if not computed"),
 			col("correction_at", artifact.Float, "Hz", "where that is"),
+			col("give_force", artifact.Float, "rad/N", "rotation of the gyro by which the frame gives at rest under a unit force, root sum of squares over all components at all hubs, rigid-body motion not counted"),
+			col("give_moment", artifact.Float, "rad/(N*m)", "the same under a unit moment"),
 		)},
 		{Name: "peaks", About: "peaks of the spectrum, by axis and frequency", Columns: columns(
 			col("axis", artifact.Text, "", "roll, pitch or yaw"),
@@ -63,6 +68,8 @@ var ResponseKind = artifact.Kind{
 			col("rotor", artifact.Text, "", "rotor of the strongest component"),
 			col("component", artifact.Int, "", "strongest component, 0 to 5"),
 			col("component_share", artifact.Float, "1", "its part of the density"),
+			col("mode_shares", artifact.FloatList, "1", "what every elastic mode of the table modes adds, in its order; with spinning rotors the natural motions followed from them, 0 where one could not be followed; may be empty"),
+			col("rotor_shares", artifact.FloatList, "1", "what every rotor of the table rotors makes alone, in its order; adds up to 1 unless rotors are correlated; may be empty"),
 			col("losses", artifact.TextList, "", "loss groups that take the power put in by it, the greatest first"),
 			col("loss_shares", artifact.FloatList, "1", "the part each takes"),
 		)},
@@ -136,7 +143,7 @@ var ResponseKind = artifact.Kind{
 			col("real", artifact.FloatList, "m", "ux, uy, uz of each node in turn"),
 			col("imaginary", artifact.FloatList, "m", "the same"),
 		)},
-	},
+	}, overTables(), motionTables(), checkTables()),
 }
 
 // AxisNames are the axes of the gyro in order of their index.
@@ -174,6 +181,22 @@ type Response struct {
 	MapSpeeds []float64
 	Orders    []ResponseOrder
 	Flown     [3][]float64 // nil when rotors have no speed
+
+	FirstMode, GyroNoise, LawsAt float64
+	// Rigid and Static are the spectrum of the frame taken as rigid, and as rigid but for its static give.
+	Rigid, Static [3][]float64
+
+	Map    ResponseMap
+	Flight []ResponseFlight
+
+	Motions      []ResponseMotion
+	Points       []ResponsePoint
+	PointSpectra []ResponsePointSpectrum
+	PointLines   []ResponsePointLine
+
+	Direct       []ResponseDirect
+	DirectErrors []ResponseDirectError
+	Practice     []ResponsePractice
 }
 
 // ResponseSeparation is a pair of neighbours.
@@ -224,6 +247,7 @@ type ResponseTransfer struct {
 type ResponseAxis struct {
 	Axis                          string
 	RMS, Correction, CorrectionAt float64
+	GiveForce, GiveMoment         float64
 }
 
 // ResponsePeak is one peak of one axis.
@@ -239,6 +263,7 @@ type ResponsePeak struct {
 	ComponentShare                 float64
 	Losses                         []string
 	LossShares                     []float64
+	ModeShares, RotorShares        []float64
 }
 
 // ResponseMode is one elastic mode of the basis.
@@ -270,258 +295,4 @@ type ResponseShape struct {
 	Axis, Rotor     string
 	Component       int
 	Real, Imaginary []float64
-}
-
-// axisCols are three columns named after the axes.
-func axisCols(prefix, unit, about string) []artifact.Column {
-	var out []artifact.Column
-	for _, name := range AxisNames {
-		out = append(out, col(prefix+name, artifact.Float, unit, about))
-	}
-	return out
-}
-
-// EncodeResponse makes the artifact.
-func EncodeResponse(r *Response) *artifact.Artifact {
-	a := artifact.New(ResponseKind)
-	a.Scalars = map[string]any{
-		"from": r.From, "to": r.To, "modes_to": r.ModesTo, "force_density": r.Force, "moment_density": r.Moment,
-		"residual": r.Residual, "thrust": r.Thrust, "blade_share": r.BladeShare, "spinning": r.Spinning,
-	}
-	t := a.Table("spectrum").Set("frequency", r.Frequency)
-	for axis, name := range AxisNames {
-		flown := r.Flown[axis]
-		if flown == nil {
-			flown = slices.Repeat([]float64{math.NaN()}, len(r.Frequency))
-		}
-		t.Set(name, r.Density[axis]).Set("uncorrected_"+name, r.Uncorrected[axis]).Set("flown_"+name, flown)
-	}
-	a.Table("sources").
-		Set("rotor", list(r.Sources, func(x ResponseSource) string { return x.Rotor })).
-		Set("axis", list(r.Sources, func(x ResponseSource) string { return x.Axis })).
-		Set("density", list(r.Sources, func(x ResponseSource) []float64 { return x.Density }))
-	a.Table("transfer").
-		Set("rotor", list(r.Transfer, func(x ResponseTransfer) string { return x.Rotor })).
-		Set("component", list(r.Transfer, func(x ResponseTransfer) int64 { return int64(x.Component) })).
-		Set("axis", list(r.Transfer, func(x ResponseTransfer) string { return x.Axis })).
-		Set("real", list(r.Transfer, func(x ResponseTransfer) []float64 { return x.Real })).
-		Set("imaginary", list(r.Transfer, func(x ResponseTransfer) []float64 { return x.Imaginary }))
-	a.Table("axes").
-		Set("axis", list(r.Axes, func(x ResponseAxis) string { return x.Axis })).
-		Set("rms", list(r.Axes, func(x ResponseAxis) float64 { return x.RMS })).
-		Set("correction", list(r.Axes, func(x ResponseAxis) float64 { return x.Correction })).
-		Set("correction_at", list(r.Axes, func(x ResponseAxis) float64 { return x.CorrectionAt }))
-	setResponsePeaks(a.Table("peaks"), r.Peaks)
-	a.Table("modes").
-		Set("number", list(r.Modes, func(x ResponseMode) int64 { return int64(x.Number) })).
-		Set("frequency", list(r.Modes, func(x ResponseMode) float64 { return x.Frequency })).
-		Set("damping", list(r.Modes, func(x ResponseMode) float64 { return x.Damping }))
-	a.Table("rotors").
-		Set("rotor", list(r.Rotors, func(x ResponseRotor) string { return x.Rotor })).
-		Set("blades", list(r.Rotors, func(x ResponseRotor) int64 { return int64(x.Blades) })).
-		Set("hover", list(r.Rotors, func(x ResponseRotor) float64 { return x.Hover })).
-		Set("highest", list(r.Rotors, func(x ResponseRotor) float64 { return x.Highest })).
-		Set("speed", list(r.Rotors, func(x ResponseRotor) float64 { return x.Speed })).
-		Set("polar", list(r.Rotors, func(x ResponseRotor) float64 { return x.Polar })).
-		Set("tilt", list(r.Rotors, func(x ResponseRotor) float64 { return x.Tilt })).
-		Set("equal", list(r.Rotors, func(x ResponseRotor) float64 { return x.Equal }))
-	a.Table("speeds").Set("speed", append([]float64{}, r.Speeds...))
-	t = a.Table("separations").
-		Set("lower", list(r.Separations, func(x ResponseSeparation) int64 { return int64(x.Lower) })).
-		Set("upper", list(r.Separations, func(x ResponseSeparation) int64 { return int64(x.Upper) })).
-		Set("at", list(r.Separations, func(x ResponseSeparation) float64 { return x.At })).
-		Set("gap", list(r.Separations, func(x ResponseSeparation) float64 { return x.Gap })).
-		Set("bandwidths", list(r.Separations, func(x ResponseSeparation) float64 { return x.Bandwidths }))
-	for axis, name := range AxisNames {
-		t.Set("lower_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.LowerAlone[axis] })).
-			Set("upper_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.UpperAlone[axis] })).
-			Set("amplification_"+name, list(r.Separations, func(x ResponseSeparation) float64 { return x.Amplification[axis] }))
-	}
-	a.Table("map_speeds").Set("speed", append([]float64{}, r.MapSpeeds...))
-	t = a.Table("map").
-		Set("source", list(r.Orders, func(x ResponseOrder) string { return x.Source })).
-		Set("order", list(r.Orders, func(x ResponseOrder) float64 { return x.Order })).
-		Set("rotors", list(r.Orders, func(x ResponseOrder) []string { return x.Rotors }))
-	for axis, name := range AxisNames {
-		t.Set(name, list(r.Orders, func(x ResponseOrder) []float64 { return x.Rate[axis] }))
-	}
-	a.Table("whirl").
-		Set("mode", list(r.Whirl, func(x ResponseWhirl) int64 { return int64(x.Mode) })).
-		Set("frequency", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Frequency })).
-		Set("damping", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Damping })).
-		Set("direction", list(r.Whirl, func(x ResponseWhirl) []float64 { return x.Direction }))
-	a.Table("critical").
-		Set("order", list(r.Critical, func(x ResponseCritical) int64 { return int64(x.Order) })).
-		Set("rotors", list(r.Critical, func(x ResponseCritical) []string { return x.Rotors })).
-		Set("speed", list(r.Critical, func(x ResponseCritical) float64 { return x.Speed })).
-		Set("frequency", list(r.Critical, func(x ResponseCritical) float64 { return x.Frequency })).
-		Set("damping", list(r.Critical, func(x ResponseCritical) float64 { return x.Damping })).
-		Set("direction", list(r.Critical, func(x ResponseCritical) float64 { return x.Direction })).
-		Set("mode", list(r.Critical, func(x ResponseCritical) int64 { return int64(x.Mode) }))
-	t = a.Table("lines").
-		Set("source", list(r.Lines, func(x ResponseLine) string { return x.Source })).
-		Set("rotor", list(r.Lines, func(x ResponseLine) string { return x.Rotor })).
-		Set("order", list(r.Lines, func(x ResponseLine) float64 { return x.Order })).
-		Set("frequency", list(r.Lines, func(x ResponseLine) float64 { return x.Frequency })).
-		Set("force", list(r.Lines, func(x ResponseLine) float64 { return x.Force }))
-	for axis, name := range AxisNames {
-		t.Set(name, list(r.Lines, func(x ResponseLine) float64 { return x.Rate[axis] }))
-	}
-	a.Table("shapes").
-		Set("frequency", list(r.Shapes, func(x ResponseShape) float64 { return x.Frequency })).
-		Set("axis", list(r.Shapes, func(x ResponseShape) string { return x.Axis })).
-		Set("rotor", list(r.Shapes, func(x ResponseShape) string { return x.Rotor })).
-		Set("component", list(r.Shapes, func(x ResponseShape) int64 { return int64(x.Component) })).
-		Set("real", list(r.Shapes, func(x ResponseShape) []float64 { return x.Real })).
-		Set("imaginary", list(r.Shapes, func(x ResponseShape) []float64 { return x.Imaginary }))
-	return a
-}
-
-func setResponsePeaks(t *artifact.Table, peaks []ResponsePeak) {
-	t.Set("axis", list(peaks, func(x ResponsePeak) string { return x.Axis })).
-		Set("frequency", list(peaks, func(x ResponsePeak) float64 { return x.Frequency })).
-		Set("density", list(peaks, func(x ResponsePeak) float64 { return x.Density })).
-		Set("prominence", list(peaks, func(x ResponsePeak) float64 { return x.Prominence })).
-		Set("damping", list(peaks, func(x ResponsePeak) float64 { return x.Damping })).
-		Set("modes", list(peaks, func(x ResponsePeak) []int64 { return ints(x.Modes) })).
-		Set("shares", list(peaks, func(x ResponsePeak) []float64 { return x.Shares })).
-		Set("rigid", list(peaks, func(x ResponsePeak) float64 { return x.Rigid })).
-		Set("residual", list(peaks, func(x ResponsePeak) float64 { return x.Residual })).
-		Set("uncorrected", list(peaks, func(x ResponsePeak) float64 { return x.Uncorrected })).
-		Set("rotor", list(peaks, func(x ResponsePeak) string { return x.Rotor })).
-		Set("component", list(peaks, func(x ResponsePeak) int64 { return int64(x.Component) })).
-		Set("component_share", list(peaks, func(x ResponsePeak) float64 { return x.ComponentShare })).
-		Set("losses", list(peaks, func(x ResponsePeak) []string { return x.Losses })).
-		Set("loss_shares", list(peaks, func(x ResponsePeak) []float64 { return x.LossShares }))
-}
-
-// DecodeResponse reads the artifact; the fault names what contradicts.
-func DecodeResponse(a *artifact.Artifact) (*Response, error) {
-	if a.Kind.Name != ResponseKind.Name {
-		return nil, fmt.Errorf("this is a %s artifact, not %s", a.Kind.Name, ResponseKind.Name)
-	}
-	r := &Response{
-		From: a.Float("from"), To: a.Float("to"), ModesTo: a.Float("modes_to"), Force: a.Float("force_density"),
-		Moment: a.Float("moment_density"), Residual: a.Truth("residual"), Thrust: a.Float("thrust"), BladeShare: a.Float("blade_share"),
-		Spinning: a.Truth("spinning"), Speeds: a.Table("speeds").Floats("speed"),
-	}
-	t := a.Table("spectrum")
-	r.Frequency = t.Floats("frequency")
-	for axis, name := range AxisNames {
-		r.Density[axis], r.Uncorrected[axis] = t.Floats(name), t.Floats("uncorrected_"+name)
-		if flown := t.Floats("flown_" + name); len(flown) > 0 && !math.IsNaN(flown[0]) {
-			r.Flown[axis] = flown
-		}
-	}
-	for k := 1; k < len(r.Frequency); k++ {
-		if !(r.Frequency[k] > r.Frequency[k-1]) {
-			return nil, malformed("response", "the frequencies of the spectrum do not ascend at row %d", k)
-		}
-	}
-	n := len(r.Frequency)
-	t = a.Table("sources")
-	for i := range t.Rows() {
-		x := ResponseSource{t.Texts("rotor")[i], t.Texts("axis")[i], t.FloatLists("density")[i]}
-		if len(x.Density) != n {
-			return nil, malformed("response", "the source of rotor %s has %d values over %d frequencies", x.Rotor, len(x.Density), n)
-		}
-		r.Sources = append(r.Sources, x)
-	}
-	t = a.Table("transfer")
-	for i := range t.Rows() {
-		x := ResponseTransfer{t.Texts("rotor")[i], int(t.Ints("component")[i]), t.Texts("axis")[i], t.FloatLists("real")[i], t.FloatLists("imaginary")[i]}
-		if len(x.Real) != n || len(x.Imaginary) != n {
-			return nil, malformed("response", "a transfer function of rotor %s has %d and %d values over %d frequencies", x.Rotor, len(x.Real), len(x.Imaginary), n)
-		}
-		if x.Component < 0 || x.Component > 5 {
-			return nil, malformed("response", "a transfer function of rotor %s is of component %d", x.Rotor, x.Component)
-		}
-		r.Transfer = append(r.Transfer, x)
-	}
-	t = a.Table("axes")
-	for i := range t.Rows() {
-		r.Axes = append(r.Axes, ResponseAxis{t.Texts("axis")[i], t.Floats("rms")[i], t.Floats("correction")[i], t.Floats("correction_at")[i]})
-	}
-	var err error
-	if r.Peaks, err = responsePeaks(a.Table("peaks")); err != nil {
-		return nil, err
-	}
-	t = a.Table("modes")
-	for i := range t.Rows() {
-		r.Modes = append(r.Modes, ResponseMode{int(t.Ints("number")[i]), t.Floats("frequency")[i], t.Floats("damping")[i]})
-	}
-	t = a.Table("rotors")
-	for i := range t.Rows() {
-		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i],
-			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i]})
-	}
-	t = a.Table("separations")
-	for i := range t.Rows() {
-		x := ResponseSeparation{Lower: int(t.Ints("lower")[i]), Upper: int(t.Ints("upper")[i]), At: t.Floats("at")[i], Gap: t.Floats("gap")[i], Bandwidths: t.Floats("bandwidths")[i]}
-		for axis, name := range AxisNames {
-			x.LowerAlone[axis], x.UpperAlone[axis], x.Amplification[axis] = t.Floats("lower_" + name)[i], t.Floats("upper_" + name)[i], t.Floats("amplification_" + name)[i]
-		}
-		r.Separations = append(r.Separations, x)
-	}
-	r.MapSpeeds = a.Table("map_speeds").Floats("speed")
-	t = a.Table("map")
-	for i := range t.Rows() {
-		x := ResponseOrder{Source: t.Texts("source")[i], Order: t.Floats("order")[i], Rotors: t.TextLists("rotors")[i]}
-		for axis, name := range AxisNames {
-			x.Rate[axis] = t.FloatLists(name)[i]
-			if len(x.Rate[axis]) != len(r.MapSpeeds) {
-				return nil, malformed("response", "%s of order %g has %d values over %d speeds", x.Source, x.Order, len(x.Rate[axis]), len(r.MapSpeeds))
-			}
-		}
-		r.Orders = append(r.Orders, x)
-	}
-	t = a.Table("whirl")
-	for i := range t.Rows() {
-		x := ResponseWhirl{int(t.Ints("mode")[i]), t.FloatLists("frequency")[i], t.FloatLists("damping")[i], t.FloatLists("direction")[i]}
-		if n := len(r.Speeds); len(x.Frequency) != n || len(x.Damping) != n || len(x.Direction) != n {
-			return nil, malformed("response", "the whirl of mode %d has %d frequencies over %d speeds", x.Mode, len(x.Frequency), n)
-		}
-		r.Whirl = append(r.Whirl, x)
-	}
-	t = a.Table("critical")
-	for i := range t.Rows() {
-		r.Critical = append(r.Critical, ResponseCritical{int(t.Ints("order")[i]), t.TextLists("rotors")[i], t.Floats("speed")[i],
-			t.Floats("frequency")[i], t.Floats("damping")[i], t.Floats("direction")[i], int(t.Ints("mode")[i])})
-	}
-	t = a.Table("lines")
-	for i := range t.Rows() {
-		x := ResponseLine{Source: t.Texts("source")[i], Rotor: t.Texts("rotor")[i], Order: t.Floats("order")[i],
-			Frequency: t.Floats("frequency")[i], Force: t.Floats("force")[i]}
-		for axis, name := range AxisNames {
-			x.Rate[axis] = t.Floats(name)[i]
-		}
-		r.Lines = append(r.Lines, x)
-	}
-	t = a.Table("shapes")
-	for i := range t.Rows() {
-		x := ResponseShape{t.Floats("frequency")[i], t.Texts("axis")[i], t.Texts("rotor")[i], int(t.Ints("component")[i]), t.FloatLists("real")[i], t.FloatLists("imaginary")[i]}
-		if len(x.Real) != len(x.Imaginary) || len(x.Real)%3 != 0 {
-			return nil, malformed("response", "the shape at %g Hz has %d real and %d imaginary values", x.Frequency, len(x.Real), len(x.Imaginary))
-		}
-		r.Shapes = append(r.Shapes, x)
-	}
-	return r, nil
-}
-
-func responsePeaks(t *artifact.Table) ([]ResponsePeak, error) {
-	var out []ResponsePeak
-	for i := range t.Rows() {
-		x := ResponsePeak{
-			Axis: t.Texts("axis")[i], Frequency: t.Floats("frequency")[i], Density: t.Floats("density")[i], Prominence: t.Floats("prominence")[i],
-			Damping: t.Floats("damping")[i], Modes: narrow(t.IntLists("modes")[i]), Shares: t.FloatLists("shares")[i],
-			Rigid: t.Floats("rigid")[i], Residual: t.Floats("residual")[i], Uncorrected: t.Floats("uncorrected")[i],
-			Rotor: t.Texts("rotor")[i], Component: int(t.Ints("component")[i]), ComponentShare: t.Floats("component_share")[i],
-			Losses: t.TextLists("losses")[i], LossShares: t.FloatLists("loss_shares")[i],
-		}
-		if len(x.Modes) != len(x.Shares) || len(x.Losses) != len(x.LossShares) || x.Component < 0 || x.Component > 5 {
-			return nil, malformed("response", "the peak at %g Hz contradicts itself", x.Frequency)
-		}
-		out = append(out, x)
-	}
-	return out, nil
 }

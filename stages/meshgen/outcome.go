@@ -49,8 +49,29 @@ func outcome(m *mesh.Mesh, types map[string]elementType) *stage.Outcome {
 			"narrow_triangles": float64(all.Narrow),
 			"shortest_side":    stage.Quantity{SI: all.ShortestSide, Dimension: "length"},
 		},
-		Summary: []stage.Section{s},
+		Summary: sections(s, m),
 	}
+}
+
+// sections are the parts and, where there are contacts, what these tie.
+func sections(parts stage.Section, m *mesh.Mesh) []stage.Section {
+	if len(m.Contacts) == 0 {
+		return []stage.Section{parts}
+	}
+	s := stage.Section{Title: "Contacts", Text: "area of pressed faces without what bolts clamp, length of seams and keys",
+		Columns: []stage.Column{{Name: "contact"}, {Name: "points", Right: true}, {Name: "mm² or mm", Right: true}}}
+	for _, c := range m.Contacts {
+		sum := 0.0
+		for _, p := range c.Points {
+			sum += p.Measure
+		}
+		by := 1e3 // of a length
+		if c.Area {
+			by = 1e6
+		}
+		s.Rows = append(s.Rows, []string{c.Name, fmt.Sprint(len(c.Points)), fmt.Sprintf("%.4g", by*sum)})
+	}
+	return []stage.Section{parts, s}
 }
 
 func row(name, element string, q mesh.Quality, beams int) []string {

@@ -106,6 +106,9 @@ func explain(err error, arguments stage.Arguments) error {
 	_, sized := arguments.Map("sizes")[p.Part]
 	_, typed := arguments.Map("elements")[p.Part]
 	switch {
+	case p.Contact != "":
+		return fault.New(fault.Input, "%s", p.Text).In("mesh contact", p.Contact).
+			Do("see whether its plates lie on each other there: at is the LOWER face of a plate; ends of a line are airframe x, y, z")
 	case p.Part == "":
 		return fault.New(fault.Input, "%s", p.Text).In("mesh", "").Of("size")
 	case p.Patch != "":

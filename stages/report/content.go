@@ -23,6 +23,8 @@ type content struct {
 	spectra    *kinds.Spectra
 	comparison *kinds.Comparison
 	verified   *kinds.Verification
+	identified *kinds.Identified
+	difference *kinds.Difference
 	run        *account.Account
 	sources    []kinds.DocumentSource
 
@@ -77,6 +79,10 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
 	case "verification":
 		err = once(in, &c.verified, a, kinds.DecodeVerification)
+	case "identified":
+		err = once(in, &c.identified, a, kinds.DecodeIdentified)
+	case "difference":
+		err = once(in, &c.difference, a, kinds.DecodeDifference)
 	case account.KindName:
 		c.run = account.Decode(a)
 	default:

@@ -56,10 +56,10 @@ func materialTable(p *airframe.Properties) *table {
 
 // jointTable lists joints and mounts, the softest and least certain parts.
 func jointTable(p *airframe.Properties) *table {
-	t := &table{Name: "joints", Title: "Joints and mounts", About: "Forces in N/mm, moments in N·m/rad, in the frame of the bolt or, for mounts, along the airframe's axes per point.",
+	t := &table{Name: "joints", Title: "Joints and mounts", About: "Forces in N/mm, moments in N·m/rad, in the frame of the bolt or contact or, for mounts, along the airframe's axes per point; contacts per mm² or mm. The range is that of a common factor on the group.",
 		Columns: []column{{"name", "", false}, {"what", "", false}, {"points", "", true}, {"x", "N/mm", true}, {"y", "N/mm", true}, {"z", "N/mm", true},
-			{"about x", "N·m/rad", true}, {"about y", "N·m/rad", true}, {"about z", "N·m/rad", true}, {"loss factor", "", true}}}
-	add := func(name, what string, points int, k [6]float64, loss string) {
+			{"about x", "N·m/rad", true}, {"about y", "N·m/rad", true}, {"about z", "N·m/rad", true}, {"loss factor", "", true}, {"range", "", true}, {"from", "", false}}}
+	add := func(name, what string, points int, k [6]float64, loss, within, origin string) {
 		row := []cell{words(name), words(what), count(points)}
 		for i, x := range k {
 			switch {
@@ -73,21 +73,44 @@ func jointTable(p *airframe.Properties) *table {
 				row = append(row, digits(x, 3))
 			}
 		}
-		t.Rows = append(t.Rows, append(row, words(loss)))
+		t.Rows = append(t.Rows, append(row, words(loss), words(within), words(origin)))
 	}
-	bolts := map[string]int{}
+	held := map[string]int{}
 	for _, b := range p.Bolts {
-		bolts[b.Joint]++
+		held[b.Joint]++
+	}
+	for _, c := range p.Contacts {
+		held[c.Joint]++
 	}
 	for _, j := range p.Joints {
-		add(j.Name, "joint", bolts[j.Name], j.Stiffness, lossOf(j.LossFactor))
+		k, what := perMillimetre(j)
+		within := "unknown"
+		if j.Low > 0 {
+			within = fmt.Sprintf("%.2g to %.2g", j.Low, j.High)
+		}
+		add(j.Name, what, held[j.Name], k, lossOf(j.LossFactor), within, j.Origin)
 	}
 	for _, b := range p.Bodies {
 		if b.Mount != nil && len(b.Mount.Points) > 0 {
-			add(b.Mount.Name, b.Mount.Kind+" under "+b.Name, len(b.Mount.Points), b.Mount.Points[0].Stiffness, mountLoss(b.Mount))
+			add(b.Mount.Name, b.Mount.Kind+" under "+b.Name, len(b.Mount.Points), b.Mount.Points[0].Stiffness, mountLoss(b.Mount), "unknown", b.Mount.Origin)
 		}
 	}
 	return t
+}
+
+// perMillimetre gives the stiffness of a joint for one, a mm² or a mm of it, and what it is.
+func perMillimetre(j airframe.Joint) (k [6]float64, what string) {
+	by := 1.0
+	switch what = "joint"; j.Measure {
+	case airframe.PerArea:
+		by, what = 1e-6, "faces, per mm²"
+	case airframe.PerLength:
+		by, what = 1e-3, "line, per mm"
+	}
+	for c, x := range j.Stiffness {
+		k[c] = by * x
+	}
+	return k, what
 }
 
 func lossOf(x float64) string { return fmt.Sprintf("%.2g", x) }

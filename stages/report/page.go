@@ -85,6 +85,9 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if c.spectra != nil {
 		add(recordingSection(c.spectra))
 	}
+	if c.difference != nil {
+		add(differenceSection(c.difference))
+	}
 	if c.verified != nil {
 		add(verificationSection(c.verified))
 	}

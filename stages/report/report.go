@@ -9,12 +9,14 @@ import (
 	"context"
 	"fmt"
 	"path"
+	"slices"
 	"strings"
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
+	"hushframe/stages/report/printed"
 )
 
 // Stage is the stage "report".
@@ -23,7 +25,10 @@ type Stage struct{}
 var _ stage.Stage = Stage{}
 
 // readable lists the kinds a report can show, besides that of the run.
-var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "verification"}
+var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "verification", "identified", "difference"}
+
+// formats are those of still pictures.
+var formats = []string{printed.PNG, printed.SVG}
 
 // Describe implements stage.Stage.
 func (Stage) Describe() stage.Description {
@@ -43,6 +48,8 @@ the page.`,
 				Example: "[stage.modes.modes, stage.flight.response]"},
 			{Name: "to", About: "where the page goes", Type: stage.Type{Kind: stage.Target}, Required: true, Example: `"report/baseline.html"`},
 			{Name: "title", About: "title of the page; the name of the job when left out", Type: stage.Type{Kind: stage.Text}, Example: `"Revision B"`},
+			{Name: "charts", About: "formats in which every chart is also written as a still picture into a folder beside the page: " + strings.Join(formats, ", ") + "; none when left out",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Text}}, Example: `["png", "svg"]`},
 		},
 		Outputs: []stage.Output{{Name: "document", Kind: "document", About: "the page and its tables", Publish: "to"}},
 		Last:    true,
@@ -55,6 +62,12 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if ext := strings.ToLower(path.Ext(to)); ext != ".html" && ext != ".htm" {
 		// Whatever else has that name is not a page, and may be what the job reads.
 		return nil, fault.New(fault.Input, "%q does not end in .html", to).In("report", "").Of("to").Do("name a page, such as \"report/page.html\"")
+	}
+	charts := call.Arguments.Texts("charts")
+	for i, format := range charts {
+		if !slices.Contains(formats, format) || slices.Contains(charts[:i], format) {
+			return nil, fault.New(fault.Input, "%q is no format of pictures, or is given twice", format).In("report", "").Of("charts").Do("give any of %s", strings.Join(formats, ", "))
+		}
 	}
 	call.Report.Progress("read", -1)
 	c := &content{}
@@ -71,6 +84,9 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	call.Report.Progress("draw", -1)
 	d, err := compose(c, call.Arguments.Text("title"), path.Base(strings.ReplaceAll(to, `\`, "/")))
 	if err != nil {
+		return nil, err
+	}
+	if err := addStills(d, c, charts); err != nil {
 		return nil, err
 	}
 	if _, err := artifact.Write(call.Outputs["document"], kinds.EncodeDocument(d)); err != nil {

@@ -72,7 +72,7 @@ func neutral(p *airframe.Properties) *airframe.Properties {
 	n.Materials = slices.Clone(p.Materials)
 	for i := range n.Materials {
 		m := &n.Materials[i]
-		m.LossFactor, m.Scatter, m.Typical, m.Origin = 0, 0, false, ""
+		m.LossFactor, m.Scatter, m.Typical, m.Origin, m.E3 = 0, 0, false, "", 0
 	}
 	n.Plates = slices.Clone(p.Plates)
 	for i := range n.Plates {
@@ -85,7 +85,7 @@ func neutral(p *airframe.Properties) *airframe.Properties {
 	n.Joints = slices.Clone(p.Joints)
 	for i := range n.Joints {
 		j := &n.Joints[i]
-		j.LossFactor, j.Low, j.High = 0, 0, 0
+		j.LossFactor, j.Low, j.High, j.Preload, j.Origin = 0, 0, 0, 0, ""
 	}
 	n.Bodies = slices.Clone(p.Bodies)
 	for i := range n.Bodies {

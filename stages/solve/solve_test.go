@@ -247,6 +247,16 @@ func TestSolve(t *testing.T) {
 		q.Rotors[i].HoverSpeed, q.Rotors[i].Grade, q.Rotors[i].Blades = 1400, 0.002, 2
 	}
 	q.Floor = 0.002
+	q.Bodies = append([]airframe.Body(nil), p.Bodies...)
+	for i := range q.Bodies {
+		if m := q.Bodies[i].Mount; m != nil { // another law and loss, the same for all components as before
+			lossy := *m
+			lossy.Loss = [6]float64{0.3, 0.3, 0.3, 0.3, 0.3, 0.3}
+			lossy.Law = airframe.Law{Kind: airframe.Fractional, Reference: 100, Order: 0.4}
+			lossy.Preload, lossy.Origin = 3, "elsewhere"
+			q.Bodies[i].Mount = &lossy
+		}
+	}
 	_, folder2, err := b.run(m, &q, 2, map[string]float64{"up_to": 600, "swept_to": 380})
 	if err != nil || b.keep.made != 1 {
 		t.Fatalf("%v; solved %d times", err, b.keep.made)

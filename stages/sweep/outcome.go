@@ -6,7 +6,6 @@ import (
 	"strings"
 
 	"hushframe/core/mechanics/forced"
-	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
@@ -14,7 +13,7 @@ import (
 const degree = math.Pi / 180
 
 // outcome sums up a response in figures, warnings and tables.
-func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome {
+func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	o := &stage.Outcome{Figures: map[string]any{}, Warnings: warnings(r, set)}
 	for axis, name := range kinds.AxisNames {
 		frequency, level := math.NaN(), math.NaN()
@@ -37,22 +36,27 @@ func outcome(r *kinds.Response, basis *modal.Basis, set settings) *stage.Outcome
 		})
 	}
 	o.Figures["peaks"] = list
+	o.Figures["direct_error"] = directError(r)
 	o.Notes = append(o.Notes,
 		fmt.Sprintf("the source is assumed, not measured: %.3g N²/Hz and %.3g (N·m)²/Hz along each component at each rotor", set.source.Force, set.source.Moment))
 	if !math.IsNaN(r.Thrust) && set.bladeShare > 0 {
 		o.Notes = append(o.Notes, fmt.Sprintf("the thrust of %.3g N per rotor is assumed to vary by %.3g %% at blade passing", r.Thrust, 100*set.bladeShare))
 	}
-	o.Summary = []stage.Section{peakTable(r), axisTable(r)}
+	o.Summary = []stage.Section{peakTable(r), axisTable(r), staticTable(r), pointTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
 	}
 	if len(r.Orders) > 0 {
 		o.Summary = append(o.Summary, mapTable(r))
-		o.Notes = append(o.Notes, fmt.Sprintf("rotor speed is assumed to stray by %.3g %% over a flight", 100*set.spread))
+		o.Notes = append(o.Notes, flownNote(set, g.recorded != nil))
+	}
+	if len(r.Direct) > 0 {
+		o.Summary = append(o.Summary, directTable(r))
 	}
 	if len(r.Whirl) > 0 {
 		o.Summary = append(o.Summary, rotorTable(r), whirlTable(r), separationTable(r))
 	}
+	o.Summary = append(o.Summary, practiceTable(r))
 	return o
 }
 

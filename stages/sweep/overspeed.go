@@ -6,12 +6,8 @@ import (
 
 	"hushframe/core/mechanics/forced"
 	"hushframe/core/mechanics/rotor"
-	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
 )
-
-// mapSpeeds is the number of even speeds of the map, up to the highest.
-const mapSpeeds = 200
 
 // voice is one tone of one rotor.
 type voice struct {
@@ -38,17 +34,17 @@ func (f *fleet) voices(e rotor.Excitation, source string) []voice {
 // overSpeed fills in the lines over rotor speed, each with the gyroscopic
 // moments of its speed, and the spectrum over a flight. There are none where
 // rotors have no hover speed or no highest one.
-func (f *fleet) overSpeed(ctx context.Context, r *kinds.Response, sys *forced.System, tr *forced.Transfer, set settings, threads int) error {
+func (f *fleet) overSpeed(ctx context.Context, r *kinds.Response, sys *forced.System, rest *forced.Rest, set settings, threads int) error {
 	e := set.excitation(r.Thrust)
 	highest := f.highest()
 	if !(highest > 0) {
 		return nil
 	}
-	for k := range mapSpeeds {
-		r.MapSpeeds = append(r.MapSpeeds, highest*float64(k+1)/mapSpeeds)
+	for k := range set.mapSpeeds {
+		r.MapSpeeds = append(r.MapSpeeds, highest*float64(k+1)/float64(set.mapSpeeds))
 	}
-	for axis := range r.Flown {
-		r.Flown[axis] = append([]float64(nil), r.Density[axis]...)
+	if err := f.weigh(r, sys, rest, set); err != nil {
+		return err
 	}
 	for _, source := range rotor.ToneNames {
 		left := f.voices(e, source)
@@ -61,12 +57,14 @@ func (f *fleet) overSpeed(ctx context.Context, r *kinds.Response, sys *forced.Sy
 					later = append(later, v)
 				}
 			}
-			row, err := f.overMap(ctx, sys, now, r.MapSpeeds, set.spinning, threads)
+			row, err := f.overMap(ctx, sys, now, r.MapSpeeds, set, threads)
 			if err != nil {
 				return err
 			}
 			r.Orders = append(r.Orders, row)
-			f.smear(r, tr, now, set)
+			if err := f.smear(r, sys, rest, now, set); err != nil {
+				return err
+			}
 			left = later
 		}
 	}
@@ -88,18 +86,14 @@ func (f *fleet) highest() float64 {
 
 // overMap gives the line of some voices of one frequency over the speeds of the
 // first rotor, the rotors added as power.
-func (f *fleet) overMap(ctx context.Context, sys *forced.System, voices []voice, speeds []float64, spinning bool, threads int) (kinds.ResponseOrder, error) {
+func (f *fleet) overMap(ctx context.Context, sys *forced.System, voices []voice, speeds []float64, set settings, threads int) (kinds.ResponseOrder, error) {
 	row := kinds.ResponseOrder{Source: voices[0].tone.Name, Order: voices[0].order}
 	frequency := make([]float64, len(speeds))
 	var momenta [][]float64
 	for k, speed := range speeds {
 		frequency[k] = rotor.Frequency(row.Order, speed)
-		if spinning {
-			var at []float64
-			for _, x := range f.rotors {
-				at = append(at, rotor.Momentum(x, speed*x.HoverSpeed/f.rotors[0].HoverSpeed))
-			}
-			momenta = append(momenta, at)
+		if set.spinning {
+			momenta = append(momenta, f.momenta(speed, set))
 		}
 	}
 	tr, err := sys.TransferSpun(ctx, frequency, momenta, threads)
@@ -113,7 +107,7 @@ func (f *fleet) overMap(ctx context.Context, sys *forced.System, voices []voice,
 		name := f.rotors[v.rotor].Name
 		row.Rotors = append(row.Rotors, name)
 		for k, speed := range speeds {
-			for axis, a := range loud(tr, k, name, v.tone, speed*v.ratio) {
+			for axis, a := range loud(tr.Inputs, tr.At(k), name, v.tone, speed*v.ratio) {
 				row.Rate[axis][k] = math.Hypot(row.Rate[axis][k], a)
 			}
 		}
@@ -121,53 +115,56 @@ func (f *fleet) overMap(ctx context.Context, sys *forced.System, voices []voice,
 	return row, nil
 }
 
+// weigh begins the spectrum over a flight with the broadband density at the speeds flown and the noise of the gyro.
+func (f *fleet) weigh(r *kinds.Response, sys *forced.System, rest *forced.Rest, set settings) error {
+	r.Flight = f.parts()
+	for axis := range r.Flown {
+		r.Flown[axis] = make([]float64, len(r.Frequency))
+	}
+	for _, part := range r.Flight {
+		density := r.Density
+		if set.spinning {
+			var err error
+			if density, err = spectrumAt(rest, sys, f.momenta(part.Speed, set), set); err != nil {
+				return err
+			}
+		}
+		for axis := range r.Flown {
+			for k, x := range density[axis] {
+				r.Flown[axis][k] += part.Share * x
+			}
+		}
+	}
+	for axis := range r.Flown {
+		for k := range r.Flown[axis] {
+			r.Flown[axis][k] += set.noise
+		}
+	}
+	return nil
+}
+
 // smear adds to the spectrum over a flight what lines make when the speed of
-// the first rotor has a density p: at frequency f a line of order k has the density
-// p(2πf/k) 2π/k A²/2, which integrates to the mean square of the line. The
-// gyroscopic moments are those of the speed of this response.
-func (f *fleet) smear(r *kinds.Response, tr *forced.Transfer, voices []voice, set settings) {
+// their rotor has a density p: at frequency f a line of order k has the density
+// p(2πf/k) 2π/k A²/2, which integrates to the mean square of the line. The gyroscopic
+// moments are those of the speed at which the line lies at f.
+func (f *fleet) smear(r *kinds.Response, sys *forced.System, rest *forced.Rest, voices []voice, set settings) error {
+	reader := rest.Reader()
 	for k, frequency := range r.Frequency {
-		for _, v := range voices {
-			speed := 2 * math.Pi * frequency / v.order
-			p := set.chance(speed, f.speeds[0]) * 2 * math.Pi / v.order
+		for i, v := range voices {
+			speed := 2 * math.Pi * frequency / v.tone.Order // of the rotor
+			p := f.chance(v.rotor, speed) * 2 * math.Pi / v.tone.Order
 			if p == 0 {
 				continue
 			}
-			for axis, a := range loud(tr, k, f.rotors[v.rotor].Name, v.tone, speed*v.ratio) {
+			if i == 0 || voices[i-1].ratio != v.ratio || f.chance(voices[i-1].rotor, speed) == 0 {
+				if err := reader.At(k, f.momenta(speed/v.ratio, set)); err != nil {
+					return err
+				}
+			}
+			for axis, a := range loud(sys.Inputs(), reader.Rates, f.rotors[v.rotor].Name, v.tone, speed) {
 				r.Flown[axis][k] += p * a * a / 2
 			}
 		}
 	}
-}
-
-// flight is a speed of the first rotor with the share of the flight about it.
-type flight struct{ speed, share float64 }
-
-func readFlown(list []any) []flight {
-	var out []flight
-	for _, x := range list {
-		m := x.(map[string]any)
-		out = append(out, flight{m["speed"].(stage.Quantity).SI, m["share"].(float64)})
-	}
-	return out
-}
-
-// chance is the density of the speed of the first rotor over a flight, per
-// rad/s: about each speed flown, or the present one, a normal one with a standard deviation of
-// spread times that speed.
-func (s settings) chance(speed, present float64) float64 {
-	flown := s.flown
-	if len(flown) == 0 {
-		flown = []flight{{present, 1}}
-	}
-	sum, total := 0.0, 0.0
-	for _, x := range flown {
-		sd := s.spread * x.speed
-		z := (speed - x.speed) / sd
-		total += x.share
-		if math.Abs(z) < 8 {
-			sum += x.share * math.Exp(-z*z/2) / (sd * math.Sqrt(2*math.Pi))
-		}
-	}
-	return sum / total
+	return nil
 }

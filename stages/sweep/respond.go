@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"math/cmplx"
 	"sort"
 
 	"hushframe/core/mechanics/airframe"
@@ -17,13 +18,13 @@ import (
 const leastShare = 0.05
 
 // respond computes the whole response.
-func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, set settings, threads int, report stage.Reporter) (*kinds.Response, error) {
+func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g given, set settings, threads int, report stage.Reporter) (*kinds.Response, error) {
 	residual := false
 	for _, kind := range basis.Kinds {
 		residual = residual || kind == modal.Residual
 	}
 	residual = residual && set.residual
-	fleet, err := newFleet(basis, p, set)
+	fleet, err := newFleet(basis, p, g.recorded, set)
 	if err != nil {
 		return nil, err
 	}
@@ -31,9 +32,21 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	if err != nil {
 		return nil, err
 	}
+	named, err := probes(basis, sys, g, set)
+	if err != nil {
+		return nil, err
+	}
+	all, err := fleet.assemble(ctx, basis, p, g, set, threads)
+	if err != nil {
+		return nil, err
+	}
 	report.Progress("sweep", 0)
 	grid := forced.Grid(set.from, set.to, set.step, sys.Resonances())
-	tr, err := sys.Transfer(ctx, grid, threads)
+	rest, err := sys.Rest(ctx, grid, threads)
+	if err != nil {
+		return nil, err
+	}
+	tr, err := rest.Transfer(sys.Momenta())
 	if err != nil {
 		return nil, err
 	}
@@ -41,7 +54,10 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	r := &kinds.Response{
 		From: set.from, To: set.to, Force: set.source.Force, Moment: set.source.Moment, Residual: residual,
 		BladeShare: set.bladeShare, Spinning: set.spinning, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
+		GyroNoise: set.noise, FirstMode: first(basis), LawsAt: math.NaN(),
 	}
+	rigid, static := sys.Static(grid)
+	r.Rigid, r.Static = rigid.Broadband(set.source).Density, static.Broadband(set.source).Density
 	for axis, name := range kinds.AxisNames {
 		for k, rotor := range sp.Rotors {
 			r.Sources = append(r.Sources, kinds.ResponseSource{Rotor: rotor, Axis: name, Density: sp.ByRotor[axis][k]})
@@ -61,6 +77,14 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	}
 	for axis, name := range kinds.AxisNames {
 		x := kinds.ResponseAxis{Axis: name, RMS: math.Sqrt(forced.MeanSquare(grid, sp.Density[axis]))}
+		for j, in := range tr.Inputs {
+			give := cmplx.Abs(static.Rate[axis][j][0]-rigid.Rate[axis][j][0]) / (2 * math.Pi * grid[0])
+			if in.Moment() {
+				x.GiveMoment = math.Hypot(x.GiveMoment, give)
+			} else {
+				x.GiveForce = math.Hypot(x.GiveForce, give)
+			}
+		}
 		x.Correction, x.CorrectionAt = change(grid, sp.Density[axis], r.Uncorrected[axis])
 		r.Axes = append(r.Axes, x)
 	}
@@ -82,11 +106,35 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, se
 	if r.Lines, err = fleet.lines(ctx, sys, set.excitation(r.Thrust)); err != nil {
 		return nil, err
 	}
-	if err := fleet.overSpeed(ctx, r, sys, tr, set, threads); err != nil {
+	report.Progress("rotor speeds", 0.85)
+	if err := fleet.overSpeed(ctx, r, sys, rest, set, threads); err != nil {
 		return nil, err
 	}
-	report.Progress("shapes", 0.9)
+	if err := fleet.speedMap(ctx, r, sys, rest, set, threads); err != nil {
+		return nil, err
+	}
+	report.Progress("motions", 0.9)
+	if err := motions(ctx, r, basis, fleet, sys, set, threads); err != nil {
+		return nil, err
+	}
+	if err := points(ctx, r, named, fleet, sys, set, threads); err != nil {
+		return nil, err
+	}
+	if err := all.check(ctx, r, sys, set, threads, report); err != nil {
+		return nil, err
+	}
+	report.Progress("shapes", 0.95)
 	return r, shapes(r, sys, set)
+}
+
+// first is the lowest elastic frequency, NaN for none.
+func first(basis *modal.Basis) float64 {
+	for v, kind := range basis.Kinds {
+		if kind == modal.Elastic {
+			return basis.Frequency[v]
+		}
+	}
+	return math.NaN()
 }
 
 // uncorrected fills in the spectrum without residual vectors and returns its
@@ -104,7 +152,11 @@ func uncorrected(ctx context.Context, basis *modal.Basis, fleet *fleet, residual
 	if err != nil {
 		return nil, err
 	}
-	tr, err := sys.Transfer(ctx, grid, threads)
+	rest, err := sys.Rest(ctx, grid, threads)
+	if err != nil {
+		return nil, err
+	}
+	tr, err := rest.Transfer(sys.Momenta())
 	if err != nil {
 		return nil, err
 	}
@@ -141,7 +193,7 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, fleet *fleet, sys, plain *
 	poles, modes := fleet.poles(set)
 	for _, p := range peaks {
 		x := kinds.ResponsePeak{Axis: kinds.AxisNames[p.Axis], Frequency: p.Frequency, Density: p.Density, Prominence: p.Prominence,
-			Damping: math.NaN(), Uncorrected: math.NaN(), ComponentShare: p.InputShare}
+			Damping: math.NaN(), Uncorrected: math.NaN(), ComponentShare: p.InputShare, RotorShares: p.RotorShares, ModeShares: make([]float64, count)}
 		in := sys.Inputs()[p.Input]
 		x.Rotor, x.Component = in.Rotor, in.Component
 		for i, v := range sys.Vectors() {
@@ -153,6 +205,11 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, fleet *fleet, sys, plain *
 			}
 		}
 		if poles == nil || !set.spinning {
+			for i, share := range p.Shares {
+				if number[i] > 0 {
+					x.ModeShares[number[i]-1] = share
+				}
+			}
 			for _, i := range p.Makers(leastShare) {
 				if number[i] > 0 {
 					if len(x.Modes) == 0 {
@@ -188,8 +245,9 @@ func whirling(x *kinds.ResponsePeak, p *forced.Peak, sys *forced.System, set set
 		return err
 	}
 	x.Residual = 1 - x.Rigid
-	for _, share := range shares {
+	for k, share := range shares {
 		x.Residual -= share
+		x.ModeShares[modes[k]-1] = share
 	}
 	by := forced.Peak{Shares: shares}
 	for _, k := range by.Makers(leastShare) {

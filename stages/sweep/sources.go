@@ -52,25 +52,28 @@ func correlated(set settings, rotors int) error {
 }
 
 // loud gives the peak amplitudes of the gyro rate, rad/s, under a tone of a rotor
-// at a speed; k is the place among the frequencies of the transfer functions.
-func loud(tr *forced.Transfer, k int, name string, t rotor.Tone, speed float64) [3]float64 {
-	amplitude := complex(t.Amplitude(speed), 0)
-	var square, out [3]float64
-	for _, load := range t.Loads {
-		rate := tr.Respond(k, func(in forced.Input) complex128 {
-			if in.Rotor != name {
-				return 0
-			}
-			return load[in.Component] * amplitude
-		})
-		for axis, z := range rate {
-			square[axis] += real(z * cmplx.Conj(z))
-		}
-	}
+// at a speed, from the rates per unit of each input.
+func loud(inputs []forced.Input, rates [3][]complex128, name string, t rotor.Tone, speed float64) (out [3]float64) {
 	for axis := range out {
-		out[axis] = math.Sqrt(square[axis])
+		out[axis] = under(inputs, rates[axis], name, t, speed)
 	}
 	return out
+}
+
+// under gives the peak amplitude of a motion under a tone of a rotor at a
+// speed, from the motion per unit of each input. Loads of unknown phase add as power.
+func under(inputs []forced.Input, motion []complex128, name string, t rotor.Tone, speed float64) float64 {
+	square := 0.0
+	for _, load := range t.Loads {
+		var sum complex128
+		for j, in := range inputs {
+			if in.Rotor == name {
+				sum += motion[j] * load[in.Component]
+			}
+		}
+		square += real(sum * cmplx.Conj(sum))
+	}
+	return t.Amplitude(speed) * math.Sqrt(square)
 }
 
 // lines gives every tone of every rotor at its speed. Rotors of equal frequency are added as
@@ -90,7 +93,7 @@ func (f *fleet) lines(ctx context.Context, sys *forced.System, e rotor.Excitatio
 					return nil, err
 				}
 				out = append(out, kinds.ResponseLine{Source: source, Rotor: x.Name, Order: tone.Order, Frequency: frequency,
-					Force: tone.Amplitude(f.speeds[k]), Rate: loud(tr, 0, x.Name, tone, f.speeds[k])})
+					Force: tone.Amplitude(f.speeds[k]), Rate: loud(tr.Inputs, tr.At(0), x.Name, tone, f.speeds[k])})
 			}
 		}
 		if all, ok := together(out[first:]); ok {

@@ -8,8 +8,8 @@ import (
 	"fmt"
 	"math"
 
-	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/forced"
+	"hushframe/core/mechanics/mesh"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -26,7 +26,7 @@ var _ stage.Stage = Stage{}
 func (Stage) Describe() stage.Description {
 	frequency := stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
 	zero := 0.0
-	one, less := 1.0, -1.0
+	one, less, many := 1.0, -1.0, 1000.0
 	d := stage.Description{
 		Name:  "sweep",
 		About: "predict the gyro rate that the rotors cause, over frequency",
@@ -86,6 +86,22 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "16000 rpm", Above: &zero},
 					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
 				}}}, Example: `[{ speed = "15000 rpm", share = 0.7 }, { speed = "19000 rpm", share = 0.3 }]`},
+			{Name: "map_speeds", About: "number of even rotor speeds, up to the highest, of the maps over rotor speed",
+				Type: stage.Type{Kind: stage.Whole}, Default: 200.0, Example: "200", Min: &one, Max: &many},
+			{Name: "recording", About: "spectra from record, whose rotor speeds then say how a flight is spread over speeds",
+				Type: artifactOf("spectra")},
+			{Name: "gyro_noise", About: "assumed one-sided density of the gyro's own noise on each axis, in what a recorder sees of a flight",
+				Type:    stage.Type{Kind: stage.Amount, Dimension: "angular rate density", Unit: "(deg/s)2/Hz"},
+				Default: stage.Quantity{SI: 2.5e-5 * degree * degree, Dimension: "angular rate density"}, Example: "2.5e-5 (deg/s)2/Hz", Min: &zero},
+			{Name: "points", About: "further named points: the node of a part of the mesh nearest to a place; bodies, rotors and the gyro are points anyway",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "name", About: "name of the point", Type: stage.Type{Kind: stage.Text}, Required: true, Example: "nose"},
+					{Name: "at", About: "place in airframe axes: x forward, y left, z up", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Amount, Dimension: "length", Unit: "mm"}}, Required: true, Example: `["70 mm", "0 mm", "25 mm"]`},
+					{Name: "part", About: "plate or standoff it lies on; left out, any", Type: stage.Type{Kind: stage.Text}, Example: "top"},
+				}}}, Example: `[{ name = "nose", at = ["70 mm", "0 mm", "25 mm"], part = "top" }]`},
+			{Name: "mesh", About: "mesh from mesh, for points and check_at", Type: artifactOf("mesh")},
+			{Name: "check_at", About: "frequencies at which the full damped equations are solved as well, to hold the modal response against; takes mesh, and about as long as the modes for every ten",
+				Type: stage.Type{Kind: stage.List, Element: &frequency}, Example: `["121 Hz", "290 Hz"]`},
 			{Name: "rotor_speed", About: "speed of the spinning rotors: hover, none (no gyroscopic moments), or that of the first rotor, the others in the ratio of their hover speeds",
 				Type: stage.Type{Kind: stage.Text}, Default: "hover", Example: `"hover", "none", "16000 rpm"`},
 			{Name: "residual", About: "correct for the modes left out, by residual vectors", Type: stage.Type{Kind: stage.Truth}, Default: true, Example: "true"},
@@ -104,6 +120,7 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 		)
 	}
 	d.Figures = append(d.Figures,
+		stage.Figure{Name: "direct_error", About: "greatest difference of the modal response from the direct solve at the frequencies of check_at, relative; not a number without", Type: stage.Type{Kind: stage.Number}},
 		stage.Figure{Name: "peaks", About: "peaks as objects with axis, frequency, level, damping and modes", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}})
 	return d
 }
@@ -130,6 +147,10 @@ type settings struct {
 	rippleOrder    float64
 	spread         float64
 	flown          []flight
+	noise          float64 // of the gyro, (rad/s)²/Hz
+	points         []pointAt
+	checkAt        []float64
+	mapSpeeds      int // number
 }
 
 // mostFrequencies bounds the size of a response.
@@ -140,15 +161,18 @@ func read(a stage.Arguments) (settings, error) {
 		from: a.SI("from"), to: a.SI("to"), step: a.SI("resolution"),
 		source:     forced.Broadband{Force: a.SI("force_density"), Moment: a.SI("moment_density")},
 		bladeShare: a.Number("blade_share"), residual: a.Truth("residual"),
-		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"),
+		prominence: math.Pow(10, a.Number("prominence")/10), shapesAt: a.SIs("shapes_at"), checkAt: a.SIs("check_at"), mapSpeeds: a.Whole("map_speeds"),
 	}
 	s.sideShare, s.ripple, s.rippleOrder, s.spread = a.Number("side_share"), a.SI("torque_ripple"), a.Number("ripple_order"), a.Number("speed_spread")
 	s.unbalance = math.NaN()
 	if a.Has("unbalance") {
 		s.unbalance = a.SI("unbalance")
 	}
-	s.flown = readFlown(a.List("speeds_flown"))
+	s.flown, s.noise = readFlown(a.List("speeds_flown")), a.SI("gyro_noise")
 	var err error
+	if s.points, err = readPoints(a.List("points")); err != nil {
+		return s, err
+	}
 	if s.source.Together, err = readTogether(a.List("correlation")); err != nil {
 		return s, err
 	}
@@ -165,6 +189,11 @@ func read(a stage.Arguments) (settings, error) {
 	case s.source.Force == 0 && s.source.Moment == 0:
 		return s, fault.New(fault.Input, "both densities are zero, so nothing drives the frame").In("sweep", "").Of("force_density").
 			Do("give at least one of force_density and moment_density")
+	}
+	for _, f := range s.checkAt {
+		if !(f > 0) {
+			return s, fault.New(fault.Input, "a free frame has no response at %g Hz", f).In("sweep", "").Of("check_at").Do("name frequencies above 0 Hz")
+		}
 	}
 	for _, f := range s.shapesAt {
 		if !(f > 0) {
@@ -186,35 +215,75 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, err
 	}
-	props, err := readProperties(call)
+	props, err := readInput(call, "properties", kinds.DecodeProperties)
 	if err != nil {
 		return nil, err
 	}
 	if err := correlated(set, len(props.Rotors)); err != nil {
 		return nil, err
 	}
-	r, err := respond(ctx, basis, props, set, call.Threads, call.Report)
+	given, err := readGiven(call, set)
+	if err != nil {
+		return nil, err
+	}
+	r, err := respond(ctx, basis, props, given, set, call.Threads, call.Report)
 	if err != nil {
 		return nil, explain(err)
 	}
 	r.ModesTo = reach
+	r.Practice = practice(r)
 	call.Report.Progress("write", -1)
 	if _, err := artifact.Write(call.Outputs["response"], kinds.EncodeResponse(r)); err != nil {
 		return nil, err
 	}
-	return outcome(r, basis, set), nil
+	return outcome(r, given, set), nil
 }
 
-func readProperties(call *stage.Call) (*airframe.Properties, error) {
-	a, err := artifact.Open(call.Inputs["properties"][0].Folder, kinds.Registry())
-	if err != nil {
-		return nil, err
+// given are the inputs that a sweep may do without.
+type given struct {
+	mesh     *mesh.Mesh
+	recorded *kinds.Spectra
+}
+
+func readGiven(call *stage.Call, set settings) (given, error) {
+	var g given
+	var err error
+	if len(call.Inputs["mesh"]) > 0 {
+		if g.mesh, err = readInput(call, "mesh", kinds.DecodeMesh); err != nil {
+			return g, err
+		}
 	}
-	return kinds.DecodeProperties(a)
+	if len(call.Inputs["recording"]) > 0 {
+		if g.recorded, err = readInput(call, "recording", kinds.DecodeSpectra); err != nil {
+			return g, err
+		}
+	}
+	if g.mesh == nil && len(set.points) > 0 {
+		return g, fault.New(fault.Input, "a point at a place is found on the mesh, which is not given").In("sweep", "point "+set.points[0].name).Of("points").
+			Do("add mesh = stage.shells.mesh, after the name of your mesh stage, to the sweep")
+	}
+	if g.mesh == nil && len(set.checkAt) > 0 {
+		return g, fault.New(fault.Input, "the full equations are assembled from the mesh, which is not given").In("sweep", "").Of("check_at").
+			Do("add mesh = stage.shells.mesh, after the name of your mesh stage, to the sweep")
+	}
+	return g, nil
+}
+
+func readInput[T any](call *stage.Call, name string, decode func(*artifact.Artifact) (T, error)) (T, error) {
+	a, err := artifact.Open(call.Inputs[name][0].Folder, kinds.Registry())
+	if err != nil {
+		var none T
+		return none, err
+	}
+	return decode(a)
 }
 
 // explain turns what the kernel says into a fault.
 func explain(err error) error {
+	var said *fault.Error
+	if errors.As(err, &said) {
+		return said
+	}
 	var unbounded *forced.Unbounded
 	if errors.As(err, &unbounded) {
 		return fault.New(fault.Numeric, "%v", err).In("sweep", fmt.Sprintf("%g Hz", unbounded.Frequency)).
@@ -228,11 +297,7 @@ func explain(err error) error {
 
 // readBasis gives the modal basis and the frequency below which it is complete.
 func readBasis(call *stage.Call) (*modal.Basis, float64, error) {
-	a, err := artifact.Open(call.Inputs["modes"][0].Folder, kinds.Registry())
-	if err != nil {
-		return nil, 0, err
-	}
-	m, err := kinds.DecodeModes(a)
+	m, err := readInput(call, "modes", kinds.DecodeModes)
 	if err != nil {
 		return nil, 0, err
 	}

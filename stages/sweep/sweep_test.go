@@ -68,6 +68,9 @@ func frame() (*kinds.Modes, *airframe.Properties) {
 	return m, p
 }
 
+// mapSpeeds is the number of speeds of maps in tests, to save time.
+const mapSpeeds = 20
+
 type silent struct{}
 
 func (silent) Progress(string, float64)        {}
@@ -81,6 +84,7 @@ func call(t testing.TB, m *kinds.Modes, p *airframe.Properties, change stage.Arg
 			c.Arguments[a.Name] = a.Default
 		}
 	}
+	c.Arguments["map_speeds"] = float64(mapSpeeds)
 	for name, v := range change {
 		c.Arguments[name] = v
 	}
@@ -361,7 +365,7 @@ func TestShapesWhereAsked(t *testing.T) {
 func TestSummary(t *testing.T) {
 	m, p := frame()
 	_, out := run(t, m, p, nil)
-	if len(out.Summary) != 4 {
+	if len(out.Summary) != 7 {
 		t.Fatalf("%d tables", len(out.Summary))
 	}
 	for _, s := range out.Summary {

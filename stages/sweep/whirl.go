@@ -39,11 +39,12 @@ type fleet struct {
 	speeds    []float64 // rad/s
 	couplings []forced.Gyroscopic
 	diagram   *rotor.Diagram // nil when nothing whirls
+	flown     [][]normal     // speeds over a flight, per rotor
 }
 
 // newFleet takes the rotors that have a site; properties and basis may come
 // from files of different age, and a rotor without a site does nothing.
-func newFleet(b *modal.Basis, p *airframe.Properties, set settings) (*fleet, error) {
+func newFleet(b *modal.Basis, p *airframe.Properties, recorded *kinds.Spectra, set settings) (*fleet, error) {
 	f := &fleet{rotors: p.Rotors}
 	if len(p.Rotors) == 0 {
 		return f, nil
@@ -59,8 +60,10 @@ func newFleet(b *modal.Basis, p *airframe.Properties, set settings) (*fleet, err
 		f.speeds = append(f.speeds, speed)
 	}
 	var err error
-	f.couplings, err = rotor.Couplings(b, p.Rotors, f.speeds)
-	return f, err
+	if f.couplings, err = rotor.Couplings(b, p.Rotors, f.speeds); err != nil {
+		return nil, err
+	}
+	return f, f.fly(set, recorded)
 }
 
 // options are those of a system with these rotors.
@@ -159,7 +162,10 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 			upTo = max(upTo, 1.1*basis.Frequency[v])
 		}
 	}
-	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
+	if sys.Varies() {
+		r.LawsAt = set.middle()
+	}
+	d, err := list.Campbell(ctx, sys.Frozen(set.middle()), elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
 	if err != nil {
 		return err
 	}
@@ -180,6 +186,10 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 	}
 	return nil
 }
+
+// middle is the frequency of the sweep at which stiffness that depends on
+// frequency is taken for natural motions and critical speeds.
+func (s settings) middle() float64 { return math.Sqrt(s.from * s.to) }
 
 // ladder gives even speeds from 0 to the highest with the marked ones among
 // them.

@@ -92,8 +92,14 @@ func Families() []Family {
 		{"free ring frame", "14 beams per side", beams, []string{"A-RING-FRAME"}, nil, 0.2, ringFrame},
 		{"portal frame", "20 beams per member", beams, []string{"A-PORTAL"}, nil, 0.8, portal},
 
-		{"rectangular plates, bending", "12 cells along", plates, []string{"B-THIN-", "B-THICK-", "B-SQ-"},
-			[]string{"B-SQ-SS-THICK-THIN"}, 0.6, rectangles}, // the value of thin-plate theory for a thick plate
+		{"torsion constants of rectangles", "4 beams", beams, []string{"A-TORSION-J"}, nil, 0.1, torsionConstants},
+		{"orthotropic bars in torsion", "4 beams", beams, []string{"A-ORTHO-TORSION-"}, nil, 0.1, orthotropicBars},
+		{"narrow strips in torsion", "shells on the default mesh", beams, []string{"A-FSDT-STRIP-"}, nil, 1, narrowStrips},
+
+		{"rectangular plates, bending", "12 cells along", plates, []string{"B-THIN-", "B-THICK-", "B-SQ-"}, nil, 0.6, rectangles},
+		{"turned plies", "no mesh", plates, []string{"B-QBAR-"}, nil, 1, turnedPlies},
+		{"stiffness of laminates", "no mesh", plates, []string{"B-CLT-"}, nil, 1, stacks},
+		{"transverse shear of laminates", "no mesh", plates, []string{"B-SHEARCYL-"}, nil, 1, shearByEquilibrium},
 		{"plates in their plane", "16 or 20 cells along", plates, []string{"B-INPLANE-", "B-TAPER-MEMBRANE"}, nil, 0.2, membranes},
 		{"clamped rhombic plates", "16 × 16 cells", plates, []string{"B-RHOMB-"}, nil, 0.2, rhombs},
 		{"discs and rings", "7 × 32 cells", plates, []string{"B-CIRC-", "B-ANNULUS-", "B-DISC-"}, nil, 0.35, rounds},
@@ -113,6 +119,7 @@ func Families() []Family {
 		{"plates under pressure and force", "12 cells across the quarter", shells, []string{"C-PLATE-STATIC-"}, nil, 0.3, platesUnderLoad},
 		{"plate with a body on its edge", "20 × 6 cells", shells, []string{"C-PLATE-TIPBODY"}, nil, 0.4, plateWithTipBody},
 		{"folded plates", "16 cells along, 9 across 50 mm", shells, []string{"C-FOLD-90-CANT", "C-CHANNEL-FREE"}, nil, 0.8, foldedPlates},
+		{"free plus-shaped frames", "4 cells across an arm", shells, []string{"C-PLUS-"}, nil, 0.5, plusFrames},
 		{"plates on standoffs", "20 × 16 cells", shells, []string{"C-STACK-ALU"}, nil, 0.5, stackOnStandoffs},
 		{"board on mounts", "20 × 18 cells", shells, []string{"C-BOARD-MOUNTS"}, nil, 0.5, boardOnMounts},
 

@@ -19,6 +19,7 @@ type Geometry struct {
 	Patches   []Patch
 	Bolts     []Bolt
 	Standoffs []Standoff
+	Contacts  []Contact
 }
 
 // Plate is a flat plate of constant thickness.
@@ -80,4 +81,37 @@ type Standoff struct {
 	Ends    [2]Vec // end points on the faces of the plates
 	Outer   float64
 	Inner   float64 // diameters, m; Inner 0 is solid
+}
+
+// ContactKind is what a contact is.
+type ContactKind string
+
+const (
+	// Pressed faces of two plates, tied over an area.
+	Pressed ContactKind = "pressed"
+	// Seam is a glued line, mostly the edge of a plate on the face of another.
+	Seam ContactKind = "seam"
+	// Key is the flank of a slot, key or tongue that stops a plate within its plane.
+	Key ContactKind = "key"
+)
+
+// Contact ties two plates by springs spread over an area or along a line.
+type Contact struct {
+	Name   string
+	Kind   ContactKind
+	Plates [2]int // indices into Geometry.Plates
+	// Axes are those of the springs, the origin a point of the contact. Pressed: z
+	// is the normal of the first plate, origin on the common face. Lines: x runs
+	// along; z is the normal of the face (seam) or of the first plate (key).
+	Axes Frame
+	// Shape bounds a pressed contact, in the frame of the first plate; "" is
+	// wherever the plates overlap.
+	Shape  PatchShape
+	Centre outline.Point
+	Radius float64
+	Width  float64
+	Height float64
+	Turn   float64 // rad
+	// Ends of a line.
+	Ends [2]Vec
 }

@@ -6,6 +6,7 @@ type Properties struct {
 	Plates    []PlateProperties    // one per plate, same order
 	Standoffs []StandoffProperties // one per standoff, same order
 	Bolts     []BoltProperties     // one per bolt, same order
+	Contacts  []ContactProperties  // one per contact, same order
 	Joints    []Joint
 	Bodies    []Body
 	Rotors    []Rotor
@@ -21,6 +22,7 @@ type Properties struct {
 type Material struct {
 	Name          string
 	E1, E2        float64 // Pa
+	E3            float64 // Pa, through the thickness; 0 unknown. Plates do not need it, joints do.
 	Nu12          float64 // strain along 2 per strain along 1, loaded along 1, negated
 	G12, G13, G23 float64 // Pa
 	Density       float64 // kg/m³
@@ -60,16 +62,42 @@ type BoltProperties struct {
 	Bolt  string
 	Mass  float64 // kg, at the bolt's point
 	Joint string  // name of a Joint; "" is rigid
+	// Pairs is the stiffness between each pair of plates from bottom to top,
+	// where it is not that of the joint.
+	Pairs [][6]float64
 }
 
-// Joint is a six-component elastic connection, in the frame of the bolt
-// (z along its axis, x along the lower plate's x). Components x, y, z in N/m
-// and rx, ry, rz in N·m/rad. A component of +Inf is rigid.
+// ContactProperties says what ties the plates of a contact.
+type ContactProperties struct {
+	Contact string
+	Joint   string // name of a Joint per area or length
+	// Stiffness per m² or m, where it is not that of the joint (nil).
+	Stiffness *[6]float64
+}
+
+// Measure says what the stiffness of a joint counts for.
+type Measure string
+
+const (
+	Each      Measure = "" // one connection
+	PerArea   Measure = "area"
+	PerLength Measure = "length"
+)
+
+// Joint is a joint group: a named elastic connection of six components, in the
+// frame of the bolt (z along its axis, x along the lower plate's x) or the axes
+// of the contact. Components x, y, z in N/m and rx, ry, rz in N·m/rad, or these
+// per m² or m of a contact. A component of +Inf is rigid, which contacts cannot be.
 type Joint struct {
-	Name       string
+	Name    string
+	Measure Measure
+	// Stiffness is the nominal one. Low and High are the range of a common factor
+	// on the stiffness of the whole group, 0 unknown.
 	Stiffness  [6]float64
 	LossFactor float64
-	Low, High  float64 // range of a common factor on Stiffness, 0 unknown
+	Low, High  float64
+	Preload    float64 // N of each bolt, 0 unknown; nothing is computed from it
+	Origin     string  // where the values come from: a formula with its source, or who gave them
 }
 
 // Body is a rigid body: motor with propeller, battery, camera, gyro stack.
@@ -135,6 +163,8 @@ type Rotor struct {
 	MaxSpeed     float64 // rad/s
 	SpinningMass float64 // kg, bell and propeller
 	PolarInertia float64 // kg·m², of the spinning part about Axis
+	// BellInertia and PropellerInertia are what PolarInertia consists of, 0 unknown.
+	BellInertia, PropellerInertia float64
 	// Grade is the balance quality e·Ω (m/s) at MaxSpeed, ISO 21940-11.
 	Grade float64
 }

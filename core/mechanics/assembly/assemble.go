@@ -1,7 +1,10 @@
 package assembly
 
 import (
+	"slices"
+
 	"hushframe/core/mechanics/element"
+	"hushframe/core/numeric/dense"
 	"hushframe/core/numeric/sparse"
 )
 
@@ -9,11 +12,21 @@ import (
 // or of a body over its columns.
 type contribution struct {
 	unknowns []int32
-	// For elements: full packed matrices over 6·nodes, and how nodes follow the unknowns; transform
-	// is nil when they are the unknowns, in order.
+	group    int // whose stiffness it is
+	// For elements: full packed matrices over 6·nodes.
 	stiffness, mass []float64
-	order           int
-	transform       []float64 // order × len(unknowns), row-major
+	// Each component is the sum of the shares that it follows: those of component i are
+	// shares[starts[i]:starts[i+1]]. Without starts the components are the unknowns, in order.
+	starts []int32
+	shares []share
+	// compute, when set, adds the stiffness over the unknowns to dst in place of all these; it has no mass.
+	compute func(dst []float64)
+}
+
+// share is a part of an unknown, by its place in the list of unknowns.
+type share struct {
+	at     int32
+	factor float64
 }
 
 // add assembles K and M.
@@ -23,46 +36,56 @@ func (s *System) add(threads int) {
 	for i := range all {
 		lists[i] = all[i].unknowns
 	}
-	k := sparse.NewAssembler(s.N, lists)
+	k := sparse.NewAssemblerThreads(s.N, lists, threads)
 	m := k.Fork()
-	k.AddAll(threads, func(e int, packed []float64) { all[e].reduce(packed, all[e].stiffness) })
-	m.AddAll(threads, func(e int, packed []float64) { all[e].reduce(packed, all[e].mass) })
-	s.K, s.M = k.Matrix(), m.Matrix()
+	// Adding goes in order, so the two matrices are added side by side.
+	dense.Parallel(threads, 2, func(which int) {
+		each := (threads + 1) / 2
+		if which == 0 {
+			k.AddAll(each, func(e int, packed []float64) { all[e].addStiffness(packed) })
+			s.K = k.Matrix()
+			return
+		}
+		m.AddAll(each, func(e int, packed []float64) { all[e].reduce(packed, all[e].mass) })
+		s.M = m.Matrix()
+	})
 }
 
-// reduce writes Tᵀ A T, or A where there is no T. A nil A leaves dst zero.
+// addStiffness adds the stiffness over the unknowns to dst, which is zero.
+func (c *contribution) addStiffness(dst []float64) {
+	if c.compute != nil {
+		c.compute(dst)
+		return
+	}
+	c.reduce(dst, c.stiffness)
+}
+
+// reduce writes Tᵀ A T, T being the matrix of the shares, or A where there are none. A nil A leaves dst zero.
 func (c *contribution) reduce(dst, a []float64) {
 	if a == nil {
 		return
 	}
-	if c.transform == nil {
+	if c.starts == nil {
 		copy(dst, a)
 		return
 	}
-	n, w := c.order, len(c.unknowns)
-	at := make([]float64, n*w) // A T
+	n, w := len(c.starts)-1, len(c.unknowns)
+	row := make([]float64, w) // of A T
 	for i := range n {
-		row := at[i*w : (i+1)*w]
+		clear(row)
 		for j := range n {
 			v := a[element.Packed(max(i, j))+min(i, j)]
 			if v == 0 {
 				continue
 			}
-			t := c.transform[j*w : (j+1)*w]
-			for q, x := range t {
-				row[q] += v * x
+			for _, t := range c.shares[c.starts[j]:c.starts[j+1]] {
+				row[t.at] += v * t.factor
 			}
 		}
-	}
-	for i := range n {
-		t, row := c.transform[i*w:(i+1)*w], at[i*w:(i+1)*w]
-		for p, x := range t {
-			if x == 0 {
-				continue
-			}
-			out := dst[element.Packed(p) : element.Packed(p)+p+1]
+		for _, t := range c.shares[c.starts[i]:c.starts[i+1]] {
+			out := dst[element.Packed(int(t.at)):][:t.at+1]
 			for q := range out {
-				out[q] += x * row[q]
+				out[q] += t.factor * row[q]
 			}
 		}
 	}
@@ -76,6 +99,7 @@ func (s *System) contributions() []contribution {
 		size := element.Packed(per * a.nodes)
 		for e := range a.part.Elements {
 			c := s.follow(list(e), per, a.part.Axes)
+			c.group = a.part.Group
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -85,6 +109,7 @@ func (s *System) contributions() []contribution {
 		size := element.Packed(12)
 		for e, nodes := range a.part.Elements {
 			c := s.follow(nodes[:], element.NodeUnknowns, a.axes[e])
+			c.group = a.part.Group
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -92,6 +117,7 @@ func (s *System) contributions() []contribution {
 	for i := range s.springs {
 		all = append(all, s.springContribution(&s.springs[i]))
 	}
+	all = s.contactContributions(all)
 	for b := range s.layout.bodies {
 		all = append(all, s.bodyContribution(b))
 	}
@@ -101,7 +127,7 @@ func (s *System) contributions() []contribution {
 // follow expresses the element-frame components of the nodes, the first per of each, through the unknowns.
 func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
 	l := s.layout
-	c := contribution{order: per * len(nodes)}
+	var c contribution
 	plain := true
 	for _, v := range nodes {
 		nd := &l.nodes[v]
@@ -115,30 +141,31 @@ func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
 		}
 		return c
 	}
-	place := map[int32]int{}
+	c.starts = make([]int32, 1, 6*len(nodes)+1)
 	var columns []column
-	starts := make([]int, len(nodes)+1)
-	for i, v := range nodes {
-		columns = l.nodeColumns(columns, v)
-		starts[i+1] = len(columns)
-	}
-	for _, col := range columns {
-		if _, ok := place[col.unknown]; !ok {
-			place[col.unknown] = len(c.unknowns)
-			c.unknowns = append(c.unknowns, col.unknown)
-		}
-	}
-	w := len(c.unknowns)
-	c.transform = make([]float64, c.order*w)
-	for i, v := range nodes {
-		for _, col := range columns[starts[i]:starts[i+1]] {
-			m := col.motion
+	var places []int32
+	for _, v := range nodes {
+		columns = l.nodeColumns(columns[:0], v)
+		places = places[:0]
+		for i := range columns {
+			col := &columns[i]
+			at := slices.Index(c.unknowns, col.unknown)
+			if at < 0 {
+				at = len(c.unknowns)
+				c.unknowns = append(c.unknowns, col.unknown)
+			}
+			places = append(places, int32(at))
 			if l.nodes[v].axes != axes {
-				m = axes.in6(l.nodes[v].axes.out6(m))
+				col.motion = axes.in6(l.nodes[v].axes.out6(col.motion))
 			}
-			for k := range per {
-				c.transform[(per*i+k)*w+place[col.unknown]] += m[k]
+		}
+		for k := range per {
+			for i, col := range columns {
+				if col.motion[k] != 0 {
+					c.shares = append(c.shares, share{places[i], col.motion[k]})
+				}
 			}
+			c.starts = append(c.starts, int32(len(c.shares)))
 		}
 	}
 	return c
@@ -156,7 +183,7 @@ func (s *System) springContribution(a *assembledSpring) contribution {
 			set.add(col.unknown, m, float64(2*side-1))
 		}
 	}
-	c := contribution{order: 6, stiffness: make([]float64, element.Packed(6))}
+	c := contribution{group: a.spring.Group, stiffness: make([]float64, element.Packed(6))}
 	for k, v := range a.spring.Stiffness {
 		c.stiffness[element.Packed(k)+k] = v
 	}
@@ -167,7 +194,7 @@ func (s *System) springContribution(a *assembledSpring) contribution {
 // bodyContribution is the mass of a merged body over its columns.
 func (s *System) bodyContribution(b int) contribution {
 	body := &s.layout.bodies[b]
-	c := contribution{order: 6, mass: make([]float64, element.Packed(6))}
+	c := contribution{mass: make([]float64, element.Packed(6))}
 	for _, i := range body.members {
 		for _, in := range s.layout.problem.Bodies[i].Inertia {
 			m := in.about(body.reference)
@@ -183,13 +210,17 @@ func (s *System) bodyContribution(b int) contribution {
 }
 
 func (c *contribution) fill(columns []column) {
-	w := len(columns)
-	c.transform = make([]float64, c.order*w)
-	for j, col := range columns {
+	for _, col := range columns {
 		c.unknowns = append(c.unknowns, col.unknown)
-		for k := range 6 {
-			c.transform[k*w+j] = col.motion[k]
+	}
+	c.starts = make([]int32, 1, 7)
+	for k := range 6 {
+		for j, col := range columns {
+			if col.motion[k] != 0 {
+				c.shares = append(c.shares, share{int32(j), col.motion[k]})
+			}
 		}
+		c.starts = append(c.starts, int32(len(c.shares)))
 	}
 }
 

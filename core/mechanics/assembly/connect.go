@@ -7,6 +7,8 @@ import (
 	"strings"
 
 	"gonum.org/v1/gonum/mat"
+
+	"hushframe/core/mechanics/airframe"
 )
 
 // Loose says that the structure falls apart: Pieces lists the names of parts and bodies of each
@@ -91,6 +93,13 @@ func checkConnected(p *Problem, l *layout) error {
 		}
 		f.join(ends[0], ends[1])
 	}
+	for i := range p.Contacts {
+		if c := &p.Contacts[i]; c.Stiffness != [6]float64{} {
+			for _, x := range c.Points {
+				f.join(int(x.Sides[0].Nodes[0]), int(x.Sides[1].Nodes[0]))
+			}
+		}
+	}
 	byRoot := map[int]int{}
 	var pieces [][]string
 	var sizes []int
@@ -137,7 +146,7 @@ func checkBodies(p *Problem) error {
 			if !(in.Mass >= 0) || math.IsInf(in.Mass, 1) {
 				return fmt.Errorf("body %q has a mass of %g kg", body.Name, in.Mass)
 			}
-			if err := in.check(); err != nil {
+			if err := airframe.CheckInertia(in.Tensor); err != nil {
 				return fmt.Errorf("body %q: %w", body.Name, err)
 			}
 		}
@@ -146,21 +155,6 @@ func checkBodies(p *Problem) error {
 				return err
 			}
 		}
-	}
-	return nil
-}
-
-// check reports an inertia tensor that no distribution of mass has: principal moments must not be
-// negative, and none may exceed the sum of the other two.
-func (in Inertia) check() error {
-	t := in.Tensor
-	var eig mat.EigenSym
-	if !eig.Factorize(mat.NewSymDense(3, []float64{t[0], t[3], t[4], t[3], t[1], t[5], t[4], t[5], t[2]}), false) {
-		return fmt.Errorf("its inertia %v is not finite", t)
-	}
-	v := eig.Values(nil)
-	if slack := 1e-9 * v[2]; v[0] < -slack || v[2] > v[0]+v[1]+slack {
-		return fmt.Errorf("principal moments of inertia %.4g, %.4g, %.4g kg·m² are impossible: none may be negative or exceed the sum of the others", v[0], v[1], v[2])
 	}
 	return nil
 }

@@ -62,6 +62,7 @@ func (s *System) Energies(ctx context.Context, ys [][]float64, threads int) (*En
 			}
 		}
 	}
+	s.contactEnergies(nodes, out, threads)
 	return out, nil
 }
 

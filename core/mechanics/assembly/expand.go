@@ -150,5 +150,5 @@ func (s *System) Ordering() sparse.Ordering {
 		}
 		place[u] = i
 	}
-	return sparse.NestedDissection(s.K.Pattern(), place, coords)
+	return sparse.Order(s.K.Pattern(), place, coords)
 }

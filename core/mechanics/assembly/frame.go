@@ -50,7 +50,7 @@ func blame(format string, name string, err error) error {
 func FromAirframe(m *mesh.Mesh, p *airframe.Properties, types func(name string) element.Type) (*Frame, error) {
 	b := &builder{mesh: m, properties: p, types: types, frame: &Frame{}, groups: map[string]int{}, fibres: map[int32][]int32{}}
 	b.frame.Nodes = slices.Clip(m.Nodes) // points of solid elements are appended
-	for _, step := range []func() error{b.readMaterials, b.parts, b.patches, b.links, b.bodies} {
+	for _, step := range []func() error{b.readMaterials, b.readJoints, b.parts, b.patches, b.links, b.contacts, b.bodies} {
 		if err := step(); err != nil {
 			return nil, err
 		}
@@ -64,6 +64,7 @@ type builder struct {
 	types      func(string) element.Type
 	frame      *Frame
 	materials  map[string]airframe.Material
+	joints     map[string]airframe.Joint
 	patchBody  map[string]int
 	groups     map[string]int
 	fibres     map[int32][]int32 // points of solid elements over a node of the mesh
@@ -238,10 +239,6 @@ func (b *builder) links() error {
 	for _, x := range b.properties.Bolts {
 		bolts[x.Bolt] = x
 	}
-	joints := map[string]airframe.Joint{}
-	for _, x := range b.properties.Joints {
-		joints[x.Name] = x
-	}
 	for _, link := range b.mesh.Links {
 		bodies := make([]int, len(link.Patches))
 		for i, k := range link.Patches {
@@ -265,33 +262,28 @@ func (b *builder) links() error {
 			}
 			continue
 		}
-		joint, ok := joints[x.Joint]
-		if !ok {
-			return blame("bolt %q", link.Name, fmt.Errorf("there is no joint %q", x.Joint))
+		joint, err := b.joint(x.Joint, airframe.Each)
+		if err != nil {
+			return blame("bolt %q", link.Name, err)
 		}
-		if err := checkStiffness(joint.Stiffness, true); err != nil {
-			return blame("joint %q", joint.Name, err)
+		if x.Pairs != nil && len(x.Pairs) != len(bodies)-1 {
+			return blame("bolt %q", link.Name, fmt.Errorf("it has the stiffness of %d pairs of plates and clamps %d plates", len(x.Pairs), len(bodies)))
 		}
 		lower := b.mesh.Parts[b.mesh.Patches[link.Patches[0]].Part].Frame
 		t := along(link.Axis, lower.X) // its x is along the bolt, its y near the plate's x
 		axes := Axes{t[1], t[2], t[0]}
 		g := b.group(JointGroup, joint.Name, joint.LossFactor)
 		for i := 1; i < len(bodies); i++ {
+			k := joint.Stiffness
+			if x.Pairs != nil {
+				k = x.Pairs[i-1]
+			}
+			if err := checkStiffness(k, true); err != nil {
+				return blame("joint %q", joint.Name, err)
+			}
 			b.frame.Springs = append(b.frame.Springs, Spring{
-				Group: g, A: bodies[i-1], B: bodies[i], Point: link.Point, Axes: axes, Stiffness: joint.Stiffness,
+				Group: g, A: bodies[i-1], B: bodies[i], Point: link.Point, Axes: axes, Stiffness: k,
 			})
-		}
-	}
-	return nil
-}
-
-var componentNames = [6]string{"x", "y", "z", "rx", "ry", "rz"}
-
-// checkStiffness refuses negative and undefined components, and zero ones where all must resist.
-func checkStiffness(k [6]float64, all bool) error {
-	for c, v := range k {
-		if !(v >= 0) || (all && v == 0) {
-			return fmt.Errorf("stiffness of component %s is %g: it must be positive", componentNames[c], v)
 		}
 	}
 	return nil

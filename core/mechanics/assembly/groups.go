@@ -52,6 +52,7 @@ func (s *System) GroupStiffness(ctx context.Context, ys [][]float64, threads int
 			}
 		}
 	}
+	s.contactStiffness(nodes, out, threads)
 	for _, dst := range out {
 		for r := range n {
 			for q := range r {

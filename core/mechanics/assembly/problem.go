@@ -27,6 +27,7 @@ type Problem struct {
 	Bodies   []Body
 	Welds    [][2]int // pairs of bodies joined into one
 	Springs  []Spring
+	Contacts []Contact
 	Supports []Support
 }
 

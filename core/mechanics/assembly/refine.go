@@ -10,7 +10,7 @@ import (
 // numbers; mid-side nodes become corners. New nodes lie on the quadratic sides, so that the shape does
 // not change, and belong to a patch where all nodes of the side, or of the triangle, do.
 func Refine(m *mesh.Mesh) *mesh.Mesh {
-	out := &mesh.Mesh{Nodes: slices.Clone(m.Nodes), Parts: m.Parts, Links: m.Links}
+	out := &mesh.Mesh{Nodes: slices.Clone(m.Nodes), Parts: m.Parts, Links: m.Links, Contacts: slices.Clone(m.Contacts)}
 	patches := make([][]int32, len(m.Nodes)) // that each node is in
 	for k, p := range m.Patches {
 		for _, v := range p.Nodes {
@@ -60,6 +60,15 @@ func Refine(m *mesh.Mesh) *mesh.Mesh {
 			out.TrianglePart = append(out.TrianglePart, m.TrianglePart[e])
 		}
 	}
+	for i := range out.Contacts {
+		points := slices.Clone(out.Contacts[i].Points)
+		for p := range points {
+			for side := range 2 {
+				points[p].Triangle[side], points[p].Local[side] = child(points[p].Triangle[side], points[p].Local[side])
+			}
+		}
+		out.Contacts[i].Points = points
+	}
 	for e, b := range m.Beams {
 		v := int32(len(out.Nodes))
 		out.Nodes = append(out.Nodes, mixed(m.Nodes, b[:], 1./2, 1./2))
@@ -79,4 +88,17 @@ func mixed(nodes []Vec, list []int32, weights ...float64) (at Vec) {
 		at = add(at, scale(weights[i], nodes[v]))
 	}
 	return at
+}
+
+// child finds a place of a triangle in the four it is cut into: three at corners 0, 1, 2, whose own corners
+// run corner, next mid-side, last mid-side, and the one in the middle.
+func child(triangle int32, local [2]float64) (int32, [2]float64) {
+	l := [3]float64{1 - local[0] - local[1], local[0], local[1]}
+	for i := range 3 {
+		if l[i] >= 0.5 {
+			return 4*triangle + int32(i), [2]float64{2 * l[(i+1)%3], 2 * l[(i+2)%3]}
+		}
+	}
+	// Corners of the middle one are the mid-side nodes of 0-1, 1-2, 2-0, where the coordinate of the facing corner is 0.
+	return 4*triangle + 3, [2]float64{1 - 2*l[0], 1 - 2*l[1]}
 }

@@ -8,12 +8,13 @@
 //	q        modal coordinates, complex, kg^½·m
 //	η_g      loss factor of loss group g
 //	K_g      stiffness of group g in the basis, Φᵀ K_g Φ, full and symmetric
+//	r_g(f)   what a law says of group g at a frequency: its complex stiffness over K_g; 1 where it has none
 //	C        coefficient of velocity in the basis (dampers, spinning rotors), real, often absent
 //	f, ω     frequency of excitation in Hz and rad/s; time dependence e^{+iωt}
 //
 // Motion follows from
 //
-//	[ diag(ω_v²) + i Σ η_g K_g + iω C − ω² I ] q = Φᵀ F
+//	[ diag(ω_v²) + Σ (r_g(f) − 1 + iη_g) K_g + iω C − ω² I ] q = Φᵀ F
 //
 // The damping matrix is not assumed diagonal: a soft lossy mount couples the
 // modes, and only the full matrix has that right. Rigid-body vectors are in
@@ -30,9 +31,10 @@
 //
 // # Method
 //
-// Without C the matrix is a constant one shifted by ω². It is brought to upper
+// Without C and laws the matrix is a constant one shifted by ω². It is brought to upper
 // Hessenberg form once, by unitary reflections, after which each frequency
 // costs O(n²) (A. J. Laub, Efficient multivariable frequency response
-// computations, IEEE Trans. Automatic Control 26, 1981). With C each frequency
-// is a full factorisation with partial pivoting.
+// computations, IEEE Trans. Automatic Control 26, 1981). With C or laws each frequency
+// is a full factorisation with partial pivoting. Spinning rotors couple few motions, and come in by Woodbury's
+// identity; a frame condensed at rest (Rest) answers at any rotor speed.
 package forced

@@ -15,7 +15,8 @@ type Resonance struct {
 }
 
 // Resonances lists where the response may peak: the poles of the system, with
-// its damping and its rotors as they spin, up to a fifth above the highest elastic mode. With a
+// its damping and its rotors as they spin, up to a fifth above the highest elastic mode. Stiffness
+// that depends on frequency is taken near each. With a
 // Rate, or where the poles do not settle, it lists the elastic modes with their own
 // loss factors.
 func (s *System) Resonances() []Resonance {
@@ -31,20 +32,40 @@ func (s *System) Resonances() []Resonance {
 	if s.rate != nil {
 		return out
 	}
-	core, err := s.Core()
-	if err != nil {
-		return out
+	// Laws are taken at some frequencies, each for the poles nearest to it.
+	at := []float64{highest}
+	if s.Varies() {
+		at = at[:0]
+		for f := out[0].Frequency; f < 1.2*highest; f *= lawStep {
+			at = append(at, f)
+		}
 	}
-	poles, err := core.Poles(s.momentum, 0, 1.2*highest)
-	if err != nil {
-		return out
+	var poles []Resonance
+	for k, f := range at {
+		above, below := 0.0, 1.2*highest
+		if k > 0 {
+			above = math.Sqrt(at[k-1] * f)
+		}
+		if k+1 < len(at) {
+			below = math.Sqrt(at[k+1] * f)
+		}
+		core, err := s.Frozen(f).Core()
+		if err != nil {
+			return out
+		}
+		list, err := core.Poles(s.momentum, above, below)
+		if err != nil {
+			return out
+		}
+		for _, p := range list {
+			poles = append(poles, Resonance{p.Frequency, 2 * p.Damping})
+		}
 	}
-	out = out[:0]
-	for _, p := range poles {
-		out = append(out, Resonance{p.Frequency, 2 * p.Damping})
-	}
-	return out
+	return poles
 }
+
+// lawStep is the ratio of the frequencies at which laws are taken to find poles.
+const lawStep = 1.4
 
 // arc is the angle between neighbouring samples on the circle that a single
 // resonance draws in the complex plane: 7.5° puts 12 samples within the
@@ -68,18 +89,9 @@ func Grid(from, to, step float64, resonances []Resonance) []float64 {
 	grid = append(grid, to)
 	least := step
 	for _, r := range resonances {
-		half := r.Frequency * r.LossFactor / 2
-		if !(half > 0) {
-			half = r.Frequency * 1e-5 // undamped: close enough to be seen
-		}
-		least = min(least, half)
-		for k := -11; k <= 11; k++ {
-			f := r.Frequency + half*math.Tan(float64(k)*arc)
-			if f > from && f < to {
-				grid = append(grid, f)
-			}
-		}
+		least = min(least, r.half())
 	}
+	grid = append(grid, Around(from, to, resonances)...)
 	sort.Float64s(grid)
 	kept := grid[:1]
 	for _, f := range grid[1:] {
@@ -89,4 +101,26 @@ func Grid(from, to, step float64, resonances []Resonance) []float64 {
 	}
 	kept[len(kept)-1] = to
 	return kept
+}
+
+// half is half the half-power width, Hz.
+func (r Resonance) half() float64 {
+	if half := r.Frequency * r.LossFactor / 2; half > 0 {
+		return half
+	}
+	return r.Frequency * 1e-5 // undamped: close enough to be seen
+}
+
+// Around gives the frequencies that Grid adds around resonances, ascending, between from and to.
+func Around(from, to float64, resonances []Resonance) []float64 {
+	var out []float64
+	for _, r := range resonances {
+		for k := -11; k <= 11; k++ {
+			if f := r.Frequency + r.half()*math.Tan(float64(k)*arc); f > from && f < to {
+				out = append(out, f)
+			}
+		}
+	}
+	sort.Float64s(out)
+	return out
 }

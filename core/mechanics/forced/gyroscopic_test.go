@@ -289,7 +289,7 @@ func TestPolesShareAPeak(t *testing.T) {
 // However light the damping, and although spinning moves them, the grid finds
 // every pole as a peak: each has twelve samples within its half-power points.
 func TestNoPeakIsMissed(t *testing.T) {
-	for _, loss := range []float64{1e-2, 1e-4, 1e-6} {
+	for _, loss := range []float64{1e-2, 1e-4, 1e-5, 1e-6} {
 		b := frame(14, 3, 10)
 		for g := range b.Groups {
 			b.Groups[g].LossFactor = loss

@@ -120,10 +120,15 @@ func (r *hessenberg) turnBack(x []complex128) []complex128 {
 // elimination with partial pivoting in the scratch matrix work (n² long). It
 // reports false when the matrix is singular.
 func (r *hessenberg) solve(shift float64, work []complex128, sides ...[]complex128) bool {
+	return r.solveAt(complex(shift, 0), work, sides...)
+}
+
+// solveAt is solve with a complex shift.
+func (r *hessenberg) solveAt(shift complex128, work []complex128, sides ...[]complex128) bool {
 	n := r.n
 	copy(work, r.h)
 	for i := range n {
-		work[i*n+i] -= complex(shift, 0)
+		work[i*n+i] -= shift
 	}
 	for k := range n {
 		row := work[k*n : k*n+n]

@@ -22,6 +22,8 @@ type Peak struct {
 	// Input is the strongest input and InputShare what it makes alone, over Density.
 	Input      int
 	InputShare float64
+	// RotorShares is what each rotor makes alone, over Density, in the order of their inputs.
+	RotorShares []float64
 }
 
 // Peaks finds the peaks of each axis with at least the given prominence (1.26
@@ -117,9 +119,14 @@ func (d *driver) explain(p *Peak, b Broadband) error {
 	strongest := -1.0
 	total := 0.0
 	for j, in := range s.inputs {
-		if own := b.density(in) * power(d.rates[p.Axis][j]); own > strongest {
+		own := b.density(in) * power(d.rates[p.Axis][j])
+		if own > strongest {
 			strongest, p.Input = own, j
 		}
+		if j == 0 || in.Rotor != s.inputs[j-1].Rotor {
+			p.RotorShares = append(p.RotorShares, 0)
+		}
+		p.RotorShares[len(p.RotorShares)-1] += own
 	}
 	for _, part := range b.drives(s.inputs, p.Frequency) {
 		h := part.sum(d.rates[p.Axis])
@@ -146,6 +153,9 @@ func (d *driver) explain(p *Peak, b Broadband) error {
 		p.Shares[v] /= total
 	}
 	p.InputShare = strongest / total
+	for r := range p.RotorShares {
+		p.RotorShares[r] /= total
+	}
 	return nil
 }
 

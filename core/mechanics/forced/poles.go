@@ -27,7 +27,7 @@ type Pole struct {
 // the modes left out adds to that answer.
 type Core struct {
 	square []float64
-	loss   []float64
+	soft   []complex128 // what the stiffness has beyond square: losses, and laws taken at one frequency
 	rate   []float64
 	tilt   [][]float64
 	// back[c] gives coordinate c in terms of the vectors in use.
@@ -35,8 +35,12 @@ type Core struct {
 	momentum []float64
 }
 
-// Core condenses the system. It fails when the small eigenproblem does.
+// Core condenses the system. It fails when the small eigenproblem does. It
+// panics where stiffness depends on frequency; take it at one by Frozen.
 func (s *System) Core() (*Core, error) {
+	if s.Varies() {
+		panic("forced: poles of a system whose stiffness depends on frequency")
+	}
 	n := len(s.vectors)
 	c := &Core{momentum: s.momentum}
 	var left []int
@@ -60,7 +64,14 @@ func (s *System) Core() (*Core, error) {
 		}
 		c.back, c.square = append(c.back, row), append(c.square, k)
 	}
-	c.loss = c.project(s.loss, n)
+	for _, x := range c.project(s.loss, n) {
+		c.soft = append(c.soft, complex(0, x))
+	}
+	if s.shift != nil {
+		for i, x := range c.project(s.shift, n) {
+			c.soft[i] += complex(x, 0)
+		}
+	}
 	if s.rate != nil {
 		c.rate = c.project(s.rate, n)
 	}
@@ -168,7 +179,7 @@ func inner(x, y []float64) float64 {
 // coupling, with a frequency between above and below in Hz, ascending. Motion at 0 Hz and
 // overcritically damped motion are not listed.
 //
-// The equation [Λ + iL + iωC − ω²] q = 0 is solved as a first-order one for (√Λ q,
+// The equation [Λ + S + iωC − ω²] q = 0, S the losses and what laws change, is solved as a first-order one for (√Λ q,
 // q′); hysteretic damping stands for positive frequencies only, and so only
 // their half of the eigenvalues counts. It fails when the iteration does not settle.
 func (c *Core) Poles(momenta []float64, above, below float64) ([]Pole, error) {
@@ -195,7 +206,7 @@ func (c *Core) Poles(momenta []float64, above, below float64) ([]Pole, error) {
 		for j := range m {
 			row[states+j] = complex(-spin[i*m+j], 0)
 			if at[j] >= 0 {
-				row[at[j]] -= complex(0, c.loss[i*m+j]/math.Sqrt(c.square[j]))
+				row[at[j]] -= c.soft[i*m+j] / complex(math.Sqrt(c.square[j]), 0)
 			}
 		}
 	}
@@ -266,7 +277,7 @@ func (c *Core) shape(omega complex128, spin []float64, others [][]complex128) []
 	for range 2 {
 		for i := range m {
 			for j := range m {
-				a[i*m+j] = complex(0, c.loss[i*m+j]) + 1i*omega*complex(spin[i*m+j], 0)
+				a[i*m+j] = c.soft[i*m+j] + 1i*omega*complex(spin[i*m+j], 0)
 			}
 			a[i*m+i] += complex(c.square[i], 0) - omega*omega
 		}
@@ -309,7 +320,7 @@ func (c *Core) expand(x []complex128) []complex128 {
 // Synchronous gives the poles at which the rotors turn with the motion: each
 // coupling has the momentum ratio times the pole's own angular frequency (ratio
 // is Jp times its speed over ω, kg·m², signed by spin). With it the equation is
-// one in ω²: [Λ + iL] q = ω² [I − i Σ ratio (a bᵀ − b aᵀ)] q. Velocity terms other
+// one in ω²: [Λ + S] q = ω² [I − i Σ ratio (a bᵀ − b aᵀ)] q. Velocity terms other
 // than gyroscopic ones must be absent.
 func (c *Core) Synchronous(ratio []float64, above, below float64) ([]Pole, error) {
 	if c.rate != nil {
@@ -318,11 +329,11 @@ func (c *Core) Synchronous(ratio []float64, above, below float64) ([]Pole, error
 	m := len(c.square)
 	spin := c.spin(ratio)
 	mass := make([]complex128, m*m)
-	sides := make([][]complex128, m) // columns of Λ + iL
+	sides := make([][]complex128, m) // columns of Λ + S
 	for j := range m {
 		sides[j] = make([]complex128, m)
 		for i := range m {
-			sides[j][i] = complex(0, c.loss[i*m+j])
+			sides[j][i] = c.soft[i*m+j]
 			mass[i*m+j] = complex(0, -spin[i*m+j])
 		}
 		sides[j][j] += complex(c.square[j], 0)

@@ -20,20 +20,21 @@ func (s *System) Nodes(q []complex128) []complex128 {
 }
 
 // Dissipation gives the mean power that each loss group takes at modal
-// coordinates q, W: ½ ω η_g qᴴ K_g q, in the order of Basis.Groups, and what
+// coordinates q, W: ½ ω η_g qᴴ K_g q, with the loss at the frequency, in the order of Basis.Groups, and what
 // the symmetric part of C takes, ½ ω² qᴴ C q.
 func (s *System) Dissipation(frequency float64, q []complex128) (groups []float64, rate float64) {
 	omega := angular(frequency)
 	all := len(s.basis.Frequency)
 	groups = make([]float64, len(s.basis.Groups))
-	for g, group := range s.basis.Groups {
+	for g := range s.basis.Groups {
+		group := &s.basis.Groups[g]
 		sum := 0.0
 		for i, v := range s.vectors {
 			for j, w := range s.vectors {
 				sum += group.Stiffness[v*all+w] * real(cmplx.Conj(q[i])*q[j])
 			}
 		}
-		groups[g] = omega / 2 * group.LossFactor * sum
+		groups[g] = omega / 2 * imag(group.At(frequency)) * sum
 	}
 	if s.rate != nil {
 		n := len(s.vectors)

@@ -3,6 +3,7 @@ package forced
 import (
 	"fmt"
 	"math"
+	"sync"
 
 	"hushframe/core/mechanics/modal"
 )
@@ -34,12 +35,15 @@ type System struct {
 	basis   *modal.Basis
 	vectors []int     // vectors of the basis in use, ascending
 	square  []float64 // ω_v²
-	loss    []float64 // Σ η_g K_g, n×n
+	loss    []float64 // Σ η_g K_g, n×n, over groups and floors that do not depend on frequency
+	shift   []float64 // change of stiffness against square, n×n, or nil: laws taken at one frequency
+	laws    []law     // groups whose stiffness depends on frequency
 	rate    []float64 // C without gyroscopic couplings, n×n, or nil
 	inputs  []Input
 	load    [][]float64  // load[input][v]: modal force of a unit of the input
 	gyro    [3][]float64 // gyro[axis][v]: rotation of the gyro in vector v, rad
-	reduced *hessenberg  // when rate is nil
+	reduced *hessenberg  // when rate is nil and there are no laws
+	own     func() *spectral
 	// Gyroscopic couplings: rows 2r and 2r+1 of tilt are those of rotor r.
 	tilt     [][]float64
 	momentum []float64
@@ -66,11 +70,20 @@ func New(basis *modal.Basis, opt Options) (*System, error) {
 		s.square[i] = sq(2 * math.Pi * basis.Frequency[v])
 	}
 	s.loss = make([]float64, n*n)
-	for _, g := range basis.Groups {
+	for k := range basis.Groups {
+		g := &basis.Groups[k]
 		if !(g.LossFactor >= 0) || math.IsInf(g.LossFactor, 0) {
 			return nil, fmt.Errorf("loss factor of %s %s is %g", g.Kind, g.Name, g.LossFactor)
 		}
 		s.add(s.loss, g.Stiffness, g.LossFactor)
+		if g.Law.Varies() {
+			if err := g.Law.Check(); err != nil {
+				return nil, fmt.Errorf("the law of %s %s: %w", g.Kind, g.Name, err)
+			}
+			x := law{law: &g.Law, stiffness: make([]float64, n*n)}
+			s.add(x.stiffness, g.Stiffness, 1)
+			s.laws = append(s.laws, x)
+		}
 	}
 	if opt.Rate != nil {
 		s.rate = make([]float64, n*n)
@@ -89,9 +102,7 @@ func New(basis *modal.Basis, opt Options) (*System, error) {
 			}
 		}
 	}
-	if s.rate == nil {
-		s.reduced = reduce(s.matrix(0), n) // nothing gyroscopic is in it at 0
-	}
+	s.prepare()
 	return s, nil
 }
 
@@ -158,12 +169,34 @@ func (s *System) Inputs() []Input { return s.inputs }
 // are in this order.
 func (s *System) Vectors() []int { return s.vectors }
 
+// prepare brings the matrix to its form for many frequencies, where it is constant but for ω².
+func (s *System) prepare() {
+	s.own = sync.OnceValue(func() *spectral {
+		if s.reduced == nil {
+			return nil
+		}
+		return s.spectral()
+	})
+	if s.rate == nil && len(s.laws) == 0 {
+		s.reduced = reduce(s.still(0, make([]complex128, len(s.loss))), len(s.vectors))
+	}
+}
+
 // matrix builds the dynamic stiffness at ω, row-major.
 func (s *System) matrix(omega float64) []complex128 {
+	a := s.still(omega, make([]complex128, len(s.loss)))
+	s.addGyroscopic(a, complex(0, omega))
+	return a
+}
+
+// still builds the dynamic stiffness at ω without gyroscopic couplings in a.
+func (s *System) still(omega float64, a []complex128) []complex128 {
 	n := len(s.vectors)
-	a := make([]complex128, n*n)
 	for i, x := range s.loss {
 		a[i] = complex(0, x)
+	}
+	for i, x := range s.shift {
+		a[i] += complex(x, 0)
 	}
 	for i, x := range s.rate {
 		a[i] += complex(0, omega*x)
@@ -171,20 +204,36 @@ func (s *System) matrix(omega float64) []complex128 {
 	for i, x := range s.square {
 		a[i*n+i] += complex(x-omega*omega, 0)
 	}
-	s.addGyroscopic(a, complex(0, omega))
+	for _, l := range s.laws {
+		f := l.law.At(omega/(2*math.Pi)) - 1
+		for i, x := range l.stiffness {
+			if x != 0 {
+				a[i] += f * complex(x, 0)
+			}
+		}
+	}
 	return a
 }
 
 // Damping gives the loss factor of each vector in use on its own, η_v =
-// Σ η_g (K_g)_vv / ω_v², 0 for rigid-body vectors. Half of it is the damping
+// Σ η_g (K_g)_vv / Σ (K_g)_vv, 0 for rigid-body vectors; groups that depend on frequency
+// are taken at that of the vector. Half of it is the damping
 // ratio. Coupling by damping between modes is not in it.
 func (s *System) Damping() []float64 {
 	n := len(s.vectors)
 	eta := make([]float64, n)
 	for i, k := range s.square {
-		if k > 0 {
-			eta[i] = s.loss[i*n+i] / k
+		if !(k > 0) {
+			continue
 		}
+		whole := complex(k, s.loss[i*n+i])
+		if s.shift != nil {
+			whole += complex(s.shift[i*n+i], 0)
+		}
+		for _, l := range s.laws {
+			whole += (l.law.At(math.Sqrt(k)/(2*math.Pi)) - 1) * complex(l.stiffness[i*n+i], 0)
+		}
+		eta[i] = imag(whole) / real(whole)
 	}
 	return eta
 }

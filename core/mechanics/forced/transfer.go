@@ -5,7 +5,6 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
-	"sync"
 )
 
 // Transfer holds the gyro rate per unit of each input.
@@ -43,37 +42,25 @@ func (s *System) TransferSpun(ctx context.Context, frequency []float64, momenta 
 			t.Rate[axis][j] = make([]complex128, len(frequency))
 		}
 	}
-	threads = max(1, min(threads, len(frequency)))
-	failed := make([]error, threads)
-	var group sync.WaitGroup
-	for w := range threads {
-		group.Go(func() {
-			d := s.driver(momenta != nil)
-			for k := w; k < len(frequency); k += threads {
-				if err := ctx.Err(); err != nil {
-					failed[w] = err
-					return
-				}
-				if momenta != nil {
-					d.s = s.Spun(momenta[k])
-				}
-				if err := d.gyroRates(frequency[k]); err != nil {
-					failed[w] = err
-					return
-				}
-				for axis := range 3 {
-					for j, h := range d.rates[axis] {
-						t.Rate[axis][j][k] = h
-					}
+	err := s.each(ctx, len(frequency), threads, func() func(k int) error {
+		d := s.driver(momenta != nil)
+		return func(k int) error {
+			if momenta != nil {
+				d.s = s.Spun(momenta[k])
+			}
+			if err := d.gyroRates(frequency[k]); err != nil {
+				return err
+			}
+			for axis := range 3 {
+				for j, h := range d.rates[axis] {
+					t.Rate[axis][j][k] = h
 				}
 			}
-		})
-	}
-	group.Wait()
-	for _, err := range failed {
-		if err != nil {
-			return nil, err
+			return nil
 		}
+	})
+	if err != nil {
+		return nil, err
 	}
 	return t, nil
 }
@@ -182,7 +169,7 @@ func (s *System) driver(spins bool) *driver {
 	n := len(s.vectors)
 	d := &driver{s: s, work: make([]complex128, n*n)}
 	outputs, loads := s.gyro[:], s.load
-	if s.reduced != nil && (spins || s.spinning()) {
+	if s.rate == nil && (spins || s.spinning()) {
 		outputs = append(append([][]float64{}, outputs...), s.tilt...)
 		loads = append(append([][]float64{}, loads...), s.tilt...)
 		d.p = make([]complex128, len(s.tilt)*len(s.tilt))
@@ -216,12 +203,8 @@ func (s *System) driver(spins bool) *driver {
 // gyroRates fills d.rates at a frequency.
 func (d *driver) gyroRates(frequency float64) error {
 	omega := angular(frequency)
-	if d.s.reduced != nil {
-		for k := range d.side {
-			copy(d.side[k], d.output[k])
-		}
-		// The matrix at rest is symmetric and so its own transpose.
-		if d.s.reduced.solve(omega*omega, d.work, d.side...) && d.combine(omega) {
+	if d.s.rate == nil {
+		if d.rest(omega) && d.combine(omega) {
 			return nil
 		}
 		if !d.s.spinning() {
@@ -230,6 +213,22 @@ func (d *driver) gyroRates(frequency float64) error {
 		// The frame at rest has no bound here; with spinning rotors it may have.
 	}
 	return d.direct(frequency)
+}
+
+// rest fills d.side with what the outputs need, the rotors taken as at rest;
+// false when there are dampers or no bound.
+func (d *driver) rest(omega float64) bool {
+	if d.s.rate != nil {
+		return false
+	}
+	for k := range d.side {
+		copy(d.side[k], d.output[k])
+	}
+	// The matrix at rest is symmetric and so its own transpose.
+	if d.s.reduced == nil {
+		return factorSolve(d.s.still(omega, d.work), len(d.s.vectors), d.side...)
+	}
+	return d.s.reduced.solve(omega*omega, d.work, d.side...)
 }
 
 // combine fills d.rates from the solutions, with the gyroscopic couplings.
@@ -311,22 +310,19 @@ func angular(frequency float64) float64 {
 
 func finite(z []complex128) bool {
 	for _, x := range z {
-		if cmplx.IsNaN(x) || cmplx.IsInf(x) {
+		if 0*real(x)+0*imag(x) != 0 { // true of a NaN and an infinity
 			return false
 		}
 	}
 	return true
 }
 
-// Respond gives the complex gyro rate per axis, rad/s, at Frequency[k] under
-// coherent loads: load gives the complex amplitude of each input, N or N·m.
-func (t *Transfer) Respond(k int, load func(Input) complex128) [3]complex128 {
-	var out [3]complex128
-	for j, in := range t.Inputs {
-		f := load(in)
-		for axis := range out {
-			out[axis] += t.Rate[axis][j][k] * f
+// At gives the rates at Frequency[k], [axis][input].
+func (t *Transfer) At(k int) (rates [3][]complex128) {
+	for axis := range rates {
+		for j := range t.Inputs {
+			rates[axis] = append(rates[axis], t.Rate[axis][j][k])
 		}
 	}
-	return out
+	return rates
 }

@@ -1,68 +1,15 @@
 package laminate_test
 
+// The stiffness of the laminates of testdata/known is checked with the rows, in core/known/cases.
+
 import (
 	"errors"
 	"math"
 	"strings"
 	"testing"
 
-	"hushframe/core/known"
 	"hushframe/core/mechanics/laminate"
 )
-
-const plates = "B_plates.json"
-
-func upper(m [3][3]float64) []float64 {
-	return []float64{m[0][0], m[0][1], m[0][2], m[1][1], m[1][2], m[2][2]}
-}
-
-func TestReducedStiffness(t *testing.T) {
-	for _, row := range known.Rows(t, plates, "B-QBAR-") {
-		var setup struct {
-			Properties known.Constants
-			Angle      float64 `json:"angle_deg"`
-		}
-		row.Decode(t, &setup)
-		row.Check(t, 1, upper(setup.Properties.Material().Reduced(setup.Angle*math.Pi/180))...)
-	}
-}
-
-// Rows B-CLT-*: A, B, D, uncorrected transverse shear, inertia, and the moduli they imply.
-func TestClassicalStiffness(t *testing.T) {
-	for _, row := range known.Rows(t, plates, "B-CLT-") {
-		s, err := laminate.FactoredStack(row.Plies(t), 1)
-		if err != nil {
-			t.Fatalf("row %s: %v", row.ID, err)
-		}
-		switch row.ID[strings.LastIndex(row.ID, "-")+1:] {
-		case "A":
-			row.Check(t, 1, upper(s.A)...)
-		case "B":
-			row.Check(t, 1, upper(s.B)...)
-		case "D":
-			row.Check(t, 1, upper(s.D)...)
-		case "SHEAR":
-			row.Check(t, 1, s.Shear[1][1], s.Shear[0][1], s.Shear[0][0], s.Mass, s.Coupling, s.Rotary)
-		case "ENG":
-			in, flex := s.Moduli()
-			row.Check(t, 1, in.Ex, in.Ey, in.Gxy, in.Nuxy, flex.Ex, flex.Ey, flex.Gxy)
-		default:
-			t.Errorf("row %s is not checked", row.ID)
-		}
-	}
-}
-
-func TestShearFromEquilibrium(t *testing.T) {
-	for _, row := range known.Rows(t, plates, "B-SHEARCYL-") {
-		plies := row.Plies(t)
-		s, err := laminate.Stack(plies)
-		if err != nil {
-			t.Fatalf("row %s: %v", row.ID, err)
-		}
-		plain, _ := laminate.FactoredStack(plies, 1)
-		row.Check(t, 1, s.Shear[0][0], s.Shear[0][0]/plain.Shear[0][0])
-	}
-}
 
 // One ply at any angle is a homogeneous plate: equilibrium must give exactly 5/6, both ways.
 func TestOnePlyHasFiveSixths(t *testing.T) {

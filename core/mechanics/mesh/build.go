@@ -61,13 +61,17 @@ const beamsPerStandoff = 4
 type Problem struct {
 	Part  string // name of a plate, or empty
 	Patch string // name of a patch, or empty
-	Text  string
+	// Contact is the name of a contact, or empty.
+	Contact string
+	Text    string
 	// Unknown is true when Part names no plate, Size when the wanted size is to blame.
 	Unknown, Size bool
 }
 
 func (p *Problem) Error() string {
 	switch {
+	case p.Contact != "":
+		return fmt.Sprintf("contact %s: %s", p.Contact, p.Text)
 	case p.Patch != "":
 		return fmt.Sprintf("patch %s on plate %s: %s", p.Patch, p.Part, p.Text)
 	case p.Part != "":
@@ -108,6 +112,11 @@ func Build(ctx context.Context, g *airframe.Geometry, o Options) (*Mesh, error) 
 	}
 	for i := range g.Bolts {
 		m.addBolt(&g.Bolts[i])
+	}
+	for i := range g.Contacts {
+		if err := m.addContact(g, &g.Contacts[i]); err != nil {
+			return nil, err
+		}
 	}
 	return m, nil
 }

@@ -14,6 +14,9 @@ import (
 	"hushframe/core/mechanics/outline"
 )
 
+// level is the frame of a plate in the airframe's x-y plane.
+var level = airframe.Frame{X: airframe.Vec{1, 0, 0}, Y: airframe.Vec{0, 1, 0}, Z: airframe.Vec{0, 0, 1}}
+
 func at(x, y float64) outline.Point { return outline.Point{X: x, Y: y} }
 
 // small is a frame of two plates, one of them flipped over and turned, with a bolt and a standoff.

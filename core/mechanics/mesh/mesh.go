@@ -23,6 +23,7 @@ type Mesh struct {
 	EdgePart []int32
 	Patches  []Patch // same order and names as in the geometry
 	Links    []Link
+	Contacts []Contact
 }
 
 // Part is a plate or a standoff.
@@ -56,4 +57,25 @@ type Link struct {
 	Nodes   []int32 // beam end nodes, for a standoff
 	Point   airframe.Vec
 	Axis    airframe.Vec
+}
+
+// Contact is a set of points at which two plates are tied.
+type Contact struct {
+	Name  string
+	Parts [2]int32
+	Area  bool // points stand for areas, not for lengths
+	// Axes of the springs.
+	Axes   airframe.Frame
+	Points []ContactPoint
+}
+
+// ContactPoint is where a point of a contact lies in a triangle of either part.
+type ContactPoint struct {
+	At       airframe.Vec
+	Measure  float64 // m² or m that it stands for
+	Triangle [2]int32
+	// Local are the area coordinates of corners 1 and 2 in each triangle, that of
+	// corner 0 being the rest. The place they give may lie off At, by half the
+	// thickness and more; the motion is carried over rigidly.
+	Local [2][2]float64
 }

@@ -67,6 +67,8 @@ const (
 	// dependent is the flexibility, of loads scaled to unit own flexibility, below which a combination
 	// of static answers adds nothing.
 	dependent = 1e-10
+	// balanced is what is left of a load, over the load, that counts as nothing.
+	balanced = 1e-7
 	// massless is the modal mass, relative to the greatest, below which a combination of static answers
 	// has no frequency worth a number.
 	massless = 1e-12
@@ -84,7 +86,9 @@ func (b *span) residuals(ctx context.Context, places []Place, res *eigen.Result)
 	}
 	sigma, highest := res.Shift, res.Values[len(res.Values)-1]
 	rate := -sigma / (highest - sigma)
-	b.balance(f, count)
+	if f, count = b.left(f, count); count == 0 {
+		return nil
+	}
 	right := slices.Clone(f) // A x
 	x, mx := make([]float64, len(f)), make([]float64, len(f))
 	for err, sweep := rate, 1; ; err, sweep = err*rate, sweep+1 {
@@ -117,6 +121,30 @@ func (b *span) residuals(ctx context.Context, places []Place, res *eigen.Result)
 	}
 	dense.Rotate(len(pairs), count, b.n, combinations, x, b.threads)
 	return b.extend(Residual, frequency, x[:len(pairs)*b.n])
+}
+
+// left takes from the loads what the vectors so far balance, and drops those of
+// which nothing but rounding is left: where the vectors are all that the structure has.
+func (b *span) left(f []float64, count int) ([]float64, int) {
+	size := func(k int) (most float64) {
+		for _, x := range f[k*b.n : (k+1)*b.n] {
+			most = max(most, math.Abs(x))
+		}
+		return most
+	}
+	before := make([]float64, count)
+	for k := range count {
+		before[k] = size(k)
+	}
+	b.balance(f, count)
+	kept := 0
+	for k := range count {
+		if size(k) > balanced*before[k] {
+			copy(f[kept*b.n:], f[k*b.n:(k+1)*b.n])
+			kept++
+		}
+	}
+	return f[:kept*b.n], kept
 }
 
 // symmetric returns the mean of a matrix and its transpose.

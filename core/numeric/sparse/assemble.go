@@ -5,6 +5,7 @@ import (
 	"math"
 	"runtime"
 	"slices"
+	"sync"
 
 	"hushframe/core/numeric/dense"
 )
@@ -16,10 +17,10 @@ import (
 // a(a+1)/2+b. Rows follow the order of the element's unknowns.
 type Assembler struct {
 	pattern  *Pattern
-	elements []int   // start of each element's entries in places
-	order    []int   // number of unknowns of each element
-	places   []int32 // place of each packed entry, see place
-	val      []float64
+	elements []int     // start of each element's entries in places
+	order    []int     // number of unknowns of each element
+	places   []int32   // place of each packed entry, see place
+	val      []float64 // nil as long as nothing has been added
 }
 
 // A place is the index of an entry, or dropped, or -2 minus the index of a diagonal entry to which the packed entry
@@ -30,7 +31,13 @@ const dropped = -1
 // unknowns of element e; a negative one is left out (its rows and columns are dropped), and one that occurs several
 // times gets the sum of its rows and columns. Unknowns in no element get a diagonal entry only.
 // It panics when an unknown is not below n.
-func NewAssembler(n int, elements [][]int32) *Assembler {
+func NewAssembler(n int, elements [][]int32) *Assembler { return NewAssemblerThreads(n, elements, 1) }
+
+// NewAssemblerThreads is NewAssembler with the given number of threads (0 means one per processor).
+func NewAssemblerThreads(n int, elements [][]int32, threads int) *Assembler {
+	if threads <= 0 {
+		threads = runtime.GOMAXPROCS(0)
+	}
 	a := &Assembler{elements: make([]int, len(elements)+1), order: make([]int, len(elements))}
 	touching := make([]int, n+1)
 	for e, unknowns := range elements {
@@ -65,45 +72,70 @@ func NewAssembler(n int, elements [][]int32) *Assembler {
 	for i := range a.places {
 		a.places[i] = dropped
 	}
+	// Ranges of columns are dealt with apart: first their rows, then, the start of each known, the places.
+	const share = 2048
+	shares := (n + share - 1) / share
+	workspaces := sync.Pool{New: func() any {
+		where := slices.Repeat([]int32{-1}, n)
+		return &where
+	}}
 	p := &Pattern{N: n, Ptr: make([]int, n+1)}
-	where := make([]int32, n)
-	for i := range where {
-		where[i] = -1
-	}
-	for j := range n {
-		start := len(p.Row)
-		p.Row = append(p.Row, int32(j))
-		where[j] = 0
-		uses := users[touching[j]:touching[j+1]]
-		for k, u := range uses {
-			if k > 0 && uses[k-1].element == u.element {
-				continue
-			}
-			for _, i := range elements[u.element] {
-				if int(i) > j && where[i] < 0 {
-					where[i] = 0
-					p.Row = append(p.Row, i)
+	parts := make([][]int32, shares)
+	dense.Parallel(threads, shares, func(t int) {
+		where := workspaces.Get().(*[]int32)
+		defer workspaces.Put(where)
+		var rows []int32
+		from := t * share
+		last := 0 // start of the last column
+		for j := from; j < min(n, from+share); j++ {
+			start, uses := len(rows), users[touching[j]:touching[j+1]]
+			if j > from && len(uses) > 0 && slices.EqualFunc(uses, users[touching[j-1]:touching[j]], func(x, y use) bool { return x.element == y.element }) {
+				// In the elements of the unknown before, as the unknowns of a node are: its column without the first row.
+				rows = append(rows, rows[last+1:start]...)
+			} else {
+				rows = append(rows, int32(j))
+				(*where)[j] = 0
+				for k, u := range uses {
+					if k > 0 && uses[k-1].element == u.element {
+						continue
+					}
+					for _, i := range elements[u.element] {
+						if int(i) > j && (*where)[i] < 0 {
+							(*where)[i] = 0
+							rows = append(rows, i)
+						}
+					}
+				}
+				slices.Sort(rows[start:])
+				for _, i := range rows[start:] {
+					(*where)[i] = -1
 				}
 			}
+			p.Ptr[j+1] = len(rows) - start
+			last = start
 		}
-		rows := p.Row[start:]
-		slices.Sort(rows)
-		if len(p.Row) > math.MaxInt32 {
-			panic("sparse: NewAssembler: more entries than 32-bit places can number")
-		}
-		for k, i := range rows {
-			where[i] = int32(start + k)
-		}
-		for _, u := range uses {
-			a.place(u.element, int(u.position), int32(j), elements[u.element], where)
-		}
-		for _, i := range rows {
-			where[i] = -1
-		}
-		p.Ptr[j+1] = len(p.Row)
+		parts[t] = rows
+	})
+	for j := range n {
+		p.Ptr[j+1] += p.Ptr[j]
 	}
+	if p.Ptr[n] > math.MaxInt32 {
+		panic("sparse: NewAssembler: more entries than 32-bit places can number")
+	}
+	p.Row = slices.Concat(parts...)
+	dense.Parallel(threads, shares, func(t int) {
+		where := workspaces.Get().(*[]int32)
+		defer workspaces.Put(where)
+		for j := t * share; j < min(n, (t+1)*share); j++ {
+			for k := p.Ptr[j]; k < p.Ptr[j+1]; k++ {
+				(*where)[p.Row[k]] = int32(k)
+			}
+			for _, u := range users[touching[j]:touching[j+1]] {
+				a.place(u.element, int(u.position), int32(j), elements[u.element], *where)
+			}
+		}
+	})
 	a.pattern = p
-	a.val = make([]float64, len(p.Row))
 	return a
 }
 
@@ -130,7 +162,7 @@ func (a *Assembler) Pattern() *Pattern { return a.pattern }
 // and mass, say) are added side by side.
 func (a *Assembler) Fork() *Assembler {
 	b := *a
-	b.val = make([]float64, len(a.val))
+	b.val = nil
 	return &b
 }
 
@@ -141,12 +173,13 @@ func (a *Assembler) Add(e int, packed []float64) {
 	if len(packed) != len(places) {
 		panic(fmt.Sprintf("sparse: Add: element %d has %d unknowns and %d packed entries", e, a.order[e], len(packed)))
 	}
+	val := a.values()
 	for k, v := range packed {
 		switch at := places[k]; {
 		case at >= 0:
-			a.val[at] += v
+			val[at] += v
 		case at != dropped:
-			a.val[-2-at] += 2 * v
+			val[-2-at] += 2 * v
 		}
 	}
 }
@@ -177,7 +210,15 @@ func (a *Assembler) AddAll(threads int, compute func(e int, packed []float64)) {
 
 // Matrix hands over the matrix added so far and begins a new one, all zero, with the same pattern.
 func (a *Assembler) Matrix() *Symmetric {
-	s := &Symmetric{N: a.pattern.N, Ptr: a.pattern.Ptr, Row: a.pattern.Row, Val: a.val}
-	a.val = make([]float64, len(a.val))
+	s := &Symmetric{N: a.pattern.N, Ptr: a.pattern.Ptr, Row: a.pattern.Row, Val: a.values()}
+	a.val = nil
 	return s
+}
+
+// values are those added so far.
+func (a *Assembler) values() []float64 {
+	if a.val == nil {
+		a.val = make([]float64, len(a.pattern.Row))
+	}
+	return a.val
 }

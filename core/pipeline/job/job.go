@@ -126,6 +126,15 @@ type Verdict struct {
 	Value  string `json:"value,omitempty"`
 	Bound  string `json:"bound,omitempty"`
 	Margin string `json:"margin,omitempty"`
+	// Measured is value and margin as numbers; nil where there is no margin.
+	Measured *Measured `json:"measured,omitempty"`
+}
+
+// Measured is a value with its margin in SI units.
+type Measured struct {
+	Value     float64 `json:"value"`
+	Margin    float64 `json:"margin"`
+	Dimension string  `json:"dimension,omitempty"` // of a quantity
 }
 
 // Diagnose turns the fault of a stage into diagnostics with the place in the

@@ -377,6 +377,6 @@ func (r *Requirement) compare(v *Verdict, figure cty.Value, bound any, t stage.T
 		}
 	}
 	v.Holds = margin >= 0
-	v.Margin = change(margin)
+	v.Margin, v.Measured = change(margin), &Measured{Value: x, Margin: margin, Dimension: t.Dimension}
 	finish()
 }

@@ -3,12 +3,14 @@ package job_test
 import (
 	"context"
 	"math"
+	"strconv"
 	"strings"
 	"testing"
 
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/job"
 	"hushframe/core/pipeline/job/jobtest"
+	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/stage"
 )
 
@@ -90,6 +92,23 @@ func TestVerdicts(t *testing.T) {
 			if strings.HasSuffix(got.Shown, "...") {
 				c.want.Shown = c.want.Shown[:len(got.Shown)-3] + "..."
 			}
+			// The numbers are those of the texts.
+			if m := got.Measured; (m != nil) != (c.want.Margin != "") {
+				t.Errorf("measured %+v beside the margin %q", m, c.want.Margin)
+			} else if m != nil {
+				for text, x := range map[string]float64{got.Value: m.Value, strings.TrimPrefix(got.Margin, "+"): m.Margin} {
+					want := stage.Quantity{}
+					if m.Dimension == "" {
+						want.SI, _ = strconv.ParseFloat(text, 64)
+					} else {
+						want, _ = quantity.ParseAs(text, m.Dimension)
+					}
+					if math.Abs(x-want.SI) > 1e-12*math.Abs(want.SI)+1e-12 {
+						t.Errorf("%g beside %q", x, text)
+					}
+				}
+			}
+			got.Measured = nil
 			if got != c.want {
 				t.Errorf("\n got %+v\nwant %+v", got, c.want)
 			}

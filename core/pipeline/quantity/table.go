@@ -105,6 +105,7 @@ var dimensions = []dimension{
 	{"power", []string{"W"}, "300 W"},
 	{"stiffness", []string{"N/mm"}, "20 N/mm"},
 	{"rotational stiffness", []string{"N*m/rad"}, "3 N*m/rad"},
+	{"bedding stiffness", []string{"N/mm3"}, "5000 N/mm3"},
 	{"damping", []string{"N*s/m"}, "0.4 N*s/m"},
 	{"rotational damping", []string{"N*m*s/rad"}, "0.001 N*m*s/rad"},
 	{"density", []string{"kg/m3"}, "1550 kg/m3"},

@@ -3,11 +3,15 @@ package run
 import (
 	"crypto/sha256"
 	"encoding/hex"
+	"math"
 	"runtime"
 	"sort"
+	"strconv"
 	"strings"
 
+	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/run/account"
+	"hushframe/core/pipeline/stage"
 )
 
 // makeAccount states the run so far and puts it into the store.
@@ -56,6 +60,12 @@ func (r *runner) describe() *account.Account {
 		for _, f := range result.Files {
 			a.Files = append(a.Files, account.File{Step: label, Path: f.Path, SHA256: f.Hash})
 		}
+		for _, f := range s.Stage.Description.Figures {
+			if x, ok := stated(f.Type.Unit, result.Outcome.Figures[f.Name]); ok {
+				x.Step, x.Name = label, f.Name
+				a.Figures = append(a.Figures, x)
+			}
+		}
 		for _, w := range result.Outcome.Warnings {
 			a.Warnings = append(a.Warnings, account.Warning{Step: label, ID: w.ID, Text: w.Text, Where: w.Where, Remedy: w.Remedy})
 		}
@@ -79,4 +89,22 @@ func (r *runner) describe() *account.Account {
 			Value: v.Value, Bound: v.Bound, Margin: v.Margin, Holds: v.Holds, Judged: v.Judged})
 	}
 	return a
+}
+
+// stated writes the value of a figure in the unit of its declaration; false for lists and what has none.
+func stated(unit string, v any) (account.Figure, bool) {
+	x := account.Figure{Number: math.NaN()}
+	switch v := v.(type) {
+	case stage.Quantity:
+		x.Text, x.Number, x.Dimension = quantity.Format(v.SI, v.Dimension, unit), v.SI, v.Dimension
+	case float64:
+		x.Text, x.Number = strconv.FormatFloat(v, 'g', 6, 64), v
+	case string:
+		x.Text = v
+	case bool:
+		x.Text = strconv.FormatBool(v)
+	default:
+		return x, false
+	}
+	return x, true
 }

@@ -45,6 +45,9 @@ type Options struct {
 	Observer Observer
 	// Name is the file or folder name of the job; the last run is noted under it.
 	Name string
+	// Label keeps the run under a name, so that others can be set beside it; see
+	// store.NameRun. A run that was stopped is not kept.
+	Label string
 	// Program is name and version of the host, for the account.
 	Program string
 	// Threads and Memory (bytes, 0 for no limit) bound all steps together.
@@ -89,6 +92,8 @@ type Step struct {
 	State   State
 	Key     string
 	Outcome stage.Outcome
+	// Inputs are the content hashes of the artifacts it took, by argument.
+	Inputs  map[string][]string
 	Outputs map[string]store.Output
 	Files   []stage.FileUse
 	// Published are the paths of files copied out of the store, as the job
@@ -114,6 +119,8 @@ type Verdict struct {
 
 // Result is the end of a run.
 type Result struct {
+	// ID names the run; equal runs have equal ids. Empty when it was stopped.
+	ID       string
 	Steps    []Step    // in the order of the plan
 	Verdicts []Verdict // in file order
 	// Diagnostics are those of all steps and requirements.

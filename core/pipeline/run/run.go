@@ -296,6 +296,14 @@ func (r *runner) finish() (*Result, error) {
 	r.judge(true)
 	out := &Result{Stopped: r.ctx.Err() != nil}
 	record := &store.RunRecord{Job: r.Plan.Job.Name}
+	if r.err == nil && !out.Stopped {
+		if r.account == nil {
+			r.account, r.err = r.makeAccount()
+		}
+		if r.account != nil {
+			record.ID = r.account.hash
+		}
+	}
 	for _, s := range r.Plan.Steps {
 		p := r.steps[s.Stage.Label]
 		if !p.ended { // an error of the store came first
@@ -305,7 +313,7 @@ func (r *runner) finish() (*Result, error) {
 		out.Diagnostics = append(out.Diagnostics, p.result.Diagnostics...)
 		record.Steps = append(record.Steps, store.RunStep{
 			Label: p.result.Label, Stage: p.result.Kind, State: string(p.result.State), Key: p.result.Key,
-			Outputs: p.result.Outputs, Seconds: p.result.Elapsed.Round(time.Millisecond).Seconds(),
+			Inputs: p.result.Inputs, Outputs: p.result.Outputs, Seconds: p.result.Elapsed.Round(time.Millisecond).Seconds(),
 		})
 	}
 	for _, q := range r.Plan.Job.Requirements {
@@ -314,6 +322,10 @@ func (r *runner) finish() (*Result, error) {
 	if r.err == nil && r.Name != "" {
 		r.err = r.Store.SaveRun(r.Name, record)
 	}
+	if r.err == nil && r.Label != "" && record.ID != "" {
+		r.err = r.Store.NameRun(r.Label, record)
+	}
+	out.ID = record.ID
 	return out, r.err
 }
 

@@ -27,6 +27,20 @@ type prepared struct {
 	inputs    map[string][]input
 }
 
+// hashes gives the content hashes of the inputs.
+func (p *prepared) hashes() map[string][]string {
+	if len(p.inputs) == 0 {
+		return nil
+	}
+	out := map[string][]string{}
+	for argument, list := range p.inputs {
+		for _, in := range list {
+			out[argument] = append(out[argument], in.hash)
+		}
+	}
+	return out
+}
+
 // inputs gives the outputs of the steps a step needs, by address, and the
 // account of the run for one that comes last.
 func (r *runner) inputs(s *plan.Step) map[string]input {
@@ -68,7 +82,7 @@ func (r *runner) prepareStep(s *plan.Step, available map[string]input, figures j
 	if !ok {
 		return p, nil
 	}
-	result := Step{State: Reused, Key: p.key, Outcome: record.Outcome, Outputs: record.Outputs, Files: record.Files,
+	result := Step{State: Reused, Key: p.key, Outcome: record.Outcome, Inputs: p.hashes(), Outputs: record.Outputs, Files: record.Files,
 		Elapsed: time.Duration(record.Seconds * float64(time.Second))}
 	if err := r.publish(s, p, &result); err != nil {
 		result = r.failed(s, p, err)
@@ -154,7 +168,7 @@ func (r *runner) work(ctx context.Context, s *plan.Step, p *prepared, threads in
 	if err := CheckFigures(d, outcome.Figures); err != nil {
 		return nil, err
 	}
-	result := &Step{State: Ran, Key: p.key, Outcome: *outcome, Outputs: map[string]store.Output{}, Files: call.Files.Used()}
+	result := &Step{State: Ran, Key: p.key, Outcome: *outcome, Inputs: p.hashes(), Outputs: map[string]store.Output{}, Files: call.Files.Used()}
 	for _, o := range d.Outputs {
 		hash, err := r.Store.Adopt(call.Outputs[o.Name], o.Kind)
 		if err != nil {

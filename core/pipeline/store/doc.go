@@ -6,7 +6,9 @@
 //	  artifacts/HASH/        an artifact, under its content hash
 //	  steps/KEY/RECORD.json  outcomes of a step, each with the files it used
 //	  kept/KEY/              an intermediate result of a stage
-//	  runs/NAME.json         the last run of each job
+//	  runs/NAME.json         the last run of each job, and the ids of those before
+//	  runs/id/ID.json        a run by the content hash of its account
+//	  runs/named/LABEL.json  a run that was given a label; prune leaves it alone
 //	  scratch/ID/            work in progress of one run
 //	  lock, scratch.lock     see below
 //

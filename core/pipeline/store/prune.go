@@ -15,7 +15,8 @@ import (
 )
 
 // PruneOptions say what to remove. Artifacts that no record names and kept
-// results that are damaged are always removed.
+// results that are damaged are always removed. What a run with a label is made of
+// is left alone, its step records too.
 type PruneOptions struct {
 	// UnusedFor removes what no run has used for longer; 0 means no such limit.
 	UnusedFor time.Duration
@@ -32,9 +33,10 @@ type PruneReport struct {
 	Freed, Left              int64 // bytes
 }
 
-// item is a record with what it alone needs, or a kept result.
+// item is the record of a step or a run with what it needs, or a kept result.
 type item struct {
 	path string
+	key  string // of a step
 	used time.Time
 	size int64    // of a kept result
 	uses []string // artifacts of a record
@@ -81,6 +83,10 @@ func Prune(jobFolder string, o PruneOptions) (PruneReport, error) {
 		}
 		return os.RemoveAll(path)
 	}
+	held, keys := s.held()
+	for hash := range held {
+		users[hash]++
+	}
 	for hash, size := range sizes {
 		if users[hash] == 0 {
 			report.Artifacts++
@@ -91,12 +97,13 @@ func Prune(jobFolder string, o PruneOptions) (PruneReport, error) {
 	}
 	for _, it := range items { // oldest first
 		old := o.UnusedFor > 0 && time.Since(it.used) > o.UnusedFor
-		if !old && (o.Size < 0 || total <= o.Size) {
+		if !old && (o.Size < 0 || total <= o.Size) || it.key != "" && keys[it.key] {
 			continue
 		}
-		if it.uses == nil {
+		switch {
+		case it.uses == nil:
 			report.Kept++
-		} else {
+		case it.key != "":
 			report.Records++
 		}
 		// The record goes first, so that none ever names a missing artifact.
@@ -112,19 +119,41 @@ func Prune(jobFolder string, o PruneOptions) (PruneReport, error) {
 				return report, storeFault(err)
 			}
 		}
-		_ = os.Remove(filepath.Dir(it.path)) // when it was the last record of its key
+		if it.key != "" {
+			_ = os.Remove(filepath.Dir(it.path)) // when it was the last record of its key
+		}
 	}
 	report.Left = total
 	return report, nil
 }
 
-// items lists records and kept results, that used longest ago first.
+// held gives the artifacts and the keys of the steps of runs with a label.
+func (s *Store) held() (artifacts, keys map[string]bool) {
+	artifacts, keys = map[string]bool{}, map[string]bool{}
+	for _, label := range s.NamedRuns() {
+		r, err := readRun(s.runFile(named, label))
+		if err != nil {
+			continue
+		}
+		for _, hash := range r.uses() {
+			artifacts[hash] = true
+		}
+		for _, step := range r.Steps {
+			if step.Key != "" {
+				keys[step.Key] = true
+			}
+		}
+	}
+	return artifacts, keys
+}
+
+// items lists records of steps and runs and kept results, that used longest ago first.
 func (s *Store) items() []item {
 	var items []item
 	for _, key := range list(filepath.Join(s.folder, "steps")) {
 		dir := filepath.Join(s.folder, "steps", key.Name())
 		for _, e := range list(dir) {
-			it := item{path: filepath.Join(dir, e.Name()), uses: []string{}}
+			it := item{path: filepath.Join(dir, e.Name()), key: key.Name(), uses: []string{}}
 			if info, err := e.Info(); err == nil {
 				it.used = info.ModTime()
 			}
@@ -140,6 +169,16 @@ func (s *Store) items() []item {
 			}
 			items = append(items, it)
 		}
+	}
+	for _, id := range s.runFiles(byID) {
+		it := item{path: s.runFile(byID, id), uses: []string{}}
+		if info, err := os.Stat(it.path); err == nil {
+			it.used = info.ModTime()
+		}
+		if r, err := readRun(it.path); err == nil {
+			it.uses = r.uses()
+		}
+		items = append(items, it)
 	}
 	for _, e := range list(filepath.Join(s.folder, "kept")) {
 		place := filepath.Join(s.folder, "kept", e.Name())

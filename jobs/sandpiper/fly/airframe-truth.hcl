@@ -1,8 +1,8 @@
 # The Sandpiper as it was "really" built: the hidden truth behind the flight
 # recording. The nominal description (../airframe.hcl) does not know that the
 # carbon is softer and not the same along and across, that the arms are 0.05 mm
-# thin and cut 2 degrees off the weave, that the sandwich bolts give, that
-# grommets and strap are softer, that a cable runs along each arm, or that the
+# thin and cut 2 degrees off the weave, that the sandwich holds less
+# well, that grommets, strap and camera mount are softer, that a cable runs along each arm, or that the
 # rotors' gyroscopic moments couple roll and pitch of the arm tips (the last is
 # added by the simulation).
 
@@ -104,19 +104,26 @@ plate "top" {
 }
 
 joint "sandwich" {
-  x           = "55 kN/mm"
-  y           = "55 kN/mm"
-  z           = "90 kN/mm"
-  rx          = "260 N*m/rad"
-  ry          = "260 N*m/rad"
-  rz          = "150 N*m/rad"
-  loss_factor = 0.06
+  x           = "24 kN/mm"
+  y           = "24 kN/mm"
+  z           = "150 kN/mm"
+  rx          = "400 N*m/rad"
+  ry          = "400 N*m/rad"
+  rz          = "260 N*m/rad"
+  loss_factor = 0.03
 }
 
 bolts {
   clamp = "6.5 mm"
   mass  = "1.4 g"
   joint = joint.sandwich
+}
+
+pressed "faces" {
+  plates      = [plate.bottom, plate.arm_fl, plate.arm_fr, plate.arm_rl, plate.arm_rr, plate.clamp]
+  normal      = "18 N/mm3"
+  shear       = "6 N/mm3"
+  loss_factor = 0.05
 }
 
 standoff "nose" {
@@ -155,10 +162,19 @@ rotor "fl" {
   on                 = plate.arm_fl
   at                 = ["80 mm", "86 mm"]
   base               = "24 mm"
-  mass               = "33 g"
-  height             = "12 mm"
-  diameter           = "28 mm"
-  length             = "20 mm"
+  stator {
+    mass     = "15 g"
+    height   = "7.5 mm"
+    diameter = "23 mm"
+    length   = "10 mm"
+  }
+  bell {
+    mass     = "18 g"
+    height   = "15.75 mm"
+    diameter = "28 mm"
+    inner    = "23 mm"
+    length   = "13 mm"
+  }
   hub_height         = "25 mm"
   propeller_mass     = "4.2 g"
   propeller_diameter = "127 mm"
@@ -173,10 +189,19 @@ rotor "fr" {
   on                 = plate.arm_fr
   at                 = ["80 mm", "-86 mm"]
   base               = "24 mm"
-  mass               = "33 g"
-  height             = "12 mm"
-  diameter           = "28 mm"
-  length             = "20 mm"
+  stator {
+    mass     = "15 g"
+    height   = "7.5 mm"
+    diameter = "23 mm"
+    length   = "10 mm"
+  }
+  bell {
+    mass     = "18 g"
+    height   = "15.75 mm"
+    diameter = "28 mm"
+    inner    = "23 mm"
+    length   = "13 mm"
+  }
   hub_height         = "25 mm"
   propeller_mass     = "4.2 g"
   propeller_diameter = "127 mm"
@@ -191,10 +216,19 @@ rotor "rl" {
   on                 = plate.arm_rl
   at                 = ["-80 mm", "86 mm"]
   base               = "24 mm"
-  mass               = "33 g"
-  height             = "12 mm"
-  diameter           = "28 mm"
-  length             = "20 mm"
+  stator {
+    mass     = "15 g"
+    height   = "7.5 mm"
+    diameter = "23 mm"
+    length   = "10 mm"
+  }
+  bell {
+    mass     = "18 g"
+    height   = "15.75 mm"
+    diameter = "28 mm"
+    inner    = "23 mm"
+    length   = "13 mm"
+  }
   hub_height         = "25 mm"
   propeller_mass     = "4.2 g"
   propeller_diameter = "127 mm"
@@ -209,10 +243,19 @@ rotor "rr" {
   on                 = plate.arm_rr
   at                 = ["-80 mm", "-86 mm"]
   base               = "24 mm"
-  mass               = "33 g"
-  height             = "12 mm"
-  diameter           = "28 mm"
-  length             = "20 mm"
+  stator {
+    mass     = "15 g"
+    height   = "7.5 mm"
+    diameter = "23 mm"
+    length   = "10 mm"
+  }
+  bell {
+    mass     = "18 g"
+    height   = "15.75 mm"
+    diameter = "28 mm"
+    inner    = "23 mm"
+    length   = "13 mm"
+  }
   hub_height         = "25 mm"
   propeller_mass     = "4.2 g"
   propeller_diameter = "127 mm"
@@ -231,10 +274,10 @@ lump "battery" {
   mass = input.battery_mass
   size = ["75 mm", "36 mm", "32 mm"]
   mount {
-    kind        = "strap over foam"
+    like        = "strap-over-foam"
     places      = [["20 mm", "11 mm"], ["20 mm", "-11 mm"], ["-36 mm", "11 mm"], ["-36 mm", "-11 mm"]]
     stiffness   = ["10.5 N/mm", "10.5 N/mm", "22 N/mm"]
-    loss_factor = 0.30
+    loss_factor = [0.34, 0.34, 0.28]
     pad         = "8 mm"
   }
 }
@@ -244,7 +287,18 @@ lump "camera" {
   at   = ["83 mm", "0 mm"]
   mass = "26 g"
   size = ["14 mm", "19 mm", "24 mm"]
-  pad  = ["12 mm", "14 mm"]
+  mount {
+    kind        = "printed cheeks"
+    places      = [["88 mm", "8 mm"], ["88 mm", "-8 mm"], ["78 mm", "8 mm"], ["78 mm", "-8 mm"]]
+    height      = "6 mm"
+    stiffness   = ["52 N/mm", "52 N/mm", "80 N/mm"]
+    pad         = "5 mm"
+    solid {
+      at      = "150 Hz"
+      rise    = 2.3
+      peak_at = "180 Hz"
+    }
+  }
 }
 
 lump "receiver" {
@@ -299,6 +353,10 @@ gyro "stack" {
     height      = "6 mm"
     stiffness   = ["31 N/mm", "31 N/mm", "45 N/mm"]
     loss_factor = 0.20
+    fractional {
+      at    = "200 Hz"
+      order = 0.25
+    }
     pad         = "6.5 mm"
   }
 }

@@ -5,7 +5,7 @@
 //	go run ./jobs/sandpiper/fly jobs/sandpiper/flights
 //
 // The physics differs from that of the nominal model on purpose: other
-// moduli, masses, joints and mounts (airframe-truth.hcl), a finer mesh,
+// moduli, masses, joints, pressed faces and mounts (airframe-truth.hcl), a finer mesh,
 // gyroscopic moments, rotor speeds that wander, a control loop, sensor noise
 // and filter. Equal inputs give equal bytes.
 package main
@@ -27,19 +27,20 @@ import (
 
 func main() {
 	job := flag.String("truth", filepath.Join("jobs", "sandpiper", "fly", "truth.hcl"), "job that solves the true frame")
+	seed := flag.Uint64("seed", 20, "seed of forces and sensor noise; another one is another flight of the same frame")
 	flag.Parse()
 	folder := filepath.Join("jobs", "sandpiper", "flights")
 	if flag.NArg() > 0 {
 		folder = flag.Arg(0)
 	}
-	if err := fly(context.Background(), *job, folder); err != nil {
+	if err := fly(context.Background(), *job, folder, *seed); err != nil {
 		fmt.Fprintln(os.Stderr, "fly:", err)
 		os.Exit(1)
 	}
 }
 
 // fly writes hover-03.csv.gz and hover-03-truth.json into the folder.
-func fly(ctx context.Context, job, folder string) error {
+func fly(ctx context.Context, job, folder string, seed uint64) error {
 	pl, p, err := truth(ctx, job)
 	if err != nil {
 		return err
@@ -63,7 +64,7 @@ func fly(ctx context.Context, job, folder string) error {
 	if err != nil {
 		return err
 	}
-	if err := record(zip, pl, newSources(rotors(p), 1/stepRate, 20)); err != nil {
+	if err := record(zip, pl, newSources(rotors(p), 1/stepRate, seed), seed); err != nil {
 		return err
 	}
 	if err := zip.Close(); err != nil {
@@ -135,11 +136,11 @@ func describe(pl *plant, p *airframe.Properties) account {
 		parameters["material "+m.Name] = map[string]float64{"E1_Pa": m.E1, "E2_Pa": m.E2, "G12_Pa": m.G12, "density_kg_m3": m.Density, "loss_factor": m.LossFactor}
 	}
 	for _, j := range p.Joints {
-		parameters["joint "+j.Name] = map[string]any{"stiffness_N_m_and_Nm_rad": j.Stiffness, "loss_factor": j.LossFactor}
+		parameters["joint "+j.Name] = map[string]any{"stiffness_N_m_and_Nm_rad": j.Stiffness, "per": string(j.Measure), "loss_factor": j.LossFactor}
 	}
 	for _, b := range p.Bodies {
 		if b.Mount != nil {
-			parameters["mount "+b.Mount.Name] = map[string]any{"stiffness_of_each_N_m": b.Mount.Points[0].Stiffness, "points": len(b.Mount.Points), "loss_factors": b.Mount.Loss}
+			parameters["mount "+b.Mount.Name] = map[string]any{"stiffness_of_each_N_m": b.Mount.Points[0].Stiffness, "points": len(b.Mount.Points), "loss_factors": b.Mount.Loss, "law": string(b.Mount.Law.Kind)}
 		}
 	}
 	a := account{

@@ -41,14 +41,14 @@ func (f *butterworth) step(x float64) float64 {
 }
 
 // record flies the plant and writes the recording as comma-separated text.
-func record(w io.Writer, pl *plant, src *sources) error {
+func record(w io.Writer, pl *plant, src *sources, seed uint64) error {
 	dt := 1 / stepRate
 	ad, bd := pl.discretise(dt)
 	s, m := 2*pl.n, 6*len(pl.sites)
 	a, b := ad.RawMatrix().Data, bd.RawMatrix().Data
 	x, next := make([]float64, s), make([]float64, s)
 
-	rng := rand.New(rand.NewPCG(77, 0x6779))
+	rng := rand.New(rand.NewPCG(57+seed, 0x6779))
 	sigma := noise * math.Sqrt(recordRate/2)
 	bias := [3]float64{0.31, -0.18, 0.07}
 	var filters [3]butterworth

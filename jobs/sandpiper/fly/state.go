@@ -14,7 +14,7 @@ import (
 
 // plant is the truth in modal coordinates: q″ + (C + G) q′ + Λ q = Bᵀ f, with
 // viscous damping C, gyroscopic coupling G of the rotors at hover speed and
-// stiffness Λ = diag ω². Outputs are the three rates of the gyro.
+// stiffness Λ = diag ω² and what laws of mounts add to it. Outputs are the three rates of the gyro.
 type plant struct {
 	n     int // modal coordinates
 	rigid int // the first ones are rigid-body motions
@@ -35,7 +35,8 @@ const (
 // newPlant builds the equations. Hysteretic losses Σ η_g K_g become the
 // equivalent viscous ones C_ij = Σ η_g (K_g)_ij / √(ω_i ω_j), which take the
 // same energy per cycle at the resonance of each mode: a time simulation
-// cannot be hysteretic and causal at once. It fails when a rotor has no site.
+// cannot be hysteretic and causal at once. Likewise the stiffness of mounts
+// with a law is that at √(ω_i ω_j). It fails when a rotor has no site.
 func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) (*plant, error) {
 	var keep []int
 	rigid := 0
@@ -73,13 +74,17 @@ func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) (*plant, err
 		}
 	}
 
-	damp := mat.NewDense(n, n, nil)
+	damp, stiff := mat.NewDense(n, n, nil), mat.NewDense(n, n, nil)
 	total := len(b.Kinds)
-	for _, g := range b.Groups {
-		eta := g.LossFactor // the floor is in it
+	for k := range b.Groups {
+		g := &b.Groups[k]
 		for i := rigid; i < n; i++ {
 			for j := rigid; j < n; j++ {
-				damp.Set(i, j, damp.At(i, j)+eta*g.Stiffness[keep[i]*total+keep[j]]/math.Sqrt(pl.omega[i]*pl.omega[j]))
+				// Between two modes that of the frequency half-way; the floor is in it.
+				middle := math.Sqrt(pl.omega[i] * pl.omega[j])
+				z, share := g.At(middle/(2*math.Pi)), g.Stiffness[keep[i]*total+keep[j]]
+				damp.Set(i, j, damp.At(i, j)+imag(z)*share/middle)
+				stiff.Set(i, j, stiff.At(i, j)+(real(z)-1)*share)
 			}
 		}
 	}
@@ -93,6 +98,7 @@ func newPlant(b *modal.Basis, p *airframe.Properties, upTo float64) (*plant, err
 		pl.a.Set(i, n+i, 1)
 		pl.a.Set(n+i, i, -pl.omega[i]*pl.omega[i])
 		for j := range n {
+			pl.a.Set(n+i, j, pl.a.At(n+i, j)-stiff.At(i, j))
 			pl.a.Set(n+i, n+j, -damp.At(i, j))
 		}
 	}

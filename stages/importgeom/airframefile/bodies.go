@@ -2,6 +2,8 @@ package airframefile
 
 import (
 	"github.com/hashicorp/hcl/v2"
+
+	"hushframe/core/mechanics/airframe"
 )
 
 func (b *block) lowerSide() bool { return b.word("side", "upper", "lower") == "lower" }
@@ -9,14 +11,49 @@ func (b *block) lowerSide() bool { return b.word("side", "upper", "lower") == "l
 // inertia reads three or six elements of the tensor about the centre of gravity.
 func (b *block) inertia() []float64 {
 	v := b.amounts("inertia", []string{"inertia"}, 3, 6)
-	for i := 0; i < len(v) && i < 3; i++ {
+	if v == nil {
+		return nil
+	}
+	at := b.hcl.Body.Attributes["inertia"].Expr.Range()
+	for i := range 3 {
 		// Each principal moment is below the sum of the other two, and so is each diagonal element.
 		if rest := v[(i+1)%3] + v[(i+2)%3]; !(v[i] > 0) || v[i] > rest*(1+1e-9) {
-			b.fail(b.hcl.Body.Attributes["inertia"].Expr.Range(), "inertia: no body has this; xx, yy, zz are positive and none exceeds the sum of the others")
+			b.fail(at, "inertia: no body has this; xx, yy, zz are positive and none exceeds the sum of the others")
 			return nil
 		}
 	}
+	var t [6]float64
+	copy(t[:], v)
+	if err := airframe.CheckInertia(t); err != nil {
+		b.fail(at, "inertia: no body has this: %v; see whether xy, xz, yz are the elements of the tensor, minus the products of inertia", err)
+		return nil
+	}
 	return v
+}
+
+// solid reads the bell or the stator of a motor.
+func (b *block) solid(name string) *Solid {
+	in := b.inside(name)
+	if in == nil {
+		return nil
+	}
+	s := &Solid{
+		Mass:     in.must("mass", "mass", positive),
+		Height:   in.must("height", "length", notNegative),
+		Diameter: in.amount("diameter", "length", positive).Value,
+		Inner:    in.amount("inner", "length", notNegative).Value,
+		Length:   in.amount("length", "length", positive).Value,
+		Inertia:  in.inertia(),
+	}
+	if !in.present("inertia") {
+		in.need("diameter", `"28 mm"`)
+		in.need("length", `"18 mm"`)
+		if s.Diameter > 0 && s.Inner >= s.Diameter {
+			in.fail(in.hcl.Body.Attributes["inner"].Expr.Range(), "the inner diameter is not below the outer one")
+		}
+	}
+	in.finish()
+	return s
 }
 
 func (b *block) on() string {
@@ -31,8 +68,10 @@ func (b *block) rotor() Rotor {
 		Lower:             b.lowerSide(),
 		At:                b.point("at"),
 		Base:              b.amount("base", "length", positive),
-		Mass:              b.must("mass", "mass", positive),
-		Height:            b.must("height", "length", notNegative),
+		Mass:              b.amount("mass", "mass", positive).Value,
+		Height:            b.amount("height", "length", notNegative).Value,
+		Bell:              b.solid("bell"),
+		Stator:            b.solid("stator"),
 		Diameter:          b.amount("diameter", "length", positive),
 		Length:            b.amount("length", "length", positive),
 		Inertia:           b.inertia(),
@@ -46,6 +85,7 @@ func (b *block) rotor() Rotor {
 		MaxSpeed:          b.must("max_speed", "rotational speed", positive),
 		Grade:             b.amount("balance_grade", "speed", notNegative),
 	}
+	b.motor(&r)
 	b.need("spin", `"counterclockwise"`)
 	switch b.word("spin", "counterclockwise", "clockwise") {
 	case "counterclockwise":
@@ -60,6 +100,28 @@ func (b *block) rotor() Rotor {
 		b.fail(b.head(), "spinning_mass is above the mass of motor and propeller")
 	}
 	return r
+}
+
+// motor holds the motor to be given whole or as bell and stator.
+func (b *block) motor(r *Rotor) {
+	if r.Bell == nil && r.Stator == nil {
+		b.need("mass", `"33 g"`)
+		b.need("height", `"12 mm"`)
+		return
+	}
+	if r.Bell == nil || r.Stator == nil {
+		b.fail(b.head(), "bell and stator are due together: what spins and what does not")
+		return
+	}
+	for _, name := range []string{"mass", "height", "diameter", "length", "inertia", "polar_inertia", "spinning_mass"} {
+		if b.present(name) {
+			b.fail(b.hcl.Body.Attributes[name].NameRange, "%s is given beside bell and stator, from which it follows", name)
+		}
+	}
+	r.Mass = r.Bell.Mass + r.Stator.Mass
+	if r.Mass > 0 {
+		r.Height = (r.Bell.Mass*r.Bell.Height + r.Stator.Mass*r.Stator.Height) / r.Mass
+	}
 }
 
 // lump reads a body; mount is the name of its block of springs.
@@ -78,8 +140,13 @@ func (b *block) lump(mount string) Lump {
 	if p := b.point("at"); p != nil {
 		l.At = *p
 	}
-	b.need("size", `["75 mm", "36 mm", "32 mm"]`)
-	l.Size = b.vector("size")
+	l.Diameter = b.amount("diameter", "length", positive)
+	along := b.amount("length", "length", positive)
+	l.Axis = map[string]int{"x": 0, "y": 1, "": 2, "z": 2}[b.word("axis", "x", "y", "z")]
+	if o := b.amounts("offset", length, 2); o != nil {
+		l.Offset = [2]float64(o)
+	}
+	b.body(&l, along)
 	if b.present("size") && l.Size != [3]float64{} && !(l.Size[0] > 0 && l.Size[1] > 0 && l.Size[2] > 0) {
 		b.fail(b.hcl.Body.Attributes["size"].Expr.Range(), "size: all three must be positive")
 	}
@@ -96,6 +163,25 @@ func (b *block) lump(mount string) Lump {
 		l.Mount = m.mount(mount)
 	}
 	return l
+}
+
+// body reads the shape: a box, or a cylinder whose box encloses it.
+func (b *block) body(l *Lump, along Opt) {
+	cylinder := b.present("diameter") || b.present("length") || b.present("axis")
+	if !cylinder {
+		b.need("size", `["75 mm", "36 mm", "32 mm"], or a cylinder: diameter = "20 mm", length = "30 mm"`)
+		l.Size = b.vector("size")
+		return
+	}
+	b.asked = append(b.asked, "size")
+	if b.present("size") {
+		b.fail(b.hcl.Body.Attributes["size"].NameRange, "size and diameter are both given: the body is a box or a cylinder")
+	}
+	b.need("diameter", `"20 mm"`)
+	b.need("length", `"30 mm"`)
+	d := l.Diameter.Value
+	l.Size = airframe.Vec{d, d, d}
+	l.Size[l.Axis] = along.Value
 }
 
 // checkSprings refuses springs that leave the body loose: each direction needs stiffness, and one place without

@@ -62,6 +62,7 @@ func (b *block) material() airframe.Material {
 	nu, nu12 := b.amount("nu", "number", anyNumber), b.amount("nu12", "number", anyNumber)
 	m := base
 	m.Name = name
+	m.E3 = b.amount("E3", "pressure", positive).Or(base.E3)
 	m.Density = b.amount("density", "density", anyNumber).Or(base.Density)
 	m.LossFactor = b.amount("loss_factor", "number", share).Or(base.LossFactor)
 	m.Scatter = b.amount("scatter", "number", share).Or(base.Scatter)
@@ -80,6 +81,9 @@ func (b *block) material() airframe.Material {
 		e, v := modulus["E"].Or(base.E1), nu.Or(base.Nu12)
 		g := e / (2 * (1 + v))
 		m.E1, m.E2, m.Nu12, m.G12, m.G13, m.G23, m.Isotropic = e, e, v, g, g, g, true
+		if !b.present("E3") {
+			m.E3 = e
+		}
 	case directed:
 		m.Isotropic = false
 		m.E1 = modulus["E1"].Or(base.E1)

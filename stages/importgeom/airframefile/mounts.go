@@ -38,7 +38,11 @@ func (b *block) mount(kind string) *Mount {
 	}
 	b.need("places", `[["15 mm", "15 mm"], ...]`)
 	if v, at, ok := b.value("places"); ok {
-		m.Places = b.points("places", v, at)
+		if n := v.Type(); n.IsTupleType() && v.LengthInt() == 0 {
+			b.fail(at, "places is empty, so that the mount is attached to nothing; name where its springs stand")
+		} else {
+			m.Places = b.points("places", v, at)
+		}
 	}
 	b.mountStiffness(m, typical, b.present("like"))
 	b.mountLoss(m)

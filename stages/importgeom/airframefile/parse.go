@@ -3,6 +3,7 @@ package airframefile
 import (
 	"fmt"
 	"sort"
+	"strings"
 
 	"github.com/hashicorp/hcl/v2"
 	"github.com/hashicorp/hcl/v2/hclsyntax"
@@ -15,7 +16,7 @@ import (
 
 // kinds of blocks, and whether they have a name.
 var kinds = map[string]bool{
-	"airframe": true, "input": true, "material": true, "plate": true, "copy": true, "joint": true, "bolts": false,
+	"airframe": true, "input": true, "material": true, "plate": true, "copy": true, "joint": true, "bolts": false, "pressed": true, "seam": true, "key": true,
 	"bolt": true, "standoff": true, "rotor": true, "lump": true, "gyro": true,
 }
 
@@ -107,6 +108,8 @@ func (p *parser) sorted(body *hclsyntax.Body) map[string][]*block {
 			p.scope.names["plate"] = append(p.scope.names["plate"], name)
 		case "joint":
 			p.scope.names["joint"] = append(p.scope.names["joint"], name)
+		case "pressed", "seam", "key":
+			key = "joint " + name // each is a joint group of its own
 		case "rotor", "lump", "gyro":
 			key = "body " + name
 		case "airframe":
@@ -117,8 +120,11 @@ func (p *parser) sorted(body *hclsyntax.Body) map[string][]*block {
 			if h.Type == other.Type {
 				p.fail(h.DefRange(), "a second %s; the first is in line %d", describe(h), line)
 			} else {
-				p.fail(h.DefRange(), "%s has the name of %s in line %d; plates and copies share their names, and so do rotors, lumps and the gyro",
-					describe(h), describe(other), line)
+				sharing := "plates and copies share their names, and so do rotors, lumps and the gyro"
+				if strings.HasPrefix(key, "joint ") {
+					sharing = "each joint, pressed contact, seam and key is a joint group with a name of its own"
+				}
+				p.fail(h.DefRange(), "%s has the name of %s in line %d; %s", describe(h), describe(other), line, sharing)
 			}
 			continue
 		}

@@ -1,7 +1,6 @@
 package airframefile
 
 import (
-	"math"
 	"sort"
 
 	"github.com/zclconf/go-cty/cty"
@@ -26,6 +25,11 @@ func (p *parser) read(blocks map[string][]*block) {
 	}
 	for _, b := range blocks["joint"] {
 		f.Joints = append(f.Joints, b.joint())
+	}
+	for _, kind := range []airframe.ContactKind{airframe.Pressed, airframe.Seam, airframe.Key} {
+		for _, b := range blocks[string(kind)] {
+			f.Contacts = append(f.Contacts, b.contact(kind))
+		}
 	}
 	f.Bolts = Bolts{Infer: true, Smallest: 2e-3, Largest: 5.5e-3, Gap: 0.2e-3}
 	for _, b := range blocks["bolts"] {
@@ -193,31 +197,6 @@ func (b *block) copy() Copy {
 		b.fail(b.head(), "it is a copy of itself")
 	}
 	return c
-}
-
-var components = [6]string{"x", "y", "z", "rx", "ry", "rz"}
-
-func stiffnessDimension(i int) string {
-	if i > 2 {
-		return "rotational stiffness"
-	}
-	return "stiffness"
-}
-
-func (b *block) joint() Joint {
-	j := Joint{Part: b.part, Joint: airframe.Joint{
-		Name:       b.part.Name,
-		LossFactor: b.amount("loss_factor", "number", notNegative).Value,
-		Low:        b.amount("low", "number", positive).Value,
-		High:       b.amount("high", "number", positive).Value,
-	}}
-	for i, c := range components {
-		j.Stiffness[i] = b.amount(c, stiffnessDimension(i), positive).Or(math.Inf(1))
-	}
-	if j.Low > 0 && j.High > 0 && j.Low > j.High {
-		b.fail(b.head(), "low is above high")
-	}
-	return j
 }
 
 func (b *block) fastening() Fastening {

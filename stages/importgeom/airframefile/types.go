@@ -21,6 +21,7 @@ type File struct {
 	Plates    []Plate
 	Copies    []Copy
 	Joints    []Joint
+	Contacts  []Contact
 	Bolts     Bolts
 	Bolted    []Bolt
 	Standoffs []Standoff
@@ -111,10 +112,41 @@ type Copy struct {
 	Move   airframe.Vec
 }
 
-// Joint is a declared elastic connection.
+// Joint is a declared elastic connection. Where Screw is given, components that are not come from plates and screw;
+// those that are, or all without Screw, stand in Stiffness, infinite ones being rigid or to be computed.
 type Joint struct {
 	Part
 	airframe.Joint
+	Screw         Opt // nominal diameter
+	ScrewMaterial string
+	Bearing       bool // the screw's shank carries what goes across, not friction
+}
+
+// Contact is plates pressed together, a glued seam or a key.
+type Contact struct {
+	Part
+	Sort   airframe.ContactKind
+	Plates []string // pressed: every two of them that touch; else edge and face, or the two that the key stops
+	// Pressed: shape of the region, and stiffness (N/m³) where it is not computed from the plates.
+	At            *outline.Point
+	Diameter      Opt
+	Size          *[2]float64
+	Turn          float64
+	Bonded        bool
+	Normal, Shear Opt
+	// Lines.
+	From, To   airframe.Vec
+	Flat       bool // From and To have no height
+	Glue       *Glue
+	Stiffness  [3]float64 // of the whole line: seam along, across, normal; key square to it first
+	LossFactor float64
+	Low, High  float64
+	Origin     string
+}
+
+// Glue is the adhesive of a seam.
+type Glue struct {
+	Modulus, Poisson, Thickness, Width float64
 }
 
 // Fastening is what bolts may have in common.
@@ -165,6 +197,7 @@ type Rotor struct {
 	Height            float64
 	Diameter, Length  Opt
 	Inertia           []float64 // 0, 3 or 6 tensor elements
+	Bell, Stator      *Solid    // both or neither; Mass and Height are then those of both
 	HubHeight         Opt
 	PropellerMass     Opt
 	PropellerDiameter Opt
@@ -177,21 +210,32 @@ type Rotor struct {
 	Grade             Opt
 }
 
+// Solid is the bell or stator of a motor: a hollow cylinder about the shaft, or a given inertia.
+type Solid struct {
+	Mass, Height            float64 // height of its centre of gravity above the face
+	Diameter, Inner, Length float64
+	Inertia                 []float64
+}
+
 // Lump is a rigid body that is no rotor.
 type Lump struct {
 	Part
-	Gyro    bool
-	On      string
-	Lower   bool
-	At      outline.Point
-	Mass    float64
-	Size    airframe.Vec
-	Turn    float64
-	Lift    float64
-	Height  Opt
-	Inertia []float64
-	Pad     *[2]float64
-	Mount   *Mount
+	Gyro  bool
+	On    string
+	Lower bool
+	At    outline.Point
+	Mass  float64
+	Size  airframe.Vec // of the box, or of that round the cylinder
+	// Diameter is given of a cylinder, Axis the axis of Size along which it lies.
+	Diameter Opt
+	Axis     int
+	Offset   [2]float64 // centre of gravity from the middle, along the box
+	Turn     float64
+	Lift     float64
+	Height   Opt
+	Inertia  []float64
+	Pad      *[2]float64
+	Mount    *Mount
 }
 
 // Mount is a set of equal springs below a lump.

@@ -3,6 +3,7 @@ package assemble
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 	"strings"
 
@@ -55,7 +56,7 @@ func (b *builder) bolts() *fault.Error {
 		remove[n] = true
 	}
 	changed := map[string]bool{}
-	var inferred []string
+	var inferred, groups []string
 	n := 0
 	for _, s := range stacks {
 		n++
@@ -75,16 +76,15 @@ func (b *builder) bolts() *fault.Error {
 			continue
 		}
 		f := rule.Fastening
-		if c, ok := rule.Change[name]; ok {
-			changed[name] = true
-			if c.Clamp.Given {
-				f.Clamp = c.Clamp
-			}
-			if c.Mass.Given {
-				f.Mass = c.Mass
-			}
-			if c.Joint != "" {
-				f.Joint = c.Joint
+		// What is said of the group holds for its bolts, what is said of a bolt goes before.
+		group := b.groupOf(s)
+		if !slices.Contains(groups, group) {
+			groups = append(groups, group)
+		}
+		for _, of := range []string{group, name} {
+			if c, ok := rule.Change[of]; ok {
+				changed[of] = true
+				f = with(f, c)
 			}
 		}
 		part := rule.Part
@@ -100,10 +100,34 @@ func (b *builder) bolts() *fault.Error {
 	}
 	for _, wanted := range sortedNames(rule.Change) {
 		if !changed[wanted] {
-			return rule.Fault("change", "no bolt %q is inferred%s", wanted, near(wanted, inferred)).Do("the inferred bolts are %s", listNames(inferred))
+			return rule.Fault("change", "no bolt or group of bolts %q is inferred%s", wanted, near(wanted, append(inferred, groups...))).
+				Do("the inferred bolts are %s, in the groups %s", listNames(inferred), listNames(groups))
 		}
 	}
 	return nil
+}
+
+// with gives a fastening what a change says.
+func with(f, change airframefile.Fastening) airframefile.Fastening {
+	if change.Clamp.Given {
+		f.Clamp = change.Clamp
+	}
+	if change.Mass.Given {
+		f.Mass = change.Mass
+	}
+	if change.Joint != "" {
+		f.Joint = change.Joint
+	}
+	return f
+}
+
+// groupOf names the group of a stack's bolt after the plates it clamps, from bottom to top.
+func (b *builder) groupOf(s stack) string {
+	var names []string
+	for _, h := range s.holes {
+		names = append(names, b.plates[b.holes[h].plate].name)
+	}
+	return strings.Join(names, "+")
 }
 
 func near(name string, names []string) string {

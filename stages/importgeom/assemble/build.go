@@ -58,7 +58,7 @@ type builder struct {
 
 func (b *builder) build() *fault.Error {
 	for _, step := range []func() *fault.Error{
-		b.buildPlates, b.findHoles, b.bolts, b.standoffs, b.joints, b.rotors, b.lumps, b.connected, b.materials,
+		b.buildPlates, b.findHoles, b.bolts, b.standoffs, b.joints, b.contacts, b.rotors, b.lumps, b.connected, b.materials,
 	} {
 		if err := step(); err != nil {
 			return err
@@ -157,13 +157,6 @@ func (b *builder) materials() *fault.Error {
 	}
 	if len(typical) > 0 {
 		b.note("typical values from the built-in table, not measured: %s", strings.Join(typical, ", "))
-	}
-	return nil
-}
-
-func (b *builder) joints() *fault.Error {
-	for _, j := range b.file.Joints {
-		b.out.Properties.Joints = append(b.out.Properties.Joints, j.Joint)
 	}
 	return nil
 }

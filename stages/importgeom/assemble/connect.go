@@ -5,6 +5,7 @@ import (
 	"math"
 	"strings"
 
+	"hushframe/core/mechanics/airframe"
 	"hushframe/core/pipeline/fault"
 )
 
@@ -32,6 +33,12 @@ func (b *builder) connected() *fault.Error {
 	}
 	for _, s := range b.out.Geometry.Standoffs {
 		join(s.Patches[:])
+	}
+	for _, c := range b.out.Geometry.Contacts {
+		if c.Kind != airframe.Key { // a key alone stops one direction
+			x, y := find(c.Plates[0]), find(c.Plates[1])
+			root[max(x, y)] = min(x, y)
+		}
 	}
 	volume := map[int]float64{}
 	for i, p := range b.plates {

@@ -52,8 +52,15 @@ func (b *builder) lump(l *airframefile.Lump) *fault.Error {
 	owner := l.Kind + " " + l.Name
 	body := airframe.Body{Name: l.Name, Kind: l.Kind, Mass: l.Mass}
 	body.Centre = along(inSpace(p.frame, centre, side*p.thickness/2), up, height)
-	switch len(l.Inertia) {
-	case 0:
+	body.Centre = along(along(body.Centre, x, l.Offset[0]), y, l.Offset[1])
+	switch {
+	case len(l.Inertia) == 0 && l.Diameter.Given:
+		axes := [3]vec{x, y, p.frame.Z}
+		// The cylinder's axis last, in cyclic order.
+		k := l.Axis
+		body.Inertia = principal(cylinder(l.Mass, l.Diameter.Value, l.Size[k]), [3]vec{axes[(k+1)%3], axes[(k+2)%3], axes[k]})
+		b.assume(l.Part, "inertia of a homogeneous cylinder")
+	case len(l.Inertia) == 0:
 		body.Inertia = principal(box(l.Mass, l.Size), [3]vec{x, y, p.frame.Z})
 		b.assume(l.Part, "inertia of a homogeneous box")
 	default:

@@ -66,25 +66,11 @@ func (b *builder) rotor(r *airframefile.Rotor) *fault.Error {
 	up := scale(f.Z, side)
 	face := inSpace(f, centre, side*b.plates[plate].thickness/2)
 
-	length := r.Length.Or(2 * r.Height)
-	if !r.Length.Given && len(r.Inertia) == 0 {
-		b.assume(r.Part, "motor as long as twice the height of its centre of gravity")
-	}
-	diameter := r.Diameter.Value
-	if !r.Diameter.Given {
-		if length == 0 {
-			return r.Fault("height", "its size is not known: the centre of gravity lies on the face and no length is given").Do("give diameter and length")
-		}
-		diameter = math.Sqrt(4 * r.Mass / (math.Pi * motorDensity * length))
-		b.assume(r.Part, "motor diameter of %s from its mass at %d kg/m³", mm(diameter), motorDensity)
+	motor, err := b.motor(r, [3]vec{f.X, f.Y, f.Z}, face, up)
+	if err != nil {
+		return err
 	}
 	axes := [3]vec{f.X, f.Y, f.Z}
-	motor := principal(cylinder(r.Mass, diameter, length), axes)
-	switch len(r.Inertia) {
-	case 3, 6:
-		motor = tensor{}
-		copy(motor[:], r.Inertia)
-	}
 	hubHeight := r.HubHeight.Or(2 * r.Height)
 	if !r.HubHeight.Given {
 		b.assume(r.Part, "propeller disc at twice the height of the motor's centre of gravity")
@@ -100,24 +86,24 @@ func (b *builder) rotor(r *airframefile.Rotor) *fault.Error {
 		b.assume(r.Part, "no propeller_diameter: the propeller is taken as a point at the hub")
 	}
 
-	mass := r.Mass + propeller
-	motorAt := along(face, up, r.Height)
-	body := airframe.Body{Name: r.Name, Kind: "rotor", Mass: mass, Patches: []string{b.out.Geometry.Patches[patch].Name}}
-	body.Centre = scale(add(scale(motorAt, r.Mass), scale(hub, propeller)), 1/mass)
-	whole := motor.shifted(r.Mass, sub(motorAt, body.Centre))
-	// Blades go round: about the diameters of its disc a propeller has half its polar inertia, on average.
-	whole = whole.plus(principal(vec{disc / 2, disc / 2, disc}, axes).shifted(propeller, sub(hub, body.Centre)))
-	body.Inertia = whole
+	body := airframe.Body{Name: r.Name, Kind: "rotor", Patches: []string{b.out.Geometry.Patches[patch].Name}}
+	body.Mass, body.Centre, body.Inertia = combine(append(motor.parts,
+		// Blades go round: about the diameters of its disc a propeller has half its polar inertia, on average.
+		item{propeller, hub, principal(vec{disc / 2, disc / 2, disc}, axes)}))
 	b.out.Properties.Bodies = append(b.out.Properties.Bodies, body)
 
-	polar := r.PolarInertia.Value
-	if !r.PolarInertia.Given {
-		bell := bellRadius * diameter / 2
-		polar = bellShare*r.Mass*bell*bell + disc
+	bell := motor.polar
+	polar := r.PolarInertia.Or(bell + disc)
+	switch {
+	case r.PolarInertia.Given && disc < polar:
+		bell = polar - disc
+	case r.PolarInertia.Given:
+		bell, disc = 0, 0 // what it consists of is not known
+	case r.Bell == nil:
 		b.assume(r.Part, "polar inertia of what spins %s, estimated from half the motor's mass and the propeller's size", kgmm2(polar))
 	}
-	spinning := r.SpinningMass.Or(bellShare*r.Mass + propeller)
-	if !r.SpinningMass.Given {
+	spinning := r.SpinningMass.Or(motor.spinning + propeller)
+	if !r.SpinningMass.Given && r.Bell == nil {
 		b.assume(r.Part, "half of the motor's mass spins")
 	}
 	if !r.Blades.Given {
@@ -128,7 +114,8 @@ func (b *builder) rotor(r *airframefile.Rotor) *fault.Error {
 	}
 	b.out.Properties.Rotors = append(b.out.Properties.Rotors, airframe.Rotor{
 		Name: r.Name, Body: r.Name, Hub: hub, Axis: f.Z, Blades: int(r.Blades.Or(defaultBlades)), Spin: r.Spin,
-		HoverSpeed: r.HoverSpeed, MaxSpeed: r.MaxSpeed, SpinningMass: spinning, PolarInertia: polar, Grade: r.Grade.Or(defaultGrade),
+		HoverSpeed: r.HoverSpeed, MaxSpeed: r.MaxSpeed, SpinningMass: spinning, PolarInertia: polar,
+		BellInertia: bell, PropellerInertia: disc, Grade: r.Grade.Or(defaultGrade),
 	})
 	return nil
 }

@@ -52,16 +52,8 @@ func total(g *airframe.Geometry, p *airframe.Properties) Totals {
 		items = append(items, item{body.Mass, body.Centre, body.Inertia})
 	}
 	var t Totals
-	var moment vec
-	for _, it := range items {
-		t.Mass += it.mass
-		moment = along(moment, it.centre, it.mass)
-	}
-	t.Centre = scale(moment, 1/t.Mass)
 	var sum tensor
-	for _, it := range items {
-		sum = sum.plus(it.inertia.shifted(it.mass, sub(it.centre, t.Centre)))
-	}
+	t.Mass, t.Centre, sum = combine(items)
 	t.Inertia = sum
 	return t
 }

@@ -19,13 +19,16 @@ const (
 )
 
 func orthotropic(name string, e, nu, g12, g13, density, loss, scatter float64, origin string) airframe.Material {
-	return airframe.Material{Name: name, E1: e, E2: e, Nu12: nu, G12: g12, G13: g13, G23: g13, Density: density,
+	return airframe.Material{Name: name, E1: e, E2: e, E3: through, Nu12: nu, G12: g12, G13: g13, G23: g13, Density: density,
 		LossFactor: loss, Typical: true, Scatter: scatter, Origin: origin}
 }
 
+// through is the modulus through the thickness of a laminate, for which the resin counts: 7 to 11 GPa.
+const through = 9 * gpa
+
 func isotropic(name string, e, nu, density, loss, scatter float64, origin string) airframe.Material {
 	g := e / (2 * (1 + nu))
-	return airframe.Material{Name: name, E1: e, E2: e, Nu12: nu, G12: g, G13: g, G23: g, Density: density,
+	return airframe.Material{Name: name, E1: e, E2: e, E3: e, Nu12: nu, G12: g, G13: g, G23: g, Density: density,
 		LossFactor: loss, Isotropic: true, Typical: true, Scatter: scatter, Origin: origin}
 }
 

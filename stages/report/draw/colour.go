@@ -67,6 +67,9 @@ func oklab(light, a, b float64) (rgb [3]int, fits bool) {
 	return rgb, fits
 }
 
+// OnLight gives step k of Levels of the colours on a light page, as #rrggbb.
+func OnLight(k int) string { return onLight.at(k) }
+
 // level gives the class of a share 0 to 1 of the largest displacement.
 func level(share float64) int {
 	return max(0, min(Levels-1, int(share*Levels)))

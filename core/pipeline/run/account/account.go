@@ -19,6 +19,7 @@ type Account struct {
 	Executables []Executable
 	Artifacts   []Artifact
 	Files       []File
+	Figures     []Figure
 	Verdicts    []Verdict
 	Warnings    []Warning
 	Notes       []Note
@@ -46,6 +47,14 @@ type Artifact struct{ Step, Output, Kind, Hash string }
 // File is a file that a step read, as the job names it; without SHA256 it was
 // looked for and not there.
 type File struct{ Step, Path, SHA256 string }
+
+// Figure is a number, quantity, text or truth that a step reported; lists are left out. Number is SI, NaN for what is no
+// number; Dimension is empty for what is no quantity.
+type Figure struct {
+	Step, Name, Text string
+	Number           float64
+	Dimension        string
+}
 
 // Verdict is a requirement. One that is not Judged lacked figures.
 type Verdict struct {
@@ -92,6 +101,10 @@ var Kind = artifact.Kind{
 		}},
 		{Name: "files", About: "files that steps read or looked for", Columns: []artifact.Column{
 			text("step", "label"), text("path", "as the job names it"), text("sha256", "of the content; empty if there was no file"),
+		}},
+		{Name: "figures", About: "numbers, quantities, texts and truths that the steps reported", Columns: []artifact.Column{
+			text("step", "label"), text("name", "figure"), text("text", "with unit"),
+			{Name: "number", Type: artifact.Float, Unit: "SI", About: "NaN for what is no number"}, text("dimension", "of a quantity"),
 		}},
 		{Name: "verdicts", About: "requirements in file order", Columns: []artifact.Column{
 			text("name", "requirement"), text("because", "its reason"), truth("holds", "it holds"), truth("judged", "its figures were there"),
@@ -145,6 +158,12 @@ func (x *Account) Encode() *artifact.Artifact {
 		Set("step", col(x.Files, func(r File) string { return r.Step })).
 		Set("path", col(x.Files, func(r File) string { return r.Path })).
 		Set("sha256", col(x.Files, func(r File) string { return r.SHA256 }))
+	a.Table("figures").
+		Set("step", col(x.Figures, func(r Figure) string { return r.Step })).
+		Set("name", col(x.Figures, func(r Figure) string { return r.Name })).
+		Set("text", col(x.Figures, func(r Figure) string { return r.Text })).
+		Set("number", col(x.Figures, func(r Figure) float64 { return r.Number })).
+		Set("dimension", col(x.Figures, func(r Figure) string { return r.Dimension }))
 	a.Table("verdicts").
 		Set("name", col(x.Verdicts, func(r Verdict) string { return r.Name })).
 		Set("because", col(x.Verdicts, func(r Verdict) string { return r.Because })).
@@ -202,6 +221,11 @@ func Decode(a *artifact.Artifact) *Account {
 	t = a.Table("files")
 	c = cell(t)
 	x.Files = rows(t, func(i int) File { return File{c(i, "step"), c(i, "path"), c(i, "sha256")} })
+	figures := a.Table("figures")
+	f := cell(figures)
+	x.Figures = rows(figures, func(i int) Figure {
+		return Figure{f(i, "step"), f(i, "name"), f(i, "text"), figures.Floats("number")[i], f(i, "dimension")}
+	})
 	verdicts := a.Table("verdicts")
 	v := cell(verdicts)
 	x.Verdicts = rows(verdicts, func(i int) Verdict {

@@ -34,6 +34,8 @@ func fill(v reflect.Value, n *int) {
 	switch v.Kind() {
 	case reflect.String:
 		v.SetString(string(rune('a'+*n%26)) + string(rune('a'+*n/26)))
+	case reflect.Float64:
+		v.SetFloat(float64(*n))
 	case reflect.Bool:
 		v.SetBool(*n%2 == 0)
 	case reflect.Slice:

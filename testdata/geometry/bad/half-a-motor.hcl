@@ -1,0 +1,30 @@
+plate "base" {
+  outline   = "../frame/cut/base.dxf"
+  layer     = "cut"
+  thickness = "2 mm"
+  material  = "carbon-0-90"
+}
+
+rotor "tail" {
+  on          = plate.base
+  at          = ["30 mm", "0 mm"]
+  mass        = "20 g"
+  height      = "8 mm"
+  diameter    = "22 mm"
+  spin        = "clockwise"
+  hover_speed = "15000 rpm"
+  max_speed   = "30000 rpm"
+  bell {
+    mass     = "12 g"
+    height   = "10 mm"
+    diameter = "24 mm"
+    length   = "14 mm"
+  }
+}
+
+gyro "stack" {
+  on   = plate.base
+  at   = ["0 mm", "0 mm"]
+  mass = "12 g"
+  size = ["20 mm", "20 mm", "6 mm"]
+}
