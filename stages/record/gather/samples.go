@@ -5,7 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
-	"runtime"
+	"runtime/debug"
 	"slices"
 
 	"hushframe/core/extension"
@@ -165,11 +165,12 @@ func (d *Data) pass(ctx context.Context, reader extension.Reader, open source, c
 	return r, nil
 }
 
-// tidy returns the memory of columns that have become slices, where it is much: chunks hold no pointers, so that this is quick.
+// tidy returns the memory of columns that have become slices, where it is much. Chunks of all columns lie between each other, so that
+// what is free has to go back to the system before another whole column is laid out.
 func (r *raw) tidy() {
 	const much = 64 << 20
 	if r.free += 8 * int64(r.rows); r.free > much {
-		runtime.GC()
+		debug.FreeOSMemory()
 		r.free = 0
 	}
 }

@@ -79,7 +79,7 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 		add("no-rotor-speed", r.set.File, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")
 	}
 	for i, c := range r.Plan.Rotors {
-		if len(r.Data.Rotors[i].Cut(timing.Start, timing.End).Time) == 0 {
+		if within(r.Data.Rotors[i].Time, timing.Start, timing.End).Len() == 0 {
 			add("no-rotor-speed", c.Column, "", "rotor %s has no speed within the times used", c.Name)
 		}
 	}
