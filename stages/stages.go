@@ -5,6 +5,7 @@ import (
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/compare"
 	"hushframe/stages/contrast"
+	"hushframe/stages/filter"
 	"hushframe/stages/identify"
 	"hushframe/stages/importgeom"
 	"hushframe/stages/meshgen"
@@ -26,6 +27,7 @@ func Builtin() []stage.Stage {
 		identify.Stage{},
 		compare.Stage{},
 		contrast.Stage{},
+		filter.Stage{},
 		verify.Stage{},
 		report.Stage{},
 	}
