@@ -28,6 +28,7 @@ type content struct {
 	run        *account.Account
 	sources    []kinds.DocumentSource
 
+	charts  []*draw.Chart // in the order of the page
 	surface *draw.Surface
 	view    *draw.View
 }

@@ -9,6 +9,7 @@ import (
 	"hushframe/core/mechanics/mesh"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
+	"hushframe/stages/report/pack"
 )
 
 // Sources are the artifacts of a report; whatever was not included is nil.
@@ -16,32 +17,30 @@ type Sources struct {
 	Properties *airframe.Properties
 	Mesh       *mesh.Mesh
 	Modes      *kinds.Modes
-	Response   *kinds.Response
-	Spectra    *kinds.Spectra
-	Comparison *kinds.Comparison
 }
 
 // Scene is all that moves on a page; what is nil is not shown.
 type Scene struct {
-	Light  []string `json:"light"` // steps of the colour scale on light and dark paper
-	Dark   []string `json:"dark"`
-	Frame  *Frame   `json:"frame,omitempty"`
-	Shapes *Shapes  `json:"shapes,omitempty"`
-	Modes  []Mode   `json:"modes,omitempty"`
+	Light  []string      `json:"light"` // steps of the colour scale on light and dark paper
+	Dark   []string      `json:"dark"`
+	Frame  *Frame        `json:"frame,omitempty"`
+	Shapes *Shapes       `json:"shapes,omitempty"`
+	Modes  []Mode        `json:"modes,omitempty"`
+	Charts []*draw.Chart `json:"charts,omitempty"`
 }
 
 // Mode is one elastic mode.
 type Mode struct {
-	Number    int       `json:"number"`
-	Vector    int       `json:"vector"`
-	Frequency float64   `json:"frequency"` // Hz
-	Damping   float64   `json:"damping"`   // ratio
-	About     string    `json:"about"`
-	Rotation  [3]Number `json:"rotation"` // of the gyro per unit modal coordinate, rad
-	Strength  [3]Number `json:"strength"` // (deg/s)/N
-	Strain    []Share   `json:"strain"`   // by part, joint and mount, greatest first
-	Kinds     []Share   `json:"kinds"`    // by kind of strain, greatest first
-	Kinetic   []Share   `json:"kinetic"`  // by what carries mass, greatest first
+	Number    int            `json:"number"`
+	Vector    int            `json:"vector"`
+	Frequency float64        `json:"frequency"` // Hz
+	Damping   float64        `json:"damping"`   // ratio
+	About     string         `json:"about"`
+	Rotation  [3]pack.Number `json:"rotation"` // of the gyro per unit modal coordinate, rad
+	Strength  [3]pack.Number `json:"strength"` // (deg/s)/N
+	Strain    []Share        `json:"strain"`   // by part, joint and mount, greatest first
+	Kinds     []Share        `json:"kinds"`    // by kind of strain, greatest first
+	Kinetic   []Share        `json:"kinetic"`  // by what carries mass, greatest first
 }
 
 // Share is a named share of a whole.
@@ -69,7 +68,7 @@ func New(s Sources, describe func(number int) string) *Scene {
 			mode := Mode{Number: m.Number, Vector: m.Vector, Frequency: m.Frequency, Damping: m.Loss / 2, About: describe(m.Number),
 				Strain: shares(s.Modes.Survey.Groups, m.ByGroup), Kinds: shares(s.Modes.Survey.Kinds, m.ByKind), Kinetic: shares(s.Modes.Survey.Carriers, m.ByCarrier)}
 			for axis := range 3 {
-				mode.Rotation[axis], mode.Strength[axis] = Number(m.Rotation[axis]), Number(m.Strength[axis]/degree)
+				mode.Rotation[axis], mode.Strength[axis] = pack.Number(m.Rotation[axis]), pack.Number(m.Strength[axis]/degree)
 			}
 			x.Modes = append(x.Modes, mode)
 		}

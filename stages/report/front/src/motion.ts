@@ -62,3 +62,16 @@ export function modeMotion(scene: Scene, number: number): Motion | null {
   weights[mode.vector] = mode.rotation[main] < 0 ? -1 : 1
   return superpose(frame, shapes, weights, null)
 }
+
+/** The motion at a frequency within the sweep, between the frequencies known by straight lines of the weights. */
+export function operatingMotion(scene: Scene, frequency: number): Motion | null {
+  const { frame, shapes, operating } = scene
+  if (!frame || !shapes || !operating) return null
+  const f = operating.frequency, n = shapes.kinds.length
+  if (frequency < f[0] || frequency > f[f.length - 1]) return null
+  let k = 0
+  while (k < f.length - 2 && f[k + 1] < frequency) k++
+  const t = f[k + 1] > f[k] ? (frequency - f[k]) / (f[k + 1] - f[k]) : 0
+  const mix = (x: Float32Array) => Float32Array.from({ length: n }, (_, v) => x[k * n + v] * (1 - t) + x[(k + 1) * n + v] * t)
+  return superpose(frame, shapes, mix(operating.real), mix(operating.imaginary))
+}

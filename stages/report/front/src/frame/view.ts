@@ -103,7 +103,7 @@ export class View {
     const width = Math.max(1, this.host.clientWidth), height = Math.max(1, this.host.clientHeight)
     const [columns, rows] = this.grid(), aspect = (width / columns) / (height / rows)
     const half = this.camera.fov / 2 * Math.PI / 180
-    const distance = 0.92 * this.radius / Math.sin(Math.min(half, Math.atan(Math.tan(half) * aspect)))
+    const distance = 1.02 * this.radius / Math.sin(Math.min(half, Math.atan(Math.tan(half) * aspect)))
     this.controls.target.copy(this.middle)
     this.camera.position.copy(this.middle).addScaledVector(d, distance)
     this.camera.near = distance / 100
