@@ -43,14 +43,14 @@ func axisChart(c *content, axis int) *draw.Chart {
 			curve.Lower, curve.Upper = scaled(curve.Y, sp.Lower), scaled(curve.Y, sp.Upper)
 			ch.Notes = append(ch.Notes, fmt.Sprintf("shaded: %.0f %% confidence of the recording", 100*sp.Level))
 		}
-		ch.Curves = append(ch.Curves, curve)
+		ch.Curves = append(ch.Curves, draw.Thin(curve, mostPoints))
 		about = append(about, "the recording over it")
 	}
 	switch {
 	case c.response != nil:
 		r := c.response
 		ch.X.From, ch.X.To = math.Min(ch.X.From, r.From), math.Max(ch.X.To, r.To)
-		ch.Curves = append(ch.Curves, draw.Curve{Name: "predicted", Class: "predicted", X: r.Frequency, Y: scaled(r.Density[axis], scale/square)})
+		ch.Curves = append(ch.Curves, draw.Thin(draw.Curve{Name: "predicted", Class: "predicted", X: r.Frequency, Y: scaled(r.Density[axis], scale/square)}, mostPoints))
 		if flown := r.Flown[axis]; flown != nil && somewhere(flown) {
 			ch.Curves = append(ch.Curves, draw.Curve{Name: "with rotor lines", Class: "flown", X: r.Frequency, Y: scaled(flown, scale/square)})
 		}

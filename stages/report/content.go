@@ -22,6 +22,7 @@ type content struct {
 	response   *kinds.Response
 	spectra    *kinds.Spectra
 	comparison *kinds.Comparison
+	filtered   *kinds.Filtered
 	verified   *kinds.Verification
 	identified *kinds.Identified
 	difference *kinds.Difference
@@ -78,6 +79,8 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
 	case "comparison":
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
+	case "filtered":
+		err = once(in, &c.filtered, a, kinds.DecodeFiltered)
 	case "verification":
 		err = once(in, &c.verified, a, kinds.DecodeVerification)
 	case "identified":

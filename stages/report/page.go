@@ -80,11 +80,14 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if c.comparison != nil {
 		add(comparisonSection(c.comparison))
 	}
+	add(identifiedSection(c))
+	add(mapSection(c))
 	if c.spectra != nil {
 		add(recordingSection(c.spectra))
 	}
+	add(filteredSection(c))
 	if c.difference != nil {
-		add(differenceSection(c.difference))
+		add(differenceSection(c))
 	}
 	if c.verified != nil {
 		add(verificationSection(c.verified))
@@ -104,7 +107,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	d := &kinds.Document{Title: p.Title, Page: name, Sources: c.sources, Files: map[string][]byte{}}
 	folder := strings.TrimSuffix(name, path.Ext(name)) + "-tables"
 	for _, s := range p.Sections {
-		for _, b := range s.Blocks {
+		for _, b := range s.all() {
 			if t := b.Table; t != nil {
 				t.File = folder + "/" + t.Name + ".csv"
 				if _, taken := d.Files[t.File]; taken {

@@ -37,6 +37,7 @@ func responseSection(c *content) *section {
 		s.table(lineTable(r))
 		whirlSection(s, c)
 		shapeGallery(s, c)
+		s.fold(planes(c))
 	}
 	return s
 }

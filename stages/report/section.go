@@ -71,3 +71,22 @@ func (s *section) table(t *table) {
 		s.Blocks = append(s.Blocks, block{Table: t})
 	}
 }
+
+// all lists the blocks of a section with those that are folded away.
+func (s *section) all() []block {
+	var out []block
+	for _, b := range s.Blocks {
+		out = append(out, b)
+		if b.Fold != nil {
+			out = append(out, b.Fold.all()...)
+		}
+	}
+	return out
+}
+
+// fold adds a section that is shown when asked for.
+func (s *section) fold(inner *section) {
+	if inner != nil && len(inner.Blocks) > 0 {
+		s.Blocks = append(s.Blocks, block{Fold: inner})
+	}
+}
