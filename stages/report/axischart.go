@@ -14,7 +14,7 @@ import (
 // axisChart gathers what is known of one axis.
 func axisChart(c *content, axis int) *draw.Chart {
 	name := kinds.AxisNames[axis]
-	ch := &draw.Chart{ID: "response-" + name, Title: upper(name), Follow: "frequency",
+	ch := &draw.Chart{ID: "response-" + name, Title: upper(name), Follow: "frequency", Axis: name,
 		X: draw.Axis{Label: "frequency, Hz", From: math.Inf(1), To: math.Inf(-1), Either: true},
 		Y: draw.Axis{Label: "gyro rate, (deg/s)²/Hz", Log: true, Either: true}}
 	scale := 1.0

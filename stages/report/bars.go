@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"sort"
+	"strings"
 
 	"hushframe/stages/kinds"
 )
@@ -134,6 +135,39 @@ func makerBars(r *kinds.Response) *bars {
 			}
 			row.Pieces = append(row.Pieces, q)
 		}
+		b.Rows = append(b.Rows, row)
+	}
+	if len(b.Rows) == 0 {
+		return nil
+	}
+	return b
+}
+
+// driverBars shows for each peak which rotors make it.
+func driverBars(r *kinds.Response) *bars {
+	b := &bars{ID: "driver-bars", Title: "Which rotors make each peak", About: "Share of the density that each rotor makes alone under the assumed source."}
+	for i, x := range r.Rotors {
+		b.Keys = append(b.Keys, barKey{x.Rotor, fmt.Sprintf("p%d", min(i, pieceClasses-1)), ""})
+	}
+	for _, p := range r.Peaks {
+		whole := 0.0
+		for _, v := range p.RotorShares {
+			whole += math.Max(0, v)
+		}
+		if len(p.RotorShares) != len(r.Rotors) || !(whole > 0) {
+			continue
+		}
+		row := barRow{Name: fmt.Sprintf("%s, %.1f\u00a0Hz", p.Axis, p.Frequency)}
+		var said []string
+		for i, v := range p.RotorShares {
+			said = append(said, share(r.Rotors[i].Rotor, v))
+			if v/whole >= 0.005 {
+				q := newPiece(fmt.Sprintf("p%d", min(i, pieceClasses-1)), r.Rotors[i].Rotor, v)
+				q.Width = math.Round(1000*v/whole) / 10
+				row.Pieces = append(row.Pieces, q)
+			}
+		}
+		row.Said = strings.Join(said, ", ")
 		b.Rows = append(b.Rows, row)
 	}
 	if len(b.Rows) == 0 {

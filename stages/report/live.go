@@ -38,7 +38,7 @@ func (c *content) scene() *scene.Scene {
 			about[m.Number] = modeCaption(c.modes, m)
 		}
 	}
-	x := scene.New(scene.Sources{Properties: c.properties, Mesh: c.mesh, Modes: c.modes},
+	x := scene.New(scene.Sources{Properties: c.properties, Mesh: c.mesh, Modes: c.modes, Response: c.response},
 		func(number int) string { return about[number] })
 	x.Charts = c.charts
 	return x

@@ -229,3 +229,53 @@ func slug(s string) string {
 	}
 	return string(out)
 }
+
+// predictedMap shows the predicted spectrum of an axis over rotor speed; nil when the response holds none.
+func predictedMap(r *kinds.Response, axis int) *draw.Chart {
+	m := r.Map
+	if len(m.Rows) < 2 || len(m.Frequency) == 0 {
+		return nil
+	}
+	var x, y []float64
+	for k := range m.Rows {
+		speed := m.Rows[k].Speed / rpm
+		if k == 0 {
+			x = append(x, speed-(m.Rows[1].Speed/rpm-speed)/2)
+		}
+		next := speed + (speed - x[k])
+		if k+1 < len(m.Rows) {
+			next = (speed + m.Rows[k+1].Speed/rpm) / 2
+		}
+		x = append(x, next)
+	}
+	x[0] = math.Max(0, x[0])
+	for _, f := range m.Frequency {
+		y = append(y, f-m.Width/2)
+	}
+	y = append(y, m.Frequency[len(m.Frequency)-1]+m.Width/2)
+	cells := make([]float64, len(m.Rows)*len(m.Frequency))
+	for k, row := range m.Rows {
+		for band, v := range row.Density[axis] {
+			cells[band*len(m.Rows)+k] = v / square
+		}
+	}
+	g := draw.NewGrid("(deg/s)²/Hz", x, y, cells, mapDecades)
+	if g == nil {
+		return nil
+	}
+	name := kinds.AxisNames[axis]
+	ch := &draw.Chart{ID: "predicted-map-" + name, Title: upper(name) + " over rotor speed, predicted", Grid: g,
+		X: draw.Axis{Label: "speed of the first rotor, rpm", From: x[0], To: x[len(x)-1]}, Y: draw.Axis{Label: "frequency, Hz", From: y[0], To: y[len(y)-1]}}
+	ch.About = fmt.Sprintf("Map of the predicted density of the %s rate over rotor speed and frequency, with the lines of orders and the natural frequencies. Colours run from %.2g to %.2g (deg/s)²/Hz.", name, g.Low, g.High)
+	seen := map[float64]bool{}
+	for _, o := range r.Orders {
+		if !seen[o.Order] {
+			seen[o.Order] = true
+			line := orderLine(fmt.Sprintf("×%.3g", o.Order), o.Order, ch.X.To)
+			line.Class = "over-order"
+			ch.Curves = append(ch.Curves, line)
+		}
+	}
+	ch.Curves = append(ch.Curves, modeOverlay(r, ch)...)
+	return ch
+}

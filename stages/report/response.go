@@ -32,6 +32,7 @@ func responseSection(c *content) *section {
 		s.aside(fmt.Sprintf("The source is assumed, not measured: %s N²/Hz of force and %s (N·m)²/Hz of moment along each component at each rotor, added over rotors as power. Where the peaks lie and how they compare says more than their level.",
 			plainPower(r.Force), plainPower(r.Moment)))
 		s.bars(makerBars(r))
+		s.bars(driverBars(r))
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))

@@ -18,6 +18,14 @@ func whirlSection(s *section, c *content) {
 	s.heading("Over rotor speed")
 	s.text("Natural frequencies of the damped frame with its rotors spinning. Rings are critical speeds, where an order of the rotors meets a mode.")
 	s.chart(c, whirlChart(r), "")
+	maps := &section{Title: "Predicted spectra over rotor speed"}
+	for axis := range kinds.AxisNames {
+		if ch := predictedMap(r, axis); ch != nil {
+			maps.heading(ch.Title)
+			maps.chart(c, ch, "")
+		}
+	}
+	s.fold(maps)
 	s.table(spinTable(r))
 	s.table(whirlTable(r))
 	s.table(mapTable(r))

@@ -26,6 +26,7 @@ type Chart struct {
 
 	// Follow says what the horizontal axis is for the rest of the page: "frequency" lets the frame follow.
 	Follow string `json:"follow,omitempty"`
+	Axis   string `json:"axis,omitempty"`   // of the gyro that the chart is about
 	Square bool   `json:"square,omitempty"` // both axes have one scale
 }
 

@@ -11,7 +11,7 @@ import (
 	"hushframe/stages/report/pack"
 )
 
-// Frame is the frame as it is drawn. pack.Indices of nodes count the nodes drawn.
+// Frame is the frame as it is drawn. Indices of nodes count the nodes drawn.
 type Frame struct {
 	Nodes  pack.Floats   `json:"nodes"` // x, y, z of each, m
 	Parts  []Part        `json:"parts"`
@@ -59,7 +59,7 @@ type Shapes struct {
 
 // mostShape bounds the bytes of packed shapes, and finest and coarsest the lengths (m) of edges drawn.
 const (
-	mostShape = 2_600_000
+	mostShape = 2_000_000
 	finest    = 2e-3
 	coarsest  = 40e-3
 )

@@ -18,8 +18,8 @@ export interface Mode {
 /** Strain energy density at the nodes drawn, mode after mode, 255 for the greatest of each. */
 export interface Density { modes: number[]; levels: Uint8Array }
 /** How much of each vector moves at each frequency when the frame is driven: complex weights, frequency after frequency. */
-export interface Operating { about: string; frequency: Float32Array; real: Float32Array; imaginary: Float32Array }
-export interface Scene { light: string[]; dark: string[]; frame?: Frame; shapes?: Shapes; modes?: Mode[]; charts: ChartData[]; density?: Density; operating?: Operating }
+export interface Operating { axis: string; frequency: Float32Array; step: Float32Array; real: Int16Array; imaginary: Int16Array }
+export interface Scene { light: string[]; dark: string[]; frame?: Frame; shapes?: Shapes; modes?: Mode[]; charts: ChartData[]; density?: Density; operating: Operating[] }
 
 function bytes(text: string): ArrayBuffer {
   const raw = atob(text), out = new Uint8Array(raw.length)
@@ -49,7 +49,11 @@ export function unpack(text: string): Scene {
     x.shapes.sites = floats(x.shapes.sites)
   }
   if (x.density) x.density.levels = new Uint8Array(bytes(x.density.levels))
-  if (x.operating) for (const key of ['frequency', 'real', 'imaginary']) x.operating[key] = floats(x.operating[key])
+  x.operating ??= []
+  for (const o of x.operating) {
+    for (const key of ['frequency', 'step']) o[key] = floats(o[key])
+    for (const key of ['real', 'imaginary']) o[key] = steps(o[key])
+  }
   x.charts ??= []
   x.charts.forEach(unpackChart)
   return x as Scene
@@ -63,7 +67,7 @@ export interface Point { x: number; y: number; label?: string; class: string; ab
 export interface Grid { label: string; x: Float32Array; y: Float32Array; low: number; high: number; cells: Uint8Array }
 export interface ChartData {
   id: string; title: string; about: string; x: Axis; y: Axis; grid?: Grid; bands: Band[]; curves: Curve[]; marks: Mark[]; points: Point[]
-  notes: string[]; follow?: string; square?: boolean
+  notes: string[]; follow?: string; axis?: string; square?: boolean
 }
 
 function unpackChart(c: any) {

@@ -36,9 +36,9 @@ function start() {
   if (host && scene.frame) {
     root.classList.add('moving')
     try {
-      companion = new Companion(host, scene, state, scene.operating !== undefined)
+      companion = new Companion(host, scene, state, scene.operating.length > 0)
       const view = companion.view
-      view.operating = f => operatingMotion(scene, f)
+      view.operating = (f, axis) => operatingMotion(scene, f, axis)
       view.density = n => {
         const d = scene.density, i = d ? d.modes.indexOf(n) : -1
         if (!d || i < 0) return null
@@ -54,7 +54,7 @@ function start() {
   }
   const charts = scene.charts.flatMap(c => {
     const figure = document.querySelector<HTMLElement>(`[data-chart="${CSS.escape(c.id)}"]`)
-    return figure ? [new Chart(figure, c, scene, state, companion !== null && scene.operating !== undefined)] : []
+    return figure ? [new Chart(figure, c, scene, state, companion !== null && scene.operating.some(o => o.axis === c.axis))] : []
   })
   if (companion) {
     for (const e of document.querySelectorAll<HTMLElement>('[data-mode]:not(text)')) {

@@ -10,8 +10,7 @@ import { spread } from './spread'
 import { button, digits, html, svg } from './svg'
 import { between, drawable, nearest, trace, type Place } from './trace'
 
-/** What a reader would call a class of curves. */
-const ends = new Set(['order']) // classes named at the end of the curve, with all short names
+const ends = new Set(['order', 'over-order']) // classes named at the end of the curve, with all short names
 
 export class Chart {
   readonly root: HTMLElement
@@ -245,10 +244,11 @@ export class Chart {
           break
         }
     }
-    list.sort((a, b) => a.y - b.y)
-    const height = Math.max(9, Math.min(14, (p.bottom - p.top + 20) / Math.max(1, list.length)))
-    const where = spread(list.map(l => l.y), height, p.top - 6, p.bottom + 4) ?? list.map(l => l.y)
-    list.forEach((l, i) => picture.append(svg('text', { class: 'curve-label ' + l.c.class, x: l.x, y: where[i] + 4, 'text-anchor': 'start' }, l.c.name)))
+    // Names at the right border give way to each other; others stand where their line ends.
+    const border = list.filter(l => l.x > p.right).sort((a, b) => a.y - b.y), height = Math.max(9, Math.min(13, (p.bottom - p.top + 20) / Math.max(1, border.length)))
+    const where = spread(border.map(l => l.y), height, p.top - 6, p.bottom + 4) ?? border.map(l => l.y)
+    border.forEach((l, i) => { l.y = where[i] })
+    for (const l of list) picture.append(svg('text', { class: 'curve-label ' + l.c.class, x: l.x, y: l.y + 4, 'text-anchor': 'start' }, l.c.name))
   }
 
   private points(picture: SVGSVGElement, y: Axis) {
@@ -311,7 +311,7 @@ export class Chart {
   /** Puts the cursor at a value; the frame follows where the axis is frequency. */
   point(x: number | null) {
     this.cursor = x === null ? null : Math.max(this.x.from, Math.min(this.x.to, x))
-    if (this.cursor !== null && this.data.follow === 'frequency' && this.canFollow) this.state.set({ shown: { kind: 'frequency', frequency: this.cursor }, beside: [] })
+    if (this.cursor !== null && this.data.follow === 'frequency' && this.canFollow) this.state.set({ shown: { kind: 'frequency', frequency: this.cursor, axis: this.data.axis ?? '' }, beside: [] })
     else this.mark()
   }
 

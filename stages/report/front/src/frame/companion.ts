@@ -50,11 +50,17 @@ export class Companion {
     this.select.addEventListener('change', () => {
       const v = this.select.value
       if (v === 'rest') this.state.set({ shown: { kind: 'rest' }, beside: [] })
-      else if (v === 'frequency') this.state.set({ shown: { kind: 'frequency', frequency: this.state.now.shown.kind === 'frequency' ? this.state.now.shown.frequency : this.currentFrequency() }, beside: [] })
+      else if (v === 'frequency') this.state.set({ shown: { kind: 'frequency', frequency: this.currentFrequency(), axis: this.axis() }, beside: [] })
       else this.state.set({ shown: { kind: 'mode', number: Number(v) }, beside: [] })
     })
     return html('div', { class: 'transport', role: 'group', 'aria-label': 'motion' },
       button('‹', 'the mode below', () => this.next(-1)), this.play, button('›', 'the mode above', () => this.next(1)), this.select, this.beside())
+  }
+
+  /** The axis that the driven frame was last seen on, or the first. */
+  private axis(): string {
+    const s = this.state.now.shown
+    return s.kind === 'frequency' ? s.axis : this.scene.operating[0]?.axis ?? ''
   }
 
   private currentFrequency(): number {
@@ -217,7 +223,7 @@ export class Companion {
       this.about.textContent = m ? `${m.about} Damping ratio ${(100 * m.damping).toFixed(2)} %.` : ''
     } else if (s.kind === 'frequency') {
       this.title.textContent = `As driven · ${s.frequency.toFixed(1)} Hz`
-      this.about.textContent = this.scene.operating?.about ?? ''
+      this.about.textContent = `All rotors under the assumed broadband source: the motion in step with the ${s.axis} rate of the gyro. Move along a response chart to follow it.`
     } else {
       this.title.textContent = 'The frame at rest'
       this.about.textContent = 'Drag to turn it; pinch or roll to come nearer.'
