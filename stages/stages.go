@@ -13,6 +13,7 @@ import (
 	"hushframe/stages/report"
 	"hushframe/stages/solve"
 	"hushframe/stages/sweep"
+	"hushframe/stages/transfer"
 	"hushframe/stages/verify"
 )
 
@@ -25,6 +26,7 @@ func Builtin() []stage.Stage {
 		sweep.Stage{},
 		record.Stage{},
 		identify.Stage{},
+		transfer.Stage{},
 		compare.Stage{},
 		contrast.Stage{},
 		filter.Stage{},

@@ -55,7 +55,11 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 			d.Rate = h.Rate
 		}
 	}
-	channels := slices.Concat(p.Axes, p.Rotors, p.SetPoints)
+	axes := p.Axes
+	if p.Force != nil {
+		axes = append(slices.Clone(axes), *p.Force)
+	}
+	channels := slices.Concat(axes, p.Rotors, p.SetPoints)
 	if p.Throttle != nil {
 		channels = append(channels, *p.Throttle)
 	}
@@ -76,7 +80,7 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 	axesClock := p.Axes[0].Clock
 	d.Rows = int64(passes[axesClock].rows)
 	var err error
-	if d.Axes, err = d.series(passes, p.Axes, true); err != nil {
+	if d.Axes, err = d.series(passes, axes, true); err != nil {
 		return nil, err
 	}
 	for _, c := range p.Rotors {

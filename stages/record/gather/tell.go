@@ -75,7 +75,7 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 	for _, f := range r.Findings(timing) {
 		add(strings.ReplaceAll(f.What, " ", "-"), cmp.Or(f.Where, r.set.File), "", "%s; %s", f.Extent, f.Consequence)
 	}
-	if len(r.Plan.Rotors) == 0 {
+	if len(r.Plan.Rotors) == 0 && !r.set.Force {
 		add("no-rotor-speed", r.set.File, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")
 	}
 	for i, c := range r.Plan.Rotors {

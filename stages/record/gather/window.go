@@ -42,7 +42,7 @@ func (r *Recording) Window() (Series, recording.Timing, error) {
 			stretches = append(stretches, s)
 			r.Pieces = append(r.Pieces, Piece{Piece: recording.Piece{From: axes.Time[s.First], To: axes.Time[s.End-1], Level: math.NaN(), Why: "window"}, Samples: s.Len(), Used: true})
 		}
-	case n > 1:
+	case n > 1 && !r.set.Force:
 		if found := r.steady(axes); len(found) > 0 {
 			stretches = found
 		}
