@@ -53,7 +53,7 @@ func TestWings(t *testing.T) {
 			case (under(to, "google.golang.org/grpc") || under(to, "github.com/hashicorp/go-plugin")) && !under(from, "hushframe/plugins"):
 				forbidden = "gRPC belongs to the boundary"
 			case under(to, "github.com/apache/arrow-go") && !under(from, pipeline+"artifact", "hushframe/plugins", "hushframe/stages/record/columnar"):
-				forbidden = "Arrow belongs to artifact and to the reader of Arrow recordings"
+				forbidden = "Arrow belongs to artifact and to the readers of Arrow and Parquet recordings"
 			case kernel(from) && from != "hushframe/core/known" && (to == "os" || to == "net" || to == "net/http"):
 				forbidden = "kernels touch no files"
 			case under(from, pipeline+"stage") && !strings.HasPrefix(to, pipeline+"fault") && strings.Contains(strings.SplitN(to, "/", 2)[0], "."):

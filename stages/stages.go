@@ -5,6 +5,7 @@ import (
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/compare"
 	"hushframe/stages/contrast"
+	"hushframe/stages/filter"
 	"hushframe/stages/identify"
 	"hushframe/stages/importgeom"
 	"hushframe/stages/meshgen"
@@ -12,6 +13,7 @@ import (
 	"hushframe/stages/report"
 	"hushframe/stages/solve"
 	"hushframe/stages/sweep"
+	"hushframe/stages/transfer"
 	"hushframe/stages/verify"
 )
 
@@ -24,8 +26,10 @@ func Builtin() []stage.Stage {
 		sweep.Stage{},
 		record.Stage{},
 		identify.Stage{},
+		transfer.Stage{},
 		compare.Stage{},
 		contrast.Stage{},
+		filter.Stage{},
 		verify.Stage{},
 		report.Stage{},
 	}

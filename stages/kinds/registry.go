@@ -6,7 +6,7 @@ import "hushframe/core/pipeline/artifact"
 func Registry() artifact.Registry {
 	return artifact.NewRegistry(
 		GeometryKind, PropertiesKind, MeshKind, ModesKind,
-		SpectraKind, IdentifiedKind, FilteredKind,
+		SpectraKind, TransferKind, IdentifiedKind, FilteredKind,
 		ComparisonKind,
 		ResponseKind,
 		DocumentKind, VerificationKind, MatricesKind,

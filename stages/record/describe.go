@@ -161,11 +161,14 @@ func axisOf(c gather.Channel, values, density []float64) kinds.SpectraAxis {
 	}
 }
 
+// mostSpeeds is the number of speeds of a rotor that its bands are made from; of more, some are passed over evenly.
+const mostSpeeds = 1 << 19
+
 // rotors adds the speeds of the rotors and the bands of their orders, within the times of the spectra.
 func rotors(s *kinds.Spectra, r *gather.Recording, set settings) {
 	var turning []order.Rotor
 	for i, c := range r.Plan.Rotors {
-		speeds := r.Used(r.Data.Rotors[i]).Values[0]
+		speeds := r.UsedValues(r.Data.Rotors[i], mostSpeeds)
 		sorted := slices.Clone(speeds)
 		slices.Sort(sorted)
 		x := kinds.SpectraRotor{Rotor: c.Name, Column: c.Column, Blades: set.blades, Median: math.NaN(), Low: math.NaN(), High: math.NaN()}

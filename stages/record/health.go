@@ -21,6 +21,8 @@ const (
 	mostRate   = 70.0          // rad/s, 4000 deg/s: more than gyros of this kind reach
 	quietRate  = 0.25 * degree // rad/s about the mean: as quiet as on a table
 	gravity    = 9.80665       // m/s²
+
+	enoughForSteps = 1 << 20 // samples that show in what steps a column comes
 )
 
 // findings lists what is not as it should be, with its extent and what it does to the spectra.
@@ -51,7 +53,7 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		if a.Repeated > muchRepeated {
 			add("repeats", a.Column, "mirrors appear above half the true rate", "%.0f %% of the samples equal the one before", 100*a.Repeated)
 		}
-		steps, floor := recording.Quantised(values, s.Rate), lowest(a.Density)
+		steps, floor := recording.Quantised(values[:min(len(values), enoughForSteps)], s.Rate), lowest(a.Density)
 		if steps.Step > 0 && steps.Density > loudSteps*floor {
 			add("coarse steps", a.Column, "hides what is weaker than that", "steps of %.3g %s add noise at %.0f %% of the floor", shownRate(a, steps.Step), shownUnit(a), 100*steps.Density/floor)
 		}

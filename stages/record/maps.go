@@ -4,7 +4,6 @@ import (
 	"math"
 	"slices"
 
-	"hushframe/core/signal/order"
 	"hushframe/core/signal/recording"
 	"hushframe/core/signal/spectrum"
 	"hushframe/stages/kinds"
@@ -34,23 +33,20 @@ func maps(r *gather.Recording, axes gather.Series, timing recording.Timing, set 
 	}
 	ws.Overlap = ws.Segment / 2
 	var out []kinds.SpectraMapRow
-	levels := steering(r, axes)
+	levels := steering(r)
 	for i := range r.Plan.Axes {
 		runs := gather.Runs(axes.Values[i], timing.Runs)
 		for _, against := range []string{kinds.MapTime, kinds.MapThrottle, kinds.MapRotorSpeed} {
-			level, unit := axes.Time, "s"
-			if against != kinds.MapTime {
-				level, unit = levels[against].values, levels[against].unit
-			}
-			if level == nil {
+			level, ok := levels[against]
+			if !ok {
 				continue
 			}
-			rows, err := cells(runs, timing.Runs, level, ws, against)
+			rows, err := cells(runs, timing.Runs, axes.Time, level, ws, against)
 			if err != nil {
 				return nil, nil // too short for a map: the averages say so if they are, too
 			}
 			for _, row := range rows {
-				row.Axis, row.Against, row.Unit = i, against, unit
+				row.Axis, row.Against, row.Unit = i, against, level.unit
 				out = append(out, row)
 			}
 		}
@@ -58,56 +54,58 @@ func maps(r *gather.Recording, axes gather.Series, timing recording.Timing, set 
 	return out, nil
 }
 
-type steeringLevel struct {
-	values []float64 // per sample of the axes
-	unit   string
+// level gives the mean of what a map lies against between two times.
+type level struct {
+	unit string
+	mean func(from, to float64) float64
 }
 
-// steering brings throttle and mean rotor speed to the samples of the axes.
-func steering(r *gather.Recording, axes gather.Series) map[string]steeringLevel {
-	out := map[string]steeringLevel{}
+// steering gives the levels that are recorded.
+func steering(r *gather.Recording) map[string]level {
+	out := map[string]level{kinds.MapTime: {"s", func(from, to float64) float64 { return (from + to) / 2 }}}
 	if t := r.Data.Throttle; t != nil && t.Len() > 0 {
-		out[kinds.MapThrottle] = steeringLevel{order.Follow(t.Time, t.Values[0], axes.Time), "1"}
+		out[kinds.MapThrottle] = level{"1", func(from, to float64) float64 { return meanBetween(t.Time, t.Values[0], from, to) }}
 	}
-	var mean []float64
-	count := 0.0
+	var turning []gather.Series
 	for _, s := range r.Data.Rotors {
-		if s.Len() == 0 {
-			continue
+		if s.Len() > 0 {
+			turning = append(turning, s)
 		}
-		count++
-		for i, v := range order.Follow(s.Time, s.Values[0], axes.Time) {
-			if mean == nil {
-				mean = make([]float64, len(axes.Time))
+	}
+	if len(turning) > 0 {
+		out[kinds.MapRotorSpeed] = level{"rad/s", func(from, to float64) float64 {
+			sum := 0.0
+			for _, s := range turning {
+				sum += math.Abs(meanBetween(s.Time, s.Values[0], from, to))
 			}
-			mean[i] += math.Abs(v)
-		}
-	}
-	for i := range mean {
-		mean[i] /= count
-	}
-	if mean != nil {
-		out[kinds.MapRotorSpeed] = steeringLevel{mean, "rad/s"}
+			return sum / float64(len(turning))
+		}}
 	}
 	return out
 }
 
+// meanBetween is the mean of the samples from one time to another; where there is none, the sample before, or else the first.
+func meanBetween(time, values []float64, from, to float64) float64 {
+	first, _ := slices.BinarySearch(time, from)
+	sum, count := 0.0, 0.0
+	for i := first; i < len(time) && time[i] <= to; i++ {
+		sum, count = sum+values[i], count+1
+	}
+	if count == 0 {
+		return values[max(0, first-1)]
+	}
+	return sum / count
+}
+
 // cells averages the segments whose mean level falls into the same cell. Cells without a segment are left out.
-func cells(runs [][]float64, places []recording.Run, level []float64, s spectrum.Settings, against string) ([]kinds.SpectraMapRow, error) {
+func cells(runs [][]float64, places []recording.Run, time []float64, by level, s spectrum.Settings, against string) ([]kinds.SpectraMapRow, error) {
 	var centres []float64
-	eachSegment := func(take func(centre float64)) {
-		for r, run := range runs {
-			for i := range s.Segments(len(run)) {
-				from := places[r].First + i*(s.Segment-s.Overlap)
-				sum := 0.0
-				for _, v := range level[from : from+s.Segment] {
-					sum += v
-				}
-				take(sum / float64(s.Segment))
-			}
+	for r, run := range runs {
+		for i := range s.Segments(len(run)) {
+			from := places[r].First + i*(s.Segment-s.Overlap)
+			centres = append(centres, by.mean(time[from], time[from+s.Segment-1]))
 		}
 	}
-	eachSegment(func(c float64) { centres = append(centres, c) })
 	if len(centres) == 0 {
 		return nil, &spectrum.ShortError{Segment: s.Segment}
 	}

@@ -112,6 +112,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, err
 	}
+	defer r.Frugal()()
 	call.Report.Progress("spectra", -1)
 	found, err := describe(r, set, call.Threads)
 	if err != nil {

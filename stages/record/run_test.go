@@ -8,6 +8,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strings"
 	"testing"
 
@@ -386,6 +387,62 @@ func BenchmarkRun(b *testing.B) {
 	for b.Loop() {
 		if _, _, err := run(b, folder, stage.Arguments{"file": "hover.csv"}); err != nil {
 			b.Fatal(err)
+		}
+	}
+}
+
+const usable = "../../testdata/recordings/usable"
+
+// Each recording that is hurt and can be used all the same, with what is found, as testdata/recordings/usable/expected.txt has it. Their
+// gyro rates lie on 80 Hz at 2 kHz.
+func TestUsableRecordings(t *testing.T) {
+	data, err := os.ReadFile(filepath.Join(usable, "expected.txt"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	expected := map[string][]string{"expected.txt": nil}
+	for line := range strings.Lines(string(data)) {
+		name, want, ok := strings.Cut(strings.TrimSpace(line), " | ")
+		if !ok {
+			t.Fatalf("%q", line)
+		}
+		expected[name] = append(expected[name], want)
+	}
+	entries, err := os.ReadDir(usable)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, e := range entries {
+		wants, ok := expected[e.Name()]
+		if !ok {
+			t.Errorf("%s has no expected findings", e.Name())
+		}
+		if len(wants) == 0 {
+			continue
+		}
+		arguments := stage.Arguments{"file": e.Name(), "resolution": hertz(20)}
+		if e.Name() == "no_times.txt" {
+			arguments["options"] = map[string]any{"separator": "~"}
+		}
+		s, o, err := run(t, usable, arguments)
+		if err != nil {
+			t.Errorf("%s: %v", e.Name(), err)
+			continue
+		}
+		if math.Abs(s.Rate-2000) > 1 || len(s.Axes) != 3 {
+			t.Errorf("%s: %g Hz, %d axes", e.Name(), s.Rate, len(s.Axes))
+		}
+		var got []string
+		for _, f := range s.Findings {
+			if f.What != "alias" && f.What != "unit" { // short recordings without a filter, which these tests are not about
+				got = append(got, fmt.Sprintf("%s: %s; %s", f.What, f.Extent, f.Consequence))
+			}
+		}
+		got = append(got, o.Notes...)
+		for _, want := range wants {
+			if !slices.Contains(got, want) {
+				t.Errorf("%s: %q is not among\n%s", e.Name(), want, strings.Join(got, "\n"))
+			}
 		}
 	}
 }

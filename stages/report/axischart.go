@@ -6,6 +6,7 @@ import (
 	"sort"
 	"strings"
 
+	"hushframe/core/mechanics/modal"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
 )
@@ -13,7 +14,9 @@ import (
 // axisChart gathers what is known of one axis.
 func axisChart(c *content, axis int) *draw.Chart {
 	name := kinds.AxisNames[axis]
-	ch := &draw.Chart{Name: name, Label: "gyro rate, (deg/s)²/Hz", From: math.Inf(1), To: math.Inf(-1)}
+	ch := &draw.Chart{ID: "response-" + name, Title: upper(name), Follow: "frequency", Axis: name,
+		X: draw.Axis{Label: "frequency, Hz", From: math.Inf(1), To: math.Inf(-1), Either: true},
+		Y: draw.Axis{Label: "gyro rate, (deg/s)²/Hz", Log: true, Either: true}}
 	scale := 1.0
 	var pair *kinds.ComparisonAxis
 	if c.comparison != nil {
@@ -25,11 +28,10 @@ func axisChart(c *content, axis int) *draw.Chart {
 	}
 	var about []string
 	if pair != nil {
-		ch.From, ch.To = c.comparison.From, c.comparison.To
+		ch.X.From, ch.X.To = c.comparison.From, c.comparison.To
 		if pair.Scale > 0 {
 			scale = pair.Scale
-			ch.Notes = append(ch.Notes, fmt.Sprintf("prediction × %s (%+.1f dB), one factor for this axis", significant(scale, 3), 10*math.Log10(scale)))
-			ch.Notes[0] = sign(ch.Notes[0])
+			ch.Notes = append(ch.Notes, sign(fmt.Sprintf("prediction × %s (%+.1f dB), one factor for this axis", significant(scale, 3), 10*math.Log10(scale))))
 		} else {
 			ch.Notes = append(ch.Notes, "no factor could be fitted; the prediction is as it is")
 		}
@@ -41,31 +43,51 @@ func axisChart(c *content, axis int) *draw.Chart {
 			curve.Lower, curve.Upper = scaled(curve.Y, sp.Lower), scaled(curve.Y, sp.Upper)
 			ch.Notes = append(ch.Notes, fmt.Sprintf("shaded: %.0f %% confidence of the recording", 100*sp.Level))
 		}
-		ch.Curves = append(ch.Curves, curve)
+		ch.Curves = append(ch.Curves, draw.Thin(curve, mostPoints))
 		about = append(about, "the recording over it")
 	}
 	switch {
 	case c.response != nil:
 		r := c.response
-		ch.From, ch.To = math.Min(ch.From, r.From), math.Max(ch.To, r.To)
-		ch.Curves = append(ch.Curves, draw.Curve{Name: "predicted", Class: "predicted", X: r.Frequency, Y: scaled(r.Density[axis], scale/square)})
-		for _, m := range r.Modes {
-			ch.Marks = append(ch.Marks, draw.Mark{X: m.Frequency, Label: fmt.Sprint(m.Number)})
+		ch.X.From, ch.X.To = math.Min(ch.X.From, r.From), math.Max(ch.X.To, r.To)
+		ch.Curves = append(ch.Curves, draw.Thin(draw.Curve{Name: "predicted", Class: "predicted", X: r.Frequency, Y: scaled(r.Density[axis], scale/square)}, mostPoints))
+		if flown := r.Flown[axis]; flown != nil && somewhere(flown) {
+			ch.Curves = append(ch.Curves, draw.Curve{Name: "with rotor lines", Class: "flown", X: r.Frequency, Y: scaled(flown, scale/square)})
 		}
-		ch.Peaks = append(ch.Peaks, predictedPeaks(r, name, scale/square)...)
+		for _, m := range r.Modes {
+			ch.Marks = append(ch.Marks, draw.Mark{X: m.Frequency, Label: fmt.Sprint(m.Number), Mode: m.Number})
+		}
+		ch.Points = append(ch.Points, predictedPeaks(r, name, scale/square)...)
 	case pair != nil:
 		ch.Curves = append(ch.Curves, draw.Curve{Name: "predicted", Class: "predicted", X: pair.Frequency, Y: scaled(pair.Predicted, scale/square)})
 	}
 	if pair != nil {
-		ch.Peaks = append(ch.Peaks, observedPeaks(c, name)...)
+		ch.Points = append(ch.Points, observedPeaks(c, name)...)
 	}
 	ch.Bands = orderBands(c)
-	ch.About = fmt.Sprintf("Power spectral density of the %s rate over frequency from %.0f to %.0f Hz, as predicted", name, ch.From, ch.To)
+	ch.About = fmt.Sprintf("Power spectral density of the %s rate over frequency from %.0f to %.0f Hz, as predicted", name, ch.X.From, ch.X.To)
 	if len(about) > 0 {
 		ch.About += ", with " + strings.Join(about, " and ")
 	}
 	ch.About += ". Peaks are in the tables below."
 	return ch
+}
+
+// somewhere says whether a list holds a number at all.
+func somewhere(list []float64) bool {
+	for _, v := range list {
+		if !math.IsNaN(v) {
+			return true
+		}
+	}
+	return false
+}
+
+func upper(s string) string {
+	if s == "" {
+		return s
+	}
+	return strings.ToUpper(s[:1]) + s[1:]
 }
 
 // recorded gives the whole spectrum of an axis, nil when there is none.
@@ -95,7 +117,7 @@ func scaled(y []float64, factor float64) []float64 {
 // labelled is how many peaks of a curve carry their frequency.
 const labelled = 7
 
-func predictedPeaks(r *kinds.Response, axis string, factor float64) []draw.Peak {
+func predictedPeaks(r *kinds.Response, axis string, factor float64) []draw.Point {
 	var peaks []kinds.ResponsePeak
 	for _, p := range r.Peaks {
 		if p.Axis == axis {
@@ -103,9 +125,9 @@ func predictedPeaks(r *kinds.Response, axis string, factor float64) []draw.Peak 
 		}
 	}
 	sort.SliceStable(peaks, func(i, j int) bool { return peaks[i].Density > peaks[j].Density })
-	var out []draw.Peak
+	var out []draw.Point
 	for i, p := range peaks {
-		x := draw.Peak{X: p.Frequency, Y: p.Density * factor, Class: "predicted"}
+		x := draw.Point{X: p.Frequency, Y: p.Density * factor, Class: "predicted", About: fmt.Sprintf("predicted peak at %.1f Hz: %s", p.Frequency, makers(p))}
 		if i < labelled {
 			x.Label = fmt.Sprintf("%.0f", p.Frequency)
 		}
@@ -116,16 +138,16 @@ func predictedPeaks(r *kinds.Response, axis string, factor float64) []draw.Peak 
 
 // observedPeaks are those that found a partner or stand alone, but not those
 // that a rotor order explains.
-func observedPeaks(c *content, axis string) []draw.Peak {
-	var out []draw.Peak
+func observedPeaks(c *content, axis string) []draw.Point {
+	var out []draw.Point
 	for _, p := range c.comparison.Pairs {
 		if p.Axis == axis {
-			out = append(out, draw.Peak{X: p.Observed, Y: p.ObservedDensity / square, Class: "observed", Label: fmt.Sprintf("%.0f", p.Observed)})
+			out = append(out, draw.Point{X: p.Observed, Y: p.ObservedDensity / square, Class: "observed", Label: fmt.Sprintf("%.0f", p.Observed), About: fmt.Sprintf("recorded peak at %.1f Hz", p.Observed)})
 		}
 	}
 	for _, p := range c.comparison.Unpaired {
 		if p.Axis == axis && p.Side == kinds.Observed {
-			out = append(out, draw.Peak{X: p.Frequency, Y: p.Density / square, Class: "observed", Label: fmt.Sprintf("%.0f", p.Frequency)})
+			out = append(out, draw.Point{X: p.Frequency, Y: p.Density / square, Class: "observed", Label: fmt.Sprintf("%.0f", p.Frequency), About: fmt.Sprintf("recorded peak at %.1f Hz", p.Frequency)})
 		}
 	}
 	return out
@@ -165,11 +187,11 @@ func orderBands(c *content) []draw.Band {
 	}
 	if recorded == nil && c.response != nil {
 		for _, x := range c.response.Rotors {
-			f := x.Hover / (2 * math.Pi)
-			add(1, false, false, f*0.99, f*1.01)
-			add(2, false, false, 2*f*0.99, 2*f*1.01)
-			if x.Blades > 2 {
-				add(float64(x.Blades), true, false, float64(x.Blades)*f*0.99, float64(x.Blades)*f*1.01)
+			low, high := x.Hover/(2*math.Pi)*(1-modal.HoverBand), math.Min(x.Highest, x.Hover*(1+modal.HoverBand))/(2*math.Pi)
+			add(1, false, false, low, high)
+			add(2, false, false, 2*low, 2*high)
+			if n := float64(x.Blades); x.Blades > 2 {
+				add(n, true, false, n*low, n*high)
 			}
 		}
 	}

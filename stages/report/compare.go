@@ -26,6 +26,13 @@ func comparisonSection(c *kinds.Comparison) *section {
 		s.text("No predicted peak could be paired with a recorded one.")
 	}
 	s.table(pairs)
+	verdicts := &table{Name: "peak-verdicts", Title: "What each recorded peak is taken for",
+		Columns: []column{{"axis", "", false}, {"frequency", "Hz", true}, {"density", "(deg/s)²/Hz", true}, {"taken for", "", false}, {"because", "", false}}}
+	for _, v := range c.Verdicts {
+		verdicts.Rows = append(verdicts.Rows, []cell{words(v.Axis), number(v.Frequency, 1), digits(v.Density/square, 3), words(v.Verdict), words(v.Reason)})
+	}
+	s.table(verdicts)
+	s.table(modePairTable(c))
 	s.table(lonely("unpaired-peaks", "Peaks without a partner", "", c.Unpaired))
 	s.table(lonely("masked-peaks", "Masked peaks", "These lie where a rotor order may be and say nothing certain about the structure.", c.Masked))
 	scales := &table{Name: "scale-factors", Title: "Scale factors",
@@ -64,7 +71,27 @@ func lonely(file, title, about string, peaks []kinds.ComparisonPeak) *table {
 
 // recordingSection states what the recording is.
 func recordingSection(sp *kinds.Spectra) *section {
-	s := &section{ID: "recording", Title: "Recording"}
+	s := &section{ID: "recording", Title: "Recording and its health"}
+	if len(sp.Findings) > 0 {
+		health := &table{Name: "recording-health", Title: "Health of the recording", Columns: []column{{"what", "", false}, {"where", "", false}, {"extent", "", false}, {"consequence", "", false}}}
+		for _, f := range sp.Findings {
+			health.Rows = append(health.Rows, []cell{words(f.What), words(f.Where), words(f.Extent), words(f.Consequence)})
+		}
+		s.table(health)
+	} else {
+		s.text("Nothing was found wrong with the recording.")
+	}
+	if len(sp.Pieces) > 0 {
+		pieces := &table{Name: "pieces", Title: "Pieces of the flight", About: "The spectra come from the pieces that are used.", Columns: []column{{"from", "s", true}, {"to", "s", true}, {"samples", "", true}, {"used", "", false}, {"why", "", false}}}
+		for _, p := range sp.Pieces {
+			used := words("no")
+			if p.Used {
+				used = cell{Text: "yes", Raw: "yes", Strong: true}
+			}
+			pieces.Rows = append(pieces.Rows, []cell{number(p.From, 2), number(p.To, 2), count(p.Samples), used, words(p.Why)})
+		}
+		s.table(pieces)
+	}
 	facts := &table{Name: "recording", Title: "What was recorded", Columns: []column{{"what", "", false}, {"value", "", true}, {"unit", "", false}}}
 	add := func(name string, c cell, unit string) {
 		facts.Rows = append(facts.Rows, []cell{words(name), c, words(unit)})
@@ -146,4 +173,15 @@ func recordingSection(sp *kinds.Spectra) *section {
 	}
 	s.table(peaks)
 	return s
+}
+
+// modePairTable sets predicted modes against those identified in flight.
+func modePairTable(c *kinds.Comparison) *table {
+	t := &table{Name: "mode-pairs", Title: "Predicted modes and modes found in flight", About: "Agreement is the squared cosine of the angle between both gyro directions.",
+		Columns: []column{{"mode", "", true}, {"predicted", "Hz", true}, {"found", "Hz", true}, {"±", "Hz", true}, {"error", "%", true}, {"agreement", "", true}, {"damping ratio predicted", "%", true}, {"found", "%", true}, {"confidence", "", true}}}
+	for _, p := range c.ModePairs {
+		t.Rows = append(t.Rows, []cell{count(p.Mode), number(p.Predicted, 1), number(p.Observed, 1), number(p.ObservedError, 2), signed(100*p.Error, 1), number(p.Agreement, 2),
+			percent(p.PredictedDamping, 2), percent(p.ObservedDamping, 2), number(p.Confidence, 2)})
+	}
+	return t
 }

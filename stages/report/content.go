@@ -22,12 +22,14 @@ type content struct {
 	response   *kinds.Response
 	spectra    *kinds.Spectra
 	comparison *kinds.Comparison
+	filtered   *kinds.Filtered
 	verified   *kinds.Verification
 	identified *kinds.Identified
 	difference *kinds.Difference
 	run        *account.Account
 	sources    []kinds.DocumentSource
 
+	charts  []*draw.Chart // in the order of the page
 	surface *draw.Surface
 	view    *draw.View
 }
@@ -36,7 +38,7 @@ type content struct {
 const restName = "outline-at-rest"
 
 // coarse is the length of edges that a picture can show, m.
-const coarse = 4e-3
+const coarse = 5e-3
 
 // drawing gives the mesh as it is drawn, made on first use.
 func (c *content) drawing() (*draw.Surface, *draw.View) {
@@ -77,6 +79,8 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
 	case "comparison":
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
+	case "filtered":
+		err = once(in, &c.filtered, a, kinds.DecodeFiltered)
 	case "verification":
 		err = once(in, &c.verified, a, kinds.DecodeVerification)
 	case "identified":

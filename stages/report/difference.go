@@ -9,7 +9,8 @@ import (
 )
 
 // differenceSection shows what a change did: levels first, then modes, peaks, lines and masses.
-func differenceSection(d *kinds.Difference) *section {
+func differenceSection(c *content) *section {
+	d := c.difference
 	s := &section{ID: "difference", Title: "What the change did"}
 	s.text("The frame before and after a change. Levels are compared as the root mean square of the gyro rate under the broadband source; +6\u00a0dB is twice. " +
 		"A mode is the same on both sides when their shapes are: the modal assurance criterion, weighted with the mass, is 1 for equal shapes and near 0 for different modes.")
@@ -18,9 +19,7 @@ func differenceSection(d *kinds.Difference) *section {
 	}
 	if d.Frequency != nil {
 		for axis := range kinds.AxisNames {
-			if svg := differenceChart(d, axis).Draw(); svg != "" {
-				s.draw(svg, "")
-			}
+			s.chart(c, differenceChart(d, axis), "")
 		}
 	}
 	s.table(changedLevels(d))
@@ -35,7 +34,7 @@ func differenceSection(d *kinds.Difference) *section {
 // differenceChart lays the response after over that before.
 func differenceChart(d *kinds.Difference, axis int) *draw.Chart {
 	name := kinds.AxisNames[axis]
-	ch := &draw.Chart{Name: "change-" + name, Label: "gyro rate, (deg/s)²/Hz", From: d.From, To: d.To,
+	ch := &draw.Chart{ID: "change-" + name, Title: upper(name) + " before and after", X: draw.Axis{Label: "frequency, Hz", From: d.From, To: d.To, Either: true}, Y: draw.Axis{Label: "gyro rate, (deg/s)²/Hz", Log: true, Either: true},
 		About: fmt.Sprintf("Power spectral density of the %s rate before and after the change, from %.0f to %.0f Hz. Peaks are in the tables below.", name, d.From, d.To)}
 	for k, class := range []string{"observed", "predicted"} {
 		ch.Curves = append(ch.Curves, draw.Curve{Name: []string{"before", "after"}[k], Class: class, X: d.Frequency, Y: scaled(d.Density[k][axis], 1/square)})
@@ -49,7 +48,7 @@ func differenceChart(d *kinds.Difference, axis int) *draw.Chart {
 		}
 		for k, class := range []string{"observed", "predicted"} {
 			if p.Density[k] > 0 {
-				ch.Peaks = append(ch.Peaks, draw.Peak{X: p.Frequency[k], Y: p.Density[k] / square, Label: fmt.Sprintf("%.0f", p.Frequency[k]), Class: class})
+				ch.Points = append(ch.Points, draw.Point{X: p.Frequency[k], Y: p.Density[k] / square, Label: fmt.Sprintf("%.0f", p.Frequency[k]), Class: class})
 			}
 		}
 	}

@@ -38,6 +38,8 @@ func (c *content) scene() *scene.Scene {
 			about[m.Number] = modeCaption(c.modes, m)
 		}
 	}
-	return scene.New(scene.Sources{Properties: c.properties, Mesh: c.mesh, Modes: c.modes, Response: c.response, Spectra: c.spectra, Comparison: c.comparison},
+	x := scene.New(scene.Sources{Properties: c.properties, Mesh: c.mesh, Modes: c.modes, Response: c.response},
 		func(number int) string { return about[number] })
+	x.Charts = c.charts
+	return x
 }

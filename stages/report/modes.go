@@ -27,6 +27,7 @@ func modesSection(c *content) *section {
 		joinCount(below(m, m.UpTo), "elastic mode", "elastic modes"), m.UpTo, m.Unknowns, proof))
 	s.table(modeTable(m))
 	shapesOfModes(s, c)
+	s.bars(energyBars(m))
 	s.table(gapTable(m))
 	s.table(meetingTable(m))
 	s.table(strainTable(m))
@@ -240,6 +241,7 @@ func gallery(s *section, c *content) {
 			Title:   fmt.Sprintf("Mode %d at %.1f\u00a0Hz", x.Number, x.Frequency),
 			Picture: trusted(view.Shape(surface, restName, c.modeMotion(x))),
 			Caption: modeCaption(m, x),
+			Mode:    x.Number,
 		})
 	}
 	if len(pictures) == 0 {

@@ -10,14 +10,10 @@ import (
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/run/account"
 	"hushframe/stages/kinds"
-	"hushframe/stages/report/draw"
 )
 
 //go:embed page.html
 var pageText string
-
-//go:embed style.css
-var styleText string
 
 var pageTemplate = template.Must(template.New("page").Funcs(template.FuncMap{"class": cellClass}).Parse(pageText))
 
@@ -44,6 +40,7 @@ type page struct {
 	Style              template.CSS
 	Verdict            *banner
 	Requirements       []requirement
+	Findings           []term
 	Warnings           []account.Warning
 	Sections           []*section
 	Rest               template.HTML // definitions shared by pictures
@@ -55,7 +52,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if name == "" || name == "." || name == "/" {
 		return nil, fault.New(fault.Input, "the target names no file").In("report", name).Of("to").Do(`give it a name such as "report/baseline.html"`)
 	}
-	p := &page{Title: title, Style: template.CSS(styleText + draw.Style()),
+	p := &page{Title: title, Style: template.CSS(style()),
 		Foot: "Small linear vibration about hover. This page says nothing about crash strength, flight-control stability or airworthiness."}
 	if c.run != nil {
 		p.About, p.Requirements, p.Warnings = c.run.About, requirements(c.run.Verdicts), c.run.Warnings
@@ -68,6 +65,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if p.Title == "" {
 		p.Title = "Vibration report"
 	}
+	p.Findings = findings(c)
 	add := func(s *section) {
 		if s != nil && len(s.Blocks) > 0 {
 			p.Sections = append(p.Sections, s)
@@ -82,11 +80,14 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if c.comparison != nil {
 		add(comparisonSection(c.comparison))
 	}
+	add(identifiedSection(c))
+	add(mapSection(c))
 	if c.spectra != nil {
 		add(recordingSection(c.spectra))
 	}
+	add(filteredSection(c))
 	if c.difference != nil {
-		add(differenceSection(c.difference))
+		add(differenceSection(c))
 	}
 	if c.verified != nil {
 		add(verificationSection(c.verified))
@@ -106,7 +107,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	d := &kinds.Document{Title: p.Title, Page: name, Sources: c.sources, Files: map[string][]byte{}}
 	folder := strings.TrimSuffix(name, path.Ext(name)) + "-tables"
 	for _, s := range p.Sections {
-		for _, b := range s.Blocks {
+		for _, b := range s.all() {
 			if t := b.Table; t != nil {
 				t.File = folder + "/" + t.Name + ".csv"
 				if _, taken := d.Files[t.File]; taken {

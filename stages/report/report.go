@@ -25,7 +25,7 @@ type Stage struct{}
 var _ stage.Stage = Stage{}
 
 // readable lists the kinds a report can show, besides that of the run.
-var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "verification", "identified", "difference"}
+var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "identified", "filtered", "difference", "verification"}
 
 // formats are those of still pictures.
 var formats = []string{printed.PNG, printed.SVG}

@@ -315,7 +315,7 @@ func TestStage(t *testing.T) {
 	if d.Title != "Hover & more" || d.Page != "hover.html" || len(d.Sources) != 8 || d.Sources[3].From != "stage.modes.modes" {
 		t.Errorf("document %q on %q from %+v", d.Title, d.Page, d.Sources)
 	}
-	if page := string(d.Files["hover.html"]); !strings.Contains(page, "<h1>Hover &amp; more</h1>") || !strings.Contains(page, "stage.check.comparison") {
+	if page := string(d.Files["hover.html"]); !strings.Contains(page, ">Hover &amp; more</h1>") || !strings.Contains(page, "stage.check.comparison") {
 		t.Error("the page lacks its title or sources")
 	}
 

@@ -6,6 +6,7 @@ import (
 	"strings"
 
 	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/modal"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
 )
@@ -24,22 +25,20 @@ func responseSection(c *content) *section {
 	}
 	s.text(chartLegend(c))
 	for axis, name := range kinds.AxisNames {
-		ch := axisChart(c, axis)
-		svg := ch.Draw()
-		if svg == "" {
-			continue
-		}
-		s.heading(strings.ToUpper(name[:1]) + name[1:])
-		s.draw(svg, "")
+		s.heading(upper(name))
+		s.chart(c, axisChart(c, axis), "")
 	}
 	if r := c.response; r != nil {
 		s.aside(fmt.Sprintf("The source is assumed, not measured: %s N²/Hz of force and %s (N·m)²/Hz of moment along each component at each rotor, added over rotors as power. Where the peaks lie and how they compare says more than their level.",
 			plainPower(r.Force), plainPower(r.Moment)))
+		s.bars(makerBars(r))
+		s.bars(driverBars(r))
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))
-		whirlSection(s, r)
+		whirlSection(s, c)
 		shapeGallery(s, c)
+		s.fold(planes(c))
 	}
 	return s
 }
@@ -56,7 +55,7 @@ func chartLegend(c *content) string {
 	if c.comparison != nil || c.spectra != nil {
 		parts = append(parts, "Hatched: where the rotors' orders may lie, as recorded.")
 	} else {
-		parts = append(parts, "Hatched: rotor orders within 1 % of hover speed.")
+		parts = append(parts, fmt.Sprintf("Hatched: where the rotors' orders lie in gentle flight, within %.0f %% of hover speed.", 100*modal.HoverBand))
 	}
 	return strings.Join(parts, " ")
 }
@@ -146,12 +145,7 @@ func glanceTable(c *content) *table {
 		t.Columns = append(t.Columns, column{"recorded at", "Hz", true}, column{"error", "%", true})
 	}
 	for _, axis := range r.Axes {
-		var best *kinds.ResponsePeak
-		for i := range r.Peaks {
-			if p := &r.Peaks[i]; p.Axis == axis.Axis && (best == nil || p.Density > best.Density) {
-				best = p
-			}
-		}
+		best := strongestPeak(r, axis.Axis)
 		row := []cell{words(axis.Axis), missing(), words("no peak"), digits(axis.RMS/degree, 3)}
 		found, off := missing(), missing()
 		if best != nil {

@@ -50,7 +50,7 @@ func stills(c *content) (out []stillName) {
 		}
 	}
 	if c.modes != nil {
-		add("energy", energyBars(c.modes))
+		add("energy", energyStill(c.modes))
 	}
 	if c.identified != nil {
 		var poles []printed.Pole
@@ -113,13 +113,13 @@ func recordedMap(c *content, axis int) *printed.Picture {
 		}
 	}
 	for _, o := range slices.Sorted(maps.Keys(orders)) {
-		m.Orders = append(m.Orders, draw.Order{Slope: o / 60, Label: orders[o]})
+		m.Orders = append(m.Orders, printed.Order{Slope: o / 60, Label: orders[o]})
 	}
 	return printed.SpeedMap("Recorded gyro rate on "+c.spectra.Axes[axis].Axis+" over rotor speed", m)
 }
 
-// energyBars shows which parts bend in which mode.
-func energyBars(m *kinds.Modes) *printed.Picture {
+// energyStill shows which parts bend in which mode.
+func energyStill(m *kinds.Modes) *printed.Picture {
 	b := printed.Bars{Parts: m.Survey.Groups}
 	for _, x := range m.Survey.Modes {
 		b.Rows = append(b.Rows, fmt.Sprintf("%d, %.0f Hz", x.Number, x.Frequency))

@@ -10,13 +10,22 @@ import (
 )
 
 // whirlSection fills in what changes with rotor speed.
-func whirlSection(s *section, r *kinds.Response) {
+func whirlSection(s *section, c *content) {
+	r := c.response
 	if len(r.Whirl) == 0 {
 		return
 	}
 	s.heading("Over rotor speed")
 	s.text("Natural frequencies of the damped frame with its rotors spinning. Rings are critical speeds, where an order of the rotors meets a mode.")
-	s.draw(whirlChart(r).Draw(), "")
+	s.chart(c, whirlChart(r), "")
+	maps := &section{Title: "Predicted spectra over rotor speed"}
+	for axis := range kinds.AxisNames {
+		if ch := predictedMap(r, axis); ch != nil {
+			maps.heading(ch.Title)
+			maps.chart(c, ch, "")
+		}
+	}
+	s.fold(maps)
 	s.table(spinTable(r))
 	s.table(whirlTable(r))
 	s.table(mapTable(r))
@@ -24,25 +33,42 @@ func whirlSection(s *section, r *kinds.Response) {
 }
 
 // whirlChart draws the modes within the sweep over rotor speed.
-func whirlChart(r *kinds.Response) *draw.Whirl {
-	w := &draw.Whirl{About: "Natural frequencies over rotor speed, with the lines of orders; the figures are in the table below.",
-		Fastest: r.Speeds[len(r.Speeds)-1] / rpm, Highest: r.To, Mark: draw.Mark{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}}
+func whirlChart(r *kinds.Response) *draw.Chart {
+	fastest := r.Speeds[len(r.Speeds)-1] / rpm
+	ch := &draw.Chart{ID: "modes-over-rotor-speed", Title: "Modes over rotor speed",
+		About: "Natural frequencies over rotor speed, with the lines of orders; the figures are in the table below.",
+		X:     draw.Axis{Label: "speed of the first rotor, rpm", From: 0, To: fastest}, Y: draw.Axis{Label: "natural frequency, Hz", From: 0, To: r.To},
+		Marks: []draw.Mark{{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}}}
 	speeds := scaled(r.Speeds, 1/rpm)
-	for _, x := range r.Whirl {
-		w.Lines = append(w.Lines, draw.Curve{Name: fmt.Sprint(x.Mode), X: speeds, Y: x.Frequency})
-	}
 	seen := map[int]bool{}
 	for _, c := range r.Critical {
 		if len(c.Rotors) < len(r.Rotors) {
 			continue // of rotors with a speed of their own, for which the axis does not hold
 		}
-		w.Meets = append(w.Meets, draw.Peak{X: c.Speed / rpm, Y: c.Frequency})
 		if !seen[c.Order] {
 			seen[c.Order] = true
-			w.Orders = append(w.Orders, draw.Order{Slope: float64(c.Order) / 60, Label: fmt.Sprintf("order %d", c.Order)})
+			ch.Curves = append(ch.Curves, orderLine(fmt.Sprintf("order %d", c.Order), float64(c.Order), fastest))
+		}
+		if c.Frequency <= r.To {
+			ch.Points = append(ch.Points, draw.Point{X: c.Speed / rpm, Y: c.Frequency, Class: "critical",
+				About: fmt.Sprintf("order %d meets mode %d at %.0f rpm, %.1f Hz", c.Order, c.Mode, c.Speed/rpm, c.Frequency)})
 		}
 	}
-	return w
+	for _, x := range r.Whirl {
+		ch.Curves = append(ch.Curves, draw.Curve{Name: fmt.Sprint(x.Mode), Class: "predicted", X: speeds, Y: x.Frequency})
+	}
+	return ch
+}
+
+// orderLine is the straight line of an order over rotor speed, in Hz over rpm.
+func orderLine(name string, order, fastest float64) draw.Curve {
+	const pieces = 64 // so that it can be cut at the top of a chart
+	c := draw.Curve{Name: name, Class: "order"}
+	for k := range pieces + 1 {
+		speed := fastest * float64(k) / pieces
+		c.X, c.Y = append(c.X, speed), append(c.Y, order*speed/60)
+	}
+	return c
 }
 
 // mapTable gives the speeds at which lines are loudest.

@@ -25,7 +25,7 @@ func TestTablesOfSpinningRotors(t *testing.T) {
 	if row := separationTable(r).Rows[0]; row[4].Text != "pitch" || row[7].Text != "+3.0" {
 		t.Errorf("separation reads %+v", row)
 	}
-	if c := whirlChart(r); len(c.Lines) != 2 || len(c.Orders) != 1 || len(c.Meets) != 1 {
+	if c := whirlChart(r); len(c.Curves) != 3 || c.Curves[0].Class != "order" || c.Curves[1].Name != "1" || len(c.Points) != 1 {
 		t.Errorf("chart %+v", c)
 	}
 	for _, x := range []*table{spinTable(r), whirlTable(r), mapTable(r), separationTable(r)} {

@@ -3,6 +3,9 @@ package solve_test
 import (
 	"context"
 	"math"
+	"os"
+	"runtime/debug"
+	"strconv"
 	"strings"
 	"testing"
 	"time"
@@ -129,4 +132,56 @@ func BenchmarkBeforeTheSolver(b *testing.B) {
 			b.ReportMetric(float64(s.N), "unknowns")
 		})
 	}
+}
+
+// BenchmarkMemory sets the memory that assembly and solution of the demo hold at most beside what the stage expects
+// beforehand, where the system tells.
+func BenchmarkMemory(b *testing.B) {
+	g, p, _ := imported(b, "../../jobs/sandpiper", "airframe.hcl")
+	for _, size := range []float64{0.005, 0.0025} {
+		b.Run(strconv.FormatFloat(1e3*size, 'g', -1, 64)+"mm", func(b *testing.B) {
+			m, err := mesh.Build(b.Context(), g, mesh.Options{Size: size, Element: "quadratic-triangle", Threads: 2})
+			if err != nil {
+				b.Fatal(err)
+			}
+			f, err := assembly.FromAirframe(m, p, func(string) element.Type { return shell.QuadraticTriangle() })
+			if err != nil {
+				b.Fatal(err)
+			}
+			sites, err := solve.Places(f, p)
+			if err != nil {
+				b.Fatal(err)
+			}
+			expected, peak := solve.Expected(&f.Problem), int64(0)
+			for b.Loop() {
+				debug.FreeOSMemory()
+				_ = os.WriteFile("/proc/self/clear_refs", []byte("5"), 0) // forgets the peak
+				held := memory(b, "VmRSS:")
+				s, err := assembly.Assemble(b.Context(), &f.Problem, 2)
+				if err != nil {
+					b.Fatal(err)
+				}
+				if _, err := modal.Build(b.Context(), s, sites, modal.Options{UpTo: 1125, Threads: 2}); err != nil {
+					b.Fatal(err)
+				}
+				peak = max(peak, memory(b, "VmHWM:")-held)
+			}
+			b.ReportMetric(float64(peak)/1e6, "peak-MB")
+			b.ReportMetric(float64(expected)/1e6, "expected-MB")
+		})
+	}
+}
+
+// memory reads a line of the memory status of this process, in bytes.
+func memory(b *testing.B, key string) int64 {
+	text, err := os.ReadFile("/proc/self/status")
+	if err != nil {
+		b.Skip("this system does not tell what a process holds")
+	}
+	_, after, _ := strings.Cut(string(text), key)
+	kb, err := strconv.ParseInt(strings.Fields(after + " 0")[0], 10, 64)
+	if err != nil {
+		b.Skip("this system does not tell what a process holds")
+	}
+	return kb * 1024
 }

@@ -94,9 +94,9 @@ func rivals(b *testing.B) (out []rival) {
 		b.Log("python3 with scipy is not installed: no comparison with it")
 	} else {
 		out = append(out,
-			rival{name: "scipy plain", python: python, script: "race.py", args: []string{"plain"}, most: 150e3},
-			rival{name: "scipy prepared", python: python, script: "race.py", args: []string{"prepared"}},
-			rival{name: "scipy loose", python: python, script: "race.py", args: []string{"loose"}, most: 150e3})
+			rival{name: "scipy plain", python: python, script: "race.py", args: []string{"plain"}, most: 60e3},
+			rival{name: "scipy prepared", python: python, script: "race.py", args: []string{"prepared"}, most: 250e3},
+			rival{name: "scipy loose", python: python, script: "race.py", args: []string{"loose"}, most: 120e3})
 	}
 	if python := pythonWith("runpy; runpy.run_path('testdata/race_slepc.py')"); python == "" {
 		b.Log("python3 with petsc4py and slepc4py is not installed: no comparison with SLEPc")

@@ -14,6 +14,10 @@
 // R. Bristow-Johnson, Cookbook formulae for audio equalizer biquad filter coefficients. Delay follows from the
 // coefficients without differences (A. V. Oppenheim and R. W. Schafer, Discrete-Time Signal Processing).
 //
+//	train   filters in a row of which some are notches that follow rotors
+//	lag     by how much the phase at a frequency is late, rad; over 2πf it is the phase delay
+//
 // A notch that follows a rotor order has no response of its own: its mean power over the time that the rotor spends at each speed
-// tells what it leaves of a spectrum, and its delay at the mean speed what it costs.
+// tells what it leaves of a spectrum, and its mean lag and delay what it costs. The order that it follows it takes out
+// wherever that goes.
 package filter

@@ -50,30 +50,30 @@ func Analyse(time []float64) (Timing, error) {
 		return Timing{}, &Error{Text: fmt.Sprintf("the time never changes: all %d rows say %g s", len(time), time[0]),
 			Remedy: "name another time column, or leave it out and state the rate"}
 	}
-	steps := make([]float64, len(time)-1)
-	for i := range steps {
-		steps[i] = time[i+1] - time[i]
-		if steps[i] > 0 && !math.IsInf(steps[i], 0) {
+	sorted := make([]float64, len(time)-1)
+	for i := range sorted {
+		step := time[i+1] - time[i]
+		sorted[i] = step
+		if step > 0 && !math.IsInf(step, 0) {
 			continue
 		}
 		e := &Error{Row: int64(i + 2), Remedy: "name another time column, or mend the recording: time must rise from row to row"}
 		switch {
-		case steps[i] == 0:
+		case step == 0:
 			e.Text = "the time of the row before repeats"
-		case steps[i] < 0:
-			e.Text = fmt.Sprintf("time goes back by %.6g s", -steps[i])
+		case step < 0:
+			e.Text = fmt.Sprintf("time goes back by %.6g s", -step)
 		default:
 			e.Text = "the time is not a number"
 		}
 		return Timing{}, e
 	}
-	sorted := slices.Clone(steps)
 	slices.Sort(sorted)
 	t := Timing{Step: sorted[len(sorted)/2], Start: time[0], End: time[len(time)-1], Samples: len(time)}
 
 	sum, count := 0.0, 0
-	for _, s := range steps {
-		if regular(s, t.Step) {
+	for i := 1; i < len(time); i++ {
+		if s := time[i] - time[i-1]; regular(s, t.Step) {
 			sum += s
 			count++
 		}
@@ -82,7 +82,8 @@ func Analyse(time []float64) (Timing, error) {
 	t.Rate = 1 / mean
 
 	squares, first := 0.0, 0
-	for i, s := range steps {
+	for i := range len(time) - 1 {
+		s := time[i+1] - time[i]
 		if regular(s, t.Step) {
 			d := s/mean - 1
 			squares += d * d

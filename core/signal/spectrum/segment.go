@@ -1,10 +1,6 @@
 package spectrum
 
-import (
-	"fmt"
-
-	"gonum.org/v1/gonum/dsp/fourier"
-)
+import "fmt"
 
 // Detrend says what is taken out of each segment before the window. The zero value takes out the mean.
 type Detrend uint8
@@ -84,7 +80,7 @@ type transformer struct {
 	settings Settings
 	window   []float64
 	scaled   []float64 // the segment, detrended and windowed
-	fft      *fourier.FFT
+	fft      *realTransform
 	centre   float64 // mean index of a segment
 	spread   float64 // Σ (i-centre)²
 }
@@ -95,7 +91,7 @@ func newTransformer(s Settings) *transformer {
 		settings: s,
 		window:   s.Window.Samples(s.Segment),
 		scaled:   make([]float64, s.Segment),
-		fft:      fourier.NewFFT(s.Segment),
+		fft:      newRealTransform(s.Segment),
 		centre:   (n - 1) / 2,
 		spread:   n * (n*n - 1) / 12,
 	}
@@ -128,7 +124,7 @@ func (t *transformer) apply(dst []complex128, x []float64) {
 	for i, v := range x {
 		t.scaled[i] = (v - mean - slope*(float64(i)-t.centre)) * t.window[i]
 	}
-	t.fft.Coefficients(dst, t.scaled)
+	t.fft.coefficients(dst, t.scaled)
 }
 
 // halve halves the bins that have no mirror image.

@@ -1,4 +1,5 @@
-// Package columnar reads recordings in Apache Arrow files (the IPC file format, also known as Feather).
+// Package columnar reads recordings in Apache Arrow files (the IPC file format, also known as Feather) and streams (stream.go), and in
+// Apache Parquet files (parquet.go).
 //
 // Columns are those of the schema; the unit of a column is the value of the key "unit" of its metadata, or that of its timestamp or
 // duration. Columns that hold no numbers are text. A null is a row without a sample of that column. Whole numbers and
@@ -26,21 +27,21 @@ type Reader struct{}
 
 var _ recording.Reader = Reader{}
 
-// Mark tells whether the beginning of a file is that of an Arrow file.
-func Mark(head []byte) bool { return bytes.HasPrefix(head, []byte("ARROW1")) }
+// Mark tells whether the beginning of a file is that of an Arrow file or stream.
+func Mark(head []byte) bool { return bytes.HasPrefix(head, []byte("ARROW1")) || markStream(head) }
 
 // Describe implements recording.Reader.
 func (Reader) Describe() recording.Description {
-	return recording.Description{Name: "arrow", About: "Apache Arrow file"}
+	return recording.Description{Name: "arrow", About: "Apache Arrow file or stream"}
 }
 
 // mostInMemory bounds what is kept of a source that cannot be read at any place.
 const mostInMemory = 1 << 30
 
 // guarded runs f, in which the decoder may panic on hostile bytes, and makes an *Error of what it says.
-func guarded(f func() error) (err error) {
+func guarded(format string, f func() error) (err error) {
 	damaged := func(what any) error {
-		return &recording.Error{Text: fmt.Sprintf("the Arrow data is damaged: %v", what), Remedy: "write the recording again, or export it as text"}
+		return &recording.Error{Text: fmt.Sprintf("the %s data is damaged: %v", format, what), Remedy: "write the recording again, or export it as text"}
 	}
 	defer func() {
 		if r := recover(); r != nil {
@@ -61,46 +62,92 @@ type sinkError struct{ err error }
 
 func (s *sinkError) Error() string { return s.err.Error() }
 
-func open(source io.Reader, options map[string]string) (*ipc.FileReader, error) {
-	if len(options) > 0 {
-		return nil, &recording.Error{Text: "the reader has no options", Remedy: "leave them out"}
+// passSink gives an error of the sink as it was.
+func passSink(err error) error {
+	var passed *sinkError
+	if errors.As(err, &passed) {
+		return passed.err
 	}
+	return err
+}
+
+// anywhere makes a source one that can be read at any place, and tells its size.
+func anywhere(source io.Reader) (ipc.ReadAtSeeker, int64, error) {
 	at, ok := source.(ipc.ReadAtSeeker)
 	if !ok {
 		all, err := io.ReadAll(io.LimitReader(source, mostInMemory+1))
 		if err != nil {
-			return nil, err
+			return nil, 0, err
 		}
 		if len(all) > mostInMemory {
-			return nil, &recording.Error{Text: "the recording is too large to be read from a stream", Remedy: "give it as a file"}
+			return nil, 0, &recording.Error{Text: "the recording is too large to be read from a stream", Remedy: "give it as a file"}
 		}
 		at = bytes.NewReader(all)
 	}
 	size, err := at.Seek(0, io.SeekEnd)
-	if err != nil {
+	return at, size, err
+}
+
+// batches are the record batches of a file or stream, in order; io.EOF ends them.
+type batches struct {
+	schema *arrow.Schema
+	next   func() (arrow.RecordBatch, error)
+}
+
+func open(source io.Reader, options map[string]string) (*batches, error) {
+	if len(options) > 0 {
+		return nil, &recording.Error{Text: "the reader has no options", Remedy: "leave them out"}
+	}
+	head := make([]byte, 8)
+	n, err := io.ReadFull(source, head)
+	if err != nil && !errors.Is(err, io.EOF) && !errors.Is(err, io.ErrUnexpectedEOF) {
 		return nil, err
 	}
-	head := make([]byte, 6)
-	if n, _ := at.ReadAt(head, 0); n == 0 {
+	head = head[:n]
+	switch {
+	case n == 0:
 		return nil, &recording.Error{Text: "the file is empty", Remedy: "give a recording with at least two rows of samples"}
+	case markStream(head):
+		return openStream(io.MultiReader(bytes.NewReader(head), source))
+	case !Mark(head):
+		return nil, &recording.Error{Text: "this is no Arrow file", Remedy: "name the reader for its format"}
 	}
-	if !Mark(head) {
-		return nil, &recording.Error{Text: "this is no Arrow file", Remedy: "write it in the Arrow file format, not the stream format, or name the reader for its format"}
+	if seeker, ok := source.(ipc.ReadAtSeeker); ok {
+		return openFile(seeker)
+	}
+	return openFile(io.MultiReader(bytes.NewReader(head), source))
+}
+
+func openFile(source io.Reader) (*batches, error) {
+	at, size, err := anywhere(source)
+	if err != nil {
+		return nil, err
 	}
 	if err := guard(at, size); err != nil {
 		return nil, err
 	}
-	return ipc.NewFileReader(at, ipc.WithAllocator(newBounded(size)))
+	r, err := ipc.NewFileReader(at, ipc.WithAllocator(newBounded(size)))
+	if err != nil {
+		return nil, err
+	}
+	k := 0
+	return &batches{schema: r.Schema(), next: func() (arrow.RecordBatch, error) {
+		if k == r.NumRecords() {
+			return nil, io.EOF
+		}
+		k++
+		return r.RecordBatch(k - 1)
+	}}, nil
 }
 
 // Inspect implements recording.Reader.
 func (Reader) Inspect(_ context.Context, source io.Reader, options map[string]string) (h recording.Header, err error) {
-	err = guarded(func() error {
+	err = guarded("Arrow", func() error {
 		b, err := open(source, options)
 		if err != nil {
 			return err
 		}
-		for _, f := range b.Schema().Fields() {
+		for _, f := range b.schema.Fields() {
 			c := recording.Column{Name: f.Name, Text: !numeric(f.Type)}
 			if i := f.Metadata.FindKey("unit"); i >= 0 {
 				c.Unit = f.Metadata.Values()[i]
@@ -129,12 +176,7 @@ func numeric(t arrow.DataType) bool {
 
 // Read implements recording.Reader.
 func (Reader) Read(ctx context.Context, source io.Reader, request recording.Request, sink func(recording.Batch) error) error {
-	err := guarded(func() error { return read(ctx, source, request, sink) })
-	var passed *sinkError
-	if errors.As(err, &passed) {
-		return passed.err
-	}
-	return err
+	return passSink(guarded("Arrow", func() error { return read(ctx, source, request, sink) }))
 }
 
 func read(ctx context.Context, source io.Reader, request recording.Request, sink func(recording.Batch) error) error {
@@ -143,14 +185,14 @@ func read(ctx context.Context, source io.Reader, request recording.Request, sink
 		return err
 	}
 	find := func(name string) (int, error) {
-		at := b.Schema().FieldIndices(name)
+		at := b.schema.FieldIndices(name)
 		switch {
 		case len(at) == 0:
 			return 0, &recording.Error{Column: name, Text: "the recording has no such column", Remedy: "name one of its columns"}
 		case len(at) > 1:
 			return 0, &recording.Error{Column: name, Text: fmt.Sprintf("%d columns have this name", len(at)), Remedy: "give the columns different names"}
-		case !numeric(b.Schema().Field(at[0]).Type):
-			return 0, &recording.Error{Column: name, Text: fmt.Sprintf("the column holds %s, not numbers", b.Schema().Field(at[0]).Type), Remedy: "name a column of numbers"}
+		case !numeric(b.schema.Field(at[0]).Type):
+			return 0, &recording.Error{Column: name, Text: fmt.Sprintf("the column holds %s, not numbers", b.schema.Field(at[0]).Type), Remedy: "name a column of numbers"}
 		}
 		return at[0], nil
 	}
@@ -170,11 +212,17 @@ func read(ctx context.Context, source io.Reader, request recording.Request, sink
 	}
 	rows := int64(0)
 	var first tick
-	for k := range b.NumRecords() {
+	for {
 		if err := ctx.Err(); err != nil {
 			return err
 		}
-		record, err := b.RecordBatch(k)
+		record, err := b.next()
+		if errors.Is(err, io.EOF) {
+			break
+		}
+		if errors.Is(err, io.ErrUnexpectedEOF) && rows > 0 {
+			return cutOff(rows, len(wanted), clock >= 0, sink)
+		}
 		if err != nil {
 			return err
 		}
@@ -198,9 +246,10 @@ func read(ctx context.Context, source io.Reader, request recording.Request, sink
 			for i := range n {
 				t, ok := at(record.Column(clock), i)
 				if !ok {
-					return &recording.Error{Row: rows + int64(i) + 1, Column: request.Time, Text: "the time is missing", Remedy: "give every row a time, or leave the column out and state the rate"}
+					batch.Time[i] = math.NaN()
+					continue
 				}
-				if rows == 0 && i == 0 {
+				if first.kind == 0 {
 					first = t
 				}
 				batch.Time[i] = t.since(first) * request.TimeUnit
@@ -214,6 +263,19 @@ func read(ctx context.Context, source io.Reader, request recording.Request, sink
 	}
 	if rows == 0 {
 		return &recording.Error{Text: "the recording has no rows", Remedy: "give a recording with at least two rows of samples"}
+	}
+	return nil
+}
+
+// cutOff ends a reading whose source ends in its middle, with what came before.
+func cutOff(rows int64, columns int, timed bool, sink func(recording.Batch) error) error {
+	b := recording.Batch{First: rows + 1, Values: make([][]float64, columns), Findings: []recording.Finding{{
+		What: "cut off", Extent: fmt.Sprintf("the file ends in its middle, after row %d", rows), Consequence: "what came after is lost"}}}
+	if timed {
+		b.Time = []float64{}
+	}
+	if err := sink(b); err != nil {
+		return &sinkError{err}
 	}
 	return nil
 }

@@ -56,7 +56,9 @@ func guard(file ipc.ReadAtSeeker, size int64) error {
 			if _, err := file.ReadAt(message, offset); err != nil {
 				return err
 			}
-			guardMessage(message)
+			if err := guardMessage(message); err != nil {
+				return err
+			}
 		}
 	}
 	return nil
@@ -81,25 +83,36 @@ func guardFields(parent node, slot, depth int, count *int) error {
 	return nil
 }
 
-func guardMessage(data []byte) {
-	if binary.LittleEndian.Uint32(data) == 0xffffffff { // since format 0.15
+// guardMessage checks one message with its length before it, and, before that, the mark of a message since format 0.15.
+func guardMessage(data []byte) error {
+	if binary.LittleEndian.Uint32(data) == continuation {
 		data = data[4:]
 	}
 	message := root(data[4:])
 	message.vector(4, 4)
-	batch, ok := message.table(2)
+	content, ok := message.table(2)
 	if !ok {
-		return
+		return nil
 	}
-	if inner, ok := batch.slot(1); ok && message.header() == dictionaryHeader {
-		batch = batch.tableAt(inner)
+	if message.header() == schemaHeader {
+		content.vector(2, 4)
+		fields := 0
+		return guardFields(content, 1, 0, &fields)
 	}
-	batch.vector(1, 16) // nodes
-	batch.vector(2, 16) // buffers
-	batch.vector(4, 8)  // counts of variadic buffers
+	if inner, ok := content.slot(1); ok && message.header() == dictionaryHeader {
+		content = content.tableAt(inner)
+	}
+	content.vector(1, 16) // nodes
+	content.vector(2, 16) // buffers
+	content.vector(4, 8)  // counts of variadic buffers
+	return nil
 }
 
-const dictionaryHeader = 2
+const (
+	continuation     = 0xffffffff
+	schemaHeader     = 1
+	dictionaryHeader = 2
+)
 
 // header is the type of a message.
 func (n node) header() byte {

@@ -18,15 +18,22 @@ type layout struct {
 	names     []string
 	units     []string
 	text      []bool // fields that hold something else than numbers
+	stamp     []bool // fields that hold times of day
 	named     bool   // the names are those of the recording
+	rate      float64
 }
 
 const blank = ' '
 
-var separatorNames = []struct {
+// ownSeparator is what a candidate of another separator than the usual ones is called.
+const ownSeparator = "the character given"
+
+type separatorName struct {
 	name string
 	mark byte
-}{{"comma", ','}, {"semicolon", ';'}, {"tab", '\t'}, {"bar", '|'}, {"blank", blank}}
+}
+
+var separatorNames = []separatorName{{"comma", ','}, {"semicolon", ';'}, {"tab", '\t'}, {"bar", '|'}, {"blank", blank}}
 
 // candidate is one way to cut the sample, with what it finds.
 type candidate struct {
@@ -42,10 +49,11 @@ type candidate struct {
 // separatorNames or 0 to try all. ok is false if no line holds a number.
 func guess(lines [][]byte, separator byte) (layout, bool) {
 	var best *candidate
-	for _, s := range separatorNames {
-		if separator != 0 && s.mark != separator {
-			continue
-		}
+	choices := separatorNames
+	if separator != 0 {
+		choices = []separatorName{{ownSeparator, separator}}
+	}
+	for _, s := range choices {
 		for _, point := range []byte{'.', ','} {
 			if point == s.mark {
 				continue
@@ -144,8 +152,10 @@ func (c candidate) layout(lines [][]byte) (layout, bool) {
 	if l.first < 0 {
 		return layout{}, false
 	}
-	l.text = make([]bool, c.fields)
+	l.rate = statedRate(lines[:l.first], l.point)
+	l.text, l.stamp = make([]bool, c.fields), make([]bool, c.fields)
 	for j := range l.text {
+		l.stamp[j] = c.numeric[j] && j < len(c.cells[l.first]) && isStamp(c.cells[l.first][j])
 		l.text[j] = !c.numeric[j] && c.holdsText(l.first, j)
 	}
 	l.units = make([]string, c.fields)
@@ -241,7 +251,7 @@ func classify(cell []byte, point byte) class {
 	if missing(cell) {
 		return empty
 	}
-	if _, ok := parseDecimal(cell, point); ok {
+	if _, ok := parseDecimal(cell, point); ok || isStamp(cell) {
 		return number
 	}
 	return other
@@ -355,7 +365,7 @@ func allUnits(cells []string) bool {
 
 // header describes the columns. Names that several columns have are told apart by their places.
 func (l layout) header() recording.Header {
-	var h recording.Header
+	h := recording.Header{Rate: l.rate}
 	times := map[string]int{}
 	for _, name := range l.names {
 		times[name]++
@@ -367,12 +377,19 @@ func (l layout) header() recording.Header {
 		case times[name] > 1:
 			name = fmt.Sprintf("%s #%d", name, j+1)
 		}
-		h.Columns = append(h.Columns, recording.Column{Name: name, Unit: strings.Trim(l.units[j], "[]()"), Text: l.text[j]})
+		c := recording.Column{Name: name, Unit: strings.Trim(l.units[j], "[]()"), Text: l.text[j]}
+		if l.stamp[j] {
+			c.Unit = "s" // of what the clock makes of it
+		}
+		h.Columns = append(h.Columns, c)
 	}
 	for _, s := range separatorNames {
 		if s.mark == l.separator && l.fields > 1 {
 			h.Notes = append(h.Notes, "fields are separated by "+s.name)
 		}
+	}
+	if l.rate > 0 {
+		h.Notes = append(h.Notes, fmt.Sprintf("the lines above the samples state a rate of %.6g Hz", l.rate))
 	}
 	if l.point == ',' {
 		h.Notes = append(h.Notes, "numbers have a decimal comma")

@@ -182,11 +182,19 @@ type clock struct {
 	started bool
 	places  int // decimals that integers count, -1 if the first time is beyond them
 	first   int64
-	origin  float64 // in units
+	origin  float64     // in units
+	stamps  *stampClock // for a column of times of day
 }
 
 // read returns the seconds since the first time read, which it takes note of.
 func (c *clock) read(field []byte) (float64, bool) {
+	if c.stamps != nil {
+		since, origin, ok := c.stamps.read(field)
+		if ok {
+			c.origin = origin
+		}
+		return since * c.unit, ok
+	}
 	d, ok := parseDecimal(field, c.point)
 	if !ok {
 		return 0, false

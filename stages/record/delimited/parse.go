@@ -3,6 +3,7 @@ package delimited
 import (
 	"bufio"
 	"bytes"
+	"cmp"
 	"context"
 	"errors"
 	"fmt"
@@ -25,6 +26,9 @@ type parser struct {
 	line  int64 // of the file, from 1
 	row   int64 // from 1
 	at    int64 // byte of the text at the beginning of the line
+
+	hurt      int64 // rows of which something cannot be read
+	firstHurt *recording.Error
 }
 
 const (
@@ -58,6 +62,9 @@ func newParser(l layout, request recording.Request) (*parser, error) {
 			return nil, &recording.Error{Column: request.Time, Text: "the column is both time and sample", Remedy: "use a column once"}
 		}
 		p.slot[j] = forTime
+		if l.stamp[j] {
+			p.clock.stamps = &stampClock{}
+		}
 		p.last = max(p.last, j)
 		p.timed = true
 		p.batch.Time = make([]float64, 0, batchRows)
@@ -77,6 +84,11 @@ func (p *parser) run(ctx context.Context, text *bufio.Reader, sink func(recordin
 		if errors.Is(err, bufio.ErrBufferFull) {
 			return &recording.Error{Line: p.line + 1, Text: fmt.Sprintf("the line is longer than %d bytes", len(line)),
 				Remedy: "give a recording with one row per line"}
+		}
+		if errors.Is(err, io.ErrUnexpectedEOF) && p.row > 0 {
+			p.batch.Findings = append(p.batch.Findings, recording.Finding{What: "cut off", Consequence: "what came after is lost",
+				Extent: fmt.Sprintf("the compressed file ends in its middle, after row %d, byte %d of the text", p.row, p.at+int64(len(line)))})
+			return nil
 		}
 		if err != nil && !errors.Is(err, io.EOF) {
 			return readError(err, p.at+int64(len(line)))
@@ -111,19 +123,28 @@ func (p *parser) run(ctx context.Context, text *bufio.Reader, sink func(recordin
 // rows returns the number of rows in the batch under way.
 func (p *parser) rows() int { return int(p.row - p.batch.First + 1) }
 
-// take adds one line. A last line without its end that lacks fields was being written when the recorder stopped.
+// mendable is the share of rows of which something may be unreadable and is left out; with more, the file is not what it seems.
+const mendable = 0.01
+
+// take adds one line. A last line without its end that lacks fields was being written when the recorder stopped. What cannot be
+// read of a row is left out, as a value that is no number, as long as that is rare.
 func (p *parser) take(line []byte, ended bool) error {
 	p.row++
 	rest, more := trimEnd(line), true
+	var wrong error
 	for j := 0; j <= p.last; j++ {
+		slot := p.slot[j]
 		if !more {
 			if !ended {
 				p.drop()
 				return nil
 			}
-			return p.fault(j, "the row ends after field %d of %d", "complete or remove the row", j, p.layout.fields)
+			if wrong == nil {
+				wrong = p.fault(j, "the row ends after field %d of %d", "complete or remove the row", j, p.layout.fields)
+			}
+			p.leaveOut(slot)
+			continue
 		}
-		slot := p.slot[j]
 		if slot >= 0 {
 			if v, used, follows := quick(rest, p.layout.separator, p.layout.point); used > 0 {
 				p.batch.Values[slot] = append(p.batch.Values[slot], v)
@@ -138,18 +159,46 @@ func (p *parser) take(line []byte, ended bool) error {
 		}
 		if slot == forTime {
 			if err := p.takeTime(j, field); err != nil {
-				return err
+				p.leaveOut(slot)
+				wrong = cmp.Or(wrong, err)
 			}
 			continue
 		}
 		v, ok := parseFloat(field, p.layout.point)
 		if !ok {
 			if !missing(field) {
-				return p.fault(j, "%s is not a number", "mend or remove the row; leave a field empty where there is no sample", show(field))
+				wrong = cmp.Or(wrong, p.fault(j, "%s is not a number", "mend or remove the row; leave a field empty where there is no sample", show(field)))
 			}
 			v = math.NaN()
 		}
 		p.batch.Values[slot] = append(p.batch.Values[slot], v)
+	}
+	if wrong != nil {
+		return p.note(wrong)
+	}
+	return nil
+}
+
+// leaveOut gives a row no value in that place.
+func (p *parser) leaveOut(slot int) {
+	switch slot {
+	case skip:
+	case forTime:
+		p.batch.Time = append(p.batch.Time, math.NaN())
+	default:
+		p.batch.Values[slot] = append(p.batch.Values[slot], math.NaN())
+	}
+}
+
+// note counts a row that is hurt; too many, and the first is the error.
+func (p *parser) note(wrong error) error {
+	const patience = 1000 // rows, before the share tells
+	p.hurt++
+	if p.firstHurt == nil {
+		errors.As(wrong, &p.firstHurt)
+	}
+	if p.hurt > patience && float64(p.hurt) > mendable*float64(p.row) {
+		return p.firstHurt
 	}
 	return nil
 }
@@ -204,7 +253,7 @@ func (p *parser) flush(sink func(recording.Batch) error) error {
 	if err := sink(p.batch); err != nil {
 		return err
 	}
-	p.batch.First, p.batch.Notes = p.row+1, nil
+	p.batch.First, p.batch.Notes, p.batch.Findings = p.row+1, nil, nil
 	if p.timed {
 		p.batch.Time = p.batch.Time[:0]
 	}
@@ -219,7 +268,14 @@ func (p *parser) finish(sink func(recording.Batch) error) error {
 	if p.row == 0 {
 		return &recording.Error{Text: "the recording has no rows of samples", Remedy: "give a recording with at least two rows"}
 	}
-	if p.rows() > 0 || len(p.batch.Notes) > 0 {
+	if float64(p.hurt) > mendable*float64(p.row) {
+		return p.firstHurt
+	}
+	if p.hurt > 0 {
+		p.batch.Findings = append(p.batch.Findings, recording.Finding{What: "rows", Where: p.firstHurt.Column, Consequence: "each is as if it had not been logged",
+			Extent: fmt.Sprintf("something cannot be read in %d of %d rows and was left out, first in line %d: %s", p.hurt, p.row, p.firstHurt.Line, p.firstHurt.Text)})
+	}
+	if p.rows() > 0 || len(p.batch.Notes) > 0 || len(p.batch.Findings) > 0 {
 		return p.flush(sink)
 	}
 	return nil

@@ -29,15 +29,11 @@ const (
 
 // Describe implements recording.Reader.
 func (Reader) Describe() recording.Description {
-	choices := []string{"auto"}
-	for _, s := range separatorNames {
-		choices = append(choices, s.name)
-	}
 	return recording.Description{
 		Name:  "delimited",
 		About: "text with one row per line, plain, gzip or zstd",
 		Options: []recording.Option{{
-			Name: "separator", About: "what stands between two fields; auto finds it", Choices: choices,
+			Name: "separator", About: "what stands between two fields: auto, comma, semicolon, tab, bar, blank, or any one character",
 		}},
 	}
 }
@@ -62,8 +58,13 @@ func open(source io.Reader, options map[string]string) (*bufio.Reader, layout, e
 		return nil, layout{}, err
 	}
 	sample, err := text.Peek(sampleSize)
-	if err != nil && !errors.Is(err, io.EOF) {
+	if err != nil && !errors.Is(err, io.EOF) && !(errors.Is(err, io.ErrUnexpectedEOF) && len(sample) > 0) {
 		return nil, layout{}, readError(err, int64(len(sample)))
+	}
+	if bytes.IndexByte(sample, '\n') < 0 && bytes.IndexByte(sample, '\r') >= 0 {
+		// Lines end with carriage returns alone.
+		text = bufio.NewReaderSize(&returns{in: text}, blockSize)
+		sample, _ = text.Peek(sampleSize)
 	}
 	if len(bytes.TrimSpace(sample)) == 0 {
 		return nil, layout{}, &recording.Error{Text: "the file is empty", Remedy: "give a recording with at least two rows of samples"}
@@ -101,7 +102,10 @@ func separatorOf(options map[string]string) (byte, error) {
 			return s.mark, nil
 		}
 	}
-	return 0, &recording.Error{Text: fmt.Sprintf("there is no separator %q", given), Remedy: "one of auto, comma, semicolon, tab, bar, blank"}
+	if len(given) == 1 && strings.IndexByte("0123456789+-.eE\"\r\n", given[0]) < 0 {
+		return given[0], nil
+	}
+	return 0, &recording.Error{Text: fmt.Sprintf("there is no separator %q", given), Remedy: "one of auto, comma, semicolon, tab, bar, blank, or one character that stands in no number"}
 }
 
 // unpack takes off gzip and a byte-order mark.
@@ -137,6 +141,19 @@ func unpack(source io.Reader) (*bufio.Reader, error) {
 		raw.Discard(3)
 	}
 	return raw, nil
+}
+
+// returns makes line feeds of carriage returns.
+type returns struct{ in io.Reader }
+
+func (r *returns) Read(p []byte) (int, error) {
+	n, err := r.in.Read(p)
+	for i, c := range p[:n] {
+		if c == '\r' {
+			p[i] = '\n'
+		}
+	}
+	return n, err
 }
 
 // errDamaged stands for whatever a decoder finds wrong with packed bytes.

@@ -24,6 +24,8 @@ type table struct {
 	values [][]float64
 	origin float64
 	notes  []string
+
+	findings []recording.Finding
 }
 
 func readAll(source io.Reader, request recording.Request) (table, error) {
@@ -39,7 +41,7 @@ func readAll(source io.Reader, request recording.Request) (table, error) {
 			out.values[k] = append(out.values[k], v...)
 		}
 		out.origin = b.Origin
-		out.notes = append(out.notes, b.Notes...)
+		out.notes, out.findings = append(out.notes, b.Notes...), append(out.findings, b.Findings...)
 		return nil
 	})
 	return out, err
@@ -193,7 +195,7 @@ func TestRefusals(t *testing.T) {
 		{"short row", "t,a,b\n0,1,2\n1,3\n2,5,6\n", "b", `line 3, row 2, column "b": the row ends after field 2 of 3`},
 		{"no column", "t,gyro_x\n0,1\n1,2\n", "gyro_y", `column "gyro_y": the recording has no such column`},
 		{"two of a name", "t,a,a\n0,1,2\n1,3,4\n", "a", "no such column"},
-		{"cut off", string(packed[:len(packed)/2]), "column 2", "ends in its middle"},
+		{"cut off at once", string(packed[:12]), "column 2", "ends in its middle"},
 		{"damaged", string(flipped), "column 2", "damaged"},
 		{"one endless line", "t,a\n0,1\n1,2\n" + strings.Repeat("3,", blockSize), "a", "longer than"},
 	} {
@@ -211,6 +213,10 @@ func TestRefusals(t *testing.T) {
 		if e.Remedy == "" {
 			t.Errorf("%s: no remedy", c.name)
 		}
+	}
+	if got, err := readAll(bytes.NewReader(packed[:len(packed)/2]), recording.Request{Columns: []string{"column 2"}}); err != nil || len(got.values[0]) < 20000 ||
+		len(got.findings) != 1 || got.findings[0].What != "cut off" {
+		t.Errorf("what is left of a packed file: %d rows, %+v, %v", len(got.values[0]), got.findings, err)
 	}
 	h, err := (Reader{}).Inspect(context.Background(), strings.NewReader("t,a,a,\n0,1,2,5\n1,3,4,5\n"), nil)
 	if names := strings.Join(h.Names(), "|"); err != nil || names != "t|a #2|a #3|column 4" {

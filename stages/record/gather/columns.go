@@ -22,6 +22,7 @@ type Plan struct {
 	Axes       []Channel
 	Rotors     []Channel
 	Throttle   *Channel // nil for none
+	Force      *Channel // nil unless the settings ask for it
 	// SetPoints are those of axes that are read, each called by its axis.
 	SetPoints []Channel
 	Notes     []string // what was found or assumed
@@ -52,7 +53,10 @@ var rateAxes, accelerationAxes = []string{"roll", "pitch", "yaw"}, []string{"x",
 // assign chooses the columns.
 func assign(h recording.Header, set Settings) (Plan, error) {
 	p := Plan{Second: 1}
-	roles := append(append([]string{"time"}, rateAxes...), accelerationAxes...)
+	roles := slices.Concat([]string{"time"}, rateAxes, accelerationAxes)
+	if set.Force {
+		roles = append(roles, "force")
+	}
 	for _, role := range sorted(set.Columns) {
 		if !slices.Contains(roles, role) {
 			remedy := "the roles are " + strings.Join(roles, ", ")
@@ -66,7 +70,7 @@ func assign(h recording.Header, set Settings) (Plan, error) {
 	if set.Units, err = unitsByColumn(h, set.Units); err != nil {
 		return p, err
 	}
-	for _, choose := range []func(recording.Header, Settings) error{p.chooseTime, p.chooseAxes, p.chooseRotors, p.chooseThrottle, p.chooseSetPoints, p.chooseClocks} {
+	for _, choose := range []func(recording.Header, Settings) error{p.chooseTime, p.chooseAxes, p.chooseForce, p.chooseRotors, p.chooseThrottle, p.chooseSetPoints, p.chooseClocks} {
 		if err := choose(h, set); err != nil {
 			return p, err
 		}
@@ -168,6 +172,33 @@ func (p *Plan) chooseAxes(h recording.Header, set Settings) error {
 	}
 	return &recording.Error{Text: "no column is an angular rate or an acceleration by its name",
 		Remedy: `name them in columns, such as { roll = "gx", pitch = "-gy", yaw = "-gz" }; ` + list(h)}
+}
+
+func (p *Plan) chooseForce(h recording.Header, set Settings) error {
+	if !set.Force {
+		return nil
+	}
+	written := set.Columns["force"]
+	if written == "" {
+		at := matching(h, func(w []string) string {
+			if has(w, "force", "hammer", "load") {
+				return Force
+			}
+			return ""
+		})[Force]
+		switch len(at) {
+		case 0:
+			return &recording.Error{Text: "no column is a force by its name", Remedy: `name it in columns, such as { force = "hammer" }; ` + list(h)}
+		case 1:
+			written = h.Columns[at[0]].Name
+			p.Notes = append(p.Notes, fmt.Sprintf("the force is column %q by its name", written))
+		default:
+			return several("force", h, at)
+		}
+	}
+	c, err := p.stated(h, Force, written, Force, set)
+	p.Force = &c
+	return err
 }
 
 func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
@@ -376,7 +407,7 @@ func (p *Plan) stated(h recording.Header, name, written, of string, set Settings
 	c.Sign, c.Column = sign, h.Columns[i].Name
 	var ok bool
 	if c.Unit, ok = unitOf(h.Columns[i], of, set); !ok {
-		c.Unit = map[string]string{AngularRate: "deg/s", Acceleration: "m/s2", RotorSpeed: "rpm"}[of]
+		c.Unit = map[string]string{AngularRate: "deg/s", Acceleration: "m/s2", RotorSpeed: "rpm", Force: "N"}[of]
 		p.Assumed = append(p.Assumed, fmt.Sprintf("column %q states no unit and is taken in %s", c.Column, c.Unit))
 	}
 	f, err := factor(c.Unit, of, c.Column)

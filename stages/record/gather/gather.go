@@ -28,6 +28,7 @@ type Recording struct {
 	// Found tells that the speeds of the rotors were found in the signal: to within a hertz or so, and not which rotor is which.
 	Found bool
 	set   Settings
+	whole *recording.Timing // of all axes, once known
 }
 
 // Load reads the channels of a recording.

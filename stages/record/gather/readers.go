@@ -17,7 +17,7 @@ import (
 
 // builtin are the readers in this executable.
 var builtin = []extension.Reader{extension.FromReader(delimited.Reader{}), extension.FromReader(wave.Reader{}),
-	extension.FromReader(columnar.Reader{}), extension.FromReader(flat.Reader{})}
+	extension.FromReader(columnar.Reader{}), extension.FromReader(columnar.Parquet{}), extension.FromReader(flat.Reader{})}
 
 // auto stands for the reader that the first bytes call for.
 const auto = "auto"
@@ -49,6 +49,8 @@ func choose(ctx context.Context, call *stage.Call, name string, head []byte) (ex
 			name = "wave"
 		case columnar.Mark(head):
 			name = "arrow"
+		case columnar.MarkParquet(head):
+			name = "parquet"
 		}
 	}
 	r, err := extension.FindReader(ctx, name, builtin, call)

@@ -5,7 +5,7 @@ import (
 	"fmt"
 	"io"
 	"math"
-	"runtime"
+	"runtime/debug"
 	"slices"
 
 	"hushframe/core/extension"
@@ -55,7 +55,11 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 			d.Rate = h.Rate
 		}
 	}
-	channels := slices.Concat(p.Axes, p.Rotors, p.SetPoints)
+	axes := p.Axes
+	if p.Force != nil {
+		axes = append(slices.Clone(axes), *p.Force)
+	}
+	channels := slices.Concat(axes, p.Rotors, p.SetPoints)
 	if p.Throttle != nil {
 		channels = append(channels, *p.Throttle)
 	}
@@ -76,7 +80,7 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 	axesClock := p.Axes[0].Clock
 	d.Rows = int64(passes[axesClock].rows)
 	var err error
-	if d.Axes, err = d.series(passes, p.Axes, true); err != nil {
+	if d.Axes, err = d.series(passes, axes, true); err != nil {
 		return nil, err
 	}
 	for _, c := range p.Rotors {
@@ -165,11 +169,12 @@ func (d *Data) pass(ctx context.Context, reader extension.Reader, open source, c
 	return r, nil
 }
 
-// tidy returns the memory of columns that have become slices, where it is much: chunks hold no pointers, so that this is quick.
+// tidy returns the memory of columns that have become slices, where it is much. Chunks of all columns lie between each other, so that
+// what is free has to go back to the system before another whole column is laid out.
 func (r *raw) tidy() {
 	const much = 64 << 20
 	if r.free += 8 * int64(r.rows); r.free > much {
-		runtime.GC()
+		debug.FreeOSMemory()
 		r.free = 0
 	}
 }

@@ -2,6 +2,7 @@ package gather
 
 import (
 	"math"
+	"slices"
 
 	"hushframe/core/signal/recording"
 )
@@ -50,15 +51,11 @@ func (s Series) part(from, end int) Series {
 
 // Cut copies the samples within from to to seconds, both included.
 func (s Series) Cut(from, to float64) Series {
-	out := Series{Values: make([][]float64, len(s.Values)), rows: []int64{}}
-	for i, t := range s.Time {
-		if t < from || t > to {
-			continue
-		}
-		out.Time, out.rows = append(out.Time, t), append(out.rows, s.RowAt(i))
-		for k := range s.Values {
-			out.Values[k] = append(out.Values[k], s.Values[k][i])
-		}
+	w := within(s.Time, from, to)
+	out := s.part(w.First, w.End)
+	out.Time = slices.Clone(out.Time)
+	for k, v := range out.Values {
+		out.Values[k] = slices.Clone(v)
 	}
 	return out
 }

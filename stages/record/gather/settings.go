@@ -21,6 +21,8 @@ type Settings struct {
 	Window                 []float64 // pairs of times; empty to find the steady pieces
 	Find                   int       // rotors to find in the signal
 	Speeds                 []float64 // their least and greatest speed, rad/s
+	// Force asks for a force channel, which follows the axes in their series; there are no steady pieces to be found then.
+	Force bool
 }
 
 // Arguments describes them.
@@ -59,6 +61,27 @@ func Arguments() []stage.Argument {
 		{Name: "speed_range", About: "least and greatest speed that is looked for", Type: amounts("rotational speed", "rpm"),
 			Default: []any{rpm(7500), rpm(24000)}, Example: `["7500 rpm", "24000 rpm"]`},
 	}
+}
+
+// BenchArguments describes those of a bench recording, with a force and no rotors.
+func BenchArguments() []stage.Argument {
+	var out []stage.Argument
+	for _, a := range Arguments() {
+		switch a.Name {
+		case "columns":
+			a.About = `columns by role: time, force, and x, y, z (acceleration) or roll, pitch, yaw (angular rate), each by name, place ("#3") or pattern ("*acc*z*"); left out, found by their names`
+			a.Example = `{ time = "t", force = "hammer", z = "-az" }`
+		case "window":
+			a.About = "first and last time used, or several such pairs; left out, all"
+		case "units":
+			a.Example = `{ hammer = "N" }`
+		case "file", "reader", "options", "mounting", "rate":
+		default:
+			continue
+		}
+		out = append(out, a)
+	}
+	return out
 }
 
 // Read takes the settings out of the arguments of a stage.

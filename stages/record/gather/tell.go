@@ -75,11 +75,11 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 	for _, f := range r.Findings(timing) {
 		add(strings.ReplaceAll(f.What, " ", "-"), cmp.Or(f.Where, r.set.File), "", "%s; %s", f.Extent, f.Consequence)
 	}
-	if len(r.Plan.Rotors) == 0 {
+	if len(r.Plan.Rotors) == 0 && !r.set.Force {
 		add("no-rotor-speed", r.set.File, "log the rotor speeds and name their columns in rotors", "no rotor speed is recorded, so rotor orders cannot be told from structure")
 	}
 	for i, c := range r.Plan.Rotors {
-		if len(r.Data.Rotors[i].Cut(timing.Start, timing.End).Time) == 0 {
+		if within(r.Data.Rotors[i].Time, timing.Start, timing.End).Len() == 0 {
 			add("no-rotor-speed", c.Column, "", "rotor %s has no speed within the times used", c.Name)
 		}
 	}

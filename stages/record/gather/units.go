@@ -15,6 +15,7 @@ const (
 	Acceleration = "acceleration"
 	RotorSpeed   = "rotational speed"
 	Throttle     = "throttle" // 0 to 1
+	Force        = "force"
 )
 
 var UnitOfSI = map[string]string{AngularRate: "rad/s", Acceleration: "m/s2"}
@@ -23,6 +24,7 @@ var UnitOfSI = map[string]string{AngularRate: "rad/s", Acceleration: "m/s2"}
 var spellings = map[string]map[string]string{
 	AngularRate:  {"dps": "deg/s", "rps": "rad/s"},
 	Acceleration: {"g": "g0", "G": "g0"},
+	Force:        {"lb": "lbf", "lbs": "lbf", "pound": "lbf", "pounds": "lbf"},
 	RotorSpeed:   {"rps": "turn/s", "Hz": "turn/s", "hz": "turn/s", "1/s": "turn/s", "RPM": "rpm", "1/min": "rpm"},
 }
 
@@ -68,6 +70,7 @@ var nameUnits = map[string][]struct {
 	RotorSpeed: {
 		{[]string{"rad", "s"}, "rad/s"}, {[]string{"hz"}, "turn/s"}, {[]string{"rps"}, "turn/s"}, {[]string{"rev", "s"}, "turn/s"},
 	},
+	Force:    {{[]string{"n"}, "N"}, {[]string{"kn"}, "kN"}, {[]string{"lbf"}, "lbf"}, {[]string{"lb"}, "lbf"}},
 	Throttle: {{[]string{"pct"}, "%"}, {[]string{"percent"}, "%"}, {[]string{"us"}, "us"}},
 	"time": {
 		{[]string{"s"}, "s"}, {[]string{"sec"}, "s"}, {[]string{"seconds"}, "s"}, {[]string{"ms"}, "ms"}, {[]string{"msec"}, "ms"},

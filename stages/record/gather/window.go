@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"runtime/debug"
 
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/signal/recording"
@@ -41,7 +42,7 @@ func (r *Recording) Window() (Series, recording.Timing, error) {
 			stretches = append(stretches, s)
 			r.Pieces = append(r.Pieces, Piece{Piece: recording.Piece{From: axes.Time[s.First], To: axes.Time[s.End-1], Level: math.NaN(), Why: "window"}, Samples: s.Len(), Used: true})
 		}
-	case n > 1:
+	case n > 1 && !r.set.Force:
 		if found := r.steady(axes); len(found) > 0 {
 			stretches = found
 		}
@@ -59,6 +60,10 @@ func (r *Recording) Window() (Series, recording.Timing, error) {
 	if err != nil {
 		return axes, timing, err
 	}
+	if axes.Len() == n {
+		whole := timing
+		r.whole = &whole
+	}
 	if len(stretches) > 1 {
 		timing = timing.Within(stretches)
 	}
@@ -67,24 +72,43 @@ func (r *Recording) Window() (Series, recording.Timing, error) {
 
 // Whole gives the axes of the whole recording, whatever is used of it.
 func (r *Recording) Whole() (Series, recording.Timing, error) {
+	if r.whole != nil {
+		return r.Data.Axes, *r.whole, nil
+	}
 	timing, err := r.analyse(r.Data.Axes)
 	return r.Data.Axes, timing, err
 }
 
-// Used copies the samples of a series within the pieces that are used.
-func (r *Recording) Used(s Series) Series {
-	out := Series{Values: make([][]float64, len(s.Values)), rows: []int64{}}
+// UsedValues copies the values of the first channel of a series within the pieces that are used: all, or, where the series is longer
+// than most, every second, third and so on.
+func (r *Recording) UsedValues(s Series, most int) []float64 {
+	stride := 1 + (s.Len()-1)/most
+	var out []float64
 	for _, p := range r.Pieces {
 		if !p.Used {
 			continue
 		}
-		c := s.Cut(p.From, p.To)
-		out.Time, out.rows = append(out.Time, c.Time...), append(out.rows, c.rows...)
-		for k := range out.Values {
-			out.Values[k] = append(out.Values[k], c.Values[k]...)
+		w := within(s.Time, p.From, p.To)
+		for i := w.First; i < w.End; i += stride {
+			out = append(out, s.Values[0][i])
 		}
 	}
 	return out
+}
+
+// Frugal makes the runtime collect garbage before it weighs much beside the samples of a long recording. The function it returns puts
+// that back.
+func (r *Recording) Frugal() func() {
+	const litter = 96 << 20 // bytes
+	kept := 0
+	for _, s := range r.Data.all() {
+		kept += 8 * s.Len() * (len(s.Values) + 1)
+	}
+	if kept < 2*litter {
+		return func() {}
+	}
+	before := debug.SetGCPercent(max(5, 100*litter/kept))
+	return func() { debug.SetGCPercent(before) }
 }
 
 // steady finds the steady pieces by rotor speed or throttle; nil, with a note, where there are none.

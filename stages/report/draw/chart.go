@@ -3,80 +3,207 @@ package draw
 import (
 	"fmt"
 	"math"
-	"sort"
-	"strings"
+	"slices"
+
+	"hushframe/stages/report/pack"
 )
 
-// Chart shows densities on a logarithmic scale over frequency. Classes of
-// curves are "predicted" and "observed".
+// Chart describes a picture of values over an axis. The same description is drawn here as SVG and, on a moving page,
+// by the front end, which adds zoom and read-out.
 type Chart struct {
-	About    string  // what is read aloud
-	Name     string  // unique on the page, for patterns
-	From, To float64 // Hz
-	Label    string  // of the vertical axis
-	Curves   []Curve
-	Bands    []Band
-	Marks    []Mark
-	Peaks    []Peak
-	Notes    []string // printed within the chart
+	ID    string `json:"id"`    // unique on the page
+	Title string `json:"title"` // in words
+	About string `json:"about"` // read aloud in its place
+	X     Axis   `json:"x"`
+	Y     Axis   `json:"y"`
+
+	Grid   *Grid    `json:"grid,omitempty"`
+	Bands  []Band   `json:"bands,omitempty"`
+	Curves []Curve  `json:"curves,omitempty"`
+	Marks  []Mark   `json:"marks,omitempty"`
+	Points []Point  `json:"points,omitempty"`
+	Notes  []string `json:"notes,omitempty"` // printed within the chart
+
+	// Follow says what the horizontal axis is for the rest of the page: "frequency" lets the frame follow.
+	Follow string `json:"follow,omitempty"`
+	Axis   string `json:"axis,omitempty"`   // of the gyro that the chart is about
+	Square bool   `json:"square,omitempty"` // both axes have one scale
 }
 
-// Curve is a line with an optional band around it (nil for none).
+// Axis is one axis; From equal to To asks for a range that holds the values.
+type Axis struct {
+	Label  string  `json:"label"` // with its unit
+	From   float64 `json:"from"`
+	To     float64 `json:"to"`
+	Log    bool    `json:"log,omitempty"`
+	Either bool    `json:"either,omitempty"` // a reader may choose between linear and logarithmic
+}
+
+// Curve is a line with an optional band around it (nil for none). Its class says how it looks.
 type Curve struct {
-	Name, Class  string
-	X, Y         []float64
-	Lower, Upper []float64
+	Name  string      `json:"name"`
+	Class string      `json:"class"`
+	X     pack.Floats `json:"x"`
+	Y     pack.Floats `json:"y"`
+	Lower pack.Floats `json:"lower,omitempty"`
+	Upper pack.Floats `json:"upper,omitempty"`
 }
 
-// Band is a range of frequency set apart by hatching.
+// Band is a range of the horizontal axis set apart by hatching.
 type Band struct {
-	From, To float64
-	Label    string
+	From  float64 `json:"from"`
+	To    float64 `json:"to"`
+	Label string  `json:"label"`
 }
 
-// Mark is a tick at the top.
+// Mark is a line across the chart with a label at the top, of a mode where Mode is not 0.
 type Mark struct {
-	X     float64
-	Label string
+	X     float64 `json:"x"`
+	Label string  `json:"label"`
+	Mode  int     `json:"mode,omitempty"`
 }
 
-// Peak is a marked point: a ring for "predicted", a square for "observed".
-type Peak struct {
-	X, Y         float64
-	Label, Class string
+// Point is a marked point. Classes differ in shape, not in colour alone: "observed" is a square, "loose" a cross,
+// "firm" a disc, all others a ring.
+type Point struct {
+	X     float64 `json:"x"`
+	Y     float64 `json:"y"`
+	Label string  `json:"label,omitempty"`
+	Class string  `json:"class"`
+	About string  `json:"about,omitempty"` // shown when a reader points at it
 }
 
 const (
 	chartWidth, chartHeight = 960.0, 400.0
-	left, right             = 66.0, 104.0
+	squareWidth             = 560.0
+	left, right             = 66.0, 112.0
 	top, bottom             = 44.0, 48.0
 )
 
 // frame maps data to the picture.
 type frame struct {
-	from, to   float64 // Hz
-	low, high  float64 // decades
-	plotHeight float64
+	x, y          Axis
+	width, height float64 // of the whole picture
 }
 
-func (f frame) x(hz float64) float64 {
-	return left + (hz-f.from)/(f.to-f.from)*(chartWidth-left-right)
+func (f frame) right() float64  { return f.width - right }
+func (f frame) bottom() float64 { return f.height - bottom }
+
+// place gives where a value lies along an axis, 0 to 1 within its range.
+func (a Axis) place(v float64) float64 {
+	if a.Log {
+		return (math.Log10(v) - math.Log10(a.From)) / (math.Log10(a.To) - math.Log10(a.From))
+	}
+	return (v - a.From) / (a.To - a.From)
 }
 
-func (f frame) y(density float64) float64 {
-	d := math.Log10(density)
-	d = math.Max(f.low, math.Min(f.high, d))
-	return top + (f.high-d)/(f.high-f.low)*f.plotHeight
+func (a Axis) holds(v float64) bool { return v >= a.From && v <= a.To }
+
+func (f frame) atX(v float64) float64 { return left + f.x.place(v)*(f.right()-left) }
+
+// atY keeps what lies above or below on the border.
+func (f frame) atY(v float64) float64 {
+	p := 0.0
+	if !f.y.Log || v > 0 {
+		p = math.Max(0, math.Min(1, f.y.place(v)))
+	}
+	return f.bottom() - p*(f.bottom()-top)
 }
 
-// Draw gives the chart as SVG; "" when no curve has a positive value in range.
+// drawable says whether a value can be shown on an axis at all.
+func (a Axis) drawable(v float64) bool {
+	return !math.IsNaN(v) && !math.IsInf(v, 0) && (!a.Log || v > 0)
+}
+
+// Fit chooses the ranges that were not given and drops what has no place; false when there is nothing to show.
+func (ch *Chart) Fit() bool {
+	nowhere := func(v ...float64) bool {
+		return slices.ContainsFunc(v, func(x float64) bool { return math.IsNaN(x) || math.IsInf(x, 0) })
+	}
+	ch.Points = slices.DeleteFunc(ch.Points, func(p Point) bool { return nowhere(p.X, p.Y) })
+	ch.Marks = slices.DeleteFunc(ch.Marks, func(m Mark) bool { return nowhere(m.X) })
+	ch.Bands = slices.DeleteFunc(ch.Bands, func(b Band) bool { return nowhere(b.From, b.To) })
+	if !ch.X.fit(func(see func(float64)) {
+		for _, c := range ch.Curves {
+			for _, v := range c.X {
+				see(v)
+			}
+		}
+		for _, p := range ch.Points {
+			see(p.X)
+		}
+		if ch.Grid != nil {
+			ch.Grid.see(ch.Grid.X, see)
+		}
+	}) {
+		return false
+	}
+	return ch.Y.fit(func(see func(float64)) {
+		for _, c := range ch.Curves {
+			for k, v := range c.Y {
+				if ch.X.holds(c.X[k]) {
+					see(v)
+				}
+			}
+		}
+		for _, p := range ch.Points {
+			if ch.X.holds(p.X) {
+				see(p.Y)
+			}
+		}
+		if ch.Grid != nil {
+			ch.Grid.see(ch.Grid.Y, see)
+		}
+	})
+}
+
+// decades is the most that a logarithmic axis shows by itself.
+const decades = 7
+
+func (a *Axis) fit(values func(see func(float64))) bool {
+	low, high := math.Inf(1), math.Inf(-1)
+	values(func(v float64) {
+		if a.drawable(v) {
+			low, high = math.Min(low, v), math.Max(high, v)
+		}
+	})
+	if low > high {
+		return false
+	}
+	if a.From != a.To {
+		return a.To > a.From && (!a.Log || a.From > 0)
+	}
+	if a.Log {
+		from, to := math.Floor(math.Log10(low)), math.Ceil(math.Log10(high)+0.08)
+		from = math.Max(from, to-decades)
+		if to <= from {
+			to = from + 1
+		}
+		a.From, a.To = math.Pow(10, from), math.Pow(10, to)
+		return true
+	}
+	if high == low {
+		high, low = high+1, low-1
+	}
+	d := step(high-low, 6)
+	a.From, a.To = math.Floor(low/d)*d, math.Ceil(high/d)*d
+	return true
+}
+
+// Draw gives the chart as SVG; "" when there is nothing to show.
 func (ch *Chart) Draw() string {
-	f, ok := ch.frame()
-	if !ok {
+	if !ch.Fit() {
 		return ""
 	}
+	f := frame{x: ch.X, y: ch.Y, width: chartWidth, height: chartHeight}
+	if ch.Square {
+		f.width, f.height = squareWidth, squareWidth
+	}
 	c := &canvas{}
-	c.open("chart", ch.About, chartWidth, chartHeight)
+	c.open("chart", ch.About, f.width, f.height)
+	if ch.Grid != nil {
+		c.image(left, top, f.right()-left, f.bottom()-top, ch.Grid.picture(f))
+	}
 	labels := ch.bands(c, f)
 	ch.grid(c, f)
 	ch.marks(c, f)
@@ -91,270 +218,52 @@ func (ch *Chart) Draw() string {
 	for _, l := range labels { // over the curves, or they would be crossed out
 		c.text(l.x, l.y, "band-label", "middle", l.text)
 	}
-	ch.peaks(c, f, ch.names(c, f))
+	ch.points(c, f, ch.names(c, f))
 	for i, note := range ch.Notes {
-		c.text(chartWidth-right-8, top+18+16*float64(i), "note", "end", note)
+		c.text(f.right()-8, top+18+16*float64(i), "note", "end", note)
 	}
 	return c.close()
 }
 
-// frame spans whole decades around the values, seven at most.
-func (ch *Chart) frame() (frame, bool) {
-	low, high := math.Inf(1), math.Inf(-1)
-	for _, curve := range ch.Curves {
-		for k, x := range curve.X {
-			if y := curve.Y[k]; x >= ch.From && x <= ch.To && y > 0 && !math.IsInf(y, 0) {
-				low, high = math.Min(low, math.Log10(y)), math.Max(high, math.Log10(y))
-			}
-		}
-	}
-	if low > high {
-		return frame{}, false
-	}
-	f := frame{from: ch.From, to: ch.To, low: math.Floor(low), high: math.Ceil(high + 0.08), plotHeight: chartHeight - top - bottom}
-	f.low = math.Max(f.low, f.high-7)
-	if f.high <= f.low {
-		f.high = f.low + 1
-	}
-	return f, true
-}
-
 func (ch *Chart) grid(c *canvas, f frame) {
-	end := chartHeight - bottom
-	for d := int(f.low); d <= int(f.high); d++ {
-		y := f.y(math.Pow(10, float64(d)))
-		c.line(left, y, chartWidth-right, y, "grid")
-		c.text(left-8, y+4, "tick", "end", power(d))
+	end := f.bottom()
+	for _, v := range f.y.ticks(6) {
+		y := f.atY(v)
+		if ch.Grid == nil {
+			c.line(left, y, f.right(), y, "grid")
+		}
+		c.text(left-8, y+4, "tick", "end", f.y.tick(v))
 	}
-	width := step(f.to-f.from, 9)
-	for x := math.Ceil(f.from/width-1e-9) * width; x <= f.to+1e-9*width; x += width {
-		c.line(f.x(x), end, f.x(x), end+5, "axis")
-		c.text(f.x(x), end+19, "tick", "middle", fmt.Sprintf("%g", math.Round(x*1e6)/1e6))
+	for _, v := range f.x.ticks(9) {
+		c.line(f.atX(v), end, f.atX(v), end+5, "axis")
+		c.text(f.atX(v), end+19, "tick", "middle", f.x.tick(v))
 	}
-	c.line(left, end, chartWidth-right, end, "axis")
-	c.text((left+chartWidth-right)/2, chartHeight-8, "label", "middle", "frequency, Hz")
-	c.start("g", "transform", "translate(16 "+num(top+f.plotHeight/2)+") rotate(-90)")
-	c.text(0, 0, "label", "middle", ch.Label)
+	c.line(left, end, f.right(), end, "axis")
+	c.text((left+f.right())/2, f.height-8, "label", "middle", f.x.Label)
+	c.start("g", "transform", "translate(16 "+num((top+end)/2)+") rotate(-90)")
+	c.text(0, 0, "label", "middle", f.y.Label)
 	c.end("g")
 }
 
-// power writes ten to a power with raised digits.
-func power(d int) string {
-	switch d {
-	case 0:
-		return "1"
-	case 1:
-		return "10"
-	case -1:
-		return "0.1"
+// ticks gives round values within the range, about n of them; on a logarithmic axis of some width the powers of ten.
+func (a Axis) ticks(n int) []float64 {
+	var out []float64
+	if a.Log && a.To/a.From >= 100 {
+		for d := math.Ceil(math.Log10(a.From) - 1e-9); d <= math.Log10(a.To)+1e-9; d++ {
+			out = append(out, math.Pow(10, d))
+		}
+		return out
 	}
-	raised := strings.NewReplacer("-", "⁻", "0", "⁰", "1", "¹", "2", "²", "3", "³", "4", "⁴", "5", "⁵", "6", "⁶", "7", "⁷", "8", "⁸", "9", "⁹")
-	return "10" + raised.Replace(fmt.Sprint(d))
+	d := step(a.To-a.From, n)
+	for v := math.Ceil(a.From/d-1e-9) * d; v <= a.To+1e-9*d; v += d {
+		out = append(out, math.Round(v/d)*d)
+	}
+	return out
 }
 
-// step gives a round step that divides a span into at most n parts.
-func step(span float64, n int) float64 {
-	least := span / float64(n)
-	unit := math.Pow(10, math.Floor(math.Log10(least)))
-	for _, m := range []float64{1, 2, 5} {
-		if m*unit >= least*(1-1e-9) {
-			return m * unit
-		}
+func (a Axis) tick(v float64) string {
+	if a.Log && a.To/a.From >= 100 {
+		return power(int(math.Round(math.Log10(v))))
 	}
-	return 10 * unit
-}
-
-// bandLabel is centred at a place of the picture.
-type bandLabel struct {
-	x, y float64
-	text string
-}
-
-// bands draws the hatching and says where its labels go.
-func (ch *Chart) bands(c *canvas, f frame) (labels []bandLabel) {
-	if len(ch.Bands) == 0 {
-		return nil
-	}
-	id := "hatch-" + ch.Name
-	c.b.WriteString(`<defs><pattern id="` + id + `" width="6" height="6" patternUnits="userSpaceOnUse" patternTransform="rotate(45)"><path class="hatch" d="M0 0V6"/></pattern></defs>`)
-	type label struct{ x0, x1, row float64 }
-	var taken []label
-	for _, b := range ch.Bands {
-		x0, x1 := f.x(math.Max(b.From, f.from)), f.x(math.Min(b.To, f.to))
-		if x1 <= left || x0 >= chartWidth-right || x1 < x0 {
-			continue
-		}
-		c.tag("rect", "class", "band", "fill", "url(#"+id+")", "x", x0, "y", top, "width", math.Max(1.5, x1-x0), "height", f.plotHeight)
-		at := math.Min(math.Max((x0+x1)/2, left+30), chartWidth-right-30)
-		half := 3.4 * float64(len([]rune(b.Label)))
-		at = math.Min(at, chartWidth-right-half)
-		free := label{x0: at - half - 4, x1: at + half + 4}
-		for i := 0; i < len(taken); i++ {
-			if t := taken[i]; t.row == free.row && t.x0 < free.x1 && t.x1 > free.x0 {
-				free.row, i = free.row+1, -1
-			}
-		}
-		taken = append(taken, free)
-		labels = append(labels, bandLabel{at, chartHeight - bottom - 6 - 13*free.row, b.Label})
-	}
-	return labels
-}
-
-// marks draws the ticks at the top, their labels in two rows where they crowd.
-func (ch *Chart) marks(c *canvas, f frame) {
-	ends := [2]float64{-math.MaxFloat64, -math.MaxFloat64}
-	for _, m := range ch.Marks {
-		if m.X < f.from || m.X > f.to {
-			continue
-		}
-		x := f.x(m.X)
-		c.line(x, top, x, chartHeight-bottom, "mode")
-		half := 4 * float64(len([]rune(m.Label)))
-		for row := range ends {
-			if x-half > ends[row] {
-				c.text(x, top-8-14*float64(row), "mode-label", "middle", m.Label)
-				ends[row] = x + half
-				break
-			}
-		}
-	}
-}
-
-// spot is the middle of a short label.
-type spot struct{ x, y float64 }
-
-// peaks marks points, and labels them where there is room: above, then to one
-// side, then the other.
-func (ch *Chart) peaks(c *canvas, f frame, taken []spot) {
-	room := func(p spot) bool {
-		if p.y < top+8 || p.x < left+14 || p.x > chartWidth-right-14 {
-			return false
-		}
-		for _, t := range taken {
-			if math.Abs(t.x-p.x) < 27 && math.Abs(t.y-p.y) < 13 {
-				return false
-			}
-		}
-		return true
-	}
-	for _, p := range ch.Peaks {
-		if p.X >= f.from && p.X <= f.to && p.Y > 0 {
-			taken = append(taken, spot{f.x(p.X), f.y(p.Y) + 4})
-		}
-	}
-	for _, p := range ch.Peaks {
-		if p.X < f.from || p.X > f.to || !(p.Y > 0) {
-			continue
-		}
-		x, y := f.x(p.X), f.y(p.Y)
-		if p.Class == "observed" {
-			c.tag("rect", "class", "point observed", "x", x-3.5, "y", y-3.5, "width", 7.0, "height", 7.0)
-		} else {
-			c.tag("circle", "class", "point predicted", "cx", x, "cy", y, "r", 4.0)
-		}
-		if p.Label == "" {
-			continue
-		}
-		sides := []spot{{x, y - 9.5}, {x + 28, y + 4}, {x - 28, y + 4}}
-		if p.Class == "observed" {
-			sides = []spot{{x, y - 9.5}, {x - 28, y + 4}, {x + 28, y + 4}}
-		}
-		for _, at := range sides {
-			if room(at) {
-				taken = append(taken, at)
-				c.text(at.x, at.y, "peak-label "+p.Class, "middle", p.Label)
-				break
-			}
-		}
-	}
-}
-
-// names writes each curve's name at its right end and says what room that
-// takes.
-func (ch *Chart) names(c *canvas, f frame) (taken []spot) {
-	type tag struct {
-		x, y  float64
-		curve Curve
-	}
-	var tags []tag
-	for _, curve := range ch.Curves {
-		for k := len(curve.X) - 1; k >= 0; k-- {
-			if curve.X[k] <= f.to && curve.Y[k] > 0 {
-				tags = append(tags, tag{f.x(curve.X[k]) + 8, f.y(curve.Y[k]), curve})
-				break
-			}
-		}
-	}
-	sort.SliceStable(tags, func(i, j int) bool { return tags[i].y < tags[j].y })
-	for i := range tags {
-		if i > 0 && math.Abs(tags[i].x-tags[i-1].x) < 80 {
-			tags[i].y = math.Max(tags[i].y, tags[i-1].y+16)
-		}
-	}
-	for _, t := range tags {
-		c.text(t.x, t.y+4, "curve-label "+t.curve.Class, "start", t.curve.Name)
-		for k := 0; k < len(t.curve.Name); k += 3 {
-			taken = append(taken, spot{t.x + 8 + 7.5*float64(k), t.y + 4})
-		}
-	}
-	return taken
-}
-
-// path joins the points in range, leaving out those that would not be seen. A
-// value that is not positive breaks the line.
-func (f frame) path(xs, ys []float64) string {
-	var b strings.Builder
-	pen := false
-	var px, py float64 // last point drawn
-	var hx, hy float64 // last point seen
-	held := false      // that point is not drawn yet
-	emit := func(x, y float64) {
-		if pen {
-			b.WriteString("L" + num(x) + " " + num(y))
-		} else {
-			b.WriteString("M" + num(x) + " " + num(y))
-		}
-		pen, px, py, held = true, x, y, false
-	}
-	for k, hz := range xs {
-		if hz < f.from || hz > f.to {
-			continue
-		}
-		if !(ys[k] > 0) || math.IsInf(ys[k], 0) {
-			if held {
-				emit(hx, hy)
-			}
-			pen = false
-			continue
-		}
-		x, y := f.x(hz), f.y(ys[k])
-		if pen && math.Abs(x-px) < 0.8 && math.Abs(y-py) < 0.5 {
-			hx, hy, held = x, y, true
-			continue
-		}
-		emit(x, y)
-	}
-	if held {
-		emit(hx, hy)
-	}
-	return b.String()
-}
-
-// around outlines the band between the lower and upper values of a curve.
-func (f frame) around(curve Curve) string {
-	var up, down []string
-	for k, hz := range curve.X {
-		if hz < f.from || hz > f.to || !(curve.Lower[k] > 0) || !(curve.Upper[k] > 0) {
-			continue
-		}
-		up = append(up, num(f.x(hz))+" "+num(f.y(curve.Upper[k])))
-		down = append(down, num(f.x(hz))+" "+num(f.y(curve.Lower[k])))
-	}
-	if len(up) == 0 {
-		return ""
-	}
-	for i, j := 0, len(down)-1; i < j; i, j = i+1, j-1 {
-		down[i], down[j] = down[j], down[i]
-	}
-	return "M" + strings.Join(up, "L") + "L" + strings.Join(down, "L") + "Z"
+	return fmt.Sprintf("%g", math.Round(v*1e9)/1e9)
 }

@@ -26,18 +26,23 @@ var (
 
 // at gives step k of Levels as #rrggbb.
 func (s scale) at(k int) string {
-	t := float64(k) / (Levels - 1)
+	r, g, b := s.mixed(float64(k) / (Levels - 1))
+	return fmt.Sprintf("#%02x%02x%02x", r, g, b)
+}
+
+// mixed gives the colour at a share 0 to 1 of the way.
+func (s scale) mixed(t float64) (r, g, b uint8) {
 	mix := func(a, b float64) float64 { return a + t*(b-a) }
 	return oklch(mix(s.light0, s.light1), mix(s.chroma0, s.chroma1), mix(s.hue0, s.hue1))
 }
 
 // oklch converts to sRGB; chroma is lowered until the colour exists there.
-func oklch(light, chroma, hue float64) string {
+func oklch(light, chroma, hue float64) (r, g, b uint8) {
 	h := hue * math.Pi / 180
 	for ; ; chroma -= 0.002 {
 		rgb, fits := oklab(light, chroma*math.Cos(h), chroma*math.Sin(h))
 		if fits || chroma <= 0 {
-			return fmt.Sprintf("#%02x%02x%02x", rgb[0], rgb[1], rgb[2])
+			return uint8(rgb[0]), uint8(rgb[1]), uint8(rgb[2])
 		}
 	}
 }
@@ -75,21 +80,17 @@ func level(share float64) int {
 	return max(0, min(Levels-1, int(share*Levels)))
 }
 
-// Style gives the rules of the colour scale, classes k0 to k15, for a light
-// and a dark page.
-func Style() string {
-	var b strings.Builder
-	rules := func(s scale) {
+// Style gives the rules of the colour scale, classes k0 to k15, on a light and on a dark page.
+func Style() (light, dark string) {
+	rules := func(s scale) string {
+		var b strings.Builder
 		for k := range Levels {
 			c := s.at(k)
 			fmt.Fprintf(&b, ".k%d{fill:%s;stroke:%s}", k, c, c)
 		}
+		return b.String() + "\n"
 	}
-	rules(onLight)
-	b.WriteString("@media (prefers-color-scheme:dark){@media screen{")
-	rules(onDark)
-	b.WriteString("}}\n")
-	return b.String()
+	return rules(onLight), rules(onDark)
 }
 
 // Scales gives the steps of the colour scale, on a light and on a dark page.

@@ -5,7 +5,9 @@ import (
 	"fmt"
 	"io"
 	"math"
+	"math/rand/v2"
 	"regexp"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -34,7 +36,7 @@ func wellFormed(t testing.TB, svg string) {
 
 func hostileChart() *Chart {
 	n := 400
-	ch := &Chart{About: `a "chart" <script>`, Name: "roll", From: 100, To: 500, Label: "density <b>"}
+	ch := &Chart{About: `a "chart" <script>`, ID: "roll", X: Axis{Label: "frequency, Hz", From: 100, To: 500}, Y: Axis{Label: "density <b>", Log: true}}
 	c := Curve{Name: "predicted & more", Class: "predicted"}
 	for k := range n {
 		f := 50 + 1.5*float64(k)
@@ -48,8 +50,8 @@ func hostileChart() *Chart {
 	}
 	ch.Curves = []Curve{c, {Name: "recorded", Class: "observed", X: c.X, Y: c.Y}}
 	ch.Bands = []Band{{250, 280, "order 1 <i>"}, {255, 285, "order 1b"}, {600, 700, "outside"}}
-	ch.Marks = []Mark{{230, "1"}, {231, "2"}, {232, "3"}, {900, "9"}}
-	ch.Peaks = []Peak{{230, 1e-3, "230", "predicted"}, {230.5, 0.9e-3, "231", "observed"}, {400, math.NaN(), "x", "observed"}}
+	ch.Marks = []Mark{{230, "1", 1}, {231, "2", 2}, {232, "3", 3}, {900, "9", 9}}
+	ch.Points = []Point{{230, 1e-3, "230", "predicted", `<script>x`}, {230.5, 0.9e-3, "231", "observed", ""}, {400, math.NaN(), "x", "observed", ""}}
 	ch.Notes = []string{"prediction × 3 <script>alert(1)</script>"}
 	return ch
 }
@@ -74,10 +76,10 @@ func TestChart(t *testing.T) {
 
 func TestCurveStaysInsideAndBreaks(t *testing.T) {
 	ch := hostileChart()
-	f, ok := ch.frame()
-	if !ok {
+	if !ch.Fit() {
 		t.Fatal("no frame")
 	}
+	f := frame{x: ch.X, y: ch.Y, width: chartWidth, height: chartHeight}
 	d := f.path(ch.Curves[0].X, ch.Curves[0].Y)
 	if n := strings.Count(d, "M"); n != 3 { // broken at 200 Hz (twice in a row) and at 275 Hz
 		t.Errorf("%d strokes, want 3: %s", n, d)
@@ -94,9 +96,83 @@ func TestCurveStaysInsideAndBreaks(t *testing.T) {
 }
 
 func TestFrameOfNothing(t *testing.T) {
-	ch := &Chart{From: 1, To: 2, Curves: []Curve{{X: []float64{1, 2, 3}, Y: []float64{0, math.NaN(), 5}}}}
+	ch := &Chart{X: Axis{From: 1, To: 2}, Y: Axis{Log: true}, Curves: []Curve{{X: []float64{1, 2, 3}, Y: []float64{0, math.NaN(), 5}}}}
 	if svg := ch.Draw(); svg != "" {
 		t.Errorf("drawn: %s", svg)
+	}
+}
+
+// Labels that crowd give way as little as possible, in order, and stay within bounds.
+func TestSpread(t *testing.T) {
+	for _, c := range []struct{ at, want []float64 }{
+		{[]float64{10, 50}, []float64{10, 50}},
+		{[]float64{50, 50}, []float64{45, 55}},
+		{[]float64{50, 51, 52, 90}, []float64{41, 51, 61, 90}},
+		{[]float64{1, 2}, []float64{1.5 - 5, 1.5 + 5}}, // then shifted to the bound
+		{[]float64{99, 100}, []float64{90, 100}},
+	} {
+		got := Spread(c.at, 10, 0, 100)
+		for i := range got {
+			want := c.want[i]
+			if c.want[0] < 0 {
+				want -= c.want[0]
+			}
+			if math.Abs(got[i]-want) > 1e-12 {
+				t.Errorf("%v spread to %v", c.at, got)
+				break
+			}
+		}
+	}
+	if got := Spread([]float64{1, 2, 3}, 60, 0, 100); got != nil {
+		t.Errorf("three of 60 within 100 spread to %v", got)
+	}
+	r := rand.New(rand.NewPCG(1, 2))
+	for range 200 {
+		at := make([]float64, 20)
+		for i := range at {
+			at[i] = 100 * r.Float64()
+		}
+		slices.Sort(at)
+		got := Spread(at, 4, 0, 100)
+		for i, x := range got {
+			if x < -1e-9 || x > 100+1e-9 || i > 0 && x-got[i-1] < 4-1e-9 {
+				t.Fatalf("%v spread to %v", at, got)
+			}
+		}
+	}
+}
+
+// The levels of a grid give its values back within half a level, and what is zero has no colour.
+func TestGridKeepsPeaksAndGaps(t *testing.T) {
+	values := []float64{1e-6, 1e-3, 0, math.NaN(), 2, 1e-12}
+	g := NewGrid("density", []float64{0, 1, 2, 3}, []float64{0, 10, 20}, values, 4)
+	if g.High != 2 || math.Abs(g.Low-2e-4) > 1e-18 {
+		t.Errorf("levels from %g to %g", g.Low, g.High)
+	}
+	for i, want := range []float64{2e-4, 1e-3, math.NaN(), math.NaN(), 2, 2e-4} {
+		got := g.Value(g.Cells[i])
+		if math.IsNaN(want) != math.IsNaN(got) || math.Abs(got/want-1) > 0.02 {
+			t.Errorf("cell %d is %g, want %g", i, got, want)
+		}
+	}
+	if NewGrid("", []float64{0, 1}, []float64{0, 1}, []float64{0}, 4) != nil {
+		t.Error("a grid of nothing")
+	}
+	ch := &Chart{ID: "m", X: Axis{Label: "x"}, Y: Axis{Label: "y"}, Grid: g}
+	svg := ch.Draw()
+	wellFormed(t, svg)
+	if !strings.Contains(svg, `href="data:image/png;base64,`) || ch.X.To != 3 || ch.Y.To != 20 {
+		t.Errorf("axes %+v %+v", ch.X, ch.Y)
+	}
+}
+
+func TestLogarithmicAxes(t *testing.T) {
+	a := Axis{From: 10, To: 1000, Log: true}
+	if p := a.place(100); math.Abs(p-0.5) > 1e-12 {
+		t.Errorf("100 lies at %g between 10 and 1000", p)
+	}
+	if got := a.ticks(5); len(got) != 3 {
+		t.Errorf("ticks %v", got)
 	}
 }
 

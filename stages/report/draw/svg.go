@@ -54,6 +54,18 @@ func (c *canvas) text(x, y float64, class, anchor, words string) {
 	c.end("text")
 }
 
+// words writes an element that holds text and nothing else.
+func (c *canvas) words(element, words string) {
+	c.start(element)
+	c.b.WriteString(html.EscapeString(words))
+	c.end(element)
+}
+
+// image stretches a picture given by its address over a rectangle.
+func (c *canvas) image(x, y, width, height float64, address string) {
+	c.tag("image", "class", "cells", "x", x, "y", y, "width", width, "height", height, "preserveAspectRatio", "none", "href", address)
+}
+
 func (c *canvas) line(x1, y1, x2, y2 float64, class string) {
 	c.tag("path", "class", class, "d", "M"+num(x1)+" "+num(y1)+"L"+num(x2)+" "+num(y2))
 }

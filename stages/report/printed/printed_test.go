@@ -31,16 +31,17 @@ func pictures() map[string]*Picture {
 		up[k], down[k] = y[k]*1.3, y[k]*0.8
 	}
 	return map[string]*Picture{
-		"response": Response("Rate "+hostile, &draw.Chart{From: 80, To: 500, Label: "(deg/s)²/Hz", Notes: []string{"a note"},
+		"response": Response("Rate "+hostile, &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Label: "(deg/s)²/Hz", Log: true}, Notes: []string{"a note"},
 			Curves: []draw.Curve{{Name: "predicted", Class: "predicted", X: x, Y: y}, {Name: "recorded", Class: "observed", X: x, Y: y, Lower: down, Upper: up}},
 			Bands:  []draw.Band{{From: 260, To: 280, Label: "order 1"}, {From: 900, To: 950, Label: "beyond"}},
-			Marks:  []draw.Mark{{X: 200, Label: "8"}, {X: 700, Label: "9"}}, Peaks: []draw.Peak{{X: 200, Y: 1, Label: "200", Class: "predicted"}, {X: 199, Y: 0.9, Class: "observed"}}}),
-		"campbell": Campbell("Campbell", &draw.Whirl{Fastest: 30000, Highest: 500, Lines: []draw.Curve{{Name: "4", X: []float64{0, 30000}, Y: []float64{120, 130}}},
-			Orders: []draw.Order{{Slope: 1. / 60, Label: "order 1"}}, Meets: []draw.Peak{{X: 7300, Y: 121}}, Mark: draw.Mark{X: 16000, Label: "hover"}}),
+			Marks:  []draw.Mark{{X: 200, Label: "8"}, {X: 700, Label: "9"}}, Points: []draw.Point{{X: 200, Y: 1, Label: "200", Class: "predicted"}, {X: 199, Y: 0.9, Class: "observed"}}}),
+		"campbell": Campbell("Campbell", &draw.Chart{X: draw.Axis{Label: "rotor speed, rpm", To: 30000}, Y: draw.Axis{Label: "natural frequency, Hz", To: 500},
+			Curves: []draw.Curve{{Name: "order 1", Class: "order", X: []float64{0, 30000}, Y: []float64{0, 500}}, {Name: "4", Class: "predicted", X: []float64{0, 30000}, Y: []float64{120, 130}}},
+			Points: []draw.Point{{X: 7300, Y: 121}}, Marks: []draw.Mark{{X: 16000, Label: "hover"}}}),
 		"shares": Shares("Bars", "share", Bars{Rows: []string{"1, 61 Hz", "2, 87 Hz"}, Parts: []string{hostile, "b", "c"}, Shares: [][]float64{{0.5, 0.5, 0}, {0.1, 0.2, 0.7}}}),
 		"poles":  Poles("Poles", 80, 500, []Pole{{Order: 10, Frequency: 120}, {Order: 12, Frequency: 121, Stable: true}}, []draw.Mark{{X: 121, Label: "121"}}),
 		"map": SpeedMap("Map", Map{Across: "rpm", Label: "(deg/s)²/Hz", Top: 400, Cells: []Cell{{From: 100, To: 200, Step: 1, Density: y}, {From: 200, To: 300, Step: 1, Density: y}},
-			Orders: []draw.Order{{Slope: 1, Label: "order 60"}}, Modes: []draw.Mark{{X: 100, Label: "3"}}}),
+			Orders: []Order{{Slope: 1, Label: "order 60"}}, Modes: []draw.Mark{{X: 100, Label: "3"}}}),
 		"lines": Lines("Lines", "deg/s", []draw.Curve{{Name: "unbalance", X: []float64{1000, 2000, 3000}, Y: []float64{0.01, 1, 0.3}}}, draw.Mark{X: 2000, Label: "hover"}),
 	}
 }
@@ -127,7 +128,7 @@ func readSVG(t *testing.T, name string, data []byte) (texts string, elements map
 // above 10^-1.5, and 80 and 500 Hz at the ends.
 func TestScales(t *testing.T) {
 	x := []float64{80, 200, 500}
-	p := Response("", &draw.Chart{From: 80, To: 500, Curves: []draw.Curve{{Name: "a", Class: "predicted", X: x, Y: []float64{0.01, 1, 0.1}}}})
+	p := Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{Name: "a", Class: "predicted", X: x, Y: []float64{0.01, 1, 0.1}}}})
 	data, err := p.Write(SVG)
 	if err != nil {
 		t.Fatal(err)
@@ -152,8 +153,8 @@ func TestScales(t *testing.T) {
 func TestNothingToDraw(t *testing.T) {
 	nan, inf := math.NaN(), math.Inf(1)
 	for name, p := range map[string]*Picture{
-		"response": Response("", &draw.Chart{From: 80, To: 500, Curves: []draw.Curve{{X: []float64{100, 200}, Y: []float64{0, nan}}}}),
-		"campbell": Campbell("", &draw.Whirl{}), "shares": Shares("", "", Bars{}), "poles": Poles("", 80, 500, []Pole{{Order: 2, Frequency: 700}}, nil),
+		"response": Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{X: []float64{100, 200}, Y: []float64{0, nan}}}}),
+		"campbell": Campbell("", &draw.Chart{}), "shares": Shares("", "", Bars{}), "poles": Poles("", 80, 500, []Pole{{Order: 2, Frequency: 700}}, nil),
 		"map": SpeedMap("", Map{Top: 100, Cells: []Cell{{From: 1, To: 2, Step: 1, Density: []float64{1, 0, nan}}}}), "lines": Lines("", "", nil, draw.Mark{}),
 	} {
 		if p != nil {
@@ -161,8 +162,8 @@ func TestNothingToDraw(t *testing.T) {
 		}
 	}
 	x := []float64{100, 150, 200, 250, 300}
-	p := Response("", &draw.Chart{From: 80, To: 500, Curves: []draw.Curve{{X: x, Y: []float64{1, nan, 2, inf, 3}, Lower: []float64{1, nan, 1, 0, 1}, Upper: []float64{2, nan, 3, inf, 4}}},
-		Bands: []draw.Band{{From: nan, To: nan}}, Marks: []draw.Mark{{X: nan}}, Peaks: []draw.Peak{{X: nan, Y: nan}}})
+	p := Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{X: x, Y: []float64{1, nan, 2, inf, 3}, Lower: []float64{1, nan, 1, 0, 1}, Upper: []float64{2, nan, 3, inf, 4}}},
+		Bands: []draw.Band{{From: nan, To: nan}}, Marks: []draw.Mark{{X: nan}}, Points: []draw.Point{{X: nan, Y: nan}}})
 	if _, err := p.Write(SVG); err != nil {
 		t.Error(err)
 	}

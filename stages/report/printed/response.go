@@ -19,7 +19,7 @@ const decadesShown = 6
 // of modes and peaks. It gives nil when no curve has a positive value in range.
 func Response(title string, ch *draw.Chart) *Picture {
 	low, high := math.Inf(1), 0.0
-	inRange := func(x, y float64) bool { return x >= ch.From && x <= ch.To && y > 0 && !math.IsInf(y, 0) }
+	inRange := func(x, y float64) bool { return x >= ch.X.From && x <= ch.X.To && y > 0 && !math.IsInf(y, 0) }
 	for _, c := range ch.Curves {
 		for k, x := range c.X {
 			if inRange(x, c.Y[k]) {
@@ -30,16 +30,16 @@ func Response(title string, ch *draw.Chart) *Picture {
 	if !(high > 0) {
 		return nil
 	}
-	out := sheet(title, "frequency, Hz", ch.Label, 7.5, 4)
+	out := sheet(title, "frequency, Hz", ch.Y.Label, 7.5, 4)
 	p := out.plot
-	p.X.Min, p.X.Max = ch.From, ch.To
+	p.X.Min, p.X.Max = ch.X.From, ch.X.To
 	logarithmic(p, low, high)
 	grid(p)
 	clip := func(y float64) float64 { return math.Min(p.Y.Max, math.Max(p.Y.Min, y)) }
 
 	var words labels
 	for _, b := range ch.Bands {
-		from, to := math.Max(b.From, ch.From), math.Min(b.To, ch.To)
+		from, to := math.Max(b.From, ch.X.From), math.Min(b.To, ch.X.To)
 		if to <= from {
 			continue
 		}
@@ -49,7 +49,7 @@ func Response(title string, ch *draw.Chart) *Picture {
 		words = append(words, l)
 	}
 	for _, m := range ch.Marks {
-		if m.X < ch.From || m.X > ch.To {
+		if m.X < ch.X.From || m.X > ch.X.To {
 			continue
 		}
 		p.Add(line(plotter.XYs{{X: m.X, Y: p.Y.Min}, {X: m.X, Y: p.Y.Max}}, faint(quiet, 0x60), 0.5, 1, 2))
@@ -59,8 +59,11 @@ func Response(title string, ch *draw.Chart) *Picture {
 	}
 	for _, c := range ch.Curves {
 		colour := predicted
-		if c.Class == "observed" {
+		switch c.Class {
+		case "observed":
 			colour = observed
+		case "flown":
+			colour = set[2]
 		}
 		if c.Lower != nil {
 			for _, piece := range around(c, inRange, clip) {
@@ -76,6 +79,9 @@ func Response(title string, ch *draw.Chart) *Picture {
 			if c.Class == "observed" {
 				l.Dashes = []vg.Length{4, 1.5} // not by colour alone
 			}
+			if c.Class == "flown" {
+				l.Dashes = []vg.Length{1.5, 1.5}
+			}
 			p.Add(l)
 			if first {
 				out.legend = append(out.legend, entry{c.Name, l})
@@ -83,7 +89,7 @@ func Response(title string, ch *draw.Chart) *Picture {
 			}
 		}
 	}
-	for _, q := range ch.Peaks {
+	for _, q := range ch.Points {
 		if !inRange(q.X, q.Y) || q.Y < p.Y.Min {
 			continue
 		}

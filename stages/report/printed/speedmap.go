@@ -18,8 +18,14 @@ type Map struct {
 	Label  string // of the density, with its unit
 	Cells  []Cell
 	Top    float64 // highest frequency drawn, Hz
-	Orders []draw.Order
+	Orders []Order
 	Modes  []draw.Mark // at a frequency (X)
+}
+
+// Order is a line of so many Hz per unit of what runs across.
+type Order struct {
+	Slope float64
+	Label string
 }
 
 // Cell is the spectrum at one range of speed.

@@ -8,26 +8,27 @@ import (
 	"hushframe/core/mechanics/modal"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
+	"hushframe/stages/report/pack"
 )
 
 // Frame is the frame as it is drawn. Indices of nodes count the nodes drawn.
 type Frame struct {
-	Nodes  Floats   `json:"nodes"` // x, y, z of each, m
-	Parts  []Part   `json:"parts"`
-	Bodies []Body   `json:"bodies"`
-	Sites  []Site   `json:"sites"`
-	Centre []Number `json:"centre,omitempty"` // of gravity, m
+	Nodes  pack.Floats   `json:"nodes"` // x, y, z of each, m
+	Parts  []Part        `json:"parts"`
+	Bodies []Body        `json:"bodies"`
+	Sites  []Site        `json:"sites"`
+	Centre []pack.Number `json:"centre,omitempty"` // of gravity, m
 }
 
 // Part is a plate (triangles and boundary edges) or a standoff (lines).
 type Part struct {
-	Name      string     `json:"name"`
-	Standoff  bool       `json:"standoff"`
-	Thickness float64    `json:"thickness"` // m, or the outer diameter of a standoff
-	Normal    [3]float64 `json:"normal"`
-	Triangles Indices    `json:"triangles"`
-	Edges     Indices    `json:"edges"`
-	Lines     Indices    `json:"lines"`
+	Name      string       `json:"name"`
+	Standoff  bool         `json:"standoff"`
+	Thickness float64      `json:"thickness"` // m, or the outer diameter of a standoff
+	Normal    [3]float64   `json:"normal"`
+	Triangles pack.Indices `json:"triangles"`
+	Edges     pack.Indices `json:"edges"`
+	Lines     pack.Indices `json:"lines"`
 }
 
 // Body is a rigid body, drawn as a box of half sides Half or, for a rotor, as a drum; it moves with a site.
@@ -51,14 +52,14 @@ type Site struct {
 // Shapes are the vectors of the basis at the nodes drawn and at the sites.
 type Shapes struct {
 	Kinds []modal.VectorKind `json:"kinds"`
-	Step  Floats             `json:"step"`  // worth of one step of each vector, m per unit of the modal coordinate
-	Nodes Steps              `json:"nodes"` // vector after vector, x, y, z of each node
-	Sites Floats             `json:"sites"` // site after site, vector after vector, ux, uy, uz, rx, ry, rz
+	Step  pack.Floats        `json:"step"`  // worth of one step of each vector, m per unit of the modal coordinate
+	Nodes pack.Steps         `json:"nodes"` // vector after vector, x, y, z of each node
+	Sites pack.Floats        `json:"sites"` // site after site, vector after vector, ux, uy, uz, rx, ry, rz
 }
 
 // mostShape bounds the bytes of packed shapes, and finest and coarsest the lengths (m) of edges drawn.
 const (
-	mostShape = 2_600_000
+	mostShape = 2_000_000
 	finest    = 2e-3
 	coarsest  = 40e-3
 )
@@ -141,7 +142,7 @@ func newFrame(m *mesh.Mesh, p *airframe.Properties, modes *kinds.Modes) (*Frame,
 		for _, s := range modes.Basis.Sites {
 			f.Sites = append(f.Sites, Site{s.Name, s.Kind, s.Point})
 		}
-		f.Centre = Numbers(modes.Centre[:])
+		f.Centre = pack.Numbers(modes.Centre[:])
 	}
 	if p != nil {
 		f.Bodies = bodies(p, f.Sites)
@@ -159,7 +160,7 @@ func packShapes(b *modal.Basis, nodes []int32) *Shapes {
 		for i, n := range nodes {
 			copy(values[3*i:3*i+3], shape[3*n:3*n+3])
 		}
-		steps, step := stepped(values)
+		steps, step := pack.Stepped(values)
 		s.Nodes, s.Step = append(s.Nodes, steps...), append(s.Step, step)
 	}
 	for _, site := range b.Sites {

@@ -9,6 +9,7 @@ import (
 	"hushframe/core/mechanics/mesh"
 	"hushframe/stages/kinds"
 	"hushframe/stages/report/draw"
+	"hushframe/stages/report/pack"
 )
 
 // Sources are the artifacts of a report; whatever was not included is nil.
@@ -17,31 +18,31 @@ type Sources struct {
 	Mesh       *mesh.Mesh
 	Modes      *kinds.Modes
 	Response   *kinds.Response
-	Spectra    *kinds.Spectra
-	Comparison *kinds.Comparison
 }
 
 // Scene is all that moves on a page; what is nil is not shown.
 type Scene struct {
-	Light  []string `json:"light"` // steps of the colour scale on light and dark paper
-	Dark   []string `json:"dark"`
-	Frame  *Frame   `json:"frame,omitempty"`
-	Shapes *Shapes  `json:"shapes,omitempty"`
-	Modes  []Mode   `json:"modes,omitempty"`
+	Light     []string      `json:"light"` // steps of the colour scale on light and dark paper
+	Dark      []string      `json:"dark"`
+	Frame     *Frame        `json:"frame,omitempty"`
+	Shapes    *Shapes       `json:"shapes,omitempty"`
+	Modes     []Mode        `json:"modes,omitempty"`
+	Charts    []*draw.Chart `json:"charts,omitempty"`
+	Operating []Operating   `json:"operating,omitempty"`
 }
 
 // Mode is one elastic mode.
 type Mode struct {
-	Number    int       `json:"number"`
-	Vector    int       `json:"vector"`
-	Frequency float64   `json:"frequency"` // Hz
-	Damping   float64   `json:"damping"`   // ratio
-	About     string    `json:"about"`
-	Rotation  [3]Number `json:"rotation"` // of the gyro per unit modal coordinate, rad
-	Strength  [3]Number `json:"strength"` // (deg/s)/N
-	Strain    []Share   `json:"strain"`   // by part, joint and mount, greatest first
-	Kinds     []Share   `json:"kinds"`    // by kind of strain, greatest first
-	Kinetic   []Share   `json:"kinetic"`  // by what carries mass, greatest first
+	Number    int            `json:"number"`
+	Vector    int            `json:"vector"`
+	Frequency float64        `json:"frequency"` // Hz
+	Damping   float64        `json:"damping"`   // ratio
+	About     string         `json:"about"`
+	Rotation  [3]pack.Number `json:"rotation"` // of the gyro per unit modal coordinate, rad
+	Strength  [3]pack.Number `json:"strength"` // (deg/s)/N
+	Strain    []Share        `json:"strain"`   // by part, joint and mount, greatest first
+	Kinds     []Share        `json:"kinds"`    // by kind of strain, greatest first
+	Kinetic   []Share        `json:"kinetic"`  // by what carries mass, greatest first
 }
 
 // Share is a named share of a whole.
@@ -50,12 +51,17 @@ type Share struct {
 	Share float64 `json:"share"`
 }
 
-// Units of the page in SI.
-const (
-	degree = math.Pi / 180
-	square = degree * degree
-	rpm    = 2 * math.Pi / 60
-)
+// Operating is how the driven frame moves over frequency, in step with one axis of the gyro: complex weights of the
+// vectors, frequency after frequency.
+type Operating struct {
+	Axis      string      `json:"axis"`
+	Frequency pack.Floats `json:"frequency"`
+	Step      pack.Floats `json:"step"` // worth of one step at each frequency, kg^(1/2)·m/Hz^(1/2)
+	Real      pack.Steps  `json:"real"`
+	Imaginary pack.Steps  `json:"imaginary"`
+}
+
+const degree = math.Pi / 180
 
 // New packs what there is. describe puts a mode in words.
 func New(s Sources, describe func(number int) string) *Scene {
@@ -69,12 +75,35 @@ func New(s Sources, describe func(number int) string) *Scene {
 			mode := Mode{Number: m.Number, Vector: m.Vector, Frequency: m.Frequency, Damping: m.Loss / 2, About: describe(m.Number),
 				Strain: shares(s.Modes.Survey.Groups, m.ByGroup), Kinds: shares(s.Modes.Survey.Kinds, m.ByKind), Kinetic: shares(s.Modes.Survey.Carriers, m.ByCarrier)}
 			for axis := range 3 {
-				mode.Rotation[axis], mode.Strength[axis] = Number(m.Rotation[axis]), Number(m.Strength[axis]/degree)
+				mode.Rotation[axis], mode.Strength[axis] = pack.Number(m.Rotation[axis]), pack.Number(m.Strength[axis]/degree)
 			}
 			x.Modes = append(x.Modes, mode)
 		}
 	}
+	if s.Response != nil && x.Shapes != nil {
+		x.Operating = operating(s.Response, len(x.Shapes.Kinds))
+	}
 	return x
+}
+
+// operating gathers the motions of the broadband source under all rotors; those of another basis are left out.
+func operating(r *kinds.Response, vectors int) []Operating {
+	var out []Operating
+	for _, axis := range kinds.AxisNames {
+		o := Operating{Axis: axis}
+		for _, m := range r.Motions {
+			if m.Source != kinds.BroadbandSource || m.Rotor != "all" || m.Axis != axis || len(m.Real) != vectors {
+				continue
+			}
+			o.Frequency = append(o.Frequency, m.Frequency)
+			steps, step := pack.Stepped(append(append([]float64{}, m.Real...), m.Imaginary...))
+			o.Step, o.Real, o.Imaginary = append(o.Step, step), append(o.Real, steps[:vectors]...), append(o.Imaginary, steps[vectors:]...)
+		}
+		if len(o.Frequency) > 1 {
+			out = append(out, o)
+		}
+	}
+	return out
 }
 
 // leastShare is a share too small to be drawn.

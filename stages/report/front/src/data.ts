@@ -15,7 +15,11 @@ export interface Mode {
   number: number; vector: number; frequency: number; damping: number; about: string
   rotation: Vec; strength: Vec; strain: Share[]; kinds: Share[]; kinetic: Share[]
 }
-export interface Scene { light: string[]; dark: string[]; frame?: Frame; shapes?: Shapes; modes?: Mode[] }
+/** Strain energy density at the nodes drawn, mode after mode, 255 for the greatest of each. */
+export interface Density { modes: number[]; levels: Uint8Array }
+/** How much of each vector moves at each frequency when the frame is driven: complex weights, frequency after frequency. */
+export interface Operating { axis: string; frequency: Float32Array; step: Float32Array; real: Int16Array; imaginary: Int16Array }
+export interface Scene { light: string[]; dark: string[]; frame?: Frame; shapes?: Shapes; modes?: Mode[]; charts: ChartData[]; density?: Density; operating: Operating[] }
 
 function bytes(text: string): ArrayBuffer {
   const raw = atob(text), out = new Uint8Array(raw.length)
@@ -44,5 +48,35 @@ export function unpack(text: string): Scene {
     x.shapes.nodes = steps(x.shapes.nodes)
     x.shapes.sites = floats(x.shapes.sites)
   }
+  if (x.density) x.density.levels = new Uint8Array(bytes(x.density.levels))
+  x.operating ??= []
+  for (const o of x.operating) {
+    for (const key of ['frequency', 'step']) o[key] = floats(o[key])
+    for (const key of ['real', 'imaginary']) o[key] = steps(o[key])
+  }
+  x.charts ??= []
+  x.charts.forEach(unpackChart)
   return x as Scene
+}
+
+export interface Axis { label: string; from: number; to: number; log?: boolean; either?: boolean }
+export interface Curve { name: string; class: string; x: Float32Array; y: Float32Array; lower?: Float32Array; upper?: Float32Array }
+export interface Band { from: number; to: number; label: string }
+export interface Mark { x: number; label: string; mode?: number }
+export interface Point { x: number; y: number; label?: string; class: string; about?: string }
+export interface Grid { label: string; x: Float32Array; y: Float32Array; low: number; high: number; cells: Uint8Array }
+export interface ChartData {
+  id: string; title: string; about: string; x: Axis; y: Axis; grid?: Grid; bands: Band[]; curves: Curve[]; marks: Mark[]; points: Point[]
+  notes: string[]; follow?: string; axis?: string; square?: boolean
+}
+
+function unpackChart(c: any) {
+  for (const list of ['bands', 'curves', 'marks', 'points', 'notes']) c[list] ??= []
+  for (const curve of c.curves)
+    for (const key of ['x', 'y', 'lower', 'upper']) if (curve[key] !== undefined) curve[key] = floats(curve[key])
+  if (c.grid) {
+    c.grid.x = floats(c.grid.x)
+    c.grid.y = floats(c.grid.y)
+    c.grid.cells = new Uint8Array(bytes(c.grid.cells))
+  }
 }

@@ -62,3 +62,17 @@ export function modeMotion(scene: Scene, number: number): Motion | null {
   weights[mode.vector] = mode.rotation[main] < 0 ? -1 : 1
   return superpose(frame, shapes, weights, null)
 }
+
+/** The motion at a frequency within the sweep, between the frequencies known by straight lines of the weights. */
+export function operatingMotion(scene: Scene, frequency: number, axis: string): Motion | null {
+  const { frame, shapes } = scene, operating = scene.operating.find(o => o.axis === axis)
+  if (!frame || !shapes || !operating) return null
+  const f = operating.frequency, n = shapes.kinds.length
+  if (frequency < f[0] || frequency > f[f.length - 1]) return null
+  let k = 0
+  while (k < f.length - 2 && f[k + 1] < frequency) k++
+  const t = f[k + 1] > f[k] ? (frequency - f[k]) / (f[k + 1] - f[k]) : 0
+  const low = (1 - t) * operating.step[k], high = t * operating.step[k + 1]
+  const mix = (x: Int16Array) => Float32Array.from({ length: n }, (_, v) => low * x[k * n + v] + high * x[(k + 1) * n + v])
+  return superpose(frame, shapes, mix(operating.real), mix(operating.imaginary))
+}

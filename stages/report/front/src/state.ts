@@ -3,7 +3,7 @@
 export type Chosen =
   | { kind: 'rest' }
   | { kind: 'mode'; number: number }
-  | { kind: 'frequency'; frequency: number }
+  | { kind: 'frequency'; frequency: number; axis: string }
 
 export type Colouring = 'displacement' | 'strain' | 'part'
 

@@ -40,13 +40,15 @@ export class View {
   readonly span: number
   private middle = new three.Vector3()
   private radius: number
+  private box = new three.Box3()
+  private aspect = 1
   phase = 0
   frames = 0 // drawn so far
   private last = 0
   private wanted = true
   private onScreen = true
   /** Gives the operating motion at a frequency, where there is one. */
-  operating: (frequency: number) => Motion | null = () => null
+  operating: (frequency: number, axis: string) => Motion | null = () => null
   /** Strain energy density at the nodes of a mode, 0 to 1, where it is known. */
   density: (mode: number) => Float32Array | null = () => null
   /** Called after every frame drawn. */
@@ -61,7 +63,7 @@ export class View {
     this.renderer.outputColorSpace = three.LinearSRGBColorSpace // colours are chosen as they are shown
     host.append(this.canvas)
 
-    const box = new three.Box3(), p = new three.Vector3(), x = this.frame.nodes
+    const box = this.box, p = new three.Vector3(), x = this.frame.nodes
     for (let k = 0; k < x.length; k += 3) box.expandByPoint(p.set(x[k], x[k + 1], x[k + 2]))
     for (const b of this.frame.bodies)
       for (const s of [-1, 1]) box.expandByPoint(p.set(b.centre[0] + s * b.half[0], b.centre[1] + s * b.half[1], b.centre[2] + s * b.half[2]))
@@ -102,8 +104,7 @@ export class View {
     const d = new three.Vector3(...l.from).normalize()
     const width = Math.max(1, this.host.clientWidth), height = Math.max(1, this.host.clientHeight)
     const [columns, rows] = this.grid(), aspect = (width / columns) / (height / rows)
-    const half = this.camera.fov / 2 * Math.PI / 180
-    const distance = 0.92 * this.radius / Math.sin(Math.min(half, Math.atan(Math.tan(half) * aspect)))
+    const distance = this.distance(d, aspect)
     this.controls.target.copy(this.middle)
     this.camera.position.copy(this.middle).addScaledVector(d, distance)
     this.camera.near = distance / 100
@@ -113,6 +114,25 @@ export class View {
     this.camera.updateProjectionMatrix()
     this.controls.update()
     this.draw()
+  }
+
+  /** How far the camera must be for all corners of the frame to be seen, with room for the motion. */
+  private distance(d: three.Vector3, aspect: number): number {
+    const right = new three.Vector3().crossVectors(this.camera.up, d).normalize()
+    if (right.lengthSq() < 0.5) right.set(0, -1, 0)
+    const up = new three.Vector3().crossVectors(d, right), tan = Math.tan(this.camera.fov / 2 * Math.PI / 180), corner = new three.Vector3()
+    let out = this.radius * 0.5
+    for (let n = 0; n < 8; n++) {
+      corner.set(n & 1 ? this.box.max.x : this.box.min.x, n & 2 ? this.box.max.y : this.box.min.y, n & 4 ? this.box.max.z : this.box.min.z).sub(this.middle)
+      out = Math.max(out, Math.abs(corner.dot(up)) / tan + corner.dot(d), Math.abs(corner.dot(right)) / (tan * aspect) + corner.dot(d))
+    }
+    return 1.12 * out
+  }
+
+  /** Fits the frame again, seen from where the camera is. */
+  refit() {
+    const d = this.camera.position.clone().sub(this.controls.target)
+    this.look({ name: '', from: [d.x, d.y, d.z] })
   }
 
   /** Turns the camera by angles, for the keyboard. */
@@ -178,8 +198,7 @@ export class View {
         cell.solid.dress(cell.motion, strain && wanted[k].mode > 0 ? this.density(wanted[k].mode) : null)
       })
       this.material.uniforms.colouring.value = restOnly ? 1 : now.colouring === 'part' ? 1 : 0
-      if (before && (before.beside.length > 1) !== (now.beside.length > 1)) this.resize()
-      else if (before && before.beside.length !== now.beside.length) this.resize()
+      if (before && before.beside.length !== now.beside.length) this.refit()
     }
     for (const cell of this.cells) {
       cell.scene.getObjectByName('rest')!.visible = now.rest && cell.motion !== null
@@ -191,7 +210,7 @@ export class View {
   private single(now: Choices) {
     switch (now.shown.kind) {
       case 'mode': return { motion: modeMotion(this.data, now.shown.number), mode: now.shown.number, caption: this.modeName(now.shown.number) }
-      case 'frequency': return { motion: this.operating(now.shown.frequency), mode: 0, caption: `as flown at ${now.shown.frequency.toFixed(1)} Hz` }
+      case 'frequency': return { motion: this.operating(now.shown.frequency, now.shown.axis), mode: 0, caption: `as driven, ${now.shown.frequency.toFixed(1)} Hz` }
       default: return { motion: null, mode: 0, caption: 'at rest' }
     }
   }
@@ -215,6 +234,10 @@ export class View {
   private resize() {
     const w = Math.max(1, this.host.clientWidth), h = Math.max(1, this.host.clientHeight)
     this.renderer.setSize(w, h, false)
+    if (Math.abs(w / h - this.aspect) > 0.05 * this.aspect) {
+      this.aspect = w / h
+      this.refit()
+    }
     this.draw()
   }
 

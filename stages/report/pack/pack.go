@@ -1,4 +1,5 @@
-package scene
+// Package pack writes lists of numbers so that a page carries them in few bytes and a browser reads them without parsing.
+package pack
 
 import (
 	"encoding/base64"
@@ -43,8 +44,8 @@ func (x Steps) MarshalJSON() ([]byte, error) {
 	return json.Marshal(base64.StdEncoding.EncodeToString(b))
 }
 
-// stepped rounds values to whole steps, the largest of them at 32767 steps.
-func stepped(values []float64) (Steps, float64) {
+// Stepped rounds values to whole steps, the largest of them at 32767 steps, and says what a step is worth.
+func Stepped(values []float64) (Steps, float64) {
 	most := 0.0
 	for _, v := range values {
 		if a := math.Abs(v); a > most && !math.IsInf(a, 0) {
@@ -73,6 +74,14 @@ func (x Number) MarshalJSON() ([]byte, error) {
 		return []byte("null"), nil
 	}
 	return json.Marshal(float64(x))
+}
+
+// Bytes travel as base64.
+type Bytes []byte
+
+// MarshalJSON implements json.Marshaler.
+func (x Bytes) MarshalJSON() ([]byte, error) {
+	return json.Marshal(base64.StdEncoding.EncodeToString(x))
 }
 
 // Numbers converts a list.
