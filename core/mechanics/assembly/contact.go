@@ -65,7 +65,7 @@ func sameElements(a, b *ContactPoint) bool {
 func (s *System) contactContribution(c *Contact, points []ContactPoint) contribution {
 	l := s.layout
 	place := map[int32]int{}
-	var out contribution
+	out := contribution{group: c.Group}
 	var columns []column
 	for side := range 2 {
 		x := &points[0].Sides[side]

@@ -139,6 +139,16 @@ func TestBondedLayersAreOneBar(t *testing.T) {
 			t.Errorf("mode %d: the contact has the energy %g and does the work %g", m+1, joint, groups[2][m*2+m])
 		}
 	}
+	// The stiffness of the contact alone, and its share of K, do the same work.
+	only, ky := s.Weighted([]float64{0, 0, 1}, 2), make([]float64, s.N)
+	only.MulVec(ky, ys[0])
+	work := 0.0
+	for i, v := range ys[0] {
+		work += v * ky[i]
+	}
+	if math.Abs(work/groups[2][0]-1) > 1e-6 {
+		t.Errorf("the matrix of the contact does the work %g, the group %g", work, groups[2][0])
+	}
 	// A refined mesh has the points at the same places.
 	fine := assembly.Refine(me)
 	for k, p := range fine.Contacts[0].Points {

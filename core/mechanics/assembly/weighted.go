@@ -19,7 +19,7 @@ func (s *System) Weighted(weights []float64, threads int) *sparse.Symmetric {
 	}
 	k := sparse.NewAssembler(s.N, lists)
 	k.AddAll(threads, func(e int, packed []float64) {
-		all[e].reduce(packed, all[e].stiffness)
+		all[e].addStiffness(packed)
 		for i := range packed {
 			packed[i] *= weights[all[e].group]
 		}
