@@ -36,6 +36,7 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 		})
 	}
 	o.Figures["peaks"] = list
+	o.Figures["points"] = pointFigure(r)
 	o.Figures["direct_error"] = directError(r)
 	o.Notes = append(o.Notes,
 		fmt.Sprintf("the source is assumed, not measured: %.3g N²/Hz and %.3g (N·m)²/Hz along each component at each rotor", set.source.Force, set.source.Moment))

@@ -17,24 +17,12 @@ func pointTable(r *kinds.Response) stage.Section {
 			{Name: "unbalance, µm", Right: true}, {Name: "m/s²", Right: true}},
 	}
 	for _, p := range r.Points {
-		var move, shake, most, at float64
-		for _, x := range r.PointSpectra {
-			switch {
-			case x.Point != p.Name:
-			case x.Quantity == kinds.Displacement:
-				move = math.Hypot(move, x.RMS)
-			case x.Quantity == kinds.Acceleration:
-				shake = math.Hypot(shake, x.RMS)
-				if x.RMS > most {
-					most, at = x.RMS, x.Loudest
-				}
-			}
-		}
+		move, shake, at := shaken(r, p.Name)
 		row := []string{p.Name, p.Kind, fmt.Sprintf("%.3g", 1e6*move), fmt.Sprintf("%.3g", shake), fmt.Sprintf("%.1f", at), "–", "–"}
 		if p.Kind == "node" {
 			row[1] = "on " + p.Part
 		}
-		move, shake = 0, 0
+		move, shake = 0, 0 // at the line
 		for _, x := range r.PointLines {
 			if x.Point == p.Name && x.Source == "unbalance" {
 				for c := range 3 {
@@ -73,4 +61,34 @@ func staticTable(r *kinds.Response) stage.Section {
 		s.Rows = append(s.Rows, row)
 	}
 	return s
+}
+
+// shaken sums the spectra of a point: root mean square of displacement and
+// acceleration over x, y and z together, and where the strongest acceleration is loudest.
+func shaken(r *kinds.Response, point string) (move, shake, at float64) {
+	most := 0.0
+	for _, x := range r.PointSpectra {
+		switch {
+		case x.Point != point:
+		case x.Quantity == kinds.Displacement:
+			move = math.Hypot(move, x.RMS)
+		case x.Quantity == kinds.Acceleration:
+			shake = math.Hypot(shake, x.RMS)
+			if x.RMS > most {
+				most, at = x.RMS, x.Loudest
+			}
+		}
+	}
+	return move, shake, at
+}
+
+// pointFigure lists the points for expressions.
+func pointFigure(r *kinds.Response) []any {
+	list := []any{}
+	for _, p := range r.Points {
+		move, shake, _ := shaken(r, p.Name)
+		list = append(list, map[string]any{"name": p.Name, "kind": p.Kind,
+			"displacement": stage.Quantity{SI: move, Dimension: "length"}, "acceleration": stage.Quantity{SI: shake, Dimension: "acceleration"}})
+	}
+	return list
 }

@@ -34,6 +34,12 @@ func readTogether(list []any) ([]forced.Correlation, error) {
 			return nil, fault.New(fault.Input, "the band ends at %g Hz, where it has not begun", c.To).In("sweep", "").Of("correlation").
 				Do("make to higher than from, which is %g Hz", c.From)
 		}
+		for k, other := range out {
+			if c.From < other.To && other.From < c.To && c.Coefficient != other.Coefficient {
+				return nil, fault.New(fault.Input, "bands %d and %d overlap from %g to %g Hz with coefficients of %g and %g", k+1, len(out)+1, max(c.From, other.From), min(c.To, other.To), other.Coefficient, c.Coefficient).
+					In("sweep", "").Of("correlation").Do("let each frequency lie in one band")
+			}
+		}
 		out = append(out, c)
 	}
 	return out, nil

@@ -8,6 +8,7 @@ import (
 	"fmt"
 	"math"
 
+	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/forced"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/mechanics/modal"
@@ -32,17 +33,21 @@ func (Stage) Describe() stage.Description {
 		About: "predict the gyro rate that the rotors cause, over frequency",
 		Doc: `Drives the modes with every force and moment component at every rotor hub and
 reads the rotation rate of the gyro. Damping is hysteretic, by part, joint and
-mount, and couples the modes; the rigid-body motion is in the sum.
+mount, and couples the modes; a mount with a law is taken as it is at each
+frequency; the rigid-body motion is in the sum. Residual vectors stand in for the
+modes left out, and what they change is shown. Frequencies are added around every
+mode by its own damping, so that no peak is missed however light that is.
 
 A broadband source of constant density acts at every rotor, the same along each
-component, and is added over rotors as power. Its densities are assumptions: the
-shape of the spectrum and where its peaks lie say more than its level, unless
-the densities were measured.
+component, and is added over rotors as power unless correlation is declared. Its
+densities are assumptions: the shape of the spectrum and where its peaks lie say
+more than its level, unless the densities were measured.
 
 Spinning rotors add their gyroscopic moments, at hover speed if not told
 otherwise. Natural frequencies, damping and direction of whirl are followed from
 rest to the highest speed, and critical speeds of orders 1, 2, blade passing and
-twice that found with the gyroscopic moments at that very speed. A propeller is taken
+twice that found with the gyroscopic moments at that very speed; mounts with a law
+are then taken as they are in the middle of the sweep. A propeller is taken
 as a disc: with two blades its tilt inertia changes as it turns, and blades that bend
 carry less of the gyroscopic moment; neither is in the model.
 
@@ -50,7 +55,14 @@ Lines come from unbalance (what the balance grade of each rotor permits, or a
 given one: a force at the hub that turns with the rotor), from thrust and side
 force that vary at blade passing, and from torque ripple; all grow with the
 square of speed. They are given at the speed of the rotors, over all speeds,
-and spread over the speeds of a flight: what a recorder would see of it.`,
+and spread over the speeds of a flight, which a recording can tell: what a
+recorder would see of it, the noise of the gyro included.
+
+Besides the rate of the gyro the response holds its rotation, the displacement and
+acceleration of named points, operating motions with their phase, what every mode
+and every rotor makes of each peak, and the spectrum over rotor speed. With
+check_at the full damped equations of every unknown are solved at some
+frequencies, and the difference is shown.`,
 		Arguments: []stage.Argument{
 			{Name: "modes", About: "modal basis from solve", Type: artifactOf("modes"), Required: true},
 			{Name: "properties", About: "properties from import", Type: artifactOf("properties"), Required: true},
@@ -110,7 +122,7 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 			{Name: "shapes_at", About: "frequencies whose operating shapes are kept; left out, the strongest peak of each axis",
 				Type: stage.Type{Kind: stage.List, Element: &frequency}, Example: `["212 Hz", "340 Hz"]`},
 		},
-		Outputs: []stage.Output{{Name: "response", Kind: "response", About: "transfer functions, spectra, peaks, lines and operating shapes"}},
+		Outputs: []stage.Output{{Name: "response", Kind: "response", About: "transfer functions, spectra, peaks, lines, named points, operating motions, and all this over rotor speed"}},
 	}
 	for _, axis := range kinds.AxisNames {
 		d.Figures = append(d.Figures,
@@ -121,6 +133,7 @@ and spread over the speeds of a flight: what a recorder would see of it.`,
 	}
 	d.Figures = append(d.Figures,
 		stage.Figure{Name: "direct_error", About: "greatest difference of the modal response from the direct solve at the frequencies of check_at, relative; not a number without", Type: stage.Type{Kind: stage.Number}},
+		stage.Figure{Name: "points", About: "named points as objects with name, kind, displacement and acceleration, root mean square over x, y and z together", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}},
 		stage.Figure{Name: "peaks", About: "peaks as objects with axis, frequency, level, damping and modes", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Any}}})
 	return d
 }
@@ -219,7 +232,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, err
 	}
-	if err := correlated(set, len(props.Rotors)); err != nil {
+	if err := agree(set, props, reach); err != nil {
 		return nil, err
 	}
 	given, err := readGiven(call, set)
@@ -239,6 +252,21 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	return outcome(r, given, set), nil
 }
 
+// agree checks the arguments against the modes and the rotors.
+func agree(set settings, p *airframe.Properties, reach float64) error {
+	if set.to > reach*(1+1e-9) {
+		return fault.New(fault.Input, "the sweep goes to %g Hz, the modes only to %g Hz, so that modes within the sweep are missing", set.to, reach).In("sweep", "").Of("to").
+			Do("raise up_to of solve to %.4g Hz, 1.5 times as high as the sweep, or end the sweep at %.4g Hz", math.Ceil(1.5*set.to), math.Floor(reach/1.5))
+	}
+	for _, r := range p.Rotors {
+		if r.Blades < 1 {
+			return fault.New(fault.Input, "a rotor of %d blades passes nothing", r.Blades).In("sweep", "rotor "+r.Name).Of("properties").
+				Do("give its blades in the airframe file; a bare motor that only weighs is a lump")
+		}
+	}
+	return correlated(set, len(p.Rotors))
+}
+
 // given are the inputs that a sweep may do without.
 type given struct {
 	mesh     *mesh.Mesh
@@ -254,6 +282,9 @@ func readGiven(call *stage.Call, set settings) (given, error) {
 		}
 	}
 	if len(call.Inputs["recording"]) > 0 {
+		if len(set.flown) > 0 {
+			return g, fault.New(fault.Input, "both the recording and speeds_flown say how a flight is spread over speeds").In("sweep", "").Of("speeds_flown").Do("leave one of them out")
+		}
 		if g.recorded, err = readInput(call, "recording", kinds.DecodeSpectra); err != nil {
 			return g, err
 		}

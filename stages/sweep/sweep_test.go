@@ -325,8 +325,12 @@ func TestFaults(t *testing.T) {
 		"too fine":              {stage.Arguments{"resolution": hertz(1e-4)}, nil, fault.Input, "resolution"},
 		"no source": {stage.Arguments{"force_density": stage.Quantity{SI: 0, Dimension: "force density"}, "moment_density": stage.Quantity{SI: 0, Dimension: "moment density"}},
 			nil, fault.Input, "force_density"},
-		"shape at rest": {stage.Arguments{"shapes_at": []any{hertz(0)}}, nil, fault.Input, "shapes_at"},
-		"no gyro":       {nil, func(m *kinds.Modes) { m.Basis.Sites[2].Kind = "body" }, fault.Input, "modes"},
+		"shape at rest":    {stage.Arguments{"shapes_at": []any{hertz(0)}}, nil, fault.Input, "shapes_at"},
+		"beyond the modes": {stage.Arguments{"from": hertz(600), "to": hertz(760)}, nil, fault.Input, "to"},
+		"contradictory bands": {stage.Arguments{"correlation": []any{
+			map[string]any{"from": hertz(0), "to": hertz(80), "coefficient": 0.8},
+			map[string]any{"from": hertz(70), "coefficient": 0.1}}}, nil, fault.Input, "correlation"},
+		"no gyro": {nil, func(m *kinds.Modes) { m.Basis.Sites[2].Kind = "body" }, fault.Input, "modes"},
 		"undamped": {stage.Arguments{"shapes_at": []any{hertz(150)}}, func(m *kinds.Modes) {
 			for g := range m.Basis.Groups {
 				m.Basis.Groups[g].LossFactor = 0
@@ -347,6 +351,17 @@ func TestFaults(t *testing.T) {
 		}
 	}
 	m, p := frame()
+	p.Rotors[1].Blades = 0
+	_, err := Stage{}.Run(context.Background(), call(t, m, p, nil))
+	if f := fault.From(err); err == nil || f.Kind != fault.Input || f.Item != "rotor b" || f.Remedy == "" {
+		t.Errorf("no blades: %#v", err)
+	}
+	m, p = frame()
+	both := recorded(t, call(t, m, p, stage.Arguments{"speeds_flown": []any{map[string]any{"speed": stage.Quantity{SI: 1700, Dimension: "rotational speed"}, "share": 1.0}}}), &kinds.Spectra{})
+	_, err = Stage{}.Run(context.Background(), both)
+	if f := fault.From(err); err == nil || f.Argument != "speeds_flown" || f.Remedy == "" {
+		t.Errorf("two flights: %#v", err)
+	}
 	ctx, cancel := context.WithCancel(context.Background())
 	cancel()
 	if _, err := (Stage{}).Run(ctx, call(t, m, p, nil)); fault.KindOf(err) != fault.Cancelled {
