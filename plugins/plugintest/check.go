@@ -222,7 +222,7 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 	}
 	out := &ending{hashes: map[string]string{}, files: call.Files.Used()}
 	for _, x := range d.Outputs {
-		a, err := artifact.Open(call.Outputs[x.Name], registry)
+		a, err := artifact.OpenExact(call.Outputs[x.Name], registry)
 		if err != nil {
 			return nil, fmt.Errorf("output %s: %w", x.Name, err)
 		}

@@ -52,7 +52,13 @@ func EncodeTable(t *Table) ([]byte, error) {
 // DecodeTable reads an Arrow IPC file against a spec. The data may come from
 // anywhere: wrong types, missing columns, nulls, other units, invalid UTF-8
 // and damaged bytes are errors. The table shares memory with data.
-func DecodeTable(spec TableSpec, data []byte) (t *Table, err error) {
+func DecodeTable(spec TableSpec, data []byte) (*Table, error) {
+	t, _, err := decodeTable(spec, data, true)
+	return t, err
+}
+
+// decodeTable leaves out columns that the spec does not know, unless exact; more tells that there are some.
+func decodeTable(spec TableSpec, data []byte, exact bool) (t *Table, more bool, err error) {
 	// Damaged metadata makes the flatbuffer and array code panic on bounds.
 	defer func() {
 		if r := recover(); r != nil {
@@ -60,15 +66,15 @@ func DecodeTable(spec TableSpec, data []byte) (t *Table, err error) {
 		}
 	}()
 	if err := guard(data); err != nil {
-		return nil, err
+		return nil, false, err
 	}
 	r, err := ipc.NewMappedFileReader(data)
 	if err != nil {
-		return nil, fmt.Errorf("no readable Arrow file (%v)", err)
+		return nil, false, fmt.Errorf("no readable Arrow file (%v)", err)
 	}
 	defer r.Close()
-	if err := matchSchema(spec, r.Schema()); err != nil {
-		return nil, err
+	if err := matchSchema(spec, r.Schema(), exact); err != nil {
+		return nil, false, err
 	}
 	t = &Table{Spec: spec, columns: map[string]any{}}
 	for _, c := range spec.Columns {
@@ -77,21 +83,28 @@ func DecodeTable(spec TableSpec, data []byte) (t *Table, err error) {
 	for i := range r.NumRecords() {
 		batch, err := r.RecordBatchAt(i)
 		if err != nil {
-			return nil, fmt.Errorf("damaged Arrow data (%v)", err)
+			return nil, false, fmt.Errorf("damaged Arrow data (%v)", err)
 		}
 		for j, f := range r.Schema().Fields() {
-			c, _ := spec.Column(f.Name)
+			c, known := spec.Column(f.Name)
+			if !known {
+				more = true
+				continue
+			}
 			if err := decodeColumn(t, c, batch.Column(j)); err != nil {
-				return nil, fmt.Errorf("column %s.%s: %w", spec.Name, c.Name, err)
+				return nil, false, fmt.Errorf("column %s.%s: %w", spec.Name, c.Name, err)
 			}
 		}
 	}
-	return t, nil
+	return t, more, nil
 }
 
-func matchSchema(spec TableSpec, schema *arrow.Schema) error {
+func matchSchema(spec TableSpec, schema *arrow.Schema, exact bool) error {
 	for _, f := range schema.Fields() {
 		c, ok := spec.Column(f.Name)
+		if !ok && !exact {
+			continue
+		}
 		if !ok {
 			return fmt.Errorf("column %s.%s is not part of the kind", spec.Name, f.Name)
 		}

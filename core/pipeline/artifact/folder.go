@@ -11,6 +11,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -193,14 +194,26 @@ func (m *Manifest) encode() []byte {
 // the folder holds, the answer is an artifact or a fault of kind Protocol
 // (Missing when there is no artifact at all).
 //
+// Tables, columns and scalars that the kind does not know are left out: a later
+// version of the program may have added them, and an extension built before
+// goes on reading. OpenExact does not allow them.
+//
 // Files are read whole and the columns share that memory. They are not mapped:
 // a mapped file that another process cuts short kills this one.
-func Open(folder string, registry Registry) (*Artifact, error) {
+func Open(folder string, registry Registry) (*Artifact, error) { return open(folder, registry, false) }
+
+// OpenExact is Open for what is to be kept: nothing may be there that the kind
+// does not know.
+func OpenExact(folder string, registry Registry) (*Artifact, error) {
+	return open(folder, registry, true)
+}
+
+func open(folder string, registry Registry, exact bool) (*Artifact, error) {
 	m, err := ReadManifest(folder)
 	if err != nil {
 		return nil, err
 	}
-	a, err := m.load(folder, registry)
+	a, err := m.load(folder, registry, exact)
 	if err != nil {
 		return nil, fault.New(fault.Protocol, "%v", err).In("read artifact", folder)
 	}
@@ -225,7 +238,7 @@ func ReadManifest(folder string) (*Manifest, error) {
 	return m, nil
 }
 
-func (m *Manifest) load(folder string, registry Registry) (*Artifact, error) {
+func (m *Manifest) load(folder string, registry Registry, exact bool) (*Artifact, error) {
 	kind, ok := registry[m.Kind]
 	if !ok {
 		return nil, fmt.Errorf("the artifact kind %q is not known", m.Kind)
@@ -233,8 +246,12 @@ func (m *Manifest) load(folder string, registry Registry) (*Artifact, error) {
 	if m.Version != kind.Version {
 		return nil, fmt.Errorf("%s is of version %d, this program reads version %d", kind.Name, m.Version, kind.Version)
 	}
-	a := New(kind)
+	a, more := New(kind), false // more tells that something was left out
 	for _, name := range sortedKeys(m.Scalars) {
+		if !exact && !slices.ContainsFunc(kind.Scalars, func(c Column) bool { return c.Name == name }) {
+			more = true
+			continue
+		}
 		v, err := decodeScalar(kind, name, m.Scalars[name])
 		if err != nil {
 			return nil, err
@@ -242,7 +259,9 @@ func (m *Manifest) load(folder string, registry Registry) (*Artifact, error) {
 		a.Scalars[name] = v
 	}
 	for _, name := range sortedKeys(m.Tables) {
-		if _, ok := a.Tables[name]; !ok {
+		if _, ok := a.Tables[name]; !ok && !exact {
+			more = true
+		} else if !ok {
 			return nil, fmt.Errorf("%s: table %s is not part of the kind", kind.Name, name)
 		}
 	}
@@ -255,10 +274,11 @@ func (m *Manifest) load(folder string, registry Registry) (*Artifact, error) {
 		if err != nil {
 			return nil, fmt.Errorf("%s: table %s: %w", kind.Name, spec.Name, err)
 		}
-		t, err := DecodeTable(spec, data)
+		t, left, err := decodeTable(spec, data, exact)
 		if err != nil {
 			return nil, fmt.Errorf("%s: %w", kind.Name, err)
 		}
+		more = more || left
 		a.Tables[spec.Name] = t
 	}
 	for _, path := range sortedKeys(m.Files) {
@@ -274,7 +294,7 @@ func (m *Manifest) load(folder string, registry Registry) (*Artifact, error) {
 	if err := a.Check(); err != nil {
 		return nil, err
 	}
-	if m.Hash != "" && m.Hash != a.Hash() {
+	if m.Hash != "" && !more && m.Hash != a.Hash() { // of what is left out only the checksums of files speak
 		return nil, fmt.Errorf("%s: the content does not match its hash", kind.Name)
 	}
 	return a, nil

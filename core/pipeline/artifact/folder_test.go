@@ -197,7 +197,7 @@ func TestOpenRefuses(t *testing.T) {
 				t.Fatal(err)
 			}
 			c.spoil(dir)
-			_, err := Open(dir, samples)
+			_, err := OpenExact(dir, samples)
 			if fault.KindOf(err) != fault.Protocol || !strings.Contains(err.Error(), c.want) {
 				t.Errorf("got %v\nwant a protocol fault with %q", err, c.want)
 			}
@@ -286,6 +286,37 @@ func BenchmarkWrite(b *testing.B) {
 		if _, err := Write(b.TempDir(), a); err != nil {
 			b.Fatal(err)
 		}
+	}
+}
+
+// What a later version of a kind has more does not keep an earlier reader from what it knows.
+func TestOpenLeavesOutWhatIsNew(t *testing.T) {
+	old := sample
+	old.Scalars = sample.Scalars[1:]
+	old.Tables = []TableSpec{{Name: "all", Columns: sample.Tables[0].Columns[:2]}}
+	dir := t.TempDir()
+	if _, err := Write(dir, filled()); err != nil {
+		t.Fatal(err)
+	}
+	a, err := Open(dir, NewRegistry(old))
+	if err != nil {
+		t.Fatal(err)
+	}
+	if a.Int("count") != math.MinInt64 || a.Table("all").Floats("x")[0] != 1.5 || len(a.Tables) != 1 || len(a.Scalars) != 4 {
+		t.Errorf("it reads %v and %d tables", a.Scalars, len(a.Tables))
+	}
+	if _, err := OpenExact(dir, NewRegistry(old)); fault.KindOf(err) != fault.Protocol {
+		t.Errorf("what is kept may hold more: %v", err)
+	}
+	// Damage is still found.
+	path := filepath.Join(dir, "all.arrow")
+	data, _ := os.ReadFile(path)
+	data[len(data)/2] ^= 1
+	if err := os.WriteFile(path, data, 0o644); err != nil {
+		t.Fatal(err)
+	}
+	if _, err := Open(dir, NewRegistry(old)); fault.KindOf(err) != fault.Protocol {
+		t.Errorf("a changed byte: %v", err)
 	}
 }
 

@@ -150,7 +150,7 @@ func (s *Store) Put(a *artifact.Artifact) (hash string, err error) {
 // it into the store. Nothing of what the folder says of itself is trusted: it
 // is read whole, checked against its kind and hashed.
 func (s *Store) Adopt(folder, kind string) (hash string, err error) {
-	a, err := artifact.Open(folder, s.registry)
+	a, err := artifact.OpenExact(folder, s.registry)
 	if err != nil {
 		return "", err
 	}
@@ -197,7 +197,7 @@ func (s *Store) Holds(hash string, full bool) bool {
 		return false
 	}
 	if full {
-		a, err := artifact.Open(s.Folder(hash), s.registry)
+		a, err := artifact.OpenExact(s.Folder(hash), s.registry)
 		return err == nil && a.Hash() == hash
 	}
 	return true
@@ -205,7 +205,7 @@ func (s *Store) Holds(hash string, full bool) bool {
 
 // Load reads an artifact.
 func (s *Store) Load(hash string) (*artifact.Artifact, error) {
-	return artifact.Open(s.Folder(hash), s.registry)
+	return artifact.OpenExact(s.Folder(hash), s.registry)
 }
 
 func storeFault(err error) error {
