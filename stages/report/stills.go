@@ -33,19 +33,20 @@ func stills(c *content) (out []stillName) {
 			add("response-"+name, printed.Response("Gyro rate on "+name, ch))
 		}
 	}
-	if r := c.response; r != nil && len(r.Whirl) > 0 && len(r.Rotors) > 0 {
+	if r := c.response; r != nil && len(r.Whirl) > 0 && len(r.Rotors) > 0 && len(r.Speeds) > 0 {
 		add("campbell", printed.Campbell("Natural frequencies over rotor speed", whirlChart(r)))
 	}
 	if r := c.response; r != nil && len(r.Orders) > 0 && len(r.Rotors) > 0 {
 		for axis, name := range kinds.AxisNames {
 			add("lines-"+name, printed.Lines("Rotor lines on "+name+" over rotor speed", "gyro rate, peak amplitude, deg/s", lineCurves(r, axis),
 				draw.Mark{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}))
+			add("map-predicted-"+name, predictedMap(r, axis))
 		}
 	}
 	if c.spectra != nil {
 		for axis, x := range c.spectra.Axes {
 			if x.Unit == "rad/s" {
-				add("map-"+x.Axis, recordedMap(c, axis))
+				add("map-recorded-"+x.Axis, recordedMap(c, axis))
 			}
 		}
 	}
@@ -88,6 +89,34 @@ func lineCurves(r *kinds.Response, axis int) (out []draw.Curve) {
 	}
 	// What no one would see beside the others.
 	return slices.DeleteFunc(out, func(c draw.Curve) bool { return len(c.Y) < 2 || slices.Max(c.Y) < 1e-4*loudest })
+}
+
+// predictedMap is the predicted spectrum of an axis over rotor speed, nil when the response has none.
+func predictedMap(r *kinds.Response, axis int) *printed.Picture {
+	rows := r.Map.Rows
+	if len(rows) < 2 || len(r.Map.Frequency) == 0 {
+		return nil
+	}
+	m := printed.Map{Across: "rotor speed, rpm", Label: "(deg/s)²/Hz", Top: r.To}
+	between := func(i int) float64 { // the end of a cell lies midway to its neighbour
+		switch i {
+		case 0:
+			return (3*rows[0].Speed - rows[1].Speed) / 2
+		case len(rows):
+			return (3*rows[i-1].Speed - rows[i-2].Speed) / 2
+		}
+		return (rows[i-1].Speed + rows[i].Speed) / 2
+	}
+	for i, x := range rows {
+		m.Cells = append(m.Cells, printed.Cell{From: math.Max(0, between(i)) / rpm, To: between(i+1) / rpm, Start: r.Map.Frequency[0], Step: r.Map.Width, Density: scaled(x.Density[axis], 1/square)})
+	}
+	for _, x := range r.Modes {
+		m.Modes = append(m.Modes, draw.Mark{X: x.Frequency, Label: fmt.Sprint(x.Number)})
+	}
+	if len(r.Speeds) > 0 && len(r.Rotors) > 0 {
+		m.Orders = whirlChart(r).Orders
+	}
+	return printed.SpeedMap("Predicted gyro rate on "+kinds.AxisNames[axis]+" over rotor speed, broadband source", m)
 }
 
 // recordedMap is the spectrum of an axis over rotor speed, nil when the recording has none.

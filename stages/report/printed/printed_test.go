@@ -124,8 +124,8 @@ func readSVG(t *testing.T, name string, data []byte) (texts string, elements map
 	}
 }
 
-// The curve of a response goes through the places that its scales say: the peak of 1 at 200 Hz lies a decade and a half
-// above 10^-1.5, and 80 and 500 Hz at the ends.
+// The curve of a response goes through the places that its scales say: 200 Hz lies 120 of 420 parts along, and 0.1 midway
+// between 0.01 and 1.
 func TestScales(t *testing.T) {
 	x := []float64{80, 200, 500}
 	p := Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{Name: "a", Class: "predicted", X: x, Y: []float64{0.01, 1, 0.1}}}})
@@ -146,6 +146,27 @@ func TestScales(t *testing.T) {
 	}
 	if share := (at[5] - at[1]) / (at[3] - at[1]); math.Abs(share-0.5) > 1e-4 {
 		t.Errorf("0.1 lies at %.4f between 0.01 and 1", share)
+	}
+}
+
+// A line of the map is as high as its value, wherever in a row it lies, and bands wider than a row leave no holes.
+func TestMapRows(t *testing.T) {
+	narrow := Cell{Start: 0, Step: 0.1, Density: make([]float64, 4000)}
+	narrow.Density[0], narrow.Density[1234] = 9, 5
+	wide := Cell{Start: 5, Step: 10, Density: []float64{1, 2, 3, 4}}
+	for k, v := range narrow.rows(240) {
+		if want := k == 123; (v == 5) != want || v > 5 {
+			t.Errorf("row %d has %g", k, v)
+		}
+	}
+	for k, v := range wide.rows(240) {
+		want := 0.0
+		if k <= 40 {
+			want = math.Min(4, float64(k/10+1))
+		}
+		if v != want {
+			t.Errorf("row %d has %g, want %g", k, v, want)
+		}
 	}
 }
 

@@ -31,8 +31,24 @@ type Order struct {
 // Cell is the spectrum at one range of speed.
 type Cell struct {
 	From, To float64
+	Start    float64 // Hz, of the first value; one at 0 Hz is not drawn
 	Step     float64 // Hz between values
 	Density  []float64
+}
+
+// rows gives the highest value in each of the rows of pixels up to top.
+func (c Cell) rows(top float64) []float64 {
+	out := make([]float64, mapRows)
+	for k, v := range c.Density {
+		f := c.Start + float64(k)*c.Step
+		if f <= 0 {
+			continue
+		}
+		for at := max(0, int((f-c.Step/2)/top*mapRows)); at < mapRows && at <= int((f+c.Step/2)/top*mapRows); at++ {
+			out[at] = math.Max(out[at], v)
+		}
+	}
+	return out
 }
 
 // mapRows is how many rows of pixels a cell has: each takes the highest value there, so that no line is lost.
@@ -47,7 +63,7 @@ func SpeedMap(title string, m Map) *Picture {
 	for _, c := range m.Cells {
 		low, high = math.Min(low, c.From), math.Max(high, c.To)
 		for k, v := range c.Density {
-			if f := float64(k) * c.Step; f <= m.Top && k > 0 {
+			if f := c.Start + float64(k)*c.Step; f <= m.Top && f > 0 {
 				loudest = math.Max(loudest, v)
 			}
 		}
@@ -58,12 +74,10 @@ func SpeedMap(title string, m Map) *Picture {
 	out := sheet(title, m.Across, "frequency, Hz", 7.5, 4.8)
 	p := out.plot
 	p.X.Min, p.X.Max, p.Y.Min, p.Y.Max = low, high, 0, m.Top
-	for _, c := range m.Cells {
-		rows := make([]float64, mapRows)
-		for k, v := range c.Density {
-			if at := int(float64(k) * c.Step / m.Top * mapRows); k > 0 && at < mapRows {
-				rows[at] = math.Max(rows[at], v)
-			}
+	for i, c := range m.Cells {
+		rows := c.rows(m.Top)
+		if i+1 < len(m.Cells) && m.Cells[i+1].From <= c.To {
+			c.To += (c.To - c.From) / 10 // under the next one, so that no seam shows
 		}
 		for from := 0; from < mapRows; {
 			shade := shadeOf(rows[from], loudest)
@@ -91,7 +105,11 @@ func SpeedMap(title string, m Map) *Picture {
 			continue
 		}
 		p.Add(line(plotter.XYs{{X: from, Y: from * o.Slope}, {X: to, Y: to * o.Slope}}, ink, 0.9, 6, 2))
-		put(from+0.01*(high-low), from*o.Slope, o.Label, text.XLeft)
+		if end := to - 0.03*(high-low); to < high {
+			put(end, end*o.Slope, o.Label, text.XRight)
+		} else {
+			put(from+0.01*(high-low), from*o.Slope, o.Label, text.XLeft)
+		}
 	}
 	for _, mode := range m.Modes {
 		if mode.X <= m.Top {
