@@ -15,9 +15,9 @@
 // The kernel wing knows numbers and frames, and nothing of HCL, gRPC or files:
 //
 //	numeric    sparse storage, ordering, factors, block Lanczos
-//	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, rotor
+//	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, rotor, counterpart
 //	signal     windows, spectra, orders, recordings
-//	match      pairing of predicted and observed
+//	match      pairing of predicted and observed, modal assurance, levels in bands
 //	known      problems with known answers, for tests
 //
 // core/extension joins the two: the contracts of element types and recording

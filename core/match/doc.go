@@ -24,5 +24,8 @@
 // lone pair in the right place, ½ for two equal candidates, and is at most ½ at the cut. It rests on τ and w, which are
 // judgement, and is no probability in the strict sense.
 //
+// Track finds the modes of a structure before a change among those after it by their shapes, with the modal assurance
+// criterion (MAC) of motions at common points.
+//
 // Modes are paired alike, with signed directions whose sense means nothing, damping, and how well a mode can be seen.
 package match

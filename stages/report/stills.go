@@ -2,7 +2,6 @@ package report
 
 import (
 	"fmt"
-	"maps"
 	"math"
 	"path"
 	"slices"
@@ -20,61 +19,37 @@ type stillName struct {
 	picture *printed.Picture
 }
 
-// stills draws every chart that the content has the data for.
+// stills draws every chart of a page that has been composed, and those that only stand on paper.
 func stills(c *content) (out []stillName) {
 	add := func(name string, p *printed.Picture) {
 		if p != nil {
 			out = append(out, stillName{name, p})
 		}
 	}
-	for axis, name := range kinds.AxisNames {
-		if c.response != nil || c.comparison != nil {
-			ch := axisChart(c, axis)
-			add("response-"+name, printed.Response("Gyro rate on "+name, ch))
+	for _, ch := range c.charts {
+		title := ch.Title
+		if strings.HasPrefix(ch.ID, "response-") {
+			title = "Gyro rate on " + ch.Axis // the page has a heading over it
 		}
+		add(printed.FileName(ch.ID), printed.Chart(title, ch))
 	}
-	if r := c.response; r != nil && len(r.Whirl) > 0 && len(r.Rotors) > 0 {
-		add("campbell", printed.Campbell("Natural frequencies over rotor speed", whirlChart(r)))
-	}
-	if r := c.response; r != nil && len(r.Orders) > 0 && len(r.Rotors) > 0 {
+	if r := c.response; r != nil && len(r.Rotors) > 0 {
 		for axis, name := range kinds.AxisNames {
-			add("lines-"+name, printed.Lines("Rotor lines on "+name+" over rotor speed", "gyro rate, peak amplitude, deg/s", lineCurves(r, axis),
-				draw.Mark{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}))
-		}
-	}
-	if c.spectra != nil {
-		for axis, x := range c.spectra.Axes {
-			if x.Unit == "rad/s" {
-				add("map-"+x.Axis, recordedMap(c, axis))
-			}
+			add("lines-"+name, printed.Chart("Rotor lines on "+name+" over rotor speed", linesChart(r, axis)))
 		}
 	}
 	if c.modes != nil {
 		add("energy", energyStill(c.modes))
 	}
-	if c.identified != nil {
-		var poles []printed.Pole
-		for _, q := range c.identified.Diagram {
-			poles = append(poles, printed.Pole{Order: q.Order, Frequency: q.Frequency, Stable: q.Stable})
-		}
-		var marks []draw.Mark
-		for _, m := range c.identified.Modes {
-			if m.Kind == kinds.ModeStructure {
-				marks = append(marks, draw.Mark{X: m.Frequency, Label: fmt.Sprintf("%.0f", m.Frequency)})
-			}
-		}
-		add("stabilisation", printed.Poles("Poles of the recording by model order", c.identified.From, c.identified.To, poles, marks))
-	}
-	if d := c.difference; d != nil && d.Frequency != nil {
-		for axis, name := range kinds.AxisNames {
-			add("change-"+name, printed.Response("Gyro rate on "+name+" before and after", differenceChart(d, axis)))
-		}
-	}
 	return out
 }
 
-// lineCurves are the rotor lines of an axis over rotor speed, as far as the modes carry.
-func lineCurves(r *kinds.Response, axis int) (out []draw.Curve) {
+// linesChart shows the rotor lines of an axis over rotor speed, as far as the modes carry.
+func linesChart(r *kinds.Response, axis int) *draw.Chart {
+	name := kinds.AxisNames[axis]
+	ch := &draw.Chart{ID: "lines-" + name, X: draw.Axis{Label: "speed of the first rotor, rpm"}, Y: draw.Axis{Label: "gyro rate, peak amplitude, deg/s", Log: true},
+		Marks: []draw.Mark{{X: r.Rotors[0].Speed / rpm, Label: spinName(r)}},
+		About: fmt.Sprintf("Peak amplitude of the %s rate at the lines of the rotors over their speed, rotors added as power.", name)}
 	loudest := 0.0
 	for _, x := range r.Orders {
 		c := draw.Curve{Name: fmt.Sprintf("%s, order %g", x.Source, x.Order)}
@@ -84,38 +59,11 @@ func lineCurves(r *kinds.Response, axis int) (out []draw.Curve) {
 				loudest = math.Max(loudest, x.Rate[axis][k]/degree)
 			}
 		}
-		out = append(out, c)
+		ch.Curves = append(ch.Curves, c)
 	}
 	// What no one would see beside the others.
-	return slices.DeleteFunc(out, func(c draw.Curve) bool { return len(c.Y) < 2 || slices.Max(c.Y) < 1e-4*loudest })
-}
-
-// recordedMap is the spectrum of an axis over rotor speed, nil when the recording has none.
-func recordedMap(c *content, axis int) *printed.Picture {
-	cells := c.spectra.MapOf(axis, "rotor speed")
-	if len(cells) == 0 {
-		return nil
-	}
-	m := printed.Map{Across: "mean rotor speed, rpm", Label: "(deg/s)²/Hz", Top: c.spectra.Rate / 2}
-	for _, x := range cells {
-		m.Cells = append(m.Cells, printed.Cell{From: x.Low / rpm, To: x.High / rpm, Step: x.Step, Density: scaled(x.Density, 1/square)})
-	}
-	if c.response != nil {
-		m.Top = math.Min(m.Top, 2*c.response.To)
-		for _, x := range c.response.Modes {
-			m.Modes = append(m.Modes, draw.Mark{X: x.Frequency, Label: fmt.Sprint(x.Number)})
-		}
-	}
-	orders := map[float64]string{1: "order 1", 2: "order 2"}
-	for _, x := range c.spectra.Rotors {
-		if x.Blades > 2 {
-			orders[float64(x.Blades)] = "blade passing"
-		}
-	}
-	for _, o := range slices.Sorted(maps.Keys(orders)) {
-		m.Orders = append(m.Orders, printed.Order{Slope: o / 60, Label: orders[o]})
-	}
-	return printed.SpeedMap("Recorded gyro rate on "+c.spectra.Axes[axis].Axis+" over rotor speed", m)
+	ch.Curves = slices.DeleteFunc(ch.Curves, func(c draw.Curve) bool { return len(c.Y) < 2 || slices.Max(c.Y) < 1e-4*loudest })
+	return ch
 }
 
 // energyStill shows which parts bend in which mode.
@@ -130,6 +78,9 @@ func energyStill(m *kinds.Modes) *printed.Picture {
 
 // addStills writes the still pictures beside the page.
 func addStills(d *kinds.Document, c *content, formats []string) error {
+	if len(formats) == 0 {
+		return nil
+	}
 	folder := strings.TrimSuffix(d.Page, path.Ext(d.Page)) + "-charts"
 	for _, s := range stills(c) {
 		for _, format := range formats {
@@ -137,7 +88,11 @@ func addStills(d *kinds.Document, c *content, formats []string) error {
 			if err != nil {
 				return fault.New(fault.Internal, "%v", err).In("draw", s.name)
 			}
-			d.Files[folder+"/"+s.name+"."+format] = data
+			name := folder + "/" + s.name + "." + format
+			if _, taken := d.Files[name]; taken {
+				return fault.New(fault.Internal, "two charts are called %s", s.name).In("draw", s.name)
+			}
+			d.Files[name] = data
 		}
 	}
 	return nil

@@ -54,14 +54,13 @@ func TestDifferenceOnThePage(t *testing.T) {
 	}
 }
 
-// Every chart that the content has data for is written in every format asked for, and nothing else changes.
+// Every chart of the page is written in every format asked for, with those that only stand on paper; nothing else changes.
 func TestStills(t *testing.T) {
 	c := sampleContent(t)
 	c.difference = planks(t)
-	c.identified = &kinds.Identified{From: 80, To: 500, Diagram: []kinds.IdentifiedPole{{Order: 4, Frequency: 141, Stable: true}}, Modes: []kinds.IdentifiedMode{{Kind: kinds.ModeStructure, Frequency: 141}}}
-	want := map[string]bool{}
-	for _, name := range []string{"response-roll", "response-pitch", "response-yaw", "energy", "stabilisation", "change-roll", "change-pitch"} {
-		want[name] = true
+	_, d := render(t, c)
+	if len(c.charts) < 5 {
+		t.Fatalf("the page has %d charts", len(c.charts))
 	}
 	got := map[string]bool{}
 	for _, s := range stills(c) {
@@ -70,7 +69,12 @@ func TestStills(t *testing.T) {
 		}
 		got[s.name] = true
 	}
-	for name := range want {
+	for _, ch := range c.charts {
+		if !got[ch.ID] {
+			t.Errorf("%s of the page is not drawn", ch.ID)
+		}
+	}
+	for _, name := range []string{"response-roll", "response-pitch", "energy", "change-roll", "change-pitch"} {
 		if !got[name] {
 			t.Errorf("%s is not drawn", name)
 		}
@@ -78,7 +82,6 @@ func TestStills(t *testing.T) {
 	if got["change-yaw"] {
 		t.Error("a chart of nothing is drawn")
 	}
-	_, d := render(t, c)
 	files := len(d.Files)
 	if err := addStills(d, c, []string{"svg", "png"}); err != nil {
 		t.Fatal(err)
@@ -86,18 +89,22 @@ func TestStills(t *testing.T) {
 	if len(d.Files) != files+2*len(got) || len(d.Files["page-charts/energy.png"]) < 1000 || !strings.Contains(string(d.Files["page-charts/response-roll.svg"]), "95 % confidence") {
 		t.Errorf("%d files became %d with %d charts", files, len(d.Files), len(got))
 	}
+	if err := addStills(d, c, []string{"svg"}); err == nil {
+		t.Error("pictures of one name were written over each other")
+	}
 }
 
-// The pictures show the data of the artifact: the loudest cell of a line over rotor speed, and no line beyond the modes.
-func TestLineCurves(t *testing.T) {
-	r := &kinds.Response{ModesTo: 750, MapSpeeds: []float64{1000, 2000, 4000}, Orders: []kinds.ResponseOrder{
+// A line ends where the modes carry it no further, and one that no one would see is left out.
+func TestLinesChart(t *testing.T) {
+	r := &kinds.Response{ModesTo: 750, MapSpeeds: []float64{1000, 2000, 4000}, Rotors: []kinds.ResponseRotor{{Rotor: "fr", Hover: 1500, Speed: 1500}}, Orders: []kinds.ResponseOrder{
 		{Source: "unbalance", Order: 1, Rate: [3][]float64{{0.1, 0.2, 0.3}, {1, 2, 3}, {0, 0, 0}}},
 		{Source: "blade passing", Order: 3, Rate: [3][]float64{{1e-9, 1e-9, 1e-9}, {4, 5, 6}, {0, 0, 0}}},
+		{Source: "blade passing", Order: 1.5, Rate: [3][]float64{{1e-9, 1e-9, 1e-9}, {4, 5, 6}, {0, 0, 0}}},
 	}}
-	if got := lineCurves(r, 0); len(got) != 1 || len(got[0].X) != 2 || math.Abs(got[0].X[1]-2000*30/math.Pi) > 1e-9 || math.Abs(got[0].Y[1]-0.2*180/math.Pi) > 1e-12 {
+	if got := linesChart(r, 0).Curves; len(got) != 1 || len(got[0].X) != 2 || math.Abs(got[0].X[1]-2000*30/math.Pi) > 1e-9 || math.Abs(got[0].Y[1]-0.2*180/math.Pi) > 1e-12 {
 		t.Errorf("%+v", got) // order 1 at 4000 rad/s is 637 Hz, above 500
 	}
-	if got := lineCurves(r, 1); len(got) != 1 { // order 3 reaches 477 Hz at the lowest speed alone
+	if got := linesChart(r, 1).Curves; len(got) != 2 { // order 3 reaches 477 Hz at the lowest speed alone
 		t.Errorf("%+v", got)
 	}
 }

@@ -72,8 +72,8 @@ func oklab(light, a, b float64) (rgb [3]int, fits bool) {
 	return rgb, fits
 }
 
-// OnLight gives step k of Levels of the colours on a light page, as #rrggbb.
-func OnLight(k int) string { return onLight.at(k) }
+// OnLight gives a colour of the scale on a light page, 0 to 1.
+func OnLight(t float64) (r, g, b uint8) { return onLight.mixed(t) }
 
 // level gives the class of a share 0 to 1 of the largest displacement.
 func level(share float64) int {

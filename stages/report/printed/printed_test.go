@@ -4,6 +4,7 @@ import (
 	"bytes"
 	"encoding/xml"
 	"fmt"
+	"image/color"
 	"image/png"
 	"io"
 	"math"
@@ -30,19 +31,21 @@ func pictures() map[string]*Picture {
 	for k := range y {
 		up[k], down[k] = y[k]*1.3, y[k]*0.8
 	}
+	hertz, density := draw.Axis{Label: "frequency, Hz", From: 80, To: 500}, draw.Axis{Label: "(deg/s)²/Hz", Log: true}
 	return map[string]*Picture{
-		"response": Response("Rate "+hostile, &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Label: "(deg/s)²/Hz", Log: true}, Notes: []string{"a note"},
+		"response": Chart("Rate "+hostile, &draw.Chart{About: hostile, X: hertz, Y: density, Notes: []string{"a note"},
 			Curves: []draw.Curve{{Name: "predicted", Class: "predicted", X: x, Y: y}, {Name: "recorded", Class: "observed", X: x, Y: y, Lower: down, Upper: up}},
 			Bands:  []draw.Band{{From: 260, To: 280, Label: "order 1"}, {From: 900, To: 950, Label: "beyond"}},
 			Marks:  []draw.Mark{{X: 200, Label: "8"}, {X: 700, Label: "9"}}, Points: []draw.Point{{X: 200, Y: 1, Label: "200", Class: "predicted"}, {X: 199, Y: 0.9, Class: "observed"}}}),
-		"campbell": Campbell("Campbell", &draw.Chart{X: draw.Axis{Label: "rotor speed, rpm", To: 30000}, Y: draw.Axis{Label: "natural frequency, Hz", To: 500},
-			Curves: []draw.Curve{{Name: "order 1", Class: "order", X: []float64{0, 30000}, Y: []float64{0, 500}}, {Name: "4", Class: "predicted", X: []float64{0, 30000}, Y: []float64{120, 130}}},
-			Points: []draw.Point{{X: 7300, Y: 121}}, Marks: []draw.Mark{{X: 16000, Label: "hover"}}}),
+		"campbell": Chart("Campbell", &draw.Chart{X: draw.Axis{Label: "rpm", From: 0, To: 30000}, Y: draw.Axis{Label: "Hz", From: 0, To: 500},
+			Curves: []draw.Curve{{Name: "4", Class: "mode", X: []float64{0, 30000}, Y: []float64{120, 130}}, {Name: "order 1", Class: "order", X: []float64{0, 30000}, Y: []float64{0, 500}}},
+			Points: []draw.Point{{X: 7300, Y: 121, Class: "critical"}}, Marks: []draw.Mark{{X: 16000, Label: "hover"}}}),
 		"shares": Shares("Bars", "share", Bars{Rows: []string{"1, 61 Hz", "2, 87 Hz"}, Parts: []string{hostile, "b", "c"}, Shares: [][]float64{{0.5, 0.5, 0}, {0.1, 0.2, 0.7}}}),
-		"poles":  Poles("Poles", 80, 500, []Pole{{Order: 10, Frequency: 120}, {Order: 12, Frequency: 121, Stable: true}}, []draw.Mark{{X: 121, Label: "121"}}),
-		"map": SpeedMap("Map", Map{Across: "rpm", Label: "(deg/s)²/Hz", Top: 400, Cells: []Cell{{From: 100, To: 200, Step: 1, Density: y}, {From: 200, To: 300, Step: 1, Density: y}},
-			Orders: []Order{{Slope: 1, Label: "order 60"}}, Modes: []draw.Mark{{X: 100, Label: "3"}}}),
-		"lines": Lines("Lines", "deg/s", []draw.Curve{{Name: "unbalance", X: []float64{1000, 2000, 3000}, Y: []float64{0.01, 1, 0.3}}}, draw.Mark{X: 2000, Label: "hover"}),
+		"poles": Chart("Poles", &draw.Chart{X: hertz, Y: draw.Axis{Label: "order"}, Points: []draw.Point{{X: 120, Y: 10, Class: "loose"}, {X: 121, Y: 12, Class: "firm"}, {X: 121, Y: 14, Class: "firm"}},
+			Marks: []draw.Mark{{X: 121, Label: "121"}}}),
+		"map": Chart("Map", &draw.Chart{X: draw.Axis{Label: "rpm"}, Y: draw.Axis{Label: "Hz"}, Grid: draw.NewGrid("(deg/s)²/Hz", []float64{0, 100, 200}, []float64{0, 50, 100}, []float64{1, 0.1, 0.01, 1e-9}, 5),
+			Curves: []draw.Curve{{Name: "×1", Class: "over-order", X: []float64{0, 200}, Y: []float64{0, 100}}, {Name: "3", Class: "over-mode", X: []float64{0, 200}, Y: []float64{30, 30}}}}),
+		"square": Chart("Plane", &draw.Chart{Square: true, X: draw.Axis{Label: "real"}, Y: draw.Axis{Label: "imaginary"}, Curves: []draw.Curve{{Name: "circle", X: []float64{1, 0, -1, 0, 1}, Y: []float64{0, 1, 0, -1, 0}}}}),
 	}
 }
 
@@ -67,7 +70,7 @@ func TestPictures(t *testing.T) {
 				continue
 			}
 			texts, elements := readSVG(t, name, data)
-			if elements["script"] > 0 || elements["title"] != 1 || elements["path"] < 5 {
+			if elements["script"] > 0 || elements["title"] != 1 || elements["desc"] != 1 || elements["path"] < 5 {
 				t.Errorf("%s: %v", name, elements)
 			}
 			for _, e := range p.legend {
@@ -124,11 +127,11 @@ func readSVG(t *testing.T, name string, data []byte) (texts string, elements map
 	}
 }
 
-// The curve of a response goes through the places that its scales say: the peak of 1 at 200 Hz lies a decade and a half
-// above 10^-1.5, and 80 and 500 Hz at the ends.
+// A curve goes through the places that its scales say: 200 Hz lies 120 of 420 parts along, and 0.1 midway between 0.01
+// and 1.
 func TestScales(t *testing.T) {
-	x := []float64{80, 200, 500}
-	p := Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{Name: "a", Class: "predicted", X: x, Y: []float64{0.01, 1, 0.1}}}})
+	p := Chart("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true},
+		Curves: []draw.Curve{{Name: "a", Class: "predicted", X: []float64{80, 200, 500}, Y: []float64{0.01, 1, 0.1}}}})
 	data, err := p.Write(SVG)
 	if err != nil {
 		t.Fatal(err)
@@ -149,23 +152,53 @@ func TestScales(t *testing.T) {
 	}
 }
 
+// The cells of a map have their colours, the loudest the last of the scale, where they lie; an empty one is paper.
+func TestCells(t *testing.T) {
+	m := &draw.Chart{X: draw.Axis{}, Y: draw.Axis{}, Grid: draw.NewGrid("", []float64{0, 1, 2}, []float64{0, 1, 2}, []float64{1, 0.1, 0, 1e-3}, 3)}
+	data, err := Chart("", m).Write(PNG)
+	if err != nil {
+		t.Fatal(err)
+	}
+	img, err := png.Decode(bytes.NewReader(data))
+	if err != nil {
+		t.Fatal(err)
+	}
+	seen := map[color.NRGBA]int{}
+	for y := 0; y < img.Bounds().Dy(); y += 2 {
+		for x := 0; x < img.Bounds().Dx(); x += 2 {
+			seen[color.NRGBAModel.Convert(img.At(x, y)).(color.NRGBA)]++
+		}
+	}
+	quarter := img.Bounds().Dx() * img.Bounds().Dy() / 4 / 4
+	for level, name := range map[byte]string{255: "loudest", 170: "a tenth", 1: "least"} {
+		if n := seen[shade(level)]; n < quarter/2 || n > quarter*5/4 {
+			t.Errorf("%s: %d of about %d places", name, n, quarter)
+		}
+	}
+	if n := seen[color.NRGBA{0xff, 0xff, 0xff, 0xff}]; n < quarter/2 {
+		t.Errorf("paper: %d places", n)
+	}
+	if got := cellsUnder(draw.Axis{From: 0, To: 4}, []float64{1, 2, 3}, 8); fmt.Sprint(got) != "[-1 -1 0 0 1 1 -1 -1]" {
+		t.Error(got)
+	}
+}
+
 // Without anything to show there is no picture, and odd values do not stop one.
 func TestNothingToDraw(t *testing.T) {
 	nan, inf := math.NaN(), math.Inf(1)
-	for name, p := range map[string]*Picture{
-		"response": Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{X: []float64{100, 200}, Y: []float64{0, nan}}}}),
-		"campbell": Campbell("", &draw.Chart{}), "shares": Shares("", "", Bars{}), "poles": Poles("", 80, 500, []Pole{{Order: 2, Frequency: 700}}, nil),
-		"map": SpeedMap("", Map{Top: 100, Cells: []Cell{{From: 1, To: 2, Step: 1, Density: []float64{1, 0, nan}}}}), "lines": Lines("", "", nil, draw.Mark{}),
-	} {
-		if p != nil {
-			t.Errorf("%s is drawn", name)
-		}
+	if Chart("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{X: []float64{100, 200}, Y: []float64{0, nan}}}}) != nil ||
+		Chart("", &draw.Chart{}) != nil || Shares("", "", Bars{}) != nil {
+		t.Error("nothing is drawn")
 	}
 	x := []float64{100, 150, 200, 250, 300}
-	p := Response("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true}, Curves: []draw.Curve{{X: x, Y: []float64{1, nan, 2, inf, 3}, Lower: []float64{1, nan, 1, 0, 1}, Upper: []float64{2, nan, 3, inf, 4}}},
-		Bands: []draw.Band{{From: nan, To: nan}}, Marks: []draw.Mark{{X: nan}}, Points: []draw.Point{{X: nan, Y: nan}}})
+	p := Chart("", &draw.Chart{X: draw.Axis{From: 80, To: 500}, Y: draw.Axis{Log: true},
+		Curves: []draw.Curve{{X: x, Y: []float64{1, nan, 2, inf, 3}, Lower: []float64{1, nan, 1, 0, 1}, Upper: []float64{2, nan, 3, inf, 4}}},
+		Bands:  []draw.Band{{From: nan, To: nan}}, Marks: []draw.Mark{{X: nan}}, Points: []draw.Point{{X: nan, Y: nan}}})
 	if _, err := p.Write(SVG); err != nil {
 		t.Error(err)
+	}
+	if got := FileName(`../a b"<x>`); got != "---a-b--x-" {
+		t.Errorf("%q", got)
 	}
 }
 

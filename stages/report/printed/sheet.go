@@ -28,6 +28,7 @@ const (
 type Picture struct {
 	plot          *plot.Plot
 	width, height vg.Length
+	about         string
 	title, y      string // drawn here: the library places the name of a logarithmic axis badly
 	legend        []entry
 }
@@ -70,7 +71,7 @@ func (p *Picture) readable(svg []byte) []byte {
 	if i := bytes.Index(svg, []byte("<svg")); i >= 0 {
 		if j := bytes.IndexByte(svg[i:], '>'); j >= 0 {
 			at := i + j + 1
-			svg = slices.Concat(svg[:at], []byte("\n<title>"+html.EscapeString(p.title)+"</title>"), svg[at:])
+			svg = slices.Concat(svg[:at], []byte("\n<title>"+html.EscapeString(p.title)+"</title>\n<desc>"+html.EscapeString(p.about)+"</desc>"), svg[at:])
 		}
 	}
 	return svg
