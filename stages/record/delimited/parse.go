@@ -205,10 +205,11 @@ func (p *parser) note(wrong error) error {
 
 func (p *parser) takeTime(j int, field []byte) error {
 	t, ok := p.clock.read(field)
-	if !ok {
-		if missing(field) {
-			return p.fault(j, "the time is missing", "every row needs a time; remove the row")
-		}
+	switch {
+	case !ok && missing(field): // a row of another clock
+		p.leaveOut(forTime)
+		return nil
+	case !ok:
 		return p.fault(j, "the time %s is not a number", "mend or remove the row", show(field))
 	}
 	p.batch.Time = append(p.batch.Time, t)

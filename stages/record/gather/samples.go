@@ -105,6 +105,9 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 		d.Throttle = &s
 		d.scaleThrottle(*p.Throttle)
 	}
+	if d.Axes.Len() == 0 && len(d.Findings) > 0 && d.Findings[len(d.Findings)-1].What == "no time" {
+		return nil, &recording.Error{Column: p.Time, Text: fmt.Sprintf("no row of %d with samples has a time", d.Rows), Remedy: "name another time column, or state the rate"}
+	}
 	if d.Axes.Len() == 0 {
 		return nil, &recording.Error{Column: p.Axes[0].Column, Text: fmt.Sprintf("no row of %d holds a sample of every axis", d.Rows),
 			Remedy: "name columns that are filled in the same rows, and describe a sensor with rows of its own in another step"}
@@ -202,10 +205,11 @@ func (d *Data) series(passes map[string]*raw, channels []Channel, axes bool) (Se
 	if axes {
 		lost, first := 0, 0
 		for i := range r.rows {
-			if n := held(i); n > 0 && n < len(s.Values) {
+			n := held(i)
+			if n > 0 && n < len(s.Values) {
 				d.Partial++
 			}
-			if untimed(i) {
+			if n > 0 && untimed(i) {
 				if lost++; lost == 1 {
 					first = i + 1
 				}
