@@ -130,7 +130,7 @@ pressed "faces" {
   loss_factor = 0.03
   low         = 0.1
   high        = 5
-  origin      = "a guess: a hundredth of bonded faces"
+  origin      = "a guess: bonded faces would have sixty times as much"
 }
 
 standoff "nose" {

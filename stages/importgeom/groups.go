@@ -50,3 +50,45 @@ func groups(p *airframe.Properties) stage.Section {
 	}
 	return s
 }
+
+// mounted lists what sits on springs.
+func mounted(p *airframe.Properties) stage.Section {
+	s := stage.Section{Title: "Mounts", Text: "N/mm of each spring along the airframe's axes, and its loss factors where stiffness and loss are stated",
+		Columns: []stage.Column{{Name: "body"}, {Name: "mount"}, {Name: "springs", Right: true}, {Name: "x", Right: true}, {Name: "y", Right: true}, {Name: "z", Right: true},
+			{Name: "loss x, y, z"}, {Name: "over frequency"}, {Name: "preload, N", Right: true}, {Name: "from"}}}
+	for _, b := range p.Bodies {
+		m := b.Mount
+		if m == nil || len(m.Points) == 0 {
+			continue
+		}
+		row := []string{b.Name, m.Kind, fmt.Sprint(len(m.Points))}
+		losses := ""
+		for c := range 3 {
+			row = append(row, fmt.Sprintf("%.3g", m.Points[0].Stiffness[c]/1e3))
+			loss, law := m.Component(c)
+			if law.Varies() {
+				f := law.Reference
+				if law.Kind == airframe.Table {
+					f = law.Frequency[0]
+				}
+				z := law.At(f)
+				loss = imag(z) / real(z)
+			}
+			losses += fmt.Sprintf(", %.2g", loss)
+		}
+		over, preload := "constant", "-"
+		switch m.Law.Kind {
+		case airframe.Fractional:
+			over = fmt.Sprintf("order %.2g from %.4g Hz", m.Law.Order, m.Law.Reference)
+		case airframe.Solid:
+			over = fmt.Sprintf("solid, x%.3g, most loss at %.4g Hz", m.Law.Rise, m.Law.PeakAt)
+		case airframe.Table:
+			over = fmt.Sprintf("table from %.4g to %.4g Hz", m.Law.Frequency[0], m.Law.Frequency[len(m.Law.Frequency)-1])
+		}
+		if m.Preload > 0 {
+			preload = fmt.Sprintf("%.3g", m.Preload)
+		}
+		s.Rows = append(s.Rows, append(row, losses[2:], over, preload, m.Origin))
+	}
+	return s
+}

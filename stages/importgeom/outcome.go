@@ -56,6 +56,9 @@ func outcome(file *airframefile.File, a *assemble.Assembly) *stage.Outcome {
 	if len(p.Joints) > 0 {
 		out.Summary = append(out.Summary, groups(p))
 	}
+	if s := mounted(p); len(s.Rows) > 0 {
+		out.Summary = append(out.Summary, s)
+	}
 	return out
 }
 

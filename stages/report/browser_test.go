@@ -165,7 +165,7 @@ func (b *tab) run(steps ...chromedp.Action[chromedp.Void]) {
 // ask evaluates an expression of the page.
 func ask[T any](b *tab, expression string) T {
 	b.t.Helper()
-	out, err := chromedp.Run(b.ctx, chromedp.Evaluate[T](expression))
+	out, err := chromedp.Run(b.ctx, chromedp.Evaluate[T](expression, chromedp.EvalAwaitPromise))
 	if err != nil {
 		b.t.Fatalf("%s: %v", expression, err)
 	}

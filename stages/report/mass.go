@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 
 	"hushframe/core/mechanics/airframe"
@@ -117,10 +118,14 @@ func lossOf(x float64) string { return fmt.Sprintf("%.2g", x) }
 
 // mountLoss gives the loss factor of a mount, or the range of those of its components, and its law.
 func mountLoss(m *airframe.Mount) string {
-	if m.Law.Kind == airframe.Table || m.Law.Kind == airframe.Solid {
-		return "by its " + string(m.Law.Kind)
-	}
 	low, high := math.Inf(1), 0.0
+	switch m.Law.Kind {
+	case airframe.Table:
+		return fmt.Sprintf("%s to %s over its table", lossOf(slices.Min(m.Law.Loss)), lossOf(slices.Max(m.Law.Loss)))
+	case airframe.Solid:
+		z := m.Law.At(m.Law.Reference)
+		return fmt.Sprintf("%s at %.4g Hz", lossOf(imag(z)/real(z)), m.Law.Reference)
+	}
 	for c, k := range m.Points[0].Stiffness {
 		if k != 0 {
 			low, high = min(low, m.Loss[c]), max(high, m.Loss[c])

@@ -2,6 +2,7 @@ package assembly
 
 import (
 	"math"
+	"slices"
 
 	"hushframe/core/mechanics/element"
 	"hushframe/core/numeric/dense"
@@ -63,60 +64,88 @@ func sameElements(a, b *ContactPoint) bool {
 // contactContribution sums over points of the same two elements. The matrix is computed when it is asked
 // for, since all of them together would take more memory than K.
 func (s *System) contactContribution(c *Contact, points []ContactPoint) contribution {
-	l := s.layout
-	place := map[int32]int{}
 	out := contribution{group: c.Group}
 	var columns []column
 	for side := range 2 {
 		x := &points[0].Sides[side]
 		for i := range x.Count {
-			columns = l.nodeColumns(columns[:0], x.Nodes[i])
+			columns = s.layout.nodeColumns(columns[:0], x.Nodes[i])
 			for _, col := range columns {
-				if _, ok := place[col.unknown]; !ok {
-					place[col.unknown] = len(out.unknowns)
+				if !slices.Contains(out.unknowns, col.unknown) {
 					out.unknowns = append(out.unknowns, col.unknown)
 				}
 			}
 		}
 	}
-	out.compute = func(dst []float64) {
-		w := len(out.unknowns)
-		rows := make([]float64, 6*w)
-		var columns []column
-		for p := range points {
-			clear(rows)
-			for side := range 2 {
-				x := &points[p].Sides[side]
-				r, sign := points[p].arm(side, l.problem.Nodes), float64(2*side-1)
-				for i := range x.Count {
-					columns = l.nodeColumns(columns[:0], x.Nodes[i])
-					for _, col := range columns {
-						m := c.Axes.in6(carried(l.nodes[x.Nodes[i]].axes.out6(col.motion), r))
-						at := place[col.unknown]
-						for k := range 6 {
-							rows[k*w+at] += sign * x.Weights[i] * m[k]
-						}
-					}
+	unknowns := out.unknowns
+	out.compute = func(dst []float64) { s.addContact(dst, unknowns, c, points) }
+	return out
+}
+
+// lever is what a node of a side moves, in airframe axes, for a unit of an unknown.
+type lever struct {
+	node, at int
+	motion   [6]float64
+}
+
+// addContact adds the stiffness of points of the same two elements over the unknowns.
+func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points []ContactPoint) {
+	l, w := s.layout, len(unknowns)
+	var levers [2][]lever
+	var columns []column
+	for side := range levers {
+		x := &points[0].Sides[side]
+		for i := range x.Count {
+			columns = l.nodeColumns(columns[:0], x.Nodes[i])
+			for _, col := range columns {
+				levers[side] = append(levers[side], lever{i, slices.Index(unknowns, col.unknown), l.nodes[x.Nodes[i]].axes.out6(col.motion)})
+			}
+		}
+	}
+	// The gap at a point for a unit of each unknown, row by row, and what is not zero in a row.
+	rows, moved := make([]float64, 6*w), make([][6]float64, w)
+	places, values := make([]int, 0, w), make([]float64, 0, w)
+	for p := range points {
+		clear(rows)
+		for side := range levers {
+			x := &points[p].Sides[side]
+			r, sign := points[p].arm(side, l.problem.Nodes), float64(2*side-1)
+			clear(moved)
+			for i := range levers[side] {
+				v := &levers[side][i]
+				by, to := sign*x.Weights[v.node], &moved[v.at]
+				for k := range to {
+					to[k] += by * v.motion[k]
 				}
 			}
-			for k, stiffness := range c.Stiffness {
-				if stiffness == 0 {
+			for at := range moved {
+				if moved[at] == ([6]float64{}) {
 					continue
 				}
-				row, by := rows[k*w:(k+1)*w], stiffness*points[p].Measure
-				for i, v := range row {
-					if v == 0 {
-						continue
-					}
-					to := dst[element.Packed(i) : element.Packed(i)+i+1]
-					for j := range to {
-						to[j] += by * v * row[j]
-					}
+				for k, v := range c.Axes.in6(carried(moved[at], r)) {
+					rows[k*w+at] += v
+				}
+			}
+		}
+		for k, stiffness := range c.Stiffness {
+			if stiffness == 0 {
+				continue
+			}
+			places, values = places[:0], values[:0]
+			for at, v := range rows[k*w : (k+1)*w] {
+				if v != 0 {
+					places, values = append(places, at), append(values, v)
+				}
+			}
+			by := stiffness * points[p].Measure
+			for i, at := range places {
+				to := dst[element.Packed(at):]
+				for j := range i + 1 {
+					to[places[j]] += by * values[i] * values[j]
 				}
 			}
 		}
 	}
-	return out
 }
 
 // gap is what side 1 moves more than side 0 at a point, in the axes of the contact, under the motion of

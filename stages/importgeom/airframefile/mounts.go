@@ -33,9 +33,6 @@ func (b *block) mount(kind string) *Mount {
 	if s := b.text("kind"); s != "" {
 		m.Word = s
 	}
-	if s := b.text("origin"); s != "" {
-		m.Origin = s
-	}
 	b.need("places", `[["15 mm", "15 mm"], ...]`)
 	if v, at, ok := b.value("places"); ok {
 		if n := v.Type(); n.IsTupleType() && v.LengthInt() == 0 {
@@ -47,6 +44,16 @@ func (b *block) mount(kind string) *Mount {
 	b.mountStiffness(m, typical, b.present("like"))
 	b.mountLoss(m)
 	b.law(m)
+	own := b.present("stiffness") || b.present("loss_factor")
+	for _, kind := range []airframe.LawKind{airframe.Fractional, airframe.Solid, airframe.Table} {
+		own = own || b.inside(string(kind)) != nil
+	}
+	if based && own {
+		m.Origin = "airframe file; what it does not give as " + typical.Name
+	}
+	if s := b.text("origin"); s != "" {
+		m.Origin = s
+	}
 	b.finish()
 	return m
 }

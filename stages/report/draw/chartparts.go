@@ -199,6 +199,10 @@ func (ch *Chart) names(c *canvas, f frame) (taken []spot) {
 	}
 	var ends []tag
 	for _, curve := range ch.Curves {
+		if x, y, ok := curve.at(f.x.To); ok && curve.Name != "" && f.x.holds(x) && f.shows(y) {
+			ends = append(ends, tag{f.atX(x) + 8, f.atY(y), curve})
+			continue
+		}
 		for k := len(curve.X) - 1; k >= 0 && curve.Name != ""; k-- {
 			if f.x.holds(curve.X[k]) && f.shows(curve.Y[k]) {
 				ends = append(ends, tag{f.atX(curve.X[k]) + 8, f.atY(curve.Y[k]), curve})
@@ -206,18 +210,22 @@ func (ch *Chart) names(c *canvas, f frame) (taken []spot) {
 			}
 		}
 	}
+	// Names at the right border give way to each other; others stand where their line ends.
 	sort.SliceStable(ends, func(i, j int) bool { return ends[i].y < ends[j].y })
-	at := make([]float64, len(ends))
+	var at []float64
+	var border []int
 	for i, t := range ends {
-		at[i] = t.y
+		if t.x > f.right() {
+			at, border = append(at, t.y), append(border, i)
+		}
 	}
 	height := 15.0
 	if room := f.height - 20; float64(len(at)-1)*height > room {
 		height = math.Max(9, room/float64(len(at)))
 	}
 	if spread := Spread(at, height, 12, f.height-8); spread != nil {
-		for i := range ends {
-			ends[i].y = spread[i]
+		for k, i := range border {
+			ends[i].y = spread[k]
 		}
 	}
 	for _, t := range ends {
@@ -227,6 +235,25 @@ func (ch *Chart) names(c *canvas, f frame) (taken []spot) {
 		}
 	}
 	return taken
+}
+
+// at gives where a curve is at the right end of a range: its own end, or a place between two of its points.
+func (c Curve) at(to float64) (x, y float64, ok bool) {
+	n := len(c.X)
+	if n == 0 {
+		return 0, 0, false
+	}
+	if c.X[n-1] <= to {
+		return c.X[n-1], c.Y[n-1], true
+	}
+	k := n - 1
+	for k > 0 && c.X[k-1] > to {
+		k--
+	}
+	if k == 0 {
+		return 0, 0, false
+	}
+	return to, c.Y[k-1] + (c.Y[k]-c.Y[k-1])*(to-c.X[k-1])/(c.X[k]-c.X[k-1]), true
 }
 
 // shows says whether a curve is drawn at a value: not above the chart, and below it only where decades were cut off.

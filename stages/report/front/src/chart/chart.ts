@@ -238,6 +238,8 @@ export class Chart {
     const p = this.plot, list: { x: number; y: number; c: Curve }[] = []
     for (const c of this.data.curves) {
       if (!this.atEnd(c) || !c.name) continue
+      const at = last(c, this.x.to)
+      if (at && at.x >= this.x.from && drawable(y, at.y) && at.y <= y.to && at.y >= y.from) { list.push({ x: Math.min(p.right, this.px(at.x)) + 5, y: this.py(at.y), c }); continue }
       for (let k = c.x.length - 1; k >= 0; k--)
         if (c.x[k] >= this.x.from && c.x[k] <= this.x.to && drawable(y, c.y[k]) && c.y[k] <= y.to && c.y[k] >= y.from) {
           list.push({ x: Math.min(p.right, this.px(c.x[k])) + 5, y: this.py(c.y[k]), c })
@@ -373,6 +375,17 @@ export class Chart {
     const at = this.data.points.map(p => p.x).filter(x => way * (x - from) > 1e-6).sort((a, b) => way * (a - b))[0]
     if (at !== undefined) this.point(at)
   }
+}
+
+/** Where a curve is at the right end of what is shown: its own end, or a place between two of its points. */
+function last(c: Curve, to: number): { x: number; y: number } | null {
+  const n = c.x.length
+  if (!n) return null
+  if (c.x[n - 1] <= to) return { x: c.x[n - 1], y: c.y[n - 1] }
+  let k = n - 1
+  while (k > 0 && c.x[k - 1] > to) k--
+  if (k === 0) return null
+  return { x: to, y: c.y[k - 1] + (c.y[k] - c.y[k - 1]) * (to - c.x[k - 1]) / (c.x[k] - c.x[k - 1]) }
 }
 
 function split(label: string): [string, string] {
