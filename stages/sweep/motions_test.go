@@ -266,7 +266,8 @@ func TestMapKeepsThePower(t *testing.T) {
 		}
 		return sum
 	}
-	r, _ := run(t, m, p, nil)
+	narrow := stage.Arguments{"to": hertz(480)}
+	r, _ := run(t, m, p, narrow)
 	k := mapSpeeds/2 - 1
 	if len(r.Map.Rows) != mapSpeeds || r.Map.Rows[k].Speed != 1700 || len(r.Map.Frequency) != mostBands || r.Map.Frequency[0] != r.From+r.Map.Width/2 {
 		t.Fatalf("%d rows, row %d at %g, %d bands", len(r.Map.Rows), k, r.Map.Rows[k].Speed, len(r.Map.Frequency))
@@ -279,8 +280,8 @@ func TestMapKeepsThePower(t *testing.T) {
 	for g := range m.Basis.Groups {
 		m.Basis.Groups[g].LossFactor = 1e-4
 	}
-	r, _ = run(t, m, p, nil)
-	other, _ := run(t, m, p, stage.Arguments{"rotor_speed": fmt.Sprintf("%.9f rpm", 2550/rpm)})
+	r, _ = run(t, m, p, narrow)
+	other, _ := run(t, m, p, stage.Arguments{"to": hertz(480), "rotor_speed": fmt.Sprintf("%.9f rpm", 2550/rpm)})
 	found := false
 	for k := range r.Map.Rows {
 		if math.Abs(r.Map.Rows[k].Speed-2550) > 1e-9 {

@@ -4,6 +4,8 @@ import (
 	"fmt"
 	"math"
 
+	"gonum.org/v1/gonum/mat"
+
 	"hushframe/core/mechanics/airframe"
 )
 
@@ -12,6 +14,30 @@ import (
 type law struct {
 	law       *airframe.Law
 	stiffness []float64 // K_g over the vectors in use, n×n
+	// factors are few vectors u with K_g = Σ u uᵀ: a mount stretches in few ways.
+	factors [][]float64
+}
+
+// factor fills in the factors; none when K_g has no principal stiffnesses.
+func (l *law) factor() {
+	n := int(math.Sqrt(float64(len(l.stiffness))))
+	var eig mat.EigenSym
+	if !eig.Factorize(mat.NewSymDense(n, l.stiffness), true) {
+		return
+	}
+	values := eig.Values(nil)
+	var vectors mat.Dense
+	eig.VectorsTo(&vectors)
+	for k, v := range values {
+		if !(v > 1e-13*values[n-1]) {
+			continue
+		}
+		u := make([]float64, n)
+		for i := range u {
+			u[i] = math.Sqrt(v) * vectors.At(i, k)
+		}
+		l.factors = append(l.factors, u)
+	}
 }
 
 // Varies tells whether some stiffness depends on frequency.

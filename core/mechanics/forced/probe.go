@@ -40,7 +40,7 @@ func (s *System) Probe(ctx context.Context, frequency []float64, rows [][]float6
 	return s.each(ctx, len(frequency), threads, func() func(k int) error {
 		p := s.prober(rows)
 		if own != nil {
-			p.quick = own.bilinear(append(append([][]float64{}, rows...), s.tilt...), append(append([][]float64{}, s.load...), s.tilt...))
+			p.quick = s.receptor(own, append(append([][]float64{}, rows...), s.tilt...), append(append([][]float64{}, s.load...), s.tilt...))
 			for range len(rows) + len(s.tilt) {
 				p.all = append(p.all, make([]complex128, len(s.inputs)+len(s.tilt)))
 			}
@@ -112,7 +112,7 @@ type prober struct {
 	motion     [][]complex128
 	p, part    []complex128
 	full       bool // the last solve was in modal coordinates
-	quick      *bilinear
+	quick      *receptor
 	all        [][]complex128 // rows, then tilts, under inputs, then tilts, of the frame at rest
 }
 

@@ -4,6 +4,8 @@ import (
 	"math"
 	"math/cmplx"
 	"testing"
+
+	"hushframe/core/mechanics/modal"
 )
 
 // What is read at the gyro is what Transfer gives, spinning or not, with the
@@ -12,8 +14,15 @@ func TestProbeReadsWhatTransferGives(t *testing.T) {
 	b := frame(20, 5, 21)
 	list := spinners(b, 0.4, -0.3)
 	frequency := []float64{0.5, 60, 111, 230, 420}
-	for name, opt := range map[string]Options{"still": {}, "spinning": {Gyroscopic: list}, "full matrix": {Rate: full(b, list)}} {
+	for name, opt := range map[string]Options{"still": {}, "spinning": {Gyroscopic: list}, "laws": {Gyroscopic: list}, "full matrix": {Rate: full(b, list)}} {
+		b := b
+		if name == "laws" {
+			b = lawful()
+		}
 		s := build(t, b, opt)
+		if (s.own() == nil) != (opt.Rate != nil) {
+			t.Errorf("%s: the spectral form is there: %t", name, s.own() != nil)
+		}
 		want, err := s.Transfer(t.Context(), frequency, 1)
 		if err != nil {
 			t.Fatal(err)
@@ -178,5 +187,70 @@ func TestStaticAnswer(t *testing.T) {
 	}
 	if most < 1e-3 {
 		t.Errorf("the modes give %g of the static answer at most, which tests nothing", most)
+	}
+}
+
+// A sound frame is answered by its spectral form, which agrees with
+// elimination; two motions of one frequency that share it are not, and still right.
+func TestSpectralForm(t *testing.T) {
+	b := frame(20, 5, 21)
+	s := build(t, b, Options{})
+	own := s.own()
+	if own == nil {
+		t.Fatal("no spectral form")
+	}
+	n := len(b.Frequency)
+	for j, x := range own.vector {
+		for k, y := range own.vector {
+			want := complex(0, 0)
+			if j == k {
+				want = 1
+			}
+			if cmplx.Abs(product(x, y)-want) > alike {
+				t.Errorf("vectors %d and %d: %v", j, k, product(x, y))
+			}
+		}
+	}
+	a := s.still(0, make([]complex128, n*n))
+	for k, x := range own.vector {
+		for i := range n {
+			if d := cmplx.Abs(product(a[i*n:i*n+n], x) - own.value[k]*x[i]); d > alike*cmplx.Abs(own.value[k]) {
+				t.Errorf("vector %d, row %d: off by %g", k, i, d)
+			}
+		}
+	}
+	// Equal frequencies without damping have no vectors of their own to find by value.
+	twin := frame(6, 0, 3)
+	twin.Frequency[8] = twin.Frequency[7]
+	twin.Groups = twin.Groups[:0]
+	k := make([]float64, len(twin.Frequency)*len(twin.Frequency))
+	for v, f := range twin.Frequency {
+		k[v*len(twin.Frequency)+v] = sq(2 * math.Pi * f)
+	}
+	twin.Groups = append(twin.Groups, modal.LossGroup{Name: "all", Kind: "part", LossFactor: 0.01, Stiffness: k})
+	s = build(t, twin, Options{})
+	if s.own() != nil {
+		t.Error("twins were told apart")
+	}
+	rest, err := s.Rest(t.Context(), []float64{90, 200}, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	got, err := rest.Transfer(nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	want, err := s.Transfer(t.Context(), []float64{90, 200}, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for axis := range 3 {
+		for j := range s.Inputs() {
+			for k := range want.Frequency {
+				if !within(got.Rate[axis][j][k], want.Rate[axis][j][k], 1e-9) {
+					t.Errorf("axis %d, input %d: %v, want %v", axis, j, got.Rate[axis][j][k], want.Rate[axis][j][k])
+				}
+			}
+		}
 	}
 }

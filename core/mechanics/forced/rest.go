@@ -65,7 +65,7 @@ func (r *Rest) fast(ctx context.Context, own *spectral, threads int) error {
 	rows := append(append([][]float64{}, s.gyro[:]...), s.tilt...)
 	loads := append(append([][]float64{}, s.load...), s.tilt...)
 	return s.each(ctx, len(r.Frequency), threads, func() func(k int) error {
-		b := own.bilinear(rows, loads)
+		b := s.receptor(own, rows, loads)
 		return func(k int) error {
 			y := make([][]complex128, len(rows))
 			for i := range y {

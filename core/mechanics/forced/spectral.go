@@ -21,10 +21,10 @@ type spectral struct {
 // orthonormal to that; near equal values may leave them poorer.
 const alike = 1e-8
 
-// spectral gives it, or nil where the vectors are not good enough. The matrix must be constant but for ω².
+// spectral gives it for the matrix without laws, or nil where the vectors are not good enough.
 func (s *System) spectral() *spectral {
 	n := len(s.vectors)
-	a := s.still(0, make([]complex128, n*n))
+	a := s.lawless(0, make([]complex128, n*n))
 	out := &spectral{}
 	var elastic []int
 	for i, k := range s.square {
@@ -158,6 +158,76 @@ func (b *bilinear) at(omega float64, to [][]complex128) bool {
 	for i := range m {
 		for j := range b.count {
 			to[i][j] = complex(b.out[i*b.count+j], b.out[(m+i)*b.count+j])
+		}
+	}
+	return true
+}
+
+// receptor gives rowᵀ B⁻¹ load for all rows and loads, B the dynamic stiffness at rest
+// with the laws at the frequency: Woodbury's identity over the ways in which their
+// groups stretch. It is not safe for concurrent use.
+type receptor struct {
+	plain       *bilinear
+	rows, loads int
+	laws        []*law // of each stretch
+	all         [][]complex128
+	left        []complex128
+	sides       [][]complex128
+}
+
+// receptor makes one; p is the spectral form of s.
+func (s *System) receptor(p *spectral, rows, loads [][]float64) *receptor {
+	r := &receptor{rows: len(rows), loads: len(loads)}
+	rows, loads = append([][]float64{}, rows...), append([][]float64{}, loads...)
+	for i := range s.laws {
+		for _, u := range s.laws[i].factors {
+			rows, loads, r.laws = append(rows, u), append(loads, u), append(r.laws, &s.laws[i])
+		}
+	}
+	r.plain = p.bilinear(rows, loads)
+	for range rows {
+		r.all = append(r.all, make([]complex128, len(loads)))
+	}
+	r.left = make([]complex128, len(r.laws)*len(r.laws))
+	for range r.loads {
+		r.sides = append(r.sides, make([]complex128, len(r.laws)))
+	}
+	return r
+}
+
+// at fills to[row][load]; false when the matrix is singular.
+func (r *receptor) at(omega float64, to [][]complex128) bool {
+	if !r.plain.at(omega, r.all) {
+		return false
+	}
+	// (I + C P) X = C U B⁻¹ load with C the laws less one and P = U B⁻¹ Uᵀ, B without laws.
+	m := len(r.laws)
+	var last *law
+	var c complex128
+	for i, l := range r.laws {
+		if l != last {
+			last, c = l, l.law.At(omega/(2*math.Pi))-1
+		}
+		y := r.all[r.rows+i]
+		for j := range m {
+			r.left[i*m+j] = c * y[r.loads+j]
+		}
+		r.left[i*m+i]++
+		for j, x := range r.sides {
+			x[i] = c * y[j]
+		}
+	}
+	if m > 0 && !factorSolve(r.left, m, r.sides...) {
+		return false
+	}
+	for i := range r.rows {
+		y := r.all[i]
+		for j, x := range r.sides {
+			h := y[j]
+			for k, z := range y[r.loads:] {
+				h -= z * x[k]
+			}
+			to[i][j] = h
 		}
 	}
 	return true

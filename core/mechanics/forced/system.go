@@ -40,10 +40,10 @@ type System struct {
 	laws    []law     // groups whose stiffness depends on frequency
 	rate    []float64 // C without gyroscopic couplings, n×n, or nil
 	inputs  []Input
-	load    [][]float64  // load[input][v]: modal force of a unit of the input
-	gyro    [3][]float64 // gyro[axis][v]: rotation of the gyro in vector v, rad
-	reduced *hessenberg  // when rate is nil and there are no laws
-	own     func() *spectral
+	load    [][]float64      // load[input][v]: modal force of a unit of the input
+	gyro    [3][]float64     // gyro[axis][v]: rotation of the gyro in vector v, rad
+	reduced *hessenberg      // when rate is nil and there are no laws
+	own     func() *spectral // of the matrix without laws, nil when there are dampers
 	// Gyroscopic couplings: rows 2r and 2r+1 of tilt are those of rotor r.
 	tilt     [][]float64
 	momentum []float64
@@ -101,6 +101,9 @@ func New(basis *modal.Basis, opt Options) (*System, error) {
 				return nil, fmt.Errorf("the modal basis holds a number that is not finite")
 			}
 		}
+	}
+	for i := range s.laws {
+		s.laws[i].factor()
 	}
 	s.prepare()
 	return s, nil
@@ -172,7 +175,12 @@ func (s *System) Vectors() []int { return s.vectors }
 // prepare brings the matrix to its form for many frequencies, where it is constant but for ω².
 func (s *System) prepare() {
 	s.own = sync.OnceValue(func() *spectral {
-		if s.reduced == nil {
+		for i := range s.laws {
+			if len(s.laws[i].factors) == 0 {
+				return nil
+			}
+		}
+		if s.rate != nil {
 			return nil
 		}
 		return s.spectral()
@@ -191,6 +199,20 @@ func (s *System) matrix(omega float64) []complex128 {
 
 // still builds the dynamic stiffness at ω without gyroscopic couplings in a.
 func (s *System) still(omega float64, a []complex128) []complex128 {
+	s.lawless(omega, a)
+	for _, l := range s.laws {
+		f := l.law.At(omega/(2*math.Pi)) - 1
+		for i, x := range l.stiffness {
+			if x != 0 {
+				a[i] += f * complex(x, 0)
+			}
+		}
+	}
+	return a
+}
+
+// lawless is still with every law at its reference and without its loss.
+func (s *System) lawless(omega float64, a []complex128) []complex128 {
 	n := len(s.vectors)
 	for i, x := range s.loss {
 		a[i] = complex(0, x)
@@ -203,14 +225,6 @@ func (s *System) still(omega float64, a []complex128) []complex128 {
 	}
 	for i, x := range s.square {
 		a[i*n+i] += complex(x-omega*omega, 0)
-	}
-	for _, l := range s.laws {
-		f := l.law.At(omega/(2*math.Pi)) - 1
-		for i, x := range l.stiffness {
-			if x != 0 {
-				a[i] += f * complex(x, 0)
-			}
-		}
 	}
 	return a
 }
