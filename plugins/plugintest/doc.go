@@ -59,15 +59,27 @@ func build(t *testing.T, main string) string {
 // ElementProcess does the same and gives an element type.
 func ElementProcess(t *testing.T, main, name string) extension.Element {
 	t.Helper()
-	h := open(t, build(t, main))
-	return extension.RemoteElement(find(t, h, extension.ElementKind, name), caller(h, extension.ElementKind, name), t.TempDir())
+	return ElementExecutable(t, build(t, main), name)
 }
 
 // ReaderProcess does the same and gives a recording reader, which reads files: its sources must be of type *os.File.
 func ReaderProcess(t *testing.T, main, name string) extension.Reader {
 	t.Helper()
-	h := open(t, build(t, main))
+	return ReaderExecutable(t, build(t, main), name)
+}
+
+// ReaderExecutable is ReaderProcess for an executable that is there already, in whatever language.
+func ReaderExecutable(t *testing.T, path, name string) extension.Reader {
+	t.Helper()
+	h := open(t, path)
 	return extension.RemoteReader(find(t, h, extension.ReaderKind, name), caller(h, extension.ReaderKind, name), t.TempDir())
+}
+
+// ElementExecutable does the same for an element type.
+func ElementExecutable(t *testing.T, path, name string) extension.Element {
+	t.Helper()
+	h := open(t, path)
+	return extension.RemoteElement(find(t, h, extension.ElementKind, name), caller(h, extension.ElementKind, name), t.TempDir())
 }
 
 func caller(h *host.Host, kind, name string) extension.Caller {

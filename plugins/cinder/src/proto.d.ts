@@ -1,0 +1,4 @@
+declare module "*.proto" {
+  const text: string;
+  export default text;
+}
