@@ -59,7 +59,7 @@ type Shapes struct {
 
 // mostShape bounds the bytes of packed shapes, and finest and coarsest the lengths (m) of edges drawn.
 const (
-	mostShape = 2_000_000
+	mostShape = 1_600_000
 	finest    = 2e-3
 	coarsest  = 40e-3
 )
