@@ -8,7 +8,7 @@ import (
 
 // ModesKind is what `solve` makes of a mesh and properties.
 var ModesKind = artifact.Kind{
-	Name: "modes", Version: 4,
+	Name: "modes", Version: 5,
 	About: "modal basis of the free airframe (rigid-body, elastic and residual vectors, mass-normalised) and what each elastic mode is",
 	Scalars: []artifact.Column{
 		col("up_to", artifact.Float, "Hz", "every mode below this is in the basis"),
@@ -63,6 +63,7 @@ var ModesKind = artifact.Kind{
 			col("motion", artifact.Text, "", "its greatest kind of strain energy"),
 			col("strain_groups", artifact.FloatList, "1", "share of the strain energy of each group"),
 			col("strain_kinds", artifact.FloatList, "1", "share of each kind"),
+			col("strain_elements", artifact.FloatList, "1", "share of the strain energy of each triangle of the mesh; may be empty"),
 			col("kinetic", artifact.FloatList, "1", "share of the kinetic energy of each row of masses"),
 			axisCols("rotation_", "rad per kg^(1/2)*m", "rotation of the gyro"),
 			axisCols("strength_", "rad/s per N", "gyro strength: peak rate of the mode alone, root sum of squares over unit forces at all hubs"),
@@ -210,6 +211,7 @@ func setModes(t *artifact.Table, modes []modal.Mode) {
 		Set("motion", list(modes, func(x modal.Mode) string { return x.Motion })).
 		Set("strain_groups", list(modes, func(x modal.Mode) []float64 { return x.ByGroup })).
 		Set("strain_kinds", list(modes, func(x modal.Mode) []float64 { return x.ByKind })).
+		Set("strain_elements", list(modes, func(x modal.Mode) []float64 { return append([]float64{}, x.ByElement...) })).
 		Set("kinetic", list(modes, func(x modal.Mode) []float64 { return x.ByCarrier })).
 		Set("rotor_shares", list(modes, func(x modal.Mode) []float64 { return x.RotorShare })).
 		Set("moment_shares", list(modes, func(x modal.Mode) []float64 { return x.MomentShare })).
@@ -303,8 +305,14 @@ func decodeSurvey(a *artifact.Artifact, m *Modes) error {
 			RotorShare: t.FloatLists("rotor_shares")[i], MomentShare: t.FloatLists("moment_shares")[i],
 			Below: t.Floats("below")[i], Above: t.Floats("above")[i],
 		}
+		if list := t.FloatLists("strain_elements")[i]; len(list) > 0 {
+			x.ByElement = list
+		}
 		for axis, name := range AxisNames {
 			x.Rotation[axis], x.Strength[axis], x.MomentStrength[axis] = t.Floats("rotation_" + name)[i], t.Floats("strength_" + name)[i], t.Floats("moment_strength_" + name)[i]
+		}
+		if len(s.Modes) > 0 && len(x.ByElement) != len(s.Modes[0].ByElement) {
+			return malformed("modes", "mode %d has the strain energy of %d elements, mode 1 of %d", i+1, len(x.ByElement), len(s.Modes[0].ByElement))
 		}
 		if x.Number != i+1 || x.Vector < 0 || x.Vector >= len(m.Basis.Kinds) || len(x.ByGroup) != len(s.Groups) || len(x.ByKind) != len(s.Kinds) ||
 			len(x.ByCarrier) != len(s.Carriers) || len(x.RotorShare) != len(s.Rotors) || len(x.MomentShare) != len(s.Rotors) {

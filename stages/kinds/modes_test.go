@@ -28,7 +28,7 @@ func modesExample() *kinds.Modes {
 		Survey: &modal.Survey{
 			From: 80, To: 500, Groups: []string{"bottom"}, Kinds: []string{"in-plane", "bending"}, Carriers: []string{"bottom", "battery"}, Rotors: []string{"fr", "fl"},
 			Modes: []modal.Mode{{
-				Number: 1, Vector: 1, Frequency: 141.5, Loss: 0.012, ByGroup: []float64{1}, ByKind: []float64{0.2, 0.8}, ByCarrier: []float64{0.3, 0.7},
+				Number: 1, Vector: 1, Frequency: 141.5, Loss: 0.012, ByGroup: []float64{1}, ByKind: []float64{0.2, 0.8}, ByCarrier: []float64{0.3, 0.7}, ByElement: []float64{0.6, 0.3},
 				Part: "bottom", Motion: "bending", Rotation: [3]float64{1, -2, 3}, Strength: [3]float64{0.1, 0.2, 0.3}, MomentStrength: [3]float64{4, 5, 6},
 				RotorShare: []float64{0.25, 0.75}, MomentShare: []float64{0.5, 0.5}, Below: math.Inf(1), Above: math.Inf(1),
 				Meetings: []modal.Meeting{{Order: 3, Blade: true, Speed: 296, Rotors: []int{0, 1}, Service: true}},

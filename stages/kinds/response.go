@@ -85,6 +85,8 @@ var ResponseKind = artifact.Kind{
 			col("highest", artifact.Float, "rad/s", "highest service speed"),
 			col("speed", artifact.Float, "rad/s", "speed in this response, with or without gyroscopic moments"),
 			col("polar", artifact.Float, "kg*m^2", "moment of inertia of what spins, about the shaft"),
+			col("bell", artifact.Float, "kg*m^2", "what the bell of the motor has of polar; NaN if not known"),
+			col("propeller", artifact.Float, "kg*m^2", "what the propeller has of polar; NaN if not known"),
 			col("tilt", artifact.Float, "kg*m^2", "moment of inertia of motor and propeller about an axis square to the shaft; NaN without a body"),
 			col("equal", artifact.Float, "Hz", "frequency below which the gyroscopic moment at that speed exceeds the moment of the tilt inertia; NaN without a body"),
 		)},
@@ -280,6 +282,8 @@ type ResponseRotor struct {
 	Speed          float64
 	// Polar and Tilt are moments of inertia; Tilt and Equal are NaN without a body.
 	Polar, Tilt, Equal float64
+	// Bell and Propeller are what Polar consists of; NaN when not known.
+	Bell, Propeller float64
 }
 
 // ResponseLine is the answer to one rotor order at hover.

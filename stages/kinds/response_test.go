@@ -33,7 +33,7 @@ func sampleResponse() *Response {
 		Whirl:    []ResponseWhirl{{4, []float64{230, 220}, []float64{0.01, 0.02}, []float64{0, -0.5}}},
 		Critical: []ResponseCritical{{3, []string{"fr"}, 500, 239, 0.01, 0.4, 4}},
 		Modes:    []ResponseMode{{1, 150, 0.01}},
-		Rotors:   []ResponseRotor{{"fr", 3, 1675, 3450, 1600, 6e-6, 4e-6, 400}},
+		Rotors:   []ResponseRotor{{"fr", 3, 1675, 3450, 1600, 6e-6, 4e-6, 400, 2e-6, 4e-6}},
 		Lines:    []ResponseLine{{"unbalance", "fr", 1, 266, 0.1, [3]float64{1, 2, 3}}},
 		Shapes:   []ResponseShape{{230, "roll", "fr", 2, []float64{1, 2, 3}, []float64{4, 5, 6}}},
 	}

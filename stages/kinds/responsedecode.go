@@ -67,7 +67,8 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	t = a.Table("rotors")
 	for i := range t.Rows() {
 		r.Rotors = append(r.Rotors, ResponseRotor{t.Texts("rotor")[i], int(t.Ints("blades")[i]), t.Floats("hover")[i], t.Floats("highest")[i],
-			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i]})
+			t.Floats("speed")[i], t.Floats("polar")[i], t.Floats("tilt")[i], t.Floats("equal")[i],
+			t.Floats("bell")[i], t.Floats("propeller")[i]})
 	}
 	for _, p := range r.Peaks {
 		if n, m := len(p.ModeShares), len(p.RotorShares); n > 0 && n != len(r.Modes) || m > 0 && m != len(r.Rotors) {

@@ -64,6 +64,8 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 		Set("highest", list(r.Rotors, func(x ResponseRotor) float64 { return x.Highest })).
 		Set("speed", list(r.Rotors, func(x ResponseRotor) float64 { return x.Speed })).
 		Set("polar", list(r.Rotors, func(x ResponseRotor) float64 { return x.Polar })).
+		Set("bell", list(r.Rotors, func(x ResponseRotor) float64 { return x.Bell })).
+		Set("propeller", list(r.Rotors, func(x ResponseRotor) float64 { return x.Propeller })).
 		Set("tilt", list(r.Rotors, func(x ResponseRotor) float64 { return x.Tilt })).
 		Set("equal", list(r.Rotors, func(x ResponseRotor) float64 { return x.Equal }))
 	a.Table("speeds").Set("speed", append([]float64{}, r.Speeds...))

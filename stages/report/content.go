@@ -38,7 +38,7 @@ type content struct {
 const restName = "outline-at-rest"
 
 // coarse is the length of edges that a picture can show, m.
-const coarse = 5e-3
+const coarse = 6e-3
 
 // drawing gives the mesh as it is drawn, made on first use.
 func (c *content) drawing() (*draw.Surface, *draw.View) {

@@ -134,6 +134,36 @@ func BenchmarkBeforeTheSolver(b *testing.B) {
 	}
 }
 
+// BenchmarkErrorEstimate times what the estimate of the mesh error adds: every element of the demo's usual mesh cut in four,
+// numbered, assembled and solved for its modes alone.
+func BenchmarkErrorEstimate(b *testing.B) {
+	g, p, _ := imported(b, "../../jobs/sandpiper", "airframe.hcl")
+	m, err := mesh.Build(b.Context(), g, mesh.Options{Size: 0.005, Element: "quadratic-triangle", Threads: 2})
+	if err != nil {
+		b.Fatal(err)
+	}
+	unknowns := 0
+	for b.Loop() {
+		f, err := assembly.FromAirframe(assembly.Refine(m), p, func(string) element.Type { return shell.QuadraticTriangle() })
+		if err != nil {
+			b.Fatal(err)
+		}
+		sites, err := solve.Places(f, p)
+		if err != nil {
+			b.Fatal(err)
+		}
+		s, err := assembly.Assemble(b.Context(), &f.Problem, 2)
+		if err != nil {
+			b.Fatal(err)
+		}
+		if _, err := modal.Build(b.Context(), s, sites, modal.Options{UpTo: 750, Threads: 2, Bare: true}); err != nil {
+			b.Fatal(err)
+		}
+		unknowns = s.N
+	}
+	b.ReportMetric(float64(unknowns), "unknowns")
+}
+
 // BenchmarkMemory sets the memory that assembly and solution of the demo hold at most beside what the stage expects
 // beforehand, where the system tells.
 func BenchmarkMemory(b *testing.B) {

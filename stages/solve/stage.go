@@ -212,6 +212,9 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 		Basis: st.Basis, Masses: masses(s, f, p),
 	}
 	modes.Survey = modal.Describe(st.Basis, st.Strain, carried(st.Kinetic, f), names(modes.Masses))
+	for i := range modes.Survey.Modes {
+		modes.Survey.Modes[i].ByElement = st.Plates[i]
+	}
 	var notes []string
 	for _, merge := range s.Merges {
 		if merge.Shared {

@@ -362,18 +362,7 @@ func TestFlightAsRecorded(t *testing.T) {
 		{Rotor: "a", Column: "r1", Blades: 3, Median: 2000, Low: 1980, High: 2020},
 	}}
 	c := recorded(t, call(t, m, p, stage.Arguments{"rotor_speed": "none", "force_density": stage.Quantity{SI: 1e-16, Dimension: "force density"}, "moment_density": stage.Quantity{Dimension: "moment density"}}), s)
-	out, err := Stage{}.Run(context.Background(), c)
-	if err != nil {
-		t.Fatal(err)
-	}
-	a, err := artifact.Open(c.Outputs["response"], kinds.Registry())
-	if err != nil {
-		t.Fatal(err)
-	}
-	r, err := kinds.DecodeResponse(a)
-	if err != nil {
-		t.Fatal(err)
-	}
+	r, out := decoded(t, c)
 	peak := func(from, to float64) float64 {
 		best, at := 0.0, 0.0
 		for k, f := range r.Frequency {
@@ -388,6 +377,21 @@ func TestFlightAsRecorded(t *testing.T) {
 	}
 	if f := peak(260, 400); math.Abs(f-2000/2/math.Pi) > 1 {
 		t.Errorf("rotor a is heard at %g Hz, want %g", f, 2000/2/math.Pi)
+	}
+	// Without unbalance at b, b is not heard.
+	p.Rotors[1].Grade = 0
+	alone, _ := decoded(t, recorded(t, call(t, m, p, stage.Arguments{"rotor_speed": "none", "force_density": stage.Quantity{SI: 1e-16, Dimension: "force density"}, "moment_density": stage.Quantity{Dimension: "moment density"}}), s))
+	loudest := func(from, to float64) float64 {
+		best := 0.0
+		for k, f := range alone.Frequency {
+			if f > from && f < to {
+				best = max(best, alone.Flown[2][k]-alone.GyroNoise)
+			}
+		}
+		return best
+	}
+	if b, a := loudest(150, 260), loudest(260, 400); !(b < 1e-6*a) {
+		t.Errorf("rotor b is heard with %g, a with %g", b, a)
 	}
 	said := false
 	for _, n := range out.Notes {

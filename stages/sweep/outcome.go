@@ -43,6 +43,9 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if !math.IsNaN(r.Thrust) && set.bladeShare > 0 {
 		o.Notes = append(o.Notes, fmt.Sprintf("the thrust of %.3g N per rotor is assumed to vary by %.3g %% at blade passing", r.Thrust, 100*set.bladeShare))
 	}
+	if two := twoBladed(r); two != "" {
+		o.Notes = append(o.Notes, two)
+	}
 	o.Summary = []stage.Section{peakTable(r), axisTable(r), staticTable(r), pointTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
@@ -59,6 +62,20 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	}
 	o.Summary = append(o.Summary, practiceTable(r))
 	return o
+}
+
+// twoBladed names the spinning rotors whose tilt inertia is not that of a disc.
+func twoBladed(r *kinds.Response) string {
+	var names []string
+	for _, x := range r.Rotors {
+		if x.Blades == 2 && x.Polar > 0 {
+			names = append(names, x.Rotor)
+		}
+	}
+	if len(names) == 0 || !r.Spinning {
+		return ""
+	}
+	return fmt.Sprintf("two blades (%s): their tilt inertia changes twice a turn, which the model takes as its mean; tilting modes near twice the rotors' speed may couple through it", strings.Join(names, ", "))
 }
 
 func warnings(r *kinds.Response, set settings) []stage.Warning {

@@ -79,7 +79,10 @@ func (f *fleet) options(set settings, residual bool) forced.Options {
 func (f *fleet) describe(r *kinds.Response, p *airframe.Properties) {
 	for k, x := range f.rotors {
 		row := kinds.ResponseRotor{Rotor: x.Name, Blades: x.Blades, Hover: x.HoverSpeed, Highest: x.MaxSpeed,
-			Speed: f.speeds[k], Polar: x.PolarInertia, Tilt: math.NaN(), Equal: math.NaN()}
+			Speed: f.speeds[k], Polar: x.PolarInertia, Tilt: math.NaN(), Equal: math.NaN(), Bell: math.NaN(), Propeller: math.NaN()}
+		if x.BellInertia > 0 || x.PropellerInertia > 0 {
+			row.Bell, row.Propeller = x.BellInertia, x.PropellerInertia
+		}
 		for _, body := range p.Bodies {
 			if body.Name == x.Body {
 				balance := rotor.BalanceOf(x, body, f.speeds[k])

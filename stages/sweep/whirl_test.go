@@ -74,6 +74,23 @@ func TestModesMoveWithTheSpeedOfTheRotors(t *testing.T) {
 	if x := r.Rotors[0]; !r.Spinning || x.Speed != 1700 || x.Polar != 6e-6 || x.Tilt != 4e-6 || math.Abs(x.Equal-1.5*1700/(2*math.Pi)) > 1e-9 {
 		t.Errorf("rotor %+v", x)
 	}
+	if len(out.Notes) == 0 || strings.Contains(strings.Join(out.Notes, ""), "two blades") {
+		t.Errorf("notes %q", out.Notes)
+	}
+	p.Rotors[1].Blades, p.Rotors[1].BellInertia, p.Rotors[1].PropellerInertia = 2, 2e-6, 4e-6
+	split, after := run(t, m, p, nil)
+	if x := split.Rotors[1]; x.Bell != 2e-6 || x.Propeller != 4e-6 || !math.IsNaN(split.Rotors[0].Bell) {
+		t.Errorf("rotors %+v", split.Rotors)
+	}
+	if !strings.Contains(strings.Join(after.Notes, ""), "two blades (b)") {
+		t.Errorf("notes %q", after.Notes)
+	}
+	for _, s := range after.Summary {
+		// Two thirds of the inertia are the propeller's, and of the frequency with it.
+		if s.Title == "Spinning rotors" && (s.Rows[0][3] != "–" || s.Rows[1][3] != "4.00" || s.Rows[1][7] != "406" || s.Rows[1][8] != "271") {
+			t.Errorf("rotors %q", s.Rows)
+		}
+	}
 	// Neighbours at the speed of the response: modes 1 and 2 with their gap there.
 	if len(r.Separations) != 2 || r.Separations[0].Lower != 1 || r.Separations[0].Upper != 2 ||
 		math.Abs(r.Separations[0].Gap-(r.Whirl[1].Frequency[k]-r.Whirl[0].Frequency[k])) > 1e-9 || !(r.Separations[0].LowerAlone[0] > 0) {

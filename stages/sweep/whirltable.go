@@ -25,14 +25,14 @@ func speedName(r *kinds.Response) string {
 func rotorTable(r *kinds.Response) stage.Section {
 	s := stage.Section{
 		Title: "Spinning rotors",
-		Text: "a motor that tilts at a frequency f needs Jt (2πf)² per angle for its inertia and Jp Ω 2πf for its spin; below the last column the spin needs more. " +
-			"Propellers are taken as rigid discs: two blades would change the tilt inertia as they turn, and bending blades carry less",
-		Columns: []stage.Column{{Name: "rotor"}, {Name: "rpm", Right: true}, {Name: "Jp, kg·mm²", Right: true}, {Name: "Jt, kg·mm²", Right: true},
-			{Name: "Jp Ω, N·m·s", Right: true}, {Name: "equal at, Hz", Right: true}},
+		Text: "a motor that tilts at a frequency f needs Jt (2πf)² per angle for its inertia and Jp Ω 2πf for its spin; below \"equal at\" the spin needs more, and the last column is that " +
+			"frequency for the propeller alone. Propellers are taken as rigid discs: two blades would change the tilt inertia as they turn, and bending blades carry less",
+		Columns: []stage.Column{{Name: "rotor"}, {Name: "rpm", Right: true}, {Name: "Jp, kg·mm²", Right: true}, {Name: "of propeller", Right: true}, {Name: "of bell", Right: true}, {Name: "Jt, kg·mm²", Right: true},
+			{Name: "Jp Ω, N·m·s", Right: true}, {Name: "equal at, Hz", Right: true}, {Name: "propeller, Hz", Right: true}},
 	}
 	for _, x := range r.Rotors {
-		s.Rows = append(s.Rows, []string{x.Rotor, fmt.Sprintf("%.0f", x.Speed/rpm), fmt.Sprintf("%.2f", 1e6*x.Polar), dash("%.2f", 1e6*x.Tilt),
-			fmt.Sprintf("%.4f", x.Polar*x.Speed), dash("%.0f", x.Equal)})
+		s.Rows = append(s.Rows, []string{x.Rotor, fmt.Sprintf("%.0f", x.Speed/rpm), fmt.Sprintf("%.2f", 1e6*x.Polar), dash("%.2f", 1e6*x.Propeller), dash("%.2f", 1e6*x.Bell), dash("%.2f", 1e6*x.Tilt),
+			fmt.Sprintf("%.4f", x.Polar*x.Speed), dash("%.0f", x.Equal), dash("%.0f", x.Equal*x.Propeller/x.Polar)})
 	}
 	return s
 }
@@ -54,7 +54,7 @@ func whirlTable(r *kinds.Response) stage.Section {
 	here := at(r.Speeds, r.Rotors[0].Speed)
 	s := stage.Section{
 		Title: "Modes that move with rotor speed",
-		Text:  "direction: 1 when rotors tilt round with their spin, −1 against it, 0 to and fro. The last columns are the speeds in rpm at which an order meets the mode",
+		Text:  lawsText(r) + "direction: 1 when rotors tilt round with their spin, −1 against it, 0 to and fro. The last columns are the speeds in rpm at which an order meets the mode",
 		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "at rest, Hz", Right: true}, {Name: speedName(r) + ", Hz", Right: true},
 			{Name: fmt.Sprintf("%.0f rpm, Hz", r.Speeds[last]/rpm), Right: true}, {Name: "damping, %", Right: true}, {Name: "direction", Right: true}, {Name: "critical speeds"}},
 	}
@@ -130,4 +130,12 @@ func separationTable(r *kinds.Response) stage.Section {
 			dash("%+.1f", 10*math.Log10(x.Amplification[axis]))})
 	}
 	return s
+}
+
+// lawsText says at what frequency mounts with a law are taken.
+func lawsText(r *kinds.Response) string {
+	if math.IsNaN(r.LawsAt) {
+		return ""
+	}
+	return fmt.Sprintf("mounts with a law over frequency are taken as they are at %.0f Hz. ", r.LawsAt)
 }

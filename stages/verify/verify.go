@@ -31,8 +31,8 @@ func (Stage) Describe() stage.Description {
 	return stage.Description{
 		Name:  "verify",
 		About: "solve problems whose answers are known and show how far ours are off",
-		Doc: `Builds the problems of tables of known answers (beams, plates, laminates, shells,
-harmonic response), solves them with the elements, the assembly and the
+		Doc: `Builds the problems of tables of known answers (beams, torsion, plates, laminates,
+shells, harmonic response), solves them with the elements, the assembly and the
 eigen-solver that jobs use, and sets ours beside the reference. Each value comes
 with its error and with the share of the row's tolerance that the error takes:
 one just passes.`,

@@ -11,7 +11,7 @@ import (
 
 // elsewhere are the rows of the families' files that no family solves: where they are checked, or why not.
 var elsewhere = map[string]string{
-	"A-TORSION-TAU":   "a shear stress, and no stresses are computed",
+	"A-TORSION-TAU":   "the peak of a shear stress across a section, which no kernel computes",
 	"A-STATIC-CANT":   "core/mechanics/element/beam",
 	"C-PATCH-":        "core/mechanics/element/shell",
 	"C-ELEMENT-RIGID": "core/mechanics/element/shell",

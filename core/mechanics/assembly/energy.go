@@ -18,6 +18,9 @@ type Energies struct {
 	Strain [][][6]float64
 	// Kinetic[m][g] is ½ yᵀ M_g y of part group g; Body[m][b] that of body b of the problem.
 	Kinetic, Body [][]float64
+	// Plates[m][e] is the strain energy of plate element e in motion m, in the order of the plates of the
+	// problem and of their elements.
+	Plates [][]float64
 }
 
 // Energies splits the strain and kinetic energy of each motion y (unknowns).
@@ -29,6 +32,7 @@ func (s *System) Energies(ctx context.Context, ys [][]float64, threads int) (*En
 		out.Strain = append(out.Strain, make([][6]float64, len(p.Groups)))
 		out.Kinetic = append(out.Kinetic, make([]float64, len(p.Groups)))
 		out.Body = append(out.Body, s.bodyKinetic(y))
+		out.Plates = append(out.Plates, nil)
 	}
 	for i := range s.plates {
 		if err := s.plateEnergies(ctx, &s.plates[i], nodes, out, threads); err != nil {
@@ -97,9 +101,13 @@ func (s *System) plateEnergies(ctx context.Context, a *assembledPlates, nodes []
 		}
 		for e := range count {
 			for m := range some {
+				sum := 0.0
 				for k := range element.Kinds {
-					out.Strain[lo+m][a.part.Group][k] += got[(e*some+m)*element.Kinds+k]
+					v := got[(e*some+m)*element.Kinds+k]
+					out.Strain[lo+m][a.part.Group][k] += v
+					sum += v
 				}
+				out.Plates[lo+m] = append(out.Plates[lo+m], sum)
 			}
 		}
 	}

@@ -180,6 +180,32 @@ func TestEnergiesAndGroups(t *testing.T) {
 				t.Errorf("groups give y%d K y%d = %.12g, want %.12g", m, q, got, want)
 			}
 		}
+		// Element by element the plates of a group hold what the group does, less its beams.
+		at := 0
+		for i := range p.Plates {
+			own := 0.0
+			for range p.Plates[i].Elements {
+				own += e.Plates[m][at]
+				at++
+			}
+			whole := 0.0
+			for _, v := range e.Strain[m][p.Plates[i].Group] {
+				whole += v
+			}
+			alone := true
+			for j := range p.Plates {
+				alone = alone && (j == i || p.Plates[j].Group != p.Plates[i].Group)
+			}
+			for j := range p.Beams {
+				alone = alone && p.Beams[j].Group != p.Plates[i].Group
+			}
+			if !(own > 0) || alone && math.Abs(own-whole) > 1e-9*whole || own > whole*(1+1e-9) {
+				t.Errorf("motion %d: the elements of plate %d hold %g of the %g of its group", m, i, own, whole)
+			}
+		}
+		if at != len(e.Plates[m]) || at == 0 {
+			t.Errorf("energies of %d elements, the plates have %d", len(e.Plates[m]), at)
+		}
 		strain, kinetic, k, mm := 0.0, 0.0, 0.0, 0.0
 		for g := range e.Strain[m] {
 			for _, v := range e.Strain[m][g] {

@@ -35,7 +35,10 @@ type Structure struct {
 	Basis *Basis // loss factors zero
 	// Strain[m][g][k] and Kinetic[m][c] are the shares of the energies of elastic mode m, by group of the
 	// problem and kind (assembly.EnergyKinds), and by group then body of the problem.
-	Strain  [][][6]float64
+	Strain [][][6]float64
+	// Plates[m][e] is the share of plate element e in the strain energy of elastic mode m, in the order of the
+	// plates of the problem and of their elements.
+	Plates  [][]float64
 	Kinetic [][]float64
 	// Proved says that a count of eigenvalues agrees that no mode below UpTo is missing.
 	Proved bool
@@ -171,6 +174,9 @@ func (st *Structure) shares(s *assembly.System, e *assembly.Energies) {
 				e.Strain[m][g][k] /= total
 			}
 		}
+		for k := range e.Plates[m] {
+			e.Plates[m][k] /= total
+		}
 		kinetic := append(append([]float64(nil), e.Kinetic[m]...), e.Body[m]...)
 		total = 0
 		for _, v := range kinetic {
@@ -181,5 +187,5 @@ func (st *Structure) shares(s *assembly.System, e *assembly.Energies) {
 		}
 		st.Kinetic = append(st.Kinetic, kinetic)
 	}
-	st.Strain = e.Strain
+	st.Strain, st.Plates = e.Strain, e.Plates
 }

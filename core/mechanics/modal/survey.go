@@ -22,6 +22,9 @@ type Mode struct {
 	Loss      float64 // loss factor; the damping ratio is half of it
 	// Shares of the energies; each adds up to one.
 	ByGroup, ByKind, ByCarrier []float64
+	// ByElement is the share of each triangle of the mesh in the strain energy, in its order; nil where it is
+	// not known. What is missing to one is in standoffs, joints and mounts.
+	ByElement []float64
 	// Part names the group with the greatest strain energy, the first of equals; Motion its greatest kind.
 	Part, Motion string
 	// Rotation is the rotation of the gyro per unit modal coordinate, rad.

@@ -57,7 +57,8 @@ type lap struct {
 //	apt-get install python3-scipy python3-petsc4py-real python3-slepc4py-real
 //	go test -run XXX -bench Race -benchtime 3x -timeout 1h ./core/numeric/eigen
 //
-// HUSHFRAME_RACE_SIZES=20,50,100,200,400 chooses the crosses (thousands of unknowns).
+// HUSHFRAME_RACE_SIZES=20,50,100,200,400 chooses the crosses (thousands of unknowns), none when it is empty,
+// HUSHFRAME_RACE_AGAINST="slepc cholmod" those whose names begin so.
 func BenchmarkRace(b *testing.B) {
 	var first, last growth
 	for _, make := range runners(b) {
@@ -107,11 +108,16 @@ func rivals(b *testing.B) (out []rival) {
 			}
 		}
 	}
-	return out
+	against := os.Getenv("HUSHFRAME_RACE_AGAINST")
+	return slices.DeleteFunc(out, func(o rival) bool { return !strings.HasPrefix(o.name, against) })
 }
 
 func runners(b *testing.B) (out []func() runner) {
-	for word := range strings.SplitSeq(cmp.Or(os.Getenv("HUSHFRAME_RACE_SIZES"), "50"), ",") {
+	sizes, chosen := os.LookupEnv("HUSHFRAME_RACE_SIZES")
+	if !chosen {
+		sizes = "50"
+	}
+	for word := range strings.FieldsFuncSeq(sizes, func(r rune) bool { return r == ',' }) {
 		thousands, err := strconv.Atoi(word)
 		if err != nil {
 			b.Fatal(err)

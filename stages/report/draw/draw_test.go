@@ -166,6 +166,33 @@ func TestGridKeepsPeaksAndGaps(t *testing.T) {
 	}
 }
 
+// A million places become a few thousand, and every peak and dip among them stays where it is.
+func TestThinKeepsPeaks(t *testing.T) {
+	const n = 1_000_000
+	c := Curve{Name: "long", X: make([]float64, n), Y: make([]float64, n), Lower: make([]float64, n), Upper: make([]float64, n)}
+	r := rand.New(rand.NewPCG(3, 4))
+	for k := range n {
+		c.X[k], c.Y[k] = float64(k), r.Float64()
+	}
+	peaks := map[float64]float64{12_345: 50, 500_000: -7, 999_998: 3}
+	for x, y := range peaks {
+		c.Y[int(x)] = y
+	}
+	c.Y[77_777] = math.NaN()
+	thin := Thin(c, 6000)
+	if len(thin.X) > 6000 || len(thin.X) != len(thin.Y) || len(thin.X) != len(thin.Upper) || !slices.IsSorted(thin.X) {
+		t.Fatalf("%d places", len(thin.X))
+	}
+	for x, y := range peaks {
+		if at := slices.Index(thin.X, x); at < 0 || thin.Y[at] != y {
+			t.Errorf("the peak at %g is gone", x)
+		}
+	}
+	if short := Thin(Curve{X: c.X[:100], Y: c.Y[:100]}, 6000); len(short.X) != 100 {
+		t.Error("a short curve is thinned")
+	}
+}
+
 func TestLogarithmicAxes(t *testing.T) {
 	a := Axis{From: 10, To: 1000, Log: true}
 	if p := a.place(100); math.Abs(p-0.5) > 1e-12 {

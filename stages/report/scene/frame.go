@@ -59,7 +59,7 @@ type Shapes struct {
 
 // mostShape bounds the bytes of packed shapes, and finest and coarsest the lengths (m) of edges drawn.
 const (
-	mostShape = 2_000_000
+	mostShape = 1_600_000
 	finest    = 2e-3
 	coarsest  = 40e-3
 )
@@ -102,8 +102,8 @@ func drawnNodes(s *draw.Surface) []int32 {
 	return out
 }
 
-// newFrame packs the frame and, where modes belong to the mesh, their shapes.
-func newFrame(m *mesh.Mesh, p *airframe.Properties, modes *kinds.Modes) (*Frame, *Shapes) {
+// newFrame packs the frame and, where modes belong to the mesh, their shapes and the density of their strain energy.
+func newFrame(m *mesh.Mesh, p *airframe.Properties, modes *kinds.Modes) (*Frame, *Shapes, *Density) {
 	vectors := 1
 	fits := modes != nil && len(modes.Basis.Shapes) > 0 && len(modes.Basis.Shapes[0]) == 3*len(m.Nodes)
 	if fits {
@@ -148,9 +148,9 @@ func newFrame(m *mesh.Mesh, p *airframe.Properties, modes *kinds.Modes) (*Frame,
 		f.Bodies = bodies(p, f.Sites)
 	}
 	if !fits {
-		return f, nil
+		return f, nil, nil
 	}
-	return f, packShapes(modes.Basis, nodes)
+	return f, packShapes(modes.Basis, nodes), newDensity(m, modes, nodes)
 }
 
 func packShapes(b *modal.Basis, nodes []int32) *Shapes {

@@ -29,6 +29,7 @@ type Scene struct {
 	Modes     []Mode        `json:"modes,omitempty"`
 	Charts    []*draw.Chart `json:"charts,omitempty"`
 	Operating []Operating   `json:"operating,omitempty"`
+	Density   *Density      `json:"density,omitempty"`
 }
 
 // Mode is one elastic mode.
@@ -68,7 +69,7 @@ func New(s Sources, describe func(number int) string) *Scene {
 	x := &Scene{}
 	x.Light, x.Dark = draw.Scales()
 	if s.Mesh != nil {
-		x.Frame, x.Shapes = newFrame(s.Mesh, s.Properties, s.Modes)
+		x.Frame, x.Shapes, x.Density = newFrame(s.Mesh, s.Properties, s.Modes)
 	}
 	if s.Modes != nil {
 		for _, m := range s.Modes.Survey.Modes {
