@@ -151,7 +151,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	}
 	call.Report.Progress("modes", -1)
 	found, err := identify.Identify(lines.record, identify.Settings{
-		From: set.from, To: set.to, Order: set.order, MaxDamping: set.damping, Bands: lines.bands, Threads: call.Threads,
+		From: set.from, To: set.to, Order: set.order, MaxDamping: set.damping, Bands: lines.bands, Left: lines.left, Threads: call.Threads,
 	})
 	if err != nil {
 		return nil, gather.Explain(refuse(err), set.File)
