@@ -350,8 +350,9 @@ const (
 	holds = 1e-2
 )
 
-// fit raises the likelihood of a model by Fisher scoring with damping (K. Levenberg, Q. Appl. Math. 2, 1944).
-func (w *likelihood) fit(v *innovation) (fitted, bool) {
+// fit raises the likelihood of a model by Fisher scoring with damping (K. Levenberg, Q. Appl. Math. 2, 1944). It gives up when three steps as large
+// as the last would not reach a wanted value.
+func (w *likelihood) fit(v *innovation, wanted float64) (fitted, bool) {
 	out := fitted{innovation: v, value: w.value(v)}
 	if math.IsInf(out.value, 0) || math.IsNaN(out.value) {
 		return out, false
@@ -375,6 +376,9 @@ func (w *likelihood) fit(v *innovation) (fitted, bool) {
 		}
 		if gain < enough {
 			break
+		}
+		if out.steps >= 3 && out.value+3*gain < wanted {
+			return out, false
 		}
 	}
 	gram, n := w.gram(out.innovation)
@@ -495,34 +499,39 @@ func (f fitted) worth(pair int) float64 {
 	return mat.Dot(k, x) / 2
 }
 
-// prune takes pairs out of a fitted model, the least worth first, until every one that is left is worth at least that much, and fits
-// again after each.
+// mostTried is the worth, over the least, above which a pair is not tried: to second order it is too rough to decide nearer than that.
+const mostTried = 6
+
+// prune takes pairs out of a fitted model, the least worth first, as long as the log-likelihood of the model fitted again sinks by less than
+// that much.
 func (w *likelihood) prune(f fitted, least float64) (fitted, bool) {
+	kept := map[int]bool{} // pairs that were tried in vain, by the frequency at which they are
 	for len(f.pairs) > 1 {
-		lowest, at := math.Inf(1), -1
-		var values []float64
+		lowest, at := mostTried*least, -1
 		for i := range f.pairs {
-			v := f.worth(i)
-			values = append(values, v)
-			if v < lowest {
+			if v := f.worth(i); !kept[i] && v < lowest {
 				lowest, at = v, i
 			}
 		}
-		if lowest >= least {
+		if at < 0 {
 			return f, true
 		}
 		next := f.innovation.clone()
-		next.pairs = nil
-		for i, p := range f.pairs {
-			if i == at || values[i] < least/8 && math.Abs(p.turn-f.pairs[at].turn) > 3*(p.decay+f.pairs[at].decay) {
-				continue
+		next.pairs = append(next.pairs[:at], next.pairs[at+1:]...)
+		g, ok := w.fit(next, f.value-least)
+		if !ok || g.value < f.value-least {
+			kept[at] = true
+			continue
+		}
+		// Places behind the one taken out move up.
+		moved := map[int]bool{}
+		for i := range kept {
+			if i > at {
+				i--
 			}
-			next.pairs = append(next.pairs, p)
+			moved[i] = true
 		}
-		var ok bool
-		if f, ok = w.fit(next.clone()); !ok {
-			return f, false
-		}
+		f, kept = g, moved
 	}
 	return f, true
 }

@@ -34,7 +34,7 @@ func refine(r Record, sub *Subspace, c *Covariance, clusters []Mode, s Settings,
 		if !ok {
 			continue
 		}
-		f, ok := w.fit(v)
+		f, ok := w.fit(v, math.Inf(-1))
 		if !ok {
 			continue
 		}
