@@ -55,7 +55,8 @@ type Mode struct {
 	// such a model has no use for.
 	Worth float64
 
-	cluster int // of the diagram, -1 for none
+	cluster int  // of the diagram, -1 for none
+	lone    bool // worth too little to be told without a cluster that reaches through the models
 }
 
 // Result is what was found.
@@ -94,7 +95,8 @@ const (
 //
 // Models are fitted twice, with all lags and with half of them. Fewer lags know less of narrow neighbours but scatter less:
 // where both agree within their errors, the surer one counts, otherwise that of all lags (after O. V. Lepski, On a problem
-// of adaptive estimation in Gaussian white noise, Theory Probab. Appl. 35, 1991).
+// of adaptive estimation in Gaussian white noise, Theory Probab. Appl. 35, 1991). Then a model of high order is fitted to
+// the spectra; where that succeeds its modes count, and clusters that it has no use for are doubtful.
 func Identify(r Record, s Settings) (*Result, error) {
 	r.check()
 	s = s.filled(r)
@@ -330,6 +332,10 @@ func (m *Mode) judge(r Record, s Settings, d *Decomposition) {
 		set(Doubtful, "narrow, and a line was taken out there, %.1f to %.1f Hz: maybe its remains", b.Low, b.High)
 	case m.Worth == 0:
 		set(Doubtful, "the spectra are explained as well without it")
+	case m.lone && m.Orders == 0:
+		set(Doubtful, "models of rising order do not settle on it, and the spectra need it little")
+	case m.lone && m.Share < enoughOrders:
+		set(Doubtful, "only %.0f %% of the models have it, and the spectra need it little", 100*m.Share)
 	case math.IsNaN(m.Worth) && m.Share < enoughOrders:
 		set(Doubtful, "only %.0f %% of the models have it", 100*m.Share)
 	case m.FrequencyError > sureFrequency*m.Frequency:

