@@ -16,7 +16,7 @@
 //
 //	numeric    sparse storage, ordering, factors, block Lanczos
 //	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, rotor, counterpart
-//	signal     windows, spectra, orders, recordings
+//	signal     windows, spectra, orders, recordings, strikes of a hammer
 //	match      pairing of predicted and observed, modal assurance, levels in bands
 //	known      problems with known answers, for tests
 //

@@ -5,7 +5,8 @@
 //   - order: the frequency bands that rotor orders occupy in a recording, and what is left without them
 //   - identify: modes without known force, by subspace identification and frequency-domain decomposition
 //   - filter: what chains of filters buy and cost
-//   - recording: the interface of recording readers, and the checks on a time column
+//   - recording: the interface of recording readers, the checks on a time column, and the steady pieces of a flight
+//   - impact: the strikes of a hammer on the bench
 //
 // Everything is in SI units. Frequencies are in hertz, sample rates in samples per second (also written Hz). Power
 // spectral densities are one-sided: their integral over 0 Hz to half the sample rate is the mean square.

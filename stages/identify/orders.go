@@ -20,6 +20,7 @@ type orders struct {
 	seen    []kinds.OrderBand
 	removed []kinds.RemovedOrder
 	span    float64 // NaN if none were taken out
+	left    func(f float64) float64
 }
 
 const (
@@ -120,6 +121,7 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		return out, nil
 	}
 	out.record, out.span = rest, set.span
+	out.left = left(turning, set, timing.Rate)
 	for c, channel := range r.Plan.Axes {
 		for k, rotor := range turning {
 			for n, multiple := range set.orders {
@@ -128,6 +130,18 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		}
 	}
 	return out, nil
+}
+
+// left tells what share of the noise is left at a frequency where orders were taken out.
+func left(turning []order.Rotor, set settings, rate float64) func(f float64) float64 {
+	var speeds [][]float64
+	for _, rotor := range turning {
+		speeds = append(speeds, rotor.Speed)
+	}
+	// Cells as wide as a line, so that the share does not jump between those that happen to be visited.
+	step := max(1, 2/set.span)
+	cells := order.Left(speeds, order.RemoveSettings{Rate: rate, Orders: set.orders, Span: set.span}, step)
+	return func(f float64) float64 { return cells[min(max(0, int(math.Round(f/step))), len(cells)-1)] }
 }
 
 // floors returns, by channel and band, the mean density of the rest within it.

@@ -36,11 +36,14 @@ recorded, and finds the modes behind what is left: frequency, damping and the
 direction that the gyro sees, each with its standard error.
 
 Models of rising order are fitted to the covariances of all axes together
-(covariance-driven stochastic subspace identification). A pole that keeps its
-frequency, damping and direction over two fifths of the models is a mode, if its
-frequency is sure to 2 % and its damping to a half. Poles where a rotor order is
-or was, and lines that are steady in amplitude, are told apart from structure. Where
-speeds are followed in the signal (find_rotors), orders are only told apart.
+(covariance-driven stochastic subspace identification); poles that stay as the order
+rises are clustered. Then a model of high order is fitted to all cross spectra at
+greatest likelihood, and poles that they do not need are taken out. A pole is a mode
+if the spectra need it much, or need it and it stays over two fifths of the models; if
+its frequency is sure to 1 %, its damping to 30 % and its direction to 15 deg.
+Poles where a rotor order is or was, and lines that are steady in amplitude, are
+told apart from structure. Where speeds are followed in the signal (find_rotors),
+orders are only told apart.
 
 The frame is taken to be driven by broadband force. In flight, the loop of the
 control changes what is seen near and below its bandwidth.`,
@@ -151,7 +154,7 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	}
 	call.Report.Progress("modes", -1)
 	found, err := identify.Identify(lines.record, identify.Settings{
-		From: set.from, To: set.to, Order: set.order, MaxDamping: set.damping, Bands: lines.bands, Threads: call.Threads,
+		From: set.from, To: set.to, Order: set.order, MaxDamping: set.damping, Bands: lines.bands, Left: lines.left, Threads: call.Threads,
 	})
 	if err != nil {
 		return nil, gather.Explain(refuse(err), set.File)
@@ -184,7 +187,7 @@ func collect(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 	for _, m := range found.Modes {
 		mode := kinds.IdentifiedMode{
 			Kind: string(m.Kind), Reason: m.Reason, Frequency: m.Frequency, FrequencyError: m.FrequencyError, Damping: m.Damping, DampingError: m.DampingError,
-			Direction: m.Direction, DirectionError: m.DirectionError, Collinearity: m.Collinearity, Models: m.Share, FirstOrder: m.First, Kurtosis: m.Kurtosis,
+			Direction: m.Direction, DirectionError: m.DirectionError, Collinearity: m.Collinearity, Models: m.Share, FirstOrder: m.First, Kurtosis: m.Kurtosis, Worth: m.Worth,
 			PeakFrequency: m.PeakFrequency, PeakDamping: m.PeakDamping,
 		}
 		for _, v := range m.Shape {

@@ -44,6 +44,7 @@ var IdentifiedKind = artifact.Kind{
 			col("models", artifact.Float, "1", "share of the models that have it"),
 			col("first_order", artifact.Int, "", "lowest order that has it"),
 			col("kurtosis", artifact.Float, "1", "of the band about it; 3 for the response to noise, 1.5 for a steady line; NaN if not known"),
+			col("worth", artifact.Float, "1", "by how much the log-likelihood of the spectra would sink without it, at least; 0 if they need it not, NaN if no model was fitted to them"),
 			col("peak_frequency", artifact.Float, "Hz", "of the same mode by decomposition of the cross spectra; NaN if it shows none"),
 			col("peak_damping", artifact.Float, "1", "damping ratio by the same; NaN if it shows none"),
 		)},
@@ -160,7 +161,7 @@ type IdentifiedMode struct {
 	ShapeReal, ShapeImaginary  []float64
 	Models                     float64
 	FirstOrder                 int
-	Kurtosis                   float64
+	Kurtosis, Worth            float64
 	PeakFrequency, PeakDamping float64
 }
 
@@ -206,6 +207,7 @@ func EncodeIdentified(x *Identified) *artifact.Artifact {
 		Set("models", float(func(m IdentifiedMode) float64 { return m.Models })).
 		Set("first_order", list(x.Modes, func(m IdentifiedMode) int64 { return int64(m.FirstOrder) })).
 		Set("kurtosis", float(func(m IdentifiedMode) float64 { return m.Kurtosis })).
+		Set("worth", float(func(m IdentifiedMode) float64 { return m.Worth })).
 		Set("peak_frequency", float(func(m IdentifiedMode) float64 { return m.PeakFrequency })).
 		Set("peak_damping", float(func(m IdentifiedMode) float64 { return m.PeakDamping }))
 	a.Table("diagram").
@@ -252,7 +254,7 @@ func DecodeIdentified(a *artifact.Artifact) (*Identified, error) {
 			Damping: t.Floats("damping")[i], DampingError: t.Floats("damping_error")[i], Direction: t.FloatLists("direction")[i],
 			DirectionError: t.Floats("direction_error")[i], Collinearity: t.Floats("collinearity")[i], ShapeReal: t.FloatLists("shape_real")[i],
 			ShapeImaginary: t.FloatLists("shape_imaginary")[i], Models: t.Floats("models")[i], FirstOrder: int(t.Ints("first_order")[i]),
-			Kurtosis: t.Floats("kurtosis")[i], PeakFrequency: t.Floats("peak_frequency")[i], PeakDamping: t.Floats("peak_damping")[i],
+			Kurtosis: t.Floats("kurtosis")[i], Worth: t.Floats("worth")[i], PeakFrequency: t.Floats("peak_frequency")[i], PeakDamping: t.Floats("peak_damping")[i],
 		}
 		if len(m.Direction) != l || len(m.ShapeReal) != l || len(m.ShapeImaginary) != l || !(m.Frequency > 0) {
 			return nil, malformed("identified", "mode %d at %g Hz does not fit %d channels", i, m.Frequency, l)

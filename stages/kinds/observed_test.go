@@ -105,7 +105,7 @@ func sampleIdentified() *Identified {
 		Channels: []IdentifiedChannel{{"roll", "angular rate", "gx", 0.2}, {"pitch", "angular rate", "-gy", 0.1}},
 		Modes: []IdentifiedMode{{Kind: ModeStructure, Reason: "r", Frequency: 100, FrequencyError: 0.3, Damping: 0.02, DampingError: 0.001,
 			Direction: []float64{1, 0}, DirectionError: 0.1, Collinearity: 0.9, ShapeReal: []float64{1, 2}, ShapeImaginary: []float64{0, 1},
-			Models: 0.7, FirstOrder: 6, Kurtosis: 3, PeakFrequency: 101, PeakDamping: 0.03}},
+			Models: 0.7, FirstOrder: 6, Kurtosis: 3, Worth: 70, PeakFrequency: 101, PeakDamping: 0.03}},
 		Diagram:  []IdentifiedPole{{Order: 6, Frequency: 100, Damping: 0.02, Stable: true, Mode: 0}},
 		Singular: [][]float64{{1, 2, 3}, {0, 1, 0}},
 		Removed:  []RemovedOrder{{"roll", "fr", 1, 0.1}},

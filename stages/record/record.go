@@ -25,15 +25,24 @@ func (Stage) Describe() stage.Description {
 		Name:  "record",
 		About: "read a recording and describe it by spectra",
 		Doc: `Reads a recording, checks its times and values, and gives one-sided Welch spectra
-per axis with their bounds and peaks, and the bands in which the orders of rotors
-with a recorded speed appear.
+per axis with their bounds and peaks, the coherence of axes with each other and with
+their set-points, maps of the spectra over time, throttle and rotor speed, and the
+bands in which the orders of rotors with a recorded speed appear.
 
-Columns are named in columns and rotors, or found by generic words such as "time",
-"gyro x" and "rpm"; what was found is told. A minus before a column turns its
-sign. Axes are those of the airframe: x forward, y left, z up.
+Columns are named by role, or found by generic words such as "time", "gyro x", "rpm",
+"throttle" and "target"; what was found is told. A minus before a column turns its
+sign. Axes are those of the airframe: x forward, y left, z up; a sensor that is turned
+otherwise states its mounting. A column with a clock of its own names it in clocks;
+a sensor with a rate of its own is described in a step of its own.
 
-The sample rate is that between gaps, and no segment straddles a gap. The window
-refers to the time column; where that counts from an epoch, to its first row.`,
+Without a window, the steady pieces of the flight are used: by rotor speed, or else
+throttle, without ground time, the two seconds after a take-off and the last before a
+landing. The maps show all of it. The sample rate is that between gaps, and no segment
+straddles a gap. Times are those of the time column; where it counts from an epoch,
+from its first row.
+
+Few rows that cannot be read, or whose times go back, are left out and told (up to one
+in a hundred), as is a packed file that ends in its middle.`,
 		Arguments: append(gather.Arguments(), []stage.Argument{
 			{Name: "blades", About: "blades of each rotor, 0 if not known", Type: stage.Type{Kind: stage.Whole}, Default: 0.0, Example: "3", Min: &zero},
 			{Name: "orders", About: "multiples of the rotor speed whose bands are kept", Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Number}},

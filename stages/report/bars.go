@@ -35,45 +35,36 @@ type piece struct {
 // pieceClasses is how many looks of pieces the page tells apart; the last is for what is left.
 const pieceClasses = 7
 
-// energyBars shows for each mode in the band where its strain energy is.
+// energyBars shows for each mode where its strain energy is, the greatest share first.
 func energyBars(m *kinds.Modes) *bars {
-	b := &bars{ID: "energy-bars", Title: "Where each mode bends", About: "Share of the strain energy in each part, joint and mount. Press a mode to see it move."}
-	total := make([]float64, len(m.Survey.Groups))
-	for _, x := range m.Survey.Modes {
-		if x.Frequency <= m.UpTo {
-			for i, s := range x.ByGroup {
-				total[i] += s
-			}
-		}
-	}
-	order := make([]int, len(total))
-	for i := range order {
-		order[i] = i
-	}
-	sort.SliceStable(order, func(i, j int) bool { return total[order[i]] > total[order[j]] })
-	class := map[int]string{}
-	for rank, i := range order {
-		if rank < pieceClasses-1 && total[i] > 0 {
-			class[i] = fmt.Sprintf("p%d", rank)
-			b.Keys = append(b.Keys, barKey{m.Survey.Groups[i], class[i], ""})
-		}
-	}
-	b.Keys = append(b.Keys, barKey{"all others", fmt.Sprintf("p%d", pieceClasses-1), ""})
+	b := &bars{ID: "energy-bars", Title: "Where each mode bends", About: "Share of the strain energy in each part, joint and mount, the greatest first. Press a mode to see it move.",
+		Keys: []barKey{{"greatest", "p0", ""}, {"second", "p1", ""}, {"third", "p5", ""}, {"fourth", "p3", ""}, {"all others", "p6", ""}}}
+	classes := []string{"p0", "p1", "p5", "p3"}
 	for _, x := range m.Survey.Modes {
 		if x.Frequency > m.UpTo || len(b.Rows) == mostPictures {
 			break
 		}
-		row := barRow{Name: fmt.Sprintf("mode %d, %.1f\u00a0Hz", x.Number, x.Frequency), Mode: x.Number, Said: largest(m.Survey.Groups, x.ByGroup, 3)}
+		row := barRow{Name: fmt.Sprintf("mode %d, %.1f\u00a0Hz", x.Number, x.Frequency), Mode: x.Number, Said: largest(m.Survey.Groups, x.ByGroup, 4)}
+		order := make([]int, len(x.ByGroup))
+		for i := range order {
+			order[i] = i
+		}
+		sort.SliceStable(order, func(i, j int) bool { return x.ByGroup[order[i]] > x.ByGroup[order[j]] })
 		rest := 1.0
-		for _, i := range order {
-			if class[i] == "" || x.ByGroup[i] < 0.005 {
-				continue
+		for rank, i := range order {
+			if rank == len(classes) || x.ByGroup[i] < 0.005 {
+				break
 			}
-			row.Pieces = append(row.Pieces, newPiece(class[i], m.Survey.Groups[i], x.ByGroup[i]))
+			q := newPiece(classes[rank], m.Survey.Groups[i], x.ByGroup[i])
+			q.Text = ""
+			if x.ByGroup[i] > 0.02*float64(len([]rune(m.Survey.Groups[i]))) {
+				q.Text = m.Survey.Groups[i]
+			}
+			row.Pieces = append(row.Pieces, q)
 			rest -= x.ByGroup[i]
 		}
 		if rest > 0.005 {
-			row.Pieces = append(row.Pieces, newPiece(fmt.Sprintf("p%d", pieceClasses-1), "all others", rest))
+			row.Pieces = append(row.Pieces, newPiece("p6", "all others", rest))
 		}
 		b.Rows = append(b.Rows, row)
 	}

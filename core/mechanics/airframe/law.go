@@ -14,7 +14,8 @@ const (
 	// Constant: the stiffness holds at every frequency.
 	Constant LawKind = ""
 	// Table: storage ratio and loss factor at given frequencies, straight
-	// between them over the logarithm of frequency, held beyond the ends.
+	// between them over the logarithm of frequency, held beyond the ends. That the
+	// two fit each other, as they must in a causal material, is not checked.
 	Table LawKind = "table"
 	// Fractional: a spring beside a fractional dashpot, k + c (iω)^α (R. L.
 	// Bagley and P. J. Torvik, A theoretical basis for the application of

@@ -26,6 +26,14 @@
 // right singular vectors O, A and the modes to first order. The variance is that of the jackknife (B. Efron, The
 // Jackknife, the Bootstrap and Other Resampling Plans, 1982), to which the scatter over the orders of the cluster is added.
 //
+// Likelihood. Such a model in innovation form, y = H(z)·e with white e, has the spectrum H·Σ·Hᴴ, and each averaged cross-spectral
+// matrix of the record scatters about it as a complex Wishart matrix, independent of its neighbours (P. Whittle, The analysis of multiple
+// stationary time series, J. R. Statist. Soc. B 15, 1953). Fisher scoring raises the likelihood over poles, shapes and forces together; poles
+// without which it hardly sinks are taken out; the inverse of the information is the covariance of what is left, close neighbours and
+// all. A pole is told alone if it is worth more than half the logarithm of the number of values for each of its
+// parameters (G. Schwarz, Estimating the dimension of a model, Ann. Statist. 6, 1978), otherwise only if its cluster reaches
+// through the models.
+//
 // Decomposition. The cross-spectral matrix of all channels is decomposed into singular values per bin; a peak of the first
 // one is a mode whose shape is the singular vector. Around it the bins whose vector agrees with that shape are turned into
 // a covariance, whose zero crossings and decay give frequency and damping (R. Brincker, L. Zhang, P. Andersen, Modal

@@ -18,8 +18,10 @@ type Settings struct {
 	Groups     int     // groups of time behind the uncertainty; 0 means 20
 	MaxDamping float64 // ζ above which a pole is no mode; 0 means 0.2
 	Bands      []Band  // where lines of machines may be
-	Segment    int     // samples of a segment of the decomposition; 0 means bins of about From/160
-	Threads    int
+	// Left is the share of the noise that is left at a frequency in Hz where lines were taken out; nil means all.
+	Left    func(f float64) float64
+	Segment int // samples of a segment of the decomposition; 0 means bins of about From/160
+	Threads int
 
 	fixed bool // Order was given
 }
@@ -49,6 +51,12 @@ type Mode struct {
 	Kurtosis                  float64   // of the band about it; NaN if not known
 	// PeakFrequency and PeakDamping are those of the decomposition; NaN where it shows no peak of this shape.
 	PeakFrequency, PeakDamping float64
+	// Worth is by how much the log-likelihood of the spectra would sink without it; NaN if no model was fitted to them, 0 for a cluster that
+	// such a model has no use for.
+	Worth float64
+
+	cluster int  // of the diagram, -1 for none
+	lone    bool // worth too little to be told without a cluster that reaches through the models
 }
 
 // Result is what was found.
@@ -70,15 +78,16 @@ const (
 	reach         = 0.04 // distance within a cluster
 	leastOrder    = 20   // highest order of a record without modes
 	mostOrder     = 120
-	leastOrders   = 6     // parts of the orders that a cluster must have: one in six
-	enoughOrders  = 0.4   // share of the orders that a mode must have
-	members       = 8     // of a cluster whose errors are computed
-	sureFrequency = 0.015 // largest relative standard error of a mode's frequency
-	sureDamping   = 0.5   // and of its damping
-	steadyBelow   = 2.1   // kurtosis below which a band holds a steady line
-	analysedRate  = 2.5   // sample rate kept, over To
-	agrees        = 2.0   // combined standard errors within which two estimates agree
-	sameShape     = 0.8   // least agreement of shapes of one mode
+	leastOrders   = 6    // parts of the orders that a cluster must have: one in six
+	enoughOrders  = 0.4  // share of the orders that a mode must have
+	members       = 8    // of a cluster whose errors are computed
+	sureFrequency = 0.01 // largest relative standard error of a mode's frequency
+	sureDamping   = 0.3  // and of its damping
+	sureAngle     = math.Pi / 12
+	steadyBelow   = 2.1 // kurtosis below which a band holds a steady line
+	analysedRate  = 2.5 // sample rate kept, over To
+	agrees        = 2.0 // combined standard errors within which two estimates agree
+	sameShape     = 0.8 // least agreement of shapes of one mode
 )
 
 // Identify finds the modes of a record. It returns ErrDegenerate, or an error of spectrum.CrossMatrix for a record
@@ -86,7 +95,8 @@ const (
 //
 // Models are fitted twice, with all lags and with half of them. Fewer lags know less of narrow neighbours but scatter less:
 // where both agree within their errors, the surer one counts, otherwise that of all lags (after O. V. Lepski, On a problem
-// of adaptive estimation in Gaussian white noise, Theory Probab. Appl. 35, 1991).
+// of adaptive estimation in Gaussian white noise, Theory Probab. Appl. 35, 1991). Then a model of high order is fitted to
+// the spectra; where that succeeds its modes count, and clusters that it has no use for are doubtful.
 func Identify(r Record, s Settings) (*Result, error) {
 	r.check()
 	s = s.filled(r)
@@ -110,14 +120,27 @@ func Identify(r Record, s Settings) (*Result, error) {
 	if !c.finite() {
 		return nil, spectrum.ErrNotFinite
 	}
-	fine, err := level(c, out.Rows, s, out)
+	fine, sub, err := level(c, out.Rows, s, out)
 	if err != nil {
 		return nil, err
 	}
 	if half := out.Rows / 2; half >= 8 {
-		coarse, err := level(c, half, s, nil)
+		coarse, _, err := level(c, half, s, nil)
 		if err == nil {
 			surer(fine, coarse)
+		}
+	}
+	if likely, ok := refine(thin, sub, c, fine, s, out.Order); ok {
+		fine = settle(fine, likely)
+		rows := map[int]int{-1: -1}
+		for i, m := range fine {
+			if m.cluster >= 0 {
+				rows[m.cluster] = i
+			}
+		}
+		for i := range out.Diagram.Entries {
+			e := &out.Diagram.Entries[i]
+			e.Mode = rows[e.Mode]
 		}
 	}
 	for i := range fine {
@@ -184,10 +207,10 @@ func centred(r Record) Record {
 }
 
 // level finds the modes with i block rows. The diagram is kept in out, if there is one.
-func level(c *Covariance, rows int, s Settings, out *Result) ([]Mode, error) {
+func level(c *Covariance, rows int, s Settings, out *Result) ([]Mode, *Subspace, error) {
 	sub, err := Decompose(c.Mean(-1), c.Channels, rows, c.Rate, Canonical)
 	if err != nil {
-		return nil, err
+		return nil, nil, err
 	}
 	order := min(s.Order, (rows-1)*c.Channels)
 	if !s.fixed {
@@ -206,18 +229,19 @@ func level(c *Covariance, rows int, s Settings, out *Result) ([]Mode, error) {
 		for _, i := range entries {
 			d.Entries[i].Mode = len(modes)
 		}
+		mode.cluster = len(modes)
 		modes = append(modes, mode)
 	}
 	if out != nil {
 		out.Diagram, out.Singular, out.Order = d, sub.Singular, order
 	}
-	return modes, nil
+	return modes, sub, nil
 }
 
 // mode sums up a cluster: frequency and damping are means over members spread over its orders, without the lowest, and the
 // shape is that of the surest. Orders far above the rank scatter, so the surest members dominate the means.
 func (s *Subspace) mode(d *Diagram, models map[int]*model, entries []int, deltas []*mat.Dense) (Mode, bool) {
-	m := Mode{Kind: Structure, Orders: len(entries), First: d.Entries[entries[0]].Order, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN()}
+	m := Mode{Kind: Structure, Orders: len(entries), First: d.Entries[entries[0]].Order, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN(), Worth: math.NaN()}
 	m.Share = float64(len(entries)) / float64(len(d.Orders))
 	wanted := 1
 	if m.Share >= enoughOrders {
@@ -280,7 +304,7 @@ func surer(fine, coarse []Mode) {
 		if count != 1 || c.FrequencyError >= fine[partner].FrequencyError || c.DampingError >= fine[partner].DampingError {
 			continue
 		}
-		c.Orders, c.First, c.Share = fine[partner].Orders, fine[partner].First, fine[partner].Share
+		c.Orders, c.First, c.Share, c.cluster = fine[partner].Orders, fine[partner].First, fine[partner].Share, fine[partner].cluster
 		fine[partner] = c
 	}
 }
@@ -306,12 +330,20 @@ func (m *Mode) judge(r Record, s Settings, d *Decomposition) {
 		set(Line, "steady in amplitude: kurtosis %.2f, where the response to noise has 3", m.Kurtosis)
 	case in:
 		set(Doubtful, "narrow, and a line was taken out there, %.1f to %.1f Hz: maybe its remains", b.Low, b.High)
-	case m.Share < enoughOrders:
+	case m.Worth == 0:
+		set(Doubtful, "the spectra are explained as well without it")
+	case m.lone && m.Orders == 0:
+		set(Doubtful, "models of rising order do not settle on it, and the spectra need it little")
+	case m.lone && m.Share < enoughOrders:
+		set(Doubtful, "only %.0f %% of the models have it, and the spectra need it little", 100*m.Share)
+	case math.IsNaN(m.Worth) && m.Share < enoughOrders:
 		set(Doubtful, "only %.0f %% of the models have it", 100*m.Share)
 	case m.FrequencyError > sureFrequency*m.Frequency:
 		set(Doubtful, "its frequency is not sure to %g %%", 100*sureFrequency)
 	case m.DampingError > sureDamping*m.Damping:
 		set(Doubtful, "its damping is not sure to %g %%", 100*sureDamping)
+	case m.DirectionError > sureAngle:
+		set(Doubtful, "its direction is not sure to %.0f deg", sureAngle*180/math.Pi)
 	}
 }
 
@@ -329,12 +361,21 @@ func band(bands []Band, f, width float64) (Band, bool) {
 	return Band{}, false
 }
 
+// less tells whether a is the less sure of two modes, by worth or by the models that have it; later settles a tie.
+func less(a, b *Mode, later bool) bool {
+	x, y := a.Worth, b.Worth
+	if math.IsNaN(x) || math.IsNaN(y) {
+		x, y = float64(a.Orders), float64(b.Orders)
+	}
+	return x < y || x == y && later
+}
+
 // repeats marks the less sure of two modes that cannot be told apart.
 func repeats(modes []Mode) {
 	for i := range modes {
 		for j := range modes {
 			a, b := &modes[i], &modes[j]
-			if i == j || a.Kind != Structure || b.Kind != Structure || a.Orders >= b.Orders && !(a.Orders == b.Orders && i > j) {
+			if i == j || a.Kind != Structure || b.Kind != Structure || !less(a, b, i > j) {
 				continue
 			}
 			if math.Abs(a.Frequency-b.Frequency) <= agrees*math.Hypot(a.FrequencyError, b.FrequencyError) && Agreement(a.Shape, b.Shape) >= sameShape {

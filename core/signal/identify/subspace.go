@@ -52,15 +52,15 @@ func Decompose(r [][]float64, channels, rows int, rate float64, w Weighting) (*S
 	t := toeplitz(r, channels, rows)
 	s := &Subspace{Rate: rate, Channels: channels, Rows: rows}
 	weighted := t
-	var future, past *mat.TriDense
+	var past *mat.TriDense
 	if w == Canonical {
 		var ok bool
-		if future, past, ok = roots(r, channels, rows); !ok {
+		if past, ok = root(r, channels, rows); !ok {
 			return nil, ErrDegenerate
 		}
-		// L1⁻¹·T·L2⁻ᵀ by two solves with triangles.
+		// L⁻¹·T·L⁻ᵀ by two solves with triangles.
 		var half, full mat.Dense
-		if half.Solve(future, t) != nil {
+		if half.Solve(past, t) != nil {
 			return nil, ErrDegenerate
 		}
 		if full.Solve(past, half.T()) != nil {
@@ -132,10 +132,11 @@ func toeplitz(r [][]float64, l, rows int) *mat.Dense {
 	return t
 }
 
-// roots returns the lower Cholesky factors of the covariances of future (y[j], y[j+1], …) and past (y[j-1], y[j-2], …).
-func roots(r [][]float64, l, rows int) (future, past *mat.TriDense, ok bool) {
+// root returns the lower Cholesky factor of the covariance of (y[j], y[j+1], …, y[j+i-1]): that of the future, and that of the past,
+// whose samples T takes in the same rising order.
+func root(r [][]float64, l, rows int) (*mat.TriDense, bool) {
 	n := rows * l
-	f, p := mat.NewSymDense(n, nil), mat.NewSymDense(n, nil)
+	f := mat.NewSymDense(n, nil)
 	for a := range rows {
 		for b := range rows {
 			for x := range l {
@@ -144,37 +145,28 @@ func roots(r [][]float64, l, rows int) (future, past *mat.TriDense, ok bool) {
 					if j < i {
 						continue
 					}
-					// Future: E y[j+a] y[j+b]ᵀ = R_{a-b}, with R_{-k} = R_kᵀ. Past: a and b change places.
-					up, down := r[b-a][y*l+x], r[b-a][x*l+y]
-					f.SetSym(i, j, up)
-					p.SetSym(i, j, down)
+					// E y[j+a]·y[j+b]ᵀ = R_{a-b}, with R_{-k} = R_kᵀ.
+					f.SetSym(i, j, r[b-a][y*l+x])
 				}
 			}
 		}
 	}
-	factor := func(m *mat.SymDense) (*mat.TriDense, bool) {
-		// Covariances averaged over different numbers of pairs need not be positive definite, and a channel may hold
-		// hardly any noise: a little on the diagonal mends both.
-		for _, ridge := range []float64{0, 1e-9, 1e-7, 1e-5, 1e-3} {
-			c := mat.NewSymDense(n, nil)
-			c.CopySym(m)
-			for i := range n {
-				c.SetSym(i, i, m.At(i, i)*(1+ridge))
-			}
-			var chol mat.Cholesky
-			if chol.Factorize(c) && chol.Cond() < 1e14 {
-				var out mat.TriDense
-				chol.LTo(&out)
-				return &out, true
-			}
+	// Covariances averaged over different numbers of pairs need not be positive definite, and a channel may hold hardly any noise: a
+	// little on the diagonal mends both.
+	for _, ridge := range []float64{0, 1e-9, 1e-7, 1e-5, 1e-3} {
+		c := mat.NewSymDense(n, nil)
+		c.CopySym(f)
+		for i := range n {
+			c.SetSym(i, i, f.At(i, i)*(1+ridge))
 		}
-		return nil, false
+		var chol mat.Cholesky
+		if chol.Factorize(c) && chol.Cond() < 1e14 {
+			var out mat.TriDense
+			chol.LTo(&out)
+			return &out, true
+		}
 	}
-	if future, ok = factor(f); !ok {
-		return nil, nil, false
-	}
-	past, ok = factor(p)
-	return future, past, ok
+	return nil, false
 }
 
 // model is A of one order with its eigenvectors.

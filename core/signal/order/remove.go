@@ -25,6 +25,8 @@ type Removed struct {
 	Power [][][]float64
 }
 
+const defaultSpan = 2 // s
+
 // ridge, over the mean of the diagonal, keeps lines that coincide within a span from being told apart by noise.
 const ridge = 1e-3
 
@@ -54,7 +56,7 @@ func Remove(channels, speeds [][]float64, s RemoveSettings) Removed {
 	}
 	span := s.Span
 	if span == 0 {
-		span = 2
+		span = defaultSpan
 	}
 	half := max(4, int(math.Round(span*s.Rate/2)))
 	count := (n + half - 1) / half // spans 2·half long begin at (k-1)·half, k = 0 … count
@@ -97,6 +99,37 @@ func Remove(channels, speeds [][]float64, s RemoveSettings) Removed {
 				}
 			}
 		}
+	}
+	return out
+}
+
+// Left returns, for frequencies in cells of step Hz from 0 Hz to half the rate, the share of the noise of other origin that Remove leaves: each line
+// takes that of a band 2/Span wide, where it is at the time.
+func Left(speeds [][]float64, s RemoveSettings, step float64) []float64 {
+	if !(s.Rate > 0) || !(step > 0) {
+		panic("order: rate and cell width must be above zero")
+	}
+	span := s.Span
+	if span == 0 {
+		span = defaultSpan
+	}
+	out := make([]float64, int(math.Ceil(s.Rate/2/step))+1)
+	for k := range out {
+		out[k] = 1
+	}
+	for _, speed := range speeds {
+		for _, v := range speed {
+			if !(v > 0) || math.IsInf(v, 0) {
+				continue
+			}
+			for _, n := range s.Orders {
+				cell := min(int(math.Round(Fold(n*v, s.Rate)/step)), len(out)-1)
+				out[cell] -= 2 / span / step / float64(len(speed))
+			}
+		}
+	}
+	for k := range out {
+		out[k] = max(0, out[k])
 	}
 	return out
 }

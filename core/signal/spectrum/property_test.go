@@ -14,7 +14,7 @@ func tried(t *testing.T, f func(t *testing.T, s Settings, x []float64)) {
 	lengths := []int{2, 3, 7, 8, 15, 16, 60, 100, 128, 250, 256, 1000, 1024}
 	for i := range 120 {
 		n := lengths[i%len(lengths)]
-		s := Settings{Rate: 1 + 3000*(source.Uniform()+0.5), Segment: n, Overlap: int((source.Uniform()+0.5) * float64(n)), Window: Window(i % int(windowCount)),
+		s := Settings{Rate: 1 + 3000*(source.Uniform()+0.5), Segment: n, Overlap: int((source.Uniform() + 0.5) * float64(n)), Window: Window(i % int(windowCount)),
 			Detrend: []Detrend{DetrendConstant, DetrendNone, DetrendLinear}[i%3]}
 		s.Overlap = min(s.Overlap, n-1)
 		if n < 8 {

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"os"
 	"slices"
 
 	"hushframe/core/mechanics/airframe"
@@ -14,8 +15,6 @@ import (
 	"hushframe/core/mechanics/modal"
 	"hushframe/jobs/inprocess"
 	"hushframe/stages/kinds"
-
-	"os"
 )
 
 // upTo is how far modes are solved, Hz: 1.5 times the sweep.

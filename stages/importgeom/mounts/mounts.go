@@ -69,10 +69,10 @@ func Names() []string {
 // Text is the table as users read it.
 func Text() string {
 	var b strings.Builder
-	fmt.Fprintf(&b, "%-22s %-18s %-16s %s\n", "name", "N/mm across, along", "loss at 100 Hz", "scatter, what it is")
+	fmt.Fprintf(&b, "%-22s %-14s %-17s %-8s %s\n", "name", "N/mm x, y, z", "loss at 100 Hz", "scatter", "what it is, each")
 	for _, m := range table {
-		fmt.Fprintf(&b, "%-22s %-18s %-16s x/%.2g  %s\n", m.Name, fmt.Sprintf("%.3g, %.3g", m.Stiffness[0]/1e3, m.Stiffness[2]/1e3),
-			fmt.Sprintf("%.2g, %.2g", m.Loss[0], m.Loss[2]), m.Scatter, m.About)
+		fmt.Fprintf(&b, "%-22s %-14s %-17s %-8s %s\n", m.Name, fmt.Sprintf("%.3g, %.3g, %.3g", m.Stiffness[0]/1e3, m.Stiffness[1]/1e3, m.Stiffness[2]/1e3),
+			fmt.Sprintf("%.2g, %.2g, %.2g", m.Loss[0], m.Loss[1], m.Loss[2]), fmt.Sprintf("x/%.2g", m.Scatter), m.About)
 	}
 	return b.String()
 }

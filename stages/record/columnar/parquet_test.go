@@ -44,7 +44,10 @@ func parquetSample(t testing.TB, groups, rows int, codec compress.Compression) [
 	w := file.NewParquetWriter(&out, root, file.WithWriterProps(parquet.NewWriterProperties(parquet.WithCompression(codec), parquet.WithDataPageSize(2048))))
 	at := 0
 	for range groups {
-		g := w.AppendRowGroup()
+		g, err := w.AppendRowGroupChecked()
+		if err != nil {
+			t.Fatal(err)
+		}
 		next := func() file.ColumnChunkWriter {
 			c, err := g.NextColumn()
 			if err != nil {

@@ -20,7 +20,8 @@ type layout struct {
 	text      []bool // fields that hold something else than numbers
 	stamp     []bool // fields that hold times of day
 	named     bool   // the names are those of the recording
-	rate      float64
+	rate      float64 // stated above the rows, Hz; 0 for none
+	rates     bool    // several are, and they differ
 }
 
 const blank = ' '
@@ -152,7 +153,7 @@ func (c candidate) layout(lines [][]byte) (layout, bool) {
 	if l.first < 0 {
 		return layout{}, false
 	}
-	l.rate = statedRate(lines[:l.first], l.point)
+	l.rate, l.rates = statedRate(lines[:l.first], l.point)
 	l.text, l.stamp = make([]bool, c.fields), make([]bool, c.fields)
 	for j := range l.text {
 		l.stamp[j] = c.numeric[j] && j < len(c.cells[l.first]) && isStamp(c.cells[l.first][j])
@@ -387,6 +388,9 @@ func (l layout) header() recording.Header {
 		if s.mark == l.separator && l.fields > 1 {
 			h.Notes = append(h.Notes, "fields are separated by "+s.name)
 		}
+	}
+	if l.rates {
+		h.Notes = append(h.Notes, "the lines above the samples state rates that differ; none is believed")
 	}
 	if l.rate > 0 {
 		h.Notes = append(h.Notes, fmt.Sprintf("the lines above the samples state a rate of %.6g Hz", l.rate))

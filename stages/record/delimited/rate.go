@@ -2,26 +2,26 @@ package delimited
 
 import (
 	"bytes"
+	"math"
 	"slices"
 	"strings"
 	"unicode"
 )
 
 // statedRate looks for the sample rate that the lines above the rows state, by key and value: "sample rate: 2 kHz", "fs,2000",
-// "delta_x\t0.0005". It returns Hz, 0 where nothing is stated or the lines contradict each other.
-func statedRate(lines [][]byte, point byte) float64 {
-	found := 0.0
+// "delta_x\t0.0005". It returns Hz, 0 where nothing is stated or, with twice set, where the lines contradict each other.
+func statedRate(lines [][]byte, point byte) (found float64, twice bool) {
 	for _, line := range lines {
 		rate := rateOf(uncomment(line), point)
 		switch {
 		case rate == 0:
 		case found == 0:
 			found = rate
-		case found != rate:
-			return 0
+		case math.Abs(rate/found-1) > 1e-3:
+			return 0, true
 		}
 	}
-	return found
+	return found, false
 }
 
 func rateOf(line []byte, point byte) float64 {

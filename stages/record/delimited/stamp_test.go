@@ -53,14 +53,17 @@ func TestStatedRate(t *testing.T) {
 		"rate of descent: 3": 0, "frequency: 100": 0, "sample rate: none": 0, "sample rate: -5": 0, "Delta_X\t0.1\t0.1\t0.1": 10, "Delta_X\t0.1\t0.2": 0, "baud rate: 115200": 0,
 		"# sample rate = 8000 Hz": 8000,
 	} {
-		if got := statedRate([][]byte{[]byte(text)}, '.'); math.Abs(got-want) > 1e-9*want {
+		if got, _ := statedRate([][]byte{[]byte(text)}, '.'); math.Abs(got-want) > 1e-9*want {
 			t.Errorf("%q states %g Hz, want %g", text, got, want)
 		}
 	}
-	if got := statedRate([][]byte{[]byte("fs: 100"), []byte("sample rate: 200")}, '.'); got != 0 {
+	if got, twice := statedRate([][]byte{[]byte("fs: 100"), []byte("sample rate: 200")}, '.'); got != 0 || !twice {
 		t.Errorf("two rates make %g", got)
 	}
-	if got := statedRate([][]byte{[]byte("sample rate; 1600,5 Hz")}, ','); got != 1600.5 {
+	if got, twice := statedRate([][]byte{[]byte("fs: 100"), []byte("dt: 0.01")}, '.'); got != 100 || twice {
+		t.Errorf("the same rate twice makes %g", got)
+	}
+	if got, _ := statedRate([][]byte{[]byte("sample rate; 1600,5 Hz")}, ','); got != 1600.5 {
 		t.Errorf("a decimal comma makes %g", got)
 	}
 }

@@ -63,7 +63,7 @@ type builder struct {
 	words labels
 }
 
-// holds says whether a point lies within the chart; what lies above or below it is kept on the border.
+// holds says whether a place lies within the chart from left to right and has a value.
 func (b *builder) holds(x, y float64) bool {
 	return x >= b.ch.X.From && x <= b.ch.X.To && !math.IsNaN(y) && !math.IsInf(y, 0) && (!b.ch.Y.Log || y > 0)
 }
@@ -142,10 +142,7 @@ func (b *builder) curves() {
 			}
 		}
 		var last plotter.XYs
-		for _, piece := range pieces(c.X, c.Y, b.holds) {
-			for i := range piece {
-				piece[i].Y = b.clip(piece[i].Y)
-			}
+		for _, piece := range path(b.ch, c.X, c.Y) {
 			drawn := line(piece, l.colour, l.width, l.dashes...)
 			b.p.Add(drawn)
 			if !named && !l.over && plain <= fewNames {
@@ -159,19 +156,10 @@ func (b *builder) curves() {
 			if b.ch.Grid != nil {
 				words = ink
 			}
-			x, y := nameAt(last, b.ch.Y.To)
-			b.put(x, y, c.Name, words, -3, 1, text.XRight, text.YBottom, -18, -33, -48)
+			end := last[len(last)-1]
+			b.put(end.X, end.Y, c.Name, words, -3, 1, text.XRight, text.YBottom, -18, -33, -48)
 		}
 	}
-}
-
-// nameAt is where the name of a curve stands: at its end, or where it leaves the chart at the top.
-func nameAt(points plotter.XYs, top float64) (x, y float64) {
-	k := len(points) - 1
-	for k > 0 && points[k].Y >= top {
-		k--
-	}
-	return points[k].X, points[k].Y
 }
 
 // dashes tell curves without a look of their own apart.

@@ -13,6 +13,8 @@ import (
 	"strings"
 	"testing"
 
+	"gonum.org/v1/plot/plotter"
+
 	"hushframe/stages/report/draw"
 )
 
@@ -149,6 +151,39 @@ func TestScales(t *testing.T) {
 	}
 	if share := (at[5] - at[1]) / (at[3] - at[1]); math.Abs(share-0.5) > 1e-4 {
 		t.Errorf("0.1 lies at %.4f between 0.01 and 1", share)
+	}
+}
+
+// Curves are cut at the border, along straight lines on the scales of the chart.
+func TestPath(t *testing.T) {
+	ch := &draw.Chart{X: draw.Axis{From: 0, To: 10}, Y: draw.Axis{From: 0, To: 10}}
+	for name, c := range map[string]struct {
+		x, y []float64
+		want []plotter.XYs
+	}{
+		"through":    {[]float64{-5, 15}, []float64{5, 5}, []plotter.XYs{{{X: 0, Y: 5}, {X: 10, Y: 5}}}},
+		"out at top": {[]float64{0, 10, 20}, []float64{0, 20, 40}, []plotter.XYs{{{X: 0, Y: 0}, {X: 5, Y: 10}}}},
+		"and back":   {[]float64{0, 4, 8}, []float64{8, 12, 8}, []plotter.XYs{{{X: 0, Y: 8}, {X: 2, Y: 10}}, {{X: 6, Y: 10}, {X: 8, Y: 8}}}},
+		"broken":     {[]float64{1, 2, 3, 4, 5}, []float64{1, 2, math.NaN(), 4, 5}, []plotter.XYs{{{X: 1, Y: 1}, {X: 2, Y: 2}}, {{X: 4, Y: 4}, {X: 5, Y: 5}}}},
+		"beside":     {[]float64{11, 12}, []float64{1, 2}, nil},
+	} {
+		got := path(ch, c.x, c.y)
+		for _, piece := range got {
+			for k := range piece {
+				piece[k] = plotter.XY{X: math.Round(piece[k].X*1e9) / 1e9, Y: math.Round(piece[k].Y*1e9) / 1e9}
+			}
+		}
+		if fmt.Sprint(got) != fmt.Sprint(c.want) {
+			t.Errorf("%s: %v, want %v", name, got, c.want)
+		}
+	}
+	ch.Y = draw.Axis{From: 0.01, To: 1, Log: true}
+	got := path(ch, []float64{-10, 10, 20}, []float64{0.01, 1, 1e-6})
+	if len(got) != 1 || math.Abs(got[0][0].Y-0.1) > 1e-12 || got[0][1] != (plotter.XY{X: 10, Y: 1}) {
+		t.Errorf("logarithmic: %v", got) // half-way up at 0
+	}
+	if got = path(ch, []float64{0, 5}, []float64{0.1, 1e-9}); len(got) != 1 || math.Abs(got[0][1].Y-0.01) > 1e-15 {
+		t.Errorf("a valley: %v", got)
 	}
 }
 

@@ -225,25 +225,6 @@ func (plain) Ticks(low, high float64) (out []plot.Tick) {
 	return out
 }
 
-// pieces splits a curve where it has no value in range and gives its pieces.
-func pieces(x, y []float64, use func(x, y float64) bool) (out []plotter.XYs) {
-	var piece plotter.XYs
-	for k := range x {
-		if use(x[k], y[k]) {
-			piece = append(piece, plotter.XY{X: x[k], Y: y[k]})
-			continue
-		}
-		if len(piece) > 1 {
-			out = append(out, piece)
-		}
-		piece = nil
-	}
-	if len(piece) > 1 {
-		out = append(out, piece)
-	}
-	return out
-}
-
 func line(points plotter.XYs, c color.Color, width vg.Length, dashes ...vg.Length) *plotter.Line {
 	return &plotter.Line{XYs: points, LineStyle: vgdraw.LineStyle{Color: c, Width: width, Dashes: dashes}}
 }

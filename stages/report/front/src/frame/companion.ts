@@ -113,7 +113,7 @@ export class Companion {
     }
     colouring.addEventListener('change', () => state.set({ colouring: colouring.value as Colouring }))
     const key = html('span', { class: 'key' }, 'none', html('span', { class: 'rampbar', 'aria-hidden': 'true' }), 'most')
-    state.listen(now => { key.hidden = now.colouring === 'part' })
+    state.listen(now => { key.hidden = now.colouring === 'part'; colouring.value = now.colouring })
     const views = html('div', { class: 'looks', role: 'group', 'aria-label': 'look' })
     for (const l of looks) views.append(button(l.name, `look ${l.name}`, () => this.view.look(l)))
     const box = html('details', { class: 'options' }, html('summary', {}, 'View, colour and save'),
