@@ -20,6 +20,10 @@
 // Eigenvalue Problem, section 3.3). If they differ, the search goes on in the complement of what was found, from new
 // random vectors in larger blocks, and Status says so.
 //
+// Memory. One factorisation is held at a time: the count overwrites that at the shift, which is made again only if the
+// search goes on or the caller asked to keep it. Beside it there are the vectors of the search, some three times as many
+// as are wanted, and one copy of the values of K-sM while it is factorised.
+//
 // Determinism. The same input gives the same bits for every number of threads.
 //
 // Failures. Wrong shapes panic with the prefix "eigen:". Numbers that are not finite, an M with a negative direction, a K
