@@ -129,6 +129,7 @@ func (a *app) load(ctx context.Context, h *host.Host, path string, f *jobFlags) 
 		StageNames: func() []string { return a.stageNames(h) },
 		Kinds:      func(kind string) bool { _, ok := all[kind]; return ok },
 		Extensions: h.Extensions(),
+		Absent:     func(kind, name string) error { return a.absent(kind+" "+name, path) },
 	})
 	var p *plan.Plan
 	if !diags.HasErrors() {

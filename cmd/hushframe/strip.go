@@ -192,4 +192,3 @@ func showsBlocks(terminal bool, environment func(string) string) bool {
 	}
 	return false
 }
-

@@ -9,6 +9,7 @@ import (
 	"github.com/hashicorp/hcl/v2"
 	"github.com/zclconf/go-cty/cty"
 
+	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/stage"
 )
@@ -164,7 +165,13 @@ func (d *decoder) text(v cty.Value, p at, a stage.Argument, t stage.Type) any {
 				return s
 			}
 		}
-		d.wrong(p.rng, "Not a choice", "%s cannot be %s%s", p.name, short(strconv.Quote(s)), suggest(s, choices, "it is one of"))
+		why := ""
+		if a.Extension != "" && d.scope.absent != nil {
+			if err := d.scope.absent(a.Extension, s); err != nil {
+				why = "\n" + detail(fault.From(err))
+			}
+		}
+		d.wrong(p.rng, "Not a choice", "%s cannot be %s%s%s", p.name, short(strconv.Quote(s)), suggest(s, choices, "it is one of"), why)
 		return nil
 	}
 	return s

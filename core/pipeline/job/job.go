@@ -24,6 +24,10 @@ type Options struct {
 	Kinds func(kind string) bool
 	// Extensions lists the element types and readers that the job may name.
 	Extensions []stage.Extension
+	// Absent says why an element type or reader is not among Extensions, such
+	// as one that lies there but is not trusted; nil when nothing is known. May
+	// be nil.
+	Absent func(kind, name string) error
 }
 
 // Job is a checked job. One with error diagnostics must not be run; it then

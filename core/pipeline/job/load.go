@@ -17,7 +17,7 @@ import (
 // Diagnostics are sorted by file and place.
 func Load(ctx context.Context, path string, opt Options) (*Job, hcl.Diagnostics) {
 	l := &loader{opt: opt, job: &Job{}, kindRange: map[*Stage]hcl.Range{}}
-	l.scope = &scope{settings: map[string]cty.Value{}, stages: map[string]*Stage{}, functions: Functions(), extensions: opt.Extensions}
+	l.scope = &scope{settings: map[string]cty.Value{}, stages: map[string]*Stage{}, functions: Functions(), extensions: opt.Extensions, absent: opt.Absent}
 	l.job.scope = l.scope
 	files := l.read(path)
 	if len(files) > 0 && !l.diags.HasErrors() {

@@ -8,6 +8,7 @@ import (
 	"strings"
 	"testing"
 
+	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/stage"
 )
@@ -95,5 +96,22 @@ func TestCheckExtension(t *testing.T) {
 		if err := CheckExtension(stage.Extension{Name: "x", Arguments: []stage.Argument{a}}); err == nil || !strings.Contains(err.Error(), want) {
 			t.Errorf("%v, want %s", err, want)
 		}
+	}
+}
+
+// A name that is no choice says what is known of it, such as that it lies there but is not trusted.
+func TestAbsentExtension(t *testing.T) {
+	path := filepath.Join(t.TempDir(), "job.hcl")
+	if err := os.WriteFile(path, []byte("job \"j\" {}\nstage \"tape\" \"t\" {\nreader = \"moss\"\n}\n"), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	_, diags := Load(context.Background(), path, Options{
+		Describe: func(context.Context, string) (stage.Description, error) { return taping, nil },
+		Absent: func(kind, name string) error {
+			return fault.New(fault.Input, "%s %s is not pinned", kind, name).Do("pin it")
+		},
+	})
+	if !diags.HasErrors() || !strings.Contains(diags.Error(), "reader moss is not pinned; pin it") {
+		t.Errorf("the job says %v", diags)
 	}
 }

@@ -25,6 +25,7 @@ type scope struct {
 	labels      []string // in file order
 	functions   map[string]function.Function
 	extensions  []stage.Extension
+	absent      func(kind, name string) error
 }
 
 // use is a reference from an expression to another stage.

@@ -71,7 +71,7 @@ type Request struct {
 	Time string
 	// TimeUnit is the value of one unit of the time column in seconds (1, 1e-3, 1e-6 or 1e-9 as a rule).
 	TimeUnit float64
-	// Options are those of Describe.
+	// Options are those of Describe, as text; a reader from outside has its options as an argument of its own instead.
 	Options map[string]string
 }
 
