@@ -15,7 +15,7 @@
 // The kernel wing knows numbers and frames, and nothing of HCL, gRPC or files:
 //
 //	numeric    sparse storage, ordering, factors, block Lanczos
-//	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, rotor, counterpart
+//	mechanics  outline, airframe, laminate, fastener, mesh, element, assembly, modal, forced, direct, rotor, counterpart
 //	signal     windows, spectra, orders, recordings, strikes of a hammer
 //	match      pairing of predicted and observed, modal assurance, levels in bands
 //	known      problems with known answers, for tests

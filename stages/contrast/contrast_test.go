@@ -28,7 +28,7 @@ func run(t *testing.T, sides [2][]*artifact.Artifact, more map[string]any) (*kin
 		arguments[k] = v
 	}
 	call := &stage.Call{Arguments: arguments, Inputs: map[string][]stage.Input{}, Outputs: map[string]string{"difference": t.TempDir()}, Report: silent{}}
-	for k, name := range []string{"before", "after"} {
+	for k, name := range []string{"reference", "changed"} {
 		for _, a := range sides[k] {
 			folder := t.TempDir()
 			if _, err := artifact.Write(folder, a); err != nil {

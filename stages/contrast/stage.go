@@ -38,9 +38,9 @@ bodies of equal name are the same; meshes need not be. A mode without a partner 
 lost or new, with the reason. Peaks of the response are paired where their leading
 modes have gone. Changes are in dB of amplitude, after over before: +6 dB is twice.`,
 		Arguments: []stage.Argument{
-			{Name: "before", About: "artifacts of the frame before the change: mesh, modes, response, properties", Type: side, Required: true,
+			{Name: "reference", About: "artifacts of the frame before the change: mesh, modes, response, properties", Type: side, Required: true,
 				Example: "[stage.shells.mesh, stage.modes.modes, stage.flight.response]"},
-			{Name: "after", About: "artifacts of the frame after the change", Type: side, Required: true,
+			{Name: "changed", About: "artifacts of the frame after the change", Type: side, Required: true,
 				Example: "[stage.shells_b.mesh, stage.modes_b.modes, stage.flight_b.response]"},
 			{Name: "least", About: "modal assurance below which two modes are not the same, 0 to 1", Type: number, Default: match.DefaultLeast, Above: &zero, Max: &one, Example: "0.5"},
 			{Name: "band", About: "lowest and highest frequency at which responses are set side by side; left out, all that both sweep",
@@ -78,7 +78,7 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 	}
 	call.Report.Progress("read", -1)
 	var sides [2]Side
-	for k, name := range []string{"before", "after"} {
+	for k, name := range []string{"reference", "changed"} {
 		for _, in := range call.Inputs[name] {
 			a, err := artifact.Open(in.Folder, kinds.Registry())
 			if err != nil {
@@ -96,7 +96,7 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 	call.Report.Progress("follow", -1)
 	d, err := Between(sides[0], sides[1], o)
 	if err != nil {
-		return nil, fault.New(fault.Input, "%v", err).In("contrast", "").Of("after").Do("sweep a common range")
+		return nil, fault.New(fault.Input, "%v", err).In("contrast", "").Of("changed").Do("sweep a common range")
 	}
 	call.Report.Progress("write", -1)
 	if _, err := artifact.Write(call.Outputs["difference"], kinds.EncodeDifference(d)); err != nil {

@@ -163,3 +163,31 @@ func TestBadChecks(t *testing.T) {
 		}
 	}
 }
+
+// With a mount that stiffens fast the shares of each peak add up all the same, for the
+// motions are taken with the mount as it is at the peak; neighbours stand in order.
+func TestSharesOfPeaksUnderALaw(t *testing.T) {
+	_, p, modes := solved(t, func(p *airframe.Properties) {
+		p.Bodies[len(p.Bodies)-1].Mount.Law = airframe.Law{Kind: airframe.Solid, Reference: 1, Rise: 8, PeakAt: 300}
+	})
+	r, _ := decoded(t, call(t, modes, p, stage.Arguments{"to": hertz(800)}))
+	if math.IsNaN(r.LawsAt) {
+		t.Fatal("no law")
+	}
+	worst := 0.0
+	for _, x := range r.Peaks {
+		if len(x.Modes) == 0 {
+			t.Errorf("nothing makes the %s peak at %g Hz", x.Axis, x.Frequency)
+		}
+		worst = max(worst, math.Abs(x.Residual))
+	}
+	t.Logf("%d peaks, up to %.2g left out", len(r.Peaks), worst)
+	if len(r.Peaks) < 4 || worst > 0.2 {
+		t.Errorf("%d peaks, up to %g left out", len(r.Peaks), worst)
+	}
+	for _, s := range r.Separations {
+		if !(s.Gap >= 0) || s.Lower == s.Upper {
+			t.Errorf("neighbours %+v", s)
+		}
+	}
+}

@@ -92,7 +92,9 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	if err := fleet.whirl(ctx, r, basis, residual, set, threads); err != nil {
 		return nil, err
 	}
-	fleet.separate(r, sys, set)
+	if err := fleet.separate(r, sys, set); err != nil {
+		return nil, err
+	}
 	report.Progress("peaks", 0.8)
 	if err := findPeaks(r, basis, fleet, sys, plain, sp, set); err != nil {
 		return nil, err
@@ -190,8 +192,11 @@ func findPeaks(r *kinds.Response, basis *modal.Basis, fleet *fleet, sys, plain *
 		}
 	}
 	damping := sys.Damping()
-	poles, modes := fleet.poles(set)
 	for _, p := range peaks {
+		poles, modes, err := fleet.polesNear(p.Frequency, sys, set)
+		if err != nil {
+			return err
+		}
 		x := kinds.ResponsePeak{Axis: kinds.AxisNames[p.Axis], Frequency: p.Frequency, Density: p.Density, Prominence: p.Prominence,
 			Damping: math.NaN(), Uncorrected: math.NaN(), ComponentShare: p.InputShare, RotorShares: p.RotorShares, ModeShares: make([]float64, count)}
 		in := sys.Inputs()[p.Input]

@@ -121,18 +121,67 @@ func (f *fleet) poles(set settings) (poles []forced.Pole, modes []int) {
 	return poles, modes
 }
 
+// polesNear are the poles with mounts of a law taken as at a frequency, each
+// recognised by its shape; those of the diagram where no stiffness varies.
+func (f *fleet) polesNear(frequency float64, sys *forced.System, set settings) (poles []forced.Pole, modes []int, err error) {
+	if f.diagram == nil || !sys.Varies() {
+		poles, modes = f.poles(set)
+		return poles, modes, nil
+	}
+	core, err := sys.Frozen(frequency).Core()
+	if err != nil {
+		return nil, nil, err
+	}
+	known, _ := f.poles(set)
+	highest := 0.0
+	for _, p := range known {
+		highest = max(highest, 1.5*p.Frequency)
+	}
+	all, err := core.Poles(sys.Momenta(), 1, highest)
+	if err != nil {
+		return nil, nil, err
+	}
+	k := 0
+	if set.spinning {
+		k = at(f.diagram.Speeds, f.speeds[0])
+	}
+	for i, line := range f.diagram.Recognise(all, k) {
+		if line >= 0 {
+			poles, modes = append(poles, all[i]), append(modes, f.diagram.Lines[line].Mode+1)
+		}
+	}
+	return poles, modes, nil
+}
+
 // separate compares neighbours of which one lies within the sweep.
-func (f *fleet) separate(r *kinds.Response, sys *forced.System, set settings) {
+func (f *fleet) separate(r *kinds.Response, sys *forced.System, set settings) error {
 	poles, modes := f.poles(set)
 	for k := 1; k < len(poles); k++ {
 		a, b := poles[k-1], poles[k]
 		if b.Frequency < set.from || a.Frequency > set.to {
 			continue
 		}
+		near, names, err := f.polesNear(math.Sqrt(a.Frequency*b.Frequency), sys, set)
+		if err != nil {
+			return err
+		}
+		for i, name := range names {
+			switch name {
+			case modes[k-1]:
+				a = near[i]
+			case modes[k]:
+				b = near[i]
+			}
+		}
+		lower, upper := modes[k-1], modes[k]
+		if a.Frequency > b.Frequency { // a law brings them past one another
+			a, b, lower, upper = b, a, upper, lower
+		}
 		s := sys.Separate(a, b, set.source)
-		r.Separations = append(r.Separations, kinds.ResponseSeparation{Lower: modes[k-1], Upper: modes[k], At: a.Frequency, Gap: s.Gap, Bandwidths: s.Bandwidths,
+		r.Separations = append(r.Separations, kinds.ResponseSeparation{Lower: lower, Upper: upper, At: a.Frequency, Gap: s.Gap, Bandwidths: s.Bandwidths,
 			LowerAlone: s.Alone[0], UpperAlone: s.Alone[1], Amplification: s.Amplification})
 	}
+	return nil
 }
 
 // whirlSteps is the number of even steps from rest to the highest speed.

@@ -187,6 +187,30 @@ func (d *Diagram) follow(f *Fleet, vectors []int, poles [][]forced.Pole) {
 	}
 }
 
+// Recognise says which line each of some poles continues at speed k: places in
+// Lines, −1 for none. The poles are of the same frame with stiffness somewhat different, as laws
+// taken at another frequency make it.
+func (d *Diagram) Recognise(poles []forced.Pole, k int) []int {
+	score := func(line, p int) float64 {
+		l := &d.Lines[line]
+		if l.shapes[k] == nil {
+			return 0
+		}
+		off := (poles[p].Frequency/l.Frequency[k] - 1) / 0.2
+		return likeness(l.shapes[k], poles[p].Shape) / (1 + off*off)
+	}
+	out := make([]int, len(poles))
+	for p := range out {
+		out[p] = -1
+	}
+	for line, p := range match(len(d.Lines), len(poles), score) {
+		if p >= 0 {
+			out[p] = line
+		}
+	}
+	return out
+}
+
 // match pairs rows with columns, the highest score first, each once; -1 for a
 // row left without. Scores below a tenth are no pair.
 func match(rows, cols int, score func(row, col int) float64) []int {
