@@ -11,6 +11,8 @@ import (
 	"regexp"
 	"sort"
 	"strings"
+	"sync/atomic"
+	"time"
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -24,7 +26,8 @@ import (
 // The description must be complete, constant and survive the boundary. Each
 // case must run and write what it declares; run again, with another number of
 // threads and other folders, it must write the same bytes and report the same;
-// with a context that has ended it must end with a fault of kind cancelled.
+// it must send progress; with a context that has ended it must end with a fault
+// of kind cancelled, and so within a second when the context ends on the way.
 func Check(folder string, s stage.Stage, registry artifact.Registry, cases ...Case) []string {
 	problems := checkDescription(s, registry)
 	if len(problems) > 0 {
@@ -135,9 +138,11 @@ func checkType(what string, t stage.Type, registry artifact.Registry, bad func(s
 
 // ending is what one run left.
 type ending struct {
-	hashes  map[string]string
-	outcome string
-	files   []stage.FileUse
+	progress int // events
+	took     time.Duration
+	hashes   map[string]string
+	outcome  string
+	files    []stage.FileUse
 }
 
 func checkCase(folder string, s stage.Stage, registry artifact.Registry, c Case) []string {
@@ -162,6 +167,21 @@ func checkCase(folder string, s stage.Stage, registry artifact.Registry, c Case)
 	if !reflect.DeepEqual(first.files, second.files) {
 		problems = append(problems, fmt.Sprintf("other files are read: %v, then %v", first.files, second.files))
 	}
+	if first.progress == 0 {
+		problems = append(problems, "it sends no progress; call.Report.Progress says what it does and how far it is")
+	}
+	if first.took > 50*time.Millisecond {
+		soon, stop := context.WithTimeout(context.Background(), first.took/10)
+		_, err := runCase(soon, filepath.Join(folder, "stopped"), s, registry, c, 1)
+		late := first.took
+		if at, ok := soon.Deadline(); ok {
+			late = time.Since(at)
+		}
+		stop()
+		if err != nil && late > time.Second {
+			problems = append(problems, fmt.Sprintf("stopped on the way it went on for %v; look at the context in every long loop", late.Round(time.Millisecond)))
+		}
+	}
 	ended, cancel := context.WithCancel(context.Background())
 	cancel()
 	if _, err := runCase(ended, filepath.Join(folder, "cancelled"), s, registry, c, 1); fault.KindOf(err) != fault.Cancelled {
@@ -171,10 +191,10 @@ func checkCase(folder string, s stage.Stage, registry artifact.Registry, c Case)
 }
 
 func runCase(ctx context.Context, folder string, s stage.Stage, registry artifact.Registry, c Case, threads int) (*ending, error) {
-	d := s.Describe()
+	d, heard := s.Describe(), &counting{}
 	call := &stage.Call{Arguments: stage.Arguments{}, Inputs: map[string][]stage.Input{}, Outputs: map[string]string{},
 		Scratch: filepath.Join(folder, "scratch"), Files: stage.NewFiles(c.Folder), Threads: threads,
-		Report: quiet{}, Services: &alone{folder: filepath.Join(folder, "kept")}}
+		Report: heard, Services: &alone{folder: filepath.Join(folder, "kept")}}
 	for _, a := range d.Arguments {
 		if a.Default != nil {
 			call.Arguments[a.Name] = a.Default
@@ -206,7 +226,9 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 			return nil, err
 		}
 	}
+	began := time.Now()
 	o, err := s.Run(ctx, call)
+	took := time.Since(began)
 	if err != nil {
 		var f *fault.Error
 		if !errors.As(err, &f) {
@@ -220,7 +242,7 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 	if err := run.CheckFigures(d, o.Figures); err != nil {
 		return nil, err
 	}
-	out := &ending{hashes: map[string]string{}, files: call.Files.Used()}
+	out := &ending{progress: int(heard.events.Load()), took: took, hashes: map[string]string{}, files: call.Files.Used()}
 	for _, x := range d.Outputs {
 		a, err := artifact.OpenExact(call.Outputs[x.Name], registry)
 		if err != nil {
@@ -245,11 +267,11 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 	return out, nil
 }
 
-// quiet hears nothing.
-type quiet struct{}
+// counting counts what it hears of progress.
+type counting struct{ events atomic.Int64 }
 
-func (quiet) Progress(string, float64)        {}
-func (quiet) Log(stage.Level, string, ...any) {}
+func (c *counting) Progress(string, float64)        { c.events.Add(1) }
+func (c *counting) Log(stage.Level, string, ...any) {}
 
 // alone keeps intermediate results of one call and reaches no extension.
 type alone struct{ folder string }

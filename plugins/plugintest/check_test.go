@@ -9,6 +9,7 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+	"time"
 
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
@@ -26,6 +27,8 @@ type doubling struct {
 	masses   func(c *stage.Call, masses []float64)
 	outcome  func(c *stage.Call, o *stage.Outcome) error
 	deaf     bool
+	mute     bool
+	slow     bool
 	kind     artifact.Kind
 }
 
@@ -44,6 +47,15 @@ func (s doubling) Describe() stage.Description {
 func (s doubling) Run(ctx context.Context, c *stage.Call) (*stage.Outcome, error) {
 	if !s.deaf && ctx.Err() != nil {
 		return nil, fault.From(ctx.Err())
+	}
+	if !s.mute {
+		c.Report.Progress("doubling", 0.5)
+	}
+	if s.slow {
+		time.Sleep(1300 * time.Millisecond)
+		if ctx.Err() != nil {
+			return nil, fault.From(ctx.Err())
+		}
 	}
 	in, err := artifact.Open(c.Inputs["beads"][0].Folder, kinds)
 	if err != nil {
@@ -107,6 +119,8 @@ func TestCheck(t *testing.T) {
 			_, _ = c.Files.Read(fmt.Sprint(c.Threads))
 			return nil
 		}}, "case 1: other files are read"},
+		"mute":              {doubling{mute: true}, "case 1: it sends no progress"},
+		"slow to stop":      {doubling{slow: true}, "case 1: stopped on the way it went on for"},
 		"deaf":              {doubling{deaf: true}, "case 1: with a context that has ended it gives <nil>, not a fault of kind cancelled"},
 		"wrong kind":        {doubling{kind: artifact.Kind{Name: "other", Version: 1}}, `case 1: output beads is of kind "other", not "beads" as declared`},
 		"undeclared figure": {doubling{outcome: func(_ *stage.Call, o *stage.Outcome) error { o.Figures["more"] = 1.0; return nil }}, `case 1: stage doubling reports the figure "more", which it does not declare`},

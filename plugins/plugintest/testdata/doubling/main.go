@@ -32,6 +32,7 @@ func (doubling) Run(ctx context.Context, c *stage.Call) (*stage.Outcome, error) 
 	if err := ctx.Err(); err != nil {
 		return nil, fault.From(err)
 	}
+	c.Report.Progress("doubling", 0.5)
 	in, err := artifact.Open(c.Inputs["beads"][0].Folder, artifact.NewRegistry(beads))
 	if err != nil {
 		return nil, err
