@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"slices"
+	"strings"
 
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
@@ -38,7 +39,7 @@ func outcome(x *kinds.Identified, notes []string, warnings []stage.Warning, set 
 	o := &stage.Outcome{
 		Figures: map[string]any{
 			"modes": float64(counts[kinds.ModeStructure]), "doubtful": float64(counts[kinds.ModeDoubtful]), "lines": float64(counts[kinds.ModeLine]),
-			"order_share": orderShare(x), "list": list,
+			"order_share": orderShare(x), "crossed": crossed(x), "list": list,
 		},
 		Notes: notes, Warnings: warnings,
 		Summary: []stage.Section{modeTable(x)},
@@ -56,6 +57,9 @@ func outcome(x *kinds.Identified, notes []string, warnings []stage.Warning, set 
 	}
 	if len(x.Removed) > 0 {
 		o.Summary = append(o.Summary, removedTable(x))
+	}
+	if len(x.Crossings) > 0 {
+		o.Summary = append(o.Summary, crossingTable(x))
 	}
 	return o
 }
@@ -172,6 +176,48 @@ func removedTable(x *kinds.Identified) stage.Section {
 			}
 		}
 		t.Rows = append(t.Rows, append(row, seen))
+	}
+	return t
+}
+
+// crossed counts the modes that an order meets in the frame itself: not those that it only meets folded.
+func crossed(x *kinds.Identified) float64 {
+	met := map[int]bool{}
+	for _, c := range x.Crossings {
+		if !c.Folded {
+			met[c.Mode] = true
+		}
+	}
+	return float64(len(met))
+}
+
+// crossingTable gives one row per mode and order, the rotors together.
+func crossingTable(x *kinds.Identified) stage.Section {
+	t := stage.Section{
+		Title:   "Rotor orders that meet modes",
+		Text:    "share of the time that the order of the busiest rotor spends within the half-power width of the mode; a folded order meets it in the recording only, not in the frame",
+		Columns: []stage.Column{{Name: "mode, Hz", Right: true}, {Name: "order"}, {Name: "at, rpm", Right: true}, {Name: "of the time, %", Right: true}, {Name: "rotors"}},
+	}
+	for i, c := range x.Crossings {
+		if i > 0 && x.Crossings[i-1].Mode == c.Mode && x.Crossings[i-1].Order == c.Order {
+			continue
+		}
+		share, speed, count := 0.0, 0.0, 0.0
+		var rotors []string
+		for _, other := range x.Crossings {
+			if other.Mode == c.Mode && other.Order == c.Order {
+				share = max(share, other.Share)
+				speed += other.Speed
+				count++
+				rotors = append(rotors, other.Rotor)
+			}
+		}
+		name := fmt.Sprintf("%g", c.Order)
+		if c.Folded {
+			name += ", folded"
+		}
+		t.Rows = append(t.Rows, []string{fmt.Sprintf("%.4g", x.Modes[c.Mode].Frequency), name, fmt.Sprintf("%.0f", speed/count*30/math.Pi), fmt.Sprintf("%.0f", 100*share),
+			strings.Join(rotors, ", ")})
 	}
 	return t
 }

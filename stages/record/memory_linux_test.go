@@ -65,9 +65,9 @@ func TestMemoryIsBounded(t *testing.T) {
 			peak, _ = strconv.Atoi(fields[1])
 		}
 	}
-	kept, beyond := rows*columns*8/1024, 300*1024 // KiB
+	kept, beyond := rows*columns*8/1024, 230*1024 // KiB; the process itself takes about 60 MiB of what lies beyond
 	t.Logf("%d MiB at most, %d MiB of them the samples", peak/1024, kept/1024)
 	if peak == 0 || peak > kept+beyond {
-		t.Errorf("%d MiB are held beyond the samples, 300 are allowed", (peak-kept)/1024)
+		t.Errorf("%d MiB are held beyond the samples, %d are allowed", (peak-kept)/1024, beyond/1024)
 	}
 }

@@ -56,6 +56,23 @@ func openBrowser() {
 	_, browser.err = chromedp.Run(ctx, chromedp.Title())
 }
 
+// sample is the page of the sample, made once for all tests that do not change it.
+var sample struct {
+	once    sync.Once
+	content *content
+	page    []byte
+}
+
+func samplePage(t *testing.T) (*content, []byte) {
+	t.Helper()
+	sample.once.Do(func() {
+		c := sampleContent(t)
+		page, _ := render(t, c)
+		sample.content, sample.page = c, []byte(page)
+	})
+	return sample.content, sample.page
+}
+
 // tab is a page in the browser with what went wrong on it.
 type tab struct {
 	t   *testing.T

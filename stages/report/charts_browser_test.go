@@ -31,9 +31,8 @@ const drawnScript = `hushframe.charts.map(c => ({ID: c.data.id, Live: c.root.que
 // Every chart of the page is live, with the series of the artifacts: the numbers here come from the artifacts
 // themselves, not from the descriptions that the page was made of.
 func TestChartsHoldTheArtifacts(t *testing.T) {
-	c := sampleContent(t)
-	page, _ := render(t, c)
-	b := visit(t, []byte(page), screen{width: 1280, height: 900, still: true})
+	c, page := samplePage(t)
+	b := visit(t, page, screen{width: 1280, height: 900, still: true})
 	b.until("globalThis.hushframe !== undefined")
 	var all []drawn
 	for _, x := range ask[[]drawn](b, drawnScript) {
@@ -101,6 +100,15 @@ func TestChartsHoldTheArtifacts(t *testing.T) {
 	if top.At > 1.5 || top.Want > 1 {
 		t.Errorf("the highest peak is drawn %g and %g pixels off", top.At, top.Want)
 	}
+	// A curve of far more values than pixels keeps its highest and its lowest.
+	long := ask[[2]float64](b, `(() => { const c = hushframe.charts[1], n = 200000, x = new Float32Array(n), y = new Float32Array(n).fill(1e-2);
+		for (let k = 0; k < n; k++) x[k] = c.x.from + (c.x.to - c.x.from) * k / n; y[70001] = 0.3; y[140001] = 1e-4;
+		c.data.curves.push({name: 'long', class: 'faint', x, y}); c.draw();
+		const at = c.picture.querySelector('.curve.faint').getAttribute('d').split(/[ML]/).filter(Boolean).map(p => Number(p.split(' ')[1]));
+		const off = [Math.min(...at) - c.py(0.3), Math.max(...at) - c.py(1e-4)]; c.data.curves.pop(); c.draw(); return off.map(Math.abs) })()`)
+	if long[0] > 0.1 || long[1] > 0.1 {
+		t.Errorf("the peak and the dip of a long curve are drawn %g and %g pixels off", long[0], long[1])
+	}
 	// Labels of modes do not cover each other, at any zoom.
 	for range 3 {
 		if n := ask[int](b, `(() => { let n = 0; for (const c of hushframe.charts) { const r = [...c.picture.querySelectorAll('.mode-label')].map(e => e.getBoundingClientRect());
@@ -130,9 +138,8 @@ func itoa(n int) string { b, _ := json.Marshal(n); return string(b) }
 // Moving along a response chart moves the frame, with a motion of its own at every frequency and true phase; keys do the
 // same; the frame has keys too.
 func TestFrameFollowsTheAxisAndTheKeys(t *testing.T) {
-	c := sampleContent(t)
-	page, _ := render(t, c)
-	b := visit(t, []byte(page), screen{width: 1280, height: 900, still: true})
+	c, page := samplePage(t)
+	b := visit(t, page, screen{width: 1280, height: 900, still: true})
 	b.until("globalThis.hushframe !== undefined")
 	if ask[bool](b, "hushframe.state.now.playing") {
 		t.Error("the frame plays though the reader wants less motion")

@@ -14,8 +14,8 @@ const inkScript = `(() => { const v = hushframe.view; v.render(); const c = docu
 	let n = 0; for (let k = 3; k < d.length; k += 4) if (d[k] > 0) n++; return n / (d.length / 4) })()`
 
 func TestFrameMovesInABrowser(t *testing.T) {
-	page, _ := render(t, sampleContent(t))
-	b := visit(t, []byte(page), screen{width: 1280, height: 900})
+	_, page := samplePage(t)
+	b := visit(t, page, screen{width: 1280, height: 900})
 	b.until("globalThis.hushframe !== undefined")
 	if share := ask[float64](b, inkScript); share < 0.03 || share > 0.9 {
 		t.Errorf("%.3f of the canvas is drawn on", share)

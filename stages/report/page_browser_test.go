@@ -30,8 +30,8 @@ func (b *tab) show(s screen) {
 // From a phone to a wide screen, on light and dark paper, nothing runs out of the window, the frame is drawn and can be
 // read; print and a browser without scripts show the still twin.
 func TestPageFitsEveryScreenAndPaper(t *testing.T) {
-	page, _ := render(t, sampleContent(t))
-	b := visit(t, []byte(page), screen{width: 360, height: 740, still: true})
+	_, page := samplePage(t)
+	b := visit(t, page, screen{width: 360, height: 740, still: true})
 	b.until("globalThis.hushframe !== undefined")
 	papers := map[string]bool{}
 	for _, s := range []screen{{width: 360, height: 740}, {width: 820, height: 1180, dark: true}, {width: 1366, height: 768}, {width: 3840, height: 2160, dark: true}} {
@@ -76,12 +76,15 @@ func TestPageFitsEveryScreenAndPaper(t *testing.T) {
 		t.Errorf("in print: %+v", got)
 	}
 	pdf, err := chromedp.Run(b.ctx, chromedp.PrintToPDF())
+	if n := ask[int](b, "document.querySelectorAll('main details[open]').length"); n > 0 {
+		t.Errorf("%d folds stay open after printing", n)
+	}
 	if err != nil || !bytes.HasPrefix(pdf, []byte("%PDF")) || len(pdf) < 50_000 {
 		t.Errorf("printed to %d bytes: %v", len(pdf), err)
 	}
 	b.clean()
 
-	b = visit(t, []byte(page), screen{width: 1000, height: 800, noScript: true})
+	b = visit(t, page, screen{width: 1000, height: 800, noScript: true})
 	n := ask[[3]int](b, "[document.querySelectorAll('figure[data-chart] > .panel > svg').length, document.querySelectorAll('#companion:not([hidden])').length, document.querySelectorAll('.gallery svg').length]")
 	if n[0] < 7 || n[1] != 0 || n[2] < 7 {
 		t.Errorf("without scripts: %d charts, %d frames, %d shapes", n[0], n[1], n[2])

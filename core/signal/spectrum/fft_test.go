@@ -8,9 +8,9 @@ import (
 	"gonum.org/v1/gonum/dsp/fourier"
 )
 
-// Every power of two, and lengths beside them, against gonum's transform.
+// Powers of two, products of small primes, and lengths beside them, against gonum's transform.
 func TestRealTransform(t *testing.T) {
-	for _, n := range []int{2, 3, 4, 6, 8, 12, 16, 32, 64, 100, 128, 256, 1000, 1024, 2048, 4096, 8192, 1 << 16} {
+	for _, n := range []int{2, 3, 4, 6, 8, 12, 16, 32, 64, 10, 18, 30, 50, 90, 14, 100, 128, 250, 256, 450, 600, 1000, 3000, 4000, 4374, 1024, 2048, 4096, 8192, 1 << 16} {
 		x := gauss(uint32(n), n)
 		got, want := make([]complex128, n/2+1), make([]complex128, n/2+1)
 		transform := newRealTransform(n)

@@ -17,9 +17,9 @@ type layout struct {
 	first     int  // line of the first row, from 0
 	names     []string
 	units     []string
-	text      []bool // fields that hold something else than numbers
-	stamp     []bool // fields that hold times of day
-	named     bool   // the names are those of the recording
+	text      []bool  // fields that hold something else than numbers
+	stamp     []bool  // fields that hold times of day
+	named     bool    // the names are those of the recording
 	rate      float64 // stated above the rows, Hz; 0 for none
 	rates     bool    // several are, and they differ
 }

@@ -66,6 +66,14 @@ function start() {
     }
     if (scene.shapes && scene.modes?.length) state.set({ shown: { kind: 'mode', number: loudest(scene) } })
   }
+  // On paper nothing can be unfolded.
+  let folded: HTMLDetailsElement[] = []
+  addEventListener('beforeprint', () => {
+    folded = [...document.querySelectorAll<HTMLDetailsElement>('main details:not([open])')]
+    for (const d of folded) d.open = true
+    for (const c of charts) c.draw()
+  })
+  addEventListener('afterprint', () => { for (const d of folded) d.open = false })
   globalThis.hushframe = { scene, state, companion, view: companion?.view, charts }
 }
 
