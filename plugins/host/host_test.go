@@ -657,14 +657,17 @@ func waitGone(t *testing.T, pid int) {
 	t.Errorf("process %d still runs", pid)
 }
 
+// BenchmarkStart starts a process and waits until it can be called.
 func BenchmarkStart(b *testing.B) {
+	h := open(b, nil)
 	for b.Loop() {
-		h := open(b, nil)
-		s, _ := h.Stage("babble")
-		if _, err := s.Run(context.Background(), newCall(b)); err != nil {
+		p, err := h.start(context.Background(), "stage babble", h.options.Self, "babble")
+		if err != nil {
 			b.Fatal(err)
 		}
-		h.Close()
+		b.StopTimer()
+		p.stop(0)
+		b.StartTimer()
 	}
 }
 
