@@ -1,6 +1,7 @@
 package report
 
 import (
+	"strings"
 	"testing"
 )
 
@@ -24,6 +25,19 @@ func TestFrameMovesInABrowser(t *testing.T) {
 	b.until("hushframe.view.frames > " + itoa(before+3)) // it runs by itself
 	if moved := ask[float64](b, movedScript); moved < 0.05 {
 		t.Errorf("within half a cycle the frame moved by %g of its span", moved)
+	}
+	// A picture and a clip can be saved; what is saved is caught on its way to the disk.
+	saved := ask[[]struct {
+		Name, Type string
+		Size       int
+	}](b, `(async () => { const got = [], real = HTMLAnchorElement.prototype.click, make = URL.createObjectURL; let last = null;
+		URL.createObjectURL = x => { last = x; return make(x) };
+		HTMLAnchorElement.prototype.click = function () { got.push({Name: this.download, Type: last.type, Size: last.size}) };
+		hushframe.state.set({speed: 3}); await hushframe.companion.picture();
+		const b = [...document.querySelectorAll('.looks button')].find(b => b.textContent === 'save clip'); if (!b.hidden) await hushframe.companion.clip(b);
+		HTMLAnchorElement.prototype.click = real; URL.createObjectURL = make; return got })()`)
+	if len(saved) != 2 || saved[0].Type != "image/png" || saved[0].Size < 5000 || !strings.HasPrefix(saved[1].Type, "video/") || saved[1].Size < 2000 || !strings.HasPrefix(saved[0].Name, "Mode-") {
+		t.Errorf("saved %+v", saved)
 	}
 	b.clean()
 }

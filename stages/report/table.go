@@ -19,6 +19,20 @@ type table struct {
 	File    string // path beside the page, filled in when the page is made
 }
 
+// mostShown is how many rows of a table stand on the page; its file has all of them.
+const mostShown = 400
+
+// Shown gives the rows that stand on the page.
+func (t *table) Shown() [][]cell { return t.Rows[:min(len(t.Rows), mostShown)] }
+
+// More says what the page leaves out.
+func (t *table) More() string {
+	if len(t.Rows) <= mostShown {
+		return ""
+	}
+	return fmt.Sprintf("The first %d of %d rows; the file has all.", mostShown, len(t.Rows))
+}
+
 type column struct {
 	Name, Unit string
 	Right      bool

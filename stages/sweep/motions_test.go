@@ -407,3 +407,23 @@ func TestFlightAsRecorded(t *testing.T) {
 		}
 	}
 }
+
+// However many threads, the same bytes.
+func TestThreadsChangeNoByte(t *testing.T) {
+	m, p := tilting()
+	hash := func(threads int) string {
+		c := withMesh(t, call(t, m, p, stage.Arguments{"points": []any{place("nose", "top", 0.1, 0, 0)}}), flat())
+		c.Threads = threads
+		if _, err := (Stage{}).Run(context.Background(), c); err != nil {
+			t.Fatal(err)
+		}
+		a, err := artifact.Open(c.Outputs["response"], kinds.Registry())
+		if err != nil {
+			t.Fatal(err)
+		}
+		return a.Hash()
+	}
+	if one, four := hash(1), hash(4); one != four {
+		t.Errorf("%s with one thread, %s with four", one, four)
+	}
+}

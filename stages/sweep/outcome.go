@@ -46,7 +46,7 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if two := twoBladed(r); two != "" {
 		o.Notes = append(o.Notes, two)
 	}
-	o.Summary = []stage.Section{peakTable(r), axisTable(r), staticTable(r), pointTable(r)}
+	o.Summary = []stage.Section{peakTable(r), sharesTable(r), axisTable(r), staticTable(r), pointTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
 	}
@@ -129,6 +129,35 @@ func peakTable(r *kinds.Response) stage.Section {
 			p.Axis, fmt.Sprintf("%.1f", p.Frequency), fmt.Sprintf("%.3g", p.Density/degree/degree), fmt.Sprintf("%.1f", 10*math.Log10(p.Prominence)),
 			percent(p.Damping, "%.2f"), makers(p),
 		})
+	}
+	return s
+}
+
+// sharesTable gives what each rotor makes of each peak, and the residual vectors.
+func sharesTable(r *kinds.Response) stage.Section {
+	s := stage.Section{
+		Title:   "What each rotor makes of the peaks, %",
+		Text:    "alone, of the density; they add up to more or less than 100 where rotors are correlated. The last column is what the correction for modes left out changes",
+		Columns: []stage.Column{{Name: "axis"}, {Name: "Hz", Right: true}},
+	}
+	for _, x := range r.Rotors {
+		s.Columns = append(s.Columns, stage.Column{Name: x.Rotor, Right: true})
+	}
+	s.Columns = append(s.Columns, stage.Column{Name: "most by"}, stage.Column{Name: "takes its power"}, stage.Column{Name: "correction, dB", Right: true})
+	for _, p := range r.Peaks {
+		row := []string{p.Axis, fmt.Sprintf("%.1f", p.Frequency)}
+		for k := range r.Rotors {
+			share := "–"
+			if k < len(p.RotorShares) {
+				share = fmt.Sprintf("%.0f", 100*p.RotorShares[k])
+			}
+			row = append(row, share)
+		}
+		losses := "–"
+		if len(p.Losses) > 0 {
+			losses = fmt.Sprintf("%s %.0f %%", p.Losses[0], 100*p.LossShares[0])
+		}
+		s.Rows = append(s.Rows, append(row, kinds.ComponentNames[p.Component]+" of "+p.Rotor, losses, dash("%+.2f", -10*math.Log10(p.Uncorrected))))
 	}
 	return s
 }

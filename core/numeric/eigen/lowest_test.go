@@ -149,11 +149,17 @@ func TestCountMendsMissedCopies(t *testing.T) {
 	for _, v := range chain[:3] {
 		want = append(want, slices.Repeat([]float64{v}, copies)...)
 	}
-	res := lowest(t, k, m, eigen.Options{Limit: (chain[2] + chain[3]) / 2, Block: 2})
-	agree(t, res.Values, want, 1e-12)
-	sound(t, k, m, res, 1e-7)
-	if res.Status.Attempts < 2 || !strings.Contains(strings.Join(res.Status.Notes, "\n"), "were missing") {
-		t.Errorf("status %+v does not tell of a second search", res.Status)
+	// Counted beforehand, and after the search, when the factorisation at the shift has to be made again.
+	for _, opt := range []eigen.Options{{Limit: (chain[2] + chain[3]) / 2, Block: 2}, {Modes: 3 * copies, Block: 2, Static: true}} {
+		res := lowest(t, k, m, opt)
+		agree(t, res.Values, want, 1e-12)
+		sound(t, k, m, res, 1e-7)
+		if res.Status.Attempts < 2 || !strings.Contains(strings.Join(res.Status.Notes, "\n"), "were missing") {
+			t.Errorf("status %+v does not tell of a second search", res.Status)
+		}
+		if (res.Factor != nil) != opt.Static {
+			t.Errorf("a factor %v, asked for %v", res.Factor != nil, opt.Static)
+		}
 	}
 }
 
