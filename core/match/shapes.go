@@ -68,7 +68,7 @@ type Tracking struct {
 }
 
 // Track finds the modes before among those after: the pairing of least total cost (1 - MAC) + Drift·(ln f/f')², in which
-// a mode without a partner costs 1 - Least and no pair has a MAC below Least. Nil weights are all 1; a MAC that is not a
+// a mode without a partner costs 1 - Least, so that no pair has a MAC below Least. Nil weights are all 1; a MAC that is not a
 // number counts as 0. It panics on shapes of different lengths.
 func Track(before, after Shapes, w []float64, o TrackOptions) Tracking {
 	if o.Least == 0 {
@@ -90,11 +90,7 @@ func Track(before, after Shapes, w []float64, o TrackOptions) Tracking {
 				mac = 0
 			}
 			d := math.Log(after.Frequency[j] / before.Frequency[i])
-			c := 1 - mac + o.Drift*d*d
-			if mac < o.Least {
-				c = math.Inf(1)
-			}
-			out.MAC, cost = append(out.MAC, mac), append(cost, c)
+			out.MAC, cost = append(out.MAC, mac), append(cost, 1-mac+o.Drift*d*d)
 		}
 	}
 	taken := make([]bool, columns)

@@ -64,6 +64,10 @@ func TestTrackSettlesDoubts(t *testing.T) {
 	if len(got.Pairs) != 2 || got.Pairs[0].After != 0 || got.Pairs[1].After != 1 {
 		t.Errorf("%+v", got.Pairs)
 	}
+	got = Track(Shapes{[]float64{200}, [][]float64{a}}, Shapes{[]float64{120, 190}, [][]float64{a, a}}, nil, TrackOptions{})
+	if len(got.Pairs) != 1 || got.Pairs[0].After != 1 || !reflect.DeepEqual(got.New, []int{0}) {
+		t.Errorf("%+v", got)
+	}
 	got = Track(Shapes{[]float64{100}, [][]float64{a}}, Shapes{[]float64{100}, [][]float64{b}}, nil, TrackOptions{})
 	if len(got.Pairs) != 0 || len(got.Lost) != 1 || len(got.New) != 1 { // MAC 0.36
 		t.Errorf("%+v", got)

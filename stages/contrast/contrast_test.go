@@ -87,6 +87,9 @@ func TestStage(t *testing.T) {
 	if q := o.Figures["mass_change"].(stage.Quantity); math.Abs(q.SI-1500*0.1*0.02*0.2e-3) > 1e-12 || q.Dimension != "mass" {
 		t.Errorf("mass %+v", q)
 	}
+	if m := d.Masses; len(m) != 1 || m[0].Name != "deck" || math.Abs(m[0].Mass[0]-6e-3) > 1e-12 || math.Abs(m[0].Mass[1]-6.6e-3) > 1e-12 {
+		t.Errorf("masses %+v", m)
+	}
 	if least := o.Figures["least_assurance"].(float64); least < 0.999 || least > 1 {
 		t.Errorf("assurance %g", least)
 	}

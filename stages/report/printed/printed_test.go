@@ -199,10 +199,18 @@ func TestCells(t *testing.T) {
 		t.Fatal(err)
 	}
 	seen := map[color.NRGBA]int{}
+	lowest, leftmost := 0, img.Bounds().Dx() // of the loudest cell, the first of the lowest row
 	for y := 0; y < img.Bounds().Dy(); y += 2 {
 		for x := 0; x < img.Bounds().Dx(); x += 2 {
-			seen[color.NRGBAModel.Convert(img.At(x, y)).(color.NRGBA)]++
+			c := color.NRGBAModel.Convert(img.At(x, y)).(color.NRGBA)
+			seen[c]++
+			if c == shade(255) && y > img.Bounds().Dy()/3 {
+				lowest, leftmost = max(lowest, y), min(leftmost, x)
+			}
 		}
+	}
+	if lowest < img.Bounds().Dy()*3/4 || leftmost > img.Bounds().Dx()/4 {
+		t.Errorf("the loudest cell reaches down to %d and begins at %d", lowest, leftmost)
 	}
 	quarter := img.Bounds().Dx() * img.Bounds().Dy() / 4 / 4
 	for level, name := range map[byte]string{255: "loudest", 170: "a tenth", 1: "least"} {
