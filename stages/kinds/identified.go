@@ -73,7 +73,6 @@ var IdentifiedKind = artifact.Kind{
 		{Name: "tracks", About: "rotor speeds over the time used; an order n lies at n times the speed over 2 pi", Columns: columns(
 			col("rotor", artifact.Text, "", "name"),
 			col("source", artifact.Text, "", "recorded, or followed in the signal"),
-			col("refined", artifact.Truth, "", "sharpened by the phase of its own orders"),
 			col("time", artifact.FloatList, "s", "on the time column, rising"),
 			col("speed", artifact.FloatList, "rad/s", "mean speed about that time; 0 where it stands or is not known"),
 		)},
@@ -124,7 +123,6 @@ const (
 // RotorTrack is the speed of a rotor over time.
 type RotorTrack struct {
 	Rotor, Source string
-	Refined       bool
 	Time, Speed   []float64
 }
 

@@ -11,7 +11,6 @@ func setTracks(a *artifact.Artifact, x *Identified) {
 	a.Table("tracks").
 		Set("rotor", list(x.Tracks, func(t RotorTrack) string { return t.Rotor })).
 		Set("source", list(x.Tracks, func(t RotorTrack) string { return t.Source })).
-		Set("refined", list(x.Tracks, func(t RotorTrack) bool { return t.Refined })).
 		Set("time", list(x.Tracks, func(t RotorTrack) []float64 { return t.Time })).
 		Set("speed", list(x.Tracks, func(t RotorTrack) []float64 { return t.Speed }))
 	a.Table("crossings").
@@ -34,7 +33,7 @@ func readTracks(a *artifact.Artifact, x *Identified) error {
 	}
 	t = a.Table("tracks")
 	for i := range t.Rows() {
-		r := RotorTrack{t.Texts("rotor")[i], t.Texts("source")[i], t.Truths("refined")[i], t.FloatLists("time")[i], t.FloatLists("speed")[i]}
+		r := RotorTrack{t.Texts("rotor")[i], t.Texts("source")[i], t.FloatLists("time")[i], t.FloatLists("speed")[i]}
 		if len(r.Time) != len(r.Speed) {
 			return malformed("identified", "the track of rotor %s has %d times and %d speeds", r.Rotor, len(r.Time), len(r.Speed))
 		}

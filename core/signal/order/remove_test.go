@@ -118,3 +118,34 @@ func BenchmarkRemove(b *testing.B) {
 		Remove(channels, speeds, RemoveSettings{Rate: rate, Orders: []float64{1, 2, 3}, Threads: 2})
 	}
 }
+
+// Left tells what removal takes of noise: as much in all as is missing, and only where the orders are.
+func TestLeft(t *testing.T) {
+	const n, rate = 200000, 2000.0
+	source := noise.Source(8)
+	x, speed := make([]float64, n), make([]float64, n)
+	for i := range x {
+		x[i] = source.Gauss()
+		speed[i] = 260 + 8*math.Sin(2*math.Pi*0.05*float64(i)/rate)
+	}
+	set := RemoveSettings{Rate: rate, Orders: []float64{1, 6}, Span: 2, Threads: 2}
+	power := func(x []float64) float64 {
+		sum := 0.0
+		for _, v := range x {
+			sum += v * v
+		}
+		return sum / n
+	}
+	missing := (1 - power(Remove([][]float64{x}, [][]float64{speed}, set).Rest[0])/power(x)) * rate / 2 // Hz of white noise
+	said := 0.0
+	for k, v := range Left([][]float64{speed}, set, 1) {
+		said += 1 - v
+		// 6 · 252 to 6 · 268 Hz fold to 392 … 488 Hz.
+		if f := float64(k); v < 1 && !(f >= 251 && f <= 269 || f >= 391 && f <= 489) {
+			t.Errorf("%g is left at %g Hz, where no order is", v, f)
+		}
+	}
+	if math.Abs(missing/said-1) > 0.1 {
+		t.Errorf("%.3f Hz of noise are missing, %.3f Hz are said to be", missing, said)
+	}
+}
