@@ -145,7 +145,8 @@ func TestLeft(t *testing.T) {
 			t.Errorf("%g is left at %g Hz, where no order is", v, f)
 		}
 	}
-	if math.Abs(missing/said-1) > 0.1 {
+	// 2 lines over 100 s take some 400 numbers out, whose sum of squares scatters by √(2/400).
+	if math.Abs(missing/said-1) > 0.25 {
 		t.Errorf("%.3f Hz of noise are missing, %.3f Hz are said to be", missing, said)
 	}
 }
