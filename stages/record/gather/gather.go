@@ -50,11 +50,7 @@ func Load(ctx context.Context, call *stage.Call, set Settings) (*Recording, erro
 		return nil, err
 	}
 	open := again(opened, call.Report, isBuiltin(reader))
-	file, err := open()
-	if err != nil {
-		return nil, Explain(err, set.File)
-	}
-	header, err := reader.Inspect(ctx, file, set.Options)
+	header, err := reader.Inspect(ctx, opened, set.Options)
 	if err != nil {
 		return nil, Explain(err, set.File)
 	}
