@@ -19,7 +19,10 @@ func differenceSection(c *content) *section {
 	}
 	if d.Frequency != nil {
 		for axis := range kinds.AxisNames {
-			s.chart(c, differenceChart(d, axis), "")
+			if ch := differenceChart(d, axis); ch.Fit() {
+				s.heading(ch.Title)
+				s.chart(c, ch, "")
+			}
 		}
 	}
 	s.table(changedLevels(d))
