@@ -1,7 +1,7 @@
 # Question: which motions of the Sandpiper can be found in its first hover alone, and which
 # modes of the model are they?
-# Expected: seven modes between 100 and 300 Hz with frequency, damping and gyro direction, no
-# rotor order among them, all paired with modes of the model, which lie 1 to 8 % higher;
+# Expected: eight modes between 100 and 400 Hz with frequency, damping and gyro direction, no
+# rotor order among them, all paired with modes of the model, which lie 0 to 7 % higher;
 # order 6 of the rotors, above half the sample rate, is found folded and taken out.
 
 job "sandpiper-flight" {
