@@ -82,15 +82,21 @@ func (s *System) contactContribution(c *Contact, points []ContactPoint) contribu
 	return out
 }
 
-// lever is what a node of a side moves, in airframe axes, for a unit of an unknown.
+// lever is what an unknown moves one point of contact by, per unit of the shape function of a node.
 type lever struct {
-	node, at int
-	motion   [6]float64
+	at, node int        // place in the list of unknowns, node of the side
+	motion   [6]float64 // of the node, in airframe axes
+	gap      [6]float64 // in the axes of the contact, signed by the side
 }
 
-// addContact adds the stiffness of points of the same two elements over the unknowns.
+// sameArm is how far arms of points may differ, in metres, to be taken as one: far above rounding, far below any plate.
+const sameArm = 1e-10
+
+// addContact adds the stiffness of points of the same two elements over the unknowns. Points of equal arms, which is
+// all of them where plates lie on one another, differ by their shape functions alone: these are summed before the unknowns
+// come in.
 func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points []ContactPoint) {
-	l, w := s.layout, len(unknowns)
+	l := s.layout
 	var levers [2][]lever
 	var columns []column
 	for side := range levers {
@@ -98,50 +104,56 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 		for i := range x.Count {
 			columns = l.nodeColumns(columns[:0], x.Nodes[i])
 			for _, col := range columns {
-				levers[side] = append(levers[side], lever{i, slices.Index(unknowns, col.unknown), l.nodes[x.Nodes[i]].axes.out6(col.motion)})
+				levers[side] = append(levers[side], lever{at: slices.Index(unknowns, col.unknown), node: i, motion: l.nodes[x.Nodes[i]].axes.out6(col.motion)})
 			}
 		}
 	}
-	// The gap at a point for a unit of each unknown, row by row, and what is not zero in a row.
-	rows, moved := make([]float64, 6*w), make([][6]float64, w)
-	places, values := make([]int, 0, w), make([]float64, 0, w)
-	for p := range points {
-		clear(rows)
-		for side := range levers {
-			x := &points[p].Sides[side]
-			r, sign := points[p].arm(side, l.problem.Nodes), float64(2*side-1)
-			clear(moved)
-			for i := range levers[side] {
-				v := &levers[side][i]
-				by, to := sign*x.Weights[v.node], &moved[v.at]
-				for k := range to {
-					to[k] += by * v.motion[k]
-				}
+	for lo := 0; lo < len(points); {
+		arms := [2]Vec{points[lo].arm(0, l.problem.Nodes), points[lo].arm(1, l.problem.Nodes)}
+		var products [2][2][6][6]float64 // of the shape functions of both sides, times measure
+		hi := lo
+		for ; hi < len(points); hi++ {
+			p := &points[hi]
+			if length(sub(p.arm(0, l.problem.Nodes), arms[0])) > sameArm || length(sub(p.arm(1, l.problem.Nodes), arms[1])) > sameArm {
+				break
 			}
-			for at := range moved {
-				if moved[at] == ([6]float64{}) {
-					continue
-				}
-				for k, v := range c.Axes.in6(carried(moved[at], r)) {
-					rows[k*w+at] += v
+			for a := range 2 {
+				for b := range 2 {
+					for i := range p.Sides[a].Count {
+						by := p.Measure * p.Sides[a].Weights[i]
+						for j := range p.Sides[b].Count {
+							products[a][b][i][j] += by * p.Sides[b].Weights[j]
+						}
+					}
 				}
 			}
 		}
-		for k, stiffness := range c.Stiffness {
-			if stiffness == 0 {
-				continue
-			}
-			places, values = places[:0], values[:0]
-			for at, v := range rows[k*w : (k+1)*w] {
-				if v != 0 {
-					places, values = append(places, at), append(values, v)
+		lo = hi
+		for side := range levers {
+			for i := range levers[side] {
+				v := &levers[side][i]
+				v.gap = c.Axes.in6(carried(v.motion, arms[side]))
+				for k := range v.gap {
+					v.gap[k] *= float64(2*side - 1)
 				}
 			}
-			by := stiffness * points[p].Measure
-			for i, at := range places {
-				to := dst[element.Packed(at):]
-				for j := range i + 1 {
-					to[places[j]] += by * values[i] * values[j]
+		}
+		for a := range levers {
+			for i := range levers[a] {
+				u := &levers[a][i]
+				force := u.gap
+				for k := range force {
+					force[k] *= c.Stiffness[k]
+				}
+				to := dst[element.Packed(u.at):]
+				for b := range levers {
+					by := &products[a][b][u.node]
+					for j := range levers[b] {
+						if v := &levers[b][j]; v.at <= u.at {
+							g := &v.gap
+							to[v.at] += by[v.node] * (force[0]*g[0] + force[1]*g[1] + force[2]*g[2] + force[3]*g[3] + force[4]*g[4] + force[5]*g[5])
+						}
+					}
 				}
 			}
 		}
