@@ -41,13 +41,14 @@ func (p *ContactPoint) arm(side int, nodes []Vec) Vec {
 	return r
 }
 
-// contactContributions gives one entry per pair of elements that hold points in a row.
+// contactContributions gives one entry per element of side 0 that holds points in a row. The pairs of elements in it
+// share most of their unknowns, so that the entry is not much larger than one of them.
 func (s *System) contactContributions(all []contribution) []contribution {
 	for i := range s.layout.problem.Contacts {
 		c := &s.layout.problem.Contacts[i]
 		for lo := 0; lo < len(c.Points); {
 			hi := lo + 1
-			for hi < len(c.Points) && sameElements(&c.Points[lo], &c.Points[hi]) {
+			for hi < len(c.Points) && c.Points[lo].Sides[0].Nodes == c.Points[hi].Sides[0].Nodes {
 				hi++
 			}
 			all = append(all, s.contactContribution(c, c.Points[lo:hi]))
@@ -61,24 +62,40 @@ func sameElements(a, b *ContactPoint) bool {
 	return a.Sides[0].Nodes == b.Sides[0].Nodes && a.Sides[1].Nodes == b.Sides[1].Nodes
 }
 
-// contactContribution sums over points of the same two elements. The matrix is computed when it is asked
+// contactContribution sums over points of one element of side 0. The matrix is computed when it is asked
 // for, since all of them together would take more memory than K.
 func (s *System) contactContribution(c *Contact, points []ContactPoint) contribution {
 	out := contribution{group: c.Group}
 	var columns []column
-	for side := range 2 {
-		x := &points[0].Sides[side]
-		for i := range x.Count {
-			columns = s.layout.nodeColumns(columns[:0], x.Nodes[i])
-			for _, col := range columns {
-				if !slices.Contains(out.unknowns, col.unknown) {
-					out.unknowns = append(out.unknowns, col.unknown)
+	var met []int32
+	for p := range points {
+		for side := range 2 {
+			x := &points[p].Sides[side]
+			for _, v := range x.Nodes[:x.Count] {
+				if slices.Contains(met, v) {
+					continue
+				}
+				met = append(met, v)
+				columns = s.layout.nodeColumns(columns[:0], v)
+				for _, col := range columns {
+					if !slices.Contains(out.unknowns, col.unknown) {
+						out.unknowns = append(out.unknowns, col.unknown)
+					}
 				}
 			}
 		}
 	}
 	unknowns := out.unknowns
-	out.compute = func(dst []float64) { s.addContact(dst, unknowns, c, points) }
+	out.compute = func(dst []float64) {
+		for lo := 0; lo < len(points); {
+			hi := lo + 1
+			for hi < len(points) && sameElements(&points[lo], &points[hi]) {
+				hi++
+			}
+			s.addContact(dst, unknowns, c, points[lo:hi])
+			lo = hi
+		}
+	}
 	return out
 }
 
@@ -144,6 +161,9 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 				force := u.gap
 				for k := range force {
 					force[k] *= c.Stiffness[k]
+				}
+				if force == ([6]float64{}) {
+					continue
 				}
 				to := dst[element.Packed(u.at):]
 				for b := range levers {
