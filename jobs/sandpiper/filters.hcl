@@ -70,6 +70,14 @@ stage "filter" "chosen" {
   residual   = "3 deg/s"
 }
 
+stage "report" "page" {
+  include = [
+    stage.frame.geometry, stage.shells.mesh, stage.modes.modes, stage.flight.response,
+    stage.hover.spectra, stage.inflight.identified, stage.chosen.filtered,
+  ]
+  to = "report/filters.html"
+}
+
 requirement "less-lag-than-today" {
   that    = stage.chosen.figures.met && stage.chosen.figures.lag < stage.usual.figures.lag
   because = "what the filters cost in phase the control loses in bandwidth"

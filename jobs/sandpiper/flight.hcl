@@ -58,3 +58,11 @@ stage "compare" "check" {
   modes      = stage.modes.modes
   identified = stage.inflight.identified
 }
+
+stage "report" "page" {
+  include = [
+    stage.frame.geometry, stage.frame.properties, stage.shells.mesh, stage.modes.modes,
+    stage.flight.response, stage.hover.spectra, stage.inflight.identified, stage.check.comparison,
+  ]
+  to = "report/flight.html"
+}

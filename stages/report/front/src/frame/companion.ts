@@ -123,7 +123,7 @@ export class Companion {
         html('div', {}, tick('outline at rest', 'rest'), tick('lines that stay still', 'nodeLines'), tick('turning of the gyro', 'gyro'), tick('names', 'names')),
         views,
         html('div', { class: 'looks' }, button('save picture', 'save what is shown as PNG', () => void this.picture()), this.clipButton())))
-    box.open = innerWidth >= 1000 && innerHeight >= 760
+    box.open = innerWidth >= 1100 && innerHeight >= 760
     return box
   }
 
