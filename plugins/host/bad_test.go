@@ -2,6 +2,7 @@ package host
 
 import (
 	"context"
+	"encoding/json"
 	"fmt"
 	"os"
 	"os/exec"
@@ -19,6 +20,7 @@ import (
 	"hushframe/core/pipeline/job"
 	"hushframe/core/pipeline/plan"
 	runner "hushframe/core/pipeline/run"
+	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
 	"hushframe/core/pipeline/store"
 	"hushframe/core/signal/recording"
@@ -128,8 +130,17 @@ func TestBadStageInJob(t *testing.T) {
 			t.Errorf("%s: it took %v", c.how, took)
 		}
 		waitNoChildren(t)
-		if left, _ := filepath.Glob(filepath.Join(folder, ".hushframe", "artifacts", "*")); len(left) != 0 {
-			t.Errorf("%s: the store took %v", c.how, left)
+		// The account of a run is the host's own; nothing of the stage may be there.
+		left, _ := filepath.Glob(filepath.Join(folder, ".hushframe", "artifacts", "*", "*.arrow"))
+		for _, file := range left {
+			manifest, err := os.ReadFile(filepath.Join(filepath.Dir(file), "artifact.json"))
+			var a struct{ Kind string }
+			if err != nil || json.Unmarshal(manifest, &a) != nil || a.Kind != account.KindName {
+				t.Errorf("%s: the store took %s: %s", c.how, file, manifest)
+			}
+		}
+		if len(left) == 0 {
+			t.Errorf("%s: the store has no account of the run", c.how)
 		}
 	}
 	// Printing is no misdeed, and the store is still good.
