@@ -10,7 +10,7 @@ import (
 // far below the first elastic mode, at least eight elastic modes below 750 Hz,
 // none missed, and each within 1 % of that on a finer mesh.
 func TestFinerMesh(t *testing.T) {
-	d := perform(t, "baseline.hcl", nil)
+	d := perform(t, "modes.hcl", nil)
 	if r := quantity(t, d, "modes", "rigid_ratio"); !(r < 1e-3) {
 		t.Errorf("rigid-body frequencies reach %g of the first elastic one", r)
 	}
@@ -31,8 +31,8 @@ func TestFinerMesh(t *testing.T) {
 	if len(base) < 8 {
 		t.Fatalf("%d elastic modes below 750 Hz", len(base))
 	}
-	fine := frequencies(modes(t, perform(t, "baseline.hcl", map[string]string{"mesh_size": "3.5 mm"})), 760)
-	rough := frequencies(modes(t, perform(t, "baseline.hcl", map[string]string{"mesh_size": coarse})), 760)
+	fine := frequencies(modes(t, perform(t, "modes.hcl", map[string]string{"mesh_size": "3.5 mm"})), 760)
+	rough := frequencies(modes(t, perform(t, "modes.hcl", map[string]string{"mesh_size": coarse})), 760)
 	for i, f := range base {
 		if e := math.Abs(f/fine[i] - 1); e > 0.01 {
 			t.Errorf("mode %d: %.2f Hz, %.2f Hz on a finer mesh", i+1, f, fine[i])
@@ -48,10 +48,10 @@ func TestFinerMesh(t *testing.T) {
 func TestTrends(t *testing.T) {
 	with := func(set map[string]string) []float64 {
 		set["mesh_size"] = coarse
-		return frequencies(modes(t, perform(t, "baseline.hcl", set)), math.Inf(1))
+		return frequencies(modes(t, perform(t, "modes.hcl", set)), math.Inf(1))
 	}
 	base := with(map[string]string{})
-	n := len(frequencies(modes(t, perform(t, "baseline.hcl", map[string]string{"mesh_size": coarse})), 500))
+	n := len(frequencies(modes(t, perform(t, "modes.hcl", map[string]string{"mesh_size": coarse})), 500))
 
 	// Stiffness up, mass the same: no mode may fall, and none rise by more than √2 (Rayleigh's quotient).
 	stiff := with(map[string]string{"carbon_modulus": "110 GPa"})
