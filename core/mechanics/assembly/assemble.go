@@ -40,34 +40,34 @@ func (s *System) add(threads int) {
 	m := k.Fork()
 	// Adding goes in order, so the two matrices are added side by side.
 	dense.Parallel(threads, 2, func(which int) {
-		each := (threads + 1) / 2
 		if which == 0 {
-			k.AddAll(each, func(e int, packed []float64) { all[e].addStiffness(packed) })
+			k.AddAll(threads, func(e int, packed []float64) bool { return all[e].addStiffness(packed) })
 			s.K = k.Matrix()
 			return
 		}
-		m.AddAll(each, func(e int, packed []float64) { all[e].reduce(packed, all[e].mass) })
+		m.AddAll(threads, func(e int, packed []float64) bool { return all[e].reduce(packed, all[e].mass) })
 		s.M = m.Matrix()
 	})
 }
 
-// addStiffness adds the stiffness over the unknowns to dst, which is zero.
-func (c *contribution) addStiffness(dst []float64) {
+// addStiffness adds the stiffness over the unknowns to dst, which is zero, and tells whether there is any.
+func (c *contribution) addStiffness(dst []float64) bool {
 	if c.compute != nil {
 		c.compute(dst)
-		return
+		return true
 	}
-	c.reduce(dst, c.stiffness)
+	return c.reduce(dst, c.stiffness)
 }
 
-// reduce writes Tᵀ A T, T being the matrix of the shares, or A where there are none. A nil A leaves dst zero.
-func (c *contribution) reduce(dst, a []float64) {
+// reduce writes Tᵀ A T, T being the matrix of the shares, or A where there are none. A nil A leaves dst zero and
+// gives false.
+func (c *contribution) reduce(dst, a []float64) bool {
 	if a == nil {
-		return
+		return false
 	}
 	if c.starts == nil {
 		copy(dst, a)
-		return
+		return true
 	}
 	n, w := len(c.starts)-1, len(c.unknowns)
 	row := make([]float64, w) // of A T
@@ -89,6 +89,7 @@ func (c *contribution) reduce(dst, a []float64) {
 			}
 		}
 	}
+	return true
 }
 
 func (s *System) contributions() []contribution {

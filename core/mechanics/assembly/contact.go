@@ -103,7 +103,7 @@ func (s *System) contactContribution(c *Contact, points []ContactPoint) contribu
 type lever struct {
 	at, node int        // place in the list of unknowns, node of the side
 	motion   [6]float64 // of the node, in airframe axes
-	gap      [6]float64 // in the axes of the contact, signed by the side
+	gap      [6]float64 // in those axes of the contact that have stiffness, signed by the side
 }
 
 // sameArm is how far arms of points may differ, in metres, to be taken as one: far above rounding, far below any plate.
@@ -123,6 +123,12 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 			for _, col := range columns {
 				levers[side] = append(levers[side], lever{at: slices.Index(unknowns, col.unknown), node: i, motion: l.nodes[x.Nodes[i]].axes.out6(col.motion)})
 			}
+		}
+	}
+	var stiff []int
+	for k, v := range c.Stiffness {
+		if v != 0 {
+			stiff = append(stiff, k)
 		}
 	}
 	for lo := 0; lo < len(points); {
@@ -149,18 +155,18 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 		for side := range levers {
 			for i := range levers[side] {
 				v := &levers[side][i]
-				v.gap = c.Axes.in6(carried(v.motion, arms[side]))
-				for k := range v.gap {
-					v.gap[k] *= float64(2*side - 1)
+				gap := c.Axes.in6(carried(v.motion, arms[side]))
+				for k, at := range stiff {
+					v.gap[k] = gap[at] * float64(2*side-1)
 				}
 			}
 		}
 		for a := range levers {
 			for i := range levers[a] {
 				u := &levers[a][i]
-				force := u.gap
-				for k := range force {
-					force[k] *= c.Stiffness[k]
+				var force [6]float64
+				for k, at := range stiff {
+					force[k] = u.gap[k] * c.Stiffness[at]
 				}
 				if force == ([6]float64{}) {
 					continue
@@ -169,10 +175,16 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 				for b := range levers {
 					by := &products[a][b][u.node]
 					for j := range levers[b] {
-						if v := &levers[b][j]; v.at <= u.at {
-							g := &v.gap
-							to[v.at] += by[v.node] * (force[0]*g[0] + force[1]*g[1] + force[2]*g[2] + force[3]*g[3] + force[4]*g[4] + force[5]*g[5])
+						v := &levers[b][j]
+						if v.at > u.at {
+							continue
 						}
+						g := &v.gap
+						work := force[0]*g[0] + force[1]*g[1] + force[2]*g[2]
+						if len(stiff) > 3 {
+							work += force[3]*g[3] + force[4]*g[4] + force[5]*g[5]
+						}
+						to[v.at] += by[v.node] * work
 					}
 				}
 			}

@@ -17,12 +17,15 @@ func (s *System) Weighted(weights []float64, threads int) *sparse.Symmetric {
 	for i := range all {
 		lists[i] = all[i].unknowns
 	}
-	k := sparse.NewAssembler(s.N, lists)
-	k.AddAll(threads, func(e int, packed []float64) {
-		all[e].addStiffness(packed)
+	k := sparse.NewAssemblerThreads(s.N, lists, threads)
+	k.AddAll(threads, func(e int, packed []float64) bool {
+		if !all[e].addStiffness(packed) {
+			return false
+		}
 		for i := range packed {
 			packed[i] *= weights[all[e].group]
 		}
+		return true
 	})
 	return k.Matrix()
 }

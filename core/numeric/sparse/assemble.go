@@ -185,25 +185,30 @@ func (a *Assembler) Add(e int, packed []float64) {
 }
 
 // AddAll computes all element matrices with the given number of threads (0 means one per processor) and adds them in
-// the order of the elements. compute fills packed with the matrix of element e; it is called from several goroutines.
-func (a *Assembler) AddAll(threads int, compute func(e int, packed []float64)) {
+// the order of the elements. compute fills packed, which is zero, with the matrix of element e, or leaves it so and gives
+// false; it is called from several goroutines.
+func (a *Assembler) AddAll(threads int, compute func(e int, packed []float64) bool) {
 	const batch = 256
 	if threads <= 0 {
 		threads = runtime.GOMAXPROCS(0)
 	}
 	total := len(a.order)
 	var scratch []float64
+	var any [batch]bool
 	for first := 0; first < total; first += batch {
 		last := min(first+batch, total)
 		base := a.elements[first]
 		scratch = slices.Grow(scratch[:0], a.elements[last]-base)[:a.elements[last]-base]
-		clear(scratch)
 		dense.Parallel(min(threads, last-first), last-first, func(k int) {
 			e := first + k
-			compute(e, scratch[a.elements[e]-base:a.elements[e+1]-base])
+			packed := scratch[a.elements[e]-base : a.elements[e+1]-base]
+			clear(packed)
+			any[k] = compute(e, packed)
 		})
 		for e := first; e < last; e++ {
-			a.Add(e, scratch[a.elements[e]-base:a.elements[e+1]-base])
+			if any[e-first] {
+				a.Add(e, scratch[a.elements[e]-base:a.elements[e+1]-base])
+			}
 		}
 	}
 }
