@@ -210,6 +210,7 @@ type gathered struct {
 	origin                     []float64
 	time, values               [][]float64
 	notes                      []string
+	findings                   []recording.Finding
 }
 
 func (g *gathered) add(b recording.Batch) error {
@@ -219,7 +220,7 @@ func (g *gathered) add(b recording.Batch) error {
 	for c, v := range b.Values {
 		g.batch, g.column, g.values = append(g.batch, at), append(g.column, int64(c)), append(g.values, append([]float64{}, v...))
 	}
-	g.notes = append(g.notes, b.Notes...)
+	g.notes, g.findings = append(g.notes, b.Notes...), append(g.findings, b.Findings...)
 	return nil
 }
 
@@ -228,6 +229,11 @@ func (g *gathered) encode() *artifact.Artifact {
 	a.Table("batches").Set("first", g.first).Set("rows", g.rows).Set("origin", g.origin).Set("time", g.time)
 	a.Table("values").Set("batch", g.batch).Set("column", g.column).Set("values", g.values)
 	a.Table("notes").Set("text", g.notes)
+	n := len(g.findings)
+	a.Table("findings").Set("what", each(n, func(i int) string { return g.findings[i].What })).
+		Set("where", each(n, func(i int) string { return g.findings[i].Where })).
+		Set("extent", each(n, func(i int) string { return g.findings[i].Extent })).
+		Set("consequence", each(n, func(i int) string { return g.findings[i].Consequence }))
 	return a
 }
 
@@ -261,6 +267,10 @@ func deliver(a *artifact.Artifact, request recording.Request, sink func(recordin
 		}
 		if i == t.Rows()-1 {
 			b.Notes = a.Table("notes").Texts("text")
+			f := a.Table("findings")
+			for k, what := range f.Texts("what") {
+				b.Findings = append(b.Findings, recording.Finding{What: what, Where: f.Texts("where")[k], Extent: f.Texts("extent")[k], Consequence: f.Texts("consequence")[k]})
+			}
 		}
 		if err := sink(b); err != nil {
 			return sinkError{err}

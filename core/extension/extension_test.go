@@ -207,6 +207,7 @@ func (c counting) Read(_ context.Context, _ io.Reader, _ stage.Arguments, q reco
 		}
 		if at+n == c.rows {
 			b.Notes = []string{"the last row is cut"}
+			b.Findings = []recording.Finding{{What: "stuck", Where: "gx", Extent: "rows 3 to 7", Consequence: "nothing is heard there"}}
 		}
 		if err := sink(b); err != nil {
 			return err

@@ -110,5 +110,11 @@ var samplesKind = artifact.Kind{
 			col("values", artifact.FloatList, "", "one per row, in the unit of the recording; NaN is no sample"),
 		}},
 		{Name: "notes", About: "facts met on the way, such as an incomplete last row", Columns: []artifact.Column{col("text", artifact.Text, "", "one line, no full stop")}},
+		{Name: "findings", About: "faults of the recording that leave the rest usable", Columns: []artifact.Column{
+			col("what", artifact.Text, "", "one or two words"),
+			col("where", artifact.Text, "", "column of the recording, empty for the whole of it"),
+			col("extent", artifact.Text, "", "how much, and where in time, rows or frequency"),
+			col("consequence", artifact.Text, "", "what it does to what is computed"),
+		}},
 	},
 }

@@ -87,12 +87,13 @@ func (s *System) contactContribution(c *Contact, points []ContactPoint) contribu
 	}
 	unknowns := out.unknowns
 	out.compute = func(dst []float64) {
+		var work [2]leverage
 		for lo := 0; lo < len(points); {
 			hi := lo + 1
 			for hi < len(points) && sameElements(&points[lo], &points[hi]) {
 				hi++
 			}
-			s.addContact(dst, unknowns, c, points[lo:hi])
+			s.addContact(dst, unknowns, c, points[lo:hi], &work)
 			lo = hi
 		}
 	}
@@ -106,24 +107,57 @@ type lever struct {
 	gap      [6]float64 // in those axes of the contact that have stiffness, signed by the side
 }
 
+// leverage is what a side of a pair of elements moves; it is kept from pair to pair while its element and its arm are
+// the same.
+type leverage struct {
+	nodes  [6]int32
+	levers []lever
+	arm    Vec
+	set    bool // whether the gaps are those at this arm
+}
+
+// take makes the levers those of a side.
+func (v *leverage) take(l *layout, x *ContactSide, unknowns []int32, columns []column) []column {
+	if len(v.levers) > 0 && v.nodes == x.Nodes {
+		return columns
+	}
+	v.nodes, v.set, v.levers = x.Nodes, false, slices.Grow(v.levers[:0], 6*x.Count)
+	for i := range x.Count {
+		columns = l.nodeColumns(columns[:0], x.Nodes[i])
+		axes := l.nodes[x.Nodes[i]].axes
+		for _, col := range columns {
+			v.levers = append(v.levers, lever{at: slices.Index(unknowns, col.unknown), node: i, motion: axes.out6(col.motion)})
+		}
+	}
+	return columns
+}
+
+// reach makes the gaps those of a point at an arm.
+func (v *leverage) reach(c *Contact, stiff []int, arm Vec, sign float64) {
+	if v.set && length(sub(arm, v.arm)) <= sameArm {
+		return
+	}
+	v.arm, v.set = arm, true
+	for i := range v.levers {
+		x := &v.levers[i]
+		gap := c.Axes.in6(carried(x.motion, arm))
+		for k, at := range stiff {
+			x.gap[k] = gap[at] * sign
+		}
+	}
+}
+
 // sameArm is how far arms of points may differ, in metres, to be taken as one: far above rounding, far below any plate.
 const sameArm = 1e-10
 
 // addContact adds the stiffness of points of the same two elements over the unknowns. Points of equal arms, which is
 // all of them where plates lie on one another, differ by their shape functions alone: these are summed before the unknowns
 // come in.
-func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points []ContactPoint) {
+func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points []ContactPoint, work *[2]leverage) {
 	l := s.layout
-	var levers [2][]lever
 	var columns []column
-	for side := range levers {
-		x := &points[0].Sides[side]
-		for i := range x.Count {
-			columns = l.nodeColumns(columns[:0], x.Nodes[i])
-			for _, col := range columns {
-				levers[side] = append(levers[side], lever{at: slices.Index(unknowns, col.unknown), node: i, motion: l.nodes[x.Nodes[i]].axes.out6(col.motion)})
-			}
-		}
+	for side := range work {
+		columns = work[side].take(l, &points[0].Sides[side], unknowns, columns)
 	}
 	var stiff []int
 	for k, v := range c.Stiffness {
@@ -152,18 +186,12 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 			}
 		}
 		lo = hi
-		for side := range levers {
-			for i := range levers[side] {
-				v := &levers[side][i]
-				gap := c.Axes.in6(carried(v.motion, arms[side]))
-				for k, at := range stiff {
-					v.gap[k] = gap[at] * float64(2*side-1)
-				}
-			}
+		for side := range work {
+			work[side].reach(c, stiff, arms[side], float64(2*side-1))
 		}
-		for a := range levers {
-			for i := range levers[a] {
-				u := &levers[a][i]
+		for a := range work {
+			for i := range work[a].levers {
+				u := &work[a].levers[i]
 				var force [6]float64
 				for k, at := range stiff {
 					force[k] = u.gap[k] * c.Stiffness[at]
@@ -172,19 +200,19 @@ func (s *System) addContact(dst []float64, unknowns []int32, c *Contact, points 
 					continue
 				}
 				to := dst[element.Packed(u.at):]
-				for b := range levers {
-					by := &products[a][b][u.node]
-					for j := range levers[b] {
-						v := &levers[b][j]
+				for b := range work {
+					by, levers := &products[a][b][u.node], work[b].levers
+					for j := range levers {
+						v := &levers[j]
 						if v.at > u.at {
 							continue
 						}
 						g := &v.gap
-						work := force[0]*g[0] + force[1]*g[1] + force[2]*g[2]
+						w := force[0]*g[0] + force[1]*g[1] + force[2]*g[2]
 						if len(stiff) > 3 {
-							work += force[3]*g[3] + force[4]*g[4] + force[5]*g[5]
+							w += force[3]*g[3] + force[4]*g[4] + force[5]*g[5]
 						}
-						to[v.at] += by[v.node] * work
+						to[v.at] += by[v.node] * w
 					}
 				}
 			}

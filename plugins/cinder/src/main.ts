@@ -51,6 +51,7 @@ async function samples(r: Request, cancelled: () => boolean): Promise<void> {
       { name: "values", unit: "", type: "float list", values: batches.flatMap((b) => b.values) },
     ],
     notes: [{ name: "text", unit: "", type: "text", values: notes }],
+    findings: ["what", "where", "extent", "consequence"].map((name) => ({ name, unit: "", type: "text", values: [] })),
   });
 }
 
