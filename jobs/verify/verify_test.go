@@ -79,7 +79,7 @@ func TestMeshJobIsSound(t *testing.T) {
 	if diags.HasErrors() {
 		t.Fatal(diags)
 	}
-	if len(p.Steps) != 4 {
+	if len(p.Steps) != 5 {
 		t.Errorf("%d steps", len(p.Steps))
 	}
 }
