@@ -14,6 +14,7 @@ import (
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/job"
 	"hushframe/core/pipeline/nearest"
+	"hushframe/core/pipeline/pins"
 	"hushframe/core/pipeline/plan"
 	"hushframe/core/pipeline/run/account"
 	"hushframe/core/pipeline/stage"
@@ -133,6 +134,10 @@ func (a *app) load(ctx context.Context, h *host.Host, path string, f *jobFlags) 
 	})
 	var p *plan.Plan
 	if !diags.HasErrors() {
+		// The account of the run, and so the report, tells what was trusted.
+		if text, err := os.ReadFile(filepath.Join(j.Folder, pins.FileName)); err == nil {
+			j.Sources = append(j.Sources, job.Source{Name: pins.FileName, File: pins.FileName, Bytes: text})
+		}
 		var more hcl.Diagnostics
 		p, more = plan.Make(j)
 		diags = append(diags, more...)

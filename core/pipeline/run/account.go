@@ -48,7 +48,7 @@ func (r *runner) describe() *account.Account {
 			step.State = string(result.State)
 		}
 		a.Steps = append(a.Steps, step)
-		executables[account.Executable{Name: "stages of " + r.Program, Version: runtime.Version(), SHA256: step.Executable}] = true
+		executables[account.Executable{Name: "stages of " + r.Program, Version: runtime.Version() + " " + runtime.GOOS + "/" + runtime.GOARCH, SHA256: step.Executable}] = true
 		if s.Last {
 			continue
 		}
