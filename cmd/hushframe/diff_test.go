@@ -9,6 +9,8 @@ import (
 	"strings"
 	"testing"
 	"time"
+
+	"hushframe/core/pipeline/pins"
 )
 
 // shortIDs are ids and checksums as tables show them.
@@ -164,5 +166,16 @@ func TestNamedRunsStay(t *testing.T) {
 	w.must(exitHeld, "prune", w.job, "--unused-for", "1 ms")
 	if left, _ := filepath.Glob(filepath.Join(w.dir, ".hushframe", "artifacts", "*")); len(left) > 0 {
 		t.Errorf("artifacts are left: %v", left)
+	}
+}
+
+// The account of a run tells the pins beside the job: they came between these two runs.
+func TestAccountTellsPins(t *testing.T) {
+	w := newPlank(t)
+	w.must(exitHeld, "run", w.job)
+	w.write(pins.FileName, "{\"extensions\": []}\n")
+	w.must(exitHeld, "run", w.job)
+	if text := w.must(exitHeld, "diff", w.job); !strings.Contains(text, pins.FileName) {
+		t.Errorf("the runs differ by their pins, and this says nothing of them:\n%s", text)
 	}
 }
