@@ -191,7 +191,7 @@ func dampedMasses(t known.T, row known.Row) []float64 {
 	return got
 }
 
-// Row D-FORCED-DEEP-BEAM: bending in one plane; the moment at mid-span from the turn of its neighbours.
+// Row D-FORCED-DEEP-BEAM: bending in one plane.
 func forcedBeam(t known.T, row known.Row) []float64 {
 	var c struct {
 		bar
@@ -220,10 +220,13 @@ func forcedBeam(t known.T, row known.Row) []float64 {
 	load := make([]float64, s.N)
 	s.LoadNodes(load, forces)
 	mid := elements / 2
-	h := length / elements
 	deflection := unitForce(s, int(list[mid]), 2)
-	// σ = E z dθ/dx, by central difference over two beams.
-	stress := combined(c.E*side/2/(2*h), unitForce(s, int(list[mid+1]), 4), -c.E*side/2/(2*h), unitForce(s, int(list[mid-1]), 4))
+	stress := make([]float64, s.N) // at mid-span, of each unknown
+	for i := range stress {
+		y := make([]float64, s.N)
+		y[i] = 1
+		stress[i] = s.BeamStresses(y)[mid][0].AboutY
+	}
 	first := solve(t, s, eigen.Options{Modes: 1})
 	res := solve(t, s, eigen.Options{Limit: 25 * first.Values[0]})
 	d := drive(t, res, load, [3][]float64{deflection, stress}, 0, 0.02)

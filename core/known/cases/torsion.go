@@ -15,18 +15,29 @@ import (
 	"hushframe/core/mechanics/outline"
 )
 
-// barTwist returns the rigidity (N·m²) of a clamped bar of beams by its twist under an end moment.
-func barTwist(t known.T, section beam.Section) float64 {
+// barLength is the length (m) of the bars.
+const barLength = 0.1
+
+// twistedBar clamps one end of a bar of beams and puts a unit moment about its axis on the other. It returns the twist of its end (rad) and the greatest shear stress at its clamp (Pa).
+func twistedBar(t known.T, section beam.Section) (twist, stress float64) {
 	t.Helper()
-	const length = 0.1
 	var f frame
-	a, b := f.point(0, 0, 0), f.point(length, 0, 0)
+	a, b := f.point(0, 0, 0), f.point(barLength, 0, 0)
 	f.member("bar", section, assembly.Vec{0, 1, 0}, a, b, 4)
 	f.hold(a, "xyzXYZ")
-	load := make([]float64, 6*len(f.Nodes))
-	load[6*int(b)+3] = 1
-	u, _ := answer(t, &f.Problem, load)
-	return length / u[0][6*int(b)+3]
+	s := assemble(t, &f.Problem)
+	load := unitForce(s, int(b), 3)
+	u := static(t, s, load)
+	return dotted(load, u), s.BeamStresses(u)[0][0].Torsion
+}
+
+// ratioOf reads the width over the thickness from a label.
+func ratioOf(t known.T, row known.Row, label string) (ratio float64) {
+	t.Helper()
+	if _, err := fmt.Sscanf(label, "b/t=%g", &ratio); err != nil {
+		t.Fatalf("row %s: label %q: %v", row.ID, label, err)
+	}
+	return ratio
 }
 
 // Row A-TORSION-J: St Venant's constant over width times thickness cubed.
@@ -34,12 +45,21 @@ func torsionConstants(t known.T, row known.Row) []float64 {
 	const thickness, e, nu = 2e-3, 70e9, 0.3
 	var got []float64
 	for _, label := range row.Labels {
-		var ratio float64
-		if _, err := fmt.Sscanf(label, "b/t=%g", &ratio); err != nil {
-			t.Fatalf("row %s: label %q: %v", row.ID, label, err)
-		}
-		rigidity := barTwist(t, beam.Rectangle(ratio*thickness, thickness, e, nu, 2700))
-		got = append(got, rigidity/(e/(2*(1+nu)))/(ratio*math.Pow(thickness, 4)))
+		ratio := ratioOf(t, row, label)
+		twist, _ := twistedBar(t, beam.Rectangle(ratio*thickness, thickness, e, nu, 2700))
+		got = append(got, barLength/twist/(e/(2*(1+nu)))/(ratio*math.Pow(thickness, 4)))
+	}
+	return got
+}
+
+// Row A-TORSION-TAU: the torque over the greatest shear stress, over width times thickness squared.
+func torsionStresses(t known.T, row known.Row) []float64 {
+	const thickness = 2e-3
+	var got []float64
+	for _, label := range row.Labels {
+		ratio := ratioOf(t, row, label)
+		_, stress := twistedBar(t, beam.Rectangle(ratio*thickness, thickness, 70e9, 0.3, 2700))
+		got = append(got, 1/stress/(ratio*math.Pow(thickness, 3)))
 	}
 	return got
 }
@@ -56,7 +76,8 @@ func orthotropicBars(t known.T, row known.Row) []float64 {
 	wider := math.Sqrt(c.Gxz / c.Gxy)
 	s := beam.Rectangle(c.Width, c.Thickness, 60e9, 0, 1500)
 	s.GJ = c.Gxy / wider * beam.TorsionConstant(c.Width*wider, c.Thickness)
-	return []float64{barTwist(t, s)}
+	twist, _ := twistedBar(t, s)
+	return []float64{barLength / twist}
 }
 
 // Rows A-FSDT-STRIP-*: the rigidity of a narrow strip with free edges as the mesh stage meshes it.

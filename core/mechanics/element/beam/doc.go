@@ -7,6 +7,7 @@
 //	EA, EIy, EIz, GJ   axial (N), bending about y and z, torsional stiffness (N·m²)
 //	GAy, GAz           shear stiffness along y and z with the shear factor applied, N
 //	m, jx, jy, jz      mass (kg/m) and rotary inertia (kg·m) per length about x, y and z
+//	Wy, Wz, Wt         moduli: moment over the greatest stress it makes, bending and torsion, m³
 //	Φ                  12 EI/(GA L²), the shear parameter of one element
 //
 // The interpolation solves the static equations of the unloaded beam exactly, so that one element

@@ -2,10 +2,13 @@ package beam
 
 import "math"
 
-// Section holds the stiffness and inertia of a beam per length.
+// Section holds the stiffness and inertia of a beam per length, and what its stresses follow from.
 type Section struct {
 	EA, EIy, EIz, GJ, GAy, GAz float64
 	M, Jx, Jy, Jz              float64
+	// Area (m²) and moduli (m³): the moment over the greatest stress that it makes, in bending about y and z and
+	// in torsion. They are needed for stresses alone.
+	Area, Wy, Wz, Wt float64
 }
 
 // Rectangle returns the section of a solid rectangle, width along y and height along z (m), of an
@@ -18,6 +21,7 @@ func Rectangle(width, height, e, nu, rho float64) Section {
 		EA: e * area, EIy: e * iy, EIz: e * iz, GJ: g * TorsionConstant(width, height),
 		GAy: 5.0 / 6 * g * area, GAz: 5.0 / 6 * g * area,
 		M: rho * area, Jx: rho * (iy + iz), Jy: rho * iy, Jz: rho * iz,
+		Area: area, Wy: 2 * iy / height, Wz: 2 * iz / width, Wt: TorsionModulus(width, height),
 	}
 }
 
@@ -34,6 +38,7 @@ func Tube(outer, inner, e, nu, rho float64) Section {
 		EA: e * area, EIy: e * i, EIz: e * i, GJ: g * 2 * i,
 		GAy: factor * g * area, GAz: factor * g * area,
 		M: rho * area, Jx: 2 * rho * i, Jy: rho * i, Jz: rho * i,
+		Area: area, Wy: 2 * i / outer, Wz: 2 * i / outer, Wt: 4 * i / outer,
 	}
 }
 
