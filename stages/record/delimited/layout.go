@@ -19,6 +19,7 @@ type layout struct {
 	units     []string
 	text      []bool  // fields that hold something else than numbers
 	stamp     []bool  // fields that hold times of day
+	idle      bool    // the last field is always empty
 	named     bool    // the names are those of the recording
 	rate      float64 // stated above the rows, Hz; 0 for none
 	rates     bool    // several are, and they differ
@@ -159,17 +160,19 @@ func (c candidate) layout(lines [][]byte) (layout, bool) {
 		l.stamp[j] = c.numeric[j] && j < len(c.cells[l.first]) && isStamp(c.cells[l.first][j])
 		l.text[j] = !c.numeric[j] && c.holdsText(l.first, j)
 	}
+	l.idle = !c.numeric[c.fields-1] && !l.text[c.fields-1]
 	l.units = make([]string, c.fields)
-	above := l.above(lines, l.first)
+	above, rows := l.above(lines, l.first)
 	if above >= 0 {
-		if units := l.cut(lines[above]); allUnits(units) {
-			if names := l.above(lines, above); names >= 0 {
+		if units := l.fitted(lines[above]); allUnits(units) {
+			if names, _ := l.above(lines, above); names >= 0 {
 				l.units, above = units, names
 			}
 		}
 	}
 	if above >= 0 {
-		l.names, l.named = l.cut(lines[above]), true
+		l.names, l.named = l.fitted(lines[above]), true
+		l.first = rows
 		for j, name := range l.names {
 			l.names[j] = name
 			if _, unit := bracketed(name); unit != "" {
@@ -194,23 +197,65 @@ func (c candidate) holdsText(first, column int) bool {
 }
 
 // above returns the line with the names (or units) of the rows below that line, -1 for none: the last one with as many
-// fields. Free text ends the search; a comment is taken only if no plain line is.
-func (l layout) above(lines [][]byte, before int) int {
-	comment := -1
+// fields. Free text ends the search; a comment is taken only if no plain line is. Rows that are hurt may stand between: the
+// first of them is the first row.
+func (l layout) above(lines [][]byte, before int) (at, first int) {
+	comment, last := -1, before
+	first = before
 	for i := before - 1; i >= 0; i-- {
-		fits := len(l.cut(lines[i])) == l.fields
+		fits := l.fitted(lines[i]) != nil
 		switch {
 		case len(bytes.TrimSpace(lines[i])) == 0:
 		case !skipped(lines[i]):
-			if fits {
-				return i
+			if l.hurt(lines[i]) {
+				last = i
+				continue
 			}
-			return comment
+			if fits {
+				return i, last
+			}
+			return comment, first
 		case fits && comment < 0:
-			comment = i
+			comment, first = i, last
 		}
 	}
-	return comment
+	return comment, first
+}
+
+// hurt tells whether a line that is no row was meant as one: it holds nothing but numbers and what stands for none.
+func (l layout) hurt(line []byte) bool {
+	numbers, cells := 0, split(line, l.separator)
+	for _, cell := range cells {
+		switch classify(cell, l.point) {
+		case number:
+			numbers++
+		case other:
+			if !infinite(cell) {
+				return false
+			}
+		}
+	}
+	return numbers > 0 || len(cells) == l.fields
+}
+
+// infinite tells whether a field says that a number is too large to be written.
+func infinite(cell []byte) bool {
+	word := strings.ToLower(string(bytes.TrimLeft(cell, "+-")))
+	return word == "inf" || word == "infinity"
+}
+
+// fitted returns the fields of a line above the rows, as many as a row has, or nil. Rows or that line may end in one separator more.
+func (l layout) fitted(line []byte) []string {
+	cells := l.cut(line)
+	switch n := len(cells); {
+	case n == l.fields:
+		return cells
+	case n == l.fields+1 && n > 2 && cells[n-1] == "":
+		return cells[:l.fields]
+	case n == l.fields-1 && n > 1 && l.idle:
+		return append(cells, "")
+	}
+	return nil
 }
 
 // cut splits a line above the rows, without a comment mark.
@@ -268,73 +313,6 @@ func missing(cell []byte) bool {
 			strings.EqualFold(string(cell), "na"))
 	}
 	return false
-}
-
-// split cuts a line into fields without surrounding blanks and quotes. A separator within quotes does not count.
-func split(line []byte, separator byte) [][]byte {
-	var out [][]byte
-	rest := trimEnd(line)
-	for {
-		field, tail, more := next(rest, separator)
-		out = append(out, field)
-		if !more {
-			return out
-		}
-		rest = tail
-	}
-}
-
-// next takes one field off a line; more tells whether a separator followed.
-func next(line []byte, separator byte) (field, rest []byte, more bool) {
-	i := 0
-	for i < len(line) && (line[i] == ' ' || line[i] == '\t' && separator != '\t') {
-		i++
-	}
-	if i < len(line) && line[i] == '"' {
-		if end := bytes.IndexByte(line[i+1:], '"'); end >= 0 {
-			field = trim(line[i+1 : i+1+end])
-			i += end + 2
-			for i < len(line) && line[i] == ' ' {
-				i++
-			}
-			if i < len(line) && (line[i] == separator || separator == blank && line[i] == '\t') {
-				return field, line[i+1:], true
-			}
-			if separator == blank && i < len(line) {
-				return field, line[i:], true
-			}
-			return field, nil, false
-		}
-	}
-	start := i
-	if separator == blank {
-		for i < len(line) && line[i] != ' ' && line[i] != '\t' {
-			i++
-		}
-	} else if end := bytes.IndexByte(line[i:], separator); end >= 0 {
-		i += end
-	} else {
-		i = len(line)
-	}
-	if i == len(line) {
-		return trim(line[start:]), nil, false
-	}
-	return trim(line[start:i]), line[i+1:], true
-}
-
-func trim(cell []byte) []byte {
-	for len(cell) > 0 && (cell[0] == ' ' || cell[0] == '\t') {
-		cell = cell[1:]
-	}
-	return trimEnd(cell)
-}
-
-// trimEnd takes off blanks and line ends, but not tabs, which may separate empty fields.
-func trimEnd(line []byte) []byte {
-	for len(line) > 0 && (line[len(line)-1] == ' ' || line[len(line)-1] == '\r') {
-		line = line[:len(line)-1]
-	}
-	return line
 }
 
 // bracketed splits "gyro x [deg/s]" or "gyro x (deg/s)" into name and unit.

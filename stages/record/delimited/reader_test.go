@@ -10,6 +10,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"reflect"
+	"slices"
 	"strconv"
 	"strings"
 	"testing"
@@ -77,6 +78,10 @@ func TestLayouts(t *testing.T) {
 		{"blanks for a table", "   t     gx\n 0.0   1.5\n 1.0  -2.5\n", []string{"t", "gx"}, []string{"", ""}, "blank", []float64{1.5, -2.5}},
 		{"decimal comma", "t;gx\n0,5;1,25\n1,5;2,5\n", []string{"t", "gx"}, []string{"", ""}, "decimal comma", []float64{1.25, 2.5}},
 		{"no names", "0|5\n1|6\n", []string{"column 1", "column 2"}, []string{"", ""}, "no line of names", []float64{5, 6}},
+		{"quotes in a quoted name", "t,\"gyro \"\"x\"\", rate [deg/s]\"\n0,5\n1,6\n", []string{"t", "gyro \"x\", rate [deg/s]"}, []string{"", "deg/s"}, "comma", []float64{5, 6}},
+		{"rows end in a separator", "t,gx\n0,5,\n1,6,\n", []string{"t", "gx", "column 3"}, []string{"", "", ""}, "comma", []float64{math.NaN(), math.NaN()}},
+		{"names end in a separator", "t,gx,\n0,5\n1,6\n", []string{"t", "gx"}, []string{"", ""}, "comma", []float64{5, 6}},
+		{"no sample in the first rows", "t,gx,gy\n0,nan,null\n,,NaN\n2,6,7\n3,8,9\n", []string{"t", "gx", "gy"}, []string{"", "", ""}, "comma", []float64{math.NaN(), math.NaN(), 7, 9}},
 		{"quoted", "\"t, s\",\"gx\"\n\"0\",\"5\"\n\"1\",\"6\"\n", []string{"t, s", "gx"}, []string{"", ""}, "comma", []float64{5, 6}},
 		{"preamble", "Recorder 7\nrate,2000\nchannels,2,of,9\n\nt,gx\n0,5\n1,6\n2,7\n", []string{"t", "gx"}, []string{"", ""}, "comma", []float64{5, 6, 7}},
 		{"missing samples", "t,gx\n0,\n1,NaN\n2,null\n3,4\n", []string{"t", "gx"}, []string{"", ""}, "comma", []float64{math.NaN(), math.NaN(), math.NaN(), 4}},
@@ -98,6 +103,33 @@ func TestLayouts(t *testing.T) {
 		got, err := readAll(iotest.OneByteReader(strings.NewReader(c.text)), recording.Request{Columns: c.names[len(c.names)-1:]})
 		if err != nil || !same(got.values[0], c.values) {
 			t.Errorf("%s: %v, %v", c.name, got.values, err)
+		}
+	}
+}
+
+// Rows that are hurt stand right below the names, and are told as any others.
+func TestFirstRowsAreHurt(t *testing.T) {
+	for _, c := range []struct {
+		name, text string
+		hurt       int
+		values     []float64 // of the last column
+	}{
+		{"infinite", "0,nan,inf\n1,2,-Infinity\n", 2, []float64{math.NaN(), math.NaN()}},
+		{"short", "0\n", 1, []float64{math.NaN()}},
+		{"long", "0,1,5,3\n", 0, []float64{5}},
+	} {
+		text := "t,gx,gy\n" + c.text + strings.Repeat("2,6,7\n", 400)
+		h, err := Reader{}.Inspect(context.Background(), strings.NewReader(text), nil)
+		if err != nil || !reflect.DeepEqual(h.Names(), []string{"t", "gx", "gy"}) {
+			t.Errorf("%s: %v, %v", c.name, h.Names(), err)
+			continue
+		}
+		got, err := readAll(strings.NewReader(text), recording.Request{Columns: []string{"gy"}})
+		if err != nil || !same(got.values[0], append(c.values, slices.Repeat([]float64{7}, 400)...)) {
+			t.Errorf("%s: %.4g, %v", c.name, got.values, err)
+		}
+		if told := fmt.Sprint(got.findings); c.hurt > 0 && !strings.Contains(told, fmt.Sprintf("in %d of ", c.hurt)) || c.hurt == 0 && len(got.findings) > 0 {
+			t.Errorf("%s: %s", c.name, told)
 		}
 	}
 }
