@@ -66,6 +66,10 @@ func describe(r *gather.Recording, set settings, threads int) (*found, error) {
 		s.Segments, s.Freedom, f.unused = power.Segments, power.Freedom, power.Unused
 		s.Lower, s.Upper = power.Bounds(set.level)
 		s.Axes = append(s.Axes, axisOf(c, gather.Join(axes.Values[i], timing.Runs), power.Values))
+		if s.Axes[i].Deviation == 0 {
+			clear(power.Values) // of a constant, all is rounding
+			continue
+		}
 		for _, peak := range peaks.Find(power.Values, power.Step, peaks.Settings{
 			From: from, To: to, Prominence: set.prominence, Freedom: power.Freedom,
 			Resolution: s.Resolution, BinCorrelation: ws.Window.BinCorrelation(ws.Segment),
@@ -150,13 +154,16 @@ func refuse(err error, t recording.Timing, set settings) error {
 
 func axisOf(c gather.Channel, values, density []float64) kinds.SpectraAxis {
 	q := recording.Inspect(values)
-	mean := 0.0
+	mean, spread := 0.0, deviation(values)
 	for _, v := range values {
 		mean += v
 	}
 	mean /= float64(len(values))
+	if q.Min == q.Max {
+		mean, spread = q.Min, 0 // without the rounding of sums
+	}
 	return kinds.SpectraAxis{
-		Axis: c.Name, Quantity: c.Of, Unit: gather.UnitOfSI[c.Of], Column: c.Shown(), Mean: mean, Deviation: deviation(values),
+		Axis: c.Name, Quantity: c.Of, Unit: gather.UnitOfSI[c.Of], Column: c.Shown(), Mean: mean, Deviation: spread,
 		Largest: max(math.Abs(q.Min), math.Abs(q.Max)), Saturated: q.Saturated, Repeated: q.Repeated, Density: density,
 	}
 }

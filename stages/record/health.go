@@ -19,6 +19,7 @@ const (
 	flatFloor  = -3.0
 	deepHole   = 10.0          // dB, of a notch
 	mostRate   = 70.0          // rad/s, 4000 deg/s: more than gyros of this kind reach
+	slowGyro   = 20.0          // Hz, less than any gyro is recorded at to hear a frame
 	quietRate  = 0.25 * degree // rad/s about the mean: as quiet as on a table
 	gravity    = 9.80665       // m/s²
 
@@ -36,13 +37,26 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		out = append(out, kinds.Finding{What: x.What, Where: x.Where, Extent: x.Extent, Consequence: x.Consequence})
 	}
 	if s.Gaps > 0 {
-		add("gaps", "", "no segment straddles one", "%d, %d samples missing, the first at %.6g s", s.Gaps, s.Missing, f.axes.Time[f.timing.Gaps[0].After])
+		add("gaps", "", "no segment straddles one", "%d, %s missing, the first at %.6g s", s.Gaps, recording.Count(s.Missing, "sample"), f.axes.Time[f.timing.Gaps[0].After])
+	}
+	if len(s.Axes) > 0 && s.Axes[0].Quantity == gather.AngularRate && r.Plan.Time != "" && s.Rate < slowGyro {
+		add("unit", r.Plan.Time, "every frequency is wrong if so", "the times make the rate %.4g Hz, too slow for a gyro: they may be in another unit", s.Rate)
 	}
 	if s.Jitter > 0.01 {
 		add("jitter", "", "blurs lines, lowers levels towards high frequencies", "steps differ by %.1f %% (root mean square), at most %.0f %%", 100*s.Jitter, 100*f.timing.Widest)
 	}
 	for i, a := range s.Axes {
 		values := gather.Join(f.axes.Values[i], f.timing.Runs)
+		if a.Deviation == 0 {
+			add("stuck", a.Column, "there is nothing to describe", "all samples are %.4g %s", shownRate(a, a.Mean), shownUnit(a))
+			continue
+		}
+		spikes := recording.FindSpikes(values)
+		if n := len(spikes.At); n > 0 {
+			add("spikes", a.Column, "raise the density at all frequencies; mend or leave out these times, unless they are true blows",
+				"%s out from those beside, up to %.4g %s, the first at %.6g s, with %.2g %% of the mean square", stand(n), shownRate(a, spikes.Largest),
+				shownUnit(a), gather.Join(f.axes.Time, f.timing.Runs)[spikes.At[0]], 100*spikes.Share)
+		}
 		if a.Saturated > 0 {
 			add("saturation", a.Column, "adds harmonics and broadband noise", "%d samples stay at an extreme of %.4g %s", a.Saturated, shownRate(a, a.Largest), shownUnit(a))
 		}
@@ -60,8 +74,13 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		if math.Abs(a.Mean) > 3*a.Deviation && a.Quantity == gather.AngularRate {
 			add("offset", a.Column, "none: means are taken out", "mean of %.3g %s", shownRate(a, a.Mean), shownUnit(a))
 		}
-		if a.Quantity == gather.AngularRate && a.Largest > mostRate {
-			add("unit", a.Column, "every level is wrong by (180/π)² if so", "reaches %.3g deg/s: the numbers may be deg/s, not rad/s", a.Largest/degree)
+		if a.Quantity == gather.AngularRate && spikes.Rest > mostRate {
+			switch largest := spikes.Rest / degree; {
+			case r.Plan.Axes[i].Unit == "rad/s":
+				add("unit", a.Column, "every level is wrong by (180/π)² if so", "reaches %.3g deg/s: the numbers may be deg/s, not rad/s", largest)
+			default:
+				add("unit", a.Column, "every level is wrong if so", "reaches %.3g deg/s, more than gyros of this kind: the numbers may be counts of the sensor", largest)
+			}
 		}
 		if a.Quantity == gather.AngularRate && a.Deviation < quietRate && len(r.Plan.Rotors) > 0 {
 			add("unit", a.Column, "every level is wrong by (180/π)² if so", "only %.2g deg/s about its mean: at rest, or rad/s taken for deg/s", a.Deviation/degree)
@@ -76,6 +95,13 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 	return append(out, spectral(s)...)
 }
 
+func stand(n int) string {
+	if n == 1 {
+		return "1 sample stands"
+	}
+	return recording.Count(n, "sample") + " stand"
+}
+
 // spectral lists what the densities show: filters and mirrored orders.
 func spectral(s *kinds.Spectra) []kinds.Finding {
 	var out []kinds.Finding
@@ -83,6 +109,9 @@ func spectral(s *kinds.Spectra) []kinds.Finding {
 	steep, flat := 0, 0
 	slope := math.Inf(-1)
 	for _, a := range s.Axes {
+		if a.Deviation == 0 { // a constant has no floor
+			continue
+		}
 		densities = append(densities, a.Density)
 		fall := recording.Fall(a.Density)
 		if fall.Slope < steepFloor && fall.Steady {
@@ -93,11 +122,11 @@ func spectral(s *kinds.Spectra) []kinds.Finding {
 			flat++
 		}
 	}
-	if steep == len(s.Axes) {
+	if steep > 0 && steep == len(densities) {
 		out = append(out, kinds.Finding{What: "low-pass", Extent: fmt.Sprintf("the floor falls by %.0f dB per octave or more above %.4g Hz on all axes", -slope, 0.55*s.Rate/2),
 			Consequence: "peaks up there are stronger than they look"})
 	}
-	if len(s.Axes) > 1 {
+	if len(densities) > 1 {
 		for _, k := range recording.Dips(densities, deepHole) {
 			out = append(out, kinds.Finding{What: "notch", Extent: fmt.Sprintf("a hole at %.4g Hz on all axes", s.Frequency(k)), Consequence: "hides what rings there"})
 		}
@@ -122,7 +151,7 @@ func spectral(s *kinds.Spectra) []kinds.Finding {
 		out = append(out, kinds.Finding{What: "alias", Extent: fmt.Sprintf("order %g of %s appears mirrored at %.0f to %.0f Hz", n, strings.Join(rotors, ", "), low, high),
 			Consequence: "a peak there need not be one of the frame"})
 	}
-	if len(s.Rotors) == 0 && flat == len(s.Axes) {
+	if len(s.Rotors) == 0 && flat > 0 && flat == len(densities) {
 		out = append(out, kinds.Finding{What: "alias", Extent: fmt.Sprintf("no filter before sampling shows in the floor up to %.4g Hz", s.Rate/2),
 			Consequence: fmt.Sprintf("what lies at f above that appears at %.5g Hz - f", s.Rate)})
 	}

@@ -40,6 +40,38 @@ func told(s *kinds.Spectra) string {
 	return strings.Join(out, "\n")
 }
 
+// A recording whose times are not in the unit that they state, and a column of text where a rate is due, are told.
+func TestSlowGyroAndText(t *testing.T) {
+	random := rand.New(rand.NewPCG(3, 4))
+	var text strings.Builder
+	fmt.Fprintln(&text, "time [s],gx [deg/s],gy [deg/s],rpm_1")
+	for i := range 4000 {
+		fmt.Fprintf(&text, "%d,%.3f,0x%x,%d rpm\n", i, random.NormFloat64(), i, i)
+	}
+	folder := t.TempDir()
+	if err := os.WriteFile(filepath.Join(folder, "a.csv"), []byte(text.String()), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	s, o, err := run(t, folder, stage.Arguments{"file": "a.csv"})
+	if err != nil {
+		t.Fatal(err)
+	}
+	for _, want := range []string{
+		"unit|time [s]|the times make the rate 1 Hz, too slow for a gyro", "no numbers|gy [deg/s]|it would be pitch by its name", "no numbers|rpm_1|it would be the speed of rotor 1 by its name",
+	} {
+		if !strings.Contains(told(s), want) {
+			t.Errorf("%q is not among\n%s", want, told(s))
+		}
+	}
+	warned := ""
+	for _, w := range o.Warnings {
+		warned += w.ID + " "
+	}
+	if !strings.Contains(warned, "record.no-numbers") {
+		t.Errorf("warnings: %s", warned)
+	}
+}
+
 // A sound recording has no findings; each fault put into one is found, with its extent.
 func TestFindings(t *testing.T) {
 	random := rand.New(rand.NewPCG(3, 4))
@@ -61,6 +93,15 @@ func TestFindings(t *testing.T) {
 			}
 			return []float64{noise(20), 4000}
 		}, []string{"stuck|gx_deg_s|500 samples stay at 7 deg/s from 3 s"}, false},
+		"constant": {"time_s,gx_deg_s,gy_deg_s,rpm_1", func(i int) []float64 { return []float64{0.1, noise(20), 4000} },
+			[]string{"stuck|gx_deg_s|all samples are 0.1 deg/s"}, false},
+		"spikes": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 {
+			if i == 3000 || i == 9000 {
+				return []float64{20000, 4000}
+			}
+			return []float64{noise(20), 4000}
+		}, []string{"spikes|gx_deg_s|2 samples stand out from those beside, up to 2e+04 deg/s, the first at 3 s, with 99 % of the mean square"}, false},
+		"counts":  {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(2000), 4000} }, []string{"the numbers may be counts of the sensor"}, false},
 		"radians": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(0.1), 4000} }, []string{"unit|gx_deg_s|only 0.1 deg/s"}, false},
 		"degrees": {"time_s,gx_rad_s,rpm_1", func(i int) []float64 { return []float64{noise(60), 4000} }, []string{"unit|gx_rad_s|reaches"}, false},
 		"gravity": {"time_s,ax_m_s2,ay_m_s2,az_m_s2,rpm_1", func(i int) []float64 { return []float64{noise(0.1), noise(0.1), 1 + noise(0.1), 4000} },

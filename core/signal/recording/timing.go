@@ -43,7 +43,7 @@ const gapSteps = 1.5
 // samples.
 func Analyse(time []float64) (Timing, error) {
 	if len(time) < 2 {
-		return Timing{}, &Error{Text: fmt.Sprintf("%d samples do not make a series", len(time)),
+		return Timing{}, &Error{Text: Count(len(time), "sample") + " do not make a series",
 			Remedy: "a recording needs at least two rows with samples"}
 	}
 	if constant(time) {
@@ -61,6 +61,7 @@ func Analyse(time []float64) (Timing, error) {
 		switch {
 		case step == 0:
 			e.Text = "the time of the row before repeats"
+			e.Remedy = "name another time column; where the clock is coarser than the samples, state the rate, and the times are not used"
 		case step < 0:
 			e.Text = fmt.Sprintf("time goes back by %.6g s", -step)
 		default:

@@ -1,6 +1,7 @@
 package gather
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -27,6 +28,7 @@ type Plan struct {
 	SetPoints []Channel
 	Notes     []string // what was found or assumed
 	Assumed   []string // what was assumed with little ground, worth a warning
+	Findings  []recording.Finding
 }
 
 // Channel is a column with its meaning.
@@ -166,6 +168,11 @@ func (p *Plan) chooseAxes(h recording.Header, set Settings) error {
 			}
 		}
 		if len(p.Axes) > 0 {
+			for _, c := range h.Columns {
+				if axis := group.find(words(c.Name)); axis != "" && c.Text && len(found[axis]) == 0 {
+					p.leftOut(c, axis)
+				}
+			}
 			p.Notes = append(p.Notes, "columns found by name are taken to point along the airframe's axes; a turned sign changes no spectrum")
 			return nil
 		}
@@ -213,6 +220,9 @@ func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
 	names := map[string]bool{}
 	for _, column := range h.Columns {
 		name, ok := rotorName(words(column.Name))
+		if ok && column.Text {
+			p.leftOut(column, "the speed of rotor "+cmp.Or(name, column.Name))
+		}
 		if !ok || column.Text {
 			continue
 		}
@@ -227,6 +237,12 @@ func (p *Plan) chooseRotors(h recording.Header, set Settings) error {
 		p.Notes = append(p.Notes, fmt.Sprintf("the speed of rotor %s is column %q by its name, in %s", name, c.Column, c.Unit))
 	}
 	return nil
+}
+
+// leftOut tells of a column that would have a role by its name, but holds no numbers.
+func (p *Plan) leftOut(c recording.Column, role string) {
+	p.Findings = append(p.Findings, recording.Finding{What: "no numbers", Where: c.Name,
+		Extent: fmt.Sprintf("it would be %s by its name, but most of its fields are not numbers", role), Consequence: "it was left out"})
 }
 
 // addRotor adds the speed of a rotor; that of the field in the motor is divided by the pole pairs.

@@ -385,7 +385,7 @@ func (d *Data) mend(p Plan) {
 		dropped, first := s.mend()
 		if dropped > 0 && i == 0 {
 			d.Findings = append(d.Findings, recording.Finding{What: "times", Where: p.Time,
-				Extent:      fmt.Sprintf("the times of %d rows repeat or go back, the first in row %d; they were left out", dropped, first),
+				Extent:      fmt.Sprintf("the times of %s repeat or go back, the first in row %d; they were left out", recording.Count(dropped, "row"), first),
 				Consequence: "each may make a gap; many would mean another clock"})
 		}
 	}

@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"hushframe/core/pipeline/stage"
@@ -32,7 +33,7 @@ const rateTolerance = 0.01
 
 // Findings are faults of the rows and of the rate that leave the rest usable.
 func (r *Recording) Findings(timing recording.Timing) []recording.Finding {
-	out := append([]recording.Finding{}, r.Data.Findings...)
+	out := slices.Concat(r.Plan.Findings, r.Data.Findings)
 	stated, by, believed := r.Header.Rate, timing.Rate, "the times are believed"
 	if r.Data.Rate > 0 {
 		by, believed = r.Data.Rate, "that of the job is believed"
@@ -65,7 +66,7 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 		for _, g := range timing.Gaps {
 			missing += g.Missing
 		}
-		add("gaps", r.set.File, "", "%d gaps with %d samples missing, the first at %.6g s; no segment straddles one", len(timing.Gaps), missing,
+		add("gaps", r.set.File, "", "%s with %s missing, the first at %.6g s; no segment straddles one", recording.Count(len(timing.Gaps), "gap"), recording.Count(missing, "sample"),
 			axes.Time[timing.Gaps[0].After])
 	}
 	if timing.Jitter > muchJitter {
