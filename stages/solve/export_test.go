@@ -1,6 +1,9 @@
 package solve
 
-import "hushframe/core/mechanics/assembly"
+import (
+	"hushframe/core/mechanics/assembly"
+	"hushframe/core/mechanics/modal"
+)
 
 // Places gives tests the sites of a frame.
 var Places = places
@@ -13,3 +16,6 @@ var Explain = explain
 
 // Expected is the memory that a problem is thought to take, bytes.
 func Expected(p *assembly.Problem) int64 { return assembly.Measure(p, usualVectors).Bytes }
+
+// With is the stage with another eigen-solver.
+func With(lowest modal.Solver) Stage { return Stage{lowest} }

@@ -14,13 +14,13 @@ import (
 
 // estimate solves on the refined mesh as well and gives the modes their errors. Meshes of two sizes would not
 // do: what sets the size of most elements is the free edges and the rims of holes.
-func estimate(ctx context.Context, call *stage.Call, modes *kinds.Modes, m *mesh.Mesh, p *airframe.Properties, types func(string) element.Type, set settings) error {
+func (x Stage) estimate(ctx context.Context, call *stage.Call, modes *kinds.Modes, m *mesh.Mesh, p *airframe.Properties, types func(string) element.Type, set settings) error {
 	problem, err := assembly.FromAirframe(assembly.Refine(m), p, types)
 	if err != nil {
 		return err
 	}
 	call.Report.Log(stage.Info, "solving again with every element cut in four")
-	finer, _, err := kept(ctx, call, task{problem, p, set, true})
+	finer, _, err := kept(ctx, call, task{problem, p, set, true, x.lowest})
 	if err != nil {
 		return err
 	}

@@ -62,6 +62,7 @@ type bench struct {
 	truths map[string]bool
 	texts  map[string]string
 	memory int64
+	stage  solve.Stage
 	export string // folder of the matrices of the last run
 }
 
@@ -114,7 +115,7 @@ func (b *bench) run(m *mesh.Mesh, p *airframe.Properties, threads int, set map[s
 	for name, v := range b.texts {
 		arguments[name] = v
 	}
-	outcome, err := (solve.Stage{}).Run(context.Background(), &stage.Call{
+	outcome, err := b.stage.Run(context.Background(), &stage.Call{
 		Arguments: arguments,
 		Inputs:    map[string][]stage.Input{"mesh": {b.write(kinds.EncodeMesh(m))}, "properties": {b.write(kinds.EncodeProperties(p))}},
 		Outputs:   map[string]string{"modes": out, "matrices": b.matrices()}, Threads: threads, Memory: b.memory, Report: quiet{b.t}, Services: b.keep,

@@ -20,7 +20,9 @@ import (
 )
 
 // Stage is the stage "solve".
-type Stage struct{}
+type Stage struct {
+	lowest modal.Solver // nil: the eigen-solver of the kernels
+}
 
 var _ stage.Stage = Stage{}
 
@@ -101,7 +103,7 @@ type settings struct {
 }
 
 // Run implements stage.Stage.
-func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) {
+func (x Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) {
 	set := settings{call.Arguments.SI("up_to"), call.Arguments.SI("swept_to"), call.Arguments.SI("gaps_from")}
 	if !(set.gapsFrom < set.sweptTo) {
 		return nil, fault.New(fault.Input, "gaps count from %g Hz, where the sweep has ended", set.gapsFrom).In("solve", "").Of("gaps_from").
@@ -124,12 +126,12 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, explain(err)
 	}
-	modes, notes, err := kept(ctx, call, task{problem, p, set, false})
+	modes, notes, err := kept(ctx, call, task{problem, p, set, false, x.lowest})
 	if err != nil {
 		return nil, explain(err)
 	}
 	if call.Arguments.Truth("estimate_error") {
-		if err := estimate(ctx, call, modes, m, p, types, set); err != nil {
+		if err := x.estimate(ctx, call, modes, m, p, types, set); err != nil {
 			return nil, explain(err)
 		}
 	}
@@ -185,6 +187,7 @@ type task struct {
 	properties *airframe.Properties
 	set        settings
 	refined    bool
+	lowest     modal.Solver
 }
 
 // compute assembles and solves; nothing in the result depends on what neutral leaves out.
@@ -203,7 +206,7 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 		return nil, nil, err
 	}
 	call.Report.Log(stage.Info, "assembled", "unknowns", s.N, "entries", len(s.K.Val), "mass_g", fmt.Sprintf("%.1f", 1e3*s.Mass))
-	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress, Bare: k.refined})
+	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress, Bare: k.refined, Solve: k.lowest})
 	if err != nil {
 		return nil, nil, placed(s, err)
 	}
@@ -262,6 +265,7 @@ func explain(err error) error {
 		loose *assembly.Loose
 		free  *assembly.Free
 		rigid *modal.RigidError
+		lost  *modal.MissingError
 		shape *element.ShapeError
 	)
 	switch {
@@ -282,6 +286,9 @@ func explain(err error) error {
 			where = part.Part
 		}
 		return fault.New(fault.Numeric, "%v", err).In("solve", where).Do("mesh again with another size")
+	case errors.As(err, &lost):
+		return fault.New(fault.Numeric, "%v", lost).In("solve", "").Of("up_to").
+			Do("move up_to a little, away from a cluster of modes, or mesh again with another size")
 	case errors.As(err, &rigid):
 		return fault.New(fault.Numeric, "%v", rigid).In("solve", rigid.Moving).Do("see whether what holds it leaves it free and whether all stiffnesses are in the units meant")
 	}

@@ -9,6 +9,7 @@ import (
 	"hushframe/core/mechanics/assembly"
 	"hushframe/core/numeric/dense"
 	"hushframe/core/numeric/eigen"
+	"hushframe/core/numeric/sparse"
 )
 
 // Place is a site to be: a point fixed to a body of the problem.
@@ -26,9 +27,14 @@ type Options struct {
 	Threads int
 	// Bare leaves out residual vectors, shapes and the stiffness of groups: what a comparison of meshes needs.
 	Bare bool
+	// Solve finds eigenpairs; nil is eigen.Lowest.
+	Solve Solver
 	// Progress, when not nil, is told the phase and the fraction of it that is done.
 	Progress func(phase string, fraction float64)
 }
+
+// Solver finds the lowest eigenpairs of a pencil as eigen.Lowest does, and keeps what that promises.
+type Solver func(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, opt eigen.Options) (*eigen.Result, error)
 
 // Structure is all that does not depend on loss factors or rotor speeds.
 type Structure struct {
@@ -57,7 +63,7 @@ const rigidBelow = 1e-3
 // Build computes the modes of a free structure up to opt.UpTo (and two elastic ones at least), its
 // residual vectors, and the energies.
 //
-// Errors: *RigidError; those of package eigen; an eigensolver that did not converge.
+// Errors: *RigidError; *MissingError; those of package eigen; an eigensolver that did not converge.
 func Build(ctx context.Context, s *assembly.System, places []Place, opt Options) (*Structure, error) {
 	progress := opt.Progress
 	if progress == nil {
@@ -65,17 +71,27 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	}
 	order := s.Ordering()
 	limit := 2 * math.Pi * opt.UpTo
-	res, err := eigen.Lowest(ctx, s.K, s.M, order, eigen.Options{
+	lowest := opt.Solve
+	if lowest == nil {
+		lowest = eigen.Lowest
+	}
+	res, err := lowest(ctx, s.K, s.M, order, eigen.Options{
 		Limit: limit * limit, Modes: RigidBodies + 2, Static: !opt.Bare, Threads: opt.Threads,
 		Progress: func(f float64) { progress("modes", f) },
 	})
 	if err != nil {
 		return nil, err
 	}
-	if !res.Status.Converged {
+	if st := res.Status; !st.Converged {
+		if st.Counted > st.Found {
+			return nil, &MissingError{Below: hertz(st.CountShift), Counted: st.Counted, Found: st.Found, Searches: st.Attempts}
+		}
 		return nil, fmt.Errorf("the eigensolver did not converge after %d steps and %d restarts", res.Status.Steps, res.Status.Restarts)
 	}
 	st := &Structure{Basis: &Basis{}, Proved: res.Status.Proved, Notes: res.Status.Notes}
+	if !st.Proved {
+		st.Notes = append(st.Notes, unproved(&res.Status))
+	}
 	if st.RigidRatio, err = rigidRatio(ctx, s, res, opt.Threads); err != nil {
 		return nil, err
 	}
@@ -89,7 +105,7 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	}
 	for i := RigidBodies; i < len(res.Values); i++ {
 		elastic = append(elastic, res.Vectors[i]...)
-		frequency = append(frequency, math.Sqrt(res.Values[i])/(2*math.Pi))
+		frequency = append(frequency, hertz(res.Values[i]))
 	}
 	if err := b.extend(Elastic, frequency, elastic); err != nil {
 		return nil, err

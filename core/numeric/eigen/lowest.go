@@ -23,6 +23,11 @@ const (
 // and the cause of ctx when that is done first. A search that did not converge or whose count disagrees is not an error:
 // see Status.
 func Lowest(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, opt Options) (*Result, error) {
+	return lowest(ctx, k, m, order, opt, (*pencil).count)
+}
+
+// lowest is Lowest with a way to count the eigenvalues below a shift, which also tells whether that can be trusted.
+func lowest(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, opt Options, count counter) (*Result, error) {
 	if k.N != m.N {
 		panic("eigen: K and M differ in order")
 	}
@@ -33,7 +38,7 @@ func Lowest(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, 
 	res := &Result{}
 	res.Stats.Unknowns = k.N
 	s := &solver{
-		ctx: ctx, opt: &opt, res: res, below: -1,
+		ctx: ctx, opt: &opt, res: res, below: -1, count: count,
 		p: &pencil{ctx: ctx, k: k, m: m, lean: m.DropZeros(), threads: opt.Threads, stats: &res.Stats},
 	}
 	if err := s.solve(order); err != nil {
@@ -67,6 +72,9 @@ func (o *Options) complete() error {
 	return nil
 }
 
+// counter returns the number of eigenvalues below a shift and whether it can be trusted.
+type counter func(p *pencil, shift float64) (count int, sure bool, err error)
+
 // solver is one call of Lowest.
 type solver struct {
 	ctx  context.Context
@@ -75,6 +83,7 @@ type solver struct {
 	res  *Result
 	done float64 // progress told so far
 
+	count counter
 	need  int    // leading pairs to converge
 	below int    // eigenvalues below countAt by a count beforehand, -1 when not known
 	known *pairs // M-orthonormal pairs known already, by rising λ
@@ -115,7 +124,7 @@ func (s *solver) solve(order sparse.Ordering) error {
 	}
 	s.progress(0.02)
 	if opt.Limit > 0 {
-		count, sure, err := p.count(s.countAt())
+		count, sure, err := s.count(p, s.countAt())
 		if err != nil {
 			return err
 		}

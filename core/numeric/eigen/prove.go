@@ -219,27 +219,37 @@ func (s *solver) prove(complete bool) (again bool, err error) {
 	for try := range 3 {
 		count, sure := s.below, s.below >= 0 && shift == s.countAt()
 		if !sure {
-			count, sure, err = p.count(shift)
+			count, sure, err = s.count(p, shift)
 			if err != nil {
 				return false, err
 			}
 		}
 		found := countBelow(values, shift)
 		st.CountShift, st.Counted, st.Found = shift, count, found
-		if sure {
-			st.Proved = count == found
-			if count > found && complete && st.Attempts < maxAttempts {
+		switch {
+		case sure && count == found:
+			st.Proved = true
+			return false, nil
+		case sure && count > found:
+			if complete && st.Attempts < maxAttempts {
 				s.need = max(s.need, count+1)
 				st.note("%d of %d eigenvalues below %.6g were missing: searched again", count-found, count, shift)
 				return true, nil
 			}
-			if count != found {
-				st.note("%d eigenvalues found below %.6g but %d counted", found, shift, count)
-			}
+			st.note("%d eigenvalues found below %.6g but %d counted", found, shift, count)
 			return false, nil
+		case sure:
+			// As many orthonormal vectors with quotients below the shift prove as many eigenvalues (Courant and Fischer).
+			st.note("%d eigenvalues found below %.6g but only %d counted: the count is wrong", found, shift, count)
+		default:
+			st.note("the count at %.6g cannot be trusted: moved", shift)
 		}
-		st.note("the count at %.6g cannot be trusted: moved", shift)
 		shift *= 1 + 1e-4*float64(try+1)
+	}
+	if n := len(values); s.opt.Limit > 0 && n > 0 && values[n-1] <= s.opt.Limit && st.Attempts < maxAttempts && !st.Exhausted {
+		// The search relied on a count beforehand that is worth nothing, and has not seen beyond the limit.
+		s.below, s.need = -1, n+1
+		return true, nil
 	}
 	return false, nil
 }
