@@ -93,7 +93,7 @@ func (a *app) main(ctx context.Context, args []string) int {
 	defer context.AfterFunc(ctx, stop)()
 	root := a.root()
 	root.SetArgs(args)
-	err := root.ExecuteContext(ctx)
+	called, err := root.ExecuteContextC(ctx)
 	var code exitError
 	switch {
 	case err == nil:
@@ -121,7 +121,7 @@ func (a *app) main(ctx context.Context, args []string) int {
 		a.log.Error().Str("event", "usage").Msg(err.Error())
 		return exitUsage
 	}
-	fmt.Fprintf(a.err, "%s\nTry %q.\n", err, root.Name()+" help")
+	fmt.Fprintf(a.err, "Error: %s\nTry %q.\n", err, helpOf(called))
 	return exitUsage
 }
 
@@ -152,12 +152,14 @@ multirotor airframes. A job file says what to do; results are kept beside it in
 			return a.openLog()
 		},
 	}
+	root.SetFlagErrorFunc(flagError)
 	root.SetOut(a.out)
 	root.SetErr(a.err)
 	root.PersistentFlags().StringVar(&a.logFormat, "log", "human", "form of log lines: human or json")
 	root.PersistentFlags().BoolVarP(&a.verbose, "verbose", "v", false, "also log what only helps to find mistakes")
 	root.AddCommand(a.runCommand(), a.checkCommand(), a.chainCommand(), a.stagesCommand(), a.inspectCommand(), a.diffCommand(), a.runsCommand(), a.startCommand(), a.extensionsCommand(),
 		a.pruneCommand(), a.versionCommand())
+	strictHelp(root)
 	return root
 }
 

@@ -46,7 +46,7 @@ Exit codes:
   hushframe run job.hcl --name before
   hushframe run job.hcl --set arm_thickness=6mm
   hushframe diff job.hcl@before job.hcl`,
-		Args:              cobra.RangeArgs(1, 2),
+		Args:              wants(1, 2, "one run or two are wanted: the state before, and the one after"),
 		ValidArgsFunction: completeJob,
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write the result as one JSON object")

@@ -27,7 +27,7 @@ func (a *app) extensionsCommand() *cobra.Command {
 		Long: `Lists the executables in the folder "extensions" beside a job and in your own, with
 their checksums and how they stand to the pins file of the job, extensions.pins.json.
 Nothing is started by this. A job starts only what is pinned and unchanged.`,
-		Args:              cobra.MaximumNArgs(1),
+		Args:              wants(0, 1, "one job at most is wanted; \"pin\" and \"new\" come before it"),
 		ValidArgsFunction: completeJob,
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write the list as JSON")
@@ -121,7 +121,7 @@ func (a *app) pinCommand() *cobra.Command {
 version, protocol and SHA-256 for this platform into extensions.pins.json beside the job.
 Do this only for programs that you would run yourself, then look at the change in git.`,
 		Example:           "  hushframe extensions pin baseline.hcl pebble",
-		Args:              cobra.MinimumNArgs(1),
+		Args:              wants(1, -1, "a job is wanted, and the names of extensions if not all are meant"),
 		ValidArgsFunction: completeJob,
 		RunE: func(c *cobra.Command, args []string) error {
 			folder, err := jobFolder(args[0])
@@ -142,7 +142,7 @@ func (a *app) newCommand() *cobra.Command {
 tests with the conformance suite, a README and a sample job. Everything works as it
 stands; DEVELOPERS.md tells how to go on.`,
 		Example:   "  hushframe extensions new reader ~/my-recorder --source ~/hushframe",
-		Args:      cobra.ExactArgs(2),
+		Args:      wants(2, 2, "a kind (stage, element or reader) and a folder are wanted"),
 		ValidArgs: scaffold.Kinds(),
 	}
 	c.Flags().StringVar(&source, "source", "", "folder of a checkout of hushframe (default: the one this is called in)")

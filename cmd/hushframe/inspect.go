@@ -24,7 +24,7 @@ func (a *app) inspectCommand() *cobra.Command {
 		Long: `Shows kind, values, tables and files of an artifact: of the last run of a job,
 by the label of the step and the name of its output, or of an artifact folder.
 With --table, shows the rows of one table.`,
-		Args:              cobra.RangeArgs(1, 2),
+		Args:              wants(1, 2, "a job and one of its steps are wanted, or the folder of an artifact"),
 		ValidArgsFunction: completeJob,
 	}
 	c.Flags().StringVar(&table, "table", "", "show the rows of this table")

@@ -204,14 +204,6 @@ func jobName(path string) string {
 	return filepath.Base(path)
 }
 
-// oneJob wants a single job as argument.
-func oneJob(_ *cobra.Command, args []string) error {
-	if len(args) != 1 {
-		return fmt.Errorf("one job is wanted: a job file or a folder of them")
-	}
-	return nil
-}
-
 // completeJob completes job files and folders.
 func completeJob(_ *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
 	if len(args) > 0 {
@@ -224,6 +216,9 @@ func completeJob(_ *cobra.Command, args []string, _ string) ([]string, cobra.She
 func suggest(name string, names []string) string {
 	if n := nearest.Name(name, names); n != "" {
 		return fmt.Sprintf("; did you mean %q?", n)
+	}
+	if len(names) == 0 {
+		return ""
 	}
 	return "; there are: " + strings.Join(names, ", ")
 }

@@ -2,12 +2,11 @@ package main
 
 import (
 	"fmt"
+	"math"
 	"time"
 
 	"github.com/spf13/cobra"
 
-	"hushframe/core/pipeline/fault"
-	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/store"
 )
 
@@ -32,16 +31,17 @@ needs it. The store is shared by all jobs of the folder.`,
 			return err
 		}
 		o := store.PruneOptions{Size: -1, Pretend: pretend}
-		q, err := quantity.ParseAs(unused, "time")
+		seconds, err := amount("--unused-for", unused, "time", math.MaxInt64/2/float64(time.Second))
 		if err != nil {
-			return fault.From(err).In("read --unused-for", unused)
+			return err
 		}
-		o.UnusedFor = time.Duration(q.SI * float64(time.Second))
+		o.UnusedFor = time.Duration(seconds * float64(time.Second))
 		if size != "" {
-			if q, err = quantity.ParseAs(size, "memory"); err != nil {
-				return fault.From(err).In("read --size", size)
+			bytes, err := amount("--size", size, "memory", math.MaxInt64/2)
+			if err != nil {
+				return err
 			}
-			o.Size = int64(q.SI)
+			o.Size = int64(bytes)
 		}
 		r, err := store.Prune(folder, o)
 		if err != nil {

@@ -2,13 +2,13 @@ package main
 
 import (
 	"fmt"
+	"math"
 	"runtime"
 	"time"
 
 	"github.com/spf13/cobra"
 
 	"hushframe/core/pipeline/fault"
-	"hushframe/core/pipeline/quantity"
 	"hushframe/core/pipeline/run"
 	"hushframe/core/pipeline/store"
 )
@@ -57,11 +57,10 @@ numbers are in SI units, and runs that come to the same write the same bytes.
 		}
 		bytes := 0.0
 		if memory != "" {
-			q, err := quantity.ParseAs(memory, "memory")
-			if err != nil {
-				return fault.From(err).In("read --memory", memory)
+			var err error
+			if bytes, err = amount("--memory", memory, "memory", math.MaxInt64/2); err != nil {
+				return err
 			}
-			bytes = q.SI
 		}
 		folder, err := jobFolder(args[0])
 		if err != nil {

@@ -23,7 +23,7 @@ func (a *app) stagesCommand() *cobra.Command {
 		Short: "List the stages that are installed, or explain one",
 		Long: `Lists the stages a job may use. With the name of one, explains its arguments, outputs and figures.
 With --job also those of the extensions pinned for that job, and what its element types and readers take.`,
-		Args: cobra.MaximumNArgs(1),
+		Args: wants(0, 1, "one stage at most is wanted"),
 		ValidArgsFunction: func(c *cobra.Command, args []string, _ string) ([]string, cobra.ShellCompDirective) {
 			var names []string
 			if len(args) == 0 {

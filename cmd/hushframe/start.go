@@ -15,7 +15,7 @@ func (a *app) startCommand() *cobra.Command {
 		Short: "Write a first airframe and job for a folder of cut files",
 		Long: `Writes airframe.hcl and job.hcl beside the cut files in a folder: one plate for
 each file, and a job that finds its modes. Files that are there are left alone.`,
-		Args: cobra.ExactArgs(1),
+		Args: wants(1, 1, "one folder of cut files is wanted"),
 		ValidArgsFunction: func(*cobra.Command, []string, string) ([]string, cobra.ShellCompDirective) {
 			return nil, cobra.ShellCompDirectiveFilterDirs
 		},

@@ -5,6 +5,7 @@ import (
 	"io"
 	"strings"
 	"time"
+	"unicode"
 	"unicode/utf8"
 
 	"github.com/jedib0t/go-pretty/v6/table"
@@ -110,8 +111,20 @@ func closing(r *run.Result, took time.Duration) string {
 	return line
 }
 
+// harmless makes a text that comes from files fit for a terminal: what would steer it, or turn the direction of writing, is
+// shown as a mark.
+func harmless(s string) string {
+	return strings.Map(func(r rune) rune {
+		if unicode.IsControl(r) && r != '\n' && r != '\t' || unicode.Is(unicode.Bidi_Control, r) {
+			return unicode.ReplacementChar
+		}
+		return r
+	}, s)
+}
+
 // writeSection writes a titled table: a heading line under the title, no boxes.
 func writeSection(out io.Writer, s stage.Section) {
+	s.Title, s.Text = harmless(s.Title), harmless(s.Text)
 	fmt.Fprintf(out, "\n%s\n", s.Title)
 	if s.Text != "" {
 		for line := range strings.Lines(text.WrapSoft(s.Text, tableWidth(out)) + "\n") {
@@ -127,7 +140,7 @@ func writeSection(out io.Writer, s stage.Section) {
 	var columns []table.ColumnConfig
 	widths := fit(s, tableWidth(out))
 	for i, c := range s.Columns {
-		header = append(header, c.Name)
+		header = append(header, harmless(c.Name))
 		align := text.AlignLeft
 		if c.Right {
 			align = text.AlignRight
@@ -141,7 +154,7 @@ func writeSection(out io.Writer, s stage.Section) {
 		row := table.Row{}
 		for i := range s.Columns {
 			if i < len(cells) {
-				row = append(row, cells[i])
+				row = append(row, harmless(cells[i]))
 			} else {
 				row = append(row, "")
 			}

@@ -89,7 +89,7 @@ func TestExitCodes(t *testing.T) {
 		want string
 	}{
 		{"run", "one job is wanted"},
-		{"walk bells.hcl", `unknown command "walk"`},
+		{"walk bells.hcl", "unknown command \"walk\" for \"hushframe\"\nTry \"hushframe help\"."},
 		{"run bells.hcl --sett a=b", "unknown flag: --sett"},
 		{"run bells.hcl --set raise", "write NAME=VALUE"},
 		{"run bells.hcl --set raise=1Hz --set raise=2Hz", "gives raise twice"},
@@ -97,6 +97,24 @@ func TestExitCodes(t *testing.T) {
 		{"run bells.hcl --set rise=2Hz", "raise"},
 		{"run bells.hcl --memory 3kg", "memory"},
 		{"run bells.hcl --threads -1", "cannot be negative"},
+		{"run bells.hcl --threads many", `--threads is "many", but a whole number is due`},
+		{"run bells.hcl --memory -3GiB", "cannot be negative"},
+		{"run bells.hcl --memory 1e30GiB", "more than can be counted"},
+		{"run bells.hcl other.hcl", `Try "hushframe help run"`},
+		{"diff", "one run or two are wanted"},
+		{"inspect", "a job and one of its steps are wanted"},
+		{"stages a b", "one stage at most is wanted"},
+		{"start", "one folder of cut files is wanted"},
+		{"extensions pin", "a job is wanted"},
+		{"extensions new reader", "a kind (stage, element or reader) and a folder are wanted"},
+		{"extensions pin bells.hcl pebble", `there is no extension "pebble"; put its executable in`},
+		{"help walk", `unknown command "walk"`},
+		{"help version walk", `there is no verb "version walk"`},
+		{"completion ksh", `unknown command "ksh"`},
+		{"completion", "a shell is wanted"},
+		{"prune bells.hcl --size -3GiB", "cannot be negative"},
+		{"prune bells.hcl --unused-for -3h", "cannot be negative"},
+		{"prune bells.hcl --unused-for 1e30h", "more than can be counted"},
 		{"run bells.hcl --log xml", "it can be human or json"},
 		{"check none.hcl", "none.hcl"},
 		{"inspect bells.hcl small", "bells.hcl has not been run here; run it first"},
@@ -282,6 +300,15 @@ func TestWideTable(t *testing.T) {
 	}
 	if n := strings.Count(out.String(), "words"); n != 36 || !strings.Contains(out.String(), "  123456  ") {
 		t.Errorf("%d words in\n%s", n, &out)
+	}
+}
+
+// Names from files cannot steer the terminal, nor turn what is written.
+func TestHarmless(t *testing.T) {
+	var out bytes.Buffer
+	writeSection(&out, stage.Section{Title: "a\x1b]0;b\a", Text: "c\u202ed", Columns: []stage.Column{{Name: "e\u009b2J"}}, Rows: [][]string{{"f\x1b[31m\r"}, {"m/s², °, гироскоп"}}})
+	if strings.ContainsAny(out.String(), "\x1b\a\r\u009b\u202e") || !strings.Contains(out.String(), "m/s², °, гироскоп") || strings.Count(out.String(), "\ufffd") != 6 {
+		t.Errorf("%q", out.String())
 	}
 }
 
