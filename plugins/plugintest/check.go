@@ -6,9 +6,11 @@ import (
 	"errors"
 	"fmt"
 	"os"
+	"path"
 	"path/filepath"
 	"reflect"
 	"regexp"
+	"slices"
 	"sort"
 	"strings"
 	"sync/atomic"
@@ -28,17 +30,41 @@ import (
 // threads and other folders, it must write the same bytes and report the same;
 // it must send progress; with a context that has ended it must end with a fault
 // of kind cancelled, and so within a second when the context ends on the way.
+//
+// Each argument must be such that a job with a value of the wrong type, unit or
+// range, an unknown choice or no value where one is required is refused by its
+// name before anything runs, and leaving it out must be the same as giving its
+// default. Other values of it, which the suite makes from type, range, choices
+// and example (or takes from Vary), must change an artifact, a figure or what is
+// told in at least one case, or be refused as an input under its name; an
+// argument that may do neither is listed in Inert with the reason. An artifact
+// that is handed in must be opened.
 func Check(folder string, s stage.Stage, registry artifact.Registry, cases ...Case) []string {
 	problems := checkDescription(s, registry)
 	if len(problems) > 0 {
 		return problems // no case can be run by a wrong one
 	}
+	if len(cases) == 0 {
+		return []string{"no case to run was given; the suite needs at least one"}
+	}
+	g, heeds := &guarded{s}, map[string]*heeded{}
 	for i, c := range cases {
 		if c.Name == "" {
 			c.Name = fmt.Sprint("case ", i+1)
 		}
-		for _, p := range checkCase(filepath.Join(folder, fmt.Sprint(i)), s, registry, c) {
+		for _, p := range checkCase(filepath.Join(folder, fmt.Sprint(i)), g, registry, c, heeds) {
 			problems = append(problems, c.Name+": "+p)
+		}
+	}
+	if len(problems) > 0 {
+		return problems // what changes nothing might be a consequence
+	}
+	for _, a := range s.Describe().Arguments {
+		if heeds[a.Name] == nil && a.Required {
+			continue
+		}
+		if p := heeds[a.Name].verdict("argument", a.Name); p != "" {
+			problems = append(problems, p)
 		}
 	}
 	return problems
@@ -95,6 +121,11 @@ func checkDescription(s stage.Stage, registry artifact.Registry) []string {
 			bad("output %s is published to %q, which is no argument of type target", o.Name, o.Publish)
 		}
 	}
+	for _, n := range sortedKeys(arguments) {
+		if arguments[n].Type.Kind == stage.Target && !slices.ContainsFunc(d.Outputs, func(o stage.Output) bool { return o.Publish == n }) {
+			bad("argument %s is a target, and no output is published to it: nothing would be written there", n)
+		}
+	}
 	for _, f := range d.Figures {
 		unique("the figures", f.Name)
 		about("figure "+f.Name, f.About)
@@ -145,8 +176,17 @@ type ending struct {
 	files    []stage.FileUse
 }
 
-func checkCase(folder string, s stage.Stage, registry artifact.Registry, c Case) []string {
-	var problems []string
+// text is what a changed argument must change.
+func (e *ending) text() string {
+	data, _ := json.Marshal([]any{e.hashes, e.outcome, e.files})
+	return string(data)
+}
+
+func checkCase(folder string, s *guarded, registry artifact.Registry, c Case, heeds map[string]*heeded) []string {
+	problems := trialOf(filepath.Join(folder, "described"), s.Describe(), c).checkDescribed()
+	if len(problems) > 0 {
+		return problems
+	}
 	first, err := runCase(context.Background(), filepath.Join(folder, "first"), s, registry, c, 1)
 	if err != nil {
 		return []string{err.Error()}
@@ -187,22 +227,27 @@ func checkCase(folder string, s stage.Stage, registry artifact.Registry, c Case)
 	if _, err := runCase(ended, filepath.Join(folder, "cancelled"), s, registry, c, 1); fault.KindOf(err) != fault.Cancelled {
 		problems = append(problems, fmt.Sprintf("with a context that has ended it gives %v, not a fault of kind cancelled", err))
 	}
+	if len(problems) == 0 {
+		problems = checkHeeded(filepath.Join(folder, "changed"), s, registry, c, first, heeds)
+	}
 	return problems
 }
 
 func runCase(ctx context.Context, folder string, s stage.Stage, registry artifact.Registry, c Case, threads int) (*ending, error) {
 	d, heard := s.Describe(), &counting{}
-	call := &stage.Call{Arguments: stage.Arguments{}, Inputs: map[string][]stage.Input{}, Outputs: map[string]string{},
+	call := &stage.Call{Inputs: map[string][]stage.Input{}, Outputs: map[string]string{},
 		Scratch: filepath.Join(folder, "scratch"), Files: stage.NewFiles(c.Folder), Threads: threads,
 		Report: heard, Services: &alone{folder: filepath.Join(folder, "kept")}}
+	arguments, told := trialOf(filepath.Join(folder, "job"), d, c).ask(nil)
+	if told != "" {
+		return nil, fault.New(fault.Internal, "no job can have this step: %s", told)
+	}
 	for _, a := range d.Arguments {
-		if a.Default != nil {
-			call.Arguments[a.Name] = a.Default
+		if v := c.Arguments[a.Name]; v != nil && takesFiles(a.Type) {
+			arguments[a.Name] = plain(v) // as it was named, not where it lies
 		}
 	}
-	for n, v := range c.Arguments {
-		call.Arguments[n] = v
-	}
+	call.Arguments = arguments
 	folders := []string{call.Scratch}
 	for n, list := range c.Inputs {
 		for i, a := range list {
@@ -213,6 +258,11 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 			hash, err := artifact.Write(in, a)
 			if err != nil {
 				return nil, err
+			}
+			if n == c.hollow {
+				if err := errors.Join(os.RemoveAll(in), os.MkdirAll(in, 0o755)); err != nil {
+					return nil, err
+				}
 			}
 			call.Inputs[n] = append(call.Inputs[n], stage.Input{Folder: in, Kind: a.Kind.Name, Hash: hash, From: fmt.Sprintf("stage.%s.%d", n, i)})
 		}
@@ -250,6 +300,11 @@ func runCase(ctx context.Context, folder string, s stage.Stage, registry artifac
 		}
 		if a.Kind.Name != x.Kind {
 			return nil, fmt.Errorf("output %s is of kind %q, not %q as declared", x.Name, a.Kind.Name, x.Kind)
+		}
+		if target := strings.ReplaceAll(call.Arguments.Text(x.Publish), `\`, "/"); x.Publish != "" && target != "" {
+			if _, ok := a.Files[path.Base(target)]; !ok {
+				return nil, fault.New(fault.Protocol, "output %s is published to %q, and has no file %q: name its main file by the last part of the target", x.Name, target, path.Base(target)).Of(x.Publish)
+			}
 		}
 		if _, err := artifact.Seal(call.Outputs[x.Name], a); err != nil {
 			return nil, fmt.Errorf("output %s: %w", x.Name, err)

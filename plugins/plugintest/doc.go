@@ -30,6 +30,13 @@ type Case struct {
 	Folder    string
 	Arguments stage.Arguments
 	Inputs    map[string][]*artifact.Artifact
+	// Vary holds other right values of arguments, besides those that the suite thinks of: for files of other content,
+	// maps, and whatever has no range, choices or example to go by.
+	Vary map[string][]any
+	// Inert names arguments that change nothing in this case, each with the reason.
+	Inert map[string]string
+
+	hollow string // the input whose files are taken away
 }
 
 // Stage reports each problem of a stage as an error of the test.

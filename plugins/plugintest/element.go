@@ -5,6 +5,8 @@ import (
 	"fmt"
 	"math"
 	"reflect"
+	"slices"
+	"strings"
 	"testing"
 	"time"
 
@@ -41,8 +43,10 @@ func CheckElement(e extension.Element, options ...stage.Arguments) []string {
 	if len(options) == 0 {
 		options = []stage.Arguments{nil}
 	}
-	for _, o := range options {
+	options = slices.Clone(options)
+	for i, o := range options {
 		o = withDefaults(e.Describe().Arguments, o)
+		options[i] = o
 		for _, p := range checkElement(e, o) {
 			if len(o) > 0 {
 				p = fmt.Sprintf("with %v: %s", map[string]any(o), p)
@@ -50,7 +54,10 @@ func CheckElement(e extension.Element, options ...stage.Arguments) []string {
 			problems = append(problems, p)
 		}
 	}
-	return append(problems, checkOptions(e, withDefaults(e.Describe().Arguments, options[0]))...)
+	if len(problems) == 0 {
+		problems = checkOptions(e, options)
+	}
+	return problems
 }
 
 // subject is an element type with options settled, and what it is tried on.
@@ -222,37 +229,28 @@ func (s *subject) checkCancel(bad func(string, ...any)) {
 	}
 }
 
-// checkOptions wants each option to change something.
-func checkOptions(e extension.Element, o stage.Arguments) (problems []string) {
-	answer := func(o stage.Arguments) (any, error) {
+// checkOptions wants each option to change something under one of the sets, or to be refused by name.
+func checkOptions(e extension.Element, sets []stage.Arguments) (problems []string) {
+	bad := func(format string, args ...any) { problems = append(problems, fmt.Sprintf(format, args...)) }
+	answer := func(o stage.Arguments) (string, error) {
 		s, err := newSubject(e, o, carbon, 0.4)
 		if err != nil {
-			return nil, err
+			return "", err
 		}
 		m, err := s.matrices(s.batch(triangle, 1, 0))
-		return []any{s.shape, m}, err
-	}
-	usual, err := answer(o)
-	if err != nil {
-		return nil // has been said
+		return fmt.Sprint(s.shape, *m), err
 	}
 	for _, a := range e.Describe().Arguments {
-		changed, tried := false, false
-		for _, v := range others(a, o[a.Name]) {
-			with := stage.Arguments{}
-			for k, x := range o {
-				with[k] = x
+		var h heeded
+		for _, o := range sets {
+			usual, err := answer(o)
+			if err != nil {
+				return nil // has been said
 			}
-			with[a.Name] = v
-			got, err := answer(with)
-			if err != nil && fault.KindOf(err) != fault.Input {
-				problems = append(problems, fmt.Sprintf("option %s = %v is allowed by the description, and gives %v; refuse it with a fault of kind input", a.Name, v, err))
-			}
-			tried = true
-			changed = changed || err != nil || !reflect.DeepEqual(got, usual)
+			h.heed("option", a, "", false, others(a, a.Type, o[a.Name]), func(v any) (string, error) { return answer(with(o, a.Name, v)) }, usual, bad)
 		}
-		if tried && !changed {
-			problems = append(problems, fmt.Sprintf("option %s changes nothing: is it read?", a.Name))
+		if len(h.tried) > 0 && !h.changed {
+			bad("option %s changes nothing: with %s the matrices are the same to the last byte; is it read?", a.Name, strings.Join(h.tried, ", "))
 		}
 	}
 	return problems

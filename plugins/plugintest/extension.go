@@ -3,6 +3,7 @@ package plugintest
 import (
 	"encoding/json"
 	"fmt"
+	"os"
 	"reflect"
 
 	"hushframe/core/pipeline/job"
@@ -41,75 +42,24 @@ func checkExtension(d, again stage.Extension, kind string) (problems []string) {
 	if err := job.CheckExtension(d); err != nil {
 		bad("%v", err)
 	}
+	if len(problems) > 0 {
+		return problems
+	}
+	folder, err := os.MkdirTemp("", "plugintest-")
+	if err != nil {
+		return []string{err.Error()}
+	}
+	defer os.RemoveAll(folder)
+	options := &trial{folder: folder, word: "option", d: stage.Description{Name: d.Name, Arguments: d.Arguments}, given: map[string]string{}}
+	for _, a := range d.Arguments {
+		if a.Required && a.Example == "" {
+			bad("option %s is required and has no example", a.Name)
+		} else if a.Required {
+			options.given[a.Name] = a.Example
+		}
+	}
+	if len(problems) == 0 {
+		problems = options.checkDescribed()
+	}
 	return problems
-}
-
-// withDefaults fills in what a job would.
-func withDefaults(list []stage.Argument, given stage.Arguments) stage.Arguments {
-	out := stage.Arguments{}
-	for _, a := range list {
-		if a.Default != nil {
-			out[a.Name] = a.Default
-			if n, ok := a.Default.(int); ok {
-				out[a.Name] = float64(n)
-			}
-		}
-	}
-	for n, v := range given {
-		out[n] = v
-	}
-	return out
-}
-
-// others gives some values that an argument may have besides the usual one.
-func others(a stage.Argument, usual any) (values []any) {
-	add := func(v any) {
-		if !reflect.DeepEqual(v, usual) {
-			values = append(values, v)
-		}
-	}
-	inside := func(x float64) bool {
-		return (a.Min == nil || x >= *a.Min) && (a.Max == nil || x <= *a.Max) && (a.Above == nil || x > *a.Above)
-	}
-	number := func(wrap func(float64) any, at float64) {
-		candidates := []float64{at * 2, at + 1, at / 2, at - 1}
-		if a.Min != nil {
-			candidates = append(candidates, *a.Min)
-		}
-		for _, x := range candidates {
-			if inside(x) && len(values) < 2 {
-				add(wrap(x))
-			}
-		}
-	}
-	switch a.Type.Kind {
-	case stage.Truth:
-		v, _ := usual.(bool)
-		add(!v)
-	case stage.Text:
-		for _, c := range a.Choices {
-			add(c)
-		}
-	case stage.Whole:
-		at, _ := usual.(float64)
-		candidates := []float64{at + 1, at - 1}
-		for _, x := range candidates {
-			if inside(x) {
-				add(x)
-			}
-		}
-	case stage.Number:
-		at, _ := usual.(float64)
-		number(func(x float64) any { return x }, at)
-	case stage.Amount:
-		q, _ := usual.(stage.Quantity)
-		if q.SI == 0 && a.Above == nil && a.Min == nil {
-			return nil // no idea of its size
-		}
-		if q.SI == 0 {
-			q.SI = 1e9
-		}
-		number(func(x float64) any { return stage.Quantity{SI: x, Dimension: a.Type.Dimension} }, q.SI)
-	}
-	return values
 }

@@ -37,6 +37,10 @@ type Recording struct {
 	Rows, Gaps int
 	// Mean holds the mean of some columns over all samples, to within a part in a thousand of the largest.
 	Mean map[string]float64
+	// Vary holds other right values of options, besides those that the suite thinks of.
+	Vary map[string][]any
+	// Inert names options that change nothing for this recording, each with the reason.
+	Inert map[string]string
 }
 
 // Reader reports each problem of a recording reader as an error of the test.
@@ -50,6 +54,8 @@ func Reader(t *testing.T, r extension.Reader, recordings ...Recording) {
 // CheckReader lists the problems of a recording reader, working below an empty folder. What is wanted:
 //
 //   - a description that is complete, constant and survives the boundary;
+//   - options as Check wants arguments: what is wrong is refused by a job, what is right changes what is read of a
+//     recording, of one cut short or of one with a hurt byte, or is refused by name;
 //   - columns with their units, the rate and the gaps as the recording has them, in batches of neighbouring rows;
 //   - the same samples whatever the portions in which the source comes, and whatever columns are asked for;
 //   - of a recording cut short anywhere, its whole rows or an error about the recording; no panic on any bytes;
@@ -62,6 +68,7 @@ func CheckReader(folder string, r extension.Reader, recordings ...Recording) []s
 	if len(recordings) == 0 {
 		return []string{"no recording to read was given; the suite needs at least one"}
 	}
+	heeds := map[string]*heeded{}
 	for i, c := range recordings {
 		if c.Name == "" {
 			c.Name = fmt.Sprint("recording ", i+1)
@@ -69,7 +76,18 @@ func CheckReader(folder string, r extension.Reader, recordings ...Recording) []s
 		c.Options = withDefaults(r.Describe().Arguments, c.Options)
 		x := &readerCase{reader: r, Recording: c, path: filepath.Join(folder, fmt.Sprint(i))}
 		x.check()
+		if len(x.problems) == 0 {
+			x.checkOptions(heeds)
+		}
 		problems = append(problems, x.problems...)
+	}
+	if len(problems) > 0 {
+		return problems // what changes nothing might be a consequence
+	}
+	for _, a := range r.Describe().Arguments {
+		if p := heeds[a.Name].verdict("option", a.Name); p != "" {
+			problems = append(problems, p)
+		}
 	}
 	return problems
 }

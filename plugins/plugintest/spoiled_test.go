@@ -79,7 +79,7 @@ func TestSpoiledElements(t *testing.T) {
 		`description: its kind is "reader", not "element"`: {describe: func(x *stage.Extension) { x.Kind = "reader" }},
 		"description: the element has no about":            {describe: func(x *stage.Extension) { x.About = "" }},
 		"description: a second one differs":                {describe: func(x *stage.Extension) { calls++; x.About = fmt.Sprint(calls) }},
-		"option factor changes nothing: is it read?": {describe: func(x *stage.Extension) {
+		"option factor changes nothing: with 2, 0.5, 0, -1 the matrices are the same to the last byte; is it read?": {describe: func(x *stage.Extension) {
 			x.Arguments = []stage.Argument{{Name: "factor", About: "nothing", Type: stage.Type{Kind: stage.Number}, Default: 1.0}}
 		}},
 		"option t has no unit to be shown in": {describe: func(x *stage.Extension) {
@@ -129,10 +129,12 @@ type beat struct {
 	doubles  bool // gives a cut row
 	anything bool // takes any column
 	lost     bool // closes gaps
+	options  []stage.Argument
+	heeds    bool // its option
 }
 
-func (beat) Describe() stage.Extension {
-	return stage.Extension{Kind: extension.ReaderKind, Name: "beat", About: "counts"}
+func (b beat) Describe() stage.Extension {
+	return stage.Extension{Kind: extension.ReaderKind, Name: "beat", About: "counts", Arguments: b.options}
 }
 
 func (b beat) Inspect(context.Context, io.Reader, stage.Arguments) (recording.Header, error) {
@@ -140,7 +142,7 @@ func (b beat) Inspect(context.Context, io.Reader, stage.Arguments) (recording.He
 }
 
 // Read reads rows of a count of time and two of rate.
-func (b beat) Read(ctx context.Context, source io.Reader, _ stage.Arguments, q recording.Request, sink func(recording.Batch) error) error {
+func (b beat) Read(ctx context.Context, source io.Reader, o stage.Arguments, q recording.Request, sink func(recording.Batch) error) error {
 	var data []byte
 	if b.portion {
 		data = make([]byte, 1<<16)
@@ -188,6 +190,9 @@ func (b beat) Read(ctx context.Context, source io.Reader, _ stage.Arguments, q r
 			out.Values[i] = append(out.Values[i], float64(int16(binary.LittleEndian.Uint16(row[k:]))))
 		}
 	}
+	if b.heeds && o.Truth("loud") {
+		out.Notes = []string{"loud"}
+	}
 	if len(data)%6 > 0 {
 		out.Notes = []string{"the last row is cut"}
 	}
@@ -232,6 +237,24 @@ func TestSpoiledReaders(t *testing.T) {
 		if p := strings.Join(CheckReader(t.TempDir(), r, c), "\n"); !strings.Contains(p, want) {
 			t.Errorf("want %q among\n%s", want, p)
 		}
+	}
+	loud := with(func(b *beat) {
+		b.options = []stage.Argument{{Name: "loud", About: "whether to say so", Type: stage.Type{Kind: stage.Truth}, Default: false}}
+	})
+	if p := strings.Join(CheckReader(t.TempDir(), loud, c), "\n"); !strings.HasPrefix(p, "option loud changes nothing: with true the outcome is the same") {
+		t.Errorf("an option that is not read: %s", p)
+	}
+	said := c
+	said.Inert = map[string]string{"loud": "nothing is heard"}
+	if p := CheckReader(t.TempDir(), loud, said); len(p) != 0 {
+		t.Errorf("an option that is said to change nothing: %q", p)
+	}
+	loud.heeds = true
+	if p := CheckReader(t.TempDir(), loud, c); len(p) != 0 {
+		t.Errorf("an option that is read: %q", p)
+	}
+	if p := CheckReader(t.TempDir(), loud, said); len(p) != 1 || !strings.Contains(p[0], "option loud is said to change nothing (nothing is heard), and true changes") {
+		t.Errorf("an option that is wrongly said to change nothing: %q", p)
 	}
 	if p := CheckReader(t.TempDir(), good); len(p) != 1 || !strings.Contains(p[0], "no recording") {
 		t.Errorf("without a recording: %q", p)

@@ -37,6 +37,7 @@ func TestWrittenExtensionsWork(t *testing.T) {
 			}
 			run(folder, "go", "vet", ".")
 			run(folder, "go", "test", ".")
+			spoil(t, folder, kind)
 			run(folder, "go", "build", "-o", "extensions/", ".")
 			run(folder, program, "extensions", "pin", "job.hcl")
 			if out := run(folder, program, "run", "job.hcl"); !strings.Contains(out, "every requirement holds") || strings.Contains(out, "not judged") {
@@ -47,6 +48,36 @@ func TestWrittenExtensionsWork(t *testing.T) {
 				t.Errorf("into a folder with files: %v", err)
 			}
 		})
+	}
+}
+
+// spoil lets a written extension ignore its argument: its own test must say so, in words.
+func spoil(t *testing.T, folder, kind string) {
+	t.Helper()
+	x := map[string]struct{ read, ignore, want string }{
+		"stage":   {`call.Arguments.SI("from")`, "20.0", "argument from changes nothing: with"},
+		"element": {`options.Number("factor")`, "1", "option factor changes nothing: with 2, 0.5 the matrices are the same to the last byte; is it read?"},
+		"reader":  {`options.Text("separator")`, `","`, `option separator changes nothing: with ";" the outcome is the same to the last byte; is it read?`},
+	}[kind]
+	path := filepath.Join(folder, kind+".go")
+	whole, err := os.ReadFile(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	spoiled := strings.ReplaceAll(string(whole), x.read, x.ignore)
+	if spoiled == string(whole) {
+		t.Fatalf("%s does not read %s", path, x.read)
+	}
+	if err := os.WriteFile(path, []byte(spoiled), 0o644); err != nil {
+		t.Fatal(err)
+	}
+	c := exec.Command("go", "test", "-run", "^Test(Stage|Element|Reader)$", ".")
+	c.Dir = folder
+	if out, err := c.CombinedOutput(); err == nil || !strings.Contains(string(out), x.want) {
+		t.Errorf("with %s ignored (%v), want %q:\n%s", x.read, err, x.want, out)
+	}
+	if err := os.WriteFile(path, whole, 0o644); err != nil {
+		t.Fatal(err)
 	}
 }
 
