@@ -3,7 +3,11 @@ package sandpiper
 import (
 	"math"
 	"slices"
+	"strings"
 	"testing"
+
+	"hushframe/core/mechanics/assembly"
+	"hushframe/stages/kinds"
 )
 
 // TestFinerMesh holds what the job says of its modes: six rigid-body motions
@@ -131,5 +135,51 @@ func TestPractice(t *testing.T) {
 	}
 	if m.UpTo < 1.5*m.SweptTo {
 		t.Errorf("modes up to %g Hz for a sweep to %g Hz", m.UpTo, m.SweptTo)
+	}
+}
+
+// TestEnergiesAddUp: of each mode, the shares of parts, joints (the pressed faces of the sandwich among them) and mounts are
+// all of its strain energy; those of the triangles of a plate are the share of the plate, and leave joints and mounts out.
+func TestEnergiesAddUp(t *testing.T) {
+	d := perform(t, "baseline.hcl", map[string]string{"mesh_size": coarse})
+	m := modes(t, d)
+	a, err := d.Artifact("shells", "mesh")
+	if err != nil {
+		t.Fatal(err)
+	}
+	shells, err := kinds.DecodeMesh(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	pressed := 0.0
+	for _, x := range m.Survey.Modes {
+		all, elsewhere := 0.0, 0.0
+		own := map[string]float64{}
+		for e, share := range x.ByElement {
+			own[shells.Parts[shells.TrianglePart[e]].Name] += share
+		}
+		plates := 0
+		for g, share := range x.ByGroup {
+			all += share
+			group := m.Basis.Groups[g]
+			if sum, ok := own[group.Name]; ok && group.Kind == assembly.PartGroup {
+				plates++
+				if math.Abs(sum-share) > 1e-9 {
+					t.Errorf("mode %d: the triangles of %s hold %.12g of the energy, the plate %.12g", x.Number, group.Name, sum, share)
+				}
+				all += sum - share // counted by its triangles
+				continue
+			}
+			elsewhere += share
+			if group.Kind == assembly.JointGroup && strings.HasPrefix(group.Name, "faces") {
+				pressed = max(pressed, share)
+			}
+		}
+		if math.Abs(all-1) > 1e-9 || plates != len(own) || plates == 0 || !(elsewhere > 0) {
+			t.Errorf("mode %d: the shares add up to %.12g, %.3g of it beside the %d plates with triangles", x.Number, all, elsewhere, plates)
+		}
+	}
+	if !(pressed > 0.001) {
+		t.Errorf("pressed faces hold %.2g of the energy of a mode at most: the test sees none", pressed)
 	}
 }

@@ -63,7 +63,7 @@ var ModesKind = artifact.Kind{
 			col("motion", artifact.Text, "", "its greatest kind of strain energy"),
 			col("strain_groups", artifact.FloatList, "1", "share of the strain energy of each group"),
 			col("strain_kinds", artifact.FloatList, "1", "share of each kind"),
-			col("strain_elements", artifact.FloatList, "1", "share of the strain energy of each triangle of the mesh; may be empty"),
+			col("strain_elements", artifact.FloatList, "1", "share of the strain energy of each triangle of the mesh, of the plate itself; what contacts, joints, standoffs and mounts store is in strain_groups alone; may be empty"),
 			col("kinetic", artifact.FloatList, "1", "share of the kinetic energy of each row of masses"),
 			axisCols("rotation_", "rad per kg^(1/2)*m", "rotation of the gyro"),
 			axisCols("strength_", "rad/s per N", "gyro strength: peak rate of the mode alone, root sum of squares over unit forces at all hubs"),

@@ -19,7 +19,7 @@ type Energies struct {
 	// Kinetic[m][g] is ½ yᵀ M_g y of part group g; Body[m][b] that of body b of the problem.
 	Kinetic, Body [][]float64
 	// Plates[m][e] is the strain energy of plate element e in motion m, in the order of the plates of the
-	// problem and of their elements.
+	// problem and of their elements. What contacts between plates store is that of their joint groups.
 	Plates [][]float64
 }
 

@@ -23,7 +23,7 @@ type Mode struct {
 	// Shares of the energies; each adds up to one.
 	ByGroup, ByKind, ByCarrier []float64
 	// ByElement is the share of each triangle of the mesh in the strain energy, in its order; nil where it is
-	// not known. What is missing to one is in standoffs, joints and mounts.
+	// not known. What is missing to one is in standoffs, joints, contacts and mounts.
 	ByElement []float64
 	// Part names the group with the greatest strain energy, the first of equals; Motion its greatest kind.
 	Part, Motion string

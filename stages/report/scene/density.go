@@ -10,7 +10,8 @@ import (
 )
 
 // Density is the strain energy per volume at the nodes drawn, mode after mode, 255 for what is as dense as the densest
-// hundredth of the nodes of that mode, or denser: the corners of holes would else leave all the rest dark.
+// hundredth of the nodes of that mode, or denser: the corners of holes would else leave all the rest dark. It is that of
+// the plates themselves, without what contacts between them store.
 type Density struct {
 	Modes  []int      `json:"modes"`
 	Levels pack.Bytes `json:"levels"`

@@ -15,7 +15,7 @@ export interface Mode {
   number: number; vector: number; frequency: number; damping: number; about: string
   rotation: Vec; strength: Vec; strain: Share[]; kinds: Share[]; kinetic: Share[]
 }
-/** Strain energy density at the nodes drawn, mode after mode, 255 for the greatest of each. */
+/** Strain energy density of the plates at the nodes drawn, mode after mode, 255 for the greatest of each. */
 export interface Density { modes: number[]; levels: Uint8Array }
 /** How much of each vector moves at each frequency when the frame is driven: complex weights, frequency after frequency. */
 export interface Operating { axis: string; frequency: Float32Array; step: Float32Array; real: Int16Array; imaginary: Int16Array }

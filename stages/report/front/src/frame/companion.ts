@@ -113,13 +113,19 @@ export class Companion {
     }
     colouring.addEventListener('change', () => state.set({ colouring: colouring.value as Colouring }))
     const key = html('span', { class: 'key' }, 'none', html('span', { class: 'rampbar', 'aria-hidden': 'true' }), 'most')
-    state.listen(now => { key.hidden = now.colouring === 'part'; colouring.value = now.colouring })
+    const within = html('span', { class: 'key' }, 'of the plates themselves: what joints, pressed and glued faces, standoffs and mounts store is not in it')
+    state.listen(now => {
+      key.hidden = now.colouring === 'part'
+      within.hidden = now.colouring !== 'strain'
+      colouring.value = now.colouring
+    })
+    within.hidden = true
     const views = html('div', { class: 'looks', role: 'group', 'aria-label': 'look' })
     for (const l of looks) views.append(button(l.name, `look ${l.name}`, () => this.view.look(l)))
     const box = html('details', { class: 'options' }, html('summary', {}, 'View, colour and save'),
       html('div', { class: 'rows' },
         html('div', {}, slider('amplitude', 'amplitude', 0, 0.2), slider('speed', 'speed', 0.05, 3)),
-        html('div', {}, html('label', {}, 'colour by ', colouring), key),
+        html('div', {}, html('label', {}, 'colour by ', colouring), key, within),
         html('div', {}, tick('outline at rest', 'rest'), tick('lines that stay still', 'nodeLines'), tick('turning of the gyro', 'gyro'), tick('names', 'names')),
         views,
         html('div', { class: 'looks' }, button('save picture', 'save what is shown as PNG', () => void this.picture()), this.clipButton())))
