@@ -19,8 +19,10 @@ type contribution struct {
 	// shares[starts[i]:starts[i+1]]. Without starts the components are the unknowns, in order.
 	starts []int32
 	shares []share
-	// compute, when set, adds the stiffness over the unknowns to dst in place of all these; it has no mass.
+	// compute, when set, writes the stiffness over the unknowns, those of its first columns, in place of all these; it has
+	// no mass.
 	compute func(dst []float64)
+	columns int // that exist, see sparse.Element; 0: all
 }
 
 // share is a part of an unknown, by its place in the list of unknowns.
@@ -31,44 +33,35 @@ type share struct {
 
 // add assembles K and M.
 func (s *System) add(threads int) {
-	all := s.contributions()
-	lists := make([][]int32, len(all))
-	for i := range all {
-		lists[i] = all[i].unknowns
+	s.entries = s.contributions(threads)
+	elements := make([]sparse.Element, len(s.entries))
+	for i := range s.entries {
+		elements[i] = sparse.Element{Unknowns: s.entries[i].unknowns, Leading: s.entries[i].columns}
 	}
-	k := sparse.NewAssemblerThreads(s.N, lists, threads)
-	m := k.Fork()
-	// Adding goes in order, so the two matrices are added side by side.
-	dense.Parallel(threads, 2, func(which int) {
-		if which == 0 {
-			k.AddAll(threads, func(e int, packed []float64) bool { return all[e].addStiffness(packed) })
-			s.K = k.Matrix()
-			return
-		}
-		m.AddAll(threads, func(e int, packed []float64) bool { return all[e].reduce(packed, all[e].mass) })
-		s.M = m.Matrix()
-	})
+	s.assembler = sparse.NewAssemblerThreads(s.N, elements, threads)
+	k := s.assembler.Fork()
+	k.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].stiffnessOver(packed) })
+	s.K = k.Matrix()
+	m := s.assembler.Fork()
+	m.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].reduce(packed, s.entries[e].mass) })
+	s.M = m.Matrix()
 }
 
-// addStiffness adds the stiffness over the unknowns to dst, which is zero, and tells whether there is any.
-func (c *contribution) addStiffness(dst []float64) bool {
+// stiffnessOver gives the stiffness over the unknowns, in dst or where it stands; nil where there is none.
+func (c *contribution) stiffnessOver(dst []float64) []float64 {
 	if c.compute != nil {
 		c.compute(dst)
-		return true
+		return dst
 	}
 	return c.reduce(dst, c.stiffness)
 }
 
-// reduce writes Tᵀ A T, T being the matrix of the shares, or A where there are none. A nil A leaves dst zero and
-// gives false.
-func (c *contribution) reduce(dst, a []float64) bool {
-	if a == nil {
-		return false
+// reduce gives Tᵀ A T in dst, T being the matrix of the shares, or A where there are none.
+func (c *contribution) reduce(dst, a []float64) []float64 {
+	if a == nil || c.starts == nil {
+		return a
 	}
-	if c.starts == nil {
-		copy(dst, a)
-		return true
-	}
+	clear(dst)
 	n, w := len(c.starts)-1, len(c.unknowns)
 	row := make([]float64, w) // of A T
 	for i := range n {
@@ -89,28 +82,34 @@ func (c *contribution) reduce(dst, a []float64) bool {
 			}
 		}
 	}
-	return true
+	return dst
 }
 
-func (s *System) contributions() []contribution {
+// contributions lists all entries: elements, springs, contacts, bodies.
+func (s *System) contributions(threads int) []contribution {
 	var all []contribution
 	for i := range s.plates {
 		a := &s.plates[i]
 		per, list := a.part.unknowns(), a.part.lists()
 		size := element.Packed(per * a.nodes)
-		for e := range a.part.Elements {
-			c := s.follow(list(e), per, a.part.Axes)
-			c.group = a.part.Group
-			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
-			all = append(all, c)
-		}
+		from := len(all)
+		all = append(all, make([]contribution, len(a.part.Elements))...)
+		const share = 64
+		dense.Parallel(threads, (len(all)-from+share-1)/share, func(t int) {
+			for e := t * share; e < min(len(all)-from, (t+1)*share); e++ {
+				c := &all[from+e]
+				s.follow(c, list(e), per, a.part.Axes)
+				c.group = a.part.Group
+				c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
+			}
+		})
 	}
 	for i := range s.beams {
 		a := &s.beams[i]
 		size := element.Packed(12)
 		for e, nodes := range a.part.Elements {
-			c := s.follow(nodes[:], element.NodeUnknowns, a.axes[e])
-			c.group = a.part.Group
+			c := contribution{group: a.part.Group}
+			s.follow(&c, nodes[:], element.NodeUnknowns, a.axes[e])
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -118,7 +117,7 @@ func (s *System) contributions() []contribution {
 	for i := range s.springs {
 		all = append(all, s.springContribution(&s.springs[i]))
 	}
-	all = s.contactContributions(all)
+	all = s.contactContributions(all, threads)
 	for b := range s.layout.bodies {
 		all = append(all, s.bodyContribution(b))
 	}
@@ -126,9 +125,8 @@ func (s *System) contributions() []contribution {
 }
 
 // follow expresses the element-frame components of the nodes, the first per of each, through the unknowns.
-func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
+func (s *System) follow(c *contribution, nodes []int32, per int, axes Axes) {
 	l := s.layout
-	var c contribution
 	plain := true
 	for _, v := range nodes {
 		nd := &l.nodes[v]
@@ -137,10 +135,11 @@ func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
 		}
 	}
 	if plain {
+		c.unknowns = make([]int32, 0, per*len(nodes))
 		for _, v := range nodes {
 			c.unknowns = append(c.unknowns, l.nodes[v].own[:per]...)
 		}
-		return c
+		return
 	}
 	c.starts = make([]int32, 1, 6*len(nodes)+1)
 	var columns []column
@@ -169,7 +168,6 @@ func (s *System) follow(nodes []int32, per int, axes Axes) contribution {
 			c.starts = append(c.starts, int32(len(c.shares)))
 		}
 	}
-	return c
 }
 
 // springContribution is the stiffness over the columns of both bodies.

@@ -29,6 +29,9 @@ type System struct {
 	plates  []assembledPlates
 	beams   []assembledBeams
 	springs []assembledSpring
+	// What K and M are the sums of, and where it goes.
+	entries   []contribution
+	assembler *sparse.Assembler
 }
 
 // assembledPlates keeps what energies and groups need again.

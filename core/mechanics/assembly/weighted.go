@@ -12,20 +12,20 @@ func (s *System) Weighted(weights []float64, threads int) *sparse.Symmetric {
 	if len(weights) != len(s.layout.problem.Groups) {
 		panic(fmt.Sprintf("assembly: %d weights for %d groups", len(weights), len(s.layout.problem.Groups)))
 	}
-	all := s.contributions()
-	lists := make([][]int32, len(all))
-	for i := range all {
-		lists[i] = all[i].unknowns
-	}
-	k := sparse.NewAssemblerThreads(s.N, lists, threads)
-	k.AddAll(threads, func(e int, packed []float64) bool {
-		if !all[e].addStiffness(packed) {
-			return false
+	k := s.assembler.Fork()
+	k.AddAll(threads, func(e int, packed []float64) []float64 {
+		weight := weights[s.entries[e].group]
+		if weight == 0 {
+			return nil
 		}
-		for i := range packed {
-			packed[i] *= weights[all[e].group]
+		a := s.entries[e].stiffnessOver(packed)
+		if a == nil || weight == 1 {
+			return a
 		}
-		return true
+		for i, v := range a {
+			packed[i] = weight * v
+		}
+		return packed[:len(a)]
 	})
 	return k.Matrix()
 }

@@ -46,10 +46,20 @@ func TestNodesInManyRanges(t *testing.T) {
 			}
 		}
 	}
+	lists := make([]sparse.Element, len(elements))
+	for e := range elements {
+		lists[e].Unknowns = elements[e]
+	}
 	var first *sparse.Symmetric
 	for threads := 1; threads <= 3; threads++ {
-		a := sparse.NewAssemblerThreads(n, elements, threads)
-		a.AddAll(threads, func(e int, p []float64) bool { return copy(p, packed[e]) > 0 })
+		a := sparse.NewAssemblerThreads(n, lists, threads)
+		a.AddAll(threads, func(e int, p []float64) []float64 {
+			if e%2 == 0 {
+				return packed[e]
+			}
+			copy(p, packed[e])
+			return p
+		})
 		s := a.Matrix()
 		if first != nil {
 			if !slices.Equal(s.Ptr, first.Ptr) || !slices.Equal(s.Row, first.Row) || !slices.Equal(s.Val, first.Val) {
@@ -68,6 +78,103 @@ func TestNodesInManyRanges(t *testing.T) {
 			for p := s.Ptr[j]; p < s.Ptr[j+1]; p++ {
 				if v, ok := want[[2]int32{s.Row[p], int32(j)}]; !ok || math.Abs(v-s.Val[p]) > 1e-12 {
 					t.Fatalf("entry (%d, %d) is %g, want %g", s.Row[p], j, s.Val[p], v)
+				}
+			}
+		}
+	}
+}
+
+// Elements of which only the first columns exist: the sums are those of a map, for every number of threads, and what is
+// not coupled has no entry. Elements may name unknowns twice, in the columns, beyond them, or in both.
+func TestLeadingColumns(t *testing.T) {
+	const nodes, per = 700, 4
+	r := rand.New(rand.NewPCG(6, 3))
+	n := nodes * per
+	var elements []sparse.Element
+	var packed [][]float64
+	type entry = [2]int32
+	want := map[entry]float64{}
+	for u := range int32(n) {
+		want[entry{u, u}] = 0
+	}
+	for range 400 {
+		var unknowns []int32
+		first := r.IntN(nodes - 40)
+		for range 2 + r.IntN(6) {
+			v := first + r.IntN(30)
+			for c := range per {
+				unknowns = append(unknowns, int32(v*per+c))
+			}
+		}
+		leading := per * r.IntN(3) // 0: all
+		columns := leading
+		if leading == 0 {
+			columns = len(unknowns)
+		}
+		if r.IntN(3) == 0 {
+			for c := range per {
+				unknowns[len(unknowns)-per+c] = -1
+			}
+		}
+		var p []float64
+		for a, i := range unknowns {
+			for c := range int32(a % per) {
+				if i >= 0 {
+					want[entry{i, i - c - 1}] += 0 // a node is a block
+				}
+			}
+			for b, j := range unknowns[:min(a+1, columns)] {
+				v := r.Float64() + 0.5
+				p = append(p, v)
+				switch {
+				case i < 0 || j < 0:
+				case i == j && a != b:
+					want[entry{i, j}] += 2 * v
+				default:
+					want[entry{max(i, j), min(i, j)}] += v
+				}
+			}
+		}
+		elements, packed = append(elements, sparse.Element{Unknowns: unknowns, Leading: leading}), append(packed, p)
+	}
+	var first *sparse.Symmetric
+	for threads := 1; threads <= 3; threads++ {
+		a := sparse.NewAssemblerThreads(n, elements, threads)
+		a.AddAll(threads, func(e int, _ []float64) []float64 {
+			if e == 7 {
+				return nil
+			}
+			return packed[e]
+		})
+		b := a.Fork()
+		if threads == 1 {
+			a.Add(7, packed[7])
+		}
+		if first != nil {
+			b.Add(7, packed[7])
+			rest := a.Matrix()
+			if !slices.Equal(rest.Ptr, first.Ptr) || !slices.Equal(rest.Row, first.Row) {
+				t.Errorf("%d threads give another pattern", threads)
+			}
+			sum := sparse.Combine(1, rest, 1, b.Matrix())
+			for p, v := range sum.Val {
+				if math.Abs(v-first.Val[p]) > 1e-12 {
+					t.Fatalf("%d threads: entry %d is %g, not %g", threads, p, v, first.Val[p])
+				}
+			}
+			continue
+		}
+		first = a.Matrix()
+		if err := first.Check(); err != nil {
+			t.Fatal(err)
+		}
+		if len(first.Row) != len(want) {
+			t.Errorf("%d entries, want %d", len(first.Row), len(want))
+		}
+		for j := range n {
+			for p := first.Ptr[j]; p < first.Ptr[j+1]; p++ {
+				if v, ok := want[entry{first.Row[p], int32(j)}]; !ok || math.Abs(v-first.Val[p]) > 1e-12 {
+					t.Fatalf("entry (%d, %d) is %g, want %g", first.Row[p], j, first.Val[p], v)
 				}
 			}
 		}
