@@ -61,24 +61,29 @@ func (c *contribution) reduce(dst, a []float64) []float64 {
 	if a == nil || c.starts == nil {
 		return a
 	}
-	clear(dst)
 	n, w := len(c.starts)-1, len(c.unknowns)
-	row := make([]float64, w) // of A T
-	for i := range n {
-		clear(row)
-		for j := range n {
-			v := a[element.Packed(max(i, j))+min(i, j)]
-			if v == 0 {
-				continue
-			}
-			for _, t := range c.shares[c.starts[j]:c.starts[j+1]] {
-				row[t.at] += v * t.factor
+	var small [2 * 36 * 36]float64
+	room := small[:]
+	if n*(n+w) > len(room) {
+		room = make([]float64, n*(n+w))
+	}
+	full, product := room[:n*n], room[n*n:][:w*n] // A, and the transpose of A T
+	unpack(full, a, n)
+	for j := range n {
+		row := full[j*n:][:n]
+		for _, t := range c.shares[c.starts[j]:c.starts[j+1]] {
+			to := product[int(t.at)*n:][:n]
+			for i, v := range row {
+				to[i] += t.factor * v
 			}
 		}
+	}
+	clear(dst)
+	for i := range n {
 		for _, t := range c.shares[c.starts[i]:c.starts[i+1]] {
 			out := dst[element.Packed(int(t.at)):][:t.at+1]
 			for q := range out {
-				out[q] += t.factor * row[q]
+				out[q] += t.factor * product[q*n+i]
 			}
 		}
 	}
@@ -88,6 +93,7 @@ func (c *contribution) reduce(dst, a []float64) []float64 {
 // contributions lists all entries: elements, springs, contacts, bodies.
 func (s *System) contributions(threads int) []contribution {
 	var all []contribution
+	columns := s.layout.allColumns(threads)
 	for i := range s.plates {
 		a := &s.plates[i]
 		per, list := a.part.unknowns(), a.part.lists()
@@ -98,7 +104,7 @@ func (s *System) contributions(threads int) []contribution {
 		dense.Parallel(threads, (len(all)-from+share-1)/share, func(t int) {
 			for e := t * share; e < min(len(all)-from, (t+1)*share); e++ {
 				c := &all[from+e]
-				s.follow(c, list(e), per, a.part.Axes)
+				s.follow(c, list(e), per, a.part.Axes, columns)
 				c.group = a.part.Group
 				c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			}
@@ -109,7 +115,7 @@ func (s *System) contributions(threads int) []contribution {
 		size := element.Packed(12)
 		for e, nodes := range a.part.Elements {
 			c := contribution{group: a.part.Group}
-			s.follow(&c, nodes[:], element.NodeUnknowns, a.axes[e])
+			s.follow(&c, nodes[:], element.NodeUnknowns, a.axes[e], columns)
 			c.stiffness, c.mass = a.matrices.Stiffness[size*e:size*(e+1)], a.matrices.Mass[size*e:size*(e+1)]
 			all = append(all, c)
 		}
@@ -117,22 +123,24 @@ func (s *System) contributions(threads int) []contribution {
 	for i := range s.springs {
 		all = append(all, s.springContribution(&s.springs[i]))
 	}
-	all = s.contactContributions(all, threads)
+	all = s.contactContributions(all, columns, threads)
 	for b := range s.layout.bodies {
 		all = append(all, s.bodyContribution(b))
 	}
 	return all
 }
 
-// follow expresses the element-frame components of the nodes, the first per of each, through the unknowns.
-func (s *System) follow(c *contribution, nodes []int32, per int, axes Axes) {
+// follow expresses the element-frame components of the nodes, the first per of each, through the unknowns; columns are those
+// of all nodes.
+func (s *System) follow(c *contribution, nodes []int32, per int, axes Axes, columns [][]column) {
 	l := s.layout
-	plain := true
+	plain, count := true, 0
 	for _, v := range nodes {
 		nd := &l.nodes[v]
 		if nd.body >= 0 || nd.axes != axes {
 			plain = false
 		}
+		count += len(columns[v])
 	}
 	if plain {
 		c.unknowns = make([]int32, 0, per*len(nodes))
@@ -141,28 +149,32 @@ func (s *System) follow(c *contribution, nodes []int32, per int, axes Axes) {
 		}
 		return
 	}
-	c.starts = make([]int32, 1, 6*len(nodes)+1)
-	var columns []column
-	var places []int32
+	c.unknowns = make([]int32, 0, count)
+	c.starts = make([]int32, 1, per*len(nodes)+1)
+	c.shares = make([]share, 0, 3*count)
+	var buffer [16]column
 	for _, v := range nodes {
-		columns = l.nodeColumns(columns[:0], v)
-		places = places[:0]
-		for i := range columns {
-			col := &columns[i]
-			at := slices.Index(c.unknowns, col.unknown)
-			if at < 0 {
-				at = len(c.unknowns)
-				c.unknowns = append(c.unknowns, col.unknown)
-			}
-			places = append(places, int32(at))
-			if l.nodes[v].axes != axes {
-				col.motion = axes.in6(l.nodes[v].axes.out6(col.motion))
+		list := columns[v]
+		if nd := &l.nodes[v]; nd.axes != axes {
+			list = buffer[:0]
+			for _, col := range columns[v] {
+				list = append(list, column{col.unknown, axes.in6(nd.axes.out6(col.motion))})
 			}
 		}
+		var buffer [16]int32
+		places := buffer[:0]
+		for i := range list {
+			at := slices.Index(c.unknowns, list[i].unknown)
+			if at < 0 {
+				at = len(c.unknowns)
+				c.unknowns = append(c.unknowns, list[i].unknown)
+			}
+			places = append(places, int32(at))
+		}
 		for k := range per {
-			for i, col := range columns {
-				if col.motion[k] != 0 {
-					c.shares = append(c.shares, share{places[i], col.motion[k]})
+			for i := range list {
+				if f := list[i].motion[k]; f != 0 {
+					c.shares = append(c.shares, share{places[i], f})
 				}
 			}
 			c.starts = append(c.starts, int32(len(c.shares)))

@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"hushframe/core/mechanics/element"
+	"hushframe/core/numeric/dense"
 )
 
 // node is how one node of the problem follows the unknowns.
@@ -259,4 +260,22 @@ func (l *layout) nodeColumns(dst []column, v int32) []column {
 		}
 	}
 	return dst
+}
+
+// allColumns lists what moves each node in use, as nodeColumns does.
+func (l *layout) allColumns(threads int) [][]column {
+	all := make([][]column, len(l.nodes))
+	const share = 512
+	dense.Parallel(threads, (len(all)+share-1)/share, func(t int) {
+		list := make([]column, 0, 7*share)
+		for v := t * share; v < min(len(all), (t+1)*share); v++ {
+			if !l.used[v] {
+				continue
+			}
+			from := len(list)
+			list = l.nodeColumns(list, int32(v))
+			all[v] = list[from:len(list):len(list)]
+		}
+	})
+	return all
 }

@@ -8,6 +8,7 @@ import (
 
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/beam"
+	"hushframe/core/numeric/dense"
 	"hushframe/core/numeric/sparse"
 )
 
@@ -71,8 +72,10 @@ func Assemble(ctx context.Context, p *Problem, threads int) (*System, error) {
 		return nil, err
 	}
 	s := &System{N: l.count, Merges: l.merges, layout: l}
-	for i := range p.Plates {
-		if err := s.computePlates(ctx, &p.Plates[i], threads); err != nil {
+	s.plates = make([]assembledPlates, len(p.Plates))
+	dense.Parallel(threads, len(p.Plates), func(i int) { s.plates[i] = l.gather(&p.Plates[i], threads) })
+	for i := range s.plates {
+		if err := s.computePlates(ctx, &s.plates[i]); err != nil {
 			return nil, err
 		}
 	}
@@ -118,32 +121,36 @@ func (e *PartError) Error() string { return fmt.Sprintf("part %q: %v", e.Part, e
 // Unwrap gives the cause.
 func (e *PartError) Unwrap() error { return e.Err }
 
-func (s *System) computePlates(ctx context.Context, part *PlatePart, threads int) error {
+// gather makes room for the matrices of a part and brings the nodes of its elements into its axes.
+func (l *layout) gather(part *PlatePart, threads int) assembledPlates {
 	d := part.Type.Describe()
 	a := assembledPlates{part: part, nodes: d.Unknowns() / part.unknowns()}
 	origin := Vec{}
 	if len(part.Elements) > 0 {
-		origin = s.layout.problem.Nodes[part.Elements[0][0]]
+		origin = l.problem.Nodes[part.Elements[0][0]]
 	}
 	a.batch.Sections = append(a.batch.Sections, part.Section)
 	a.batch.Layups = append(a.batch.Layups, part.Layup)
 	a.batch.Section = make([]int32, len(part.Elements))
 	a.batch.Threads = threads
 	a.batch.Nodes = make([]float64, 0, 3*d.Nodes*len(part.Elements))
-	for _, e := range part.Elements {
-		for _, v := range e[:d.Nodes] {
-			x := part.Axes.in(sub(s.layout.problem.Nodes[v], origin))
+	for i := range part.Elements {
+		for _, v := range part.Elements[i][:d.Nodes] {
+			x := part.Axes.in(sub(l.problem.Nodes[v], origin))
 			a.batch.Nodes = append(a.batch.Nodes, x[:]...)
 		}
 	}
 	a.matrices = element.NewMatrices(len(part.Elements), d.Unknowns())
-	if err := part.Type.Matrices(ctx, &a.batch, a.matrices); err != nil {
+	return a
+}
+
+func (s *System) computePlates(ctx context.Context, a *assembledPlates) error {
+	if err := a.part.Type.Matrices(ctx, &a.batch, a.matrices); err != nil {
 		if ctx.Err() != nil {
 			return ctx.Err()
 		}
-		return &PartError{s.layout.problem.Groups[part.Group].Name, placed(err, part, s.layout.problem)}
+		return &PartError{s.layout.problem.Groups[a.part.Group].Name, placed(err, a.part, s.layout.problem)}
 	}
-	s.plates = append(s.plates, a)
 	return nil
 }
 

@@ -1,6 +1,11 @@
 package assembly
 
-import "hushframe/core/numeric/dense"
+import (
+	"slices"
+
+	"hushframe/core/mechanics/element"
+	"hushframe/core/numeric/dense"
+)
 
 // tied is the stiffness of a contact between the nodes of its plates. A point with shape functions N adds
 //
@@ -47,15 +52,15 @@ type patch struct {
 	nodes [12]int32 // of the tied
 	count int
 	arms  int32
-	sum   [12][12]float64 // lower triangle
+	sum   [12 * 13 / 2]float64 // packed lower triangle
 }
 
 // contactContributions adds an entry per tied node: its coupling with itself and the nodes after it.
-func (s *System) contactContributions(all []contribution, threads int) []contribution {
+func (s *System) contactContributions(all []contribution, columns [][]column, threads int) []contribution {
 	contacts := s.layout.problem.Contacts
 	parts := make([][]contribution, len(contacts))
 	dense.Parallel(threads, len(contacts), func(i int) {
-		t := s.layout.tie(&contacts[i])
+		t := s.layout.tie(&contacts[i], columns)
 		parts[i] = make([]contribution, len(t.nodes))
 		for v := range t.nodes {
 			parts[i][v] = t.contribution(int32(v), contacts[i].Group)
@@ -68,7 +73,7 @@ func (s *System) contactContributions(all []contribution, threads int) []contrib
 }
 
 // tie gathers the points of a contact.
-func (l *layout) tie(c *Contact) *tied {
+func (l *layout) tie(c *Contact, columns [][]column) *tied {
 	t := &tied{}
 	patches := l.patches(c, t)
 	axes := l.tiedAxes(c, t)
@@ -76,9 +81,10 @@ func (l *layout) tie(c *Contact) *tied {
 		n := &t.nodes[i]
 		nd := &l.nodes[n.node]
 		n.plain = nd.body < 0 && nd.axes == axes[n.side]
-		n.columns = l.nodeColumns(make([]column, 0, 7), n.node)
+		n.columns = columns[n.node]
 		n.plain = n.plain && len(n.columns) == 6
 		if nd.axes != axes[n.side] {
+			n.columns = slices.Clone(n.columns)
 			for k := range n.columns {
 				n.columns[k].motion = axes[n.side].in6(nd.axes.out6(n.columns[k].motion))
 			}
@@ -98,34 +104,28 @@ func (l *layout) patches(c *Contact, t *tied) []patch {
 	for side := range number {
 		number[side] = make([]int32, len(l.nodes))
 	}
-	for lo := 0; lo < len(c.Points); {
-		first := &c.Points[lo]
-		arms := [2]Vec{first.arm(0, l.problem.Nodes), first.arm(1, l.problem.Nodes)}
-		if k := len(t.arms) - 1; k < 0 || !near(arms, t.arms[k].at) {
+	for i := range c.Points {
+		x := &c.Points[i]
+		arms := [2]Vec{x.arm(0, l.problem.Nodes), x.arm(1, l.problem.Nodes)}
+		turned := len(t.arms) == 0 || !near(arms, t.arms[len(t.arms)-1].at)
+		if turned {
 			t.arms = append(t.arms, tiedArms{at: arms})
 		}
-		arms = t.arms[len(t.arms)-1].at
-		p := patch{arms: int32(len(t.arms) - 1)}
-		for side := range first.Sides {
-			x := &first.Sides[side]
-			for _, v := range x.Nodes[:x.Count] {
-				if number[side][v] == 0 {
-					t.nodes = append(t.nodes, tiedNode{node: v, side: int8(side)})
-					number[side][v] = int32(len(t.nodes))
+		if turned || x.Sides[0].Nodes != c.Points[i-1].Sides[0].Nodes || x.Sides[1].Nodes != c.Points[i-1].Sides[1].Nodes {
+			all = append(all, patch{arms: int32(len(t.arms) - 1)})
+			p := &all[len(all)-1]
+			for side := range x.Sides {
+				for _, v := range x.Sides[side].Nodes[:x.Sides[side].Count] {
+					if number[side][v] == 0 {
+						t.nodes = append(t.nodes, tiedNode{node: v, side: int8(side)})
+						number[side][v] = int32(len(t.nodes))
+					}
+					p.nodes[p.count] = number[side][v] - 1
+					p.count++
 				}
-				p.nodes[p.count] = number[side][v] - 1
-				p.count++
 			}
 		}
-		for {
-			p.addPoint(&c.Points[lo])
-			lo++
-			if lo == len(c.Points) || c.Points[lo].Sides[0].Nodes != first.Sides[0].Nodes || c.Points[lo].Sides[1].Nodes != first.Sides[1].Nodes ||
-				!near([2]Vec{c.Points[lo].arm(0, l.problem.Nodes), c.Points[lo].arm(1, l.problem.Nodes)}, arms) {
-				break
-			}
-		}
-		all = append(all, p)
+		all[len(all)-1].addPoint(x)
 	}
 	return all
 }
@@ -140,9 +140,9 @@ func (p *patch) addPoint(x *ContactPoint) {
 	n := copy(weights[:], x.Sides[0].Weights[:x.Sides[0].Count])
 	copy(weights[n:], x.Sides[1].Weights[:x.Sides[1].Count])
 	for i := range p.count {
-		by := x.Measure * weights[i]
-		for j := range i + 1 {
-			p.sum[i][j] += by * weights[j]
+		by, row := x.Measure*weights[i], p.sum[element.Packed(i):][:i+1]
+		for j := range row {
+			row[j] += by * weights[j]
 		}
 	}
 }
@@ -222,7 +222,7 @@ func (t *tied) pair(patches []patch) {
 					t.pairs = append(t.pairs, tiedPair{node: w, arms: arms})
 					place[w] = int32(len(t.pairs))
 				}
-				t.pairs[place[w]-1].weight += p.sum[max(int(u.at), at)][min(int(u.at), at)]
+				t.pairs[place[w]-1].weight += p.sum[element.Packed(max(int(u.at), at))+min(int(u.at), at)]
 			}
 		}
 		t.rows = append(t.rows, int32(len(t.pairs)))

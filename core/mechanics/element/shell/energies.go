@@ -14,7 +14,7 @@ func (k *kernel) energies(s *laminate.Section, motion, out []float64) {
 	for a := range n {
 		m := motion[element.NodeUnknowns*a:]
 		for c := range 5 {
-			i, sign := k.slot(a, c)
+			i, sign := place(k.f.nodes, a, c)
 			inner[i] = sign * m[c]
 		}
 		turn[a] = m[5]

@@ -4,6 +4,7 @@ package shell
 // and the map from sampled covariant shear strains to assumed ones.
 type formulation struct {
 	nodes  int
+	slots  []slot  // of the packed stiffness
 	points []point // integration points of the stiffness
 	masses []weighted
 	// samples are the points where covariant shear strains are taken; each adds r·e_r + s·e_s to one
@@ -33,7 +34,7 @@ type contribution struct {
 }
 
 func newFormulation(nodes int, shape func(r, s float64) at) *formulation {
-	f := &formulation{nodes: nodes}
+	f := &formulation{nodes: nodes, slots: slots(nodes)}
 	for _, p := range degree4() {
 		f.points = append(f.points, point{weighted: weighted{shape(p.r, p.s), p.weight}})
 	}

@@ -126,9 +126,10 @@ func (k *kernel) tieShear(xyz []float64) {
 				}
 				continue
 			}
-			for j := range width {
-				k.shear[p][0][j] += x * rows[f][j]
-				k.shear[p][1][j] += y * rows[f][j]
+			row, gx, gy := rows[f][:width], k.shear[p][0][:width], k.shear[p][1][:width]
+			for j, v := range row {
+				gx[j] += x * v
+				gy[j] += y * v
 			}
 		}
 	}
@@ -203,16 +204,18 @@ func (k *kernel) addDrilling(p int, c float64) {
 		plane[2*a], plane[2*a+1] = k.gy[p][a]/2, -k.gx[p][a]/2
 	}
 	for i := range 2 * n {
-		for j := range i + 1 {
-			k.k[i][j] += c * plane[i] * plane[j]
+		by, row := c*plane[i], k.k[i][:i+1]
+		for j := range row {
+			row[j] += by * plane[j]
 		}
 	}
 	for a := range n {
-		for b := range a + 1 {
-			k.drill[a][b] += c * value[a] * value[b]
+		by, drill, row := c*value[a], k.drill[a][:a+1], k.drillPlane[a][:2*n]
+		for b := range drill {
+			drill[b] += by * value[b]
 		}
-		for j := range 2 * n {
-			k.drillPlane[a][j] += c * value[a] * plane[j]
+		for j := range row {
+			row[j] += by * plane[j]
 		}
 	}
 }
@@ -234,44 +237,76 @@ func (k *kernel) condense() {
 	}
 }
 
-// slot returns the inner index of component c (u, v, w, θ_x, θ_y) of node a, and its sign.
-func (k *kernel) slot(a, c int) (int, float64) {
+// place returns the inner index of component c (u, v, w, θ_x, θ_y) of node a of n, and its sign.
+func place(n, a, c int) (int, float64) {
 	switch c {
 	case 0, 1:
 		return 2*a + c, 1
 	case 2:
-		return k.deflStart() + a, 1
+		return 2*n + a, 1
 	case 3: // β_y = -θ_x
-		return k.fibreStart() + 2*a + 1, -1
+		return 3*n + 2*a + 1, -1
 	default: // β_x = θ_y
-		return k.fibreStart() + 2*a, 1
+		return 3*n + 2*a, 1
 	}
 }
 
-// pack writes the stiffness in the order of the interface.
-func (k *kernel) pack(out []float64) {
+// slot is where an entry of the packed stiffness comes from.
+type slot struct {
+	from     source
+	row, col int8
+	sign     float64
+}
+
+type source int8
+
+const (
+	zero source = iota
+	inner
+	drill
+	drillPlane
+)
+
+// slots lists, in the order of the interface, where the stiffness of an element of n nodes comes from.
+func slots(n int) []slot {
 	const dof = element.NodeUnknowns
-	n := k.f.nodes
-	at := 0
+	var all []slot
 	for i := range dof * n {
 		a, ci := i/dof, i%dof
 		for j := range i + 1 {
 			b, cj := j/dof, j%dof
+			x := slot{sign: 1}
 			switch {
 			case ci == 5 && cj == 5:
-				out[at] = k.drill[a][b]
+				x.from, x.row, x.col = drill, int8(a), int8(b)
 			case ci == 5 && cj < 2:
-				out[at] = k.drillPlane[a][2*b+cj]
+				x.from, x.row, x.col = drillPlane, int8(a), int8(2*b+cj)
 			case cj == 5 && ci < 2:
-				out[at] = k.drillPlane[b][2*a+ci]
-			case ci == 5 || cj == 5:
-				out[at] = 0
-			default:
-				row, si := k.slot(a, ci)
-				col, sj := k.slot(b, cj)
-				out[at] = si * sj * k.k[max(row, col)][min(row, col)]
+				x.from, x.row, x.col = drillPlane, int8(b), int8(2*a+ci)
+			case ci < 5 && cj < 5:
+				row, si := place(n, a, ci)
+				col, sj := place(n, b, cj)
+				x = slot{inner, int8(max(row, col)), int8(min(row, col)), si * sj}
 			}
-			at++
+			all = append(all, x)
+		}
+	}
+	return all
+}
+
+// pack writes the stiffness in the order of the interface.
+func (k *kernel) pack(out []float64) {
+	for i := range k.f.slots {
+		x := &k.f.slots[i]
+		switch x.from {
+		case inner:
+			out[i] = x.sign * k.k[x.row][x.col]
+		case drill:
+			out[i] = k.drill[x.row][x.col]
+		case drillPlane:
+			out[i] = k.drillPlane[x.row][x.col]
+		default:
+			out[i] = 0
 		}
 	}
 }
@@ -292,24 +327,25 @@ func (k *kernel) mass(xyz []float64, s *laminate.Section, out []float64) {
 		}
 	}
 	clear(out)
-	put := func(i, j int, m float64) {
-		if i < j {
-			i, j = j, i
-		}
-		out[element.Packed(i)+j] = m
-	}
 	for a := range n {
 		for b := range n {
 			m := nn[max(a, b)][min(a, b)]
 			if b <= a {
 				for c := range 3 {
-					put(dof*a+c, dof*b+c, s.Mass*m)
+					out[element.Packed(dof*a+c)+dof*b+c] = s.Mass * m
 				}
-				put(dof*a+3, dof*b+3, s.Rotary*m)
-				put(dof*a+4, dof*b+4, s.Rotary*m)
+				for c := 3; c < 5; c++ {
+					out[element.Packed(dof*a+c)+dof*b+c] = s.Rotary * m
+				}
 			}
-			put(dof*a, dof*b+4, s.Coupling*m)    // u with β_x = θ_y
-			put(dof*a+1, dof*b+3, -s.Coupling*m) // v with β_y = -θ_x
+			if s.Coupling == 0 {
+				continue
+			}
+			out[lower(dof*a, dof*b+4)] = s.Coupling * m    // u with β_x = θ_y
+			out[lower(dof*a+1, dof*b+3)] = -s.Coupling * m // v with β_y = -θ_x
 		}
 	}
 }
+
+// lower is the place of entry (i, j) or (j, i) in a packed lower triangle.
+func lower(i, j int) int { return element.Packed(max(i, j)) + min(i, j) }
