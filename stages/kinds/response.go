@@ -134,7 +134,7 @@ var ResponseKind = artifact.Kind{
 			col("rotor", artifact.Text, "", "name; \"all\" is the root sum of squares over rotors of equal frequency"),
 			col("order", artifact.Float, "1", "multiple of the rotor's speed"),
 			col("frequency", artifact.Float, "Hz", ""),
-			col("force", artifact.Float, "N or N*m", "amplitude at one rotor; N*m for torque ripple"),
+			col("force", artifact.Float, "N or N*m", "amplitude at one rotor, not a number for all rotors where they differ; N*m for torque ripple"),
 			axisCols("", "rad/s", "peak amplitude"),
 		)},
 		{Name: "shapes", About: "operating shapes: motion of the mesh nodes under one unit of one component", Columns: columns(

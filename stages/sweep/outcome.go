@@ -78,6 +78,9 @@ func twoBladed(r *kinds.Response) string {
 	return fmt.Sprintf("two blades (%s): their tilt inertia changes twice a turn, which the model takes as its mean; tilting modes near twice the rotors' speed may couple through it", strings.Join(names, ", "))
 }
 
+// leastDamping is the damping ratio below which a mode is as good as undamped.
+const leastDamping = 1e-4
+
 func warnings(r *kinds.Response, set settings) []stage.Warning {
 	var out []stage.Warning
 	if r.To > r.ModesTo/1.5*(1+1e-9) {
@@ -94,11 +97,23 @@ func warnings(r *kinds.Response, set settings) []stage.Warning {
 			Where: "residual", Remedy: "let solve compute them, or raise its up_to",
 		})
 	}
+	var undamped []string
 	for _, m := range r.Modes {
-		if m.Damping < 1e-4 && m.Frequency > r.From && m.Frequency < r.To {
+		if m.Damping < leastDamping && m.Frequency > r.From && m.Frequency < r.To {
+			undamped = append(undamped, fmt.Sprintf("%d at %.4g Hz", m.Number, m.Frequency))
+		}
+	}
+	if len(undamped) > 0 {
+		out = append(out, stage.Warning{
+			ID: "sweep.undamped", Text: fmt.Sprintf("modes with a damping ratio below %g, whose peaks mean little: %s", leastDamping, strings.Join(undamped, ", ")),
+			Where: "modes", Remedy: "give their materials, joints and mounts a loss factor, or the airframe a floor",
+		})
+	}
+	for _, x := range r.Rotors {
+		if x.Highest > 0 && x.Speed > x.Highest*(1+1e-9) {
 			out = append(out, stage.Warning{
-				ID: "sweep.undamped", Text: fmt.Sprintf("mode %d at %.4g Hz has a damping ratio of only %.2g, so its peak means little", m.Number, m.Frequency, m.Damping),
-				Where: fmt.Sprintf("mode %d", m.Number), Remedy: "give its material, joint or mount a loss factor",
+				ID: "sweep.beyond-speed", Text: fmt.Sprintf("rotor %s turns at %.0f rpm here, and by its airframe at no more than %.0f rpm", x.Rotor, x.Speed/rpm, x.Highest/rpm),
+				Where: "rotor_speed", Remedy: "lower rotor_speed, or raise max_speed in the airframe file",
 			})
 		}
 	}
@@ -189,7 +204,9 @@ func makers(p kinds.ResponsePeak) string {
 
 func axisTable(r *kinds.Response) stage.Section {
 	s := stage.Section{
-		Title:   fmt.Sprintf("Gyro rate from %.4g to %.4g Hz", r.From, r.To),
+		Title: fmt.Sprintf("Gyro rate from %.4g to %.4g Hz", r.From, r.To),
+		Text: "root mean square under the assumed broadband source; with the lines of the rotors and the noise of the gyro as over a flight, spread over its rotor speeds; " +
+			"and the greatest change that the correction for modes left out makes",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "rms, deg/s", Right: true}, {Name: "with lines, deg/s", Right: true}, {Name: "strongest peak, Hz", Right: true}, {Name: "static correction, dB", Right: true}},
 	}
 	for axis, x := range r.Axes {
@@ -245,7 +262,7 @@ func lineTable(r *kinds.Response) stage.Section {
 		if reach := r.ModesTo / 1.5; x.Frequency > reach*(1+1e-9) {
 			s.Text = fmt.Sprintf("lines above %.4g Hz are rough: the modes go to %.4g Hz, which carries a response to two thirds of that", reach, r.ModesTo)
 		}
-		row := []string{x.Source, x.Rotor, fmt.Sprintf("%.1f", x.Frequency), fmt.Sprintf("%.3g", x.Force)}
+		row := []string{x.Source, x.Rotor, fmt.Sprintf("%.1f", x.Frequency), dash("%.3g", x.Force)}
 		for _, rate := range x.Rate {
 			row = append(row, fmt.Sprintf("%.3g", rate/degree))
 		}

@@ -109,7 +109,15 @@ func TestRotorsInStep(t *testing.T) {
 			t.Errorf("%s: %#v", name, err)
 		}
 	}
+	// Two rotors may push exactly against each other, three by a half.
+	against, _ := run(t, m, p, band(-1, 0, 600))
+	if a, b := against.Density[1][k], free.Density[1][k]; !(a < 0.1*b) {
+		t.Errorf("at its mode pitch has %g with rotors against each other and %g unrelated", a, b)
+	}
 	p.Rotors = append(p.Rotors, p.Rotors[0])
+	if err := correlated(settings{source: forced.Broadband{Together: []forced.Correlation{{To: 100, Coefficient: -0.5}}}}, 3); err != nil {
+		t.Errorf("three rotors against each other by a half: %v", err)
+	}
 	_, err := Stage{}.Run(context.Background(), call(t, m, p, band(-0.6, 0, 100)))
 	if f := fault.From(err); err == nil || f.Argument != "correlation" || f.Remedy == "" {
 		t.Errorf("three rotors against each other: %#v", err)

@@ -49,7 +49,7 @@ func readTogether(list []any) ([]forced.Correlation, error) {
 // the least that n rotors can have with each other.
 func correlated(set settings, rotors int) error {
 	for _, c := range set.source.Together {
-		if rotors > 1 && c.Coefficient < -1/float64(rotors-1)*(1-1e-12) {
+		if rotors > 1 && c.Coefficient < -1/float64(rotors-1)*(1+1e-9) {
 			return fault.New(fault.Input, "%d rotors cannot all be correlated by %g with each other", rotors, c.Coefficient).In("sweep", "").Of("correlation").
 				Do("make the coefficient %.3g or more", -1/float64(rotors-1))
 		}
@@ -110,7 +110,7 @@ func (f *fleet) lines(ctx context.Context, sys *forced.System, e rotor.Excitatio
 }
 
 // together adds lines as power when all have one frequency and there are two
-// or more.
+// or more; the amplitude at one rotor is not a number where rotors differ.
 func together(rows []kinds.ResponseLine) (kinds.ResponseLine, bool) {
 	if len(rows) < 2 {
 		return kinds.ResponseLine{}, false
@@ -121,6 +121,9 @@ func together(rows []kinds.ResponseLine) (kinds.ResponseLine, bool) {
 	for _, x := range rows {
 		if math.Abs(x.Frequency-sum.Frequency) > 1e-9*sum.Frequency {
 			return kinds.ResponseLine{}, false
+		}
+		if !(math.Abs(x.Force-sum.Force) <= 1e-9*sum.Force) {
+			sum.Force = math.NaN()
 		}
 		for axis := range square {
 			square[axis] += x.Rate[axis] * x.Rate[axis]

@@ -255,8 +255,22 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 // agree checks the arguments against the modes and the rotors.
 func agree(set settings, p *airframe.Properties, reach float64) error {
 	if set.to > reach*(1+1e-9) {
+		lower := ""
+		if end := math.Floor(reach / 1.5); end > set.from {
+			lower = fmt.Sprintf(", or end the sweep at %.4g Hz", end)
+		}
 		return fault.New(fault.Input, "the sweep goes to %g Hz, the modes only to %g Hz, so that modes within the sweep are missing", set.to, reach).In("sweep", "").Of("to").
-			Do("raise up_to of solve to %.4g Hz, 1.5 times as high as the sweep, or end the sweep at %.4g Hz", math.Ceil(1.5*set.to), math.Floor(reach/1.5))
+			Do("raise up_to of solve to %.4g Hz, 1.5 times as high as the sweep%s", math.Ceil(1.5*set.to), lower)
+	}
+	for _, f := range set.shapesAt {
+		if f > reach*(1+1e-9) {
+			return fault.New(fault.Input, "an operating shape is asked for at %g Hz, the modes only go to %g Hz", f, reach).In("sweep", "").Of("shapes_at").
+				Do("raise up_to of solve to %.4g Hz, 1.5 times as high", math.Ceil(1.5*f))
+		}
+	}
+	if len(p.Rotors) == 0 {
+		return fault.New(fault.Input, "the airframe has no rotor, so nothing drives it").In("sweep", "").Of("properties").
+			Do("add a rotor block to the airframe file; modes can be had without")
 	}
 	for _, r := range p.Rotors {
 		if r.Blades < 1 {

@@ -261,8 +261,13 @@ func TestLinesAtHover(t *testing.T) {
 		}
 	}
 	all := r.Lines[2]
-	if all.Rotor != "all" || math.Abs(all.Rate[2]-yaw*math.Sqrt2) > 1e-9*yaw {
+	if all.Rotor != "all" || math.Abs(all.Rate[2]-yaw*math.Sqrt2) > 1e-9*yaw || math.Abs(all.Force-force) > 1e-12 {
 		t.Errorf("together %+v", all)
+	}
+	// Unbalances that differ have no common amplitude.
+	other := []kinds.ResponseLine{{Frequency: 1, Force: 1}, {Frequency: 1, Force: 2}}
+	if x, ok := together(other); !ok || !math.IsNaN(x.Force) {
+		t.Errorf("different rotors together: %+v, %v", x, ok)
 	}
 	// 1 kg on two rotors, 1 % of the thrust at three times the speed, along z:
 	// roll moment y·Fz, pitch moment −x·Fz.
@@ -309,7 +314,12 @@ func TestWarnings(t *testing.T) {
 		m.Basis.Groups[g].LossFactor = 1e-5
 	}
 	_, out = run(t, m, p, nil)
-	if len(out.Warnings) != 3 || out.Warnings[0].ID != "sweep.undamped" {
+	if len(out.Warnings) != 1 || out.Warnings[0].ID != "sweep.undamped" || !strings.Contains(out.Warnings[0].Text, "1 at 150 Hz, 2 at 230 Hz, 3 at 300 Hz") {
+		t.Errorf("warnings %+v", out.Warnings)
+	}
+	m, p = frame()
+	_, out = run(t, m, p, stage.Arguments{"rotor_speed": fmt.Sprintf("%g rad/s", 1.1*p.Rotors[0].MaxSpeed)})
+	if len(out.Warnings) != 2 || out.Warnings[0].ID != "sweep.beyond-speed" || !strings.Contains(out.Warnings[1].Text, "rotor b") {
 		t.Errorf("warnings %+v", out.Warnings)
 	}
 }
@@ -325,8 +335,9 @@ func TestFaults(t *testing.T) {
 		"too fine":              {stage.Arguments{"resolution": hertz(1e-4)}, nil, fault.Input, "resolution"},
 		"no source": {stage.Arguments{"force_density": stage.Quantity{SI: 0, Dimension: "force density"}, "moment_density": stage.Quantity{SI: 0, Dimension: "moment density"}},
 			nil, fault.Input, "force_density"},
-		"shape at rest":    {stage.Arguments{"shapes_at": []any{hertz(0)}}, nil, fault.Input, "shapes_at"},
-		"beyond the modes": {stage.Arguments{"from": hertz(600), "to": hertz(760)}, nil, fault.Input, "to"},
+		"shape at rest":          {stage.Arguments{"shapes_at": []any{hertz(0)}}, nil, fault.Input, "shapes_at"},
+		"shape beyond the modes": {stage.Arguments{"shapes_at": []any{hertz(751)}}, nil, fault.Input, "shapes_at"},
+		"beyond the modes":       {stage.Arguments{"from": hertz(600), "to": hertz(760)}, nil, fault.Input, "to"},
 		"contradictory bands": {stage.Arguments{"correlation": []any{
 			map[string]any{"from": hertz(0), "to": hertz(80), "coefficient": 0.8},
 			map[string]any{"from": hertz(70), "coefficient": 0.1}}}, nil, fault.Input, "correlation"},
@@ -351,8 +362,14 @@ func TestFaults(t *testing.T) {
 		}
 	}
 	m, p := frame()
-	p.Rotors[1].Blades = 0
+	p.Rotors = nil
 	_, err := Stage{}.Run(context.Background(), call(t, m, p, nil))
+	if f := fault.From(err); err == nil || f.Argument != "properties" || f.Remedy == "" {
+		t.Errorf("no rotors: %#v", err)
+	}
+	m, p = frame()
+	p.Rotors[1].Blades = 0
+	_, err = Stage{}.Run(context.Background(), call(t, m, p, nil))
 	if f := fault.From(err); err == nil || f.Kind != fault.Input || f.Item != "rotor b" || f.Remedy == "" {
 		t.Errorf("no blades: %#v", err)
 	}
