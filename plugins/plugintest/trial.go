@@ -191,9 +191,46 @@ func (x *trial) checkDeclaration(a stage.Argument, bad func(string, ...any)) {
 	if a.Required && a.Default != nil {
 		bad("%s %s is required and has a default, which no job can reach", x.word, a.Name)
 	}
+	if t.Kind == stage.Object {
+		x.checkMembers(a, t, bad)
+	}
 	if a.Example != "" && t.Kind != stage.File && t.Kind != stage.Artifact {
 		if _, told := x.ask(map[string]string{a.Name: a.Example}); told != "" {
 			bad("%s %s: its own example %s is refused: %s", x.word, a.Name, a.Example, told)
+		}
+	}
+}
+
+// checkMembers tries the example of each member of an object, or of an object in a list or map, beside those that no
+// object can leave out.
+func (x *trial) checkMembers(a stage.Argument, t stage.Type, bad func(string, ...any)) {
+	members := map[string]string{}
+	for _, f := range t.Fields {
+		if f.Required && f.Example == "" {
+			return // nothing to go by
+		}
+		if f.Required {
+			members[f.Name] = f.Example
+		}
+	}
+	for _, f := range t.Fields {
+		if f.Example == "" {
+			continue
+		}
+		text, all := "", with(members, f.Name, f.Example)
+		for _, n := range sortedKeys(all) {
+			text += n + " = " + all[n] + ", "
+		}
+		text = "{ " + strings.TrimSuffix(text, ", ") + " }"
+		for of := a.Type; of.Kind != stage.Object; of = *of.Element {
+			if of.Kind == stage.List {
+				text = "[" + text + "]"
+			} else {
+				text = "{ key = " + text + " }"
+			}
+		}
+		if _, told := x.ask(map[string]string{a.Name: text}); told != "" {
+			bad("%s %s: the example %s of its member %s is refused: %s", x.word, a.Name, f.Example, f.Name, told)
 		}
 	}
 }
