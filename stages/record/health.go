@@ -19,7 +19,6 @@ const (
 	flatFloor  = -3.0
 	deepHole   = 10.0          // dB, of a notch
 	mostRate   = 70.0          // rad/s, 4000 deg/s: more than gyros of this kind reach
-	slowGyro   = 20.0          // Hz, less than any gyro is recorded at to hear a frame
 	quietRate  = 0.25 * degree // rad/s about the mean: as quiet as on a table
 	gravity    = 9.80665       // m/s²
 
@@ -39,9 +38,6 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 	if s.Gaps > 0 {
 		add("gaps", "", "no segment straddles one", "%d, %s missing, the first at %.6g s", s.Gaps, recording.Count(s.Missing, "sample"), f.axes.Time[f.timing.Gaps[0].After])
 	}
-	if len(s.Axes) > 0 && s.Axes[0].Quantity == gather.AngularRate && r.Plan.Time != "" && s.Rate < slowGyro {
-		add("unit", r.Plan.Time, "every frequency is wrong if so", "the times make the rate %.4g Hz, too slow for a gyro: they may be in another unit", s.Rate)
-	}
 	if s.Jitter > 0.01 {
 		add("jitter", "", "blurs lines, lowers levels towards high frequencies", "steps differ by %.1f %% (root mean square), at most %.0f %%", 100*s.Jitter, 100*f.timing.Widest)
 	}
@@ -53,9 +49,8 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		}
 		spikes := recording.FindSpikes(values)
 		if n := len(spikes.At); n > 0 {
-			add("spikes", a.Column, "raise the density at all frequencies; mend or leave out these times, unless they are true blows",
-				"%s out from those beside, up to %.4g %s, the first at %.6g s, with %.2g %% of the mean square", stand(n), shownRate(a, spikes.Largest),
-				shownUnit(a), gather.Join(f.axes.Time, f.timing.Runs)[spikes.At[0]], 100*spikes.Share)
+			add("spikes", a.Column, gather.SpikesDo, "%s, up to %.4g %s, the first at %.6g s, with %.2g %% of the mean square", gather.StandOut(n),
+				shownRate(a, spikes.Largest), shownUnit(a), gather.Join(f.axes.Time, f.timing.Runs)[spikes.At[0]], 100*spikes.Share)
 		}
 		if a.Saturated > 0 {
 			add("saturation", a.Column, "adds harmonics and broadband noise", "%d samples stay at an extreme of %.4g %s", a.Saturated, shownRate(a, a.Largest), shownUnit(a))
@@ -93,13 +88,6 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		add("unit", "", "every level is wrong by 96 if so", "the mean acceleration is %.3g m/s²: the numbers may be in m/s², not g", g*gravity)
 	}
 	return append(out, spectral(s)...)
-}
-
-func stand(n int) string {
-	if n == 1 {
-		return "1 sample stands"
-	}
-	return recording.Count(n, "sample") + " stand"
 }
 
 // spectral lists what the densities show: filters and mirrored orders.

@@ -135,6 +135,11 @@ func TestFindings(t *testing.T) {
 		if len(c.want) > 0 && len(s.Findings) != len(c.want) {
 			t.Errorf("%s:\n%s", name, text)
 		}
+		for _, w := range o.Warnings {
+			if spiky := w.ID == "record.spikes"; spiky != (name == "spikes") && (spiky || name == "spikes" && strings.HasPrefix(w.Text, "2 samples stand out")) {
+				t.Errorf("%s: %+v", name, w)
+			}
+		}
 		if c.none && len(s.Findings) > 0 {
 			t.Errorf("%s:\n%s", name, text)
 		}

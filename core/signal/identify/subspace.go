@@ -9,7 +9,7 @@ import (
 )
 
 // ErrDegenerate reports covariances from which no model follows: a channel that never changes, or a record too short.
-var ErrDegenerate = errors.New("the covariances have no inverse: a channel never changes, or the record is too short")
+var ErrDegenerate = errors.New("the covariances have no inverse: a channel never changes, a few spikes outweigh all else, or the record is too short")
 
 // Weighting says how T is weighed before it is decomposed.
 type Weighting uint8

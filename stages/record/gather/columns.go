@@ -141,6 +141,11 @@ func (p *Plan) chooseAxes(h recording.Header, set Settings) error {
 				if err != nil {
 					return err
 				}
+				for _, other := range p.Axes {
+					if other.Column == c.Column {
+						return fault.New(fault.Input, "column %q is given for %s and for %s", c.Column, other.Name, axis).Of("columns").Do("name another column for one of them, or leave it out")
+					}
+				}
 				p.Axes = append(p.Axes, c)
 			}
 		}

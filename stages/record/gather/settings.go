@@ -6,6 +6,7 @@ import (
 	"hushframe/core/extension"
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
+	"hushframe/core/signal/recording"
 )
 
 // Settings are the arguments that say what is read.
@@ -99,9 +100,9 @@ func Read(a stage.Arguments, name string) (Settings, error) {
 	case s.Find > 0 && (len(s.Speeds) != 2 || !(s.Speeds[0] > 0 && s.Speeds[1] > s.Speeds[0])):
 		return refuse("speed_range", `give the least and the greatest, such as ["7500 rpm", "24000 rpm"]`, "the range of speeds is no two rising speeds")
 	case a.Has("mounting") && len(s.Mounting) != 3:
-		return refuse("mounting", `give three angles, such as ["0 deg", "0 deg", "45 deg"]`, "the mounting has %d angles", len(s.Mounting))
+		return refuse("mounting", `give three angles, such as ["0 deg", "0 deg", "45 deg"]`, "the mounting has %s", recording.Count(len(s.Mounting), "angle"))
 	case a.Has("window") && (len(s.Window) == 0 || len(s.Window)%2 == 1):
-		return refuse("window", `give the first and the last time, such as ["8 s", "60 s"], or several such pairs`, "the window has %d times", len(s.Window))
+		return refuse("window", `give the first and the last time, such as ["8 s", "60 s"], or several such pairs`, "the window has %s", recording.Count(len(s.Window), "time"))
 	}
 	for i := 1; i < len(s.Window); i++ {
 		switch {

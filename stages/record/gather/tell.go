@@ -46,7 +46,26 @@ func (r *Recording) Findings(timing recording.Timing) []recording.Finding {
 		out = append(out, recording.Finding{What: "rate", Extent: fmt.Sprintf("the recording states %.6g Hz, %s %.6g Hz", stated, told, by),
 			Consequence: believed + "; every frequency is wrong by that ratio if it is the other"})
 	}
+	if r.Plan.Time != "" && r.Data.Rate == 0 && timing.Rate < slowGyro && r.Plan.Axes[0].Of == AngularRate {
+		out = append(out, recording.Finding{What: "unit", Where: r.Plan.Time, Consequence: "every frequency is wrong if so",
+			Extent: fmt.Sprintf("the times make the rate %.4g Hz, too slow for a gyro: they may be in another unit", timing.Rate)})
+	}
 	return out
+}
+
+// slowGyro is less than any gyro is recorded at to hear a frame, Hz; common practice.
+const slowGyro = 20.0
+
+// SpikesDo is the consequence of spikes.
+const SpikesDo = "raise the density at all frequencies and hide modes; mend them or leave these times out, unless they are true blows"
+
+// StandOut says how many samples are spikes.
+func StandOut(n int) string {
+	verb := "stand"
+	if n == 1 {
+		verb = "stands"
+	}
+	return recording.Count(n, "sample") + " " + verb + " out from those beside"
 }
 
 // muchJitter is worth a warning; common practice.
@@ -72,6 +91,15 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 	if timing.Jitter > muchJitter {
 		add("jitter", r.set.File, "log at equal steps", "steps between samples differ by %.1f %% (root mean square); lines are blurred and levels lowered towards high frequencies",
 			100*timing.Jitter)
+	}
+	for i, c := range r.Plan.Axes {
+		if r.set.Force { // a blow is what is wanted
+			break
+		}
+		if spikes := recording.FindSpikes(Join(axes.Values[i], timing.Runs)); len(spikes.At) > 0 {
+			add("spikes", c.Column, "", "%s, the first at %.6g s, with %.2g %% of the mean square; they %s", StandOut(len(spikes.At)),
+				Join(axes.Time, timing.Runs)[spikes.At[0]], 100*spikes.Share, SpikesDo)
+		}
 	}
 	for _, f := range r.Findings(timing) {
 		add(strings.ReplaceAll(f.What, " ", "-"), cmp.Or(f.Where, r.set.File), "", "%s; %s", f.Extent, f.Consequence)
