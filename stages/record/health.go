@@ -49,7 +49,7 @@ func findings(f *found, r *gather.Recording) []kinds.Finding {
 		}
 		spikes := recording.FindSpikes(values)
 		if n := len(spikes.At); n > 0 {
-			add("spikes", a.Column, gather.SpikesDo, "%s, up to %.4g %s, the first at %.6g s, with %.2g %% of the mean square", gather.StandOut(n),
+			add("spikes", a.Column, gather.SpikesDo, "%s, up to %.4g %s, the first at %.6g s, with %.3g %% of the mean square", gather.StandOut(n),
 				shownRate(a, spikes.Largest), shownUnit(a), gather.Join(f.axes.Time, f.timing.Runs)[spikes.At[0]], 100*spikes.Share)
 		}
 		if a.Saturated > 0 {

@@ -97,7 +97,7 @@ func (r *Recording) Warnings(stageName string, axes Series, timing recording.Tim
 			break
 		}
 		if spikes := recording.FindSpikes(Join(axes.Values[i], timing.Runs)); len(spikes.At) > 0 {
-			add("spikes", c.Column, "", "%s, the first at %.6g s, with %.2g %% of the mean square; they %s", StandOut(len(spikes.At)),
+			add("spikes", c.Column, "", "%s, the first at %.6g s, with %.3g %% of the mean square; they %s", StandOut(len(spikes.At)),
 				Join(axes.Time, timing.Runs)[spikes.At[0]], 100*spikes.Share, SpikesDo)
 		}
 	}
