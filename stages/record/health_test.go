@@ -100,7 +100,7 @@ func TestFindings(t *testing.T) {
 				return []float64{20000, 4000}
 			}
 			return []float64{noise(20), 4000}
-		}, []string{"spikes|gx_deg_s|2 samples stand out from those beside, up to 2e+04 deg/s, the first at 3 s, with 99 % of the mean square"}, false},
+		}, []string{"spikes|gx_deg_s|2 samples stand out from those beside, up to 2e+04 deg/s, the first at 3 s, with 99.2 % of the mean square"}, false},
 		"counts":  {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(2000), 4000} }, []string{"the numbers may be counts of the sensor"}, false},
 		"radians": {"time_s,gx_deg_s,rpm_1", func(i int) []float64 { return []float64{noise(0.1), 4000} }, []string{"unit|gx_deg_s|only 0.1 deg/s"}, false},
 		"degrees": {"time_s,gx_rad_s,rpm_1", func(i int) []float64 { return []float64{noise(60), 4000} }, []string{"unit|gx_rad_s|reaches"}, false},
