@@ -166,35 +166,64 @@ func writeSection(out io.Writer, s stage.Section) {
 	}
 }
 
-// fit gives the width of each column: as wide as its cells, but that columns of
-// words give way, the widest first, until the table fits into a width.
+// fit gives the width of each column, the widest first giving way until the table fits into a width: headers of
+// numbers by wrapping at their spaces; columns of words down to a comfortable width, then to their longest word; at
+// last long words, which are cut. Numbers are never wrapped.
 func fit(s stage.Section, width int) []int {
-	const narrowest, gap = 20, 2
-	widths := make([]int, len(s.Columns))
+	const comfortable, narrowest, gap = 20, 12, 2
+	n := len(s.Columns)
+	widths, numbers, words := make([]int, n), make([]int, n), make([]int, n)
 	total := 0
 	for i, c := range s.Columns {
-		widths[i] = utf8.RuneCountInString(c.Name)
+		header, word := utf8.RuneCountInString(c.Name), longestWord(c.Name)
+		cells := 0
 		for _, row := range s.Rows {
 			if i < len(row) {
-				widths[i] = max(widths[i], utf8.RuneCountInString(row[i]))
+				cells = max(cells, utf8.RuneCountInString(row[i]))
+				word = max(word, longestWord(row[i]))
 			}
 		}
+		widths[i], numbers[i], words[i] = max(header, cells), max(longestWord(c.Name), cells), word
 		total += widths[i] + gap
 	}
-	for total > width {
-		widest := -1
-		for i, c := range s.Columns {
-			if !c.Right && widths[i] > narrowest && (widest < 0 || widths[i] > widths[widest]) {
-				widest = i
+	shrink := func(least func(i int) int) {
+		for total > width {
+			widest := -1
+			for i := range s.Columns {
+				if widths[i] > least(i) && (widest < 0 || widths[i] > widths[widest]) {
+					widest = i
+				}
 			}
+			if widest < 0 {
+				return
+			}
+			widths[widest]--
+			total--
 		}
-		if widest < 0 {
-			break
-		}
-		widths[widest]--
-		total--
 	}
+	// of returns the least width of a column of words, while numbers keep theirs.
+	of := func(least func(i int) int) func(i int) int {
+		return func(i int) int {
+			if s.Columns[i].Right {
+				return numbers[i]
+			}
+			return least(i)
+		}
+	}
+	shrink(of(func(i int) int { return widths[i] }))
+	shrink(of(func(i int) int { return max(comfortable, words[i]) }))
+	shrink(of(func(i int) int { return max(narrowest, words[i]) }))
+	shrink(of(func(int) int { return comfortable }))
 	return widths
+}
+
+// longestWord is the number of letters of the longest word.
+func longestWord(text string) int {
+	n := 0
+	for _, w := range strings.Fields(text) {
+		n = max(n, utf8.RuneCountInString(w))
+	}
+	return n
 }
 
 // sectionStyle: two spaces between columns, a thin line under the header.

@@ -303,6 +303,26 @@ func TestWideTable(t *testing.T) {
 	}
 }
 
+// Where room is short headers of numbers wrap first, then words between each other; a long name is cut only when nothing
+// else is left.
+func TestLongNamesStayWhole(t *testing.T) {
+	const name, number = "B-NAVIER-45_-45_45_-45-ah10", "-1.23456e+08"
+	for width, cut := range map[int]bool{70: false, 60: false, 56: false, 50: true, 40: true} {
+		var out bytes.Buffer
+		t.Setenv("COLUMNS", strconv.Itoa(width))
+		writeSection(&out, stage.Section{Title: "Long", Columns: []stage.Column{{Name: "problem, value"}, {Name: "share of tolerance, %", Right: true}, {Name: "ours", Right: true}},
+			Rows: [][]string{{name + ", mode seven", "61", number}, {"A-EB, mode 1", "2", "1"}}})
+		if strings.Contains(out.String(), name) == cut || !strings.Contains(out.String(), number) {
+			t.Errorf("%d columns:\n%s", width, &out)
+		}
+		for line := range strings.Lines(out.String()) {
+			if n := utf8.RuneCountInString(strings.TrimRight(line, "\n")); n > max(width, 48) {
+				t.Errorf("%d columns of %d: %s", n, width, line)
+			}
+		}
+	}
+}
+
 // Names from files cannot steer the terminal, nor turn what is written.
 func TestHarmless(t *testing.T) {
 	var out bytes.Buffer

@@ -154,9 +154,18 @@ func (t *task) solve() kinds.VerifiedProblem {
 func outcome(v *kinds.Verification) *stage.Outcome {
 	s := stage.Section{
 		Title: "Known problems",
-		Text:  "the value of each problem that takes the greatest share of its tolerance",
-		Columns: []stage.Column{{Name: "problem"}, {Name: "value"}, {Name: "reference", Right: true}, {Name: "ours", Right: true},
-			{Name: "error, %", Right: true}, {Name: "share of tolerance, %", Right: true}, {Name: "source"}},
+		Text:  "the value of each problem that takes the greatest share of its tolerance; numbers of sources are explained below",
+		Columns: []stage.Column{{Name: "problem, value"}, {Name: "reference", Right: true}, {Name: "ours", Right: true},
+			{Name: "error, %", Right: true}, {Name: "share, %", Right: true}, {Name: "source", Right: true}},
+	}
+	sources := stage.Section{Title: "Sources", Columns: []stage.Column{{Name: "", Right: true}, {Name: "source"}}}
+	numbers := map[string]string{}
+	number := func(source string) string {
+		if numbers[source] == "" {
+			numbers[source] = fmt.Sprint(len(numbers) + 1)
+			sources.Rows = append(sources.Rows, []string{numbers[source], source})
+		}
+		return numbers[source]
 	}
 	values, failed, worst := 0, 0, 0.0
 	for i := range v.Problems {
@@ -171,15 +180,15 @@ func outcome(v *kinds.Verification) *stage.Outcome {
 		top, ok := p.Worst()
 		if !ok {
 			failed++
-			s.Rows = append(s.Rows, []string{p.ID, p.Failure, "-", "-", "-", "-", short(p.Source)})
+			s.Rows = append(s.Rows, []string{p.ID + ", " + p.Failure, "-", "-", "-", "-", number(p.Source)})
 			continue
 		}
-		s.Rows = append(s.Rows, []string{p.ID, top.Label, fmt.Sprintf("%.6g", top.Reference), fmt.Sprintf("%.6g", top.Computed), difference(top),
-			fmt.Sprintf("%.0f", 100*top.Share), short(p.Source)})
+		s.Rows = append(s.Rows, []string{p.ID + ", " + top.Label, fmt.Sprintf("%.5g", top.Reference), fmt.Sprintf("%.5g", top.Computed), difference(top),
+			fmt.Sprintf("%.0f", 100*top.Share), number(p.Source)})
 	}
 	return &stage.Outcome{
 		Figures: map[string]any{"problems": float64(len(v.Problems)), "values": float64(values), "failed": float64(failed), "worst": worst},
-		Summary: []stage.Section{s},
+		Summary: []stage.Section{s, sources},
 		Notes:   []string{fmt.Sprintf("%d values of %d problems compared, %d beyond their tolerance", values, len(v.Problems), failed)},
 	}
 }
@@ -190,14 +199,4 @@ func difference(x kinds.VerifiedValue) string {
 		return "-"
 	}
 	return fmt.Sprintf("%+.3f", 100*(x.Computed/x.Reference-1))
-}
-
-// short keeps the first words of a source for the terminal.
-func short(source string) string {
-	const room = 26
-	runes := []rune(source)
-	if len(runes) <= room {
-		return source
-	}
-	return strings.TrimRight(string(runes[:room-1]), " ,") + "…"
 }

@@ -61,7 +61,7 @@ func TestErrorsAreCounted(t *testing.T) {
 	if o.Figures["failed"] != 2.0 || o.Figures["problems"] != 2.0 || o.Figures["values"] != 6.0 || !(o.Figures["worst"].(float64) > 1) {
 		t.Errorf("figures %v", o.Figures)
 	}
-	if row := o.Summary[0].Rows[1]; !strings.Contains(row[1], "mass") {
+	if row := o.Summary[0].Rows[1]; !strings.Contains(row[0], "A-MOUNTS-CAMERA, ") || !strings.Contains(row[0], "mass") {
 		t.Errorf("the row that cannot be built says %q", row)
 	}
 }
