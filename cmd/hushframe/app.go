@@ -16,6 +16,7 @@ import (
 
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
+	"hushframe/plugins/host"
 )
 
 // Exit codes, as the help states them.
@@ -44,6 +45,8 @@ type app struct {
 	color, live bool
 	// blocks says whether out is a terminal that shows block characters.
 	blocks bool
+	// watchesMemory says whether processes above their memory are ended here.
+	watchesMemory bool
 
 	logFormat string
 	verbose   bool
@@ -76,7 +79,7 @@ func newApp(builtin []stage.Stage, out, err *os.File) *app {
 		builtin: builtin, out: out, err: err,
 		color:  terminal && os.Getenv("NO_COLOR") == "",
 		live:   terminal && os.Getenv("TERM") != "dumb",
-		blocks: showsBlocks(isTerminal(out), os.Getenv),
+		blocks: showsBlocks(isTerminal(out), os.Getenv), watchesMemory: host.WatchesMemory(),
 	}
 }
 

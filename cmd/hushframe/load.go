@@ -140,7 +140,7 @@ func (a *app) load(ctx context.Context, h *host.Host, path string, f *jobFlags) 
 		}
 		var more hcl.Diagnostics
 		p, more = plan.Make(j)
-		diags = append(diags, more...)
+		diags = append(append(diags, more...), a.unwatched(j)...)
 	}
 	a.diagnose(j, diags)
 	if diags.HasErrors() {

@@ -153,10 +153,11 @@ requirement "low" {
 
 // tower is a job folder.
 type tower struct {
-	t   *testing.T
-	dir string
-	job string
-	raw bool // leave times and hashes as they are
+	t         *testing.T
+	dir       string
+	job       string
+	raw       bool // leave times and hashes as they are
+	unwatched bool // as where memory cannot be watched
 }
 
 func newTower(t *testing.T) *tower {
@@ -179,7 +180,7 @@ func (w *tower) write(name, content string) {
 func (w *tower) call(args ...string) (code int, out, err string) {
 	w.t.Helper()
 	var o, e bytes.Buffer
-	a := &app{builtin: testStages, out: &o, err: &e}
+	a := &app{builtin: testStages, out: &o, err: &e, watchesMemory: !w.unwatched}
 	code = a.main(context.Background(), args)
 	return code, w.clean(o.String()), w.clean(e.String())
 }

@@ -61,6 +61,9 @@ numbers are in SI units, and runs that come to the same write the same bytes.
 			if bytes, err = amount("--memory", memory, "memory", math.MaxInt64/2); err != nil {
 				return err
 			}
+			if !a.watchesMemory {
+				a.log.Warn().Msg("--memory: " + unwatchedText)
+			}
 		}
 		folder, err := jobFolder(args[0])
 		if err != nil {

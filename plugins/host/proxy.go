@@ -5,6 +5,7 @@ import (
 	"encoding/json"
 	"errors"
 	"io"
+	"os"
 	"time"
 
 	"hushframe/core/pipeline/fault"
@@ -88,6 +89,10 @@ func watch[T any](ctx context.Context, o Options, p *process, id string, call fu
 
 // memoryEvery is how often the memory of a process is looked at.
 const memoryEvery = 200 * time.Millisecond
+
+// WatchesMemory tells whether this system lets the host see what memory a process has for itself. Where it does not, no
+// process is killed for using more than it was granted.
+func WatchesMemory() bool { return memoryOf(os.Getpid()) > 0 }
 
 // checkMemory kills a process that uses more than its steps may.
 func (p *process) checkMemory() {
