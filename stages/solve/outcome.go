@@ -86,7 +86,7 @@ func warnings(m *kinds.Modes, p *airframe.Properties, set settings) []stage.Warn
 			ID:     "solve.short-of-sweep",
 			Text:   fmt.Sprintf("modes go to %.4g Hz for a sweep to %.4g Hz; by common practice they should go 1.5 times as high", set.upTo, set.sweptTo),
 			Where:  "up_to",
-			Remedy: fmt.Sprintf("raise up_to to %.4g Hz", math.Ceil(rule*set.sweptTo)),
+			Remedy: fmt.Sprintf("raise up_to to %.4g Hz, or set swept_to to where the sweep ends, %.4g Hz or less", math.Ceil(rule*set.sweptTo), math.Floor(set.upTo/rule)),
 		})
 	}
 	if !m.Proved {
@@ -95,13 +95,20 @@ func warnings(m *kinds.Modes, p *airframe.Properties, set settings) []stage.Warn
 			Where: "up_to", Remedy: "move up_to a little, away from a cluster of modes",
 		})
 	}
+	var ringing, parts []string
 	for i := range m.Survey.Modes {
 		if mode := &m.Survey.Modes[i]; mode.Loss < undamped {
-			out = append(out, stage.Warning{
-				ID: "solve.undamped", Text: fmt.Sprintf("mode %d at %.4g Hz has a loss factor of %.2g, so its gyro strength means little", mode.Number, mode.Frequency, mode.Loss),
-				Where: mode.Part, Remedy: "give its material, joint or mount a loss factor, or the airframe a floor",
-			})
+			ringing = append(ringing, fmt.Sprintf("%d at %.4g Hz", mode.Number, mode.Frequency))
+			if !slices.Contains(parts, mode.Part) {
+				parts = append(parts, mode.Part)
+			}
 		}
+	}
+	if len(ringing) > 0 {
+		out = append(out, stage.Warning{
+			ID: "solve.undamped", Text: fmt.Sprintf("modes with a loss factor below %g, whose gyro strength means little: %s", undamped, strings.Join(ringing, ", ")),
+			Where: strings.Join(parts, ", "), Remedy: "give their materials, joints and mounts a loss factor, or the airframe a floor",
+		})
 	}
 	if p.DeclaredMass > 0 && math.Abs(m.Mass/p.DeclaredMass-1) > 0.05 {
 		out = append(out, stage.Warning{

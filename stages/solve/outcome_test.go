@@ -1,6 +1,7 @@
 package solve
 
 import (
+	"slices"
 	"strings"
 	"testing"
 	"unicode/utf8"
@@ -56,5 +57,12 @@ func TestMeetingTable(t *testing.T) {
 	}
 	if got := meetingTable(m).Rows[0][2]; got != "12433, 2433" {
 		t.Errorf("order 1 meets at %s", got)
+	}
+}
+
+// A footprint and the body that stands on it are named once.
+func TestNamesOfMergedBodies(t *testing.T) {
+	if got := once([]string{"rotor r", "lump bat", "r", "bat", "clamp 3"}); !slices.Equal(got, []string{"rotor r", "lump bat", "clamp 3"}) {
+		t.Errorf("named are %q", got)
 	}
 }

@@ -290,18 +290,29 @@ func TestWarnings(t *testing.T) {
 	for i := range p.Materials {
 		p.Materials[i].LossFactor = 0
 	}
+	for i := range p.Joints {
+		p.Joints[i].LossFactor = 0
+	}
+	for i := range p.Bodies {
+		if p.Bodies[i].Mount != nil {
+			p.Bodies[i].Mount.Loss = [6]float64{}
+		}
+	}
 	o, _, err := b.run(m, p, 2, map[string]float64{"up_to": 400, "swept_to": 400})
 	if err != nil {
 		t.Fatal(err)
 	}
 	seen := map[string]bool{}
 	for _, w := range o.Warnings {
+		if seen[w.ID] {
+			t.Errorf("warning %s twice", w.ID)
+		}
 		seen[w.ID] = true
 		if w.Remedy == "" || w.Text == "" {
 			t.Errorf("warning %s without text or remedy", w.ID)
 		}
 	}
-	for _, id := range []string{"solve.short-of-sweep", "solve.mass"} {
+	for _, id := range []string{"solve.short-of-sweep", "solve.mass", "solve.undamped"} {
 		if !seen[id] {
 			t.Errorf("no warning %s among %v", id, seen)
 		}
@@ -406,6 +417,17 @@ func TestMemoryIsAskedFor(t *testing.T) {
 	_, _, err := b.run(m, p, 1, nil)
 	var f *fault.Error
 	if !errors.As(err, &f) || f.Kind != fault.Limit || f.Argument != "mesh" || !strings.Contains(f.Text, "0.0 GB are granted") || b.keep.made != 0 && len(b.keep.kept) != 0 {
+		t.Errorf("got %v", err)
+	}
+}
+
+// A limit in another unit, or a frame as soft as foil, asks for thousands of modes: that is said, not tried.
+func TestAbsurdlyManyModesAreRefused(t *testing.T) {
+	b := newBench(t)
+	m, p := known.Airframe(0.03)
+	_, _, err := b.run(m, p, 1, map[string]float64{"up_to": 750e3, "swept_to": 200})
+	var f *fault.Error
+	if !errors.As(err, &f) || f.Kind != fault.Limit || f.Argument != "up_to" || !strings.Contains(f.Text, "at most 1000 are looked for") || f.Remedy == "" {
 		t.Errorf("got %v", err)
 	}
 }

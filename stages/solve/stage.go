@@ -5,6 +5,8 @@ import (
 	"context"
 	"errors"
 	"fmt"
+	"slices"
+	"strings"
 
 	"hushframe/core/extension"
 	"hushframe/core/mechanics/airframe"
@@ -13,6 +15,7 @@ import (
 	"hushframe/core/mechanics/element/shell"
 	"hushframe/core/mechanics/mesh"
 	"hushframe/core/mechanics/modal"
+	"hushframe/core/numeric/eigen"
 	"hushframe/core/pipeline/artifact"
 	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
@@ -197,7 +200,8 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 	if err != nil {
 		return nil, nil, err
 	}
-	if err := afford(call, &f.Problem); err != nil {
+	most, err := afford(call, &f.Problem)
+	if err != nil {
 		return nil, nil, err
 	}
 	call.Report.Progress("assemble", -1)
@@ -206,7 +210,11 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 		return nil, nil, err
 	}
 	call.Report.Log(stage.Info, "assembled", "unknowns", s.N, "entries", len(s.K.Val), "mass_g", fmt.Sprintf("%.1f", 1e3*s.Mass))
-	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Threads: call.Threads, Progress: call.Report.Progress, Bare: k.refined, Solve: k.lowest})
+	st, err := modal.Build(ctx, s, sites, modal.Options{UpTo: set.upTo, Most: most, Threads: call.Threads, Progress: call.Report.Progress, Bare: k.refined, Solve: k.lowest})
+	var many *eigen.TooManyError
+	if errors.As(err, &many) {
+		return nil, nil, crowded(many, set.upTo)
+	}
 	if err != nil {
 		return nil, nil, placed(s, err)
 	}
@@ -221,10 +229,17 @@ func compute(ctx context.Context, call *stage.Call, k task) (*kinds.Modes, []str
 	var notes []string
 	for _, merge := range s.Merges {
 		if merge.Shared {
-			notes = append(notes, fmt.Sprintf("footprints that share nodes are one rigid body: %s", list(merge.Bodies)))
+			notes = append(notes, fmt.Sprintf("footprints that share nodes are one rigid body: %s", list(once(merge.Bodies))))
 		}
 	}
 	return modes, append(notes, st.Notes...), nil
+}
+
+// once leaves out bodies whose footprint is named too: "r" beside "rotor r".
+func once(names []string) []string {
+	return slices.DeleteFunc(slices.Clone(names), func(name string) bool {
+		return slices.ContainsFunc(names, func(other string) bool { return strings.HasSuffix(other, " "+name) })
+	})
 }
 
 // places are the hubs, the gyro and the other bodies.

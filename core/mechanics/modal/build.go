@@ -23,7 +23,10 @@ type Place struct {
 // Options says what to compute.
 type Options struct {
 	// UpTo asks for every mode below it, Hz.
-	UpTo    float64
+	UpTo float64
+	// Most, when positive, is the greatest number of elastic modes to search for: when more are counted below
+	// UpTo the error is an *eigen.TooManyError, whose numbers hold the rigid-body motions too.
+	Most    int
 	Threads int
 	// Bare leaves out residual vectors, shapes and the stiffness of groups: what a comparison of meshes needs.
 	Bare bool
@@ -71,12 +74,16 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 	}
 	order := s.Ordering()
 	limit := 2 * math.Pi * opt.UpTo
+	most := 0
+	if opt.Most > 0 {
+		most = opt.Most + RigidBodies
+	}
 	lowest := opt.Solve
 	if lowest == nil {
 		lowest = eigen.Lowest
 	}
 	res, err := lowest(ctx, s.K, s.M, order, eigen.Options{
-		Limit: limit * limit, Modes: RigidBodies + 2, Static: !opt.Bare, Threads: opt.Threads,
+		Limit: limit * limit, Modes: RigidBodies + 2, Most: most, Static: !opt.Bare, Threads: opt.Threads,
 		Progress: func(f float64) { progress("modes", f) },
 	})
 	if err != nil {

@@ -19,8 +19,8 @@ const (
 // Lowest finds the lowest eigenpairs of K·φ = λ·M·φ that the options ask for. order is the elimination order for
 // K-σM, on the union of the two patterns.
 //
-// The error is a *IndefiniteError, *SingularError or *RigidError when the pencil is not what the package doc asks for,
-// and the cause of ctx when that is done first. A search that did not converge or whose count disagrees is not an error:
+// The error is a *IndefiniteError, *SingularError or *RigidError when the pencil is not what the package doc asks for, a
+// *TooManyError before a search that would be larger than allowed, and the cause of ctx when that is done first. A search that did not converge or whose count disagrees is not an error:
 // see Status.
 func Lowest(ctx context.Context, k, m *sparse.Symmetric, order sparse.Ordering, opt Options) (*Result, error) {
 	return lowest(ctx, k, m, order, opt, (*pencil).count)
@@ -130,6 +130,9 @@ func (s *solver) solve(order sparse.Ordering) error {
 		}
 		if sure {
 			s.below = count
+		}
+		if sure && opt.Most > 0 && count > opt.Most {
+			return &TooManyError{Counted: count, Most: opt.Most}
 		}
 		s.progress(0.2)
 	}

@@ -12,6 +12,9 @@ type Options struct {
 	Limit float64
 	// Modes asks for this many of the lowest λ. With both Limit and Modes set, both are met.
 	Modes int
+	// Most, when positive, refuses to search when more eigenvalues than this are counted below Limit: time and memory
+	// grow with their number.
+	Most int
 	// Shift is σ < 0; 0 lets Lowest choose, from Limit or from the matrices and what the first steps show. Errors of λ
 	// are relative to λ-σ, so a shift far below the wanted values costs digits as well as steps.
 	Shift float64
@@ -84,6 +87,15 @@ type Stats struct {
 	// Seconds of wall time: for factorisations at shifts, for solves with them, for making vectors orthogonal
 	// (multiplications by M included), for Ritz pairs, for counts by inertia, and in all.
 	FactorSeconds, SolveSeconds, OrthogonalSeconds, RitzSeconds, CountSeconds, TotalSeconds float64
+}
+
+// TooManyError says that more eigenvalues were counted below Limit than are to be searched for.
+type TooManyError struct {
+	Counted, Most int
+}
+
+func (e *TooManyError) Error() string {
+	return fmt.Sprintf("eigen: %d eigenvalues lie below the limit, at most %d are searched for", e.Counted, e.Most)
 }
 
 // IndefiniteError says that a matrix is not positive semi-definite.

@@ -56,6 +56,20 @@ func TestIndefiniteStiffnessIsRefused(t *testing.T) {
 	}
 }
 
+// The free chain of n equal masses has n/3 eigenvalues below 1, since they are 4 sin²(πk/2n): with at most as many allowed
+// the search is made, with one less it is refused.
+func TestTooManyAreRefused(t *testing.T) {
+	k, _ := trial.Chain(300)
+	m := trial.Identity(300)
+	var many *eigen.TooManyError
+	if err := refuse(k, m, eigen.Options{Limit: 0.999, Most: 100}); err != nil {
+		t.Errorf("as many as allowed: %v", err)
+	}
+	if err := refuse(k, m, eigen.Options{Limit: 0.999, Most: 99}); !errors.As(err, &many) || many.Counted != 100 || many.Most != 99 {
+		t.Errorf("got %v, want 100 refused", err)
+	}
+}
+
 func TestUnheldUnknownIsNamed(t *testing.T) {
 	k, m := trial.Diagonal([]float64{1, 2, 0, 3}), trial.Diagonal([]float64{1, 1, 0, 1})
 	var singular *eigen.SingularError
