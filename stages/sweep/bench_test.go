@@ -46,11 +46,11 @@ func demo(b *testing.B) (*mesh.Mesh, *airframe.Properties) {
 	return m, p
 }
 
-// BenchmarkDemo sets the response of the demo frame against its mode solve: the
-// sweep of six components at four rotors to the gyro and ten points, 100 to 500 Hz, no
-// step above 0.5 Hz, and the map over 200 rotor speeds. It prints seconds and ratios.
-func BenchmarkDemo(b *testing.B) {
-	m, p := demo(b)
+// demoModes assembles the demo frame and solves its modes: the mode solve that
+// the times of the response are set against. It is what the stage solve does between
+// reading the mesh and writing the modes, but for the survey and the energies of parts.
+func demoModes(b *testing.B, m *mesh.Mesh, p *airframe.Properties) *modal.Basis {
+	b.Helper()
 	problem, err := assembly.FromAirframe(m, p, builtin)
 	if err != nil {
 		b.Fatal(err)
@@ -67,65 +67,102 @@ func BenchmarkDemo(b *testing.B) {
 		places = append(places, modal.Place{Name: r.Name, Kind: "rotor", Body: body[r.Body], Point: r.Hub})
 	}
 	places = append(places, modal.Place{Name: p.Gyro.Body, Kind: "gyro", Body: body[p.Gyro.Body], Point: p.Gyro.At})
-	const threads = 2
-	ctx := context.Background()
+	system, err := assembly.Assemble(context.Background(), &problem.Problem, threads)
+	if err != nil {
+		b.Fatal(err)
+	}
+	st, err := modal.Build(context.Background(), system, places, modal.Options{UpTo: 750, Threads: threads})
+	if err != nil {
+		b.Fatal(err)
+	}
+	st.Basis.Dampen(problem.Loss, problem.Laws, p.Floor)
+	return st.Basis
+}
+
+const threads = 2
+
+// demoSweep is the response of the demo frame as far as the rotors at one speed go.
+type demoSweep struct {
+	set   settings
+	fleet *fleet
+	sys   *forced.System
+	rest  *forced.Rest
+	r     *kinds.Response
+}
+
+// newDemo reads the arguments; it does no work of the sweep.
+func newDemo(b *testing.B, basis *modal.Basis, p *airframe.Properties) *demoSweep {
+	b.Helper()
+	set, err := read(call(b, &kinds.Modes{Basis: basis, Survey: &modal.Survey{}}, p, nil).Arguments)
+	if err != nil {
+		b.Fatal(err)
+	}
+	set.mapSpeeds = 200
+	fleet, err := newFleet(basis, p, nil, set)
+	if err != nil {
+		b.Fatal(err)
+	}
+	return &demoSweep{set: set, fleet: fleet}
+}
+
+// sweep answers six components at four rotors at the gyro and ten more points.
+func (d *demoSweep) sweep(b *testing.B, basis *modal.Basis) {
+	b.Helper()
+	ctx, set := context.Background(), d.set
+	var err error
+	if d.sys, err = forced.New(basis, d.fleet.options(set, true)); err != nil {
+		b.Fatal(err)
+	}
+	list, err := probes(basis, d.sys, given{}, set)
+	if err != nil {
+		b.Fatal(err)
+	}
+	list = list[:min(11, len(list))]
+	if d.rest, err = d.sys.Rest(ctx, forced.Grid(set.from, set.to, set.step, d.sys.Resonances(threads)), rows(list), threads); err != nil {
+		b.Fatal(err)
+	}
+	tr, err := d.rest.Transfer(d.sys.Momenta())
+	if err != nil {
+		b.Fatal(err)
+	}
+	d.r = &kinds.Response{From: set.from, To: set.to, Frequency: d.rest.Frequency, Density: tr.Broadband(set.source).Density}
+	if err := points(ctx, d.r, list, d.fleet, d.sys, d.rest, set, threads); err != nil {
+		b.Fatal(err)
+	}
+}
+
+// overSpeed makes the map over 200 rotor speeds.
+func (d *demoSweep) overSpeed(b *testing.B) {
+	b.Helper()
+	for k := range d.set.mapSpeeds {
+		d.r.MapSpeeds = append(d.r.MapSpeeds, d.fleet.highest()*float64(k+1)/float64(d.set.mapSpeeds))
+	}
+	if err := d.fleet.speedMap(context.Background(), d.r, d.sys, d.rest, d.set, threads); err != nil {
+		b.Fatal(err)
+	}
+}
+
+// BenchmarkDemo sets the response of the demo frame against its mode solve: the
+// sweep of six components at four rotors to the gyro and ten points, 100 to 500 Hz, no
+// step above 0.5 Hz, and the map over 200 rotor speeds. It prints seconds and ratios.
+func BenchmarkDemo(b *testing.B) {
+	m, p := demo(b)
 	var modes, sweep, over time.Duration
-	var frequencies, vectors int
+	var d *demoSweep
 	for b.Loop() {
 		began := time.Now()
-		lap := func(d *time.Duration) {
-			*d += time.Since(began)
+		lap := func(to *time.Duration) {
+			*to += time.Since(began)
 			began = time.Now()
 		}
-		system, err := assembly.Assemble(ctx, &problem.Problem, threads)
-		if err != nil {
-			b.Fatal(err)
-		}
-		st, err := modal.Build(ctx, system, places, modal.Options{UpTo: 750, Threads: threads})
-		if err != nil {
-			b.Fatal(err)
-		}
+		basis := demoModes(b, m, p)
 		lap(&modes)
-		st.Basis.Dampen(problem.Loss, problem.Laws, p.Floor)
-		set, err := read(call(b, &kinds.Modes{Basis: st.Basis, Survey: &modal.Survey{}}, p, nil).Arguments)
-		if err != nil {
-			b.Fatal(err)
-		}
-		set.mapSpeeds = 200
-		fleet, err := newFleet(st.Basis, p, nil, set)
-		if err != nil {
-			b.Fatal(err)
-		}
+		d = newDemo(b, basis, p)
 		began = time.Now()
-		sys, err := forced.New(st.Basis, fleet.options(set, true))
-		if err != nil {
-			b.Fatal(err)
-		}
-		rest, err := sys.Rest(ctx, forced.Grid(set.from, set.to, set.step, sys.Resonances()), threads)
-		if err != nil {
-			b.Fatal(err)
-		}
-		tr, err := rest.Transfer(sys.Momenta())
-		if err != nil {
-			b.Fatal(err)
-		}
-		r := &kinds.Response{From: set.from, To: set.to, Frequency: rest.Frequency, Density: tr.Broadband(set.source).Density}
-		list, err := probes(st.Basis, sys, given{}, set)
-		if err != nil {
-			b.Fatal(err)
-		}
-		if err := points(ctx, r, list[:min(11, len(list))], fleet, sys, set, threads); err != nil {
-			b.Fatal(err)
-		}
+		d.sweep(b, basis)
 		lap(&sweep)
-		for k := range set.mapSpeeds {
-			r.MapSpeeds = append(r.MapSpeeds, fleet.highest()*float64(k+1)/float64(set.mapSpeeds))
-		}
-		if err := fleet.speedMap(ctx, r, sys, rest, set, threads); err != nil {
-			b.Fatal(err)
-		}
+		d.overSpeed(b)
 		lap(&over)
-		frequencies, vectors = len(r.Frequency), len(sys.Vectors())
 	}
 	n := float64(b.N)
 	b.ReportMetric(modes.Seconds()/n, "modes-s")
@@ -133,6 +170,16 @@ func BenchmarkDemo(b *testing.B) {
 	b.ReportMetric(over.Seconds()/n, "map-s")
 	b.ReportMetric(sweep.Seconds()/modes.Seconds(), "sweep/modes")
 	b.ReportMetric(over.Seconds()/modes.Seconds(), "map/modes")
-	b.ReportMetric(float64(frequencies), "frequencies")
-	b.ReportMetric(float64(vectors), "vectors")
+	b.ReportMetric(float64(len(d.r.Frequency)), "frequencies")
+	b.ReportMetric(float64(len(d.sys.Vectors())), "vectors")
+}
+
+// BenchmarkSweep times the sweep of BenchmarkDemo alone, over modes solved once.
+func BenchmarkSweep(b *testing.B) {
+	m, p := demo(b)
+	basis := demoModes(b, m, p)
+	d := newDemo(b, basis, p)
+	for b.Loop() {
+		d.sweep(b, basis)
+	}
 }

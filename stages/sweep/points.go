@@ -127,20 +127,27 @@ func nearest(m *mesh.Mesh, x pointAt) (node int, part string, err error) {
 	return node, part, nil
 }
 
+// rows are those of all points, one after another: displacement, then rotation.
+func rows(list []probe) [][]float64 {
+	var out [][]float64
+	for _, p := range list {
+		out = append(append(out, p.move...), p.turn...)
+	}
+	return out
+}
+
 // points fills in the motion of the named points: their spectra under the
-// broadband source, and their amplitudes at the lines of the rotors.
-func points(ctx context.Context, r *kinds.Response, list []probe, f *fleet, sys *forced.System, set settings, threads int) error {
-	var rows [][]float64
+// broadband source, and their amplitudes at the lines of the rotors. rest holds their rows.
+func points(ctx context.Context, r *kinds.Response, list []probe, f *fleet, sys *forced.System, rest *forced.Rest, set settings, threads int) error {
+	density := make([][]float64, 0, 3*len(list))
 	for _, p := range list {
 		r.Points = append(r.Points, p.point)
-		rows = append(append(rows, p.move...), p.turn...)
+		for range len(p.move) + len(p.turn) {
+			density = append(density, make([]float64, len(r.Frequency)))
+		}
 	}
-	density := make([][]float64, len(rows))
-	for i := range density {
-		density[i] = make([]float64, len(r.Frequency))
-	}
-	err := sys.Probe(ctx, r.Frequency, rows, threads, func(k int, motion [][]complex128) {
-		for i := range rows {
+	err := rest.Probe(ctx, sys.Momenta(), threads, func(k int, motion [][]complex128) {
+		for i := range density {
 			density[i][k] = set.source.Density(r.Frequency[k], sys.Inputs(), motion[i])
 		}
 	})

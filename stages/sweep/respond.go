@@ -41,8 +41,8 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 		return nil, err
 	}
 	report.Progress("sweep", 0)
-	grid := forced.Grid(set.from, set.to, set.step, sys.Resonances())
-	rest, err := sys.Rest(ctx, grid, threads)
+	grid := forced.Grid(set.from, set.to, set.step, sys.Resonances(threads))
+	rest, err := sys.Rest(ctx, grid, rows(named), threads)
 	if err != nil {
 		return nil, err
 	}
@@ -119,7 +119,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	if err := motions(ctx, r, basis, fleet, sys, set, threads); err != nil {
 		return nil, err
 	}
-	if err := points(ctx, r, named, fleet, sys, set, threads); err != nil {
+	if err := points(ctx, r, named, fleet, sys, rest, set, threads); err != nil {
 		return nil, err
 	}
 	if err := all.check(ctx, r, sys, set, threads, report); err != nil {
@@ -154,7 +154,7 @@ func uncorrected(ctx context.Context, basis *modal.Basis, fleet *fleet, residual
 	if err != nil {
 		return nil, err
 	}
-	rest, err := sys.Rest(ctx, grid, threads)
+	rest, err := sys.Rest(ctx, grid, nil, threads)
 	if err != nil {
 		return nil, err
 	}

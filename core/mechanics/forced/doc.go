@@ -31,10 +31,14 @@
 //
 // # Method
 //
-// Without C and laws the matrix is a constant one shifted by ω². It is brought to upper
-// Hessenberg form once, by unitary reflections, after which each frequency
+// Many frequencies are answered by the frame at rest in its own complex vectors, which are found once (spectral): rows
+// and loads then meet in one product of real matrices per frequency. Stiffness with a law stretches in few ways, spinning rotors
+// couple few motions; both come in by Woodbury's identity, so that no matrix of the size of the basis is
+// factorised at a frequency. A frame condensed at rest (Rest) answers at any rotor speed.
+//
+// A single frequency is answered without the vectors. Without dampers and laws the matrix is a constant one shifted by ω². It is
+// brought to upper Hessenberg form once, by unitary reflections, after which each frequency
 // costs O(n²) (A. J. Laub, Efficient multivariable frequency response
-// computations, IEEE Trans. Automatic Control 26, 1981). With C or laws each frequency
-// is a full factorisation with partial pivoting. Spinning rotors couple few motions, and come in by Woodbury's
-// identity; a frame condensed at rest (Rest) answers at any rotor speed.
+// computations, IEEE Trans. Automatic Control 26, 1981). Else, and where the vectors are not good
+// enough, each frequency is a full factorisation with partial pivoting.
 package forced

@@ -269,7 +269,7 @@ func TestLowFrequencyIsRigid(t *testing.T) {
 
 func TestThreadsChangeNothing(t *testing.T) {
 	s := build(t, frame(30, 10, 1), Options{})
-	grid := Grid(60, 900, 5, s.Resonances())
+	grid := Grid(60, 900, 5, s.Resonances(1))
 	one, err := s.Transfer(t.Context(), grid, 1)
 	if err != nil {
 		t.Fatal(err)
@@ -300,7 +300,7 @@ func TestPeakOfOneMode(t *testing.T) {
 			{Name: "g", Kind: "gyro", Motion: [][6]float64{{0, 0, 0, 0, theta, 0}}},
 		}}
 	s := build(t, b, Options{})
-	grid := Grid(100, 400, 3, s.Resonances())
+	grid := Grid(100, 400, 3, s.Resonances(1))
 	tr, err := s.Transfer(t.Context(), grid, 2)
 	if err != nil {
 		t.Fatal(err)
@@ -341,7 +341,7 @@ func TestPeakOfOneMode(t *testing.T) {
 func TestSharesAddUp(t *testing.T) {
 	b := frame(20, 6, 4)
 	s := build(t, b, Options{})
-	grid := Grid(60, 900, 2, s.Resonances())
+	grid := Grid(60, 900, 2, s.Resonances(1))
 	tr, err := s.Transfer(t.Context(), grid, 2)
 	if err != nil {
 		t.Fatal(err)
@@ -452,7 +452,7 @@ func TestBadBasesAreRefused(t *testing.T) {
 
 func BenchmarkTransfer(b *testing.B) {
 	s := build(b, frame(60, 40, 1), Options{})
-	grid := Grid(60, 900, 1, s.Resonances())
+	grid := Grid(60, 900, 1, s.Resonances(1))
 	b.ReportMetric(float64(len(grid)), "frequencies")
 	for b.Loop() {
 		if _, err := s.Transfer(context.Background(), grid, 1); err != nil {

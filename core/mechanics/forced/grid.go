@@ -1,8 +1,11 @@
 package forced
 
 import (
+	"context"
 	"fmt"
 	"math"
+	"math/cmplx"
+	"slices"
 	"sort"
 
 	"hushframe/core/mechanics/modal"
@@ -18,8 +21,8 @@ type Resonance struct {
 // its damping and its rotors as they spin, up to a fifth above the highest elastic mode. Stiffness
 // that depends on frequency is taken near each. With a
 // Rate, or where the poles do not settle, it lists the elastic modes with their own
-// loss factors.
-func (s *System) Resonances() []Resonance {
+// loss factors. The result does not depend on threads.
+func (s *System) Resonances(threads int) []Resonance {
 	var out []Resonance
 	highest := 0.0
 	for i, eta := range s.Damping() {
@@ -40,26 +43,30 @@ func (s *System) Resonances() []Resonance {
 			at = append(at, f)
 		}
 	}
+	near := make([][]complex128, len(at))
+	err := s.each(context.Background(), len(at), threads, func() func(k int) error {
+		return func(k int) error {
+			above, below := 0.0, 1.2*highest
+			if k > 0 {
+				above = math.Sqrt(at[k-1] * at[k])
+			}
+			if k+1 < len(at) {
+				below = math.Sqrt(at[k+1] * at[k])
+			}
+			core, err := s.Frozen(at[k]).Core()
+			if err != nil {
+				return err
+			}
+			near[k], err = core.natural(s.momentum, above, below)
+			return err
+		}
+	})
+	if err != nil {
+		return out
+	}
 	var poles []Resonance
-	for k, f := range at {
-		above, below := 0.0, 1.2*highest
-		if k > 0 {
-			above = math.Sqrt(at[k-1] * f)
-		}
-		if k+1 < len(at) {
-			below = math.Sqrt(at[k+1] * f)
-		}
-		core, err := s.Frozen(f).Core()
-		if err != nil {
-			return out
-		}
-		list, err := core.Poles(s.momentum, above, below)
-		if err != nil {
-			return out
-		}
-		for _, p := range list {
-			poles = append(poles, Resonance{p.Frequency, 2 * p.Damping})
-		}
+	for _, w := range slices.Concat(near...) {
+		poles = append(poles, Resonance{cmplx.Abs(w) / (2 * math.Pi), 2 * imag(w) / cmplx.Abs(w)})
 	}
 	return poles
 }

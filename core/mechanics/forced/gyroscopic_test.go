@@ -250,7 +250,7 @@ func TestPolesShareAPeak(t *testing.T) {
 		if err != nil {
 			t.Fatal(err)
 		}
-		grid := Grid(60, 900, 2, s.Resonances())
+		grid := Grid(60, 900, 2, s.Resonances(1))
 		tr, err := s.Transfer(t.Context(), grid, 2)
 		if err != nil {
 			t.Fatal(err)
@@ -314,7 +314,7 @@ func TestNoPeakIsMissed(t *testing.T) {
 		if !moved {
 			t.Fatal("spinning moves nothing, which tests nothing")
 		}
-		grid := Grid(20, 900, 5, s.Resonances())
+		grid := Grid(20, 900, 5, s.Resonances(1))
 		tr, err := s.Transfer(t.Context(), grid, 2)
 		if err != nil {
 			t.Fatal(err)
@@ -432,7 +432,7 @@ func TestEigenvalues(t *testing.T) {
 func BenchmarkTransferSpinning(b *testing.B) {
 	base := frame(60, 40, 1)
 	s := build(b, base, Options{Gyroscopic: spinners(base, 0.4, -0.4)})
-	grid := Grid(60, 600, 1, s.Resonances())
+	grid := Grid(60, 600, 1, s.Resonances(1))
 	b.ReportMetric(float64(len(grid)), "frequencies")
 	for b.Loop() {
 		if _, err := s.Transfer(b.Context(), grid, 1); err != nil {

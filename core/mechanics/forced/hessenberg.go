@@ -202,15 +202,65 @@ func factorSolve(a []complex128, n int, sides ...[]complex128) bool {
 	return true
 }
 
+// eliminate overwrites the columns from n on of an n×width matrix, row-major, with the solutions of the
+// equations that its first n columns are the matrix of, by elimination with partial pivoting. It is
+// for few unknowns and many sides.
+func eliminate(a []complex128, n, width int) bool {
+	for k := range n {
+		p := k
+		for i := k + 1; i < n; i++ {
+			if size(a[i*width+k]) > size(a[p*width+k]) {
+				p = i
+			}
+		}
+		row := a[k*width : (k+1)*width]
+		if p != k {
+			other := a[p*width : (p+1)*width]
+			for j := k; j < width; j++ {
+				row[j], other[j] = other[j], row[j]
+			}
+		}
+		if row[k] == 0 {
+			return false
+		}
+		inverse := 1 / row[k]
+		for j := k + 1; j < width; j++ {
+			row[j] *= inverse
+		}
+		for i := k + 1; i < n; i++ {
+			below := a[i*width : (i+1)*width]
+			if f := below[k]; f != 0 {
+				takeAway(below[k+1:], f, row[k+1:])
+			}
+		}
+	}
+	for k := n - 1; k > 0; k-- {
+		row := a[k*width+n : (k+1)*width]
+		for i := range k {
+			takeAway(a[i*width+n:(i+1)*width], a[i*width+k], row)
+		}
+	}
+	return true
+}
+
+// takeAway subtracts f times the first numbers of from.
+func takeAway(x []complex128, f complex128, from []complex128) {
+	from = from[:len(x)]
+	for j, y := range from {
+		x[j] -= f * y
+	}
+}
+
 func backward(upper []complex128, n int, sides [][]complex128) {
-	for _, x := range sides {
-		for i := n - 1; i >= 0; i-- {
-			row := upper[i*n : i*n+n]
+	for i := n - 1; i >= 0; i-- {
+		row := upper[i*n : i*n+n]
+		inverse := 1 / row[i]
+		for _, x := range sides {
 			sum := x[i]
 			for j := i + 1; j < n; j++ {
 				sum -= row[j] * x[j]
 			}
-			x[i] = sum / row[i]
+			x[i] = sum * inverse
 		}
 	}
 }

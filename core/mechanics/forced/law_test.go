@@ -30,7 +30,7 @@ func TestLawsHoldAtEachFrequency(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	rest, err := s.Spun([]float64{0, 0}).Rest(t.Context(), frequency, 2)
+	rest, err := s.Spun([]float64{0, 0}).Rest(t.Context(), frequency, nil, 2)
 	if err != nil {
 		t.Fatal(err)
 	}
@@ -114,7 +114,7 @@ func TestResonanceOfAMountThatStiffens(t *testing.T) {
 	for range 100 {
 		f = 100 * math.Sqrt(1+3*math.Log(f/10)/math.Log(100))
 	}
-	grid := Grid(20, 900, 5, s.Resonances())
+	grid := Grid(20, 900, 5, s.Resonances(1))
 	tr, err := s.Transfer(t.Context(), grid, 1)
 	if err != nil {
 		t.Fatal(err)

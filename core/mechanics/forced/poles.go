@@ -183,6 +183,16 @@ func inner(x, y []float64) float64 {
 // q′); hysteretic damping stands for positive frequencies only, and so only
 // their half of the eigenvalues counts. It fails when the iteration does not settle.
 func (c *Core) Poles(momenta []float64, above, below float64) ([]Pole, error) {
+	omega, err := c.natural(momenta, above, below)
+	if err != nil {
+		return nil, err
+	}
+	spin := c.spin(momenta)
+	return c.motions(omega, func(complex128) []float64 { return spin }), nil
+}
+
+// natural gives the values of ω of Poles, without their shapes.
+func (c *Core) natural(momenta []float64, above, below float64) ([]complex128, error) {
 	m := len(c.square)
 	at := make([]int, m) // place of √Λ q in the state, -1 for rigid vectors
 	states := 0
@@ -218,12 +228,11 @@ func (c *Core) Poles(momenta []float64, above, below float64) ([]Pole, error) {
 	for _, z := range values {
 		omega = append(omega, z/1i)
 	}
-	return c.motions(omega, above, below, func(complex128) []float64 { return spin }), nil
+	return inRange(omega, above, below), nil
 }
 
-// motions makes poles of the values of ω that are in range and undercritically
-// damped; spin gives the coefficient of velocity at each.
-func (c *Core) motions(omega []complex128, above, below float64, spin func(complex128) []float64) []Pole {
+// inRange gives the values of ω that are in range and undercritically damped, ascending.
+func inRange(omega []complex128, above, below float64) []complex128 {
 	var kept []complex128
 	for _, w := range omega {
 		if f := cmplx.Abs(w) / (2 * math.Pi); real(w) > math.Abs(imag(w)) && f > above && f <= below {
@@ -231,6 +240,11 @@ func (c *Core) motions(omega []complex128, above, below float64, spin func(compl
 		}
 	}
 	sort.Slice(kept, func(i, j int) bool { return cmplx.Abs(kept[i]) < cmplx.Abs(kept[j]) })
+	return kept
+}
+
+// motions makes poles of values of ω in ascending order; spin gives the coefficient of velocity at each.
+func (c *Core) motions(kept []complex128, spin func(complex128) []float64) []Pole {
 	var out []Pole
 	var shapes [][]complex128 // of the values equal to the present one
 	for k, w := range kept {
@@ -356,7 +370,7 @@ func (c *Core) Synchronous(ratio []float64, above, below float64) ([]Pole, error
 	for k, z := range values {
 		omega[k] = cmplx.Sqrt(z) // real part not negative
 	}
-	return c.motions(omega, above, below, func(w complex128) []float64 {
+	return c.motions(inRange(omega, above, below), func(w complex128) []float64 {
 		momenta := make([]float64, len(ratio))
 		for r, x := range ratio {
 			momenta[r] = x * real(w)

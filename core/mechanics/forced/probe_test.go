@@ -20,8 +20,8 @@ func TestProbeReadsWhatTransferGives(t *testing.T) {
 			b = lawful()
 		}
 		s := build(t, b, opt)
-		if (s.own() == nil) != (opt.Rate != nil) {
-			t.Errorf("%s: the spectral form is there: %t", name, s.own() != nil)
+		if (s.own(1) == nil) != (opt.Rate != nil) {
+			t.Errorf("%s: the spectral form is there: %t", name, s.own(1) != nil)
 		}
 		want, err := s.Transfer(t.Context(), frequency, 1)
 		if err != nil {
@@ -81,7 +81,7 @@ func TestRestAnswersAtAnySpeed(t *testing.T) {
 	frequency := []float64{0.5, 60, 111, 230, 420}
 	for name, opt := range map[string]Options{"fast": {Gyroscopic: spinners(b, 0, 0)}, "with dampers": {Gyroscopic: spinners(b, 0, 0), Rate: make([]float64, len(b.Frequency)*len(b.Frequency))}} {
 		s := build(t, b, opt)
-		rest, err := s.Rest(t.Context(), frequency, 2)
+		rest, err := s.Rest(t.Context(), frequency, nil, 2)
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -102,6 +102,51 @@ func TestRestAnswersAtAnySpeed(t *testing.T) {
 						}
 					}
 				}
+			}
+		}
+	}
+}
+
+// One Rest answers rows at any speed as Probe of the spinning frame does, by the spectral form, by the
+// Hessenberg form where there is none, and with the whole matrix where there are dampers. Equal rows share an answer.
+func TestRestProbesAtAnySpeed(t *testing.T) {
+	b := frame(20, 5, 21)
+	n := len(b.Frequency)
+	frequency := []float64{0.5, 60, 111, 230, 420}
+	for name, opt := range map[string]Options{"spectral": {}, "laws": {}, "hessenberg": {}, "dampers": {Rate: make([]float64, n*n)}} {
+		b := b
+		if name == "laws" {
+			b = lawful()
+		}
+		opt.Gyroscopic = spinners(b, 0, 0)
+		s := build(t, b, opt)
+		if name == "hessenberg" {
+			s.own = func(int) *spectral { return nil }
+		}
+		rotor, gyro := &b.Sites[0], &b.Sites[len(b.Sites)-1]
+		rows := [][]float64{s.SiteRow(rotor, 2), s.SiteRow(gyro, 0), s.SiteRow(gyro, 4), s.SiteRow(rotor, 2)}
+		rest, err := s.Rest(t.Context(), frequency, rows, 2)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, momenta := range [][]float64{{0.4, -0.3}, {0, 0}} {
+			spun := s.Spun(momenta)
+			err := rest.Probe(t.Context(), momenta, 2, func(k int, motion [][]complex128) {
+				for j := range s.Inputs() {
+					q, err := spun.Drive(frequency[k], j)
+					if err != nil {
+						t.Error(err)
+						return
+					}
+					for i, row := range rows {
+						if want := along(row, q); !within(motion[i][j], want, 1e-8) {
+							t.Errorf("%s, momenta %v: row %d, input %d, %g Hz: %v, want %v", name, momenta, i, j, frequency[k], motion[i][j], want)
+						}
+					}
+				}
+			})
+			if err != nil {
+				t.Fatal(err)
 			}
 		}
 	}
@@ -195,7 +240,7 @@ func TestStaticAnswer(t *testing.T) {
 func TestSpectralForm(t *testing.T) {
 	b := frame(20, 5, 21)
 	s := build(t, b, Options{})
-	own := s.own()
+	own := s.own(1)
 	if own == nil {
 		t.Fatal("no spectral form")
 	}
@@ -229,10 +274,10 @@ func TestSpectralForm(t *testing.T) {
 	}
 	twin.Groups = append(twin.Groups, modal.LossGroup{Name: "all", Kind: "part", LossFactor: 0.01, Stiffness: k})
 	s = build(t, twin, Options{})
-	if s.own() != nil {
+	if s.own(1) != nil {
 		t.Error("twins were told apart")
 	}
-	rest, err := s.Rest(t.Context(), []float64{90, 200}, 1)
+	rest, err := s.Rest(t.Context(), []float64{90, 200}, nil, 1)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -11,7 +11,7 @@ import (
 func TestCorrelatedRotors(t *testing.T) {
 	b := frame(12, 2, 6)
 	s := build(t, b, Options{Gyroscopic: spinners(b, 0.2, -0.3)})
-	grid := Grid(60, 900, 2, s.Resonances())
+	grid := Grid(60, 900, 2, s.Resonances(1))
 	tr, err := s.Transfer(t.Context(), grid, 2)
 	if err != nil {
 		t.Fatal(err)

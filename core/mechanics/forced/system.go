@@ -40,10 +40,10 @@ type System struct {
 	laws    []law     // groups whose stiffness depends on frequency
 	rate    []float64 // C without gyroscopic couplings, n×n, or nil
 	inputs  []Input
-	load    [][]float64      // load[input][v]: modal force of a unit of the input
-	gyro    [3][]float64     // gyro[axis][v]: rotation of the gyro in vector v, rad
-	reduced *hessenberg      // when rate is nil and there are no laws
-	own     func() *spectral // of the matrix without laws, nil when there are dampers
+	load    [][]float64                 // load[input][v]: modal force of a unit of the input
+	gyro    [3][]float64                // gyro[axis][v]: rotation of the gyro in vector v, rad
+	reduced func() *hessenberg          // nil when there are dampers or laws
+	own     func(threads int) *spectral // of the matrix without laws, nil when there are dampers
 	// Gyroscopic couplings: rows 2r and 2r+1 of tilt are those of rotor r.
 	tilt     [][]float64
 	momentum []float64
@@ -172,22 +172,29 @@ func (s *System) Inputs() []Input { return s.inputs }
 // are in this order.
 func (s *System) Vectors() []int { return s.vectors }
 
-// prepare brings the matrix to its form for many frequencies, where it is constant but for ω².
+// prepare says how the matrix is brought to its forms for many frequencies, once and when first asked for.
 func (s *System) prepare() {
-	s.own = sync.OnceValue(func() *spectral {
-		for i := range s.laws {
-			if len(s.laws[i].factors) == 0 {
-				return nil
+	var once sync.Once
+	var own *spectral
+	s.own = func(threads int) *spectral {
+		once.Do(func() {
+			for i := range s.laws {
+				if len(s.laws[i].factors) == 0 {
+					return
+				}
 			}
-		}
-		if s.rate != nil {
+			if s.rate == nil {
+				own = s.spectral(threads)
+			}
+		})
+		return own
+	}
+	s.reduced = sync.OnceValue(func() *hessenberg {
+		if s.rate != nil || len(s.laws) > 0 {
 			return nil
 		}
-		return s.spectral()
+		return reduce(s.still(0, make([]complex128, len(s.loss))), len(s.vectors))
 	})
-	if s.rate == nil && len(s.laws) == 0 {
-		s.reduced = reduce(s.still(0, make([]complex128, len(s.loss))), len(s.vectors))
-	}
 }
 
 // matrix builds the dynamic stiffness at ω, row-major.

@@ -5,6 +5,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 )
 
 // Transfer holds the gyro rate per unit of each input.
@@ -86,21 +87,22 @@ func (s *System) Solve(frequency float64, force []complex128) ([]complex128, err
 // spin. It gives up when there is no such form, or when the frame at rest has
 // no bounded response.
 func (s *System) fast(omega float64, force []complex128) ([]complex128, bool) {
-	if s.reduced == nil {
+	reduced := s.reduced()
+	if reduced == nil {
 		return nil, false
 	}
 	n := len(s.vectors)
-	sides := [][]complex128{s.reduced.turn(force)}
+	sides := [][]complex128{reduced.turn(force)}
 	if s.spinning() {
 		for _, row := range s.tilt {
-			sides = append(sides, s.reduced.turn(complexRow(row)))
+			sides = append(sides, reduced.turn(complexRow(row)))
 		}
 	}
-	if !s.reduced.solve(omega*omega, make([]complex128, n*n), sides...) {
+	if !reduced.solve(omega*omega, make([]complex128, n*n), sides...) {
 		return nil, false
 	}
 	for k := range sides {
-		sides[k] = s.reduced.turnBack(sides[k])
+		sides[k] = reduced.turnBack(sides[k])
 	}
 	q := sides[0]
 	if m := len(sides) - 1; m > 0 {
@@ -153,21 +155,22 @@ func (s *System) Drive(frequency float64, input int) ([]complex128, error) {
 // its own scratch space. It solves with the transposed matrix for the three
 // outputs rather than for every input.
 type driver struct {
-	s      *System
-	work   []complex128
-	load   [][]complex128 // loads, then tilts, in the coordinates of the solve
-	output [][]complex128 // gyro rotation about three axes, then tilts, in the same
-	side   [][]complex128
-	rates  [3][]complex128
-	p      []complex128 // tilts under unit moments about the tilt axes
-	part   []complex128
+	s       *System
+	reduced *hessenberg
+	work    []complex128
+	load    [][]complex128 // loads, then tilts, in the coordinates of the solve
+	output  [][]complex128 // gyro rotation about three axes, then tilts, then other rows, in the same
+	side    [][]complex128
+	rates   [3][]complex128
+	p       []complex128 // tilts under unit moments about the tilt axes
+	part    []complex128
 }
 
 // driver makes one; spins tells that it will meet rotors that spin although
-// those of s may be at rest.
-func (s *System) driver(spins bool) *driver {
+// those of s may be at rest. Further rows are answered by rest alone.
+func (s *System) driver(spins bool, rows ...[]float64) *driver {
 	n := len(s.vectors)
-	d := &driver{s: s, work: make([]complex128, n*n)}
+	d := &driver{s: s, reduced: s.reduced(), work: make([]complex128, n*n)}
 	outputs, loads := s.gyro[:], s.load
 	if s.rate == nil && (spins || s.spinning()) {
 		outputs = append(append([][]float64{}, outputs...), s.tilt...)
@@ -175,19 +178,19 @@ func (s *System) driver(spins bool) *driver {
 		d.p = make([]complex128, len(s.tilt)*len(s.tilt))
 		d.part = make([]complex128, len(s.tilt))
 	}
-	for _, row := range outputs {
+	for _, row := range slices.Concat(outputs, rows) {
 		x := complexRow(row)
-		if s.reduced != nil {
-			x = s.reduced.turn(x)
+		if d.reduced != nil {
+			x = d.reduced.turn(x)
 		}
 		d.output = append(d.output, x)
 		d.side = append(d.side, make([]complex128, n))
 	}
 	for _, row := range loads {
 		x := complexRow(row)
-		if s.reduced != nil {
+		if d.reduced != nil {
 			// bᵀ Q = (Qᴴ b̄)ᴴ with b real: the conjugate of Qᴴ b.
-			x = s.reduced.turn(x)
+			x = d.reduced.turn(x)
 			for v := range x {
 				x[v] = cmplx.Conj(x[v])
 			}
@@ -225,10 +228,10 @@ func (d *driver) rest(omega float64) bool {
 		copy(d.side[k], d.output[k])
 	}
 	// The matrix at rest is symmetric and so its own transpose.
-	if d.s.reduced == nil {
+	if d.reduced == nil {
 		return factorSolve(d.s.still(omega, d.work), len(d.s.vectors), d.side...)
 	}
-	return d.s.reduced.solve(omega*omega, d.work, d.side...)
+	return d.reduced.solve(omega*omega, d.work, d.side...)
 }
 
 // combine fills d.rates from the solutions, with the gyroscopic couplings.
@@ -267,30 +270,46 @@ func (d *driver) combine(omega float64) bool {
 
 // direct fills d.rates by a full factorisation.
 func (d *driver) direct(frequency float64) error {
-	n := len(d.s.vectors)
-	omega := angular(frequency)
-	a := d.s.matrix(omega)
-	for i := range n {
-		for j := range n {
-			d.work[j*n+i] = a[i*n+j]
-		}
+	motion, err := d.s.full(frequency, d.s.gyro[:])
+	if err != nil {
+		return err
 	}
-	var sides [3][]complex128
-	for axis := range sides {
-		sides[axis] = complexRow(d.s.gyro[axis])
-	}
-	if !factorSolve(d.work, n, sides[:]...) {
-		return &Unbounded{frequency}
-	}
-	for axis, x := range sides {
-		for j, row := range d.s.load {
-			d.rates[axis][j] = complex(0, omega) * along(row, x)
-		}
-		if !finite(d.rates[axis]) {
-			return &Unbounded{frequency}
+	for axis, x := range motion {
+		for j, h := range x {
+			d.rates[axis][j] = complex(0, angular(frequency)) * h
 		}
 	}
 	return nil
+}
+
+// full gives the motion along some rows under a unit of each input by a full factorisation of the
+// transposed matrix.
+func (s *System) full(frequency float64, rows [][]float64) (motion [][]complex128, err error) {
+	n := len(s.vectors)
+	a := s.matrix(angular(frequency))
+	for i := range n {
+		for j := range i {
+			a[i*n+j], a[j*n+i] = a[j*n+i], a[i*n+j]
+		}
+	}
+	var sides [][]complex128
+	for _, row := range rows {
+		sides = append(sides, complexRow(row))
+	}
+	if !factorSolve(a, n, sides...) {
+		return nil, &Unbounded{frequency}
+	}
+	for _, x := range sides {
+		y := make([]complex128, len(s.load))
+		for j, row := range s.load {
+			y[j] = along(row, x)
+		}
+		if !finite(y) {
+			return nil, &Unbounded{frequency}
+		}
+		motion = append(motion, y)
+	}
+	return motion, nil
 }
 
 func product(x, y []complex128) complex128 {

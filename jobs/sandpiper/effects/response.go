@@ -62,7 +62,7 @@ func (m *model) respond(ctx context.Context, how way) (response, error) {
 	if err != nil {
 		return out, err
 	}
-	tr, err := sys.Transfer(ctx, forced.Grid(from, to, step, sys.Resonances()), 2)
+	tr, err := sys.Transfer(ctx, forced.Grid(from, to, step, sys.Resonances(2)), 2)
 	if err != nil {
 		return out, err
 	}
