@@ -12,6 +12,11 @@ stage "transfer" "arm" {
   columns = { time = "time_us", force = "hammer_N", z = "tip_accel_z_g" }
 }
 
+stage "report" "page" {
+  include = [stage.arm.transfer]
+  to      = "report/bench.html"
+}
+
 requirement "blows-enough" {
   figure   = stage.arm.figures.averages
   at_least = 5

@@ -1,6 +1,8 @@
 package kinds
 
 import (
+	"math"
+
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/pipeline/artifact"
 )
@@ -143,4 +145,36 @@ func getMotion(a *artifact.Artifact, r *Response) error {
 			getVec(t, "displacement", i), getVec(t, "acceleration", i)})
 	}
 	return nil
+}
+
+// Shaken sums the spectra of a named point over x, y and z: root mean square of displacement (m) and acceleration (m/s²), and the
+// frequency at which the component with most acceleration is loudest (Hz).
+func (r *Response) Shaken(point string) (move, shake, at float64) {
+	most := 0.0
+	for _, x := range r.PointSpectra {
+		switch {
+		case x.Point != point:
+		case x.Quantity == Displacement:
+			move = math.Hypot(move, x.RMS)
+		case x.Quantity == Acceleration:
+			shake = math.Hypot(shake, x.RMS)
+			if x.RMS > most {
+				most, at = x.RMS, x.Loudest
+			}
+		}
+	}
+	return move, shake, at
+}
+
+// ShakenByLine gives the root sum of squares over x, y and z of the peak amplitudes that the lines of a source make at a named point:
+// displacement (m) and acceleration (m/s²), 0 where there are none.
+func (r *Response) ShakenByLine(point, source string) (move, shake float64) {
+	for _, x := range r.PointLines {
+		if x.Point == point && x.Source == source {
+			for c := range 3 {
+				move, shake = math.Hypot(move, x.Displacement[c]), math.Hypot(shake, x.Acceleration[c])
+			}
+		}
+	}
+	return move, shake
 }

@@ -26,6 +26,7 @@ type content struct {
 	verified   *kinds.Verification
 	identified *kinds.Identified
 	difference *kinds.Difference
+	transfer   *kinds.Transfer
 	run        *account.Account
 	sources    []kinds.DocumentSource
 
@@ -87,6 +88,8 @@ func (c *content) add(in stage.Input) error {
 		err = once(in, &c.identified, a, kinds.DecodeIdentified)
 	case "difference":
 		err = once(in, &c.difference, a, kinds.DecodeDifference)
+	case "transfer":
+		err = once(in, &c.transfer, a, kinds.DecodeTransfer)
 	case account.KindName:
 		c.run = account.Decode(a)
 	default:

@@ -81,6 +81,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 		add(comparisonSection(c.comparison))
 	}
 	add(identifiedSection(c))
+	add(transferSection(c))
 	add(mapSection(c))
 	if c.spectra != nil {
 		add(recordingSection(c.spectra))

@@ -25,7 +25,7 @@ type Stage struct{}
 var _ stage.Stage = Stage{}
 
 // readable lists the kinds a report can show, besides that of the run.
-var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "identified", "filtered", "difference", "verification"}
+var readable = []string{"geometry", "properties", "mesh", "modes", "response", "spectra", "comparison", "identified", "transfer", "filtered", "difference", "verification"}
 
 // formats are those of still pictures.
 var formats = []string{printed.PNG, printed.SVG}
@@ -39,7 +39,7 @@ func (Stage) Describe() stage.Description {
 include. Each section appears when an artifact that it needs is included: the
 assembly with geometry, masses with properties, pictures of mode shapes with mesh
 and modes, the response with response, the recording over it with comparison (its
-confidence band with spectra). Requirements, settings, versions and checksums come
+confidence band with spectra), a bench recording with transfer. Requirements, settings, versions and checksums come
 from the run. Every table is written as comma-separated values into a folder beside
 the page.`,
 		Arguments: []stage.Argument{

@@ -36,6 +36,7 @@ func responseSection(c *content) *section {
 		s.table(peakTable(r))
 		s.table(levelTable(r))
 		s.table(lineTable(r))
+		s.table(pointTable(r))
 		whirlSection(s, c)
 		shapeGallery(s, c)
 		s.fold(planes(c))
@@ -112,6 +113,27 @@ func lineTable(r *kinds.Response) *table {
 	}
 	if rough {
 		t.About += fmt.Sprintf(" Lines above %.4g Hz are rough: the modes go to %.4g Hz, which carries a response to two thirds of that.", r.ModesTo/1.5, r.ModesTo)
+	}
+	return t
+}
+
+// pointTable gives how far and how hard the named points shake.
+func pointTable(r *kinds.Response) *table {
+	t := &table{Name: "named-points", Title: fmt.Sprintf("Named points from %.4g to %.4g Hz", r.From, r.To),
+		About: "Root sum of squares over x, y and z. Root mean square under the assumed source, and the frequency at which the acceleration is greatest; the last columns are the peak amplitude that the unbalance of all rotors makes at hover.",
+		Columns: []column{{"point", "", false}, {"kind", "", false}, {"displacement rms", "µm", true}, {"acceleration rms", "m/s²", true}, {"loudest at", "Hz", true},
+			{"displacement by unbalance", "µm", true}, {"acceleration by unbalance", "m/s²", true}}}
+	for _, p := range r.Points {
+		kind := p.Kind
+		if kind == "node" {
+			kind = "on " + p.Part
+		}
+		move, shake, at := r.Shaken(p.Name)
+		row := []cell{words(p.Name), words(kind), digits(1e6*move, 3), digits(shake, 3), number(at, 1), missing(), missing()}
+		if move, shake := r.ShakenByLine(p.Name, "unbalance"); shake > 0 {
+			row[5], row[6] = digits(1e6*move, 3), digits(shake, 3)
+		}
+		t.Rows = append(t.Rows, row)
 	}
 	return t
 }

@@ -2,7 +2,6 @@ package sweep
 
 import (
 	"fmt"
-	"math"
 
 	"hushframe/core/pipeline/stage"
 	"hushframe/stages/kinds"
@@ -17,20 +16,12 @@ func pointTable(r *kinds.Response) stage.Section {
 			{Name: "unbalance, µm", Right: true}, {Name: "m/s²", Right: true}},
 	}
 	for _, p := range r.Points {
-		move, shake, at := shaken(r, p.Name)
+		move, shake, at := r.Shaken(p.Name)
 		row := []string{p.Name, p.Kind, fmt.Sprintf("%.3g", 1e6*move), fmt.Sprintf("%.3g", shake), fmt.Sprintf("%.1f", at), "–", "–"}
 		if p.Kind == "node" {
 			row[1] = "on " + p.Part
 		}
-		move, shake = 0, 0 // at the line
-		for _, x := range r.PointLines {
-			if x.Point == p.Name && x.Source == "unbalance" {
-				for c := range 3 {
-					move, shake = math.Hypot(move, x.Displacement[c]), math.Hypot(shake, x.Acceleration[c])
-				}
-			}
-		}
-		if shake > 0 {
+		if move, shake = r.ShakenByLine(p.Name, "unbalance"); shake > 0 {
 			row[5], row[6] = fmt.Sprintf("%.3g", 1e6*move), fmt.Sprintf("%.3g", shake)
 		}
 		s.Rows = append(s.Rows, row)
@@ -63,30 +54,11 @@ func staticTable(r *kinds.Response) stage.Section {
 	return s
 }
 
-// shaken sums the spectra of a point: root mean square of displacement and
-// acceleration over x, y and z together, and where the strongest acceleration is loudest.
-func shaken(r *kinds.Response, point string) (move, shake, at float64) {
-	most := 0.0
-	for _, x := range r.PointSpectra {
-		switch {
-		case x.Point != point:
-		case x.Quantity == kinds.Displacement:
-			move = math.Hypot(move, x.RMS)
-		case x.Quantity == kinds.Acceleration:
-			shake = math.Hypot(shake, x.RMS)
-			if x.RMS > most {
-				most, at = x.RMS, x.Loudest
-			}
-		}
-	}
-	return move, shake, at
-}
-
 // pointFigure lists the points for expressions.
 func pointFigure(r *kinds.Response) []any {
 	list := []any{}
 	for _, p := range r.Points {
-		move, shake, _ := shaken(r, p.Name)
+		move, shake, _ := r.Shaken(p.Name)
 		list = append(list, map[string]any{"name": p.Name, "kind": p.Kind,
 			"displacement": stage.Quantity{SI: move, Dimension: "length"}, "acceleration": stage.Quantity{SI: shake, Dimension: "acceleration"}})
 	}
