@@ -96,6 +96,10 @@ func (l *Law) Equal(o *Law) bool {
 		slices.Equal(l.Frequency, o.Frequency) && slices.Equal(l.Storage, o.Storage) && slices.Equal(l.Loss, o.Loss)
 }
 
+// mostRise is the greatest factor between the stiffness of a solid at rest and at high frequency: polymers rise by about a
+// thousand from rubber to glass (from memory).
+const mostRise = 1e4
+
 // Check reports what makes a law impossible.
 func (l *Law) Check() error {
 	finite := func(x float64) bool { return x > 0 && !math.IsInf(x, 1) }
@@ -127,8 +131,8 @@ func (l *Law) Check() error {
 			return fmt.Errorf("a loss factor of %g cannot have the order %g: it must be below %.3g", l.LossFactor, l.Order, most)
 		}
 	case Solid:
-		if !(l.Rise > 1) || math.IsInf(l.Rise, 1) {
-			return fmt.Errorf("the stiffness rises by a factor of %g: it must be above 1", l.Rise)
+		if !(l.Rise > 1 && l.Rise <= mostRise) {
+			return fmt.Errorf("the stiffness rises by a factor of %g: it must be above 1 and not above %g", l.Rise, mostRise)
 		}
 		if !finite(l.PeakAt) {
 			return fmt.Errorf("the frequency of the greatest loss is %g Hz: it must be positive", l.PeakAt)

@@ -73,6 +73,7 @@ func TestImpossibleLaws(t *testing.T) {
 		"unknown":         {Kind: "spring"},
 		"no reference":    {Kind: Solid, Rise: 2, PeakAt: 100},
 		"falling solid":   {Kind: Solid, Reference: 100, Rise: 0.9, PeakAt: 100},
+		"soaring solid":   {Kind: Solid, Reference: 100, Rise: 1.1e4, PeakAt: 100},
 		"order":           {Kind: Fractional, Reference: 100, Order: 1.4, LossFactor: 0.2},
 		"loss for order":  {Kind: Fractional, Reference: 100, Order: 0.2, LossFactor: 0.4},
 		"falling table":   {Kind: Table, Frequency: []float64{20, 10}, Storage: []float64{1, 1}, Loss: []float64{0, 0}},

@@ -192,6 +192,10 @@ func (b *block) checkSprings(k []float64, places int, at hcl.Range) {
 			b.fail(at, "stiffness along x, y, z must be positive, and about them not negative")
 			return
 		}
+		if i < 3 && x > stiffest || i > 2 && x > stiffestTurn {
+			b.fail(at, "stiffness is above 1e7 kN/mm or 1e9 N*m/rad; leave out the springs of a body that is tied rigidly")
+			return
+		}
 	}
 	if places == 1 && (len(k) == 3 || k[3] == 0 || k[4] == 0 || k[5] == 0) {
 		b.fail(at, "one spring without rotational stiffness lets the body turn freely; give six components or more places")

@@ -34,7 +34,12 @@ func (b *block) joint() Joint {
 		}
 	}
 	for i, c := range components {
-		j.Stiffness[i] = b.amount(c, stiffnessDimension(i), positive).Or(math.Inf(1))
+		k, most := b.amount(c, stiffnessDimension(i), positive), stiffest
+		if i > 2 {
+			most = stiffestTurn
+		}
+		b.yields(c, k.Value, most, "leave it out where the joint is rigid")
+		j.Stiffness[i] = k.Or(math.Inf(1))
 	}
 	return j
 }
@@ -86,6 +91,7 @@ func (b *block) contact(kind airframe.ContactKind) Contact {
 	}
 	if kind == airframe.Key {
 		c.Stiffness[0] = b.must("stiffness", "stiffness", positive)
+		b.yields("stiffness", c.Stiffness[0], stiffest, "give what the flank yields with")
 		return c
 	}
 	b.seam(&c)
@@ -100,6 +106,7 @@ func (b *block) seam(c *Contact) {
 				return
 			}
 		}
+		b.yields("stiffness", max(k[0], k[1], k[2]), stiffest, "give what the glue yields with")
 		c.Stiffness = [3]float64(k)
 	}
 	g := b.inside("glue")
@@ -140,6 +147,9 @@ func (b *block) pressed(c *Contact) {
 	c.Bonded = b.word("faces", "bonded", "normal-only") != "normal-only"
 	c.Normal = b.amount("normal", "bedding stiffness", positive)
 	c.Shear = b.amount("shear", "bedding stiffness", positive)
+	const halves = "leave it out for what the halves of the plates yield with"
+	b.yields("normal", c.Normal.Value, stiffestFaces, halves)
+	b.yields("shear", c.Shear.Value, stiffestFaces, halves)
 	if c.Shear.Given && !c.Bonded {
 		b.fail(b.hcl.Body.Attributes["shear"].NameRange, "shear is given and faces are normal-only, which slide freely")
 	}
