@@ -17,6 +17,7 @@ import (
 	"hushframe/core/mechanics/forced"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/mechanics/rotor"
+	"hushframe/core/numeric/sparse"
 )
 
 // bars is a bar along x with a motor at each end and a soft lossy mount in the
@@ -172,12 +173,34 @@ func TestAnswerIsThatOfTheEquationsWrittenOut(t *testing.T) {
 	}
 }
 
-// Weights of one give the stiffness; groups do not mix.
+// Weights of one give the stiffness; groups do not mix: of any motion, the matrix of a group stores what the energies
+// say of that group, which are computed without it.
 func TestWeightedStiffness(t *testing.T) {
 	s := assembled(t, 9)
 	ones := s.Weighted([]float64{1, 1, 1}, 1)
 	mixed := s.Weighted([]float64{2, 0, -1}, 2)
 	a, b, c := s.Weighted([]float64{1, 0, 0}, 1), s.Weighted([]float64{0, 1, 0}, 1), s.Weighted([]float64{0, 0, 1}, 1)
+	y, ky := make([]float64, s.N), make([]float64, s.N)
+	for i := range y {
+		y[i] = math.Sin(1.3*float64(i) + 0.2) // any motion
+	}
+	e, err := s.Energies(t.Context(), [][]float64{y}, 1)
+	if err != nil {
+		t.Fatal(err)
+	}
+	for g, m := range []*sparse.Symmetric{a, b, c} {
+		got, want := 0.0, 0.0
+		m.MulVec(ky, y)
+		for i := range y {
+			got += y[i] * ky[i] / 2
+		}
+		for _, v := range e.Strain[0][g] {
+			want += v
+		}
+		if !(want > 0) || math.Abs(got/want-1) > 1e-9 {
+			t.Errorf("group %d alone stores %g J, want %g", g, got, want)
+		}
+	}
 	for k := range s.K.Val {
 		scale := math.Abs(a.Val[k]) + math.Abs(b.Val[k]) + math.Abs(c.Val[k])
 		if math.Abs(ones.Val[k]-s.K.Val[k]) > 1e-12*scale {
