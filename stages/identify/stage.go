@@ -40,7 +40,8 @@ Models of rising order are fitted to the covariances of all axes together
 rises are clustered. Then a model of high order is fitted to all cross spectra at
 greatest likelihood, and poles that they do not need are taken out. A pole is a mode
 if the spectra need it much, or need it and it stays over two fifths of the models; if
-its frequency is sure to 1 %, its damping to 30 % and its direction to 15 deg.
+its frequency is sure to 1 %, its damping to 30 % and its direction to 15 deg, and
+to half as much again when larger models may disagree. The errors told allow for both.
 Poles where a rotor order is or was, and lines that are steady in amplitude, are
 told apart from structure. Where speeds are followed in the signal (find_rotors),
 orders are only told apart.

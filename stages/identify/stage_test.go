@@ -240,7 +240,7 @@ func TestSandpiperWithoutSpeeds(t *testing.T) {
 			lines++
 		}
 	}
-	if modes < 5 || lines < 2 || len(x.Removed) > 0 || !strings.Contains(strings.Join(o.Notes, "\n"), "was followed in the signal") {
+	if modes < 4 || lines < 2 || len(x.Removed) > 0 || !strings.Contains(strings.Join(o.Notes, "\n"), "was followed in the signal") {
 		t.Errorf("%d modes, %d lines, %d orders taken out, %v", modes, lines, len(x.Removed), o.Notes)
 	}
 }

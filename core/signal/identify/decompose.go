@@ -153,10 +153,12 @@ func (d *Decomposition) mean(k, step int) float64 {
 }
 
 const (
-	bellDepth          = 0.01 // of the peak, where the bell ends
-	decayFrom, decayTo = 0.9, 0.25
-	leastExtremes      = 4
-	leastWindow        = 0.3 // of its own correlation, beyond which the window leaves too little of the decay
+	bellDepth = 0.01 // of the peak, where the bell ends
+	// Later, the covariance of a record is chance rather than decay: to 0.25, damping of the chain of TestDecayScatters scatters half as much again.
+	// A mode so damped that it has too few extremes by then is followed to decayEnd.
+	decayFrom, decayTo, decayEnd = 0.95, 0.5, 0.25
+	leastExtremes                = 4
+	leastWindow                  = 0.3 // of its own correlation, beyond which the window leaves too little of the decay
 )
 
 // decay fits frequency and damping to the covariance that belongs to the bell.
@@ -199,7 +201,7 @@ func (d *Decomposition) decay(p *Peak, bell []complex128) {
 			top = b + (c-a)*shift/4
 		}
 		ratio := top / held / first
-		if ratio < decayTo {
+		if ratio < decayEnd || ratio < decayTo && len(lags) >= leastExtremes {
 			break
 		}
 		if ratio > decayFrom {

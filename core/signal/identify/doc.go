@@ -34,6 +34,13 @@
 // parameters (G. Schwarz, Estimating the dimension of a model, Ann. Statist. 6, 1978), otherwise only if its cluster reaches
 // through the models.
 //
+// What leaving poles out may have moved is put into the errors: an estimate of a larger model, on the way from the largest to the one that is kept, may
+// differ by the difference of the two variances, the more of it the more likelihood was given up (J. A. Hausman, Specification tests in
+// econometrics, Econometrica 46, 1978; N. L. Hjort and G. Claeskens, Frequentist model average estimators, J. Am. Statist. Assoc. 98, 2003).
+//
+// Bound. What no method can do better is told by the information of the true spectrum (Bound): a mode of large damping beside others of like shape cannot
+// be known from a short record, whoever looks at it.
+//
 // Decomposition. The cross-spectral matrix of all channels is decomposed into singular values per bin; a peak of the first
 // one is a mode whose shape is the singular vector. Around it the bins whose vector agrees with that shape are turned into
 // a covariance, whose zero crossings and decay give frequency and damping (R. Brincker, L. Zhang, P. Andersen, Modal

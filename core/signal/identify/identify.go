@@ -55,8 +55,9 @@ type Mode struct {
 	// such a model has no use for.
 	Worth float64
 
-	cluster int  // of the diagram, -1 for none
-	lone    bool // worth too little to be told without a cluster that reaches through the models
+	own     scatter // errors within the model that was kept, without what leaving poles out adds
+	cluster int     // of the diagram, -1 for none
+	lone    bool    // worth too little to be told without a cluster that reaches through the models
 }
 
 // Result is what was found.
@@ -84,6 +85,7 @@ const (
 	sureFrequency = 0.01 // largest relative standard error of a mode's frequency
 	sureDamping   = 0.3  // and of its damping
 	sureAngle     = math.Pi / 12
+	beyond        = 1.5 // times these, what leaving poles out may add to the errors
 	steadyBelow   = 2.1 // kurtosis below which a band holds a steady line
 	analysedRate  = 2.5 // sample rate kept, over To
 	agrees        = 2.0 // combined standard errors within which two estimates agree
@@ -269,6 +271,7 @@ func (s *Subspace) mode(d *Diagram, models map[int]*model, entries []int, deltas
 	}
 	m.Frequency, m.FrequencyError = pooled(fs, fe)
 	m.Damping, m.DampingError = pooled(zs, ze)
+	m.own = scatter{m.FrequencyError, m.DampingError, m.DirectionError}
 	return m, true
 }
 
@@ -338,12 +341,18 @@ func (m *Mode) judge(r Record, s Settings, d *Decomposition) {
 		set(Doubtful, "only %.0f %% of the models have it, and the spectra need it little", 100*m.Share)
 	case math.IsNaN(m.Worth) && m.Share < enoughOrders:
 		set(Doubtful, "only %.0f %% of the models have it", 100*m.Share)
-	case m.FrequencyError > sureFrequency*m.Frequency:
+	case m.own.frequency > sureFrequency*m.Frequency:
 		set(Doubtful, "its frequency is not sure to %g %%", 100*sureFrequency)
-	case m.DampingError > sureDamping*m.Damping:
+	case m.own.damping > sureDamping*m.Damping:
 		set(Doubtful, "its damping is not sure to %g %%", 100*sureDamping)
-	case m.DirectionError > sureAngle:
+	case m.own.angle > sureAngle:
 		set(Doubtful, "its direction is not sure to %.0f deg", sureAngle*180/math.Pi)
+	case m.FrequencyError > beyond*sureFrequency*m.Frequency:
+		set(Doubtful, "models with more poles do not hold its frequency to %g %%", 100*beyond*sureFrequency)
+	case m.DampingError > beyond*sureDamping*m.Damping:
+		set(Doubtful, "models with more poles do not hold its damping to %g %%", 100*beyond*sureDamping)
+	case m.DirectionError > beyond*sureAngle:
+		set(Doubtful, "models with more poles do not hold its direction to %.0f deg", beyond*sureAngle*180/math.Pi)
 	}
 }
 

@@ -39,8 +39,38 @@ func TestDecompositionReference(t *testing.T) {
 	row.Check(t, 1, append(append(bins, values...), agreements...)...)
 }
 
+// Over forty records of the chain, damping from the decay is off by less than 15 % (root mean square), where the bound of one mode alone,
+// √(1/(ζ·ω·T)) (see TestBoundOfOneMode), is 11, 6 and 4 %, so that row F-OMA-TRUTH-BAND, which allows 25 %, holds by more than chance.
+func TestDecayScatters(t *testing.T) {
+	c, _ := readChain(t, "F-OMA-TRUTH-BAND")
+	w, phi := c.modes()
+	const records = 40
+	var square [3]float64
+	for k := range noise.Source(records) {
+		y := c.shaken(1000*k+1, 77*k+20001, 991*k+555)
+		d, err := Singular(Record{Rate: c.Rate, Runs: [][][]float64{y}}, spectrum.Settings{Rate: c.Rate, Segment: 1024, Overlap: 512})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for m := range square {
+			shape := make([]complex128, 3)
+			for i := range shape {
+				shape[i] = complex(phi.At(i, m), 0)
+			}
+			f := w[m] / (2 * math.Pi)
+			p, _ := d.PeakNear(0.95*f, 1.05*f, shape)
+			square[m] += math.Pow(p.Damping/c.Damping[m]-1, 2) / records
+		}
+	}
+	for m, v := range square {
+		if !(v < 0.15*0.15) {
+			t.Errorf("mode %d: damping is off by %.3f", m+1, math.Sqrt(v))
+		}
+	}
+}
+
 // Row F-OMA-TRUTH-BAND, for the whole identification, and for the decay of the decomposition beside it. The claimed errors
-// must be of the size that the row F-OMA-SSI states for its variant of the method, and cover the truth.
+// must be of the size of the bound, and cover the truth.
 func TestIdentifyChain(t *testing.T) {
 	c, row := readChain(t, "F-OMA-TRUTH-BAND")
 	r, err := Identify(Record{Rate: c.Rate, Runs: [][][]float64{c.simulate()}}, Settings{From: 20, To: 200, Threads: 2})
@@ -60,20 +90,29 @@ func TestIdentifyChain(t *testing.T) {
 		t.Fatalf("modes at %v Hz", f)
 	}
 	row.Check(t, 1, append(f, z...)...)
-	row.Check(t, 2, append(pf, pz...)...) // the decay is a cruder measure of damping
+	row.Check(t, 1, append(pf, pz...)...)
 	k := 0
-	// The notes of F-OMA-SSI: one standard deviation of frequency, of which the row F-OMA-TRUTH-BAND allows about five, and
-	// three of damping, of which it allows one.
+	// The errors that the notes of F-OMA-SSI state, one of frequency and three of damping, are √(ζ/(ω·T)): those of one mode alone without noise, of which all
+	// but its pole is known. With three modes unknown the bound is a twentieth above that. The claimed errors are up to 1.6 times the bound, since it knows how
+	// many modes there are and the fit does not: poles that the spectra need a little, worth 1.5 per parameter, share in what is told of their neighbours.
 	oneF, threeZ := [3]float64{1.1e-3, 9.1e-4, 8.9e-4}, [3]float64{3.4e-3, 2.7e-3, 2.7e-3}
+	best := c.best(t, 16, 224)
 	for _, m := range r.Modes {
 		if m.Kind != Structure {
 			continue
 		}
-		if ratio := m.FrequencyError / m.Frequency / oneF[k]; ratio < 0.6 || ratio > 2 {
-			t.Errorf("mode %d: frequency error %.4f Hz is %.2f of that stated", k+1, m.FrequencyError, ratio)
+		t.Logf("mode %d: bound %.4f Hz, %.5f; of one mode alone %.4f Hz, %.5f", k+1, best[k].Frequency, best[k].Damping, oneF[k]*m.Frequency, threeZ[k]/3)
+		if ratio := best[k].Frequency / (oneF[k] * row.Values[k]); ratio < 0.98 || ratio > 1.1 {
+			t.Errorf("mode %d: the bound of frequency is %.2f of that of one mode alone", k+1, ratio)
 		}
-		if ratio := 3 * m.DampingError / threeZ[k]; ratio < 0.6 || ratio > 2 {
-			t.Errorf("mode %d: damping error %.5f is %.2f of that stated", k+1, m.DampingError, ratio)
+		if ratio := 3 * best[k].Damping / threeZ[k]; ratio < 0.98 || ratio > 1.1 {
+			t.Errorf("mode %d: the bound of damping is %.2f of that of one mode alone", k+1, ratio)
+		}
+		if ratio := m.FrequencyError / best[k].Frequency; ratio < 0.8 || ratio > 1.7 {
+			t.Errorf("mode %d: frequency error %.4f Hz is %.2f of the bound", k+1, m.FrequencyError, ratio)
+		}
+		if ratio := m.DampingError / best[k].Damping; ratio < 0.8 || ratio > 1.7 {
+			t.Errorf("mode %d: damping error %.5f is %.2f of the bound", k+1, m.DampingError, ratio)
 		}
 		if math.Abs(m.Frequency-row.Values[k]) > 3.5*m.FrequencyError || math.Abs(m.Damping-row.Values[3+k]) > 3.5*m.DampingError {
 			t.Errorf("mode %d: %.3f ± %.3f Hz and %.4f ± %.4f miss the truth", k+1, m.Frequency, m.FrequencyError, m.Damping, m.DampingError)

@@ -2,7 +2,6 @@ package identify
 
 import (
 	"math"
-	"math/cmplx"
 )
 
 const (
@@ -39,11 +38,13 @@ func refine(r Record, sub *Subspace, c *Covariance, clusters []Mode, s Settings,
 			continue
 		}
 		sure := w.price(f.perPair())
-		f, loss := w.prune(f, leastLoss*float64(f.perPair()), sure)
+		f, kept := w.prune(f, leastLoss*float64(f.perPair()), sure)
 		var modes []Mode
 		for i, p := range f.pairs {
 			m := f.mode(i)
-			m.Worth, m.lone = loss[i], loss[i] < sure
+			m.Worth, m.lone = kept[i].loss, kept[i].loss < sure
+			m.own = f.errors(i)
+			m.FrequencyError, m.DampingError, m.DirectionError = kept[i].frequency, kept[i].damping, kept[i].angle
 			if m.Frequency < s.From || m.Frequency > s.To || m.Damping > s.MaxDamping || p.turn <= 0 {
 				continue
 			}
@@ -68,40 +69,12 @@ func width(clusters []Mode) float64 {
 	return max(least, part*damping)
 }
 
-// mode turns a pair into a mode. Errors follow from the covariance of decay (by its logarithm), turn (in units of decay) and shape.
+// mode turns a pair into a mode, without errors.
 func (f fitted) mode(i int) Mode {
 	p := f.pairs[i]
-	first := i * f.perPair()
 	w := math.Hypot(p.decay, p.turn)
-	// Changes with the two parameters of the pole, both of which are in units of decay.
-	gradient := func(byDecay, byTurn float64) float64 {
-		a, b := byDecay*p.decay, byTurn*p.decay
-		v := a*a*f.covariance.At(first, first) + 2*a*b*f.covariance.At(first, first+1) + b*b*f.covariance.At(first+1, first+1)
-		return math.Sqrt(max(0, v))
-	}
-	m := Mode{Kind: Structure, Shape: p.c, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN(), cluster: -1}
-	m.Frequency, m.FrequencyError = w/(2*math.Pi), gradient(p.decay/w, p.turn/w)/(2*math.Pi)
-	m.Damping, m.DampingError = p.decay/w, gradient(p.turn*p.turn/(w*w*w), -p.decay*p.turn/(w*w*w))
+	m := Mode{Kind: Structure, Shape: p.c, Frequency: w / (2 * math.Pi), Damping: p.decay / w, Kurtosis: math.NaN(), PeakFrequency: math.NaN(), PeakDamping: math.NaN(), cluster: -1}
 	m.Direction, m.Collinearity = Direction(p.c)
-	var square complex128
-	norm := 0.0
-	for _, v := range p.c {
-		square += v * v
-	}
-	turn := cmplx.Exp(complex(0, -cmplx.Phase(square)/2))
-	for _, v := range p.c {
-		norm = math.Hypot(norm, real(v*turn))
-	}
-	at, sum := first+2, 0.0
-	for q := range p.c {
-		if q == p.fixed {
-			continue
-		}
-		a, b := real(turn), -imag(turn) // of the real part of δc·turn
-		sum += a*a*f.covariance.At(at, at) + 2*a*b*f.covariance.At(at, at+1) + b*b*f.covariance.At(at+1, at+1)
-		at += 2
-	}
-	m.DirectionError = math.Sqrt(max(0, sum)) / norm
 	return m
 }
 

@@ -19,6 +19,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"runtime"
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/jobs/inprocess"
@@ -48,7 +49,11 @@ func fly(ctx context.Context, job, folder string, seed uint64) error {
 	if err := os.MkdirAll(folder, 0o755); err != nil {
 		return err
 	}
-	account, err := json.MarshalIndent(describe(pl, p), "", "  ")
+	about, err := describe(pl, p)
+	if err != nil {
+		return err
+	}
+	account, err := json.MarshalIndent(about, "", "  ")
 	if err != nil {
 		return err
 	}
@@ -124,13 +129,14 @@ func rotors(p *airframe.Properties) []rotorState {
 type account struct {
 	About      string             `json:"about"`
 	Modes      []trueMode         `json:"modes_at_hover_speed"`
+	BestAfter  float64            `json:"best_errors_after_s"`
 	Parameters map[string]any     `json:"parameters"`
 	Rotors     []map[string]any   `json:"rotors"`
 	Sources    map[string]float64 `json:"sources_si"`
 	Recorder   map[string]float64 `json:"recorder_si"`
 }
 
-func describe(pl *plant, p *airframe.Properties) account {
+func describe(pl *plant, p *airframe.Properties) (account, error) {
 	parameters := map[string]any{"loss_factor_floor": p.Floor}
 	for _, m := range p.Materials {
 		parameters["material "+m.Name] = map[string]float64{"E1_Pa": m.E1, "E2_Pa": m.E2, "G12_Pa": m.G12, "density_kg_m3": m.Density, "loss_factor": m.LossFactor}
@@ -143,9 +149,15 @@ func describe(pl *plant, p *airframe.Properties) account {
 			parameters["mount "+b.Mount.Name] = map[string]any{"stiffness_of_each_N_m": b.Mount.Points[0].Stiffness, "points": len(b.Mount.Points), "loss_factors": b.Mount.Loss, "law": string(b.Mount.Law.Kind)}
 		}
 	}
+	terms := pl.terms()
+	best, err := newProcess(terms, rotors(p)).best(runtime.GOMAXPROCS(0))
+	if err != nil {
+		return account{}, err
+	}
 	a := account{
 		About:      "modes and parameters behind hover-03.csv.gz; hysteretic losses were turned into equivalent viscous ones for the simulation",
-		Modes:      pl.modes(),
+		Modes:      pl.modes(terms, best),
+		BestAfter:  steady,
 		Parameters: parameters,
 		Sources: map[string]float64{
 			"force_density_N2_Hz": forceDensity, "moment_density_N2m2_Hz": momentDensity, "blade_thrust_N": bladeThrust, "blade_side_force_N": bladeSide,
@@ -156,5 +168,5 @@ func describe(pl *plant, p *airframe.Properties) account {
 	for i, r := range rotors(p) {
 		a.Rotors = append(a.Rotors, map[string]any{"name": p.Rotors[i].Name, "mean_hover_rpm": math.Round(r.hover * 30 / math.Pi), "unbalance_kg_m": r.unbalance, "spin": r.spin})
 	}
-	return a
+	return a, nil
 }

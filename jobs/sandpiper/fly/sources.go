@@ -147,10 +147,24 @@ func (s *sources) step() (force []float64, command float64) {
 		f[5] += level * torqueRipple * math.Sin(rippleOrder*turns+r.phase[2])
 		if airborne {
 			// The loop answers gusts: thrust patterns that roll and pitch, torque that yaws.
-			f[2] += loopForce * (math.Copysign(1, r.y)*loop[0] - math.Copysign(1, r.x)*loop[1]) / 2
-			f[5] += loopTorque * loop[2]
+			for axis, v := range loop {
+				thrust, torque := r.loop(axis)
+				f[2] += thrust * v
+				f[5] += torque * v
+			}
 		}
 	}
 	s.time += s.dt
 	return s.force, command
+}
+
+// loop gives the thrust and the torque of a rotor with which the loop answers a gust of unit variance about an axis.
+func (r rotorState) loop(axis int) (thrust, torque float64) {
+	switch axis {
+	case 0:
+		return loopForce * math.Copysign(0.5, r.y), 0
+	case 1:
+		return -loopForce * math.Copysign(0.5, r.x), 0
+	}
+	return 0, loopTorque
 }

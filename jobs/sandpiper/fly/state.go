@@ -10,6 +10,7 @@ import (
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/modal"
 	"hushframe/core/mechanics/rotor"
+	"hushframe/core/signal/identify"
 )
 
 // plant is the truth in modal coordinates: q″ + (C + G) q′ + Λ q = Bᵀ f, with
@@ -159,47 +160,29 @@ type trueMode struct {
 	// Strength is the peak gyro rate of this mode alone per newton, root sum
 	// of squares over unit forces in three directions at all rotor hubs.
 	Strength float64 `json:"gyro_strength_deg_s_per_n"`
+	// BestFrequency and BestDamping are the least standard errors in Hz and of the damping ratio with which a steady recording can tell
+	// the mode, with all modes that it shows unknown; absent where the mode lies beyond what was looked at.
+	BestFrequency float64 `json:"best_frequency_error_hz,omitempty"`
+	BestDamping   float64 `json:"best_damping_error,omitempty"`
 }
 
-// modes gives the elastic modes of the plant from the eigenvalues of its state
-// matrix, by ascending frequency. The gyro direction is the unit vector along
+// modes gives the elastic modes of the plant, by ascending frequency. The gyro direction is the unit vector along
 // which the complex rotation of the gyro is largest.
-func (pl *plant) modes() []trueMode {
-	var eig mat.Eigen
-	if !eig.Factorize(pl.a, mat.EigenBoth) {
-		panic("fly: the state matrix has no eigenvalues")
-	}
-	values := eig.Values(nil)
-	var right, left mat.CDense
-	eig.VectorsTo(&right)
-	eig.LeftVectorsTo(&left)
+func (pl *plant) modes(terms []term, best map[complex128]identify.Best) []trueMode {
 	var out []trueMode
-	for k, s := range values {
-		f := cmplx.Abs(s) / (2 * math.Pi)
-		if imag(s) <= 0 || f < 40 {
+	for _, t := range terms {
+		if !t.elastic() {
 			continue
 		}
 		var rate [3]complex128
-		for d := range 3 {
-			for i := range pl.n {
-				rate[d] += complex(pl.gyro.At(d, i), 0) * right.At(pl.n+i, k)
-			}
-		}
-		m := trueMode{Frequency: f, Damping: -real(s) / cmplx.Abs(s), Direction: direction(rate)}
-		// Residue: rate · (leftᴴ b) / (leftᴴ right), divided by the decay rate.
-		var norm complex128
-		for i := range 2 * pl.n {
-			norm += cmplx.Conj(left.At(i, k)) * right.At(i, k)
-		}
+		copy(rate[:], t.rate)
+		m := trueMode{Frequency: cmplx.Abs(t.lambda) / (2 * math.Pi), Damping: -real(t.lambda) / cmplx.Abs(t.lambda), Direction: direction(rate),
+			BestFrequency: best[t.lambda].Frequency, BestDamping: best[t.lambda].Damping}
 		var sum float64
-		for r := range pl.sites {
+		for site := range pl.sites {
 			for c := range 3 {
-				var in complex128
-				for i := range pl.n {
-					in += cmplx.Conj(left.At(pl.n+i, k)) * complex(pl.b.At(pl.n+i, 6*r+c), 0)
-				}
 				for d := range 3 {
-					h := cmplx.Abs(rate[d] * in / norm / complex(real(s), 0))
+					h := cmplx.Abs(rate[d] * t.force[6*site+c] / complex(real(t.lambda), 0))
 					sum += h * h
 				}
 			}

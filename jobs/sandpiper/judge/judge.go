@@ -20,6 +20,7 @@ const (
 	rightDamping   = 0.3
 	rightAngle     = 15 * math.Pi / 180
 	apart          = 3
+	within         = 2 // of its own errors, with which a mode that is off has said so
 )
 
 // identify finds the modes of a recording with judge.hcl.
@@ -45,9 +46,22 @@ type row struct {
 	trueMode
 	share float64
 	found *kinds.IdentifiedMode // nil if it was missed
+	// bestFrequency and bestDamping are the least relative errors that the recording allows; not a number if they are not told.
+	bestFrequency, bestDamping float64
 }
 
 func (r row) seen() bool { return r.share >= seenShare }
+
+// knowable tells whether the recording allows to know the mode to within the limits.
+func (r row) knowable() bool {
+	return !(r.bestFrequency > rightFrequency) && !(r.bestDamping > rightDamping)
+}
+
+// said tells whether what was found is within twice its own errors.
+func (r row) said() bool {
+	m := r.found
+	return math.Abs(m.Frequency-r.Frequency) <= within*m.FrequencyError && math.Abs(m.Damping-r.Damping) <= within*m.DampingError && r.angle() <= max(rightAngle, within*m.DirectionError)
+}
 
 // right tells whether what was found is within the limits.
 func (r row) right() bool {
@@ -99,7 +113,8 @@ func judge(t *truth, x *kinds.Identified) verdict {
 		}
 	}
 	for i, m := range t.Modes {
-		r := row{m, t.share(i), partner[i]}
+		r := row{trueMode: m, share: t.share(i), found: partner[i]}
+		r.bestFrequency, r.bestDamping = t.best(m, x.End-x.Start)
 		if partner[i] != nil || r.seen() && m.Frequency >= x.From && m.Frequency <= x.To {
 			v.rows = append(v.rows, r)
 		}
@@ -120,39 +135,80 @@ func (t *truth) order(f, rate float64) bool {
 	return false
 }
 
-// counts sums a verdict up: true modes that are seen, of these found and right; told ones that are right; false ones; orders.
-func (v verdict) counts() (seen, found, right, wrong int) {
-	for _, r := range v.rows {
-		if r.seen() {
-			seen++
-			if r.found != nil {
-				found++
-			}
+// tally sums a verdict up.
+type tally struct {
+	seen, knowable       int // true modes that are seen, and those of them that the recording allows to know
+	found, knowableFound int // of these
+	right, off, said     int // told ones that are right, that are off, and those of the latter that are within twice their own errors
+}
+
+func (v verdict) tally() tally {
+	var n tally
+	one := func(count *int, is bool) {
+		if is {
+			*count++
 		}
-		if r.found != nil {
-			if r.right() {
-				right++
-			} else {
-				wrong++
+	}
+	for _, r := range v.rows {
+		hit := r.found != nil
+		one(&n.seen, r.seen())
+		one(&n.knowable, r.seen() && r.knowable())
+		one(&n.found, r.seen() && hit)
+		one(&n.knowableFound, r.seen() && hit && r.knowable())
+		one(&n.right, hit && r.right())
+		one(&n.off, hit && !r.right())
+		one(&n.said, hit && !r.right() && r.said())
+	}
+	return n
+}
+
+// scores are the root mean squares of what was found less the truth, over the claimed errors, of frequency and damping, and the share within 2.
+func (v verdict) scores() (frequency, damping, inside float64) {
+	count := 0.0
+	for _, r := range v.rows {
+		if r.found == nil {
+			continue
+		}
+		count++
+		for _, z := range []struct {
+			sum         *float64
+			off, claims float64
+		}{{&frequency, r.found.Frequency - r.Frequency, r.found.FrequencyError}, {&damping, r.found.Damping - r.Damping, r.found.DampingError}} {
+			*z.sum += math.Pow(z.off/z.claims, 2)
+			if math.Abs(z.off) <= within*z.claims {
+				inside += 0.5
 			}
 		}
 	}
-	return seen, found, right, wrong
+	return math.Sqrt(frequency / count), math.Sqrt(damping / count), inside / count
+}
+
+// add puts the findings of another flight to these.
+func (v *verdict) add(other verdict) {
+	v.rows, v.unknown, v.orders = append(v.rows, other.rows...), append(v.unknown, other.unknown...), append(v.orders, other.orders...)
 }
 
 // print writes the table of true and found modes.
 func (v verdict) print(w io.Writer) {
 	t := tabwriter.NewWriter(w, 0, 0, 2, ' ', tabwriter.AlignRight)
-	fmt.Fprintln(t, "true, Hz\tdamping, %\troll\tpitch\tyaw\tshare, %\tfound, Hz\t±\toff, %\tdamping, %\t±\toff, %\tangle, deg\t\t")
+	fmt.Fprintln(t, "true, Hz\tdamping, %\troll\tpitch\tyaw\tshare, %\tat best, %\tdamping, %\tfound, Hz\t±\toff, %\tdamping, %\t±\toff, %\tangle, deg\t\t")
 	for _, r := range v.rows {
-		fmt.Fprintf(t, "%.1f\t%.2f\t%.2f\t%.2f\t%.2f\t%.0f\t", r.Frequency, 100*r.Damping, r.Direction[0], r.Direction[1], r.Direction[2], 100*r.share)
+		fmt.Fprintf(t, "%.1f\t%.2f\t%.2f\t%.2f\t%.2f\t%.0f\t%s\t%s\t", r.Frequency, 100*r.Damping, r.Direction[0], r.Direction[1], r.Direction[2], 100*r.share,
+			percent("±%.2f", r.bestFrequency), percent("±%.0f", r.bestDamping))
 		m := r.found
 		if m == nil {
-			fmt.Fprintln(t, "–\t\t\t\t\t\t\tmissed\t")
+			word := "missed"
+			if !r.knowable() {
+				word = "not knowable"
+			}
+			fmt.Fprintf(t, "–\t\t\t\t\t\t\t%s\t\n", word)
 			continue
 		}
 		word := "right"
-		if !r.right() {
+		switch {
+		case !r.right() && r.said():
+			word = "off, and says so"
+		case !r.right():
 			word = "off"
 		}
 		fmt.Fprintf(t, "%.1f\t%.2g\t%+.2f\t%.2f\t%.2f\t%+.0f\t%.0f\t%s\t\n", m.Frequency, m.FrequencyError, 100*(m.Frequency/r.Frequency-1),
@@ -162,7 +218,26 @@ func (v verdict) print(w io.Writer) {
 	for _, m := range v.unknown {
 		fmt.Fprintf(w, "told as a mode, but none of the truth: %.1f Hz, damping %.2f %%, direction %.2f\n", m.Frequency, 100*m.Damping, m.Direction)
 	}
-	seen, found, right, wrong := v.counts()
-	fmt.Fprintf(w, "%d true modes are seen, %d of them found; of the modes told %d are right, %d off, %d false, %d of these at a rotor order\n",
-		seen, found, right, wrong, len(v.unknown), len(v.orders))
+	v.sum(w)
+}
+
+// sum writes the counts.
+func (v verdict) sum(w io.Writer) {
+	n := v.tally()
+	fmt.Fprintf(w, "%d true modes are seen, %d of them found; %d can be known from this recording to %.0f %% and %.0f %% of damping, %d of them found\n",
+		n.seen, n.found, n.knowable, 100*rightFrequency, 100*rightDamping, n.knowableFound)
+	fmt.Fprintf(w, "of the modes told %d are right, %d off (%d of them by less than twice their own errors), %d false, %d of these at a rotor order\n", n.right, n.off, n.said,
+		len(v.unknown), len(v.orders))
+	if n.right+n.off > 0 {
+		frequency, damping, inside := v.scores()
+		fmt.Fprintf(w, "over the claimed errors, frequency is off by %.2f and damping by %.2f (root mean square; %.0f %% within 2)\n", frequency, damping, 100*inside)
+	}
+}
+
+// percent writes a relative number.
+func percent(format string, v float64) string {
+	if math.IsNaN(v) {
+		return "–"
+	}
+	return fmt.Sprintf(format, 100*v)
 }

@@ -13,7 +13,8 @@ type truth struct {
 	Rotors []struct {
 		Speed float64 `json:"mean_hover_rpm"`
 	} `json:"rotors"`
-	Recorder map[string]float64 `json:"recorder_si"`
+	Recorder  map[string]float64 `json:"recorder_si"`
+	BestAfter float64            `json:"best_errors_after_s"`
 }
 
 // trueMode is one mode of the frame that was flown.
@@ -23,6 +24,19 @@ type trueMode struct {
 	Direction [3]float64 `json:"gyro_direction_roll_pitch_yaw"`
 	// Strength is the peak gyro rate of the mode alone in deg/s, root sum of squares over unit forces at all hubs.
 	Strength float64 `json:"gyro_strength_deg_s_per_n"`
+	// BestFrequency and BestDamping are the least standard errors, Hz and of the damping ratio, that a recording of best_errors_after_s seconds allows
+	// who knows none of the modes that it shows; zero if that was not computed.
+	BestFrequency float64 `json:"best_frequency_error_hz"`
+	BestDamping   float64 `json:"best_damping_error"`
+}
+
+// best returns the least relative errors of frequency and damping that a recording of so many seconds allows; not a number where they are not told.
+func (t *truth) best(m trueMode, seconds float64) (frequency, damping float64) {
+	if !(m.BestFrequency > 0) || !(t.BestAfter > 0) {
+		return math.NaN(), math.NaN()
+	}
+	by := math.Sqrt(t.BestAfter / seconds)
+	return by * m.BestFrequency / m.Frequency, by * m.BestDamping / m.Damping
 }
 
 func readTruth(path string) (*truth, error) {
