@@ -31,6 +31,10 @@ func (h *heeded) heed(word string, a stage.Argument, reason string, declared boo
 		bad("%s %s is said to change nothing, without a reason", word, a.Name)
 	}
 	h.inert = h.inert || declared
+	blamed := a.Name // as the job calls it
+	if word == "option" {
+		blamed = "options." + a.Name
+	}
 	for _, v := range values {
 		text := shown(v)
 		got, err := run(v)
@@ -42,9 +46,9 @@ func (h *heeded) heed(word string, a stage.Argument, reason string, declared boo
 			continue
 		case err == nil:
 		case !refusal(err):
-			bad("%s %s = %s is allowed by the description, and gives %v; narrow its range or choices, or refuse the value with fault.New(fault.Input, …).Of(%q)", word, a.Name, text, err, a.Name)
-		case !blames(err, a.Name):
-			bad("%s %s = %s is refused without naming it (%v); add .Of(%q), so that the user is shown the line of the job", word, a.Name, text, err, a.Name)
+			bad("%s %s = %s is allowed by the description, and gives %v; narrow its range or choices, or refuse the value with fault.New(fault.Input, …).Of(%q)", word, a.Name, text, err, blamed)
+		case !blames(err, blamed):
+			bad("%s %s = %s is refused without naming it (%v); add .Of(%q), so that the user is shown the line of the job", word, a.Name, text, err, blamed)
 		}
 		if declared && err == nil {
 			bad("%s %s is said to change nothing (%s), and %s changes the outcome", word, a.Name, reason, text)

@@ -14,6 +14,7 @@ import (
 	"hushframe/core/extension"
 	"hushframe/core/mechanics/element"
 	"hushframe/core/mechanics/element/shell"
+	"hushframe/core/pipeline/fault"
 	"hushframe/core/pipeline/stage"
 	"hushframe/core/signal/recording"
 )
@@ -24,7 +25,8 @@ type spoiledElement struct {
 	matrices func(in *element.Batch, out *element.Matrices)
 	energies func(out []float64)
 	deaf     bool
-	blind    bool // to bad shapes
+	blind    bool  // to bad shapes
+	refuse   error // a factor of 2
 }
 
 func (s spoiledElement) Describe() stage.Extension {
@@ -35,7 +37,10 @@ func (s spoiledElement) Describe() stage.Extension {
 	return x
 }
 
-func (spoiledElement) Shape(context.Context, stage.Arguments) (element.Description, error) {
+func (s spoiledElement) Shape(_ context.Context, o stage.Arguments) (element.Description, error) {
+	if s.refuse != nil && o.Number("factor") == 2 {
+		return element.Description{}, s.refuse
+	}
 	return element.Description{Nodes: 6}, nil
 }
 
@@ -75,13 +80,16 @@ func scale(v []float64, by float64) {
 // Each mistake of an element type is found, and the message says what it is.
 func TestSpoiledElements(t *testing.T) {
 	calls := 0
+	factor := func(x *stage.Extension) {
+		x.Arguments = []stage.Argument{{Name: "factor", About: "nothing", Type: stage.Type{Kind: stage.Number}, Default: 1.0}}
+	}
 	for want, s := range map[string]spoiledElement{
-		`description: its kind is "reader", not "element"`: {describe: func(x *stage.Extension) { x.Kind = "reader" }},
-		"description: the element has no about":            {describe: func(x *stage.Extension) { x.About = "" }},
-		"description: a second one differs":                {describe: func(x *stage.Extension) { calls++; x.About = fmt.Sprint(calls) }},
-		"option factor changes nothing: with 2, 0.5, 0, -1 the matrices are the same to the last byte; is it read?": {describe: func(x *stage.Extension) {
-			x.Arguments = []stage.Argument{{Name: "factor", About: "nothing", Type: stage.Type{Kind: stage.Number}, Default: 1.0}}
-		}},
+		`option factor = 2 is refused without naming it (too much); add .Of("options.factor")`:                      {describe: factor, refuse: fault.New(fault.Input, "too much").Of("factor")},
+		`option factor = 2 is allowed by the description, and gives no such factor; narrow its range or`:            {describe: factor, refuse: fault.New(fault.Numeric, "no such factor")},
+		`description: its kind is "reader", not "element"`:                                                          {describe: func(x *stage.Extension) { x.Kind = "reader" }},
+		"description: the element has no about":                                                                     {describe: func(x *stage.Extension) { x.About = "" }},
+		"description: a second one differs":                                                                         {describe: func(x *stage.Extension) { calls++; x.About = fmt.Sprint(calls) }},
+		"option factor changes nothing: with 2, 0.5, 0, -1 the matrices are the same to the last byte; is it read?": {describe: factor},
 		"option t has no unit to be shown in": {describe: func(x *stage.Extension) {
 			x.Arguments = []stage.Argument{{Name: "t", About: "nothing", Type: stage.Type{Kind: stage.Amount, Dimension: "length"}}}
 		}},

@@ -36,7 +36,7 @@ func solid(m laminate.Material, angle float64, options stage.Arguments) (c [6][6
 	var chol mat.Cholesky
 	if !chol.Factorize(compliance) {
 		return c, fault.New(fault.Input, "no solid has these constants: a Poisson's ratio of %g along the normal is too large beside ν12 = %g", options.Number("normal_ratio"), m.Nu12).
-			Of("options").Do("lower normal_ratio")
+			Of("options.normal_ratio").Do("lower normal_ratio")
 	}
 	var inverse mat.SymDense
 	if err := chol.InverseTo(&inverse); err != nil {
