@@ -5,6 +5,7 @@ import { scaleLinear, scaleLog } from 'd3-scale'
 import type { Axis, ChartData, Curve, Scene } from '../data'
 import { onTheme, ramp } from '../palette'
 import type { State } from '../state'
+import { held, pinch } from './pinch'
 import { saveCSV, savePNG, saveSVG } from './save'
 import { spread } from './spread'
 import { button, digits, html, svg } from './svg'
@@ -36,6 +37,15 @@ export class Chart {
     const panel = figure.querySelector('.panel')!
     panel.replaceChildren(this.tools(), this.legend(), this.holder, this.readout)
     new ResizeObserver(() => this.draw()).observe(this.holder)
+    const chart = this
+    if (!data.square) pinch(this.holder, {
+      place: x => this.place(x),
+      get px() { return chart.px },
+      hold: (values, at) => {
+        const range = held(values, at, this.plot.left, this.plot.right, !!this.x.log)
+        if (range) this.zoomTo(...range)
+      },
+    })
     if (data.grid) onTheme(() => this.draw())
     state.listen((now, before) => { if (now.shown !== before.shown && this.data.follow) this.mark() })
     this.draw()
@@ -317,9 +327,15 @@ export class Chart {
     else this.mark()
   }
 
+  /** Where along the picture a place on the screen lies. */
+  private place(clientX: number): number {
+    const r = this.picture.getBoundingClientRect()
+    return (clientX - r.left) * this.picture.viewBox.baseVal.width / Math.max(1, r.width)
+  }
+
   private listen() {
     const e = this.picture, p = this.plot
-    const place = (event: PointerEvent) => (event.clientX - e.getBoundingClientRect().left) * e.viewBox.baseVal.width / Math.max(1, e.getBoundingClientRect().width)
+    const place = (event: PointerEvent) => this.place(event.clientX)
     let from: number | null = null, box: SVGRectElement | null = null
     e.addEventListener('pointerdown', event => {
       const mode = (event.target as SVGElement).dataset?.mode
