@@ -13,14 +13,14 @@ import (
 // normal is a part of a flight in which a rotor's speed strays about a mean.
 type normal struct{ mean, deviation, share float64 }
 
-// flight is a speed of the first rotor with the share of the flight about it.
-type flight struct{ speed, share float64 }
+// flight is a speed of the first rotor with the share of the flight about it, and by how much it strays at least.
+type flight struct{ speed, share, stray float64 }
 
 func readFlown(list []any) []flight {
 	var out []flight
 	for _, x := range list {
 		m := x.(map[string]any)
-		out = append(out, flight{m["speed"].(stage.Quantity).SI, m["share"].(float64)})
+		out = append(out, flight{speed: m["speed"].(stage.Quantity).SI, share: m["share"].(float64)})
 	}
 	return out
 }
@@ -29,11 +29,11 @@ func readFlown(list []any) []flight {
 const quantile99 = 2.3263478740408408
 
 // fly says how the speed of each rotor is spread over a flight: as recorded,
-// else as told, else about its speed in this response. Parts of a rotor add up to 1.
+// else as told or as throttle made it, else about its speed in this response. Parts of a rotor add up to 1.
 func (f *fleet) fly(set settings, recorded *kinds.Spectra) error {
 	f.flown = nil
 	for k, x := range f.rotors {
-		if recorded != nil {
+		if recorded != nil && len(set.flown) == 0 {
 			n, err := asRecorded(x.Name, recorded)
 			if err != nil {
 				return err
@@ -43,7 +43,7 @@ func (f *fleet) fly(set settings, recorded *kinds.Spectra) error {
 		}
 		told := set.flown
 		if len(told) == 0 {
-			told = []flight{{f.speeds[0], 1}}
+			told = []flight{{speed: f.speeds[0], share: 1}}
 		}
 		total := 0.0
 		for _, y := range told {
@@ -52,7 +52,7 @@ func (f *fleet) fly(set settings, recorded *kinds.Spectra) error {
 		ratio := f.speeds[k] / f.speeds[0]
 		var parts []normal
 		for _, y := range told {
-			parts = append(parts, normal{y.speed * ratio, set.spread * y.speed * ratio, y.share / total})
+			parts = append(parts, normal{y.speed * ratio, max(set.spread*y.speed, y.stray) * ratio, y.share / total})
 		}
 		f.flown = append(f.flown, parts)
 	}
@@ -75,6 +75,10 @@ func asRecorded(rotor string, s *kinds.Spectra) (normal, error) {
 		}
 		n.deviation = max(n.deviation, 1e-3*n.mean) // a line of no width has no density
 		return n, nil
+	}
+	if len(names) == 0 && len(s.MapOf(0, kinds.MapThrottle)) > 0 {
+		return normal{}, fault.New(fault.Input, "the recording has throttle, but no rotor speeds").In("sweep", "rotor "+rotor).Of("recording").
+			Do("give speed_at_throttle, or name the columns of the speeds in rotors of record")
 	}
 	return normal{}, fault.New(fault.Input, "the recording has no speed of rotor %s, only of %v", rotor, names).In("sweep", "rotor "+rotor).Of("recording").
 		Do("name the columns of the speeds in rotors of record after the rotors of the airframe")
@@ -119,6 +123,8 @@ func (f *fleet) parts() []kinds.ResponseFlight {
 // flownNote says what the spectrum over a flight rests on.
 func flownNote(set settings, recorded bool) string {
 	switch {
+	case len(set.throttles) > 0:
+		return throttleNote(set, recorded)
 	case recorded:
 		return "rotor speeds over a flight are those of the recording"
 	case len(set.flown) > 0:

@@ -46,13 +46,17 @@ func outcome(r *kinds.Response, g given, set settings) *stage.Outcome {
 	if two := twoBladed(r); two != "" {
 		o.Notes = append(o.Notes, two)
 	}
-	o.Summary = []stage.Section{peakTable(r), sharesTable(r), axisTable(r), staticTable(r), pointTable(r)}
+	flown := ""
+	if len(r.Orders) > 0 {
+		flown = flownNote(set, g.recorded != nil)
+		o.Notes = append(o.Notes, flown)
+	}
+	o.Summary = []stage.Section{peakTable(r), sharesTable(r), axisTable(r, flown), staticTable(r), pointTable(r)}
 	if len(r.Lines) > 0 {
 		o.Summary = append(o.Summary, lineTable(r))
 	}
 	if len(r.Orders) > 0 {
 		o.Summary = append(o.Summary, mapTable(r))
-		o.Notes = append(o.Notes, flownNote(set, g.recorded != nil))
 	}
 	if len(r.Direct) > 0 {
 		o.Summary = append(o.Summary, directTable(r))
@@ -202,17 +206,21 @@ func makers(p kinds.ResponsePeak) string {
 	return strings.Join(parts, ", ")
 }
 
-func axisTable(r *kinds.Response) stage.Section {
+// axisTable gives the rates; flown says what the flight in it rests on.
+func axisTable(r *kinds.Response, flown string) stage.Section {
 	s := stage.Section{
 		Title: fmt.Sprintf("Gyro rate from %.4g to %.4g Hz", r.From, r.To),
 		Text: "root mean square under the assumed broadband source; with the lines of the rotors and the noise of the gyro as over a flight, spread over its rotor speeds; " +
 			"and the greatest change that the correction for modes left out makes",
 		Columns: []stage.Column{{Name: "axis"}, {Name: "rms, deg/s", Right: true}, {Name: "with lines, deg/s", Right: true}, {Name: "strongest peak, Hz", Right: true}, {Name: "static correction, dB", Right: true}},
 	}
+	if flown != "" {
+		s.Text += "; " + flown
+	}
 	for axis, x := range r.Axes {
-		flown := "–"
+		seen := "–"
 		if y := r.Flown[axis]; y != nil {
-			flown = fmt.Sprintf("%.3g", math.Sqrt(forced.MeanSquare(r.Frequency, y))/degree)
+			seen = fmt.Sprintf("%.3g", math.Sqrt(forced.MeanSquare(r.Frequency, y))/degree)
 		}
 		top, correction := "–", "–"
 		if p, ok := strongest(r, x.Axis); ok {
@@ -221,7 +229,7 @@ func axisTable(r *kinds.Response) stage.Section {
 		if !math.IsNaN(x.Correction) {
 			correction = fmt.Sprintf("%+.2f at %.1f Hz", x.Correction, x.CorrectionAt)
 		}
-		s.Rows = append(s.Rows, []string{x.Axis, fmt.Sprintf("%.3g", x.RMS/degree), flown, top, correction})
+		s.Rows = append(s.Rows, []string{x.Axis, fmt.Sprintf("%.3g", x.RMS/degree), seen, top, correction})
 	}
 	return s
 }

@@ -55,8 +55,9 @@ Lines come from unbalance (what the balance grade of each rotor permits, or a
 given one: a force at the hub that turns with the rotor), from thrust and side
 force that vary at blade passing, and from torque ripple; all grow with the
 square of speed. They are given at the speed of the rotors, over all speeds,
-and spread over the speeds of a flight, which a recording can tell: what a
-recorder would see of it, the noise of the gyro included.
+and spread over the speeds of a flight: what a recorder would see of it, the noise
+of the gyro included. A recording can tell the speeds, or the job: as speeds with
+their shares of the flight, or as throttles with the speed that each makes.
 
 Besides the rate of the gyro the response holds its rotation, the displacement and
 acceleration of named points, operating motions with their phase, what every mode
@@ -98,9 +99,19 @@ frequencies, and the difference is shown.`,
 					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: `"16000 rpm"`, Above: &zero},
 					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
 				}}}, Example: `[{ speed = "15000 rpm", share = 0.7 }, { speed = "19000 rpm", share = 0.3 }]`},
+			{Name: "throttle_flown", About: "throttles over a flight with the share of each, where speeds are not known; takes speed_at_throttle",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "throttle", About: "throttle, from 0 to 1", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.35", Min: &zero, Max: &one},
+					{Name: "share", About: "part of the flight, any unit", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.7", Above: &zero},
+				}}}, Example: `[{ throttle = 0.35, share = 0.7 }, { throttle = 0.6, share = 0.3 }]`},
+			{Name: "speed_at_throttle", About: "speed of the first rotor at some throttles, straight between them, for throttle_flown or for a recording that has throttle and no rotor speeds",
+				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
+					{Name: "throttle", About: "throttle, from 0 to 1", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.2", Min: &zero, Max: &one},
+					{Name: "speed", About: "speed of the first rotor there", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "9500 rpm", Above: &zero},
+				}}}, Example: `[{ throttle = 0.2, speed = "9500 rpm" }, { throttle = 0.7, speed = "24000 rpm" }]`},
 			{Name: "map_speeds", About: "number of even rotor speeds, up to the highest, of the maps over rotor speed",
 				Type: stage.Type{Kind: stage.Whole}, Default: 200.0, Example: "200", Min: &one, Max: &many},
-			{Name: "recording", About: "spectra from record, whose rotor speeds then say how a flight is spread over speeds",
+			{Name: "recording", About: "spectra from record, whose rotor speeds then say how a flight is spread over speeds; its throttle does, where speed_at_throttle is given",
 				Type: artifactOf("spectra")},
 			{Name: "gyro_noise", About: "assumed one-sided density of the gyro's own noise on each axis, in what a recorder sees of a flight",
 				Type:    stage.Type{Kind: stage.Amount, Dimension: "angular rate density", Unit: "(deg/s)2/Hz"},
@@ -160,6 +171,8 @@ type settings struct {
 	rippleOrder    float64
 	spread         float64
 	flown          []flight
+	throttles      []throttled // over a flight, as told or recorded
+	curve          curve
 	noise          float64 // of the gyro, (rad/s)²/Hz
 	points         []pointAt
 	checkAt        []float64
@@ -182,7 +195,11 @@ func read(a stage.Arguments) (settings, error) {
 		s.unbalance = a.SI("unbalance")
 	}
 	s.flown, s.noise = readFlown(a.List("speeds_flown")), a.SI("gyro_noise")
+	s.throttles = readThrottles(a.List("throttle_flown"))
 	var err error
+	if s.curve, err = readCurve(a.List("speed_at_throttle")); err != nil {
+		return s, err
+	}
 	if s.points, err = readPoints(a.List("points")); err != nil {
 		return s, err
 	}
@@ -237,6 +254,9 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	}
 	given, err := readGiven(call, set)
 	if err != nil {
+		return nil, err
+	}
+	if err := set.steer(given.recorded); err != nil {
 		return nil, err
 	}
 	r, err := respond(ctx, basis, props, given, set, call.Threads, call.Report)
