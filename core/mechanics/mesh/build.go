@@ -50,6 +50,9 @@ const (
 // mostCorners bounds the corner nodes of a plate: no solver of this program could use more.
 const mostCorners = 300_000
 
+// mostSnap bounds how far an outline of a patch may be moved, m: however large the elements, patches keep their shape.
+const mostSnap = 1e-4
+
 // linear is the element type that gets no rows.
 const linear = "linear-triangle"
 
@@ -182,7 +185,7 @@ func plateMesh(ctx context.Context, g *airframe.Geometry, i int, o Options) (*pl
 		Size:    func(outline.Point) float64 { return size },
 		Lines:   lines,
 		PerTurn: o.PerTurn,
-		Snap:    size / 100,
+		Snap:    min(size/100, mostSnap),
 
 		MaxVertices: mostCorners,
 		Stop:        ctx.Err,

@@ -273,3 +273,26 @@ func BenchmarkBuild(b *testing.B) {
 		}
 	}
 }
+
+// Elements larger than the frame leave patches and outlines as they are.
+func TestHugeElementsKeepTheGeometry(t *testing.T) {
+	fine, huge := build(t, small(), plain), build(t, small(), mesh.Options{Size: 1, Element: "quadratic-triangle"})
+	for k := range fine.Patches {
+		if a, b := extent(fine, k), extent(huge, k); math.Abs(a/b-1) > 1e-3 {
+			t.Errorf("patch %s reaches %g m from its middle, %g m with huge elements", fine.Patches[k].Name, a, b)
+		}
+	}
+}
+
+// extent is the distance of the farthest node of a patch from its centre.
+func extent(m *mesh.Mesh, patch int) float64 {
+	far := 0.0
+	for _, n := range m.Patches[patch].Nodes {
+		var d airframe.Vec
+		for c := range d {
+			d[c] = m.Nodes[n][c] - m.Patches[patch].Centre[c]
+		}
+		far = max(far, math.Sqrt(dot(d, d)))
+	}
+	return far
+}
