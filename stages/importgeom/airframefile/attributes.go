@@ -37,6 +37,7 @@ var (
 	anyNumber   = bound{}
 	positive    = bound{"must be positive", func(x float64) bool { return x > 0 }}
 	notNegative = bound{"must not be negative", func(x float64) bool { return x >= 0 }}
+	lossy       = bound{"must lie between 0 and 3; 20 % is 0.2", func(x float64) bool { return x >= 0 && x <= 3 }} // of what yields most, by far
 	share       = bound{"must lie between 0 and 1", func(x float64) bool { return x >= 0 && x <= 1 }}
 )
 

@@ -47,7 +47,7 @@ func (b *block) joint() Joint {
 // lossAndRange reads the loss factor and the range of a common factor on the stiffness, by low and high or by one
 // factor either way.
 func (b *block) lossAndRange() (loss, low, high float64) {
-	loss = b.amount("loss_factor", "number", notNegative).Value
+	loss = b.amount("loss_factor", "number", lossy).Value
 	low, high = b.amount("low", "number", positive).Value, b.amount("high", "number", positive).Value
 	factor := b.amount("within_factor", "number", bound{"must be 1 or more", func(x float64) bool { return x >= 1 }})
 	switch {

@@ -88,15 +88,15 @@ func (b *block) mountLoss(m *Mount) {
 		return
 	}
 	if v.Type() == cty.Number {
-		if x, ok := b.amountOf("loss_factor", v, at, "number", notNegative); ok {
+		if x, ok := b.amountOf("loss_factor", v, at, "number", lossy); ok {
 			m.Loss = [6]float64{x, x, x, x, x, x}
 		}
 		return
 	}
 	all := b.amountsOf("loss_factor", v, at, []string{"number"}, 3, 6)
 	for _, x := range all {
-		if x < 0 {
-			b.fail(at, "loss_factor is %g and must not be negative", x)
+		if !lossy.holds(x) {
+			b.fail(at, "loss_factor is %g and %s", x, lossy.text)
 			return
 		}
 	}
