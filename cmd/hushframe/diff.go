@@ -3,6 +3,7 @@ package main
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 
 	"github.com/spf13/cobra"
@@ -25,6 +26,7 @@ out when it is that of the first: "@NAME". Runs may lie in two stores.`
 
 func (a *app) diffCommand() *cobra.Command {
 	var asJSON bool
+	var page string
 	c := &cobra.Command{
 		Use:   "diff RUN [RUN]",
 		Short: "Say what changed from one run to another: modes, response, mass, requirements",
@@ -45,12 +47,18 @@ Exit codes:
 		Example: `  hushframe diff revision-a.hcl revision-b.hcl
   hushframe run job.hcl --name before
   hushframe run job.hcl --set arm_thickness=6mm
-  hushframe diff job.hcl@before job.hcl`,
+  hushframe diff job.hcl@before job.hcl --page change.html`,
 		Args:              wants(1, 2, "one run or two are wanted: the state before, and the one after"),
 		ValidArgsFunction: completeJob,
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write the result as one JSON object")
+	c.Flags().StringVar(&page, "page", "", `also write it as a page that opens without a network, such as "change.html"; its tables go beside it`)
 	c.RunE = func(_ *cobra.Command, args []string) error {
+		if page != "" {
+			if err := checkPage(page); err != nil {
+				return err
+			}
+		}
 		runs, err := a.bothRuns(args)
 		if err != nil {
 			return err
@@ -63,6 +71,12 @@ Exit codes:
 			err = d.writeJSON(a.out)
 		} else {
 			a.showDifference(d)
+		}
+		if err == nil && page != "" {
+			var beside int
+			if beside, err = d.writePage(page); err == nil && !asJSON {
+				fmt.Fprintf(a.out, "\nwrote %s (and %s beside it)\n", page, count(beside, "file", "files"))
+			}
 		}
 		if err != nil {
 			return err
@@ -206,15 +220,7 @@ func between(runs [2]*storedRun) (*differences, error) {
 
 // showDifference writes a difference for people.
 func (a *app) showDifference(d *differences) {
-	heads := stage.Section{Title: "Runs", Columns: []stage.Column{{Name: ""}, {Name: "run"}, {Name: "id"}, {Name: "job"}}}
-	for k, side := range []string{"before", "after"} {
-		r := d.runs[k]
-		heads.Rows = append(heads.Rows, []string{side, r.words, shortRun(r.record.ID), r.account.Job})
-	}
-	if d.runs[0].record.ID == d.runs[1].record.ID {
-		heads.Text = "They are the same: made of the same, with the same result."
-	}
-	writeSection(a.out, heads)
+	writeSection(a.out, d.heads())
 	for _, f := range d.frames {
 		more := ""
 		if len(d.frames) > 1 {
@@ -226,7 +232,31 @@ func (a *app) showDifference(d *differences) {
 		}
 		a.differenceStrips(f.Difference, more)
 	}
-	a.requirementChanges(d.account.Verdicts)
+	for _, s := range d.rest() {
+		writeSection(a.out, s)
+	}
+	for _, note := range d.notes {
+		fmt.Fprintf(a.out, "\n%s\n", note)
+	}
+	fmt.Fprintf(a.out, "\n%s\n", d.closing())
+}
+
+// heads says which runs are compared.
+func (d *differences) heads() stage.Section {
+	heads := stage.Section{Title: "Runs", Columns: []stage.Column{{Name: ""}, {Name: "run"}, {Name: "id"}, {Name: "job"}}}
+	for k, side := range []string{"before", "after"} {
+		r := d.runs[k]
+		heads.Rows = append(heads.Rows, []string{side, r.words, shortRun(r.record.ID), r.account.Job})
+	}
+	if d.runs[0].record.ID == d.runs[1].record.ID {
+		heads.Text = "They are the same: made of the same, with the same result."
+	}
+	return heads
+}
+
+// rest tells of requirements whose state or value differs, and of what else does; tables without rows are left out.
+func (d *differences) rest() []stage.Section {
+	out := []stage.Section{requirementChanges(d.account.Verdicts)}
 	for _, x := range []struct {
 		title, name string
 		pairs       []account.Pair
@@ -250,14 +280,9 @@ func (a *app) showDifference(d *differences) {
 			}
 			section.Rows = append(section.Rows, row)
 		}
-		if len(section.Rows) > 0 {
-			writeSection(a.out, section)
-		}
+		out = append(out, section)
 	}
-	for _, note := range d.notes {
-		fmt.Fprintf(a.out, "\n%s\n", note)
-	}
-	fmt.Fprintf(a.out, "\n%s\n", d.closing())
+	return slices.DeleteFunc(out, func(s stage.Section) bool { return len(s.Rows) == 0 })
 }
 
 // differenceStrips draws both responses, the axes one below the other.
@@ -277,7 +302,7 @@ func (a *app) differenceStrips(d *kinds.Difference, more string) {
 }
 
 // requirementChanges lists the requirements whose state or value differs.
-func (a *app) requirementChanges(verdicts []account.VerdictPair) {
+func requirementChanges(verdicts []account.VerdictPair) stage.Section {
 	section := stage.Section{Title: "Requirements before and after", Columns: []stage.Column{{Name: "requirement"}, {Name: "before"}, {Name: "after"},
 		{Name: "value", Right: true}, {Name: "now", Right: true}, {Name: "margin", Right: true}, {Name: "now", Right: true}}}
 	for _, v := range verdicts {
@@ -286,9 +311,7 @@ func (a *app) requirementChanges(verdicts []account.VerdictPair) {
 		}
 		section.Rows = append(section.Rows, []string{v.Name, v.State[0], v.State[1], v.Value[0], v.Value[1], v.Margin[0], v.Margin[1]})
 	}
-	if len(section.Rows) > 0 {
-		writeSection(a.out, section)
-	}
+	return section
 }
 
 // closing sums up in a line or two.

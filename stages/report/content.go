@@ -27,6 +27,7 @@ type content struct {
 	identified *kinds.Identified
 	difference *kinds.Difference
 	transfer   *kinds.Transfer
+	changes    *Changes
 	run        *account.Account
 	sources    []kinds.DocumentSource
 

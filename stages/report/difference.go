@@ -8,9 +8,9 @@ import (
 	"hushframe/stages/report/draw"
 )
 
-// differenceSection shows what a change did: levels first, then modes, peaks, lines and masses.
-func differenceSection(c *content) *section {
-	d := c.difference
+// differenceSection shows what a change did: levels first, then modes, peaks, lines and masses. Each chart is handed to name
+// first, unless that is nil.
+func differenceSection(c *content, d *kinds.Difference, name func(*draw.Chart)) *section {
 	s := &section{ID: "difference", Title: "What the change did"}
 	s.text("The frame before and after a change. Levels are compared as the root mean square of the gyro rate under the broadband source; +6\u00a0dB is twice. " +
 		"A mode is the same on both sides when their shapes are: the modal assurance criterion, weighted with the mass, is 1 for equal shapes and near 0 for different modes.")
@@ -20,6 +20,9 @@ func differenceSection(c *content) *section {
 	if d.Frequency != nil {
 		for axis := range kinds.AxisNames {
 			if ch := differenceChart(d, axis); ch.Fit() {
+				if name != nil {
+					name(ch)
+				}
 				s.heading(ch.Title)
 				s.chart(c, ch, "")
 			}

@@ -65,6 +65,9 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	if p.Title == "" {
 		p.Title = "Vibration report"
 	}
+	if x := c.changes; x != nil {
+		p.About, p.Verdict = x.About, changedBanner(x)
+	}
 	p.Findings = findings(c)
 	add := func(s *section) {
 		if s != nil && len(s.Blocks) > 0 {
@@ -74,6 +77,11 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	glance := &section{ID: "glance", Title: "At a glance"}
 	glance.table(glanceTable(c))
 	add(glance)
+	if c.changes != nil {
+		for _, s := range changedSections(c) {
+			add(s)
+		}
+	}
 	add(frameSection(c))
 	add(modesSection(c))
 	add(responseSection(c))
@@ -88,7 +96,7 @@ func compose(c *content, title, name string) (*kinds.Document, error) {
 	}
 	add(filteredSection(c))
 	if c.difference != nil {
-		add(differenceSection(c))
+		add(differenceSection(c, c.difference, nil))
 	}
 	if c.verified != nil {
 		add(verificationSection(c.verified))

@@ -37,7 +37,7 @@ func (r *runner) publish(s *plan.Step, p *prepared, result *Step) error {
 		files := stage.NewFiles(r.Plan.Job.Folder)
 		for _, n := range names {
 			name := path.Join(path.Dir(target), n)
-			if err := publishFile(files.Path(name), a.Files[n]); err != nil {
+			if err := PublishFile(files.Path(name), a.Files[n]); err != nil {
 				return fault.New(fault.Input, "%v", err).In("write", name).Of(o.Publish).Do("give a path that can be written")
 			}
 			if n == path.Base(target) { // the main file first
@@ -50,8 +50,8 @@ func (r *runner) publish(s *plan.Step, p *prepared, result *Step) error {
 	return nil
 }
 
-// publishFile writes a file whole or not at all, unless it is there already.
-func publishFile(to string, data []byte) error {
+// PublishFile writes a file whole or not at all, unless it is there already.
+func PublishFile(to string, data []byte) error {
 	if old, err := os.ReadFile(to); err == nil && bytes.Equal(old, data) {
 		return nil
 	}
