@@ -1,8 +1,11 @@
 package sandpiper
 
 import (
+	"math"
 	"path/filepath"
 	"testing"
+
+	"hushframe/stages/kinds"
 )
 
 // TestAnotherFrame runs a frame of another layout, one plate and six rotors,
@@ -15,6 +18,23 @@ func TestAnotherFrame(t *testing.T) {
 	}
 	if n := len(m.Survey.Rotors); n != 6 {
 		t.Errorf("%d rotors", n)
+	}
+	// The throttle of the job is 7550 rpm for four fifths of the flight, 0.4 lying 5/6 of the way from 3800 to 8300 rpm, and
+	// 8300 + 2/11 · 5700 rpm for the rest.
+	a, err := d.Artifact("flight", "response")
+	if err != nil {
+		t.Fatal(err)
+	}
+	r, err := kinds.DecodeResponse(a)
+	if err != nil {
+		t.Fatal(err)
+	}
+	mean := 0.0
+	for _, x := range r.Flight {
+		mean += x.Share * x.Speed * 30 / math.Pi
+	}
+	if want := 0.8*7550 + 0.2*(8300+5700.0*2/11); math.Abs(mean/want-1) > 1e-9 {
+		t.Errorf("a mean speed of %g rpm over the flight, want %g", mean, want)
 	}
 	// Turned by 180 degrees about z the frame is itself, but for its rectangular
 	// battery and stack, which are too: every mode is even or odd, and so turns
