@@ -57,6 +57,11 @@ func (r row) knowable() bool {
 	return !(r.bestFrequency > rightFrequency) && !(r.bestDamping > rightDamping)
 }
 
+// needs tells how many times as long a recording would have to be at least to know the mode to within the limits.
+func (r row) needs() float64 {
+	return math.Pow(max(r.bestFrequency/rightFrequency, r.bestDamping/rightDamping), 2)
+}
+
 // said tells whether what was found is within twice its own errors.
 func (r row) said() bool {
 	m := r.found
@@ -75,6 +80,7 @@ func (r row) angle() float64 {
 
 // verdict is what was found against the truth.
 type verdict struct {
+	seconds float64                // that were recorded
 	rows    []row                  // true modes within the band that are seen, or found
 	unknown []kinds.IdentifiedMode // told as structure, but none of the truth
 	orders  []kinds.IdentifiedMode // those of them that lie where a rotor order is
@@ -101,7 +107,7 @@ func judge(t *truth, x *kinds.Identified) verdict {
 		}
 	}
 	partner := make([]*kinds.IdentifiedMode, len(t.Modes))
-	var v verdict
+	v := verdict{seconds: x.End - x.Start}
 	for k, i := range match.Assign(cost, len(found), len(t.Modes), 1e6) {
 		if i >= 0 {
 			partner[i] = &found[k]
@@ -199,7 +205,7 @@ func (v verdict) print(w io.Writer) {
 		if m == nil {
 			word := "missed"
 			if !r.knowable() {
-				word = "not knowable"
+				word = fmt.Sprintf("not knowable in less than %.0f s", v.seconds*r.needs())
 			}
 			fmt.Fprintf(t, "–\t\t\t\t\t\t\t%s\t\n", word)
 			continue

@@ -60,7 +60,7 @@ func TestJudge(t *testing.T) {
 	var text bytes.Buffer
 	first.print(&text)
 	for _, want := range []string{"missed", "off", "none of the truth: 150.0 Hz", "4 true modes are seen, 2 of them found; 3 can be known from this recording to 1 % and 30 % of damping, 2 of them found",
-		"of the modes told 0 are right, 2 off (0 of them by less than twice their own errors), 2 false, 1 of these at a rotor order", "not knowable", "±0.95"} {
+		"of the modes told 0 are right, 2 off (0 of them by less than twice their own errors), 2 false, 1 of these at a rotor order", "not knowable in less than 272 s", "±0.95"} {
 		if !strings.Contains(text.String(), want) {
 			t.Errorf("%q is missing in\n%s", want, text.String())
 		}
