@@ -86,7 +86,8 @@ func TestStills(t *testing.T) {
 	if err := addStills(d, c, []string{"svg", "png"}); err != nil {
 		t.Fatal(err)
 	}
-	if len(d.Files) != files+2*len(got) || len(d.Files["page-charts/energy.png"]) < 1000 || !strings.Contains(string(d.Files["page-charts/response-roll.svg"]), "95 % confidence") {
+	if len(d.Files) != files+2*len(got) || len(d.Files["page-charts/energy.png"]) < 1000 || !strings.Contains(string(d.Files["page-charts/response-roll.svg"]), "95 % confidence") ||
+		!strings.Contains(string(d.Files["page-charts/response-roll.svg"]), "Gyro rate on roll") {
 		t.Errorf("%d files became %d with %d charts", files, len(d.Files), len(got))
 	}
 	if err := addStills(d, c, []string{"svg"}); err == nil {

@@ -215,25 +215,30 @@ func TestTurnedParquet(t *testing.T) {
 	}
 }
 
-// A schema of many nested groups, and a metadata of endless lists, end with an *Error.
+// A schema of many nested groups, one so deep that its metadata is refused unread, and a metadata of endless lists, end
+// with an *Error.
 func TestHostileSchema(t *testing.T) {
-	for name, metadata := range map[string][]byte{
-		// Thrift's compact form: field 2, a list of a million schema elements, each a group of one child.
-		"nested": func() []byte {
-			out := []byte{0x15, 2, 0x19, 0xfc}
-			out = binary.AppendUvarint(out, 300000)
-			for range 300000 {
-				out = append(out, 0x48, 1, 'a', 0x15, 2, 0) // name, num_children = 1
-			}
-			return append(out, 0x16, 0, 0x19, 0x0c, 0)
-		}(),
-		"claims": {0x15, 2, 0x19, 0xfc, 0xff, 0xff, 0xff, 0xff, 0x07, 0},
+	// Thrift's compact form: field 2, a list of schema elements, each a group of one child.
+	nested := func(depth uint64) []byte {
+		out := binary.AppendUvarint([]byte{0x15, 2, 0x19, 0xfc}, depth)
+		for range depth {
+			out = append(out, 0x48, 1, 'a', 0x15, 2, 0) // name, num_children = 1
+		}
+		return append(out, 0x16, 0, 0x19, 0x0c, 0)
+	}
+	for name, c := range map[string]struct {
+		metadata []byte
+		want     string
+	}{
+		"nested": {nested(300_000), "damaged"},
+		"deep":   {nested(1_500_000), "the file claims 9000012 bytes of metadata"},
+		"claims": {[]byte{0x15, 2, 0x19, 0xfc, 0xff, 0xff, 0xff, 0xff, 0x07, 0}, "damaged"},
 	} {
-		data := append([]byte(parquetMark), metadata...)
-		data = append(binary.LittleEndian.AppendUint32(data, uint32(len(metadata))), parquetMark...)
+		data := append([]byte(parquetMark), c.metadata...)
+		data = append(binary.LittleEndian.AppendUint32(data, uint32(len(c.metadata))), parquetMark...)
 		_, err := Parquet{}.Inspect(context.Background(), bytes.NewReader(data), nil)
 		var e *recording.Error
-		if !errors.As(err, &e) {
+		if !errors.As(err, &e) || !strings.Contains(e.Text, c.want) {
 			t.Errorf("%s: %v", name, err)
 		}
 	}
