@@ -27,26 +27,56 @@ func cutCost(a, b, s float64) float64 {
 	return s / a / b
 }
 
-// bisect looks for a cheap separator: the best few of all sweeps, improved by local moves.
-func bisect(g *graph, places [][3]float64) *bisection {
-	const keep = 3
-	var cuts []*bisection
-	for _, line := range lines(g, places) {
-		cuts = append(cuts, sweep(g, line)...)
+// sides returns the side of each vertex as a number.
+func (b *bisection) sides() []int32 {
+	out := make([]int32, len(b.side))
+	for v, s := range b.side {
+		out[v] = int32(s)
 	}
-	slices.SortStableFunc(cuts, func(a, b *bisection) int { return cmp.Compare(a.cost(), b.cost()) })
-	cuts = cuts[:min(keep, len(cuts))]
-	for _, b := range cuts {
-		b.improve(g)
-	}
-	return slices.MinFunc(cuts, func(a, b *bisection) int { return cmp.Compare(a.cost(), b.cost()) })
+	return out
 }
 
-// sweep returns the two cheapest bisections along a line of all vertices: one whose separator is the last vertices
-// before a cut that have neighbours after it, one with the first vertices after a cut that have neighbours before it.
+// cut is a place to divide a line of all vertices, and what that costs.
+type cut struct {
+	line []int32
+	at   int
+	// first says that the separator is the last vertices before the cut, else the first after it.
+	first bool
+	cost  float64
+}
+
+// bisect looks for a cheap separator: the best few of the cuts along lines of all vertices, improved by local moves.
+func bisect(g *graph, lines [][]int32) *bisection {
+	const keep = 3
+	var cuts []cut
+	for _, line := range lines {
+		cuts = append(cuts, sweep(g, line)...)
+	}
+	if len(cuts) == 0 {
+		// Every vertex is next to every other: both sides stay empty, and the caller sees that.
+		b := &bisection{side: slices.Repeat([]int8{between}, g.order())}
+		for _, w := range g.weight {
+			b.weight[between] += float64(w)
+		}
+		return b
+	}
+	slices.SortStableFunc(cuts, func(a, b cut) int { return cmp.Compare(a.cost, b.cost) })
+	var best *bisection
+	for _, c := range cuts[:min(keep, len(cuts))] {
+		b := c.divide(g)
+		b.improve(g)
+		if best == nil || b.cost() < best.cost() {
+			best = b
+		}
+	}
+	return best
+}
+
+// sweep returns the two cheapest cuts of a line of all vertices: one whose separator is the last vertices before it
+// that have neighbours after it, one with the first vertices after it that have neighbours before it.
 // A vertex at place r with neighbours up to place f is in the separators of the first kind of the cuts in (r, f], so one
 // pass over the differences gives all weights.
-func sweep(g *graph, line []int32) []*bisection {
+func sweep(g *graph, line []int32) []cut {
 	n := len(line)
 	place := make([]int32, n)
 	for k, v := range line {
@@ -70,53 +100,39 @@ func sweep(g *graph, line []int32) []*bisection {
 		right[lo+1] += weight
 		right[r+1] -= weight
 	}
-	best := [2]int{-1, -1}
-	cost := [2]float64{math.Inf(1), math.Inf(1)}
+	best := [2]cut{{line, 0, true, math.Inf(1)}, {line, 0, false, math.Inf(1)}}
 	before, l, r := 0.0, 0.0, 0.0
 	for c := 1; c < n; c++ {
 		before += float64(g.weight[line[c-1]])
 		l += left[c]
 		r += right[c]
-		if v := cutCost(before-l, total-before, l); v < cost[0] {
-			best[0], cost[0] = c, v
+		if v := cutCost(before-l, total-before, l); v < best[0].cost {
+			best[0].at, best[0].cost = c, v
 		}
-		if v := cutCost(before, total-before-r, r); v < cost[1] {
-			best[1], cost[1] = c, v
+		if v := cutCost(before, total-before-r, r); v < best[1].cost {
+			best[1].at, best[1].cost = c, v
 		}
 	}
-	var out []*bisection
-	for kind, c := range best {
-		if c < 0 {
-			continue
-		}
-		b := &bisection{side: make([]int8, n)}
-		for v := range int32(n) {
-			first := int(place[v]) < c
-			if !first {
-				b.side[v] = 1
-			}
-			if first != (kind == 0) {
-				continue
-			}
-			for _, w := range g.near(v) {
-				if (int(place[w]) < c) != first {
-					b.side[v] = between
-					break
-				}
-			}
-		}
-		for v, s := range b.side {
-			b.weight[s] += float64(g.weight[v])
-		}
-		out = append(out, b)
+	return slices.DeleteFunc(best[:], func(c cut) bool { return c.at == 0 })
+}
+
+// divide makes the bisection of a cut.
+func (c *cut) divide(g *graph) *bisection {
+	before := make([]bool, len(c.line))
+	for _, v := range c.line[:c.at] {
+		before[v] = true
 	}
-	if len(out) == 0 {
-		// Every vertex is next to every other: one side stays empty, and the caller sees that.
-		b := &bisection{side: slices.Repeat([]int8{between}, n)}
-		b.weight[between] = total
-		out = append(out, b)
+	b := &bisection{side: make([]int8, len(c.line))}
+	for v, first := range before {
+		if !first {
+			b.side[v] = 1
+		}
+		if first == c.first && slices.ContainsFunc(g.near(int32(v)), func(w int32) bool { return before[w] != first }) {
+			b.side[v] = between
+		}
+		b.weight[b.side[v]] += float64(g.weight[v])
 	}
-	return out
+	return b
 }
 
 // improve moves vertices out of the separator as long as that helps, in the manner of C. Fiduccia and R. Mattheyses (A
@@ -236,49 +252,4 @@ func (b *bisection) pass(g *graph) {
 		b.weight[u.side] += float64(g.weight[u.vertex])
 		b.side[u.vertex] = u.side
 	}
-}
-
-// directions are the axes, the diagonals of the horizontal plane and the principal axis of the places.
-func directions(g *graph, places [][3]float64) [][3]float64 {
-	out := [][3]float64{{1, 0, 0}, {0, 1, 0}, {0, 0, 1}, {1, 1, 0}, {1, -1, 0}}
-	var mean [3]float64
-	total := 0.0
-	for v, x := range places {
-		w := float64(g.weight[v])
-		total += w
-		for c := range 3 {
-			mean[c] += w * x[c]
-		}
-	}
-	for c := range 3 {
-		mean[c] /= total
-	}
-	var m [3][3]float64
-	for v, x := range places {
-		w := float64(g.weight[v])
-		for a := range 3 {
-			for b := range 3 {
-				m[a][b] += w * (x[a] - mean[a]) * (x[b] - mean[b])
-			}
-		}
-	}
-	axis := [3]float64{1, 0.618, 0.414}
-	for range 50 {
-		var y [3]float64
-		norm := 0.0
-		for a := range 3 {
-			for b := range 3 {
-				y[a] += m[a][b] * axis[b]
-			}
-			norm += y[a] * y[a]
-		}
-		if norm == 0 {
-			return out
-		}
-		norm = math.Sqrt(norm)
-		for a := range 3 {
-			axis[a] = y[a] / norm
-		}
-	}
-	return append(out, axis)
 }

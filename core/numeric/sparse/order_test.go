@@ -191,7 +191,7 @@ func TestOrderTakesTheCheaper(t *testing.T) {
 		}
 		// Merged supernodes make the count at hand differ a little from that compared. Where there is little to do,
 		// finding a better order is not worth it.
-		little := flops[0] <= 2e5*float64(q.p.N)
+		little := flops[0] <= 4e4*float64(q.p.N)
 		if best := min(flops[1], flops[2]); flops[0] > 1.02*best && !little || flops[0] > 1.5*best {
 			t.Errorf("%s: operations %.3g, of dissection and degree %.3g", q.name, flops[0], flops[1:])
 		}

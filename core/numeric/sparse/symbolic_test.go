@@ -92,7 +92,7 @@ func TestBisectionSeparates(t *testing.T) {
 		}
 	}
 	c := compress(NewAssembler(n*n, elements).Pattern())
-	b := bisect(&c.graph, places)
+	b := bisect(&c.graph, stretched(places))
 	var weight [3]float64
 	for v, s := range b.side {
 		weight[s] += float64(c.weight[v])
