@@ -2,6 +2,7 @@ package identify
 
 import (
 	"math"
+	"slices"
 
 	"hushframe/core/signal/identify"
 	"hushframe/core/signal/order"
@@ -57,10 +58,12 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 		return out, nil
 	}
 	// One Hz is fine beside the width of a band, and a line is as wide as the inverse of its span.
-	margin := 1.0
-	if r.Found {
-		// A speed that is not known to a fraction of the inverse span gives no angle to take an order out by.
-		set.remove, margin = false, 2
+	margin, sure := 1.0, sureRotors(r, len(turning))
+	if !slices.Contains(sure, true) {
+		set.remove = false
+	}
+	if slices.Contains(sure, false) {
+		margin = 2
 	}
 	bands := order.Bands(turning, order.Settings{Orders: set.orders, Rate: timing.Rate, Step: 1, Margin: margin})
 	power := make([][][]float64, len(axes.Values)) // channel, rotor, order
@@ -70,14 +73,23 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 			power[c][k] = make([]float64, len(set.orders))
 		}
 	}
-	rest := identify.Record{Rate: timing.Rate}
+	rest, told := identify.Record{Rate: timing.Rate}, identify.Record{Rate: timing.Rate}
 	for i, run := range timing.Runs {
-		var speeds [][]float64
-		for _, rotor := range turning {
+		var speeds, known [][]float64
+		for k, rotor := range turning {
 			speeds = append(speeds, rotor.Speed[run.First:run.End])
+			if sure[k] {
+				known = append(known, rotor.Speed[run.First:run.End])
+			}
 		}
 		taken := order.Remove(out.record.Runs[i], speeds, order.RemoveSettings{Rate: timing.Rate, Orders: set.orders, Span: set.span, Threads: threads})
 		rest.Runs = append(rest.Runs, taken.Rest)
+		if set.remove && len(known) < len(turning) {
+			only := order.Remove(out.record.Runs[i], known, order.RemoveSettings{Rate: timing.Rate, Orders: set.orders, Span: set.span, Threads: threads})
+			told.Runs = append(told.Runs, only.Rest)
+		} else {
+			told.Runs = append(told.Runs, taken.Rest)
+		}
 		for c := range power {
 			for k := range turning {
 				for n := range set.orders {
@@ -93,9 +105,10 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 	for n, multiple := range set.orders {
 		there, disturbs := false, !set.remove
 		for c := range power {
-			held, noise, rest := 0.0, 0.0, 0.0
+			held, noise, rest, stays := 0.0, 0.0, 0.0, 0.0
 			for k, rotor := range turning {
 				held += power[c][k][n]
+				stays += remaining(r, sure, k, multiple) * power[c][k][n]
 				for b, band := range bands {
 					if band.Rotor == rotor.Name && band.Order == multiple {
 						noise += band.Share * floor[c][b] * 2 / set.span
@@ -104,7 +117,7 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 				}
 			}
 			there = there || held > seenOver*noise
-			disturbs = disturbs || remains*held > disturbing*rest
+			disturbs = disturbs || stays > disturbing*rest
 		}
 		for _, b := range bands {
 			if b.Order != multiple || !there {
@@ -120,16 +133,47 @@ func takeOut(r *gather.Recording, axes gather.Series, timing recording.Timing, s
 	if !set.remove {
 		return out, nil
 	}
-	out.record, out.span = rest, set.span
-	out.left = left(turning, set, timing.Rate)
+	out.record, out.span = told, set.span
+	var known []order.Rotor
+	for k, rotor := range turning {
+		if sure[k] {
+			known = append(known, rotor)
+		}
+	}
+	out.left = left(known, set, timing.Rate)
 	for c, channel := range r.Plan.Axes {
 		for k, rotor := range turning {
+			if !sure[k] {
+				continue
+			}
 			for n, multiple := range set.orders {
 				out.removed = append(out.removed, kinds.RemovedOrder{Axis: channel.Name, Rotor: rotor.Name, Order: multiple, MeanSquare: power[c][k][n]})
 			}
 		}
 	}
 	return out, nil
+}
+
+// sureRotors tells by rotor whether its angle is known: a speed that was followed in the signal gives none unless it was sharpened.
+func sureRotors(r *gather.Recording, count int) []bool {
+	out := make([]bool, count)
+	for k := range out {
+		out[k] = !r.Found || r.Sharp != nil && r.Sharp[k].Sure
+	}
+	return out
+}
+
+// remaining is the power of an order that stays, over that taken out: an angle that is off by a standard error of e rad leaves 1-exp(-(n·e)²) of
+// the power of its order n.
+func remaining(r *gather.Recording, sure []bool, rotor int, n float64) float64 {
+	switch {
+	case !sure[rotor]:
+		return 1
+	case r.Sharp == nil:
+		return remains
+	}
+	off := n * r.Sharp[rotor].PhaseError
+	return max(remains, math.Expm1(off*off))
 }
 
 // left tells what share of the noise is left at a frequency where orders were taken out.

@@ -43,8 +43,9 @@ if the spectra need it much, or need it and it stays over two fifths of the mode
 its frequency is sure to 1 %, its damping to 30 % and its direction to 15 deg, and
 to half as much again when larger models may disagree. The errors told allow for both.
 Poles where a rotor order is or was, and lines that are steady in amplitude, are
-told apart from structure. Where speeds are followed in the signal (find_rotors),
-orders are only told apart.
+told apart from structure. Speeds that are followed in the signal (find_rotors) are
+sharpened by the phase of their own orders first; where that fails, orders are only told
+apart.
 
 The frame is taken to be driven by broadband force. In flight, the loop of the
 control changes what is seen near and below its bandwidth.`,
@@ -146,7 +147,11 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 		return nil, err
 	}
 	call.Report.Progress("rotor orders", -1)
-	r.FindRotors(axes, timing, call.Threads)
+	sharpen := set.orders
+	if !set.remove {
+		sharpen = nil
+	}
+	r.FindRotors(axes, timing, sharpen, set.span, call.Threads)
 	lines, err := takeOut(r, axes, timing, set, call.Threads)
 	if err != nil {
 		return nil, gather.Explain(refuse(err), set.File)
@@ -169,7 +174,11 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if _, err := artifact.Write(call.Outputs["identified"], kinds.EncodeIdentified(content)); err != nil {
 		return nil, err
 	}
-	return outcome(content, r.Notes(), r.Warnings("identify", axes, timing), set), nil
+	notes := r.Notes()
+	if r.Sharp != nil && len(lines.removed) > 0 {
+		notes = append(notes, together(lines.turning, set.span)...)
+	}
+	return outcome(content, notes, r.Warnings("identify", axes, timing), set), nil
 }
 
 func refuse(err error) error {

@@ -1,6 +1,7 @@
 package identify
 
 import (
+	"fmt"
 	"math"
 
 	"hushframe/core/signal/identify"
@@ -16,10 +17,13 @@ const trackPoints = 600
 // tracks thins the speeds of the rotors to means over equal parts of the time.
 func tracks(r *gather.Recording, lines *orders, times []float64) []kinds.RotorTrack {
 	var out []kinds.RotorTrack
-	for _, rotor := range lines.turning {
-		t := kinds.RotorTrack{Rotor: rotor.Name, Source: kinds.TrackRecorded, Time: []float64{}, Speed: []float64{}}
+	for k, rotor := range lines.turning {
+		t := kinds.RotorTrack{Rotor: rotor.Name, Source: kinds.TrackRecorded, Time: []float64{}, Speed: []float64{}, SpeedError: math.NaN()}
 		if r.Found {
 			t.Source = kinds.TrackFollowed
+		}
+		if r.Sharp != nil {
+			t.SpeedError = r.Sharp[k].SpeedError
 		}
 		n := len(rotor.Speed)
 		parts := min(n, trackPoints)
@@ -36,6 +40,32 @@ func tracks(r *gather.Recording, lines *orders, times []float64) []kinds.RotorTr
 			t.Speed = append(t.Speed, 2*math.Pi*sum/max(1, count))
 		}
 		out = append(out, t)
+	}
+	return out
+}
+
+// oftenTogether is the share of the time from which on rotors that cannot be told apart are told.
+const oftenTogether = 0.02
+
+// together tells which rotors, whose speeds were followed, run so near each other that their orders are one line over a span.
+func together(turning []order.Rotor, span float64) []string {
+	var out []string
+	for b, second := range turning {
+		for _, first := range turning[:b] {
+			count, near := 0.0, 0.0
+			for i, v := range second.Speed {
+				if v > 0 && first.Speed[i] > 0 {
+					count++
+					if math.Abs(v-first.Speed[i]) < 1/span {
+						near++
+					}
+				}
+			}
+			if near > oftenTogether*count {
+				out = append(out, fmt.Sprintf("rotors %s and %s run within %.2g Hz of each other for %.0f %% of the time: what is taken out there is what both of them hold, and its parts are a guess",
+					first.Name, second.Name, 1/span, 100*near/count))
+			}
+		}
 	}
 	return out
 }

@@ -2,11 +2,30 @@ package identify
 
 import (
 	"math"
+	"strings"
 	"testing"
 
 	"hushframe/core/signal/order"
 	"hushframe/stages/kinds"
 )
+
+// Two rotors within half a hertz for a tenth of the time are told, others not.
+func TestTogether(t *testing.T) {
+	a, b, c := make([]float64, 100), make([]float64, 100), make([]float64, 100)
+	for i := range a {
+		a[i], b[i], c[i] = 100, 104, 100.4
+		if i < 10 {
+			b[i] = 100.3
+		}
+		if i > 0 {
+			c[i] = 90
+		}
+	}
+	got := together([]order.Rotor{{Name: "a", Speed: a}, {Name: "b", Speed: b}, {Name: "c", Speed: c}}, 2)
+	if len(got) != 1 || !strings.Contains(got[0], "a and b run within 0.5 Hz of each other for 10 %") {
+		t.Errorf("%q", got)
+	}
+}
 
 // A rotor that runs at 100 and at 120 revolutions per second meets the mode at 200 Hz with its second order half of the time, and one at 800 Hz
 // of a recording at 1000 Hz, which it shows at 200 Hz, with its eighth, folded.

@@ -75,6 +75,7 @@ var IdentifiedKind = artifact.Kind{
 			col("source", artifact.Text, "", "recorded, or followed in the signal"),
 			col("time", artifact.FloatList, "s", "on the time column, rising"),
 			col("speed", artifact.FloatList, "rad/s", "mean speed about that time; 0 where it stands or is not known"),
+			col("speed_error", artifact.Float, "rad/s", "standard error of a speed that was followed and sharpened by the phase of its orders; NaN of others"),
 		)},
 		{Name: "crossings", About: "where an order of a rotor meets a mode within the time used, by mode, order and rotor", Columns: columns(
 			col("mode", artifact.Int, "", "row of modes"),
@@ -124,6 +125,7 @@ const (
 type RotorTrack struct {
 	Rotor, Source string
 	Time, Speed   []float64
+	SpeedError    float64
 }
 
 // OrderCrossing is a meeting of an order with a mode.

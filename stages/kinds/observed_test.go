@@ -112,7 +112,7 @@ func sampleIdentified() *Identified {
 		Orders:   []OrderBand{{Rotor: "fr", Order: 1, Low: 260, High: 270, Share: 0.9}},
 
 		Densities: []IdentifiedDensity{{"roll", []float64{1, 2, 3}, []float64{1, 1, 3}}, {"pitch", []float64{1, 2, 3}, []float64{1, 1, 3}}},
-		Tracks:    []RotorTrack{{"fr", TrackRecorded, []float64{8, 9}, []float64{1600, 1610}}},
+		Tracks:    []RotorTrack{{"fr", TrackRecorded, []float64{8, 9}, []float64{1600, 1610}, 0.7}},
 		Crossings: []OrderCrossing{{0, "fr", 1, true, 1600, 0.2}},
 	}
 }

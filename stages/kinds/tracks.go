@@ -12,7 +12,8 @@ func setTracks(a *artifact.Artifact, x *Identified) {
 		Set("rotor", list(x.Tracks, func(t RotorTrack) string { return t.Rotor })).
 		Set("source", list(x.Tracks, func(t RotorTrack) string { return t.Source })).
 		Set("time", list(x.Tracks, func(t RotorTrack) []float64 { return t.Time })).
-		Set("speed", list(x.Tracks, func(t RotorTrack) []float64 { return t.Speed }))
+		Set("speed", list(x.Tracks, func(t RotorTrack) []float64 { return t.Speed })).
+		Set("speed_error", list(x.Tracks, func(t RotorTrack) float64 { return t.SpeedError }))
 	a.Table("crossings").
 		Set("mode", list(x.Crossings, func(c OrderCrossing) int64 { return int64(c.Mode) })).
 		Set("rotor", list(x.Crossings, func(c OrderCrossing) string { return c.Rotor })).
@@ -33,7 +34,7 @@ func readTracks(a *artifact.Artifact, x *Identified) error {
 	}
 	t = a.Table("tracks")
 	for i := range t.Rows() {
-		r := RotorTrack{t.Texts("rotor")[i], t.Texts("source")[i], t.FloatLists("time")[i], t.FloatLists("speed")[i]}
+		r := RotorTrack{t.Texts("rotor")[i], t.Texts("source")[i], t.FloatLists("time")[i], t.FloatLists("speed")[i], t.Floats("speed_error")[i]}
 		if len(r.Time) != len(r.Speed) {
 			return malformed("identified", "the track of rotor %s has %d times and %d speeds", r.Rotor, len(r.Time), len(r.Speed))
 		}

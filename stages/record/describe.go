@@ -36,7 +36,7 @@ func describe(r *gather.Recording, set settings, threads int) (*found, error) {
 	if err != nil {
 		return nil, err
 	}
-	r.FindRotors(axes, timing, threads)
+	r.FindRotors(axes, timing, nil, 0, threads) // bands of orders need no angle
 	f := &found{timing: timing, axes: axes}
 	ws, err := segments(timing, set)
 	if err != nil {

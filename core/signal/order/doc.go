@@ -16,6 +16,15 @@
 //
 // Where the angle of a rotor follows from its speed, its orders can be taken out of a signal: what turns with the angle at
 // nearly steady amplitude and phase is the order, what is left is structure and noise. Where no speed was recorded, the
-// orders themselves can be followed in the signal. Folding needs no care there, since
+// orders themselves can be followed in the signal (FindSpeeds, to a hertz or so) and the speeds sharpened by their phases
+// (Sharpen, to a tenth of that), after which they serve as recorded ones do. Folding needs no care there, since
 // the samples of a folded line are those of its mirror image.
+//
+// Terms of sharpening
+//
+//	reference   speed near those of all rotors, by whose angle the signal is turned back
+//	baseband    the signal so turned back, by an order, and thinned
+//	phase       of a rotor: its angle less that of the reference, rad; its order n has n times that
+//	drift       model of the speeds: accelerations that wander, partly alike
+//	evidence    gradient and curvature of the likelihood of the samples at a time, over the phases
 package order

@@ -27,6 +27,8 @@ type Recording struct {
 	ChosenBy string
 	// Found tells that the speeds of the rotors were found in the signal: to within a hertz or so, and not which rotor is which.
 	Found bool
+	// Sharp tells, by rotor, how well such speeds are known since they were sharpened; nil where they were not.
+	Sharp []Sharpness
 	set   Settings
 	whole *recording.Timing // of all axes, once known
 }
