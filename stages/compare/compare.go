@@ -131,7 +131,7 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 	if err != nil {
 		return nil, err
 	}
-	observed, err := input(call, "observed", kinds.DecodeSpectra)
+	observed, err := input(call, "observed", kinds.DecodeSensor)
 	if err != nil {
 		return nil, err
 	}

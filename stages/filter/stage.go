@@ -93,7 +93,7 @@ func (Stage) Run(_ context.Context, call *stage.Call) (*stage.Outcome, error) {
 		return nil, err
 	}
 	call.Report.Progress("read", -1)
-	observed, err := input(call, "observed", kinds.DecodeSpectra)
+	observed, err := input(call, "observed", kinds.DecodeSensor)
 	if err != nil {
 		return nil, err
 	}

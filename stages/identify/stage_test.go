@@ -234,7 +234,7 @@ func TestSandpiperWithoutSpeeds(t *testing.T) {
 			t.Errorf("a mode at %.2f ± %.2f Hz, %.4f that is none", m.Frequency, m.FrequencyError, m.Damping)
 		}
 	}
-	if modes < 4 || !strings.Contains(strings.Join(o.Notes, "\n"), "sharpened by the phase") {
+	if modes < 5 || !strings.Contains(strings.Join(o.Notes, "\n"), "sharpened by the phase") {
 		t.Errorf("%d modes, %v", modes, o.Notes)
 	}
 	for _, track := range x.Tracks {

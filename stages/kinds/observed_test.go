@@ -185,3 +185,17 @@ func TestFilteredRoundTrip(t *testing.T) {
 		}
 	}
 }
+
+// Spectra of a sensor that a recording does not have are kept and read back, but refused where they are to be used.
+func TestSpectraWithoutAxes(t *testing.T) {
+	a := EncodeSpectra(&Spectra{Rate: 1000, Window: "hann"})
+	if err := a.Check(); err != nil {
+		t.Fatal(err)
+	}
+	if s, err := DecodeSpectra(a); err != nil || len(s.Axes) != 0 || s.Rate != 1000 {
+		t.Errorf("%+v %v", s, err)
+	}
+	if _, err := DecodeSensor(a); err == nil || !strings.Contains(err.Error(), "have no axis") {
+		t.Error(err)
+	}
+}

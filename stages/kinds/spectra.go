@@ -4,6 +4,7 @@ import (
 	"fmt"
 
 	"hushframe/core/pipeline/artifact"
+	"hushframe/core/pipeline/fault"
 )
 
 // SpectraKind is what `record` makes of a recording.
@@ -266,6 +267,16 @@ func DecodeSpectra(a *artifact.Artifact) (*Spectra, error) {
 	}
 	s.Orders = orders(a.Table("orders"))
 	return s, s.detail(a)
+}
+
+// DecodeSensor reads spectra that are to be used, and refuses those of a sensor that the recording does not have.
+func DecodeSensor(a *artifact.Artifact) (*Spectra, error) {
+	s, err := DecodeSpectra(a)
+	if err == nil && len(s.Axes) == 0 {
+		return nil, fault.New(fault.Input, "the spectra have no axis: the recording has no accelerometer with rows of its own").
+			Do("take the output spectra of that step, which has the axes that share their rows; or name the accelerometer in its columns")
+	}
+	return s, err
 }
 
 func setOrders(t *artifact.Table, bands []OrderBand) {

@@ -61,6 +61,26 @@ func outcome(f *found, r *gather.Recording, set settings) *stage.Outcome {
 	return o
 }
 
+// join adds the outcome of the second sensor: its peaks, and its tables under their own heading. What was said once is not said again.
+func join(o, second *stage.Outcome) {
+	o.Figures["peaks"] = append(o.Figures["peaks"].([]any), second.Figures["peaks"].([]any)...)
+	o.Figures["saturated"] = max(o.Figures["saturated"].(float64), second.Figures["saturated"].(float64))
+	for _, s := range second.Summary {
+		s.Title = "Accelerometer: " + strings.ToLower(s.Title[:1]) + s.Title[1:]
+		o.Summary = append(o.Summary, s)
+	}
+	for _, n := range second.Notes {
+		if !slices.Contains(o.Notes, n) {
+			o.Notes = append(o.Notes, n)
+		}
+	}
+	for _, w := range second.Warnings {
+		if !slices.Contains(o.Warnings, w) {
+			o.Warnings = append(o.Warnings, w)
+		}
+	}
+}
+
 func hertz(f float64) stage.Quantity { return stage.Quantity{SI: f, Dimension: "frequency"} }
 
 func warnings(f *found, r *gather.Recording, set settings) []stage.Warning {

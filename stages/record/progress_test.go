@@ -31,7 +31,7 @@ func TestProgress(t *testing.T) {
 		}
 	}
 	var told reading
-	if _, err := (Stage{}).Run(context.Background(), &stage.Call{Arguments: arguments, Outputs: map[string]string{"spectra": t.TempDir()},
+	if _, err := (Stage{}).Run(context.Background(), &stage.Call{Arguments: arguments, Outputs: map[string]string{"spectra": t.TempDir(), "accelerations": t.TempDir()},
 		Files: stage.NewFiles(folder), Threads: 1, Report: &told, Services: alone{}}); err != nil {
 		t.Fatal(err)
 	}

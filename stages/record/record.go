@@ -32,8 +32,12 @@ bands in which the orders of rotors with a recorded speed appear.
 Columns are named by role, or found by generic words such as "time", "gyro x", "rpm",
 "throttle" and "target"; what was found is told. A minus before a column turns its
 sign. Axes are those of the airframe: x forward, y left, z up; a sensor that is turned
-otherwise states its mounting. A column with a clock of its own names it in clocks;
-a sensor with a rate of its own is described in a step of its own.
+otherwise states its mounting. A column with a clock of its own names it in clocks.
+Where gyro and accelerometer are both named and do not share their rows (rows taken in
+turn, another rate, a clock of its own), each is described with its own rate and times,
+the accelerometer as accelerations; neither is resampled to the other, so there is no
+coherence between them. Rotor speeds, throttle and set-points may have any rows; between
+their samples they are taken as straight lines.
 
 Without a window, the steady pieces of the flight are used: by rotor speed, or else
 throttle, without ground time, the two seconds after a take-off and the last before a
@@ -58,7 +62,8 @@ in a hundred), as is a packed file that ends in its middle.`,
 			{Name: "prominence", About: "how far a peak stands above the valleys beside it, in dB, to be listed; more where the averages are few",
 				Type: stage.Type{Kind: stage.Number}, Default: 3.0, Example: "3", Above: &zero},
 		}...),
-		Outputs: []stage.Output{{Name: "spectra", Kind: "spectra", About: "spectra, peaks and order bands"}},
+		Outputs: []stage.Output{{Name: "spectra", Kind: "spectra", About: "spectra, peaks and order bands"},
+			{Name: "accelerations", Kind: "spectra", About: "the same of an accelerometer that does not share the rows of the gyro; without axes where there is none"}},
 		Figures: []stage.Figure{
 			{Name: "rate", About: "samples per second between gaps", Type: frequency},
 			{Name: "samples", About: "samples used per axis", Type: stage.Type{Kind: stage.Whole}},
@@ -96,6 +101,7 @@ func read(a stage.Arguments) (settings, error) {
 	if s.Settings, err = gather.Read(a, "record"); err != nil {
 		return s, err
 	}
+	s.Apart = true
 	for i, v := range a.List("orders") {
 		n := v.(float64)
 		if !(n > 0) || math.IsInf(n, 0) {
@@ -127,9 +133,20 @@ func (Stage) Run(ctx context.Context, call *stage.Call) (*stage.Outcome, error) 
 	if err != nil {
 		return nil, gather.Explain(err, set.File)
 	}
+	out := outcome(found, r, set)
+	apart := &kinds.Spectra{Rate: found.spectra.Rate, Window: found.spectra.Window, Level: set.level, From: found.spectra.From, To: found.spectra.To}
+	if second := r.Second(); second != nil {
+		other, err := describe(second, set, call.Threads)
+		if err != nil {
+			return nil, gather.Explain(err, set.File)
+		}
+		apart = other.spectra
+		join(out, outcome(other, second, set))
+	}
 	call.Report.Progress("write", -1)
 	if _, err := artifact.Write(call.Outputs["spectra"], kinds.EncodeSpectra(found.spectra)); err != nil {
 		return nil, err
 	}
-	return outcome(found, r, set), nil
+	_, err = artifact.Write(call.Outputs["accelerations"], kinds.EncodeSpectra(apart))
+	return out, err
 }

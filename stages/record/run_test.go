@@ -31,30 +31,43 @@ func (silent) Log(stage.Level, string, ...any) {}
 // run calls the stage with defaults filled in, as the host does.
 func run(t testing.TB, folder string, arguments stage.Arguments) (*kinds.Spectra, *stage.Outcome, error) {
 	t.Helper()
+	s, second, o, err := runBoth(t, folder, arguments)
+	if err == nil && len(second.Axes) > 0 {
+		t.Errorf("a second sensor with %s", second.Axes[0].Column)
+	}
+	return s, o, err
+}
+
+// runBoth gives the spectra of the second sensor, too.
+func runBoth(t testing.TB, folder string, arguments stage.Arguments) (first, second *kinds.Spectra, o *stage.Outcome, err error) {
+	t.Helper()
 	for _, a := range (Stage{}).Describe().Arguments {
 		if _, given := arguments[a.Name]; !given && a.Default != nil {
 			arguments[a.Name] = a.Default
 		}
 	}
-	out := t.TempDir()
-	o, err := Stage{}.Run(context.Background(), &stage.Call{
-		Arguments: arguments, Outputs: map[string]string{"spectra": out}, Files: stage.NewFiles(folder), Threads: 1, Report: silent{}, Services: alone{},
+	out, other := t.TempDir(), t.TempDir()
+	o, err = Stage{}.Run(context.Background(), &stage.Call{
+		Arguments: arguments, Outputs: map[string]string{"spectra": out, "accelerations": other}, Files: stage.NewFiles(folder), Threads: 1, Report: silent{}, Services: alone{},
 	})
 	if err != nil {
 		if left, _ := os.ReadDir(out); len(left) > 0 {
 			t.Errorf("a failed step left %v", left)
 		}
-		return nil, nil, err
+		return nil, nil, nil, err
 	}
-	a, err := artifact.Open(out, kinds.Registry())
-	if err != nil {
-		t.Fatal(err)
+	read := func(folder string) *kinds.Spectra {
+		a, err := artifact.Open(folder, kinds.Registry())
+		if err != nil {
+			t.Fatal(err)
+		}
+		s, err := kinds.DecodeSpectra(a)
+		if err != nil {
+			t.Fatal(err)
+		}
+		return s
 	}
-	s, err := kinds.DecodeSpectra(a)
-	if err != nil {
-		t.Fatal(err)
-	}
-	return s, o, nil
+	return read(out), read(other), o, nil
 }
 
 func seconds(v ...float64) []any {

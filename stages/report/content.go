@@ -78,7 +78,7 @@ func (c *content) add(in stage.Input) error {
 	case "response":
 		err = once(in, &c.response, a, kinds.DecodeResponse)
 	case "spectra":
-		err = once(in, &c.spectra, a, kinds.DecodeSpectra)
+		err = once(in, &c.spectra, a, kinds.DecodeSensor)
 	case "comparison":
 		err = once(in, &c.comparison, a, kinds.DecodeComparison)
 	case "filtered":

@@ -319,7 +319,7 @@ func readGiven(call *stage.Call, set settings) (given, error) {
 		if len(set.flown) > 0 {
 			return g, fault.New(fault.Input, "both the recording and speeds_flown say how a flight is spread over speeds").In("sweep", "").Of("speeds_flown").Do("leave one of them out")
 		}
-		if g.recorded, err = readInput(call, "recording", kinds.DecodeSpectra); err != nil {
+		if g.recorded, err = readInput(call, "recording", kinds.DecodeSensor); err != nil {
 			return g, err
 		}
 	}

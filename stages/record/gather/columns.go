@@ -21,6 +21,7 @@ type Plan struct {
 	// ClockUnits are the units of further time columns, "" where none is stated.
 	ClockUnits map[string]string
 	Axes       []Channel
+	Apart      []Channel // accelerations that do not share the rows of the axes
 	Rotors     []Channel
 	Throttle   *Channel // nil for none
 	Force      *Channel // nil unless the settings ask for it
@@ -389,10 +390,10 @@ func (p *Plan) chooseClocks(h recording.Header, set Settings) error {
 			return fault.New(fault.Input, "column %q has a clock and is not read", h.Columns[i].Name).Of("clocks").Do("leave it out, or give the column a role")
 		}
 	}
-	for _, c := range p.Axes {
-		if c.Clock != p.Axes[0].Clock {
-			return fault.New(fault.Input, "the axes %s and %s have different clocks", p.Axes[0].Name, c.Name).Of("clocks").
-				Do("describe each sensor in a step of its own")
+	for i, c := range p.Axes {
+		if i > 0 && c.Clock != p.Axes[i-1].Clock && !(set.Apart && c.Of != p.Axes[i-1].Of) {
+			return fault.New(fault.Input, "the axes %s and %s have different clocks", p.Axes[i-1].Name, c.Name).Of("clocks").
+				Do("give all axes of a sensor one clock; gyro and accelerometer may differ in a step \"record\", and take a step each elsewhere")
 		}
 	}
 	return nil

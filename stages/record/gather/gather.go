@@ -60,7 +60,7 @@ func Load(ctx context.Context, call *stage.Call, set Settings) (*Recording, erro
 	if err != nil {
 		return nil, Explain(err, set.File)
 	}
-	data, err := samples(ctx, reader, open, plan, set, header)
+	data, err := samples(ctx, reader, open, &plan, set, header)
 	if err != nil {
 		return nil, Explain(err, set.File)
 	}

@@ -14,8 +14,12 @@ import (
 
 // Data is what a recording holds for a plan.
 type Data struct {
-	Axes   Series
-	Rotors []Series // one per rotor, each with its own rows
+	Axes Series
+	// Apart are the axes of a second sensor, with rows of their own; ApartPartial is as Partial, ApartRows as Rows.
+	Apart        Series
+	ApartPartial int
+	ApartRows    int64
+	Rotors       []Series // one per rotor, each with its own rows
 	// Throttle and SetPoints are those of the plan, each with its own rows.
 	Throttle  *Series
 	SetPoints []Series
@@ -47,7 +51,7 @@ type raw struct {
 type source func() (io.Reader, error)
 
 // samples reads the channels of the plan and leaves out rows without a sample. It settles the unit of time.
-func samples(ctx context.Context, reader extension.Reader, open source, p Plan, set Settings, h recording.Header) (*Data, error) {
+func samples(ctx context.Context, reader extension.Reader, open source, p *Plan, set Settings, h recording.Header) (*Data, error) {
 	d := &Data{}
 	if p.Time == "" && !h.Timed {
 		d.Rate = set.Rate
@@ -71,7 +75,7 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 	}
 	passes := map[string]*raw{}
 	for i, clock := range clocks {
-		r, err := d.pass(ctx, reader, open, clock, channels, p, set, i == 0)
+		r, err := d.pass(ctx, reader, open, clock, channels, *p, set, i == 0)
 		if err != nil {
 			return nil, err
 		}
@@ -79,26 +83,37 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 	}
 	axesClock := p.Axes[0].Clock
 	d.Rows = int64(passes[axesClock].rows)
+	if set.Apart {
+		if p.part(passes); len(p.Apart) > 0 {
+			axes = p.Axes
+		}
+	}
 	var err error
-	if d.Axes, err = d.series(passes, axes, true); err != nil {
+	if d.Axes, err = d.series(passes, axes, &d.Partial); err != nil {
 		return nil, err
 	}
+	if len(p.Apart) > 0 {
+		d.ApartRows = int64(passes[p.Apart[0].Clock].rows)
+		if d.Apart, err = d.series(passes, p.Apart, &d.ApartPartial); err != nil {
+			return nil, err
+		}
+	}
 	for _, c := range p.Rotors {
-		s, err := d.series(passes, []Channel{c}, false)
+		s, err := d.series(passes, []Channel{c}, nil)
 		if err != nil {
 			return nil, err
 		}
 		d.Rotors = append(d.Rotors, s)
 	}
 	for _, c := range p.SetPoints {
-		s, err := d.series(passes, []Channel{c}, false)
+		s, err := d.series(passes, []Channel{c}, nil)
 		if err != nil {
 			return nil, err
 		}
 		d.SetPoints = append(d.SetPoints, s)
 	}
 	if p.Throttle != nil {
-		s, err := d.series(passes, []Channel{*p.Throttle}, false)
+		s, err := d.series(passes, []Channel{*p.Throttle}, nil)
 		if err != nil {
 			return nil, err
 		}
@@ -112,12 +127,13 @@ func samples(ctx context.Context, reader extension.Reader, open source, p Plan, 
 		return nil, &recording.Error{Column: p.Axes[0].Column, Text: fmt.Sprintf("no row of %d holds a sample of every axis", d.Rows),
 			Remedy: "name columns that are filled in the same rows, and describe a sensor with rows of its own in another step"}
 	}
-	if err := d.scale(p, passes, axesClock, set); err != nil {
+	if err := d.scale(*p, passes, axesClock, set); err != nil {
 		return nil, err
 	}
-	d.mend(p)
+	d.mend(*p)
 	if len(set.Mounting) == 3 {
 		d.Axes.turn(p.Axes, set.Mounting)
+		d.Apart.turn(p.Apart, set.Mounting)
 	}
 	return d, nil
 }
@@ -183,7 +199,7 @@ func (r *raw) tidy() {
 }
 
 // series picks the rows that hold a sample of every channel. Columns that serve one channel are taken over, not copied.
-func (d *Data) series(passes map[string]*raw, channels []Channel, axes bool) (Series, error) {
+func (d *Data) series(passes map[string]*raw, channels []Channel, partial *int) (Series, error) {
 	r := passes[channels[0].Clock]
 	s := Series{Time: r.time, first: 1}
 	for _, c := range channels {
@@ -202,12 +218,12 @@ func (d *Data) series(passes map[string]*raw, channels []Channel, axes bool) (Se
 		return n
 	}
 	untimed := func(i int) bool { return r.time != nil && math.IsNaN(r.time[i]) }
-	if axes {
+	if partial != nil {
 		lost, first := 0, 0
 		for i := range r.rows {
 			n := held(i)
 			if n > 0 && n < len(s.Values) {
-				d.Partial++
+				*partial++
 			}
 			if n > 0 && untimed(i) {
 				if lost++; lost == 1 {
@@ -275,6 +291,9 @@ func (d *Data) all() []*Series {
 	if d.Throttle != nil {
 		out = append(out, d.Throttle)
 	}
+	if d.Apart.Values != nil {
+		out = append(out, &d.Apart)
+	}
 	return out
 }
 
@@ -285,7 +304,7 @@ func (d *Data) scale(p Plan, passes map[string]*raw, axesClock string, set Setti
 		if p.Throttle != nil {
 			channels = append(channels, *p.Throttle)
 		}
-		return channels[i].Clock
+		return append(channels, p.Apart...)[i].Clock // one series for all that is apart, the last
 	}
 	if passes[""] != nil && d.Rate > 0 {
 		time := make([]float64, passes[""].rows)

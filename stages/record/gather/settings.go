@@ -24,6 +24,8 @@ type Settings struct {
 	Speeds                 []float64 // their least and greatest speed, rad/s
 	// Force asks for a force channel, which follows the axes in their series; there are no steady pieces to be found then.
 	Force bool
+	// Apart lets accelerations that have rows, a rate or a clock of their own be a second sensor; otherwise all axes share their rows.
+	Apart bool
 }
 
 // Arguments describes them.
