@@ -72,6 +72,38 @@ func TestSlowGyroAndText(t *testing.T) {
 	}
 }
 
+// A rate of the job that the times contradict is told; a clock coarser than the samples, or one with a gap, contradicts nothing.
+func TestRateOfTheJobAndOfTheTimes(t *testing.T) {
+	for name, c := range map[string]struct {
+		time func(i int) float64
+		rate float64
+		told bool
+	}{
+		"the same":  {func(i int) float64 { return float64(i) }, 1000, false},
+		"three":     {func(i int) float64 { return float64(i) }, 3000, true},
+		"coarse":    {func(i int) float64 { return float64(i / 4) }, 4000, false},
+		"with gaps": {func(i int) float64 { return float64(i + i/1000*500) }, 1000, false},
+	} {
+		var text strings.Builder
+		fmt.Fprintln(&text, "time_ms,gx_deg_s")
+		random := rand.New(rand.NewPCG(3, 4))
+		for i := range 8000 {
+			fmt.Fprintf(&text, "%g,%.3f\n", c.time(i), random.NormFloat64())
+		}
+		folder := t.TempDir()
+		if err := os.WriteFile(filepath.Join(folder, "a.csv"), []byte(text.String()), 0o644); err != nil {
+			t.Fatal(err)
+		}
+		s, _, err := run(t, folder, stage.Arguments{"file": "a.csv", "rate": hertz(c.rate)})
+		if err != nil {
+			t.Fatalf("%s: %v", name, err)
+		}
+		if got := strings.Contains(told(s), "rate|time_ms|the job states 3000 Hz, this column makes it 1000 Hz"); got != c.told || !c.told && strings.Contains(told(s), "rate|") {
+			t.Errorf("%s:\n%s", name, told(s))
+		}
+	}
+}
+
 // A sound recording has no findings; each fault put into one is found, with its extent.
 func TestFindings(t *testing.T) {
 	random := rand.New(rand.NewPCG(3, 4))

@@ -64,6 +64,9 @@ func Load(ctx context.Context, call *stage.Call, set Settings) (*Recording, erro
 	if err != nil {
 		return nil, Explain(err, set.File)
 	}
+	if f, odd := twice(ctx, reader, open, header, plan, set); odd {
+		data.Findings = append(data.Findings, f)
+	}
 	return &Recording{Header: header, Plan: plan, Data: data, set: set}, nil
 }
 
