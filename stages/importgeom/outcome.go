@@ -26,7 +26,7 @@ func outcome(file *airframefile.File, a *assemble.Assembly) *stage.Outcome {
 	}
 	bodies := 0
 	for _, b := range p.Bodies {
-		if !assemble.IsScrew(b.Name, p) {
+		if _, screw := p.ScrewOf(b.Name); !screw {
 			bodies++
 		}
 	}

@@ -127,7 +127,10 @@ func strength(x float64, negligible bool) string {
 		return "0"
 	}
 	magnitude := math.Floor(math.Log10(x))
-	if math.IsInf(x, 0) || magnitude < -6 {
+	if math.IsInf(x, 0) {
+		return "–" // nothing damps the mode
+	}
+	if magnitude < -6 {
 		return fmt.Sprintf("%.3g", x)
 	}
 	return fmt.Sprintf("%.*f", max(0, 2-int(magnitude)), x)
@@ -150,8 +153,13 @@ func modeTable(m *kinds.Modes) stage.Section {
 			{Name: "roll", Right: true}, {Name: "pitch", Right: true}, {Name: "yaw", Right: true}, {Name: "gap, Hz", Right: true}},
 	}
 	var strongest kinds.Strongest
+	unbounded := false
 	for i := range m.Survey.Modes {
 		strongest.Add(m.Survey.Modes[i].Strength)
+		unbounded = unbounded || math.IsInf(m.Survey.Modes[i].Strength[0], 1)
+	}
+	if unbounded {
+		s.Text += ", – where nothing damps the mode"
 	}
 	estimated := len(m.Survey.MeshErrors) > 0
 	if estimated {

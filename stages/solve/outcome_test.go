@@ -1,11 +1,14 @@
 package solve
 
 import (
+	"math"
 	"slices"
 	"strings"
 	"testing"
 	"unicode/utf8"
 
+	"hushframe/core/mechanics/airframe"
+	"hushframe/core/mechanics/assembly"
 	"hushframe/core/mechanics/modal"
 	"hushframe/stages/kinds"
 )
@@ -64,5 +67,29 @@ func TestMeetingTable(t *testing.T) {
 func TestNamesOfMergedBodies(t *testing.T) {
 	if got := once([]string{"rotor r", "lump bat", "r", "bat", "clamp 3"}); !slices.Equal(got, []string{"rotor r", "lump bat", "clamp 3"}) {
 		t.Errorf("named are %q", got)
+	}
+}
+
+// Screws of standoffs are no named points.
+func TestPlacesLeaveScrewsOut(t *testing.T) {
+	p := &airframe.Properties{Standoffs: []airframe.StandoffProperties{{Standoff: "post-1"}}}
+	for _, name := range []string{"battery", "post-1-lower-screw", "post-2-upper-screw", "post-1-upper-screw"} {
+		p.Bodies = append(p.Bodies, airframe.Body{Name: name, Kind: "lump"})
+	}
+	sites, err := places(&assembly.Frame{BodyOf: []int{4, 5, 6, 7}}, p)
+	if err != nil || len(sites) != 2 || sites[0].Name != "battery" || sites[1].Name != "post-2-upper-screw" || sites[1].Body != 6 {
+		t.Errorf("sites are %+v, %v", sites, err)
+	}
+}
+
+// A mode without damping has no peak: its strength is no number, and the table says why.
+func TestStrengthWithoutDamping(t *testing.T) {
+	free := [3]float64{math.Inf(1), math.Inf(1), math.Inf(1)}
+	table := modeTable(frame(free, free))
+	if row := table.Rows[0]; !slices.Equal(row[4:7], []string{"–", "–", "–"}) || !strings.HasSuffix(table.Text, "– where nothing damps the mode") {
+		t.Errorf("%q under %q", row, table.Text)
+	}
+	if table = modeTable(frame([3]float64{1, 1, 1})); strings.Contains(table.Text, "damps") {
+		t.Errorf("damped modes read %q", table.Text)
 	}
 }

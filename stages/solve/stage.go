@@ -242,7 +242,7 @@ func once(names []string) []string {
 	})
 }
 
-// places are the hubs, the gyro and the other bodies.
+// places are the hubs, the gyro and the other bodies; screws of standoffs are no places that anybody looks for.
 func places(f *assembly.Frame, p *airframe.Properties) ([]modal.Place, error) {
 	body := map[string]int{}
 	for i, b := range p.Bodies {
@@ -264,7 +264,7 @@ func places(f *assembly.Frame, p *airframe.Properties) ([]modal.Place, error) {
 		out = append(out, modal.Place{Name: p.Gyro.Body, Kind: "gyro", Body: at, Point: p.Gyro.At})
 	}
 	for i, b := range p.Bodies {
-		if b.Kind == "lump" {
+		if _, screw := p.ScrewOf(b.Name); b.Kind == "lump" && !screw {
 			out = append(out, modal.Place{Name: b.Name, Kind: "body", Body: f.BodyOf[i], Point: b.Centre})
 		}
 	}

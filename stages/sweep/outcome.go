@@ -110,7 +110,7 @@ func warnings(r *kinds.Response, set settings) []stage.Warning {
 	if len(undamped) > 0 {
 		out = append(out, stage.Warning{
 			ID: "sweep.undamped", Text: fmt.Sprintf("modes with a damping ratio below %g, whose peaks mean little: %s", leastDamping, strings.Join(undamped, ", ")),
-			Where: "modes", Remedy: "give their materials, joints and mounts a loss factor, or the airframe a floor",
+			Where: "damping", Remedy: "give their materials, joints and mounts a loss factor, or the airframe a floor",
 		})
 	}
 	for _, x := range r.Rotors {
@@ -257,6 +257,12 @@ func mapTable(r *kinds.Response) stage.Section {
 		s.Rows = append(s.Rows, row)
 	}
 	s.Text = fmt.Sprintf("rotors added as power; only lines up to %.4g Hz, to which the modes carry", reach)
+	for _, x := range r.Orders {
+		if len(x.Rotors) < len(r.Rotors) {
+			s.Text += fmt.Sprintf("; orders and rpm are those of rotor %s, the others turn in the ratio of their hover speeds", r.Rotors[0].Rotor)
+			break
+		}
+	}
 	return s
 }
 

@@ -407,6 +407,17 @@ func TestSummary(t *testing.T) {
 			}
 		}
 	}
+	// Where rotors differ in speed it is said whose turns the orders count.
+	p.Rotors[1].HoverSpeed *= 1.2
+	_, unlike := run(t, m, p, nil)
+	const whose = "orders and rpm are those of rotor a"
+	for i, o := range []*stage.Outcome{out, unlike} {
+		for _, s := range o.Summary {
+			if strings.HasPrefix(s.Title, "Rotor lines up to") && strings.Contains(s.Text, whose) != (i == 1) {
+				t.Errorf("%s: %q", s.Title, s.Text)
+			}
+		}
+	}
 	// Rotors a and b drive mode 1 alike; of the loss 0.014 of 0.026 is in g0.
 	if row := strings.Join(out.Summary[1].Rows[0], "|"); !strings.HasPrefix(row, "roll|150.0|50|50|force z of ") || !strings.Contains(row, "|part g0 54 %|") {
 		t.Errorf("shares read %q", row)

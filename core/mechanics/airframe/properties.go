@@ -1,5 +1,7 @@
 package airframe
 
+import "strings"
+
 // Properties is all of the airframe that meshing does not need.
 type Properties struct {
 	Materials []Material
@@ -173,4 +175,21 @@ type Rotor struct {
 type Gyro struct {
 	Body string
 	At   Vec
+}
+
+// ScrewSuffix ends the names of the bodies that stand for the screws at the lower and upper end of a standoff.
+var ScrewSuffix = [2]string{"-lower-screw", "-upper-screw"}
+
+// ScrewOf gives the standoff whose screw a body stands for.
+func (p *Properties) ScrewOf(body string) (standoff string, ok bool) {
+	for _, suffix := range ScrewSuffix {
+		if name, cut := strings.CutSuffix(body, suffix); cut {
+			for _, s := range p.Standoffs {
+				if s.Standoff == name {
+					return name, true
+				}
+			}
+		}
+	}
+	return "", false
 }

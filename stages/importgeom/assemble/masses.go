@@ -51,8 +51,7 @@ func Masses(g *airframe.Geometry, p *airframe.Properties) []Mass {
 		add(Mass{"standoff " + base(s.Standoff), s.Material, 1, s.Mass, true})
 	}
 	for _, b := range p.Bodies {
-		if IsScrew(b.Name, p) {
-			name := strings.TrimSuffix(strings.TrimSuffix(b.Name, screwSuffix[0]), screwSuffix[1])
+		if name, ok := p.ScrewOf(b.Name); ok {
 			add(Mass{"screws of standoff " + base(name), "", 1, b.Mass, true})
 			continue
 		}
@@ -68,18 +67,4 @@ func base(name string) string {
 		return name
 	}
 	return name[:i]
-}
-
-// IsScrew reports whether a body stands for the screw of a standoff.
-func IsScrew(body string, p *airframe.Properties) bool {
-	for _, suffix := range screwSuffix {
-		if name, ok := strings.CutSuffix(body, suffix); ok {
-			for _, s := range p.Standoffs {
-				if s.Standoff == name {
-					return true
-				}
-			}
-		}
-	}
-	return false
 }

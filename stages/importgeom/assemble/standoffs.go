@@ -79,14 +79,11 @@ func (b *builder) standoff(s *airframefile.Standoff, name string, at outline.Poi
 	return nil
 }
 
-// screwSuffix ends the names of the bodies that stand for the screws of a standoff.
-var screwSuffix = [2]string{"-lower-screw", "-upper-screw"}
-
 // screw adds the screw of a standoff's end as a small body in the plate: a ball of half the standoff's diameter.
 func (b *builder) screw(standoff string, end int, patch string, at vec, s *airframefile.Standoff) {
 	j := 0.4 * s.ScrewMass * s.Outer * s.Outer / 16
 	b.out.Properties.Bodies = append(b.out.Properties.Bodies, airframe.Body{
-		Name: standoff + screwSuffix[end], Kind: "lump", Mass: s.ScrewMass, Centre: at, Inertia: [6]float64{j, j, j}, Patches: []string{patch},
+		Name: standoff + airframe.ScrewSuffix[end], Kind: "lump", Mass: s.ScrewMass, Centre: at, Inertia: [6]float64{j, j, j}, Patches: []string{patch},
 	})
 }
 
