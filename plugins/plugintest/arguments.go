@@ -58,10 +58,13 @@ func (h *heeded) heed(word string, a stage.Argument, reason string, declared boo
 }
 
 // verdict is the problem of an argument over all cases, "" for none.
-func (h *heeded) verdict(word, name string) string {
+func (h *heeded) verdict(word string, a stage.Argument) string {
+	name := a.Name
 	switch {
 	case h == nil || h.changed || h.inert:
 		return ""
+	case len(h.tried) == 0 && takesArtifacts(a.Type):
+		return fmt.Sprintf("%s %s was never given: hand an artifact in with Inputs of a case, or say in Inert of a case why none is", word, name)
 	case len(h.tried) == 0:
 		return fmt.Sprintf("%s %s was never varied: the suite cannot guess another value of it; give one in Vary of a case, or say in Inert of a case why it changes nothing there", word, name)
 	}
@@ -72,10 +75,11 @@ func shown(v any) string {
 	if _, ok := v.(leftOut); ok {
 		return "no value"
 	}
-	if text := inJob(v); len(text) < 60 {
-		return text
+	text := []rune(inJob(v))
+	if len(text) < 60 {
+		return string(text)
 	}
-	return inJob(v)[:57] + "…"
+	return string(text[:57]) + "…"
 }
 
 // leftOut stands for an optional argument that is not given.
@@ -180,6 +184,7 @@ func checkHeeded(folder string, s *guarded, registry artifact.Registry, c Case, 
 		var values []any
 		if takesArtifacts(a.Type) {
 			if len(c.Inputs[a.Name]) == 0 {
+				h.inert = h.inert || declared && reason != ""
 				continue
 			}
 			n := c

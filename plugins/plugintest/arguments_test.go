@@ -195,6 +195,15 @@ func TestIgnoredArguments(t *testing.T) {
 	if p := strings.Join(Check(t.TempDir(), asked{describe: few}, asksOf, plain), "\n"); p != want+", or say in Inert of a case why it changes nothing there" {
 		t.Errorf("an argument of any type: %s", p)
 	}
+	few, c = only(t, "more")
+	delete(c.Inputs, "more")
+	if p := strings.Join(Check(t.TempDir(), asked{describe: few}, asksOf, c), "\n"); p != "argument more was never given: hand an artifact in with Inputs of a case, or say in Inert of a case why none is" {
+		t.Errorf("an artifact that is never handed in: %s", p)
+	}
+	c.Inert = map[string]string{"more": "there is only one kind of bead"}
+	if p := Check(t.TempDir(), asked{describe: few}, asksOf, c); len(p) != 0 {
+		t.Errorf("an artifact that need not be handed in: %q", p)
+	}
 	if p := Check(t.TempDir(), asked{}, asksOf); len(p) != 1 || !strings.Contains(p[0], "no case to run was given") {
 		t.Errorf("no case: %q", p)
 	}

@@ -60,10 +60,7 @@ func Check(folder string, s stage.Stage, registry artifact.Registry, cases ...Ca
 		return problems // what changes nothing might be a consequence
 	}
 	for _, a := range s.Describe().Arguments {
-		if heeds[a.Name] == nil && a.Required {
-			continue
-		}
-		if p := heeds[a.Name].verdict("argument", a.Name); p != "" {
+		if p := heeds[a.Name].verdict("argument", a); p != "" {
 			problems = append(problems, p)
 		}
 	}

@@ -85,7 +85,7 @@ func CheckReader(folder string, r extension.Reader, recordings ...Recording) []s
 		return problems // what changes nothing might be a consequence
 	}
 	for _, a := range r.Describe().Arguments {
-		if p := heeds[a.Name].verdict("option", a.Name); p != "" {
+		if p := heeds[a.Name].verdict("option", a); p != "" {
 			problems = append(problems, p)
 		}
 	}
