@@ -22,7 +22,6 @@ var ResponseKind = artifact.Kind{
 		col("blade_share", artifact.Float, "1", "assumed amplitude of the thrust at blade passing, as a share of the thrust"),
 		col("spinning", artifact.Truth, "", "gyroscopic moments of the rotors are in the response"),
 		col("first_mode", artifact.Float, "Hz", "natural frequency of the lowest elastic mode; below it the frame follows its loads as it would at rest"),
-		col("laws_at", artifact.Float, "Hz", "frequency at which stiffness that depends on frequency is taken in the tables whirl and critical; NaN if none does. All else takes it at its own frequency"),
 		col("gyro_noise", artifact.Float, "(rad/s)^2/Hz", "assumed one-sided density of the gyro's own noise on each axis, in the columns flown_ of the spectrum"),
 	},
 	Tables: slices.Concat([]artifact.TableSpec{
@@ -184,7 +183,7 @@ type Response struct {
 	Orders    []ResponseOrder
 	Flown     [3][]float64 // nil when rotors have no speed
 
-	FirstMode, GyroNoise, LawsAt float64
+	FirstMode, GyroNoise float64
 	// Rigid and Static are the spectrum of the frame taken as rigid, and as rigid but for its static give.
 	Rigid, Static [3][]float64
 

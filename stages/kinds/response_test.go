@@ -17,7 +17,7 @@ func sampleResponse() *Response {
 		Peaks: []ResponsePeak{{Axis: "roll", Frequency: 230, Density: 2, Prominence: 30, Damping: 0.01, Modes: []int{3, 4}, Shares: []float64{0.9, -0.1},
 			Rigid: 0.1, Residual: 0.1, Uncorrected: 0.95, Rotor: "fr", Component: 4, ComponentShare: 0.4, Losses: []string{"arm"}, LossShares: []float64{1},
 			ModeShares: []float64{0.9}, RotorShares: []float64{1}}},
-		FirstMode: 150, GyroNoise: 1e-8, LawsAt: 200, Rigid: [3][]float64{{1, 1}, {2, 2}, {3, 3}}, Static: [3][]float64{{4, 4}, {5, 5}, {6, 6}},
+		FirstMode: 150, GyroNoise: 1e-8, Rigid: [3][]float64{{1, 1}, {2, 2}, {3, 3}}, Static: [3][]float64{{4, 4}, {5, 5}, {6, 6}},
 		Map:          ResponseMap{[]float64{100.5, 101.5, 102.5}, 1, []ResponseMapRow{{17, [3][]float64{{1, 2, 3}, {4, 5, 6}, {7, 8, 9}}}, {34, [3][]float64{{1, 1, 1}, {2, 2, 2}, {3, 3, 3}}}}},
 		Flight:       []ResponseFlight{{1600, 0.25}, {1700, 0.75}},
 		Motions:      []ResponseMotion{{BroadbandSource, "all", "roll", 230, []float64{1, 2}, []float64{3, 4}}, {"unbalance", "fr", "", 266, []float64{5, 6}, []float64{7, 8}}},

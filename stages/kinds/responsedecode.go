@@ -15,7 +15,7 @@ func DecodeResponse(a *artifact.Artifact) (*Response, error) {
 	r := &Response{
 		From: a.Float("from"), To: a.Float("to"), ModesTo: a.Float("modes_to"), Force: a.Float("force_density"),
 		Moment: a.Float("moment_density"), Residual: a.Truth("residual"), Thrust: a.Float("thrust"), BladeShare: a.Float("blade_share"),
-		Spinning: a.Truth("spinning"), Speeds: a.Table("speeds").Floats("speed"), FirstMode: a.Float("first_mode"), GyroNoise: a.Float("gyro_noise"), LawsAt: a.Float("laws_at"),
+		Spinning: a.Truth("spinning"), Speeds: a.Table("speeds").Floats("speed"), FirstMode: a.Float("first_mode"), GyroNoise: a.Float("gyro_noise"),
 	}
 	t := a.Table("spectrum")
 	r.Frequency = t.Floats("frequency")

@@ -22,7 +22,7 @@ func EncodeResponse(r *Response) *artifact.Artifact {
 	a.Scalars = map[string]any{
 		"from": r.From, "to": r.To, "modes_to": r.ModesTo, "force_density": r.Force, "moment_density": r.Moment,
 		"residual": r.Residual, "thrust": r.Thrust, "blade_share": r.BladeShare, "spinning": r.Spinning,
-		"first_mode": r.FirstMode, "gyro_noise": r.GyroNoise, "laws_at": r.LawsAt,
+		"first_mode": r.FirstMode, "gyro_noise": r.GyroNoise,
 	}
 	t := a.Table("spectrum").Set("frequency", r.Frequency)
 	for axis, name := range AxisNames {

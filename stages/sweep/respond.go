@@ -54,7 +54,7 @@ func respond(ctx context.Context, basis *modal.Basis, p *airframe.Properties, g 
 	r := &kinds.Response{
 		From: set.from, To: set.to, Force: set.source.Force, Moment: set.source.Moment, Residual: residual,
 		BladeShare: set.bladeShare, Spinning: set.spinning, Thrust: thrust(p), Frequency: grid, Density: sp.Density,
-		GyroNoise: set.noise, FirstMode: first(basis), LawsAt: math.NaN(),
+		GyroNoise: set.noise, FirstMode: first(basis),
 	}
 	rigid, static := sys.Static(grid)
 	r.Rigid, r.Static = rigid.Broadband(set.source).Density, static.Broadband(set.source).Density

@@ -61,7 +61,7 @@ func (f *fleet) narrow(r *kinds.Response, sys *forced.System, set settings) (*fo
 	for _, w := range r.Whirl {
 		for k, freq := range w.Frequency {
 			if freq >= set.from && freq <= set.to && thin(freq, w.Damping[k], set) {
-				return sys.Frozen(set.middle()).Core()
+				return sys.CoreAt(set.middle())
 			}
 		}
 	}
@@ -132,12 +132,13 @@ func spectrumAt(rest *forced.Rest, sys *forced.System, momenta []float64, set se
 
 // sharpen adds the frequencies about thin resonances of this speed.
 func sharpen(ctx context.Context, frequency []float64, density [3][]float64, sys *forced.System, core *forced.Core, momenta []float64, set settings) ([]float64, [3][]float64, error) {
-	poles, err := core.Poles(momenta, set.from, set.to)
+	const margin = 1.5 // laws may bring a motion in or out
+	poles, err := core.Poles(momenta, set.from/margin, margin*set.to)
 	if err != nil {
 		return nil, density, err
 	}
 	var sharp []forced.Resonance
-	for _, p := range poles {
+	for _, p := range core.SettleAll(poles, func(float64) []float64 { return momenta }) {
 		if thin(p.Frequency, p.Damping, set) {
 			sharp = append(sharp, forced.Resonance{Frequency: p.Frequency, LossFactor: 2 * p.Damping})
 		}

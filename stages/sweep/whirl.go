@@ -39,6 +39,7 @@ type fleet struct {
 	speeds    []float64 // rad/s
 	couplings []forced.Gyroscopic
 	diagram   *rotor.Diagram // nil when nothing whirls
+	upTo      float64        // of the diagram, Hz
 	flown     [][]normal     // speeds over a flight, per rotor
 }
 
@@ -132,12 +133,7 @@ func (f *fleet) polesNear(frequency float64, sys *forced.System, set settings) (
 	if err != nil {
 		return nil, nil, err
 	}
-	known, _ := f.poles(set)
-	highest := 0.0
-	for _, p := range known {
-		highest = max(highest, 1.5*p.Frequency)
-	}
-	all, err := core.Poles(sys.Momenta(), 1, highest)
+	all, err := core.Poles(sys.Momenta(), 1, 1.5*f.upTo)
 	if err != nil {
 		return nil, nil, err
 	}
@@ -214,16 +210,16 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 			upTo = max(upTo, 1.1*basis.Frequency[v])
 		}
 	}
-	if sys.Varies() {
-		r.LawsAt = set.middle()
-	}
-	d, err := list.Campbell(ctx, sys.Frozen(set.middle()), elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), upTo, threads)
+	d, err := list.Campbell(ctx, sys, elastic, ladder(highest, f.rotors[0].HoverSpeed, f.speeds[0]), set.middle(), upTo, threads)
 	if err != nil {
 		return err
 	}
-	f.diagram = d
+	f.diagram, f.upTo = d, upTo
 	r.Speeds = d.Speeds
 	for _, l := range d.Lines {
+		if math.IsNaN(l.Frequency[0]) {
+			continue // a law damps it so that it does not swing
+		}
 		r.Whirl = append(r.Whirl, kinds.ResponseWhirl{Mode: l.Mode + 1, Frequency: l.Frequency, Damping: l.Damping, Direction: l.Whirl})
 	}
 	for _, c := range d.Critical {
@@ -239,8 +235,8 @@ func (f *fleet) whirl(ctx context.Context, r *kinds.Response, basis *modal.Basis
 	return nil
 }
 
-// middle is the frequency of the sweep at which stiffness that depends on
-// frequency is taken for natural motions and critical speeds.
+// middle is the frequency of the sweep from which the search for natural motions under
+// laws over frequency begins.
 func (s settings) middle() float64 { return math.Sqrt(s.from * s.to) }
 
 // ladder gives even speeds from 0 to the highest with the marked ones among

@@ -54,7 +54,7 @@ func whirlTable(r *kinds.Response) stage.Section {
 	here := at(r.Speeds, r.Rotors[0].Speed)
 	s := stage.Section{
 		Title: "Modes that move with rotor speed",
-		Text:  lawsText(r) + "direction: 1 when rotors tilt round with their spin, −1 against it, 0 to and fro. The last columns are the speeds in rpm at which an order meets the mode",
+		Text:  "mounts with a law over frequency are taken as they are at the frequency of each motion. Direction: 1 when rotors tilt round with their spin, −1 against it, 0 to and fro. The last columns are the speeds in rpm at which an order meets the mode",
 		Columns: []stage.Column{{Name: "mode", Right: true}, {Name: "at rest, Hz", Right: true}, {Name: speedName(r) + ", Hz", Right: true},
 			{Name: fmt.Sprintf("%.0f rpm, Hz", r.Speeds[last]/rpm), Right: true}, {Name: "damping, %", Right: true}, {Name: "direction", Right: true}, {Name: "critical speeds"}},
 	}
@@ -130,12 +130,4 @@ func separationTable(r *kinds.Response) stage.Section {
 			dash("%+.1f", 10*math.Log10(x.Amplification[axis]))})
 	}
 	return s
-}
-
-// lawsText says at what frequency mounts with a law are taken.
-func lawsText(r *kinds.Response) string {
-	if math.IsNaN(r.LawsAt) {
-		return ""
-	}
-	return fmt.Sprintf("mounts with a law over frequency are taken as they are at %.0f Hz. ", r.LawsAt)
 }

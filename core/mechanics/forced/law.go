@@ -44,8 +44,8 @@ func (l *law) factor() {
 func (s *System) Varies() bool { return len(s.laws) > 0 }
 
 // Frozen gives the same system with every stiffness that depends on frequency
-// taken as it is at one, Hz, everywhere: what natural motions and critical
-// speeds are reckoned with. It is s itself where none does.
+// taken as it is at one, Hz, everywhere: what natural motions near that frequency
+// are reckoned with. It is s itself where none does.
 func (s *System) Frozen(frequency float64) *System {
 	if len(s.laws) == 0 {
 		return s

@@ -33,6 +33,9 @@ type Core struct {
 	// back[c] gives coordinate c in terms of the vectors in use.
 	back     [][]float64
 	momentum []float64
+	// laws are over the coordinates, and soft holds them as they are at lawsAt, Hz; see CoreAt.
+	laws   []law
+	lawsAt float64
 }
 
 // Core condenses the system. It fails when the small eigenproblem does. It

@@ -4,7 +4,6 @@ import (
 	"context"
 	"fmt"
 	"math"
-	"math/cmplx"
 	"sort"
 	"sync"
 
@@ -86,6 +85,8 @@ type Line struct {
 	Damping   []float64 // damping ratio
 	Whirl     []float64 // see Fleet.Direction
 	shapes    [][]complex128
+	// begun is the motion with all laws as they are at one frequency; without shape where it was not followed.
+	begun []forced.Pole
 }
 
 // Pole is the motion of the line at speed k; ok is false where it could not be
@@ -109,41 +110,55 @@ type Critical struct {
 // Campbell follows the poles of a system from rest to the given speeds of the
 // reference (rad/s, ascending from 0) on some threads, for elastic modes from
 // 0 Hz up to a frequency; elastic lists the places of the elastic modes among the vectors of the system.
-// Critical speeds are those up to the last speed. The result does not depend on threads.
-func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, speeds []float64, upTo float64, threads int) (*Diagram, error) {
+// Critical speeds are those up to the last speed. Stiffness that depends on frequency is taken at that of each motion;
+// the search begins with it as it is at lawsAt, Hz. The result does not depend on threads.
+func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, speeds []float64, lawsAt, upTo float64, threads int) (*Diagram, error) {
 	if len(speeds) == 0 || speeds[0] != 0 || !sort.Float64sAreSorted(speeds) {
 		panic("rotor: the speeds of a diagram ascend from 0")
 	}
-	core, err := s.Core()
+	core, err := s.CoreAt(lawsAt)
 	if err != nil {
 		return nil, err
 	}
 	const margin = 1.5 // lines may leave the range upward and come back
 	poles := make([][]forced.Pole, len(speeds))
 	failed := make([]error, len(speeds))
-	var group sync.WaitGroup
-	threads = max(1, min(threads, len(speeds)))
-	for w := range threads {
-		group.Go(func() {
-			for k := w; k < len(speeds); k += threads {
-				if failed[k] = ctx.Err(); failed[k] == nil {
-					poles[k], failed[k] = core.Poles(f.Momenta(speeds[k]), 1, margin*upTo)
-				}
-			}
-		})
-	}
-	group.Wait()
+	each(len(speeds), threads, func(k int) {
+		if failed[k] = ctx.Err(); failed[k] == nil {
+			poles[k], failed[k] = core.Poles(f.Momenta(speeds[k]), 1, margin*upTo)
+		}
+	})
 	for _, err := range failed {
 		if err != nil {
 			return nil, err
 		}
 	}
 	d := &Diagram{Speeds: speeds, Lines: begin(poles[0], elastic, len(speeds), upTo)}
-	d.follow(f, s.Vectors(), poles)
+	d.follow(poles)
+	each(len(speeds), threads, func(k int) {
+		momenta := f.Momenta(speeds[k])
+		for i := range d.Lines {
+			d.Lines[i].settle(f, core, s.Vectors(), k, momenta)
+		}
+	})
 	if err := d.critical(f, core, s.Vectors(), upTo); err != nil {
 		return nil, err
 	}
 	return d, nil
+}
+
+// each calls do for 0 to n−1 on some threads.
+func each(n, threads int, do func(k int)) {
+	var group sync.WaitGroup
+	threads = max(1, min(threads, n))
+	for w := range threads {
+		group.Go(func() {
+			for k := w; k < n; k += threads {
+				do(k)
+			}
+		})
+	}
+	group.Wait()
 }
 
 // begin makes one line of each pole at rest that is mostly one elastic mode.
@@ -154,11 +169,11 @@ func begin(poles []forced.Pole, elastic []int, speeds int, upTo float64) []Line 
 		if p < 0 || poles[p].Frequency > upTo {
 			continue
 		}
-		l := Line{Mode: mode, shapes: make([][]complex128, speeds)}
+		l := Line{Mode: mode, shapes: make([][]complex128, speeds), begun: make([]forced.Pole, speeds)}
 		for range speeds {
 			l.Frequency, l.Damping, l.Whirl = append(l.Frequency, math.NaN()), append(l.Damping, math.NaN()), append(l.Whirl, math.NaN())
 		}
-		l.Frequency[0], l.shapes[0] = poles[p].Frequency, poles[p].Shape
+		l.begun[0] = poles[p]
 		lines = append(lines, l)
 	}
 	return lines
@@ -166,38 +181,46 @@ func begin(poles []forced.Pole, elastic []int, speeds int, upTo float64) []Line 
 
 // follow carries each line from speed to speed to the pole whose shape and
 // frequency are most like the last of the line.
-func (d *Diagram) follow(f *Fleet, vectors []int, poles [][]forced.Pole) {
+func (d *Diagram) follow(poles [][]forced.Pole) {
 	last := make([]int, len(d.Lines)) // speed at which the line was last seen
 	for k := range d.Speeds {
 		score := func(line, p int) float64 {
-			l := &d.Lines[line]
-			from := l.shapes[last[line]]
-			off := (poles[k][p].Frequency/l.Frequency[last[line]] - 1) / 0.05
-			return likeness(from, poles[k][p].Shape) / (1 + off*off)
+			from := d.Lines[line].begun[last[line]]
+			off := (poles[k][p].Frequency/from.Frequency - 1) / 0.05
+			return forced.Likeness(from.Shape, poles[k][p].Shape) / (1 + off*off)
 		}
 		for line, p := range match(len(d.Lines), len(poles[k]), score) {
-			if p < 0 {
-				continue
+			if p >= 0 {
+				d.Lines[line].begun[k] = poles[k][p]
+				last[line] = k
 			}
-			l := &d.Lines[line]
-			l.Frequency[k], l.Damping[k], l.shapes[k] = poles[k][p].Frequency, poles[k][p].Damping, poles[k][p].Shape
-			l.Whirl[k] = f.Direction(vectors, poles[k][p].Shape)
-			last[line] = k
 		}
 	}
 }
 
+// settle fills in the line at speed k with the laws at its own frequency.
+func (l *Line) settle(f *Fleet, core *forced.Core, vectors []int, k int, momenta []float64) {
+	if l.begun[k].Shape == nil {
+		return
+	}
+	p, ok := core.Settle(l.begun[k], func(float64) []float64 { return momenta })
+	if !ok {
+		return
+	}
+	l.Frequency[k], l.Damping[k], l.shapes[k] = p.Frequency, p.Damping, p.Shape
+	l.Whirl[k] = f.Direction(vectors, p.Shape)
+}
+
 // Recognise says which line each of some poles continues at speed k: places in
-// Lines, −1 for none. The poles are of the same frame with stiffness somewhat different, as laws
-// taken at another frequency make it.
+// Lines, −1 for none. The poles are of the same frame with all laws taken at some frequency.
 func (d *Diagram) Recognise(poles []forced.Pole, k int) []int {
 	score := func(line, p int) float64 {
-		l := &d.Lines[line]
-		if l.shapes[k] == nil {
+		from := d.Lines[line].begun[k]
+		if from.Shape == nil {
 			return 0
 		}
-		off := (poles[p].Frequency/l.Frequency[k] - 1) / 0.2
-		return likeness(l.shapes[k], poles[p].Shape) / (1 + off*off)
+		off := (poles[p].Frequency/from.Frequency - 1) / 0.2
+		return forced.Likeness(from.Shape, poles[p].Shape) / (1 + off*off)
 	}
 	out := make([]int, len(poles))
 	for p := range out {
@@ -239,15 +262,6 @@ func match(rows, cols int, score func(row, col int) float64) []int {
 	return out
 }
 
-// likeness is the square of the cosine between shapes of unit length.
-func likeness(a, b []complex128) float64 {
-	var sum complex128
-	for v := range a {
-		sum += cmplx.Conj(a[v]) * b[v]
-	}
-	return square(sum)
-}
-
 // critical finds the critical speeds of orders 1, 2, blade passing and twice
 // that, for each set of rotors with one speed and number of blades.
 func (d *Diagram) critical(f *Fleet, core *forced.Core, vectors []int, upTo float64) error {
@@ -272,7 +286,14 @@ func (d *Diagram) critical(f *Fleet, core *forced.Core, vectors []int, upTo floa
 			if err != nil {
 				return err
 			}
-			for _, p := range poles {
+			momenta := func(omega float64) []float64 {
+				out := make([]float64, len(ratio))
+				for r, x := range ratio {
+					out[r] = x * omega
+				}
+				return out
+			}
+			for _, p := range core.SettleAll(poles, momenta) {
 				// The order meets the frequency of the motion, Re λ.
 				omega := 2 * math.Pi * p.Frequency * math.Sqrt(1-p.Damping*p.Damping)
 				c := Critical{Order: order, Rotors: alike, Speed: omega / float64(order), Frequency: omega / (2 * math.Pi),
@@ -302,7 +323,7 @@ func (d *Diagram) nearest(speed float64, p forced.Pole) int {
 			continue
 		}
 		off := (p.Frequency/l.Frequency[k] - 1) / 0.05
-		if x := likeness(l.shapes[k], p.Shape) / (1 + off*off); x > best {
+		if x := forced.Likeness(l.shapes[k], p.Shape) / (1 + off*off); x > best {
 			best, at = x, i
 		}
 	}

@@ -278,7 +278,7 @@ func TestOverhungDiscIsCritical(t *testing.T) {
 	for k := range speeds {
 		speeds[k] = float64(k) * 2000 * rpm
 	}
-	d, err := fleet.Campbell(t.Context(), s, []int{0, 1, 2, 3}, speeds, 4000, 2)
+	d, err := fleet.Campbell(t.Context(), s, []int{0, 1, 2, 3}, speeds, 100, 4000, 2)
 	if err != nil {
 		t.Fatal(err)
 	}
