@@ -52,7 +52,7 @@ Exit codes:
 		ValidArgsFunction: completeJob,
 	}
 	c.Flags().BoolVar(&asJSON, "json", false, "write the result as one JSON object")
-	c.Flags().StringVar(&page, "page", "", `also write it as a page that opens without a network, such as "change.html"; its tables go beside it`)
+	c.Flags().StringVar(&page, "page", "", `write it as a page too, such as "change.html", with its tables beside it`)
 	c.RunE = func(_ *cobra.Command, args []string) error {
 		if page != "" {
 			if err := checkPage(page); err != nil {

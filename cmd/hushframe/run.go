@@ -38,7 +38,7 @@ numbers are in SI units, and runs that come to the same write the same bytes.
 	job.add(c)
 	c.Flags().IntVar(&threads, "threads", 0, "threads for all steps together (default: as many as the machine has)")
 	c.Flags().StringVar(&memory, "memory", "", `memory for all steps together, such as "8 GiB" (default: no limit)`)
-	c.Flags().StringVar(&name, "name", "", "keep the run under a name, for diff: prune leaves it alone until the name is given to another run")
+	c.Flags().StringVar(&name, "name", "", "keep the run under a name, for diff; prune leaves it alone")
 	c.Flags().BoolVar(&asJSON, "json", false, "write the result as one JSON object in place of tables")
 	c.Flags().BoolVar(&force, "force", false, "run every step, also those whose inputs are as before")
 	c.Flags().BoolVar(&verify, "verify", false, "read and check stored results in full before they are reused")
