@@ -131,15 +131,22 @@ func TestEliminationChangesRows(t *testing.T) {
 		}
 	}
 	direct := append([]complex128(nil), side...)
+	var beside []complex128 // the matrix with two sides right of it
+	for i := range want {
+		beside = append(append(beside, a[3*i:3*i+3]...), side[i], 2*side[i])
+	}
 	r := reduce(append([]complex128(nil), a...), 3)
 	x := r.turn(side)
-	if !r.solve(0, make([]complex128, 9), x) || !factorSolve(a, 3, direct) {
+	if !r.solve(0, make([]complex128, 9), x) || !factorSolve(a, 3, direct) || !eliminate(beside, 3, 5) {
 		t.Fatal("called singular")
 	}
 	x = r.turnBack(x)
 	for i := range want {
 		if cmplx.Abs(x[i]-want[i]) > 1e-14 || cmplx.Abs(direct[i]-want[i]) > 1e-14 {
 			t.Errorf("x[%d] = %v and %v, want %v", i, x[i], direct[i], want[i])
+		}
+		if got := beside[5*i+3 : 5*i+5]; cmplx.Abs(got[0]-want[i]) > 1e-14 || cmplx.Abs(got[1]-2*want[i]) > 1e-14 {
+			t.Errorf("sides give %v, want %v and its double", got, want[i])
 		}
 	}
 }
