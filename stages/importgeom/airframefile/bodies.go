@@ -99,8 +99,16 @@ func (b *block) rotor() Rotor {
 	if r.SpinningMass.Value > r.Mass+r.PropellerMass.Value {
 		b.fail(b.head(), "spinning_mass is above the mass of motor and propeller")
 	}
+	// Nothing of that mass within that radius has more, were all of it at the rim.
+	mass, radius := r.Mass+r.PropellerMass.Value, max(r.PropellerDiameter.Or(widestPropeller), r.Diameter.Value)/2
+	if most := mass * radius * radius; mass > 0 && r.PolarInertia.Value > most {
+		b.fail(b.hcl.Body.Attributes["polar_inertia"].Expr.Range(), "polar_inertia is %.3g kg*mm^2, and %.3g g within a radius of %.3g mm have at most %.3g", 1e6*r.PolarInertia.Value, 1e3*mass, 1e3*radius, 1e6*most)
+	}
 	return r
 }
+
+// widestPropeller is the diameter of a propeller that is not given, m, in checks of what is possible.
+const widestPropeller = 1
 
 // motor holds the motor to be given whole or as bell and stator.
 func (b *block) motor(r *Rotor) {

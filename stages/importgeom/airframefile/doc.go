@@ -222,6 +222,9 @@
 //	  }
 //	}
 //
+// On a tilted plate x and y of a place mean that point of its mid-surface; bodies stand square to the plate, standoffs along
+// airframe z. Nothing can be put by x and y on a plate that stands upright, such as a fin on a seam.
+//
 // Every default that is used is noted by the stage. Mistakes are gathered and reported with line, offending text
 // and the nearest valid name.
 package airframefile
