@@ -39,12 +39,17 @@ func (s *System) add(threads int) {
 		elements[i] = sparse.Element{Unknowns: s.entries[i].unknowns, Leading: s.entries[i].columns}
 	}
 	s.assembler = sparse.NewAssemblerThreads(s.N, elements, threads)
-	k := s.assembler.Fork()
-	k.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].stiffnessOver(packed) })
-	s.K = k.Matrix()
-	m := s.assembler.Fork()
-	m.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].reduce(packed, s.entries[e].mass) })
-	s.M = m.Matrix()
+	// One matrix is worked on while the other waits for the last of its batch.
+	dense.Parallel(threads, 2, func(which int) {
+		a := s.assembler.Fork()
+		if which == 0 {
+			a.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].stiffnessOver(packed) })
+			s.K = a.Matrix()
+			return
+		}
+		a.AddAll(threads, func(e int, packed []float64) []float64 { return s.entries[e].reduce(packed, s.entries[e].mass) })
+		s.M = a.Matrix()
+	})
 }
 
 // stiffnessOver gives the stiffness over the unknowns, in dst or where it stands; nil where there is none.

@@ -11,6 +11,8 @@
 //	             for its drilling rotation, which stays its own unknown.
 //	spring       six stiffness components between two bodies, or a body and the ground, acting at a
 //	             point in a frame of its own. A component of +Inf is rigid and is eliminated.
+//	contact      springs spread over an area or along a line, between the interpolated motions of two
+//	             plates; a sum over pairs of nodes that a point sees together.
 //	group        what strain energy and damping are told apart by: a part, joint or mount.
 //	unknown      an independent number y_i: a component of a free node, of a body, or a drilling
 //	             rotation. All motion is q = T y; K = Tᵀ K_e T summed over the elements, likewise M.

@@ -46,9 +46,9 @@ type tiedArms struct {
 // sameArm is how far arms of points may differ, in metres, to be taken as one: far above rounding, far below any plate.
 const sameArm = 1e-10
 
-// patch is a run of points between the same two elements, of equal arms, with the products of all shape functions. Nodes of
+// overlap is a run of points between the same two elements, of equal arms, with the products of all shape functions. Nodes of
 // side 1 follow those of side 0.
-type patch struct {
+type overlap struct {
 	nodes [12]int32 // of the tied
 	count int
 	arms  int32
@@ -75,7 +75,7 @@ func (s *System) contactContributions(all []contribution, columns [][]column, th
 // tie gathers the points of a contact.
 func (l *layout) tie(c *Contact, columns [][]column) *tied {
 	t := &tied{}
-	patches := l.patches(c, t)
+	overlaps := l.overlaps(c, t)
 	axes := l.tiedAxes(c, t)
 	for i := range t.nodes {
 		n := &t.nodes[i]
@@ -93,13 +93,13 @@ func (l *layout) tie(c *Contact, columns [][]column) *tied {
 	for i := range t.arms {
 		t.arms[i].set(c, axes)
 	}
-	t.pair(patches)
+	t.pair(overlaps)
 	return t
 }
 
-// patches divides the points into runs and numbers nodes and arms as they come.
-func (l *layout) patches(c *Contact, t *tied) []patch {
-	var all []patch
+// overlaps divides the points into runs and numbers nodes and arms as they come.
+func (l *layout) overlaps(c *Contact, t *tied) []overlap {
+	var all []overlap
 	var number [2][]int32 // of the nodes of a side, from 1
 	for side := range number {
 		number[side] = make([]int32, len(l.nodes))
@@ -112,7 +112,7 @@ func (l *layout) patches(c *Contact, t *tied) []patch {
 			t.arms = append(t.arms, tiedArms{at: arms})
 		}
 		if turned || x.Sides[0].Nodes != c.Points[i-1].Sides[0].Nodes || x.Sides[1].Nodes != c.Points[i-1].Sides[1].Nodes {
-			all = append(all, patch{arms: int32(len(t.arms) - 1)})
+			all = append(all, overlap{arms: int32(len(t.arms) - 1)})
 			p := &all[len(all)-1]
 			for side := range x.Sides {
 				for _, v := range x.Sides[side].Nodes[:x.Sides[side].Count] {
@@ -135,7 +135,7 @@ func near(a, b [2]Vec) bool {
 }
 
 // addPoint adds the products of the shape functions at a point.
-func (p *patch) addPoint(x *ContactPoint) {
+func (p *overlap) addPoint(x *ContactPoint) {
 	var weights [12]float64
 	n := copy(weights[:], x.Sides[0].Weights[:x.Sides[0].Count])
 	copy(weights[n:], x.Sides[1].Weights[:x.Sides[1].Count])
@@ -185,12 +185,12 @@ func (r *tiedArms) set(c *Contact, axes [2]Axes) {
 	}
 }
 
-// pair sums the patches by pairs of nodes.
-func (t *tied) pair(patches []patch) {
-	type use struct{ patch, at int32 }
+// pair sums the overlaps by pairs of nodes.
+func (t *tied) pair(overlaps []overlap) {
+	type use struct{ overlap, at int32 }
 	start := make([]int32, len(t.nodes)+1)
-	for i := range patches {
-		for _, v := range patches[i].nodes[:patches[i].count] {
+	for i := range overlaps {
+		for _, v := range overlaps[i].nodes[:overlaps[i].count] {
 			start[v+1]++
 		}
 	}
@@ -199,8 +199,8 @@ func (t *tied) pair(patches []patch) {
 	}
 	uses := make([]use, start[len(t.nodes)])
 	next := append([]int32(nil), start...)
-	for i := range patches {
-		for at, v := range patches[i].nodes[:patches[i].count] {
+	for i := range overlaps {
+		for at, v := range overlaps[i].nodes[:overlaps[i].count] {
 			uses[next[v]] = use{int32(i), int32(at)}
 			next[v]++
 		}
@@ -210,7 +210,7 @@ func (t *tied) pair(patches []patch) {
 	for v := range t.nodes {
 		from, arms := int32(len(t.pairs)), int32(-1)
 		for _, u := range uses[start[v]:start[v+1]] {
-			p := &patches[u.patch]
+			p := &overlaps[u.overlap]
 			if p.arms != arms {
 				from, arms = int32(len(t.pairs)), p.arms
 			}

@@ -4,6 +4,7 @@ import (
 	"math"
 	"math/rand/v2"
 	"slices"
+	"strconv"
 	"testing"
 
 	"hushframe/core/numeric/sparse"
@@ -12,7 +13,13 @@ import (
 // Elements on nodes of several unknowns, over more columns than one goroutine takes at a time: the pattern and the sums are
 // those of a map, for every number of threads. Some unknowns are left out, some occur twice, some nodes lie in no element.
 func TestNodesInManyRanges(t *testing.T) {
-	const nodes, per = 1100, 5
+	for _, per := range []int{1, 5, 6} {
+		t.Run(strconv.Itoa(per), func(t *testing.T) { nodesInManyRanges(t, per) })
+	}
+}
+
+func nodesInManyRanges(t *testing.T, per int) {
+	const nodes = 1100
 	r := rand.New(rand.NewPCG(6, 2))
 	n := nodes * per
 	var elements [][]int32
@@ -87,7 +94,13 @@ func TestNodesInManyRanges(t *testing.T) {
 // Elements of which only the first columns exist: the sums are those of a map, for every number of threads, and what is
 // not coupled has no entry. Elements may name unknowns twice, in the columns, beyond them, or in both.
 func TestLeadingColumns(t *testing.T) {
-	const nodes, per = 700, 4
+	for _, per := range []int{1, 4, 6} {
+		t.Run(strconv.Itoa(per), func(t *testing.T) { leadingColumns(t, per) })
+	}
+}
+
+func leadingColumns(t *testing.T, per int) {
+	const nodes = 700
 	r := rand.New(rand.NewPCG(6, 3))
 	n := nodes * per
 	var elements []sparse.Element
@@ -177,6 +190,21 @@ func TestLeadingColumns(t *testing.T) {
 					t.Fatalf("entry (%d, %d) is %g, want %g", first.Row[p], j, first.Val[p], v)
 				}
 			}
+		}
+	}
+}
+
+// The columns of an element end within a row of unknowns that follow one another.
+func TestLeadingColumnsEndWithinARun(t *testing.T) {
+	a := sparse.NewAssemblerThreads(4, []sparse.Element{{Unknowns: []int32{0, 1, 2, 3}, Leading: 2}}, 1)
+	a.Add(0, []float64{1, 2, 3, 4, 5, 6, 7})
+	s := a.Matrix()
+	for _, x := range []struct {
+		i, j int
+		want float64
+	}{{0, 0, 1}, {1, 0, 2}, {1, 1, 3}, {2, 0, 4}, {2, 1, 5}, {2, 2, 0}, {3, 0, 6}, {3, 1, 7}, {3, 2, 0}, {3, 3, 0}} {
+		if got := s.At(x.i, x.j); got != x.want {
+			t.Errorf("entry (%d, %d) is %g, want %g", x.i, x.j, got, x.want)
 		}
 	}
 }

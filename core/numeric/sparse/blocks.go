@@ -33,13 +33,15 @@ func findBlocks(n int, elements []Element) []int32 {
 			if int(u) >= n {
 				panic(fmt.Sprintf("sparse: NewAssembler: element %d has unknown %d of %d", e, u, n))
 			}
-			if last >= 0 && (u != last+1 || i == columns) {
-				marks[last+1] |= cut
-			}
-			if u >= 0 {
-				if last < 0 || u != last+1 || i == columns {
+			if last < 0 || u != last+1 || i == columns {
+				if last >= 0 {
+					marks[last+1] |= cut
+				}
+				if u >= 0 {
 					marks[u] |= cut
 				}
+			}
+			if u >= 0 {
 				marks[u] |= used
 			}
 			last = u

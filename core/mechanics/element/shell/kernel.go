@@ -149,12 +149,13 @@ func (k *kernel) stiffness(s *laminate.Section) {
 		gx, gy := &k.gx[p], &k.gy[p]
 		for b := range n + 1 {
 			// Stress resultants of unit amplitudes at node b: columns u and v.
-			am, bm, dm := columns(&s.A, w, gx[b], gy[b]), columns(&s.B, w, gx[b], gy[b]), columns(&s.D, w, gx[b], gy[b])
+			am, dm := columns(&s.A, w, gx[b], gy[b]), columns(&s.D, w, gx[b], gy[b])
 			if b < n {
 				for a := b; a < n; a++ {
 					addPair(&k.k, 2*a, 2*b, gx[a], gy[a], &am)
 				}
 				if coupled {
+					bm := columns(&s.B, w, gx[b], gy[b])
 					for a := range n + 1 {
 						addPair(&k.k, fibre+2*a, 2*b, gx[a], gy[a], &bm)
 					}
@@ -166,10 +167,12 @@ func (k *kernel) stiffness(s *laminate.Section) {
 		}
 		sx, sy := &k.shear[p][0], &k.shear[p][1]
 		width := 3*n + 2
-		for j := range width {
-			qx, qy := w*(s.Shear[0][0]*sx[j]+s.Shear[0][1]*sy[j]), w*(s.Shear[1][0]*sx[j]+s.Shear[1][1]*sy[j])
-			for i := j; i < width; i++ {
-				k.k[defl+i][defl+j] += sx[i]*qx + sy[i]*qy
+		var qx, qy [3*maxNodes + 2]float64
+		for i := range width {
+			qx[i], qy[i] = w*(s.Shear[0][0]*sx[i]+s.Shear[0][1]*sy[i]), w*(s.Shear[1][0]*sx[i]+s.Shear[1][1]*sy[i])
+			x, y, row := sx[i], sy[i], k.k[defl+i][defl:][:i+1]
+			for j := range row {
+				row[j] += x*qx[j] + y*qy[j]
 			}
 		}
 		k.addDrilling(p, w*drill)
@@ -231,8 +234,9 @@ func (k *kernel) condense() {
 	}
 	for i := range b {
 		x, y := k.k[b][i], k.k[b+1][i]
-		for j := range i + 1 {
-			k.k[i][j] -= x*k.bubble[0][j] + y*k.bubble[1][j]
+		row, first, second := k.k[i][:i+1], k.bubble[0][:i+1], k.bubble[1][:i+1]
+		for j := range row {
+			row[j] -= x*first[j] + y*second[j]
 		}
 	}
 }
