@@ -4,6 +4,7 @@ import (
 	"bufio"
 	"bytes"
 	"cmp"
+	"compress/gzip"
 	"context"
 	"errors"
 	"fmt"
@@ -89,6 +90,11 @@ func (p *parser) run(ctx context.Context, text *bufio.Reader, sink func(recordin
 			p.batch.Findings = append(p.batch.Findings, recording.Finding{What: "cut off", Consequence: "what came after is lost",
 				Extent: fmt.Sprintf("the compressed file ends in its middle, after row %d, byte %d of the text", p.row, p.at+int64(len(line)))})
 			return nil
+		}
+		if errors.Is(err, gzip.ErrHeader) && p.row > 0 {
+			p.batch.Findings = append(p.batch.Findings, recording.Finding{What: "bytes after the end", Consequence: "what they were meant to be is lost",
+				Extent: fmt.Sprintf("the compressed text ends after byte %d, and bytes follow that are none", p.at+int64(len(line)))})
+			err = io.EOF
 		}
 		if err != nil && !errors.Is(err, io.EOF) {
 			return readError(err, p.at+int64(len(line)))

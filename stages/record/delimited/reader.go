@@ -58,7 +58,7 @@ func open(source io.Reader, options map[string]string) (*bufio.Reader, layout, e
 		return nil, layout{}, err
 	}
 	sample, err := text.Peek(sampleSize)
-	if err != nil && !errors.Is(err, io.EOF) && !(errors.Is(err, io.ErrUnexpectedEOF) && len(sample) > 0) {
+	if err != nil && !errors.Is(err, io.EOF) && !((errors.Is(err, io.ErrUnexpectedEOF) || errors.Is(err, gzip.ErrHeader)) && len(sample) > 0) {
 		return nil, layout{}, readError(err, int64(len(sample)))
 	}
 	if bytes.IndexByte(sample, '\n') < 0 && bytes.IndexByte(sample, '\r') >= 0 {

@@ -134,6 +134,19 @@ func TestFirstRowsAreHurt(t *testing.T) {
 	}
 }
 
+// Bytes after the end of a compressed text are told; all rows of the text are read.
+func TestBytesAfterTheCompressedEnd(t *testing.T) {
+	var packed bytes.Buffer
+	z := gzip.NewWriter(&packed)
+	io.WriteString(z, "t,gx\n0,5\n1,6\n2,7")
+	z.Close()
+	packed.WriteString("not a second part of it")
+	got, err := readAll(&packed, recording.Request{Columns: []string{"gx"}})
+	if err != nil || !same(got.values[0], []float64{5, 6, 7}) || len(got.findings) != 1 || !strings.Contains(got.findings[0].Extent, "ends after byte 16, and bytes follow") {
+		t.Errorf("%v, %+v, %v", got.values, got.findings, err)
+	}
+}
+
 func TestTextColumnsAndEmptyCells(t *testing.T) {
 	text := "state,t,ax,note\nS,0,,x\nS,1,5,\nM,2,,y\n"
 	h, err := Reader{}.Inspect(context.Background(), strings.NewReader(text), map[string]string{"separator": "comma"})
