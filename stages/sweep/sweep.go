@@ -107,7 +107,7 @@ frequencies, and the difference is shown.`,
 			{Name: "speed_at_throttle", About: "speed of the first rotor at some throttles, straight between them, for throttle_flown or for a recording that has throttle and no rotor speeds",
 				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
 					{Name: "throttle", About: "throttle, from 0 to 1", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.2", Min: &zero, Max: &one},
-					{Name: "speed", About: "speed of the first rotor there", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: "9500 rpm", Above: &zero},
+					{Name: "speed", About: "speed of the first rotor there", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: `"9500 rpm"`, Above: &zero},
 				}}}, Example: `[{ throttle = 0.2, speed = "9500 rpm" }, { throttle = 0.7, speed = "24000 rpm" }]`},
 			{Name: "map_speeds", About: "number of even rotor speeds, up to the highest, of the maps over rotor speed",
 				Type: stage.Type{Kind: stage.Whole}, Default: 200.0, Example: "200", Min: &one, Max: &many},
