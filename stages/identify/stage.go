@@ -1,6 +1,6 @@
 // Package identify is the stage that finds modes in a recording without knowing the force.
 //
-// The samples come from package gather; rotor orders are taken out where speeds are recorded (orders.go); the modes come
+// The samples come from package gather; rotor orders are taken out where speeds are recorded, or followed and sure (orders.go); the modes come
 // from core/signal/identify; what was found is told in outcome.go.
 package identify
 

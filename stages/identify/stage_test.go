@@ -212,7 +212,17 @@ func TestSandpiperWithoutSpeeds(t *testing.T) {
 	if err := os.WriteFile(filepath.Join(folder, "a.csv"), []byte(kept.String()), 0o644); err != nil {
 		t.Fatal(err)
 	}
-	x, o, err := run(t, folder, stage.Arguments{"file": "a.csv", "window": seconds(14, 72), "find_rotors": 4.0,
+	// Too short to be sharpened: orders are told apart only, and that is said.
+	x, o, err := run(t, folder, stage.Arguments{"file": "a.csv", "window": seconds(20, 25), "find_rotors": 2.0, "to": hertz(240),
+		"columns": map[string]any{"time": "time_us", "roll": "gx", "pitch": "-gy", "yaw": "-gz"},
+		"units":   map[string]any{"gx": "deg/s", "gy": "deg/s", "gz": "deg/s"}})
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(x.Removed) > 0 || len(x.Tracks) != 2 || !math.IsNaN(x.Tracks[0].SpeedError) || !strings.Contains(strings.Join(o.Notes, "\n"), "could not be sharpened") {
+		t.Errorf("%d orders are taken out, %d tracks, %v", len(x.Removed), len(x.Tracks), o.Notes)
+	}
+	x, o, err = run(t, folder, stage.Arguments{"file": "a.csv", "window": seconds(14, 72), "find_rotors": 4.0,
 		"columns": map[string]any{"time": "time_us", "roll": "gx", "pitch": "-gy", "yaw": "-gz"},
 		"units":   map[string]any{"gx": "deg/s", "gy": "deg/s", "gz": "deg/s"}})
 	if err != nil {

@@ -7,18 +7,32 @@ import (
 
 	"hushframe/core/signal/order"
 	"hushframe/stages/kinds"
+	"hushframe/stages/record/gather"
 )
+
+// What stays of an order: a tenth where the speed is recorded, all where it is not sure, exp((n·e)²)-1 over what is taken out where the angle is
+// off by e, but no less than a tenth.
+func TestRemaining(t *testing.T) {
+	found := &gather.Recording{Found: true, Sharp: []gather.Sharpness{{PhaseError: 0.1, Sure: true}, {PhaseError: 0.9}}}
+	for _, c := range []struct {
+		r     *gather.Recording
+		rotor int
+		n     float64
+		want  float64
+	}{{&gather.Recording{}, 0, 6, 0.1}, {&gather.Recording{Found: true}, 0, 1, 1}, {found, 0, 1, 0.1}, {found, 0, 6, math.Exp(0.36) - 1}, {found, 1, 1, 1}} {
+		if got := remaining(c.r, sureRotors(c.r, 2), c.rotor, c.n); math.Abs(got-c.want) > 1e-12 {
+			t.Errorf("order %g of rotor %d of %+v: %g stays, want %g", c.n, c.rotor, c.r.Sharp, got, c.want)
+		}
+	}
+}
 
 // Two rotors within half a hertz for a tenth of the time are told, others not.
 func TestTogether(t *testing.T) {
 	a, b, c := make([]float64, 100), make([]float64, 100), make([]float64, 100)
 	for i := range a {
-		a[i], b[i], c[i] = 100, 104, 100.4
+		a[i], b[i], c[i] = 100, 104, 90
 		if i < 10 {
-			b[i] = 100.3
-		}
-		if i > 0 {
-			c[i] = 90
+			b[i], c[i] = 100.3, 100.85
 		}
 	}
 	got := together([]order.Rotor{{Name: "a", Speed: a}, {Name: "b", Speed: b}, {Name: "c", Speed: c}}, 2)

@@ -52,12 +52,18 @@ const (
 // order tracking at extreme slew rates, using Kalman tracking filters, SAE 931288, 1993), with the speeds unknown. How rough the
 // speeds are, and how much of that is common, is that of greatest likelihood.
 //
-// It returns ok false for no track and for a signal shorter than 6 s. It panics on a rate that is not above zero.
+// It returns ok false for no track, for a signal shorter than 6 s or without a channel that changes, and where no numbers come out. It panics on a rate that is not above zero.
 func Sharpen(channels [][]float64, tracks []Track, s SharpenSettings) (sharp Sharp, ok bool) {
 	if !(s.Rate > 0) {
 		panic("order: rate must be above zero")
 	}
-	if len(tracks) == 0 || len(channels) == 0 || float64(len(channels[0])) < shortestSharp*s.Rate {
+	var alive [][]float64
+	for _, c := range channels {
+		if len(c) > 0 && slices.Max(c) > slices.Min(c) {
+			alive = append(alive, c)
+		}
+	}
+	if len(tracks) == 0 || len(alive) == 0 || float64(len(alive[0])) < shortestSharp*s.Rate {
 		return Sharp{}, false
 	}
 	if s.Span == 0 {
@@ -66,16 +72,31 @@ func Sharpen(channels [][]float64, tracks []Track, s SharpenSettings) (sharp Sha
 	if s.Near == 0 {
 		s.Near = 0.12
 	}
-	x := &sharpening{channels: channels, rotors: len(tracks), set: s}
+	x := &sharpening{channels: alive, rotors: len(tracks), set: s}
 	x.begin(tracks[0])
 	for i, c := range courses {
 		x.search(c)
+		if !x.lines.finite() {
+			return Sharp{}, false
+		}
 		if i < len(courses)-1 {
 			x.refer()
 		}
 	}
 	x.finish()
-	return x.told(), true
+	return x.told(), x.lines.finite()
+}
+
+// finite tells whether all phases are numbers.
+func (l *lines) finite() bool {
+	for _, v := range l.phase {
+		for _, p := range v {
+			if math.IsNaN(p) || math.IsInf(p, 0) {
+				return false
+			}
+		}
+	}
+	return true
 }
 
 // sharpening is the state of Sharpen.

@@ -189,6 +189,12 @@ func TestSharpenWithoutLine(t *testing.T) {
 	if _, ok := Sharpen([][]float64{f.channels[0][:5000]}, tracks, SharpenSettings{Rate: f.rate}); ok {
 		t.Error("five seconds are sharpened")
 	}
+	dead := make([]float64, len(f.channels[0]))
+	for name, channels := range map[string][][]float64{"dead": {dead, dead}, "one dead": {f.channels[0][:8000], dead[:8000]}} {
+		if x, ok := Sharpen(channels, tracks, SharpenSettings{Rate: f.rate, Threads: 2}); ok && x.Sure(0) {
+			t.Errorf("%s channels have a rotor", name)
+		}
+	}
 	if _, ok := Sharpen(f.channels, nil, SharpenSettings{Rate: f.rate}); ok {
 		t.Error("no track is sharpened")
 	}

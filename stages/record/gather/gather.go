@@ -3,8 +3,8 @@
 //
 // In order: the reader is chosen (readers.go); the header is read and columns are chosen, from the job or by generic words
 // (columns.go, find.go, words.go, units.go); the samples are read, once per clock, and rows without samples are left out (samples.go,
-// column.go, series.go); the window is cut, or the steady pieces are found, and the times are checked (window.go); what was
-// guessed and left out is told (tell.go).
+// column.go, series.go); accelerations with rows of their own become a second sensor (apart.go); the window is cut, or the steady
+// pieces are found, and the times are checked (window.go); what was guessed and left out is told (tell.go).
 package gather
 
 import (

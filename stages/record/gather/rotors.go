@@ -89,6 +89,6 @@ func (r *Recording) FindRotors(axes Series, timing recording.Timing, orders []fl
 		}
 	}
 	if len(orders) > 0 && !sharpened {
-		r.Plan.Notes = append(r.Plan.Notes, "the speeds that were followed could not be sharpened, since a stretch without a gap is shorter than 6 s: orders are told apart, not taken out")
+		r.Plan.Notes = append(r.Plan.Notes, "the speeds that were followed could not be sharpened: a stretch without a gap is shorter than 6 s, or nothing moves in it; orders are told apart, not taken out")
 	}
 }
