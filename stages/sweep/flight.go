@@ -120,6 +120,24 @@ func (f *fleet) parts() []kinds.ResponseFlight {
 	return out
 }
 
+// flownTooFast warns of a told flight in which a rotor turns faster than it can.
+func flownTooFast(r *kinds.Response, set settings) []stage.Warning {
+	var out []stage.Warning
+	for _, x := range r.Rotors {
+		fastest := 0.0
+		for _, y := range set.flown {
+			fastest = max(fastest, y.speed*x.Hover/r.Rotors[0].Hover)
+		}
+		if x.Highest > 0 && fastest > x.Highest*(1+1e-9) {
+			out = append(out, stage.Warning{
+				ID: "sweep.flown-beyond-speed", Text: fmt.Sprintf("rotor %s turns at up to %.0f rpm over the flight, and by its airframe at no more than %.0f rpm", x.Rotor, fastest/rpm, x.Highest/rpm),
+				Where: "speeds_flown", Remedy: "lower the speeds of the flight, or raise max_speed in the airframe file",
+			})
+		}
+	}
+	return out
+}
+
 // flownNote says what the spectrum over a flight rests on.
 func flownNote(set settings, recorded bool) string {
 	switch {

@@ -121,6 +121,7 @@ func warnings(r *kinds.Response, set settings) []stage.Warning {
 			})
 		}
 	}
+	out = append(out, flownTooFast(r, set)...)
 	for axis, name := range kinds.AxisNames {
 		p, ok := strongest(r, name)
 		y := r.Density[axis]

@@ -28,6 +28,7 @@ func (Stage) Describe() stage.Description {
 	frequency := stage.Type{Kind: stage.Amount, Dimension: "frequency", Unit: "Hz"}
 	zero := 0.0
 	one, less, many := 1.0, -1.0, 1000.0
+	steadiest := 1e-3 // the grid does not resolve narrower lines
 	d := stage.Description{
 		Name:  "sweep",
 		About: "predict the gyro rate that the rotors cause, over frequency",
@@ -93,7 +94,7 @@ frequencies, and the difference is shown.`,
 					{Name: "coefficient", About: "1 in step, 0 unrelated, negative against each other", Type: stage.Type{Kind: stage.Number}, Required: true, Example: "0.5", Min: &less, Max: &one},
 				}}}, Example: `[{ from = "0 Hz", to = "80 Hz", coefficient = 0.8 }]`},
 			{Name: "speed_spread", About: "assumed standard deviation of rotor speed over a flight, as a share of the speed",
-				Type: stage.Type{Kind: stage.Number}, Default: 0.03, Example: "0.03", Above: &zero, Max: &one},
+				Type: stage.Type{Kind: stage.Number}, Default: 0.03, Example: "0.03", Min: &steadiest, Max: &one},
 			{Name: "speeds_flown", About: "speeds of the first rotor over a flight with the share of each; left out, that of this response",
 				Type: stage.Type{Kind: stage.List, Element: &stage.Type{Kind: stage.Object, Fields: []stage.Argument{
 					{Name: "speed", About: "speed of the first rotor", Type: stage.Type{Kind: stage.Amount, Dimension: "rotational speed", Unit: "rpm"}, Required: true, Example: `"16000 rpm"`, Above: &zero},
@@ -319,7 +320,7 @@ func readGiven(call *stage.Call, set settings) (given, error) {
 		if len(set.flown) > 0 {
 			return g, fault.New(fault.Input, "both the recording and speeds_flown say how a flight is spread over speeds").In("sweep", "").Of("speeds_flown").Do("leave one of them out")
 		}
-		if g.recorded, err = readInput(call, "recording", kinds.DecodeSensor); err != nil {
+		if g.recorded, err = readInput(call, "recording", kinds.DecodeSpectra); err != nil {
 			return g, err
 		}
 	}

@@ -322,6 +322,17 @@ func TestWarnings(t *testing.T) {
 	if len(out.Warnings) != 2 || out.Warnings[0].ID != "sweep.beyond-speed" || !strings.Contains(out.Warnings[1].Text, "rotor b") {
 		t.Errorf("warnings %+v", out.Warnings)
 	}
+	flown := func(factor float64) []any {
+		return []any{map[string]any{"speed": stage.Quantity{SI: factor * p.Rotors[0].MaxSpeed, Dimension: "rotational speed"}, "share": 1.0},
+			map[string]any{"speed": stage.Quantity{SI: 0.5 * p.Rotors[0].MaxSpeed, Dimension: "rotational speed"}, "share": 3.0}}
+	}
+	_, out = run(t, m, p, stage.Arguments{"speeds_flown": flown(1.1)})
+	if len(out.Warnings) != 2 || out.Warnings[1].ID != "sweep.flown-beyond-speed" || !strings.Contains(out.Warnings[1].Text, "rotor b") || out.Warnings[1].Where != "speeds_flown" {
+		t.Errorf("warnings %+v", out.Warnings)
+	}
+	if _, out = run(t, m, p, stage.Arguments{"speeds_flown": flown(1)}); len(out.Warnings) != 0 {
+		t.Errorf("warnings %+v", out.Warnings)
+	}
 }
 
 func TestFaults(t *testing.T) {

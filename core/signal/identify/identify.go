@@ -341,17 +341,17 @@ func (m *Mode) judge(r Record, s Settings, d *Decomposition) {
 		set(Doubtful, "only %.0f %% of the models have it, and the spectra need it little", 100*m.Share)
 	case math.IsNaN(m.Worth) && m.Share < enoughOrders:
 		set(Doubtful, "only %.0f %% of the models have it", 100*m.Share)
-	case m.own.frequency > sureFrequency*m.Frequency:
+	case !(m.own.frequency <= sureFrequency*m.Frequency):
 		set(Doubtful, "its frequency is not sure to %g %%", 100*sureFrequency)
-	case m.own.damping > sureDamping*m.Damping:
+	case !(m.own.damping <= sureDamping*m.Damping):
 		set(Doubtful, "its damping is not sure to %g %%", 100*sureDamping)
-	case m.own.angle > sureAngle:
+	case !(m.own.angle <= sureAngle):
 		set(Doubtful, "its direction is not sure to %.0f deg", sureAngle*180/math.Pi)
-	case m.FrequencyError > beyond*sureFrequency*m.Frequency:
+	case !(m.FrequencyError <= beyond*sureFrequency*m.Frequency):
 		set(Doubtful, "models with more poles do not hold its frequency to %g %%", 100*beyond*sureFrequency)
-	case m.DampingError > beyond*sureDamping*m.Damping:
+	case !(m.DampingError <= beyond*sureDamping*m.Damping):
 		set(Doubtful, "models with more poles do not hold its damping to %g %%", 100*beyond*sureDamping)
-	case m.DirectionError > beyond*sureAngle:
+	case !(m.DirectionError <= beyond*sureAngle):
 		set(Doubtful, "models with more poles do not hold its direction to %.0f deg", beyond*sureAngle*180/math.Pi)
 	}
 }

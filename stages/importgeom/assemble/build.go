@@ -65,6 +65,7 @@ func (b *builder) build() *fault.Error {
 		}
 	}
 	b.overlaps()
+	b.bareFaces()
 	b.out.Properties.DeclaredMass, b.out.Properties.Floor = b.file.AllUpMass, b.file.LossFloor
 	b.out.Totals = total(&b.out.Geometry, &b.out.Properties)
 	b.compareMass()

@@ -57,7 +57,7 @@ func (b *builder) pressed(c *airframefile.Contact, group *airframe.Joint) *fault
 			if err := b.shape(c, p, &contact); err != nil {
 				return err
 			}
-			if !b.share(p, q, &contact) {
+			if b.share(p, q, &contact) == 0 {
 				continue
 			}
 			normal, shear := fastener.Faces(b.clamped(p), b.clamped(q))
@@ -134,8 +134,9 @@ func (b *builder) shape(c *airframefile.Contact, plate int, contact *airframe.Co
 	return nil
 }
 
-// share tells whether two plates overlap within the region, by a grid of points half a millimetre apart.
-func (b *builder) share(p, q int, contact *airframe.Contact) bool {
+// share gives the area (m²) over which two plates overlap within the region, by a grid of points
+// half a millimetre apart or a hundred across.
+func (b *builder) share(p, q int, contact *airframe.Contact) float64 {
 	const step = 0.5e-3
 	region := b.plates[p].region
 	box := outline.EmptyBox()
@@ -149,6 +150,7 @@ func (b *builder) share(p, q int, contact *airframe.Contact) bool {
 		}
 	}
 	across := math.Max(step, math.Sqrt(box.Width()*(box.Max.Y-box.Min.Y))/100)
+	area := 0.0
 	for y := box.Min.Y + across/2; y < box.Max.Y; y += across {
 		for x := box.Min.X + across/2; x < box.Max.X; x += across {
 			at := outline.Point{X: x, Y: y}
@@ -157,11 +159,39 @@ func (b *builder) share(p, q int, contact *airframe.Contact) bool {
 			}
 			d := sub(inSpace(b.plates[p].frame, at, 0), b.plates[q].frame.Origin)
 			if b.plates[q].region.Contains(outline.Point{X: dot(d, b.plates[q].frame.X), Y: dot(d, b.plates[q].frame.Y)}) {
-				return true
+				area += across * across
 			}
 		}
 	}
-	return false
+	return area
+}
+
+// leastBare is the area of touching faces (m²) below which nothing is said of them; judgement, no source.
+const leastBare = 2e-4
+
+// bareFaces warns of plates that lie on each other with nothing between the screws that keeps their faces apart.
+func (b *builder) bareFaces() {
+	tied := map[[2]int]bool{}
+	for _, c := range b.out.Geometry.Contacts {
+		if c.Kind == airframe.Pressed {
+			tied[c.Plates], tied[[2]int{c.Plates[1], c.Plates[0]}] = true, true
+		}
+	}
+	var list []string
+	for p := range b.plates {
+		for q := p + 1; q < len(b.plates); q++ {
+			if _, touch := b.common(p, q); !touch || tied[[2]int{p, q}] {
+				continue
+			}
+			if area := b.share(p, q, &airframe.Contact{}); area > leastBare {
+				list = append(list, fmt.Sprintf("%s and %s over %.1f cm²", b.plates[p].name, b.plates[q].name, 1e4*area))
+			}
+		}
+	}
+	if len(list) > 0 {
+		b.warn("faces-bare", "pressed", "declare them pressed if they bear on each other",
+			"faces touch but are tied at their screws alone, so that the plates bend through each other: %s", strings.Join(list, "; "))
+	}
 }
 
 // line places a seam or a key.

@@ -123,6 +123,38 @@ pressed "root" {
 	near1(t, "root x", at[0], 25e-3, 1e-12)
 }
 
+// Plates that lie on each other with screws alone are told with the area, those pressed together are not.
+func TestBareFacesAreTold(t *testing.T) {
+	told := func(a *Assembly) string {
+		for _, w := range a.Warnings {
+			if w.ID == "faces-bare" {
+				return w.Text
+			}
+		}
+		return ""
+	}
+	bare := told(mustBuild(t, declared, declared))
+	for _, want := range []string{"base and arm_front over 2.7 cm²", "base and arm_rear over 2.7 cm²"} {
+		if !strings.Contains(bare, want) {
+			t.Errorf("%q lacks %q", bare, want)
+		}
+	}
+	one := told(mustBuild(t, declared, declared+`
+pressed "faces" {
+  plates = [plate.arm_front, plate.base]
+}`))
+	if strings.Contains(one, "arm_front") || !strings.Contains(one, "arm_rear") {
+		t.Errorf("with one arm pressed: %q", one)
+	}
+	all := told(mustBuild(t, declared, declared+`
+pressed "faces" {
+  plates = [plate.base, plate.arm_front, plate.arm_rear]
+}`))
+	if all != "" {
+		t.Errorf("with both pressed: %q", all)
+	}
+}
+
 // A key stops square to its flank in the plane; a glued seam has the bed of its glue.
 func TestKeyAndSeam(t *testing.T) {
 	a := mustBuild(t, declared, declared+`
