@@ -357,7 +357,7 @@ func recorded(t testing.TB, c *stage.Call, s *kinds.Spectra) *stage.Call {
 // With a recording each rotor's line is spread about its own recorded speed.
 func TestFlightAsRecorded(t *testing.T) {
 	m, p := frame()
-	s := &kinds.Spectra{Rotors: []kinds.SpectraRotor{
+	s := &kinds.Spectra{Axes: []kinds.SpectraAxis{{Density: []float64{1}}}, Rotors: []kinds.SpectraRotor{
 		{Rotor: "b", Column: "r2", Blades: 3, Median: 1300, Low: 1290, High: 1310},
 		{Rotor: "a", Column: "r1", Blades: 3, Median: 2000, Low: 1980, High: 2020},
 	}}

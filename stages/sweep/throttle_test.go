@@ -105,7 +105,7 @@ func TestThrottleRefusals(t *testing.T) {
 	level := func() *kinds.Spectra {
 		return &kinds.Spectra{Axes: []kinds.SpectraAxis{{Density: []float64{1}}}, Maps: []kinds.SpectraMapRow{{Against: kinds.MapThrottle, Centre: 0.9, Segments: 4, Step: 4, Density: []float64{1}}}}
 	}
-	turns := &kinds.Spectra{Rotors: []kinds.SpectraRotor{{Rotor: "a", Median: 2000, Low: 1990, High: 2010}, {Rotor: "b", Median: 2000, Low: 1990, High: 2010}}}
+	turns := &kinds.Spectra{Axes: []kinds.SpectraAxis{{Density: []float64{1}}}, Rotors: []kinds.SpectraRotor{{Rotor: "a", Median: 2000, Low: 1990, High: 2010}, {Rotor: "b", Median: 2000, Low: 1990, High: 2010}}}
 	for name, x := range map[string]struct {
 		change   stage.Arguments
 		recorded *kinds.Spectra
@@ -121,7 +121,7 @@ func TestThrottleRefusals(t *testing.T) {
 		"speeds, too":         {stage.Arguments{"throttle_flown": one, "speed_at_throttle": line, "speeds_flown": []any{map[string]any{"speed": turning(1700), "share": 1.0}}}, nil, "throttle_flown", "speeds_flown"},
 		"recording, too":      {stage.Arguments{"throttle_flown": one, "speed_at_throttle": line}, level(), "throttle_flown", "recording"},
 		"recorded speeds":     {stage.Arguments{"speed_at_throttle": line}, turns, "speed_at_throttle", "count more"},
-		"nothing recorded":    {stage.Arguments{"speed_at_throttle": line}, &kinds.Spectra{}, "recording", "neither"},
+		"nothing recorded":    {stage.Arguments{"speed_at_throttle": line}, &kinds.Spectra{Axes: []kinds.SpectraAxis{{Density: []float64{1}}}}, "recording", "neither"},
 		"recorded beyond":     {stage.Arguments{"speed_at_throttle": line}, level(), "recording", "throttle of 0.9"},
 		"throttle, no points": {nil, level(), "recording", "has throttle, but no rotor speeds"},
 	} {
