@@ -92,7 +92,7 @@ func TestOutcome(t *testing.T) {
 	if got := strings.Join(used, " "); got != "airframe.hcl cut/arm.dxf cut/base.dxf cut/top.dxf" {
 		t.Errorf("files used: %s", got)
 	}
-	if len(out.Warnings) != 1 || out.Warnings[0].ID != "import.mass-differs" {
+	if len(out.Warnings) != 2 || out.Warnings[0].ID != "import.faces-bare" || out.Warnings[1].ID != "import.mass-differs" {
 		t.Errorf("warnings %+v", out.Warnings)
 	}
 }

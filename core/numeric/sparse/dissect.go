@@ -34,9 +34,10 @@ func dissect(c *compressed, nodeOf []int32, coords [][3]float64) []int32 {
 }
 
 // dissectionWorth is the number of operations of the elimination for each unknown from which on dissection is tried. It
-// takes five times as long as minimum degree to find and saves a third of the operations at best; on crosses of 90 to 365
-// thousand unknowns, 30 modes and both orderings counted, it breaks even or saves a twentieth of the processor time.
-const dissectionWorth = 4e4
+// takes five times as long as minimum degree to find and saves a third of the operations at best. On frames of plates pressed together,
+// 60 to 230 thousand unknowns and about 1e5 operations each, it saves nothing and takes as long as the elimination; on crosses
+// of 90 to 365 thousand, 5e4 to 9e4, it breaks even or saves a twentieth of the processor time of a whole solve.
+const dissectionWorth = 2e5
 
 // Order returns MinimumDegree, or the cheaper of it and NestedDissection, by the exact number of operations of the
 // elimination, where that is much work. Dissection wins on wide sheets, minimum degree on frames of slender arms. Without

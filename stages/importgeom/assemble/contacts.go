@@ -57,7 +57,7 @@ func (b *builder) pressed(c *airframefile.Contact, group *airframe.Joint) *fault
 			if err := b.shape(c, p, &contact); err != nil {
 				return err
 			}
-			if b.share(p, q, &contact) == 0 {
+			if !b.share(p, q, &contact) {
 				continue
 			}
 			normal, shear := fastener.Faces(b.clamped(p), b.clamped(q))
@@ -134,9 +134,9 @@ func (b *builder) shape(c *airframefile.Contact, plate int, contact *airframe.Co
 	return nil
 }
 
-// share gives the area (m²) over which two plates overlap within the region, by a grid of points
-// half a millimetre apart or a hundred across.
-func (b *builder) share(p, q int, contact *airframe.Contact) float64 {
+// share tells whether two plates overlap within the region, by a grid of points half a millimetre apart or a
+// hundred across.
+func (b *builder) share(p, q int, contact *airframe.Contact) bool {
 	const step = 0.5e-3
 	region := b.plates[p].region
 	box := outline.EmptyBox()
@@ -150,20 +150,42 @@ func (b *builder) share(p, q int, contact *airframe.Contact) float64 {
 		}
 	}
 	across := math.Max(step, math.Sqrt(box.Width()*(box.Max.Y-box.Min.Y))/100)
-	area := 0.0
+	met := false
+	b.scan(p, q, region, b.plates[q].region, box, across, func() bool { met = true; return false })
+	return met
+}
+
+// scan goes over the points of a grid on plate p that lie in a region of it and in one of plate q, until found tells to stop.
+func (b *builder) scan(p, q int, own, other outline.Region, box outline.Box, across float64, found func() bool) {
 	for y := box.Min.Y + across/2; y < box.Max.Y; y += across {
 		for x := box.Min.X + across/2; x < box.Max.X; x += across {
 			at := outline.Point{X: x, Y: y}
-			if !region.Contains(at) {
+			if !own.Contains(at) {
 				continue
 			}
 			d := sub(inSpace(b.plates[p].frame, at, 0), b.plates[q].frame.Origin)
-			if b.plates[q].region.Contains(outline.Point{X: dot(d, b.plates[q].frame.X), Y: dot(d, b.plates[q].frame.Y)}) {
-				area += across * across
+			if other.Contains(outline.Point{X: dot(d, b.plates[q].frame.X), Y: dot(d, b.plates[q].frame.Y)}) && !found() {
+				return
 			}
 		}
 	}
-	return area
+}
+
+// overlap gives the area (m²) over which two plates lie on each other, to some percent.
+func (b *builder) overlap(p, q int) float64 {
+	straight := func(r outline.Region) outline.Region {
+		out := outline.Region{Outer: outline.Polygon(r.Outer.Flatten(1e-4)...)}
+		for _, h := range r.Holes {
+			out.Holes = append(out.Holes, outline.Polygon(h.Flatten(1e-4)...))
+		}
+		return out
+	}
+	own := straight(b.plates[p].region)
+	box := own.Outer.Bounds()
+	across := math.Sqrt(box.Width()*(box.Max.Y-box.Min.Y)) / 60
+	points := 0
+	b.scan(p, q, own, straight(b.plates[q].region), box, across, func() bool { points++; return true })
+	return float64(points) * across * across
 }
 
 // leastBare is the area of touching faces (m²) below which nothing is said of them; judgement, no source.
@@ -183,7 +205,7 @@ func (b *builder) bareFaces() {
 			if _, touch := b.common(p, q); !touch || tied[[2]int{p, q}] {
 				continue
 			}
-			if area := b.share(p, q, &airframe.Contact{}); area > leastBare {
+			if area := b.overlap(p, q); area > leastBare {
 				list = append(list, fmt.Sprintf("%s and %s over %.1f cm²", b.plates[p].name, b.plates[q].name, 1e4*area))
 			}
 		}

@@ -134,7 +134,7 @@ func TestBareFacesAreTold(t *testing.T) {
 		return ""
 	}
 	bare := told(mustBuild(t, declared, declared))
-	for _, want := range []string{"base and arm_front over 2.7 cm²", "base and arm_rear over 2.7 cm²"} {
+	for _, want := range []string{"base and arm_front over 2.9 cm²", "base and arm_rear over 2.7 cm²"} {
 		if !strings.Contains(bare, want) {
 			t.Errorf("%q lacks %q", bare, want)
 		}
