@@ -138,7 +138,7 @@ func sharpen(ctx context.Context, frequency []float64, density [3][]float64, sys
 		return nil, density, err
 	}
 	var sharp []forced.Resonance
-	for _, p := range core.SettleAll(poles, func(float64) []float64 { return momenta }) {
+	for _, p := range core.SettleAll(poles, momenta, nil) {
 		if thin(p.Frequency, p.Damping, set) {
 			sharp = append(sharp, forced.Resonance{Frequency: p.Frequency, LossFactor: 2 * p.Damping})
 		}

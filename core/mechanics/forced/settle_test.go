@@ -15,7 +15,6 @@ func TestSettledMotionsAreThoseOfTheirOwnFrequency(t *testing.T) {
 	b := lawful()
 	s := build(t, b, Options{Gyroscopic: spinners(b, 0.4, -0.3)})
 	for _, momenta := range [][]float64{{0, 0}, {0.4, -0.3}} {
-		constant := func(float64) []float64 { return momenta }
 		var first []Pole
 		moved := 0.0
 		for _, from := range []float64{150, 60, 300} {
@@ -27,7 +26,7 @@ func TestSettledMotionsAreThoseOfTheirOwnFrequency(t *testing.T) {
 			if err != nil {
 				t.Fatal(err)
 			}
-			settled := core.SettleAll(poles, constant)
+			settled := core.SettleAll(poles, momenta, nil)
 			if len(settled) != len(poles) || len(poles) < 5 {
 				t.Fatalf("from %g Hz: %d of %d poles settled", from, len(settled), len(poles))
 			}
@@ -83,13 +82,13 @@ func TestSettledSynchronousMotion(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	momenta := func(omega float64) []float64 { return []float64{ratio[0] * omega, ratio[1] * omega} }
-	settled := core.SettleAll(poles, momenta)
+	settled := core.SettleAll(poles, nil, ratio)
 	if len(settled) < 5 {
 		t.Fatalf("%d of %d settled", len(settled), len(poles))
 	}
 	for _, p := range settled {
-		turning := momenta(2 * math.Pi * p.Frequency * math.Sqrt(1-p.Damping*p.Damping))
+		omega := 2 * math.Pi * p.Frequency * math.Sqrt(1-p.Damping*p.Damping)
+		turning := []float64{ratio[0] * omega, ratio[1] * omega}
 		own, err := s.Frozen(p.Frequency).Core()
 		if err != nil {
 			t.Fatal(err)
@@ -129,7 +128,7 @@ func TestSettleOneMass(t *testing.T) {
 		if err != nil || len(poles) != 1 {
 			t.Fatalf("%d poles, %v", len(poles), err)
 		}
-		p, ok := core.Settle(poles[0], func(float64) []float64 { return nil })
+		p, ok := core.Settle(poles[0], nil, nil)
 		if !ok || math.Abs(p.Frequency/f-1) > 1e-7 || math.Abs(p.Damping-1e-4) > 1e-7 || math.Abs(cmplx.Abs(p.Shape[0])-1) > 1e-12 {
 			t.Errorf("from %g Hz: %+v, %v; want %g Hz", from, p, ok, f)
 		}

@@ -135,10 +135,9 @@ func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, s
 	}
 	d := &Diagram{Speeds: speeds, Lines: begin(poles[0], elastic, len(speeds), upTo)}
 	d.follow(poles)
-	each(len(speeds), threads, func(k int) {
-		momenta := f.Momenta(speeds[k])
-		for i := range d.Lines {
-			d.Lines[i].settle(f, core, s.Vectors(), k, momenta)
+	each(len(d.Lines), threads, func(i int) {
+		for k, speed := range speeds {
+			d.Lines[i].settle(f, core, s.Vectors(), k, f.Momenta(speed))
 		}
 	})
 	if err := d.critical(f, core, s.Vectors(), upTo); err != nil {
@@ -203,7 +202,16 @@ func (l *Line) settle(f *Fleet, core *forced.Core, vectors []int, k int, momenta
 	if l.begun[k].Shape == nil {
 		return
 	}
-	p, ok := core.Settle(l.begun[k], func(float64) []float64 { return momenta })
+	var p forced.Pole
+	ok := false
+	if k > 0 && l.shapes[k-1] != nil && l.begun[k-1].Shape != nil {
+		near, _ := l.Pole(k - 1)
+		near.Frequency *= l.begun[k].Frequency / l.begun[k-1].Frequency
+		p, ok = core.Continue(near, momenta, nil)
+	}
+	if !ok {
+		p, ok = core.Settle(l.begun[k], momenta, nil)
+	}
 	if !ok {
 		return
 	}
@@ -286,14 +294,7 @@ func (d *Diagram) critical(f *Fleet, core *forced.Core, vectors []int, upTo floa
 			if err != nil {
 				return err
 			}
-			momenta := func(omega float64) []float64 {
-				out := make([]float64, len(ratio))
-				for r, x := range ratio {
-					out[r] = x * omega
-				}
-				return out
-			}
-			for _, p := range core.SettleAll(poles, momenta) {
+			for _, p := range core.SettleAll(poles, nil, ratio) {
 				// The order meets the frequency of the motion, Re λ.
 				omega := 2 * math.Pi * p.Frequency * math.Sqrt(1-p.Damping*p.Damping)
 				c := Critical{Order: order, Rotors: alike, Speed: omega / float64(order), Frequency: omega / (2 * math.Pi),
