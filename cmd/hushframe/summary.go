@@ -217,10 +217,10 @@ func fit(s stage.Section, width int) []int {
 	return widths
 }
 
-// longestWord is the number of letters of the longest word.
+// longestWord is the number of letters of the longest word. Paths may be cut, so that their folders are words.
 func longestWord(text string) int {
 	n := 0
-	for _, w := range strings.Fields(text) {
+	for _, w := range strings.FieldsFunc(text, func(r rune) bool { return unicode.IsSpace(r) || r == '/' || r == '\\' }) {
 		n = max(n, utf8.RuneCountInString(w))
 	}
 	return n

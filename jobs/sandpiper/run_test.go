@@ -3,7 +3,6 @@ package sandpiper
 import (
 	"context"
 	"os"
-	"path/filepath"
 	"sync"
 	"testing"
 
@@ -81,23 +80,4 @@ func frequencies(m *kinds.Modes, below float64) []float64 {
 		}
 	}
 	return f
-}
-
-// copyFolder copies the job folder without its stores and reports.
-func copyFolder(t *testing.T) string {
-	t.Helper()
-	to := t.TempDir()
-	for _, name := range []string{"baseline.hcl", "airframe.hcl", "cut/arm.dxf", "cut/bottom.dxf", "cut/clamp.dxf", "cut/top.dxf", "flights/hover-03.csv.gz"} {
-		data, err := os.ReadFile(name)
-		if err != nil {
-			t.Fatal(err)
-		}
-		if err := os.MkdirAll(filepath.Dir(filepath.Join(to, name)), 0o755); err != nil {
-			t.Fatal(err)
-		}
-		if err := os.WriteFile(filepath.Join(to, name), data, 0o644); err != nil {
-			t.Fatal(err)
-		}
-	}
-	return to
 }

@@ -3,6 +3,8 @@ package forced
 import (
 	"math"
 	"math/cmplx"
+
+	"gonum.org/v1/gonum/blas/cblas128"
 )
 
 // hessenberg is a matrix A = Q H Qᴴ with Q unitary and H zero below its first
@@ -190,9 +192,7 @@ func factorSolve(a []complex128, n int, sides ...[]complex128) bool {
 				continue
 			}
 			f := below[k] * inverse
-			for j := k + 1; j < n; j++ {
-				below[j] -= f * row[j]
-			}
+			takeAway(below[k+1:], f, row[k+1:])
 			for _, x := range sides {
 				x[i] -= f * x[k]
 			}
@@ -245,10 +245,8 @@ func eliminate(a []complex128, n, width int) bool {
 
 // takeAway subtracts f times the first numbers of from.
 func takeAway(x []complex128, f complex128, from []complex128) {
-	from = from[:len(x)]
-	for j, y := range from {
-		x[j] -= f * y
-	}
+	n := len(x)
+	cblas128.Axpy(-f, cblas128.Vector{N: n, Inc: 1, Data: from[:n]}, cblas128.Vector{N: n, Inc: 1, Data: x})
 }
 
 func backward(upper []complex128, n int, sides [][]complex128) {

@@ -1,4 +1,4 @@
-package sandpiper
+package copied
 
 import (
 	"bytes"
@@ -62,7 +62,7 @@ func TestCommand(t *testing.T) {
 	}
 
 	// A broken requirement: exit code 3, and the report all the same.
-	limit, err := os.ReadFile("limit.hcl")
+	limit, err := os.ReadFile(filepath.Join("..", "limit.hcl"))
 	if err != nil {
 		t.Fatal(err)
 	}

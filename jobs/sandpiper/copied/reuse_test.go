@@ -1,4 +1,4 @@
-package sandpiper
+package copied
 
 import (
 	"context"
