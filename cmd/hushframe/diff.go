@@ -236,7 +236,7 @@ func (a *app) showDifference(d *differences) {
 		writeSection(a.out, s)
 	}
 	for _, note := range d.notes {
-		fmt.Fprintf(a.out, "\n%s\n", note)
+		fmt.Fprintf(a.out, "\n%s\n", harmless(note))
 	}
 	fmt.Fprintf(a.out, "\n%s\n", d.closing())
 }

@@ -92,9 +92,9 @@ With --job also those of the extensions pinned for that job, and what its elemen
 
 // explain writes all that a stage says about itself.
 func (a *app) explain(d stage.Description) {
-	fmt.Fprintf(a.out, "\n%s: %s\n", d.Name, d.About)
+	fmt.Fprintf(a.out, "\n%s: %s\n", d.Name, harmless(d.About))
 	if d.Doc != "" {
-		fmt.Fprintf(a.out, "\n%s\n", strings.TrimSpace(d.Doc))
+		fmt.Fprintf(a.out, "\n%s\n", harmless(strings.TrimSpace(d.Doc)))
 	}
 	arguments := stage.Section{Title: "Arguments", Columns: []stage.Column{{Name: "argument"}, {Name: "takes"}, {Name: "default"}, {Name: ""}}}
 	addArguments(&arguments, "", d.Arguments)
@@ -117,7 +117,7 @@ func (a *app) explain(d stage.Description) {
 
 // explainTool writes all that an element type or reader says about itself.
 func (a *app) explainTool(x stage.Extension) {
-	fmt.Fprintf(a.out, "\n%s: %s (%s from outside)\n", x.Name, x.About, x.Kind)
+	fmt.Fprintf(a.out, "\n%s: %s (%s from outside)\n", x.Name, harmless(x.About), x.Kind)
 	if len(x.Arguments) == 0 {
 		fmt.Fprintf(a.out, "\nIt has no options.\n")
 		return

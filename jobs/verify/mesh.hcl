@@ -38,7 +38,7 @@ stage "sweep" "response" {
 
 requirement "modes-are-enough" {
   figure  = stage.response.figures.direct_error
-  at_most = 0.01
+  at_most = 0.001
   because = "residual vectors have to stand in for the modes left out"
 }
 

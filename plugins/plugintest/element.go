@@ -249,7 +249,10 @@ func checkOptions(e extension.Element, sets []stage.Arguments) (problems []strin
 			}
 			h.heed("option", a, "", false, others(a, a.Type, o[a.Name]), func(v any) (string, error) { return answer(with(o, a.Name, v)) }, usual, bad)
 		}
-		if len(h.tried) > 0 && !h.changed {
+		switch {
+		case len(h.tried) == 0:
+			bad("option %s was never varied: the suite cannot guess a value of it; give it one in a set of options", a.Name)
+		case !h.changed:
 			bad("option %s changes nothing: with %s the matrices are the same to the last byte; is it read?", a.Name, strings.Join(h.tried, ", "))
 		}
 	}

@@ -110,6 +110,7 @@ type samples struct {
 	time   []float64
 	values [][]float64
 	notes  []string
+	told   []recording.Finding
 }
 
 // source gives the bytes as a reader of this process or of another gets them.
@@ -166,6 +167,7 @@ func (c *readerCase) read(ctx context.Context, source io.Reader, columns []strin
 				s.values[i] = append(s.values[i], v...)
 			}
 			s.notes = append(s.notes, b.Notes...)
+			s.told = append(s.told, b.Findings...)
 			return nil
 		})
 	})

@@ -77,7 +77,7 @@ func (c *readerCase) told(data []byte) (string, error) {
 		s, err = c.read(context.Background(), source, columns)
 		done()
 		if err == nil {
-			return fmt.Sprint(h, s.time, s.values, s.notes), nil
+			return fmt.Sprint(h, s.time, s.values, s.notes, s.told), nil
 		}
 	}
 	var about *recording.Error

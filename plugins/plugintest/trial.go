@@ -4,6 +4,7 @@ import (
 	"context"
 	"encoding/json"
 	"fmt"
+	"math"
 	"os"
 	"path/filepath"
 	"reflect"
@@ -264,13 +265,13 @@ func (x *trial) wrong(a stage.Argument, t stage.Type, usual string) (list []atte
 	add := func(why, text string) { list = append(list, attempt{text, why}) }
 	beyond := func(show func(float64) string) {
 		if a.Min != nil {
-			add("below its least value", show(*a.Min-max(1, abs(*a.Min))))
+			add("below its least value", show(*a.Min-max(1, math.Abs(*a.Min))))
 		}
 		if a.Above != nil {
 			add("not above its lower bound", show(*a.Above))
 		}
 		if a.Max != nil {
-			add("above its largest value", show(*a.Max+max(1, abs(*a.Max))))
+			add("above its largest value", show(*a.Max+max(1, math.Abs(*a.Max))))
 		}
 	}
 	number := func(v float64) string { return strconv.FormatFloat(v, 'g', -1, 64) }
@@ -378,8 +379,6 @@ func inJob(v any) string {
 	}
 	return fmt.Sprintf("(a value of type %T)", v)
 }
-
-func abs(x float64) float64 { return max(x, -x) }
 
 func takesArtifacts(t stage.Type) bool { return t.Kind == stage.Artifact || listOf(t, stage.Artifact) }
 func takesFiles(t stage.Type) bool     { return t.Kind == stage.File || listOf(t, stage.File) }

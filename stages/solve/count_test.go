@@ -70,7 +70,7 @@ func TestMissingModeIsSaid(t *testing.T) {
 func TestUnprovedModesAreWarnedOf(t *testing.T) {
 	for want, spoil := range map[string]func(res *eigen.Result){
 		"but":               func(res *eigen.Result) { res.Status.Proved = false; res.Status.Counted-- },
-		"cannot be trusted": func(res *eigen.Result) { res.Status.Proved = false },
+		"cannot be trusted": func(res *eigen.Result) { res.Status.Proved, res.Status.Trusted = false, false },
 		"":                  func(*eigen.Result) {},
 	} {
 		o, err := told(t, spoil)

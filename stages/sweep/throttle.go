@@ -3,6 +3,7 @@ package sweep
 import (
 	"fmt"
 	"math"
+	"slices"
 	"sort"
 	"strings"
 
@@ -103,6 +104,7 @@ func recordedThrottle(s *kinds.Spectra) (list []throttled, width float64) {
 			all = append(all, throttled{cell.Centre, float64(cell.Segments)})
 		}
 	}
+	all = slices.DeleteFunc(all, func(x throttled) bool { return math.IsNaN(x.throttle) })
 	least, most := math.Inf(1), math.Inf(-1)
 	for _, x := range all {
 		least, most = min(least, x.throttle), max(most, x.throttle)
@@ -110,9 +112,6 @@ func recordedThrottle(s *kinds.Spectra) (list []throttled, width float64) {
 	width = max(leastClass, (most-least)/mostClasses)
 	classes := make([]throttled, mostClasses) // of each the mean and the whole share
 	for _, x := range all {
-		if math.IsNaN(x.throttle) {
-			continue
-		}
 		c := &classes[min(mostClasses-1, int((x.throttle-least)/width))]
 		c.throttle += x.share * x.throttle
 		c.share += x.share
@@ -172,5 +171,12 @@ func throttleNote(set settings, recorded bool) string {
 	for k, x := range set.throttles {
 		parts = append(parts, fmt.Sprintf("%.3g for %.0f %% (%.0f rpm)", x.throttle, 100*x.share/total, set.flown[k].speed/rpm))
 	}
-	return fmt.Sprintf("rotor speed over a flight follows the throttle as %s: %s; it is assumed to stray by %.3g %% about each", source, strings.Join(parts, ", "), 100*set.spread)
+	wide, least := 0.0, ""
+	for _, y := range set.flown {
+		wide = max(wide, y.stray)
+	}
+	if wide > 0 {
+		least = fmt.Sprintf(", and by no less than half the speeds of its class, up to %.0f rpm", wide/rpm)
+	}
+	return fmt.Sprintf("rotor speed over a flight follows the throttle as %s: %s; it is assumed to stray by %.3g %% about each%s", source, strings.Join(parts, ", "), 100*set.spread, least)
 }

@@ -75,7 +75,7 @@ func TestRecordedThrottle(t *testing.T) {
 		if want := 0.25*1500 + 0.75*2250; math.Abs(total-1) > 1e-12 || math.Abs(mean-want) > 1 {
 			t.Errorf("%s: a mean speed of %g, want %g", name, mean, want)
 		}
-		if notes := strings.Join(out.Notes, "\n"); !strings.Contains(notes, "follows the throttle as recorded: 0.3 for 25 % (14324 rpm), 0.5 for 75 % (21486 rpm)") {
+		if notes := strings.Join(out.Notes, "\n"); !strings.Contains(notes, "follows the throttle as recorded: 0.3 for 25 % (14324 rpm), 0.5 for 75 % (21486 rpm); it is assumed to stray by 3 % about each, and by no less than half the speeds of its class, up to 477 rpm") {
 			t.Errorf("%s: notes %s", name, notes)
 		}
 	}
@@ -84,6 +84,7 @@ func TestRecordedThrottle(t *testing.T) {
 	for k := range 100 {
 		many.Pieces = append(many.Pieces, kinds.SpectraPiece{Samples: 10, Level: 0.2 + 0.006*float64(k), Used: true})
 	}
+	many.Pieces = append(many.Pieces, kinds.SpectraPiece{Samples: 10, Level: math.NaN(), Used: true}) // of no weight
 	list, width := recordedThrottle(many)
 	share, mean := 0.0, 0.0
 	for _, x := range list {

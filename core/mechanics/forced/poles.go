@@ -39,7 +39,7 @@ type Core struct {
 }
 
 // Core condenses the system. It fails when the small eigenproblem does. It
-// panics where stiffness depends on frequency; take it at one by Frozen.
+// panics where stiffness depends on frequency; see CoreAt.
 func (s *System) Core() (*Core, error) {
 	if s.Varies() {
 		panic("forced: poles of a system whose stiffness depends on frequency")

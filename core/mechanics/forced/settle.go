@@ -50,8 +50,11 @@ func (c *Core) Settle(p Pole, momenta, ratio []float64) (Pole, bool) {
 }
 
 // Continue gives the settled motion that a settled one becomes when little else changes, such as the speed of
-// the rotors; false where it is not alike.
+// the rotors; false where it is not alike, and for a core without laws, whose poles are at hand.
 func (c *Core) Continue(p Pole, momenta, ratio []float64) (Pole, bool) {
+	if len(c.laws) == 0 {
+		return p, false
+	}
 	omega, x := c.begin(p)
 	w, y, ok := c.correct(omega, x, 1, c.turning(momenta, ratio))
 	if !ok || Likeness(x, y) < sameMotion {

@@ -90,7 +90,7 @@ func Build(ctx context.Context, s *assembly.System, places []Place, opt Options)
 		return nil, err
 	}
 	if st := res.Status; !st.Converged {
-		if st.Counted > st.Found {
+		if st.Trusted && st.Counted > st.Found {
 			return nil, &MissingError{Below: hertz(st.CountShift), Counted: st.Counted, Found: st.Found, Searches: st.Attempts}
 		}
 		return nil, fmt.Errorf("the eigensolver did not converge after %d steps and %d restarts", res.Status.Steps, res.Status.Restarts)

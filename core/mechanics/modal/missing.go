@@ -22,7 +22,7 @@ func (e *MissingError) Error() string {
 
 // unproved says in what a count does not confirm the modes.
 func unproved(st *eigen.Status) string {
-	if st.Counted == st.Found {
+	if !st.Trusted {
 		return fmt.Sprintf("the count of eigenvalues below %.6g Hz cannot be trusted", hertz(st.CountShift))
 	}
 	return fmt.Sprintf("%d modes were found below %.6g Hz, rigid-body motions included, but %d counted", st.Found, hertz(st.CountShift), st.Counted)

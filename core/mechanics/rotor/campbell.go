@@ -5,10 +5,10 @@ import (
 	"fmt"
 	"math"
 	"sort"
-	"sync"
 
 	"hushframe/core/mechanics/airframe"
 	"hushframe/core/mechanics/forced"
+	"hushframe/core/numeric/dense"
 )
 
 // Fleet is the rotors of one frame, whose speeds keep the ratios that they have
@@ -123,7 +123,7 @@ func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, s
 	const margin = 1.5 // lines may leave the range upward and come back
 	poles := make([][]forced.Pole, len(speeds))
 	failed := make([]error, len(speeds))
-	each(len(speeds), threads, func(k int) {
+	dense.Parallel(threads, len(speeds), func(k int) {
 		if failed[k] = ctx.Err(); failed[k] == nil {
 			poles[k], failed[k] = core.Poles(f.Momenta(speeds[k]), 1, margin*upTo)
 		}
@@ -135,7 +135,7 @@ func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, s
 	}
 	d := &Diagram{Speeds: speeds, Lines: begin(poles[0], elastic, len(speeds), upTo)}
 	d.follow(poles)
-	each(len(d.Lines), threads, func(i int) {
+	dense.Parallel(threads, len(d.Lines), func(i int) {
 		for k, speed := range speeds {
 			d.Lines[i].settle(f, core, s.Vectors(), k, f.Momenta(speed))
 		}
@@ -144,20 +144,6 @@ func (f *Fleet) Campbell(ctx context.Context, s *forced.System, elastic []int, s
 		return nil, err
 	}
 	return d, nil
-}
-
-// each calls do for 0 to n−1 on some threads.
-func each(n, threads int, do func(k int)) {
-	var group sync.WaitGroup
-	threads = max(1, min(threads, n))
-	for w := range threads {
-		group.Go(func() {
-			for k := w; k < n; k += threads {
-				do(k)
-			}
-		})
-	}
-	group.Wait()
 }
 
 // begin makes one line of each pole at rest that is mostly one elastic mode.

@@ -478,3 +478,71 @@ func TestRotorWithoutSite(t *testing.T) {
 		t.Error("a rotor without a site was accepted")
 	}
 }
+
+// With a mount that follows a law each line of the diagram, at every speed, is a natural motion of the frame with the law
+// as it is at the frequency of that motion.
+func TestLinesUnderALaw(t *testing.T) {
+	row := known.One(t, "E_gyroscopic.json", "E-OVERHUNG-CRIT")
+	c, r, _ := overhung(t, row)
+	r.HoverSpeed, r.Blades = 1, 1
+	b := c.basis(t, 0)
+	n := len(b.Frequency)
+	group := modal.LossGroup{Name: "m", Kind: "mount", LossFactor: 1e-3, Stiffness: make([]float64, n*n),
+		Law: airframe.Law{Kind: airframe.Table, Frequency: []float64{1, 1e5}, Storage: []float64{0.6, 1.5}, Loss: []float64{0.02, 0.05}}}
+	for v, f := range b.Frequency {
+		group.Stiffness[v*n+v] = 0.5 * 4 * math.Pi * math.Pi * f * f
+	}
+	b.Groups = append(b.Groups, group)
+	couplings, err := Couplings(b, []airframe.Rotor{r}, []float64{1})
+	if err != nil {
+		t.Fatal(err)
+	}
+	s, err := forced.New(b, forced.Options{Gyroscopic: couplings})
+	if err != nil {
+		t.Fatal(err)
+	}
+	fleet, err := NewFleet([]airframe.Rotor{r}, couplings)
+	if err != nil {
+		t.Fatal(err)
+	}
+	const lawsAt = 100
+	speeds := []float64{0, 100, 200, 300, 400, 500, 600}
+	d, err := fleet.Campbell(t.Context(), s, []int{0, 1, 2, 3}, speeds, lawsAt, 4000, 2)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if len(d.Lines) < 4 {
+		t.Fatalf("%d lines", len(d.Lines))
+	}
+	moved, points := 0.0, 0
+	for i, l := range d.Lines {
+		for k, f := range l.Frequency {
+			if math.IsNaN(f) { // it left the range, or was not followed
+				continue
+			}
+			points++
+			core, err := s.Frozen(f).Core()
+			if err != nil {
+				t.Fatal(err)
+			}
+			poles, err := core.Poles(fleet.Momenta(speeds[k]), 0.99*f, 1.01*f)
+			if err != nil {
+				t.Fatal(err)
+			}
+			found := false
+			for _, p := range poles {
+				found = found || math.Abs(p.Frequency/f-1) < 1e-8 && math.Abs(p.Damping-l.Damping[k]) < 1e-8
+			}
+			if !found {
+				t.Errorf("line %d at %g rad/s: %g Hz, %g is no natural motion: %+v", i, speeds[k], f, l.Damping[k], poles)
+			}
+			moved = max(moved, math.Abs(f/l.begun[k].Frequency-1))
+		}
+	}
+	if points < 24 {
+		t.Errorf("lines have %d points, which tests little", points)
+	}
+	if moved < 0.01 {
+		t.Errorf("the law moves lines by %g at most, which tests nothing", moved)
+	}
+}

@@ -126,7 +126,7 @@ func (b *basis) orthonormalise(w, z []float64, count int, before []float64) (kee
 		return b.gramSchmidt(w, z, count, before)
 	}
 	b.divide(w, z, g, count)
-	first := transposed(g, count)
+	first := dense.Transposed(g, count)
 	again := make([]float64, count*count)
 	dense.Gram(count, count, n, w, z, again, b.p.threads)
 	if fromIdentity(again, count) < 1e-13 {
@@ -139,7 +139,7 @@ func (b *basis) orthonormalise(w, z []float64, count int, before []float64) (kee
 		return keep, product(r, first, len(keep), count, count), true
 	}
 	b.divide(w, z, again, count)
-	return keep, product(transposed(again, count), first, count, count, count), least < 1e-2
+	return keep, product(dense.Transposed(again, count), first, count, count, count), least < 1e-2
 }
 
 // fromIdentity is the largest magnitude of an entry of a-1.
@@ -193,16 +193,6 @@ func cholesky(g []float64, n int) (least float64, ok bool) {
 		clear(g[i*n+i+1 : (i+1)*n])
 	}
 	return least, true
-}
-
-func transposed(a []float64, n int) []float64 {
-	out := make([]float64, n*n)
-	for i := range n {
-		for j := range n {
-			out[j*n+i] = a[i*n+j]
-		}
-	}
-	return out
 }
 
 // gramSchmidt is orthonormalise for vectors that may depend on one another.

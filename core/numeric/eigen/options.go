@@ -64,6 +64,8 @@ type Status struct {
 	// CountShift is the s of the count: Counted eigenvalues of the pencil are below it, Found of those computed.
 	CountShift     float64
 	Counted, Found int
+	// Trusted says that the count was made and that rounding leaves no doubt of it.
+	Trusted bool
 	// Steps is the number of block multiplications, Restarts that of thick restarts, Attempts that of searches from new
 	// starting vectors.
 	Steps, Restarts, Attempts int

@@ -225,7 +225,7 @@ func (s *solver) prove(complete bool) (again bool, err error) {
 			}
 		}
 		found := countBelow(values, shift)
-		st.CountShift, st.Counted, st.Found = shift, count, found
+		st.CountShift, st.Counted, st.Found, st.Trusted = shift, count, found, sure
 		switch {
 		case sure && count == found:
 			st.Proved = true
@@ -323,7 +323,7 @@ func (s *solver) deliver() {
 	if worst > 100*s.opt.Tol {
 		st.note("rounding leaves a residual of %.2g", worst)
 	}
-	missing := st.Counted > st.Found
+	missing := st.Trusted && st.Counted > st.Found
 	st.Exhausted = st.Exhausted && !missing
 	if st.Exhausted && w < s.opt.Modes {
 		st.note("the pencil has only %d finite eigenvalues", len(f.values))

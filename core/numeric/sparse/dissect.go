@@ -113,11 +113,11 @@ func (d *dissector) locals(lines [][]int32) [][]int32 {
 // divide divides the region at hand by the part that each of its vertices belongs to.
 func (d *dissector) divide(r region, part []int32, parts int) []region {
 	out := make([]region, parts)
+	size := make([]int, parts)
+	for _, p := range part {
+		size[p]++
+	}
 	for k, list := range append([][]int32{r.vertices}, r.lines...) {
-		size := make([]int, parts)
-		for _, p := range part {
-			size[p]++
-		}
 		split := make([][]int32, parts)
 		for p := range split {
 			split[p] = make([]int32, 0, size[p])

@@ -42,9 +42,6 @@ func (l *lines) exchange(r, s, block int) {
 func (l *lines) untangle(d drift, span float64, threads int) int {
 	count := 0
 	wide := int(aroundIt / l.step)
-	for _, b := range l.bands {
-		b.steady = false
-	}
 	l.fit(span, -1)
 	for at, b := range l.bands {
 		b.whiten(l.rest[at])

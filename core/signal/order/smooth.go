@@ -1,6 +1,10 @@
 package order
 
-import "math"
+import (
+	"math"
+
+	"hushframe/core/numeric/dense"
+)
 
 // drift is the model by which phases move: the acceleration of each rotor is a Gauss-Markov process that forgets within memory, with a
 // deviation of its own and one that all rotors share (G. E. Uhlenbeck and L. S. Ornstein, Phys. Rev. 36, 1930). A short memory makes speeds walk at
@@ -115,23 +119,13 @@ func (d drift) move(p []float64, r, columns int) []float64 {
 func (d drift) ahead(x, p []float64, r int) ([]float64, []float64) {
 	m := 3 * r
 	kept := math.Exp(-d.step / d.memory)
-	np := d.move(transposed(d.move(p, r, m), m), r, m)
+	np := d.move(dense.Transposed(d.move(p, r, m), m), r, m)
 	for i := range r {
 		for j := range r {
 			np[(2*r+i)*m+2*r+j] += d.variance(i, j) * (1 - kept*kept)
 		}
 	}
 	return d.move(x, r, 1), np
-}
-
-func transposed(a []float64, n int) []float64 {
-	out := make([]float64, n*n)
-	for i := range n {
-		for j := range n {
-			out[j*n+i] = a[i*n+j]
-		}
-	}
-	return out
 }
 
 // take adds what a moment says, and its likelihood.
@@ -255,7 +249,7 @@ func solve(a, b []float64, n int) {
 func (d drift) back(x, p, nextX, nextP, laterX, laterP []float64, r int) ([]float64, []float64) {
 	m := 3 * r
 	inverse, _ := solveInverse(nextP, m)
-	pf := transposed(d.move(p, r, m), m) // P·Fᵀ
+	pf := dense.Transposed(d.move(p, r, m), m) // P·Fᵀ
 	g := multiply(pf, inverse, m)
 	outX, diff := make([]float64, m), make([]float64, m*m)
 	for i := range m {

@@ -24,7 +24,11 @@ func next(line []byte, separator byte) (field, rest []byte, more bool) {
 	}
 	if i < len(line) && line[i] == '"' {
 		if end := closing(line[i+1:]); end >= 0 {
-			field = trim(bytes.ReplaceAll(line[i+1:i+1+end], []byte(`""`), []byte(`"`)))
+			field = line[i+1 : i+1+end]
+			if bytes.Contains(field, []byte(`""`)) { // rare, and a copy
+				field = bytes.ReplaceAll(field, []byte(`""`), []byte(`"`))
+			}
+			field = trim(field)
 			i += end + 2
 			for i < len(line) && line[i] == ' ' {
 				i++

@@ -33,6 +33,7 @@ func (r *Recording) FindRotors(axes Series, timing recording.Timing, orders []fl
 			Rate: timing.Rate, From: r.set.Speeds[0] / (2 * math.Pi), To: r.set.Speeds[1] / (2 * math.Pi), Rotors: r.set.Find, Threads: threads,
 		})
 		if len(tracks) == 0 {
+			sharpened = false // its orders have no angle to be taken out by
 			continue
 		}
 		add := func(k int, time, speed []float64) {

@@ -37,7 +37,7 @@ export function pinch(element: HTMLElement, chart: Stretched) {
     event.stopPropagation()
     chart.hold(values, two())
   }, { capture: true })
-  const lift = (event: PointerEvent) => { if (fingers.delete(event.pointerId) && fingers.size < 2) values = null }
+  const lift = (event: PointerEvent) => { if (fingers.delete(event.pointerId)) values = null }
   element.addEventListener('pointerup', lift)
   element.addEventListener('pointercancel', lift)
 }
